@@ -130,7 +130,7 @@ def install_packages(packages):
     return (
         subprocess.call(
             ["apt-get", "install", "-y", "-qq", "--no-install-recommends"] + packages,
-            **quiet
+            **quiet,
         )
         == 0
     )
