@@ -1,0 +1,146 @@
+"""The colour ramp of every map: from pale water to dark wine, even to the eye.
+
+The ramp is a smooth curve through CIELAB, walked at constant speed, so that equal
+steps of the scale are equal steps to the eye. Lightness falls all the way: the order
+survives printing in grey and any colour vision.
+"""
+
+from __future__ import annotations
+
+from functools import cache
+from math import comb, log10
+from typing import Literal
+
+import numpy as np
+import numpy.typing as npt
+
+Floats = npt.NDArray[np.float64]
+Scale = Literal["logarithmic", "linear"]
+
+#: Control points (L*, a*, b*) of the curve, from low to high values.
+ANCHORS = (
+    (93.0, -12.0, -4.0),
+    (76.0, -22.0, -34.0),
+    (54.0, 16.0, -58.0),
+    (36.0, 58.0, -26.0),
+    (16.0, 22.0, 8.0),
+)
+
+N_COLOURS = 256
+
+#: CIE standard illuminant D65 (2° observer), Y = 1.
+_WHITE = np.array([0.95047, 1.0, 1.08883])
+
+#: XYZ (D65) to linear sRGB, IEC 61966-2-1.
+_SRGB = np.array(
+    [
+        [3.2404542, -1.5371385, -0.4985314],
+        [-0.9692660, 1.8760108, 0.0415560],
+        [0.0556434, -0.2040259, 1.0572252],
+    ]
+)
+
+
+def _linear_rgb(lab: Floats) -> Floats:
+    """Linear sRGB of CIELAB colours, not clipped."""
+    lightness, a, b = np.moveaxis(lab, -1, 0)
+    fy = (lightness + 16.0) / 116.0
+    f = np.stack([fy + a / 500.0, fy, fy - b / 200.0], axis=-1)
+    corner = 6.0 / 29.0
+    xyz = np.where(f > corner, f**3, 3.0 * corner**2 * (f - 4.0 / 29.0)) * _WHITE
+    return np.asarray(xyz @ _SRGB.T)
+
+
+@cache
+def lab_ramp() -> Floats:
+    """The ramp in CIELAB.
+
+    Returns
+    -------
+    (256, 3) float
+        L*, a*, b* from low to high values, equally far apart (CIE 1976 difference).
+
+    Notes
+    -----
+    A Bézier curve of the anchors: since their lightness falls, so does the curve's.
+    """
+    t = np.linspace(0.0, 1.0, 4001)
+    degree = len(ANCHORS) - 1
+    curve = np.zeros((t.size, 3))
+    for k, anchor in enumerate(ANCHORS):
+        weight = comb(degree, k) * (1.0 - t) ** (degree - k) * t**k
+        curve += weight[:, None] * np.asarray(anchor)
+    steps = np.linalg.norm(np.diff(curve, axis=0), axis=1)
+    walked = np.concatenate([[0.0], np.cumsum(steps)])
+    even = np.linspace(0.0, walked[-1], N_COLOURS)
+    lab = np.stack([np.interp(even, walked, axis) for axis in curve.T], axis=1)
+    lab.flags.writeable = False
+    return lab
+
+
+@cache
+def rgb_ramp() -> npt.NDArray[np.uint8]:
+    """The ramp as sRGB bytes, shape (256, 3), from low to high values."""
+    linear = np.clip(_linear_rgb(lab_ramp()), 0.0, 1.0)
+    gamma = np.where(
+        linear <= 0.0031308,
+        12.92 * linear,
+        1.055 * linear ** (1.0 / 2.4) - 0.055,
+    )
+    rgb = np.round(gamma * 255.0).astype(np.uint8)
+    rgb.flags.writeable = False
+    return rgb
+
+
+def position(
+    values: npt.ArrayLike, low: float, high: float, scale: Scale = "logarithmic"
+) -> Floats:
+    """Where values lie on the ramp: 0 at `low`, 1 at `high` and above.
+
+    Parameters
+    ----------
+    values : float array
+        Flux densities, or anything in the unit of `low` and `high`. [T]
+
+    Returns
+    -------
+    float array of the same shape
+        nan under the range (and where the value itself is nan): not coloured.
+
+    Raises
+    ------
+    ValueError
+        When the range is empty, or not positive on a logarithmic scale.
+    """
+    if not low < high or (scale == "logarithmic" and low <= 0):
+        raise ValueError(f"no {scale} range from {low!r} to {high!r}")
+    data = np.asarray(values, dtype=np.float64)
+    placed = np.full(data.shape, np.nan)
+    shown = data >= low
+    inside = np.minimum(data[shown], high)
+    if scale == "logarithmic":
+        placed[shown] = np.log10(inside / low) / log10(high / low)
+    else:
+        placed[shown] = (inside - low) / (high - low)
+    return np.asarray(np.clip(placed, 0.0, 1.0))
+
+
+def colours(
+    values: npt.ArrayLike, low: float, high: float, scale: Scale = "logarithmic"
+) -> npt.NDArray[np.uint8]:
+    """RGBA bytes of values, shape (…, 4); transparent where nothing is coloured.
+
+    Raises
+    ------
+    ValueError
+        When the range is empty, or not positive on a logarithmic scale.
+    """
+    placed = position(values, low, high, scale)
+    shown = np.isfinite(placed)
+    index = np.zeros(placed.shape, dtype=np.intp)
+    index[shown] = np.round(placed[shown] * (N_COLOURS - 1)).astype(np.intp)
+    rgba = np.zeros((*placed.shape, 4), dtype=np.uint8)
+    rgba[..., :3] = rgb_ramp()[index]
+    rgba[..., 3] = 255
+    rgba[~shown] = 0
+    return rgba
