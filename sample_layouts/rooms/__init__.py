@@ -1,0 +1,1 @@
+"""The four sample rooms, each as a function that returns its layout."""
