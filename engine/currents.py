@@ -1,0 +1,271 @@
+"""A load case as phasors by coherent component, and the currents of conductors.
+
+Phasors of one component add; those of two never do, because nothing is known of the
+angle between them. A conductor that a result does not hold carries nothing.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.circuit_currents import (
+    AngleKind,
+    AngleNote,
+    CaseTerms,
+    CircuitCurrents,
+    NeutralComparison,
+    circuit_phasors,
+    neutral_comparison,
+)
+from engine.circuits import Circuit, LoadCase
+from engine.conductor import Conductor
+from engine.errors import UserError
+from engine.layout import Layout
+from engine.runs import SlotLoad
+from engine.spectra import frequency_key
+
+__all__ = [
+    "AngleKind",
+    "AngleNote",
+    "CasePhasors",
+    "Component",
+    "NeutralComparison",
+    "case_phasors",
+    "circuit_phasors",
+    "conductor_currents",
+    "load_current",
+    "neutral_comparison",
+]
+
+#: Components times circuit conductors that a load case may have (0.3 GB).
+MOST_VALUES = 20_000_000
+
+#: Stands between circuit and frequency in the group of an unknown offset; no id has it.
+_AT = " @ "
+
+_Key = tuple[str, str]
+
+
+@dataclass(frozen=True)
+class Component:
+    """Currents of one frequency that add as phasors.
+
+    Attributes
+    ----------
+    frequency
+        [Hz]
+    base
+        Base frequency that the angles belong to; 0 for every direct current, which has
+        a sign and no angle. [Hz]
+    group
+        Empty: adds with everything of its base. The id of a circuit: that circuit is
+        shifted by an unknown time, the same at all its frequencies. "ID @ 150 Hz": the
+        angle of that circuit at this one frequency is unknown by itself.
+    """
+
+    frequency: float
+    base: float
+    group: str = ""
+
+    @property
+    def circuit(self) -> str:
+        """Id of the circuit that does not add with the others, or empty."""
+        return self.group.partition(_AT)[0]
+
+
+@dataclass(frozen=True, eq=False)
+class CasePhasors:
+    """The currents of all circuits in one load case.
+
+    Attributes
+    ----------
+    case
+        The load case.
+    components
+        By frequency, base and group; none where no current flows at all.
+    values
+        By circuit id and label: (c,) complex RMS phasors, one per component. [A]
+    notes
+        Angles that are unknown or were assumed.
+    """
+
+    case: LoadCase
+    components: tuple[Component, ...]
+    values: Mapping[_Key, NDArray[np.complex128]]
+    notes: tuple[AngleNote, ...] = ()
+
+    def of(self, circuit: str, label: str) -> NDArray[np.complex128]:
+        """(c,) complex phasors of one conductor, zeros where nothing flows. [A]"""
+        found = self.values.get((circuit, label))
+        if found is None:
+            return np.zeros(len(self.components), np.complex128)
+        return found
+
+
+def case_phasors(layout: Layout, case: LoadCase) -> CasePhasors:
+    """The currents of a layout's circuits in a load case.
+
+    Circuits of one base frequency add as phasors at each frequency. Kept apart are:
+    equal frequencies of different bases, circuits whose phase relation is unknown, and
+    harmonics whose offset is unknown. Direct currents of known sign always add.
+
+    Raises
+    ------
+    UserError
+        When a circuit's entries do not determine its currents; when there are two
+        circuits with one id; when more currents do not add than can be held.
+    """
+    terms = CaseTerms(case)
+    flowing: dict[str, tuple[Circuit, CircuitCurrents]] = {}
+    seen: set[str] = set()
+    for circuit in layout.circuits:
+        if circuit.id in seen:
+            raise UserError(
+                f"Two circuits have the id {circuit.id}; give one of them another id."
+            )
+        seen.add(circuit.id)
+        currents = terms.currents(circuit)
+        if any(currents.values.values()):
+            flowing[circuit.id] = (circuit, currents)
+    components, relation_notes = _components(flowing)
+    ordered = sorted(set(components.values()), key=_order)
+    notes = [note for _, currents in flowing.values() for note in currents.notes]
+    return CasePhasors(
+        case=case,
+        components=tuple(ordered),
+        values=_values(flowing, components, ordered, case),
+        notes=tuple(notes + relation_notes),
+    )
+
+
+def conductor_currents(
+    phasors: CasePhasors, conductors: Sequence[Conductor]
+) -> NDArray[np.complex128]:
+    """The currents along the conductors' paths.
+
+    Parameters
+    ----------
+    phasors : CasePhasors
+        c components.
+    conductors : m conductors
+        Each carries the sum of its loads.
+
+    Returns
+    -------
+    (c, m) complex
+        RMS phasors. [A]
+    """
+    return _load_currents(phasors, [conductor.loads for conductor in conductors])
+
+
+def load_current(
+    phasors: CasePhasors, loads: Sequence[SlotLoad]
+) -> NDArray[np.complex128]:
+    """(c,) complex sum of shares of circuit conductors. [A]"""
+    current: NDArray[np.complex128] = _load_currents(phasors, [loads])[:, 0]
+    return current
+
+
+def _load_currents(
+    phasors: CasePhasors, loads: Sequence[Sequence[SlotLoad]]
+) -> NDArray[np.complex128]:
+    """(c, m) complex sums of the m sequences of loads. [A]"""
+    currents = np.zeros((len(loads), len(phasors.components)), np.complex128)
+    rows = {key: row for row, key in enumerate(phasors.values)}
+    places: list[int] = []
+    found: list[int] = []
+    shares: list[float] = []
+    for place, together in enumerate(loads):
+        for load in together:
+            row = rows.get((load.circuit, load.label))
+            if row is not None:
+                places.append(place)
+                found.append(row)
+                shares.append(load.share)
+    if not found:
+        return currents.T
+    phasor_rows = np.array(list(phasors.values.values()))
+    terms = phasor_rows[found] * np.array(shares)[:, np.newaxis]
+    filled, starts = np.unique(places, return_index=True)
+    currents[filled] = np.add.reduceat(terms, starts, axis=0)
+    return currents.T
+
+
+def _order(component: Component) -> tuple[float, float, str]:
+    return component.frequency, component.base, component.group
+
+
+def _components(
+    flowing: Mapping[str, tuple[Circuit, CircuitCurrents]],
+) -> tuple[dict[tuple[str, float], Component], list[AngleNote]]:
+    """The component of each circuit at each of its frequencies, and what is unknown."""
+    present = [
+        (circuit, frequency)
+        for circuit, currents in flowing.values()
+        for frequency in dict.fromkeys(f for (_, f), x in currents.values.items() if x)
+    ]
+    n_alternating = sum(frequency > 0 for _, frequency in present)
+    n_direct = len(present) - n_alternating
+    of_base: dict[float, set[str]] = {}
+    bases_at: dict[float, set[float]] = {}
+    for circuit, frequency in present:
+        base = frequency_key(circuit.base_frequency)
+        if frequency > 0:
+            of_base.setdefault(base, set()).add(circuit.id)
+            bases_at.setdefault(frequency, set()).add(base)
+    components: dict[tuple[str, float], Component] = {}
+    notes: list[AngleNote] = []
+    shifted: dict[str, None] = {}
+    for circuit, frequency in present:
+        base = frequency_key(circuit.base_frequency) if frequency > 0 else 0.0
+        alone = (n_alternating if frequency > 0 else n_direct) == 1
+        group = ""
+        if frequency in flowing[circuit.id][1].unknown and not alone:
+            group = f"{circuit.id}{_AT}{frequency:.10g} Hz"
+        elif (
+            frequency > 0
+            and circuit.phase_relation == "unknown"
+            and len(of_base[base]) > 1
+        ):
+            group = circuit.id
+            shifted[circuit.id] = None
+        components[circuit.id, frequency] = Component(frequency, base, group)
+        if frequency > 0 and len(bases_at[frequency]) > 1:
+            notes.append(AngleNote("other base", circuit.id, frequency))
+    return components, [AngleNote("relation unknown", x) for x in shifted] + notes
+
+
+def _values(
+    flowing: Mapping[str, tuple[Circuit, CircuitCurrents]],
+    components: Mapping[tuple[str, float], Component],
+    ordered: Sequence[Component],
+    case: LoadCase,
+) -> dict[_Key, NDArray[np.complex128]]:
+    """The phasors by conductor, as read-only rows of one array."""
+    place = {component: index for index, component in enumerate(ordered)}
+    columns = {key: place[component] for key, component in components.items()}
+    rows: dict[_Key, int] = {}
+    at_rows: list[int] = []
+    at_columns: list[int] = []
+    phasors: list[complex] = []
+    for circuit_id, (_, currents) in flowing.items():
+        for (label, frequency), value in currents.values.items():
+            if value:
+                at_rows.append(rows.setdefault((circuit_id, label), len(rows)))
+                at_columns.append(columns[circuit_id, frequency])
+                phasors.append(value)
+    if len(rows) * len(ordered) > MOST_VALUES:
+        raise UserError(
+            f"Load case “{case.title}”: {len(ordered)} groups of currents in "
+            f"{len(rows)} conductors do not add as phasors, which is more than can be "
+            "calculated; enter the offsets of harmonics or mark phase relations as "
+            "known."
+        )
+    table = np.zeros((len(rows), len(ordered)), np.complex128)
+    table[at_rows, at_columns] = phasors
+    table.flags.writeable = False
+    return {key: table[row] for key, row in rows.items()}
