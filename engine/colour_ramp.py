@@ -28,6 +28,9 @@ ANCHORS = (
 
 N_COLOURS = 256
 
+#: Opacity of every map over the paper.
+OPACITY = 0.7
+
 #: CIE standard illuminant D65 (2° observer), Y = 1.
 _WHITE = np.array([0.95047, 1.0, 1.08883])
 
@@ -144,3 +147,9 @@ def colours(
     rgba[..., 3] = 255
     rgba[~shown] = 0
     return rgba
+
+
+def on_paper(rgb: npt.NDArray[np.uint8]) -> npt.NDArray[np.uint8]:
+    """Colours at the map's opacity over white, so that drawing lines stand out."""
+    over = 255.0 - OPACITY * (255.0 - rgb.astype(np.float64))
+    return np.round(over).astype(np.uint8)

@@ -34,18 +34,19 @@ class IsoLine:
         """[m]"""
         return float(np.linalg.norm(np.diff(self.points, axis=0), axis=1).sum())
 
-    def label_place(self) -> tuple[float, float, float]:
+    def label_place(self, fraction: float = 0.5) -> tuple[float, float, float]:
         """Where a label sits: x, y in metres and the line's direction in degrees.
 
-        The direction lies in (−90, 90], so that the label never stands on its head.
+        `fraction` is the part of the line before the label. The direction lies in
+        (−90, 90], so that the label never stands on its head.
         """
         steps = np.linalg.norm(np.diff(self.points, axis=0), axis=1)
         walked = np.concatenate([[0.0], np.cumsum(steps)])
-        middle = 0.5 * walked[-1]
+        middle = fraction * walked[-1]
         x = float(np.interp(middle, walked, self.points[:, 0]))
         y = float(np.interp(middle, walked, self.points[:, 1]))
-        before = _at(self.points, walked, middle - 0.05 * walked[-1])
-        after = _at(self.points, walked, middle + 0.05 * walked[-1])
+        before = _at(self.points, walked, middle - 0.03 * walked[-1])
+        after = _at(self.points, walked, middle + 0.03 * walked[-1])
         turn = math.degrees(math.atan2(after[1] - before[1], after[0] - before[0]))
         if turn > 90.0:
             turn -= 180.0

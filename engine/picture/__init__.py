@@ -1,0 +1,16 @@
+"""Pictures of maps as marks on paper, for pixels and for vectors alike."""
+
+from engine.picture.map_picture import map_picture
+from engine.picture.marks import Fill, Picture, Raster, Stroke, Words
+from engine.picture.subject import MapSubject, ReferenceLine
+
+__all__ = [
+    "Fill",
+    "MapSubject",
+    "Picture",
+    "Raster",
+    "ReferenceLine",
+    "Stroke",
+    "Words",
+    "map_picture",
+]

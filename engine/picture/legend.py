@@ -1,0 +1,163 @@
+"""The legend beside a map and the caption under it."""
+
+from __future__ import annotations
+
+from itertools import pairwise
+
+from engine.colour_ramp import on_paper, position, rgb_ramp
+from engine.iso_lines import round_values
+from engine.picture.marks import (
+    BLACK,
+    GREY,
+    Fill,
+    Picture,
+    Points,
+    Stroke,
+    Words,
+)
+from engine.picture.subject import MapSubject, value_text
+from engine.printed_text import wrapped
+from engine.units import FLUX_DENSITY_UNITS, significant
+
+SIZE = 2.2
+STEP = 3.1
+BAR_WIDTH = 4.5
+BAR_HEIGHT = 40.0
+
+CAUTION = (
+    "Calculated from the currents and positions entered, in the undisturbed field; not "
+    "a measurement, not a statement on health, and not a judgement under any rule."
+)
+
+
+def draw_legend(
+    picture: Picture, subject: MapSubject, left: float, top: float, width: float
+) -> None:
+    """Draw the colour bar with its unit, and what the marks on the map mean."""
+    picture.add(Words((left, top - 1.5), "Flux density B", SIZE, bold=True))
+    picture.add(
+        Words((left, top - 1.5 - STEP), f"RMS resultant [{subject.unit}]", SIZE)
+    )
+    bottom = top - 9.0 - BAR_HEIGHT
+    _draw_bar(picture, subject, left, bottom)
+    y = bottom - 4.0
+    low = value_text(subject.low, subject.unit)
+    high = value_text(subject.high, subject.unit)
+    for text in (f"under {low} not coloured", f"over {high} as {high}"):
+        y = _paragraph(picture, text, left, y, width)
+    y -= 1.0
+    for entry in _entries(subject):
+        strokes, text = entry
+        for line, stroke in strokes:
+            moved: Points = tuple((left + px, y + py) for px, py in line)
+            picture.add(Stroke(moved, stroke.width, stroke.colour, stroke.dash))
+        y = _paragraph(picture, text, left + 8.0, y, width - 8.0)
+
+
+def _draw_bar(
+    picture: Picture, subject: MapSubject, left: float, bottom: float
+) -> None:
+    ramp = on_paper(rgb_ramp())
+    n = 64
+    for k in range(n):
+        red, green, blue = (
+            int(c) for c in ramp[round((k + 0.5) / n * (len(ramp) - 1))]
+        )
+        low = bottom + BAR_HEIGHT * k / n
+        # A hair taller than its share, so that no seam shows between neighbours.
+        high = bottom + min(BAR_HEIGHT, BAR_HEIGHT * (k + 1) / n + 0.05)
+        corners = (
+            (left, low), (left + BAR_WIDTH, low),
+            (left + BAR_WIDTH, high), (left, high),
+        )  # fmt: skip
+        picture.add(Fill(corners, (red, green, blue)))
+    top, right = bottom + BAR_HEIGHT, left + BAR_WIDTH
+    frame = ((left, bottom), (right, bottom), (right, top), (left, top), (left, bottom))
+    picture.add(Stroke(frame, 0.2))
+    for value in _bar_ticks(subject):
+        at = float(position(value, subject.low, subject.high, subject.scale))
+        y = bottom + BAR_HEIGHT * at
+        picture.add(Stroke(((right, y), (right + 1.0, y)), 0.2))
+        text = value_text(value, subject.unit)
+        picture.add(Words((right + 1.8, y), text, SIZE))
+
+
+def _bar_ticks(subject: MapSubject) -> list[float]:
+    """Values with a tick: as many as there is room for, the ends among them."""
+    factor = FLUX_DENSITY_UNITS[subject.unit]
+    inner = round_values(subject.low / factor, subject.high / factor)
+    for kept in (("1", "2", "5"), ("1", "5"), ("1",)):
+        chosen = [subject.low, subject.high]
+        chosen += [
+            v * factor for v in inner if significant(v, 1).strip("0.")[0] in kept
+        ]
+        ticks = sorted(set(chosen))
+        places = [
+            float(position(v, subject.low, subject.high, subject.scale)) * BAR_HEIGHT
+            for v in ticks
+        ]
+        spaced = [b - a for a, b in pairwise(places)]
+        if all(gap > 2.6 or gap < 1e-6 for gap in spaced):
+            return ticks
+    return [subject.low, subject.high]
+
+
+def _entries(
+    subject: MapSubject,
+) -> list[tuple[list[tuple[Points, Stroke]], str]]:
+    """Samples of the marks, drawn about (0, 0), and what they mean."""
+
+    def bar(stroke_width: float, dash: tuple[float, float] | None = None) -> Stroke:
+        return Stroke((), stroke_width, BLACK, dash)
+
+    flat: Points = ((0.0, 0.0), (6.0, 0.0))
+    entries = [([(flat, bar(0.18))], "line of equal value, labelled")]
+    if subject.reference_note:
+        samples = [(flat, bar(0.55))] if subject.references else []
+        entries.append((samples, subject.reference_note))
+    entries.append(([(flat, bar(0.3, (2.0, 1.2)))], "edge of a zone"))
+    entries.append(([(flat, bar(0.5))], "edge of a room"))
+    cross: list[tuple[Points, Stroke]] = [
+        (((1.8, -1.2), (4.2, 1.2)), bar(0.35)),
+        (((1.8, 1.2), (4.2, -1.2)), bar(0.35)),
+    ]
+    entries.append((cross, "receptor"))
+    if subject.mask.any():
+        lines: list[tuple[Points, Stroke]] = [
+            (((x, -1.0), (x + 2.0, 1.0)), Stroke((), 0.12, GREY))
+            for x in (0.0, 1.3, 2.6, 3.9)
+        ]
+        entries.append(
+            (lines, "not assessed: inside a conductor or a closed enclosure")
+        )
+    return entries
+
+
+def _paragraph(
+    picture: Picture, text: str, left: float, y: float, width: float
+) -> float:
+    """Write wrapped lines from `y` downwards; the height where the next one goes."""
+    for line in wrapped(text, SIZE, width):
+        picture.add(Words((left, y), line, SIZE))
+        y -= STEP
+    return y - 0.6
+
+
+def _caption(subject: MapSubject, width: float) -> list[tuple[str, bool]]:
+    lines = [(line, True) for line in wrapped(subject.title, 2.8, width, bold=True)[:3]]
+    for text in (*subject.lines, CAUTION):
+        lines += [(line, False) for line in wrapped(text, SIZE, width)[:4]]
+    return lines
+
+
+def caption_height(subject: MapSubject, width: float) -> float:
+    """Height that the caption takes on paper. [mm]"""
+    return 2.0 + 3.4 * len(_caption(subject, width - 4.0))
+
+
+def draw_caption(picture: Picture, subject: MapSubject, width: float) -> None:
+    """Write the caption at the foot of the picture."""
+    lines = _caption(subject, width - 4.0)
+    for k, (line, bold) in enumerate(reversed(lines)):
+        size = 2.8 if bold else SIZE
+        picture.add(Words((2.0, 2.0 + 3.4 * k), line, size, bold=bold))

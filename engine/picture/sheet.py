@@ -1,0 +1,76 @@
+"""The frame of a map on paper, to scale, and what has been lettered in it."""
+
+from __future__ import annotations
+
+import math
+
+from shapely.geometry import LineString, box
+from shapely.geometry.base import BaseGeometry
+
+from engine.picture.marks import Box, Points, Words
+
+#: Scales that a drawing may have, 1 : n.
+SCALES = tuple(
+    step * 10**power for power in range(0, 7) for step in (10, 20, 25, 50, 75)
+)
+
+
+class Sheet:
+    """The map's frame on paper, and what has been lettered in it so far."""
+
+    def __init__(self, world: Box, scale: float, corner: tuple[float, float]) -> None:
+        self.world = world
+        #: Millimetres on paper per metre.
+        self.factor = 1000.0 / scale
+        self.left, self.bottom = corner
+        self.width = (world[2] - world[0]) * self.factor
+        self.height = (world[3] - world[1]) * self.factor
+        self.frame = box(
+            self.left, self.bottom, self.left + self.width, self.bottom + self.height
+        )
+        self._lettered: list[BaseGeometry] = []
+
+    def paper(self, x: float, y: float) -> tuple[float, float]:
+        """Where a point of the world lies on paper. [m to mm]"""
+        return (
+            self.left + (x - self.world[0]) * self.factor,
+            self.bottom + (y - self.world[1]) * self.factor,
+        )
+
+    def clipped(self, line: Points) -> list[Points]:
+        """The pieces of a line on paper that lie in the frame."""
+        if len(line) < 2:
+            return []
+        cut = LineString(line).intersection(self.frame)
+        return [
+            tuple((float(x), float(y)) for x, y in part.coords)
+            for part in getattr(cut, "geoms", (cut,))
+            if isinstance(part, LineString) and len(part.coords) > 1
+        ]
+
+    def has_room(self, words: Words) -> bool:
+        """Whether a label lies in the frame and on no other; if so it is taken."""
+        half = 0.5 * words.width + 0.6
+        tall = 0.5 * words.size + 0.5
+        turn = math.radians(words.turn)
+        right = (math.cos(turn), math.sin(turn))
+        corners = [
+            (
+                words.at[0] + a * half * right[0] - b * tall * right[1],
+                words.at[1] + a * half * right[1] + b * tall * right[0],
+            )
+            for a, b in ((-1, -1), (1, -1), (1, 1), (-1, 1), (-1, -1))
+        ]
+        outline = LineString(corners).convex_hull
+        if not self.frame.contains(outline):
+            return False
+        if any(outline.intersects(other) for other in self._lettered):
+            return False
+        self._lettered.append(outline)
+        return True
+
+
+def drawing_scale(world: Box, width: float, height: float) -> int:
+    """The largest scale 1 : n at which a world fits a space on paper. [m, mm]"""
+    needed = 1000.0 * max((world[2] - world[0]) / width, (world[3] - world[1]) / height)
+    return next((scale for scale in SCALES if scale >= needed), math.ceil(needed))

@@ -1,0 +1,92 @@
+"""What a picture of a map shows, and the words that say what it is."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from engine.colour_ramp import Scale
+from engine.picture.marks import Box
+from engine.units import FLUX_DENSITY_UNITS, significant
+
+Floats = npt.NDArray[np.float64]
+Bools = npt.NDArray[np.bool_]
+
+
+@dataclass(frozen=True)
+class ReferenceLine:
+    """A reference level as it shows on a map: its name and its value there. [T]"""
+
+    name: str
+    value: float
+
+
+@dataclass(frozen=True, eq=False)
+class MapSubject:
+    """What a picture shows: the values, and the words that say what they are.
+
+    Attributes
+    ----------
+    xs, ys : (nx,), (ny,) float
+        Axes of the grid. [m]
+    values : (ny, nx) float
+        RMS resultant. [T]
+    mask : (ny, nx) bool
+        True where nothing can be assessed.
+    title : str
+        Case and height, for people.
+    unit : str
+        Display unit of flux density.
+    low, high : float
+        Range of the colours. [T]
+    references : tuple of ReferenceLine
+        Drawn bold.
+    reference_note : str
+        At which frequency the levels were taken, or why none is drawn.
+    lines : tuple of str
+        Further lines of the caption.
+    length_unit : str
+        Unit of axes and scale bar.
+    north : float or None
+        Direction of north from +x, counter-clockwise. [degrees]
+    """
+
+    xs: Floats
+    ys: Floats
+    values: Floats
+    mask: Bools
+    title: str
+    unit: str = "µT"
+    low: float = 1e-7
+    high: float = 1e-3
+    scale: Scale = "logarithmic"
+    references: tuple[ReferenceLine, ...] = ()
+    reference_note: str = ""
+    lines: tuple[str, ...] = ()
+    length_unit: str = "m"
+    north: float | None = None
+
+    def world(self) -> Box:
+        """Left, bottom, right, top of the grid with half a step around it. [m]"""
+        dx = 0.5 * _step(self.xs)
+        dy = 0.5 * _step(self.ys)
+        return (
+            float(self.xs[0]) - dx,
+            float(self.ys[0]) - dy,
+            float(self.xs[-1]) + dx,
+            float(self.ys[-1]) + dy,
+        )
+
+
+def _step(axis: Floats) -> float:
+    return float(axis[-1] - axis[0]) / (len(axis) - 1) if len(axis) > 1 else 1.0
+
+
+def value_text(tesla: float, unit: str) -> str:
+    """A round value as a map prints it, "0.5 µT"."""
+    figures = significant(tesla / FLUX_DENSITY_UNITS[unit], 4)
+    if "." in figures and "e" not in figures:
+        figures = figures.rstrip("0").rstrip(".")
+    return f"{figures} {unit}"
