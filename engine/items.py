@@ -11,8 +11,22 @@ from typing import Annotated, Literal
 
 from msgspec import Meta, Struct
 
+# The last group of the patterns: Python's "$" alone lets a line end through.
 Id = Annotated[
-    str, Meta(min_length=1, max_length=80, pattern=r"^[A-Za-z0-9][A-Za-z0-9_.:+\- ]*$")
+    str,
+    Meta(
+        min_length=1,
+        max_length=80,
+        pattern=r"^[A-Za-z0-9][A-Za-z0-9_.:+\- ]*$(?!\n)",
+        description="an id: a letter or digit, then letters, digits, spaces, _ . : + -",
+    ),
+]
+Digest = Annotated[
+    str,
+    Meta(
+        pattern=r"^([0-9a-f]{64})?$(?!\n)",
+        description="a SHA-256 of 64 lower-case hexadecimal digits, or empty text",
+    ),
 ]
 Name = Annotated[str, Meta(max_length=400)]
 Text = Annotated[str, Meta(max_length=20_000)]
@@ -74,7 +88,7 @@ class SourceDocument(Item, frozen=True, kw_only=True):
     file_name: Name = ""
     revision: Name = ""
     date: Name = ""
-    sha256: Annotated[str, Meta(pattern=r"^([0-9a-f]{64})?$")] = ""
+    sha256: Digest = ""
 
 
 class IssuedRevision(Item, frozen=True, kw_only=True):

@@ -9,6 +9,7 @@ from msgspec import Meta
 from engine.items import (
     Amperes,
     Coordinate,
+    Digest,
     Distance,
     Id,
     Item,
@@ -150,7 +151,7 @@ class BackingDrawing(Item, frozen=True, kw_only=True):
     """
 
     file_name: Name = ""
-    sha256: Annotated[str, Meta(pattern=r"^([0-9a-f]{64})?$")] = ""
+    sha256: Digest = ""
     view: Literal["plan", "looking +x", "looking +y"] = "plan"
     page: Annotated[int, Meta(ge=1, le=10_000)] = 1
     first: Point2 = (0.0, 0.0)
