@@ -10,6 +10,7 @@ from __future__ import annotations
 import cmath
 from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
+from itertools import pairwise
 from math import radians
 
 Point = tuple[float, float, float]
@@ -31,7 +32,7 @@ def place(point: Iterable[float]) -> Point:
 
 def add_path(pieces: Pieces, path: Sequence[Iterable[float]], loads: Loads) -> None:
     """Add a polyline's legs; legs without a length are left out."""
-    for start, end in zip(path, path[1:], strict=False):
+    for start, end in pairwise(path):
         a, b = place(start), place(end)
         if a == b:
             continue
@@ -283,7 +284,7 @@ def corridor_phasors(*, second_bond: bool = True) -> Phasors:
 
 
 def laboratory_phasors(case: str) -> Phasors:
-    """Normal, discharge or recharge; the ripple's unknown angle is taken as 0."""
+    """Normal, discharge or recharge; the ripple is taken to swing with the charging."""
     phasors: Phasors = {}
     if case != "discharge":
         add_circuit(
@@ -305,7 +306,7 @@ def laboratory_phasors(case: str) -> Phasors:
     battery: dict[str, dict[float, complex]] = {
         "normal": {},
         "discharge": {0.0: 653.0},
-        "recharge": {0.0: -60.0, 300.0: 3.6},
+        "recharge": {0.0: -60.0, 300.0: -3.6},
     }
     phasors["battery", "L+"] = battery[case]
     phasors["battery", "L-"] = {f: -i for f, i in battery[case].items()}

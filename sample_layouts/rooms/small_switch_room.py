@@ -39,7 +39,6 @@ from engine.runs import (
 from rooms.invented import example_level, flat_then_falling, lagging, rectangle
 
 POLES = ("L1", "L2", "L3", "N")
-LINES = ("L1", "L2", "L3")
 
 AnItem = TypeVar("AnItem", bound=Item)
 
@@ -80,11 +79,9 @@ def circuits() -> tuple[Circuit, ...]:
     chiller = Circuit(
         id="F1",
         name="F1 Chiller",
-        supply="three-phase three-wire",
         base_frequency=50.0,
         voltage=400.0,
-        demand=lagging((246, 27), (246, 27), (246, 27)),
-        neutral="none",
+        demand=lagging((246, 27), (238, 27), (251, 27)),
     )
     lighting = Circuit(
         id="F2",
@@ -119,16 +116,17 @@ def incoming_bars() -> Run:
 
 
 def chiller_cables() -> Run:
-    """Three touching cables along the floor to the chiller."""
+    """Lines in trefoil, N touching beside them, along the floor to the chiller."""
     run = Run(
         id="chiller-cables",
-        name="Chiller cables, 3 × 1 × 150 mm²",
+        name="Chiller cables, 4 × 1 × 150 mm²",
         kind="cable tray",
         route=((1.0, 2.3, 0.4), (1.0, 2.6, 0.4), (3.6, 2.6, 0.4)),
         section=Trefoil(
             circuits=(CircuitShare(circuit="F1"),),
-            order=LINES,
+            order=POLES,
             pitch=0.022,
+            neutral_pitch=0.022,
             shape=Round(diameter=0.022),
         ),
         start=Connection(equipment="board", way="F1"),
@@ -199,7 +197,7 @@ def joints() -> tuple[Joint, ...]:
                 name="Chiller terminals",
                 ends=tuple(
                     SlotEnd(item="chiller-cables", slot=label, end="end")
-                    for label in LINES
+                    for label in POLES
                 ),
                 at=(3.7, 2.6, 0.4),
             ),
