@@ -1,0 +1,137 @@
+"""Conductors of one run, computed once for as long as the run is the same value."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import lru_cache
+from typing import Generic, TypeVar
+
+import numpy as np
+
+from engine.circuits import STRAY
+from engine.errors import UserError
+from engine.polylines import Conductor, Side, along_route, half_sides, links
+from engine.routes import SHORTEST, Stations, stations
+from engine.runs import Bar, Round, Run, Slot
+from engine.sections import single_conductors
+
+N_KEPT = 8192
+
+
+Kept = TypeVar("Kept")
+
+
+class Same(Generic[Kept]):
+    """A value told from others by identity, as a key of a cache."""
+
+    __slots__ = ("value",)
+
+    def __init__(self, value: Kept) -> None:
+        self.value = value
+
+    def __hash__(self) -> int:
+        return id(self.value)
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, Same) and self.value is other.value
+
+
+@dataclass(frozen=True, eq=False)
+class RunGeometry:
+    """What follows from a run alone: its slots, one a conductor, and its stations."""
+
+    made: tuple[Slot, ...]
+    stations: Stations
+
+    @property
+    def only_label(self) -> str:
+        """The label that all loads have; empty where they have several or none."""
+        labels = {load.label for slot in self.made for load in slot.loads}
+        return labels.pop() if len(labels) == 1 else ""
+
+    @property
+    def is_one_pole(self) -> bool:
+        """Whether it is one pole of something larger."""
+        return self.only_label not in ("", STRAY)
+
+
+def called(run: Run) -> str:
+    """How a sentence names the run."""
+    if run.name in ("", run.id):
+        return f"Run {run.id}"
+    return f"Run {run.name} ({run.id})"
+
+
+def run_geometry(run: Run) -> RunGeometry:
+    """Slots and stations of a run.
+
+    Raises
+    ------
+    UserError
+        When the route or the section cannot be built as described.
+    """
+    return _geometry(Same(run))
+
+
+def run_conductors(run: Run, group: str) -> tuple[Conductor, ...]:
+    """Conductors of a run without its links; identical for an identical run."""
+    return _conductors(Same(run), group)
+
+
+def closing_links(
+    run: Run, group: str, side: Side, which: tuple[int, ...]
+) -> tuple[Conductor, ...]:
+    """Links from the named free conductor ends to their middle."""
+    return _closing(Same(run), group, side, which)
+
+
+def terminal_label(slot: Slot) -> str:
+    """The label by which a slot finds its terminal: of its first load, or else what
+    the slot is called."""
+    if slot.loads:
+        return slot.loads[0].label
+    return slot.name.rpartition("/")[2].partition(".")[0]
+
+
+@lru_cache(maxsize=N_KEPT)
+def _geometry(same: Same[Run]) -> RunGeometry:
+    run = same.value
+    try:
+        made = single_conductors(run.section)
+        found = stations(run.route, run.turns)
+        _refuse_short_legs(made, found)
+    except UserError as error:
+        raise UserError(f"{called(run)}: {error}") from None
+    return RunGeometry(made=made, stations=found)
+
+
+@lru_cache(maxsize=N_KEPT)
+def _conductors(same: Same[Run], group: str) -> tuple[Conductor, ...]:
+    geometry = _geometry(same)
+    return along_route(geometry.made, geometry.stations, same.value.id, group)
+
+
+@lru_cache(maxsize=N_KEPT)
+def _closing(
+    same: Same[Run], group: str, side: Side, which: tuple[int, ...]
+) -> tuple[Conductor, ...]:
+    conductors = _conductors(same, group)
+    free = [conductors[i] for i in which]
+    index = 0 if side == "start" else -1
+    middle = np.mean([conductor.path[index] for conductor in free], axis=0)
+    return links(free, side, middle, "closing link", f"closing {side}")
+
+
+def _refuse_short_legs(made: tuple[Slot, ...], found: Stations) -> None:
+    offsets = np.array([(slot.u, slot.v) for slot in made])
+    shapes = [s.shape for s in made if isinstance(s.shape, Round | Bar)]
+    left = found.straights(offsets, half_sides(shapes)).min(axis=0)
+    if left.min() >= SHORTEST:
+        return
+    leg = int(left.argmin())
+    length = float(found.lengths[leg])
+    raise UserError(
+        f"leg {leg + 1} of the route is {length:.3f} m long, {length - left[leg]:.3f} "
+        "m of which the section needs for the bends at its ends: make the leg longer, "
+        "the bends wider or the section smaller."
+    )
