@@ -111,7 +111,7 @@ def case_phasors(layout: Layout, case: LoadCase) -> CasePhasors:
 
     Circuits of one base frequency add as phasors at each frequency. Kept apart are:
     equal frequencies of different bases, circuits whose phase relation is unknown, and
-    harmonics whose offset is unknown. Direct currents of known sign always add.
+    harmonics whose offset is unknown. Direct currents always add, with their signs.
 
     Raises
     ------
@@ -209,7 +209,6 @@ def _components(
         for frequency in dict.fromkeys(f for (_, f), x in currents.values.items() if x)
     ]
     n_alternating = sum(frequency > 0 for _, frequency in present)
-    n_direct = len(present) - n_alternating
     of_base: dict[float, set[str]] = {}
     bases_at: dict[float, set[float]] = {}
     for circuit, frequency in present:
@@ -222,9 +221,8 @@ def _components(
     shifted: dict[str, None] = {}
     for circuit, frequency in present:
         base = frequency_key(circuit.base_frequency) if frequency > 0 else 0.0
-        alone = (n_alternating if frequency > 0 else n_direct) == 1
         group = ""
-        if frequency in flowing[circuit.id][1].unknown and not alone:
+        if frequency in flowing[circuit.id][1].unknown and n_alternating > 1:
             group = f"{circuit.id}{_AT}{frequency:.10g} Hz"
         elif (
             frequency > 0

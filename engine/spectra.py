@@ -69,7 +69,8 @@ def harmonics(
     ------
     UserError
         When a spectrum line names a conductor that has no stated current, a frequency
-        twice, the base frequency, or not exactly one of ratio and current.
+        twice, the base frequency, not exactly one of ratio and current, or a direct
+        current without direction.
     """
     every = tuple(lines)
     named: dict[float, dict[str, SpectrumLine]] = {}
@@ -135,6 +136,13 @@ def _line_phasor(
     else:
         assert line.ratio is not None
         rms = line.ratio * base.rms
+    if frequency == 0 and line.offset is None:
+        raise circuit_error(
+            circuit,
+            _field(line),
+            "a direct current needs a direction; enter an offset of 0° for along the "
+            "route or 180° for against it.",
+        )
     offset = 0.0 if line.offset is None else line.offset
     if frequency == 0:
         check_direction(circuit, _field(line), offset)

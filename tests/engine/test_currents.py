@@ -574,6 +574,7 @@ REFUSED: list[tuple[dict[str, object], str]] = [
     ({"spectrum": (SpectrumLine(frequency=50, ratio=1),)}, "the base frequency"),
     ({"spectrum": (SpectrumLine(frequency=150, label="N", rms=1),)}, "no current of N"),
     ({"spectrum": (SpectrumLine(frequency=150, label="stray", rms=1),)}, "of stray"),
+    ({"spectrum": (SpectrumLine(frequency=0, label="L1", rms=1),)}, "needs a dire"),
     (
         {"spectrum": (SpectrumLine(frequency=0, label="L1", rms=1, offset=45),)},
         "no angle of 45°",
