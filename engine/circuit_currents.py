@@ -11,6 +11,7 @@ import cmath
 import math
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
+from functools import lru_cache
 from typing import Literal
 
 from msgspec.structs import replace
@@ -33,6 +34,7 @@ from engine.demands import (
     fundamental,
 )
 from engine.errors import UserError
+from engine.run_conductors import Same
 from engine.spectra import frequency_key, harmonics, phasor
 
 AngleKind = Literal[
@@ -201,13 +203,19 @@ def neutral_comparison(
 
 
 def circuit_currents(circuit: Circuit) -> CircuitCurrents:
-    """The currents of a circuit as it stands, without a load case.
+    """The currents of a circuit as it stands, identical while it is the same value.
 
     Raises
     ------
     UserError
         When the circuit's entries do not determine its currents.
     """
+    return _currents(Same(circuit))
+
+
+@lru_cache(maxsize=8192)
+def _currents(same: Same[Circuit]) -> CircuitCurrents:
+    circuit = same.value
     base = fundamental(circuit)
     base_frequency = frequency_key(circuit.base_frequency)
     stated, notes = _stated(circuit, base, base_frequency)
