@@ -13,17 +13,18 @@ from typing import Literal
 
 import numpy as np
 
+from engine.conductor import Conductor
 from engine.ends import End, Ends, LooseEnd
 from engine.equipment import Board, Transformer
 from engine.equipment_conductors import STAR, Point, Socket
 from engine.errors import UserError
 from engine.items import Point3
 from engine.layout import Layout
-from engine.polylines import SIDES, Conductor, Role, links, straight
+from engine.polylines import SIDES, Role, links, straight
 from engine.routes import Array
 from engine.run_conductors import (
     Same,
-    closing_links,
+    closing,
     run_conductors,
     run_geometry,
 )
@@ -203,22 +204,15 @@ class _Builder:
     def close_free_ends(self) -> None:
         """Join the ends of a run that go nowhere across its section."""
         for run in self.layout.runs:
-            made = self.of_run[run.id]
             for side in SIDES:
                 free = self.ends.free(run, side)
                 if not free:
                     continue
-                index = 0 if side == "start" else -1
-                inflow = [load for i in free for load in made[i].loads]
-                if len(free) > 1:
-                    group = self.groups[run.id]
-                    self.conductors.extend(closing_links(run, group, side, free))
+                made = closing(run, self.groups[run.id], side, free)
+                self.conductors.extend(made.links)
+                is_closed = len(free) > 1
                 self._add_node(
-                    "free end",
-                    _middle([made[i].path[index] for i in free]),
-                    [run.id],
-                    inflow if side == "end" else negative(inflow),
-                    links=len(free) > 1,
+                    "free end", made.middle, [run.id], made.inflow, links=is_closed
                 )
 
     def close_boards(self) -> None:

@@ -117,8 +117,8 @@ class Ends:
 
     def free(self, run: Run, side: Side) -> tuple[int, ...]:
         """Indices of a run's conductors whose end goes nowhere."""
-        made = run_geometry(run).made
-        return tuple(i for i in range(len(made)) if (run.id, side, i) not in self.led)
+        n = len(run_geometry(run).made)
+        return tuple([i for i in range(n) if (run.id, side, i) not in self.led])
 
     def _claim(self, joint: Joint) -> None:
         """Give the joint the slot ends that no joint before it has named."""

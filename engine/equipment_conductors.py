@@ -12,9 +12,10 @@ from math import cos, radians, sin
 
 import numpy as np
 
+from engine.conductor import Conductor
 from engine.equipment import Board, ConductorLoop, Pole, Transformer, Way
 from engine.errors import UserError
-from engine.polylines import Conductor, along_route, straight
+from engine.polylines import along_route, straight
 from engine.routes import SHORTEST, Array, stations
 from engine.runs import Bar, Round, Slot, SlotLoad
 from engine.sections import carried_loads, negative, numbered, total

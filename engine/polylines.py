@@ -6,58 +6,19 @@ A link's path runs in the sense of the run it prolongs, so that its loads are th
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
 from math import cos, radians, sin
 from typing import Literal
 
 import numpy as np
 
-from engine.routes import HALF_TWIST, SHORTEST, Array, Stations
+from engine.conductor import Conductor
+from engine.routes import HALF_TWIST, SHORTEST, Array, Stations, cross
 from engine.runs import Bar, Round, Slot, SlotLoad
 
 Role = Literal["run", "joint link", "closing link", "equipment"]
 Side = Literal["start", "end"]
 
 SIDES: tuple[Side, Side] = ("start", "end")
-
-
-@dataclass(frozen=True, eq=False)
-class Conductor:
-    """One current path: a polyline with a cross-section and what it carries.
-
-    Attributes
-    ----------
-    key : str
-        Unique and readable: "riser/L1.2".
-    item : str
-        Id of the layout's item that made it.
-    slot : str
-        Its slot, terminal or way; of a multicore cable "slot/core".
-    role : str
-        What it is part of; a closing link is an assumption.
-    path : (n, 3) float
-        Vertices, n ≥ 2, consecutive ones distinct. Read-only. [m]
-    axes : (n, 2, 3) float
-        Displacement at each vertex per metre along the shape's width and along its
-        thickness: `path + a·axes[:, 0] + b·axes[:, 1]` is the filament at (a, b).
-        At bends it lies in the mitre plane. Read-only.
-    shape : Round or Bar
-        Cross-section; the turn of a bar is in the axes already.
-    loads : tuple of SlotLoad
-        Current along the path: the sum of share times phasor.
-    group : str
-        Conductors that switch their discretisation together.
-    """
-
-    key: str
-    item: str
-    slot: str
-    role: Role
-    path: Array
-    axes: Array
-    shape: Round | Bar
-    loads: tuple[SlotLoad, ...]
-    group: str
 
 
 def half_sides(shapes: Sequence[Round | Bar]) -> Array:
@@ -147,15 +108,21 @@ def links(
     for array in (paths, axes):
         array.setflags(write=False)
     return tuple(
-        replace(
-            conductor,
+        Conductor(
             key=f"{conductor.item}/{name}/{conductor.slot}",
+            item=conductor.item,
+            slot=conductor.slot,
             role=role,
-            path=paths[i],
-            axes=axes[i],
+            path=path,
+            axes=across,
+            shape=conductor.shape,
+            loads=conductor.loads,
+            group=conductor.group,
         )
-        for i, conductor in enumerate(conductors)
-        if real[i]
+        for conductor, path, across, is_real in zip(
+            conductors, paths, axes, real.tolist(), strict=True
+        )
+        if is_real
     )
 
 
@@ -224,7 +191,7 @@ def _across(tangents: Array, reference: Array) -> Array:
     kept = np.where(width_kept[:, None], unit[:, 0], unit[:, 1])
     kept = kept - (kept * tangents).sum(axis=1)[:, None] * tangents
     kept /= np.sqrt((kept * kept).sum(axis=1))[:, None]
-    other = np.cross(tangents, kept)
+    other = cross(tangents, kept)
     return np.stack(
         [
             np.where(width_kept[:, None], kept, -other),

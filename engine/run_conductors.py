@@ -9,11 +9,12 @@ from typing import Generic, TypeVar
 import numpy as np
 
 from engine.circuits import STRAY
+from engine.conductor import Conductor
 from engine.errors import UserError
-from engine.polylines import Conductor, Side, along_route, half_sides, links
+from engine.polylines import Side, along_route, half_sides, links
 from engine.routes import SHORTEST, Stations, stations
-from engine.runs import Bar, Round, Run, Slot
-from engine.sections import single_conductors
+from engine.runs import Bar, Round, Run, Slot, SlotLoad
+from engine.sections import negative, single_conductors, total
 
 N_KEPT = 8192
 
@@ -42,17 +43,27 @@ class RunGeometry:
 
     made: tuple[Slot, ...]
     stations: Stations
+    #: Whether it is one pole of something larger.
+    is_one_pole: bool
 
-    @property
-    def only_label(self) -> str:
-        """The label that all loads have; empty where they have several or none."""
-        labels = {load.label for slot in self.made for load in slot.loads}
-        return labels.pop() if len(labels) == 1 else ""
 
-    @property
-    def is_one_pole(self) -> bool:
-        """Whether it is one pole of something larger."""
-        return self.only_label not in ("", STRAY)
+@dataclass(frozen=True, eq=False)
+class Closing:
+    """The free conductor ends of one end of a run, joined in their middle.
+
+    Attributes
+    ----------
+    links : tuple of Conductor
+        Straight to the middle; none for a single end.
+    middle : (3,) float
+        [m]
+    inflow : tuple of SlotLoad
+        What the run brings there in all.
+    """
+
+    links: tuple[Conductor, ...]
+    middle: tuple[float, float, float]
+    inflow: tuple[SlotLoad, ...]
 
 
 def called(run: Run) -> str:
@@ -78,10 +89,8 @@ def run_conductors(run: Run, group: str) -> tuple[Conductor, ...]:
     return _conductors(Same(run), group)
 
 
-def closing_links(
-    run: Run, group: str, side: Side, which: tuple[int, ...]
-) -> tuple[Conductor, ...]:
-    """Links from the named free conductor ends to their middle."""
+def closing(run: Run, group: str, side: Side, which: tuple[int, ...]) -> Closing:
+    """Join the conductor ends of these indices across the section."""
     return _closing(Same(run), group, side, which)
 
 
@@ -102,7 +111,9 @@ def _geometry(same: Same[Run]) -> RunGeometry:
         _refuse_short_legs(made, found)
     except UserError as error:
         raise UserError(f"{called(run)}: {error}") from None
-    return RunGeometry(made=made, stations=found)
+    labels = {load.label for slot in made for load in slot.loads}
+    is_one_pole = len(labels) == 1 and STRAY not in labels
+    return RunGeometry(made=made, stations=found, is_one_pole=is_one_pole)
 
 
 @lru_cache(maxsize=N_KEPT)
@@ -111,15 +122,20 @@ def _conductors(same: Same[Run], group: str) -> tuple[Conductor, ...]:
     return along_route(geometry.made, geometry.stations, same.value.id, group)
 
 
-@lru_cache(maxsize=N_KEPT)
+@lru_cache(maxsize=2 * N_KEPT)
 def _closing(
     same: Same[Run], group: str, side: Side, which: tuple[int, ...]
-) -> tuple[Conductor, ...]:
+) -> Closing:
     conductors = _conductors(same, group)
     free = [conductors[i] for i in which]
     index = 0 if side == "start" else -1
     middle = np.mean([conductor.path[index] for conductor in free], axis=0)
-    return links(free, side, middle, "closing link", f"closing {side}")
+    inflow = total(load for conductor in free for load in conductor.loads)
+    made: tuple[Conductor, ...] = ()
+    if len(free) > 1:
+        made = links(free, side, middle, "closing link", f"closing {side}")
+    x, y, z = middle.tolist()
+    return Closing(made, (x, y, z), inflow if side == "end" else negative(inflow))
 
 
 def _refuse_short_legs(made: tuple[Slot, ...], found: Stations) -> None:
