@@ -58,7 +58,9 @@ def direct(current: float) -> DirectCurrents:
 
 def circuits() -> tuple[Circuit, ...]:
     """UPS input and output, and the battery."""
-    given = from_document("ups-data", "3", "demand", "spectrum", "voltage")
+    given = from_document(
+        "ups-data", "3", "supply", "base_frequency", "demand", "spectrum"
+    )
     return (
         Circuit(
             id="ups-input",
@@ -107,7 +109,7 @@ def string(number: int, y: float) -> ConductorLoop:
         share=0.5,
         shape=Round(diameter=0.024),
         origins=(
-            *from_document("room-drawing", "section", "path"),
+            *from_document("room-drawing", "section", "path", "turns", "shape"),
             assumed("share", "Equal strings."),
             assumed("shape.diameter", "Cable data sheet not at hand."),
         ),
@@ -131,6 +133,7 @@ def input_cables() -> Run:
         origins=(
             *from_document("room-drawing", "plan", "route", "section"),
             assumed("section.shape.diameter", "Cable data sheet not at hand."),
+            assumed("rated_current", "Cable data sheet not at hand."),
         ),
     )
 
@@ -157,7 +160,13 @@ def output_cables() -> Run:
         rated_current=520.0,
         origins=(
             *from_document("room-drawing", "plan", "route", "section"),
-            assumed("section.slots", "Diameters: cable data sheet not at hand."),
+            *(
+                assumed(
+                    f"section.slots.{i}.shape.diameter", "Cable data sheet not at hand."
+                )
+                for i in range(4)
+            ),
+            assumed("rated_current", "Cable data sheet not at hand."),
         ),
     )
 
@@ -184,6 +193,7 @@ def direct_link() -> Run:
         origins=(
             *from_document("room-drawing", "plan", "route", "section"),
             assumed("section.shape.diameter", "Cable data sheet not at hand."),
+            assumed("rated_current", "Cable data sheet not at hand."),
         ),
     )
 
@@ -204,7 +214,7 @@ def joints() -> tuple[Joint, ...]:
             id=id_,
             ends=tuple(SlotEnd(item=run, slot=slot, end=end) for slot in slots),
             at=at,
-            origins=from_document("room-drawing", "plan", "at"),
+            origins=from_document("room-drawing", "plan", "at", "category"),
         )
         for id_, run, slots, end, at in rows
     )
@@ -279,7 +289,14 @@ def battery_laboratory() -> Layout:
                 date="2024-05-10",
             ),
         ),
-        storeys=(Storey(id="ground", name="Ground floor", floor_level=0.0),),
+        storeys=(
+            Storey(
+                id="ground",
+                name="Ground floor",
+                floor_level=0.0,
+                origins=from_document("room-drawing", "section", "floor_level"),
+            ),
+        ),
         rooms=rooms(),
         enclosures=enclosures(),
         circuits=circuits(),

@@ -43,7 +43,9 @@ SOURCE_Z, LOAD_Z = -4.2, 12.6
 
 def circuits() -> tuple[Circuit, ...]:
     """The three feeders of the shaft."""
-    given = from_document("power-log", "1", "demand", "spectrum")
+    given = from_document(
+        "power-log", "1", "supply", "base_frequency", "demand", "spectrum"
+    )
     return (
         Circuit(
             id="R1",
@@ -98,7 +100,14 @@ def runs() -> tuple[Run, ...]:
     other in +y.
     """
     drawn = from_document("shaft-drawing", "section 2", "route", "section")
-    diameter = assumed("section.shape.diameter", "Cable data sheet not at hand.")
+    cable = (
+        assumed("section.shape.diameter", "Cable data sheet not at hand."),
+        assumed("rated_current", "Cable data sheet not at hand."),
+    )
+    one_cable = (
+        assumed("section.slots.0.shape.diameter", "Cable data sheet not at hand."),
+        assumed("rated_current", "Cable data sheet not at hand."),
+    )
     return (
         Run(
             id="R1-busway",
@@ -116,7 +125,11 @@ def runs() -> tuple[Run, ...]:
                 direction="down",
             ),
             rated_current=2500.0,
-            origins=(*drawn, assumed("section.width", "Usual for 2500 A.")),
+            origins=(
+                *drawn,
+                *from_document("shaft-drawing", "section 2", "rated_current"),
+                assumed("section.width", "Usual for 2500 A."),
+            ),
         ),
         Run(
             id="R2-ladder",
@@ -134,7 +147,7 @@ def runs() -> tuple[Run, ...]:
                 shape=Round(diameter=0.030),
             ),
             rated_current=1500.0,
-            origins=(*drawn, diameter),
+            origins=(*drawn, *cable),
         ),
         Run(
             id="R2-stray",
@@ -149,7 +162,10 @@ def runs() -> tuple[Run, ...]:
                 (7.5, -0.2, 12.6),
             ),
             section=single("R2", "stray", Round(diameter=0.02)),
-            origins=(assumed("route", "Shortest way over bonded steel."),),
+            origins=(
+                assumed("route", "Shortest way over bonded steel."),
+                assumed("section", "The steel's section is of no account far from it."),
+            ),
         ),
         Run(
             id="R3-lines",
@@ -165,7 +181,7 @@ def runs() -> tuple[Run, ...]:
                 shape=Round(diameter=0.020),
             ),
             rated_current=300.0,
-            origins=(*drawn, diameter),
+            origins=(*drawn, *cable),
         ),
         Run(
             id="R3-neutral",
@@ -175,7 +191,7 @@ def runs() -> tuple[Run, ...]:
             route=upright(6.2, -1.0),
             section=single("R3", "N", Round(diameter=0.020)),
             rated_current=300.0,
-            origins=(*drawn, diameter),
+            origins=(*drawn, *one_cable),
         ),
     )
 
@@ -247,10 +263,18 @@ def imaging_corridor() -> Layout:
                 date="2024-04-24",
             ),
         ),
-        storeys=(
-            Storey(id="first", name="Source storey", floor_level=-4.2),
-            Storey(id="second", name="Imaging storey", floor_level=0.0),
-            Storey(id="third", name="Third storey", floor_level=4.2),
+        storeys=tuple(
+            Storey(
+                id=id_,
+                name=name,
+                floor_level=level,
+                origins=from_document("department-plan", "1", "floor_level"),
+            )
+            for id_, name, level in (
+                ("first", "Source storey", -4.2),
+                ("second", "Imaging storey", 0.0),
+                ("third", "Third storey", 4.2),
+            )
         ),
         rooms=rooms(),
         enclosures=enclosures(),

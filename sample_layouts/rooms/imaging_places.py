@@ -72,7 +72,7 @@ def receptors() -> tuple[Receptor, ...]:
             reason=reason,
             category=category,
             levels=(level,),
-            origins=from_document("department-plan", "1", "at"),
+            origins=from_document("department-plan", "1", "at", "category"),
         )
         for id_, name, at, reason, category, level in places
     )
@@ -105,7 +105,9 @@ def rooms() -> tuple[Room, ...]:
 
 def enclosures() -> tuple[Enclosure, ...]:
     """The locked shaft and the clad steel column."""
-    drawn = from_document("department-plan", "1", "footprint", "z_from", "z_to")
+    drawn = from_document(
+        "department-plan", "1", "footprint", "z_from", "z_to", "state"
+    )
     return (
         Enclosure(
             id="locked-shaft",
@@ -128,7 +130,9 @@ def enclosures() -> tuple[Enclosure, ...]:
 
 def zones() -> tuple[Zone, ...]:
     """Corridor, bed, magnet and control room."""
-    drawn = from_document("department-plan", "1", "outline", "heights", "category")
+    drawn = from_document(
+        "department-plan", "1", "outline", "heights", "rule", "category"
+    )
     return (
         Zone(
             id="corridor-zone",

@@ -71,7 +71,7 @@ def receptors() -> tuple[Receptor, ...]:
             reason=reason,
             category=category,
             levels=(level,),
-            origins=from_document("room-drawing", "plan", "at"),
+            origins=from_document("room-drawing", "plan", "at", "category"),
         )
         for id_, name, at, reason, category, level in places
     )
@@ -118,7 +118,9 @@ def enclosures() -> tuple[Enclosure, ...]:
             footprint=footprint,
             z_from=0.0,
             z_to=height,
-            origins=from_document("room-drawing", "plan", "footprint", "z_to"),
+            origins=from_document(
+                "room-drawing", "plan", "footprint", "z_from", "z_to", "state"
+            ),
         )
         for id_, name, footprint, height in places
     )
@@ -126,7 +128,9 @@ def enclosures() -> tuple[Enclosure, ...]:
 
 def zones() -> tuple[Zone, ...]:
     """UPS room, laboratory, and the microscope's column."""
-    drawn = from_document("room-drawing", "plan", "outline", "heights", "category")
+    drawn = from_document(
+        "room-drawing", "plan", "outline", "heights", "rule", "category"
+    )
     return (
         Zone(
             id="ups-room-zone",
@@ -162,7 +166,7 @@ def zones() -> tuple[Zone, ...]:
             use="Microscopy",
             hours="day and night",
             levels=("example-a",),
-            origins=drawn,
+            origins=(*drawn, *from_document("room-drawing", "plan", "volume")),
         ),
     )
 

@@ -69,6 +69,7 @@ def circuits() -> tuple[Circuit, ...]:
         lagging((225, 15), (190, 15), (205, 15)),
         lagging((260, 32), (258, 32), (262, 32)),
     )
+    from_one_reading = (assumed("net_current", "From one clamp reading."),)
     return tuple(
         Circuit(
             id=feeder,
@@ -80,7 +81,17 @@ def circuits() -> tuple[Circuit, ...]:
                 harmonics(50.0, {3: percent}, offset_of_3rd=180.0) if percent else ()
             ),
             net_current=NeutralShare(share=0.15) if feeder == "F1" else None,
-            origins=from_document("load-list", feeder, "demand", "spectrum", "voltage"),
+            origins=(
+                *from_document(
+                    "load-list",
+                    feeder,
+                    "supply",
+                    "base_frequency",
+                    "demand",
+                    "spectrum",
+                ),
+                *(from_one_reading if feeder == "F1" else ()),
+            ),
         )
         for feeder, name, load, percent in zip(
             FEEDERS, names, loads, third_harmonic, strict=True
@@ -101,7 +112,7 @@ def transformer() -> Transformer:
         rated_power=1.6e6,
         voltage=400.0,
         footprint=rectangle(0.45, 1.55, 1.20, 3.15),
-        origins=from_document("room-drawing", "section A", "terminals", "rated_power"),
+        origins=from_document("room-drawing", "section A", "terminals", "star"),
     )
 
 
@@ -143,7 +154,15 @@ def board() -> Board:
         ways=ways,
         rated_current=2500.0,
         footprint=rectangle(2.40, 7.20, 4.35, 4.85),
-        origins=from_document("board-drawing", "1", "poles", "ways", "rated_current"),
+        origins=from_document(
+            "board-drawing",
+            "1",
+            "origin",
+            "direction",
+            "poles",
+            "ways",
+            "rated_current",
+        ),
     )
 
 
@@ -184,7 +203,7 @@ def link(k: int) -> Run:
         end=Connection(equipment="MDB", way="incoming"),
         rated_current=1250.0 if POLES[k] == "N" else 2500.0,
         origins=(
-            *from_document("room-drawing", "plan", "route", "section"),
+            *from_document("room-drawing", "plan", "route", "section", "turns"),
             assumed("rated_current", "Bar data not at hand."),
         ),
     )
@@ -217,7 +236,9 @@ def riser() -> Run:
         rated_current=850.0,
         containment="not steel",
         origins=(
-            *from_document("room-drawing", "section B", "route", "section"),
+            *from_document(
+                "room-drawing", "section B", "route", "section", "containment"
+            ),
             assumed("section.shape.diameter", "Cable data sheet not at hand."),
             assumed("rated_current", "Cable data sheet not at hand."),
         ),
@@ -252,7 +273,10 @@ def stray() -> Run:
             )
         ),
         start=Connection(equipment="T1", terminal="star"),
-        origins=(assumed("route", "Shortest way over bonded steel."),),
+        origins=(
+            assumed("route", "Shortest way over bonded steel."),
+            assumed("section", "The steel's section is of no account far from it."),
+        ),
     )
 
 
@@ -322,8 +346,18 @@ def office_over_switch_room() -> Layout:
         settings=Settings(frequency=50.0),
         documents=documents(),
         storeys=(
-            Storey(id="ground", name="Ground floor", floor_level=0.0),
-            Storey(id="first", name="First floor, raised floor", floor_level=4.10),
+            Storey(
+                id="ground",
+                name="Ground floor",
+                floor_level=0.0,
+                origins=from_document("room-drawing", "section A", "floor_level"),
+            ),
+            Storey(
+                id="first",
+                name="First floor, raised floor",
+                floor_level=4.10,
+                origins=from_document("room-drawing", "section A", "floor_level"),
+            ),
         ),
         rooms=rooms(),
         enclosures=enclosures(),

@@ -40,7 +40,7 @@ def receptors() -> tuple[Receptor, ...]:
             use="Office work",
             category="general public, long stay",
             levels=("example-a",),
-            origins=from_document("room-drawing", "plan", "at"),
+            origins=from_document("room-drawing", "plan", "at", "category"),
         )
         for id_, name, at, reason in places
     )
@@ -86,7 +86,9 @@ def rooms() -> tuple[Room, ...]:
 
 def enclosures() -> tuple[Enclosure, ...]:
     """Where nobody can stand."""
-    drawn = from_document("room-drawing", "plan", "footprint", "z_from", "z_to")
+    drawn = from_document(
+        "room-drawing", "plan", "footprint", "z_from", "z_to", "state"
+    )
     return (
         Enclosure(
             id="steel-column",
@@ -130,7 +132,13 @@ def zones() -> tuple[Zone, ...]:
             hours="8 h on working days",
             levels=("example-a",),
             origins=from_document(
-                "room-drawing", "plan", "outline", "floor_level", "heights", "category"
+                "room-drawing",
+                "plan",
+                "outline",
+                "floor_level",
+                "heights",
+                "rule",
+                "category",
             ),
         ),
         Zone(
@@ -145,7 +153,13 @@ def zones() -> tuple[Zone, ...]:
             hours="2 h a month",
             levels=("example-b",),
             origins=from_document(
-                "room-drawing", "plan", "outline", "floor_level", "heights", "category"
+                "room-drawing",
+                "plan",
+                "outline",
+                "floor_level",
+                "heights",
+                "rule",
+                "category",
             ),
         ),
     )

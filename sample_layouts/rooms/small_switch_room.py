@@ -10,12 +10,13 @@ from __future__ import annotations
 
 from typing import TypeVar
 
-from msgspec.structs import fields, replace
+from msgspec.structs import replace
 
 from engine.circuits import Circuit, LoadCase
 from engine.equipment import Board, Dropper, Pole, Way
 from engine.items import Item, SourceDocument, TitleData, ValueOrigin
 from engine.layout import Layout, Settings
+from engine.origins import ENTERED_VALUES
 from engine.places import (
     DecisionRule,
     Enclosure,
@@ -36,7 +37,13 @@ from engine.runs import (
     SlotEnd,
     Trefoil,
 )
-from rooms.invented import example_level, flat_then_falling, lagging, rectangle
+from rooms.invented import (
+    example_level,
+    flat_then_falling,
+    from_document,
+    lagging,
+    rectangle,
+)
 
 POLES = ("L1", "L2", "L3", "N")
 
@@ -44,32 +51,21 @@ AnItem = TypeVar("AnItem", bound=Item)
 
 
 def taken_from(item: AnItem, document: str, page: str) -> AnItem:
-    """The item with every value's origin in one place of a document."""
-    described = {"id", "name", "note", "origins"}
+    """The item with the origin of each of its values in one place of a document."""
     return replace(
-        item,
-        origins=tuple(
-            ValueOrigin(field=field.name, kind="document", document=document, page=page)
-            for field in fields(item)
-            if field.name not in described
-        ),
+        item, origins=from_document(document, page, *ENTERED_VALUES[type(item)])
     )
 
 
 def confirmed(item: AnItem) -> AnItem:
-    """The item with every value confirmed by the person who made the sample."""
-    described = {"id", "name", "note", "origins"}
+    """The item with each of its values confirmed by the person who made the sample."""
     return replace(
         item,
         origins=tuple(
             ValueOrigin(
-                field=field.name,
-                kind="confirmed",
-                by="R. Thornquist",
-                date="2024-02-05",
+                field=field, kind="confirmed", by="R. Thornquist", date="2024-02-05"
             )
-            for field in fields(item)
-            if field.name not in described
+            for field in ENTERED_VALUES[type(item)]
         ),
     )
 
@@ -276,21 +272,19 @@ def small_switch_room() -> Layout:
     """The layout of the first room."""
     cubicle, zone, chair = places()
     return Layout(
-        title=confirmed(
-            TitleData(
-                id="title",
-                project="Millbeck House (invented)",
-                client="Millbeck House Association (invented)",
-                document_number="MB-EMF-001",
-                revision="A",
-                status="for review",
-                date="2024-02-05",
-                prepared_by="R. Thornquist",
-                checked_by="M. Abelund",
-                question="How strong is the magnetic field in the reception behind "
-                "the switch room's wall?",
-                scope="Incoming bars, main board and the cables of the chiller.",
-            )
+        title=TitleData(
+            id="title",
+            project="Millbeck House (invented)",
+            client="Millbeck House Association (invented)",
+            document_number="MB-EMF-001",
+            revision="A",
+            status="for review",
+            date="2024-02-05",
+            prepared_by="R. Thornquist",
+            checked_by="M. Abelund",
+            question="How strong is the magnetic field in the reception behind "
+            "the switch room's wall?",
+            scope="Incoming bars, main board and the cables of the chiller.",
         ),
         settings=confirmed(
             Settings(
