@@ -1,0 +1,1 @@
+"""Tools: what press, move and release on the drawing mean, without any drawing."""

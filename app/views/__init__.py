@@ -1,0 +1,1 @@
+"""Views: the layout as pictures that answer to the pointer."""
