@@ -1,0 +1,36 @@
+"""Magnetic field of conductors in space: arrays in, arrays out, no layout."""
+
+from engine.field.cache import ResponseCache
+from engine.field.combined import Combined, combined
+from engine.field.masks import inside, near_field, surface_distance
+from engine.field.quantities import (
+    Cycle,
+    Ellipse,
+    Peak,
+    common_frequency,
+    cycle,
+    ellipse,
+    peak,
+    resultant,
+)
+from engine.field.sums import flux_density, responses, vector_potential
+
+__all__ = [
+    "Combined",
+    "Cycle",
+    "Ellipse",
+    "Peak",
+    "ResponseCache",
+    "combined",
+    "common_frequency",
+    "cycle",
+    "ellipse",
+    "flux_density",
+    "inside",
+    "near_field",
+    "peak",
+    "responses",
+    "resultant",
+    "surface_distance",
+    "vector_potential",
+]

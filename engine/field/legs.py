@@ -1,0 +1,217 @@
+"""Straight legs of conductors as rows of one table, and distances to their surfaces.
+
+A bar's leg is its rectangle swept between the planes that `Conductor.axes` spans at
+both ends (mitre planes at bends). A round conductor's leg is a cylinder with round
+joints. A leg over which the section twists counts as round, about its corners.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numba import njit
+from numpy.typing import NDArray
+
+from engine.conductor import Conductor
+from engine.field.kernel import Floats, Integers
+from engine.runs import Bar
+
+# Columns of the table.
+_START, _TANGENT, _WIDTH, _THICKNESS = 0, 3, 6, 9
+_LENGTH, _HALF_WIDTH, _HALF_THICKNESS, _FIRST, _LAST, _ROUND = 12, 13, 14, 15, 17, 19
+_COLUMNS = 20
+
+
+@dataclass(frozen=True, eq=False)
+class Legs:
+    """Every straight leg of some conductors, in order.
+
+    Attributes
+    ----------
+    table : (k, 20) float64
+        Frame, size and end planes of each leg, for the compiled functions.
+    conductor : (k,) int64
+        Index of each leg's conductor.
+    first : (m + 1,) int64
+        Conductor i has the legs first[i] to first[i + 1].
+    sides : (k, 2) float64
+        Width and thickness, or the diameter twice. [m]
+    round : (k,) bool
+        Whether the leg's conductor is round.
+    """
+
+    table: Floats
+    conductor: Integers
+    first: Integers
+    sides: Floats
+    round: NDArray[np.bool_]
+
+
+def sides_of(conductor: Conductor) -> tuple[float, float]:
+    """Width and thickness of the section, or its diameter twice. [m]"""
+    shape = conductor.shape
+    if isinstance(shape, Bar):
+        return shape.width, shape.thickness
+    return shape.diameter, shape.diameter
+
+
+def legs_of(conductors: Sequence[Conductor]) -> Legs:
+    """Tabulate the legs of the conductors."""
+    tables = [_table(conductor) for conductor in conductors]
+    counts = [len(table) for table in tables]
+    sides = np.array([sides_of(c) for c in conductors]).reshape(-1, 2)
+    is_round = np.array([not isinstance(c.shape, Bar) for c in conductors], bool)
+    owner = np.repeat(np.arange(len(conductors)), counts)
+    return Legs(
+        table=np.concatenate([np.zeros((0, _COLUMNS)), *tables]),
+        conductor=owner,
+        first=np.concatenate([[0], np.cumsum(counts, dtype=np.int64)]),
+        sides=sides[owner],
+        round=is_round[owner],
+    )
+
+
+def _table(conductor: Conductor) -> Floats:
+    path, axes = conductor.path, conductor.axes
+    steps = np.diff(path, axis=0)
+    lengths = np.linalg.norm(steps, axis=1)
+    tangents = steps / lengths[:, None]
+    table = np.zeros((len(steps), _COLUMNS))
+    table[:, _START : _START + 3] = path[:-1]
+    table[:, _TANGENT : _TANGENT + 3] = tangents
+    table[:, _LENGTH] = lengths
+    width, thickness = sides_of(conductor)
+    table[:, _HALF_WIDTH] = width / 2
+    table[:, _HALF_THICKNESS] = thickness / 2
+    if not isinstance(conductor.shape, Bar):
+        table[:, _ROUND] = 1
+        return table
+    along = np.einsum("ikx,ix->ik", axes[:-1], tangents)
+    ahead = np.einsum("ikx,ix->ik", axes[1:], tangents)
+    frames = axes[:-1] - along[:, :, None] * tangents[:, None, :]
+    ends = axes[1:] - ahead[:, :, None] * tangents[:, None, :]
+    table[:, _FIRST : _FIRST + 2] = along
+    table[:, _LAST : _LAST + 2] = ahead
+    # Rounding of long routes is far below; a turn of the section is far above.
+    twisted = np.abs(frames - ends).max(axis=(1, 2)) > 1e-6
+    table[:, _WIDTH : _WIDTH + 3] = frames[:, 0]
+    table[:, _THICKNESS : _THICKNESS + 3] = frames[:, 1]
+    table[twisted, _ROUND] = 1
+    table[twisted, _HALF_WIDTH] = np.hypot(width, thickness) / 2
+    return table
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def _leg_distance(leg: Floats, x: float, y: float, z: float) -> float:
+    dx, dy, dz = x - leg[0], y - leg[1], z - leg[2]
+    along = dx * leg[3] + dy * leg[4] + dz * leg[5]
+    if leg[_ROUND] > 0:
+        along = min(max(along, 0.0), leg[_LENGTH])
+        dx -= along * leg[3]
+        dy -= along * leg[4]
+        dz -= along * leg[5]
+        beyond = np.sqrt(dx * dx + dy * dy + dz * dz) - leg[_HALF_WIDTH]
+        return max(float(beyond), 0.0)
+    a = dx * leg[6] + dy * leg[7] + dz * leg[8]
+    b = dx * leg[9] + dy * leg[10] + dz * leg[11]
+    near_a = min(max(a, -leg[_HALF_WIDTH]), leg[_HALF_WIDTH])
+    near_b = min(max(b, -leg[_HALF_THICKNESS]), leg[_HALF_THICKNESS])
+    low = near_a * leg[15] + near_b * leg[16]
+    high = leg[_LENGTH] + near_a * leg[17] + near_b * leg[18]
+    near_along = max(min(along, high), low)
+    a -= near_a
+    b -= near_b
+    along -= near_along
+    return float(np.sqrt(a * a + b * b + along * along))
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def nearest_surface(table: Floats, points: Floats) -> Floats:
+    """Distance of each point to the nearest leg's surface, 0 inside, inf of none."""
+    out = np.full(points.shape[0], np.inf)
+    for i in range(points.shape[0]):
+        for k in range(table.shape[0]):
+            d = _leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
+            out[i] = min(out[i], d)
+    return out
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def any_nearer(table: Floats, limits: Floats, points: Floats) -> NDArray[np.bool_]:
+    """Whether some leg's surface is nearer to the point than that leg's limit."""
+    out = np.zeros(points.shape[0], np.bool_)
+    for i in range(points.shape[0]):
+        for k in range(table.shape[0]):
+            d = _leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
+            if d < limits[k] or d == 0.0:
+                out[i] = True
+                break
+    return out
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def _end_distance(leg: Floats, x: float, y: float, z: float) -> float:
+    dx, dy, dz = x - leg[0], y - leg[1], z - leg[2]
+    first = dx * dx + dy * dy + dz * dz
+    dx -= leg[_LENGTH] * leg[3]
+    dy -= leg[_LENGTH] * leg[4]
+    dz -= leg[_LENGTH] * leg[5]
+    return float(np.sqrt(min(first, dx * dx + dy * dy + dz * dz)))
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def tile_distances(
+    table: Floats, exact_within: Floats, points: Floats, tile: int, floor: float
+) -> Floats:
+    """Least distances of the points of each tile to each leg.
+
+    Parameters
+    ----------
+    table : (k, 20) float64
+        Legs.
+    exact_within : (k,) float64
+        Beyond it a lower bound by the tile's sphere will do. [m]
+    points : (n, 3) float64
+        Tile i holds the points from i·tile on. [m]
+    floor : float
+        Nothing nearer is reported; points inside a leg do not count. [m]
+
+    Returns
+    -------
+    (tiles, k, 2) float64
+        To the leg's surface, and to the nearer end of its axis. [m]
+    """
+    n = points.shape[0]
+    tiles = (n + tile - 1) // tile
+    out = np.empty((tiles, table.shape[0], 2))
+    for j in range(tiles):
+        own = points[j * tile : min(n, (j + 1) * tile)]
+        low = own[0].copy()
+        high = own[0].copy()
+        for i in range(own.shape[0]):
+            for axis in range(3):
+                low[axis] = min(low[axis], own[i, axis])
+                high[axis] = max(high[axis], own[i, axis])
+        x, y, z = (low[0] + high[0]) / 2, (low[1] + high[1]) / 2, (low[2] + high[2]) / 2
+        radius = np.sqrt(np.sum((high - low) ** 2)) / 2
+        for k in range(table.shape[0]):
+            leg = table[k]
+            near = _leg_distance(leg, x, y, z) - radius
+            end = _end_distance(leg, x, y, z) - radius
+            if near < exact_within[k]:
+                near = np.inf
+                end = np.inf
+                for i in range(own.shape[0]):
+                    d = _leg_distance(leg, own[i, 0], own[i, 1], own[i, 2])
+                    if d > 0.0:
+                        near = min(near, d)
+                        e = _end_distance(leg, own[i, 0], own[i, 1], own[i, 2])
+                        end = min(end, e)
+                if near == np.inf:
+                    near = floor
+                    end = max(_end_distance(leg, x, y, z) - radius, floor)
+            out[j, k, 0] = max(near, floor)
+            out[j, k, 1] = max(end, floor)
+    return out

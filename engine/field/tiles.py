@@ -1,0 +1,173 @@
+"""Samples cut into tiles, and their computation on a pool of threads.
+
+The compiled kernel releases the interpreter's lock, so that threads are enough.
+"""
+
+from __future__ import annotations
+
+import os
+from collections import OrderedDict
+from collections.abc import Callable, Sequence
+from concurrent.futures import FIRST_COMPLETED, ThreadPoolExecutor, wait
+from dataclasses import dataclass
+from threading import Event, Lock
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.conductor import Conductor
+from engine.errors import Cancelled, Progress, stop_if
+from engine.field.filaments import Filaments, Orders, filaments_of, orders_of
+from engine.field.kernel import TILE, Floats, Integers
+from engine.field.legs import Legs, legs_of
+from engine.field.points import as_points, compact_order
+
+#: Seconds between two looks at whether to stop.
+_PATIENCE = 0.05
+
+#: Segments of the filament sets that one request keeps for its next tiles.
+_MOST_SEGMENTS = 2_000_000
+
+#: What one tile computes: its filaments, its points, and the rows they have.
+Work = Callable[[Filaments, Floats, Integers], None]
+
+
+@dataclass(frozen=True, eq=False)
+class Tiling:
+    """Points in compact tiles, with the filament numbers of every leg in each tile.
+
+    Attributes
+    ----------
+    points : (n, 3) float64
+        In the caller's order. [m]
+    order : (n,) int64
+        Tile j holds the points ``order[j * TILE:(j + 1) * TILE]``.
+    orders : (tiles, legs, 2) int16
+        See `filaments.orders_of`.
+    """
+
+    conductors: tuple[Conductor, ...]
+    legs: Legs
+    points: Floats
+    order: Integers
+    orders: Orders
+
+    def numbers(self, tile: int, conductor: int) -> Orders:
+        """(legs, 2) filament numbers of one conductor in one tile."""
+        first, last = self.legs.first[conductor : conductor + 2]
+        return self.orders[tile, first:last]
+
+
+def tiling_of(conductors: Sequence[Conductor], points: Floats) -> Tiling:
+    """Cut the points into tiles and choose the filaments for each."""
+    checked = as_points(points)
+    order = compact_order(checked)
+    legs = legs_of(conductors)
+    orders = orders_of(conductors, legs, checked[order])
+    return Tiling(tuple(conductors), legs, checked, order, orders)
+
+
+def over_tiles(
+    tiling: Tiling,
+    which: Sequence[int],
+    work: Work,
+    cancelled: Cancelled | None,
+    progress: Progress | None,
+) -> None:
+    """Do the work for every tile, with the filaments of the conductors `which`.
+
+    Raises
+    ------
+    ComputationCancelled
+        When `cancelled` says so; it is asked, as `progress` is told, by the caller's
+        thread.
+    """
+    count = len(tiling.orders)
+    stop_if(cancelled)
+    if count == 0 or not which:
+        return
+    shared = _SharedFilaments(tiling, which)
+    stopped = Event()
+    batch = max(1, min(8, count // 32))
+
+    def run(first: int) -> int:
+        last = min(count, first + batch)
+        for tile in range(first, last):
+            if stopped.is_set():
+                break
+            rows = tiling.order[tile * TILE : (tile + 1) * TILE]
+            work(shared.of(tile), tiling.points[rows], rows)
+        return last - first
+
+    done = 0
+    with ThreadPoolExecutor(_threads(), thread_name_prefix="field") as pool:
+        pending = {pool.submit(run, first) for first in range(0, count, batch)}
+        try:
+            while pending:
+                finished, pending = wait(pending, _PATIENCE, FIRST_COMPLETED)
+                done += sum(future.result() for future in finished)
+                stop_if(cancelled)
+                if progress is not None and finished:
+                    progress(done / count, "summing the field")
+        except BaseException:
+            stopped.set()
+            pool.shutdown(wait=True, cancel_futures=True)
+            raise
+
+
+def _threads() -> int:
+    if hasattr(os, "sched_getaffinity"):
+        return len(os.sched_getaffinity(0))
+    return os.cpu_count() or 1
+
+
+class _SharedFilaments:
+    """Filaments by their numbers: most tiles far away have the same ones."""
+
+    def __init__(self, tiling: Tiling, which: Sequence[int]) -> None:
+        self._tiling = tiling
+        self._which = which
+        self._conductors = [tiling.conductors[i] for i in which]
+        mine = np.isin(tiling.legs.conductor, np.array(which))
+        self._keys = tiling.orders[:, mine]
+        self._kept: OrderedDict[bytes, Filaments] = OrderedDict()
+        self._segments = 0
+        self._lock = Lock()
+
+    def of(self, tile: int) -> Filaments:
+        key = self._keys[tile].tobytes()
+        with self._lock:
+            found = self._kept.get(key)
+            if found is not None:
+                self._kept.move_to_end(key)
+                return found
+        numbers = [self._tiling.numbers(tile, i) for i in self._which]
+        made = filaments_of(self._conductors, numbers)
+        with self._lock:
+            if key not in self._kept:
+                self._kept[key] = made
+                self._segments += made.segments
+            while self._segments > _MOST_SEGMENTS and len(self._kept) > 1:
+                _, dropped = self._kept.popitem(last=False)
+                self._segments -= dropped.segments
+        return made
+
+
+def complex_currents(
+    conductors: Sequence[Conductor], currents: NDArray[np.complex128]
+) -> NDArray[np.complex128]:
+    """Check currents (c, m) against the conductors (m). [A]
+
+    Raises
+    ------
+    ValueError
+        When the shape is another or a current is not finite.
+    """
+    array = np.asarray(currents, dtype=np.complex128)
+    if array.ndim != 2 or array.shape[1] != len(conductors):
+        raise ValueError(
+            f"currents must be (components, {len(conductors)}), not {array.shape}"
+        )
+    if not np.isfinite(array).all():
+        raise ValueError("currents must be finite")
+    return array
