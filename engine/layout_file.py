@@ -7,10 +7,7 @@ default are left out. Writing replaces the old file only when the new one is who
 from __future__ import annotations
 
 import codecs
-import contextlib
 import json
-import os
-import secrets
 from collections.abc import Iterator
 from pathlib import Path
 from typing import Annotated, Any
@@ -24,6 +21,7 @@ from engine.items import Value
 from engine.layout import Layout
 from engine.runs import FreeSection, ParallelSets, Run, StackedBars
 from engine.value_faults import faults, told
+from engine.written_file import write_file
 
 #: Largest file that is opened. [bytes]
 MAX_BYTES = 200_000_000
@@ -74,20 +72,7 @@ def write(path: str | Path, layout: Layout) -> None:
     UserError
         When the layout could not be read back, or the file cannot be written.
     """
-    path = Path(path)
-    data = encode(layout)
-    try:
-        target = Path(os.path.realpath(path))
-        if target.is_dir():
-            raise UserError(f"{path.name} was not saved: it is a folder.")
-        if target.exists() and not os.access(target, os.W_OK):
-            raise UserError(f"{path.name} was not saved: it is write-protected.")
-        _replace(target, data)
-    except (OSError, ValueError) as error:
-        raise UserError(
-            f"{path.name} was not saved: {_reason(error)}. "
-            "What stood there before is unchanged."
-        ) from error
+    write_file(path, encode(layout))
 
 
 def decode(data: bytes, where: str) -> Layout:
@@ -341,38 +326,6 @@ def _scalar(value: Any) -> str:
     if isinstance(value, float) and value.is_integer() and abs(value) < 1e15:
         return str(int(value))
     return json.dumps(value, ensure_ascii=False)
-
-
-def _replace(target: Path, data: bytes) -> None:
-    """Write beside `target`, then put it in its place in one step."""
-    beside = target.with_name(f".{target.name[:100]}.{secrets.token_hex(6)}.part")
-    flags = os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0)
-    descriptor = os.open(beside, flags, 0o666)
-    try:
-        with os.fdopen(descriptor, "wb") as file:
-            file.write(data)
-            file.flush()
-            os.fsync(file.fileno())
-        if target.exists():
-            beside.chmod(target.stat().st_mode & 0o7777)
-        os.replace(beside, target)
-    except BaseException:
-        with contextlib.suppress(OSError):
-            beside.unlink()
-        raise
-    _sync_folder(target.parent)
-
-
-def _sync_folder(folder: Path) -> None:
-    """Make the new name last through a loss of power, where folders allow it."""
-    if os.name != "posix":
-        return
-    with contextlib.suppress(OSError):
-        descriptor = os.open(folder, os.O_RDONLY)
-        try:
-            os.fsync(descriptor)
-        finally:
-            os.close(descriptor)
 
 
 def _reason(error: Exception) -> str:
