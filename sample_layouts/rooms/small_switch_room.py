@@ -332,7 +332,7 @@ def small_switch_room() -> Layout:
             example_level(
                 "A",
                 "general public, long stay",
-                flat_then_falling(8.3e-6, 71.0, 2000.0),
+                flat_then_falling(5.3e-6, 71.0, 2000.0),
                 use="Compared with the reception.",
             ),
         ),
