@@ -19,12 +19,14 @@ from listed_rooms import Phasors, Pieces, Point, add_path, place
 from msgspec.structs import replace
 
 from engine import layout_file
+from engine.assessment import assess, worst_comparisons
 from engine.conductor import Conductor
 from engine.conductors import conductors, nodes
 from engine.currents import CasePhasors, case_phasors, conductor_currents
 from engine.faults import faults
 from engine.field import combined, flux_density
 from engine.layout import Layout
+from engine.remarks import remarks
 from engine.runs import Bar
 
 ROOT = Path(__file__).resolve().parent.parent
@@ -334,3 +336,19 @@ def test_without_the_bond_nothing_flows_in_the_steel() -> None:
         circuits=tuple(replace(c, net_current=None) for c in layout.circuits),
     )
     assert not phasors_of(mended, "as-logged").of("R2", "stray").any()
+
+
+# ---- the first room, which a newcomer opens
+
+
+def test_first_room_leaves_nothing_to_remark_on() -> None:
+    layout = sample("small-switch-room")
+    assert remarks(layout) == ()
+    assert remarks(layout, assess(layout)) == ()
+
+
+def test_every_comparison_of_the_first_room_is_below() -> None:
+    assessment = assess(sample("small-switch-room"))
+    states = [c.state for c in worst_comparisons(assessment)]
+    assert states
+    assert set(states) == {"below"}

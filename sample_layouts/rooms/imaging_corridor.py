@@ -287,19 +287,19 @@ def imaging_corridor() -> Layout:
             example_level(
                 "A",
                 "general public, short stay",
-                flat_then_falling(137e-7, 67.0, 3000.0),
+                flat_then_falling(463e-7, 67.0, 3000.0),
                 use="Compared with the corridor.",
             ),
             example_level(
                 "B",
                 "equipment",
-                milligauss((60, 7.3), (180, 4.7), (300, 3.9), (420, 3.1)),
+                milligauss((60, 11.7), (180, 8.9), (300, 6.1), (420, 4.3)),
                 use="Compared with the magnet.",
             ),
             example_level(
                 "C",
                 "equipment",
-                milligauss((60, 3.7), (180, 2.3), (300, 1.9), (420, 1.3)),
+                milligauss((60, 9.3), (180, 17.9), (300, 6.7), (420, 4.7)),
                 use="Compared with the stress-test bed.",
             ),
             example_level(
