@@ -9,34 +9,41 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from itertools import pairwise
 from typing import Literal
 
 import numpy as np
-import shapely
-from shapely.geometry import MultiPoint, Polygon
+import numpy.typing as npt
+from shapely.geometry import Polygon
 
 from engine.conductor import Conductor
 from engine.equipment import Board, ConductorLoop, Equipment, Transformer
 from engine.layout import Layout
+from engine.outlines import Area, Line, Point, band, bar_footprint
 from engine.places import Enclosure, Receptor, Room, Zone
-from engine.runs import Bar, Run
+from engine.run_conductors import N_KEPT, Same
+from engine.runs import Run
+from engine.sight import PLAN, Sight
 
-Point = tuple[float, float]
-Line = tuple[Point, ...]
+__all__ = [
+    "Area",
+    "Line",
+    "Mark",
+    "Place",
+    "Plan",
+    "Point",
+    "Rise",
+    "RunShape",
+    "Strand",
+    "bar_footprint",
+    "plan",
+    "run_shape",
+    "strand",
+]
 
-#: A leg that moves less than this on plan is drawn as a rise or a fall. [m]
-_VERTICAL = 1e-3
-
-_CIRCLE = np.linspace(0.0, 2.0 * math.pi, 16, endpoint=False)
-
-
-@dataclass(frozen=True)
-class Area:
-    """A filled shape on plan: its outline and the holes in it. [m]"""
-
-    outline: Line
-    holes: tuple[Line, ...] = ()
+#: A leg that moves less than this in the picture is drawn as a rise or a fall. [m]
+_END_ON = 1e-3
 
 
 @dataclass(frozen=True)
@@ -55,22 +62,35 @@ class Place:
     @property
     def label_place(self) -> Point:
         """A point well inside the outline."""
-        inside = Polygon(self.area.outline).buffer(0).representative_point()
+        outline = Polygon(self.area.outline).buffer(0)
+        if outline.is_empty:
+            x, y = np.mean(self.area.outline, axis=0).tolist()
+            return (x, y)
+        inside = outline.representative_point()
         return (float(inside.x), float(inside.y))
 
 
 @dataclass(frozen=True)
 class Rise:
-    """A vertical leg, seen from above: going up or down along the current."""
+    """A leg seen end-on: on plan a vertical one, going up or down along the current.
+
+    On an elevation `z_from` and `z_to` are coordinates along its `axis`.
+    """
 
     at: Point
     z_from: float
     z_to: float
+    axis: str = "z"
 
     @property
     def goes_up(self) -> bool:
-        """Whether the current's direction is upwards."""
+        """Whether the current's direction is that of the rising axis."""
         return self.z_to > self.z_from
+
+    @property
+    def comes_nearer(self) -> bool:
+        """Whether the current flows towards the viewer."""
+        return self.goes_up == (self.axis == "z")
 
 
 @dataclass(frozen=True)
@@ -85,6 +105,8 @@ class Strand:
     line: Line
     areas: tuple[Area, ...]
     levels: tuple[float, float]
+    #: Grows towards the viewer; what is nearer is drawn later. [m]
+    nearness: float = 0.0
 
 
 @dataclass(frozen=True)
@@ -110,11 +132,12 @@ class RunShape:
 
 @dataclass(frozen=True)
 class Mark:
-    """A receptor. [m]"""
+    """A receptor: where it is, and where that shows in the picture. [m]"""
 
     item: str
     title: str
     at: tuple[float, float, float]
+    seen: Point
 
 
 @dataclass(frozen=True)
@@ -150,7 +173,7 @@ class Plan:
             for area in run.areas:
                 yield from area.outline
         for mark in self.receptors:
-            yield mark.at[:2]
+            yield mark.seen
 
 
 def plan(layout: Layout, conductors: Sequence[Conductor]) -> Plan:
@@ -173,19 +196,12 @@ def plan(layout: Layout, conductors: Sequence[Conductor]) -> Plan:
             for unit in layout.equipment
             if (place := _footprint(unit)) is not None
         ),
-        equipment_strands=tuple(
-            _strand(c) for c in conductors if c.role == "equipment"
-        ),
-        runs=tuple(_run(run, of_item.get(run.id, ())) for run in layout.runs),
-        links=tuple(_strand(c) for c in conductors if c.role.endswith("link")),
+        equipment_strands=tuple(strand(c) for c in conductors if c.role == "equipment"),
+        runs=tuple(run_shape(run, of_item.get(run.id, ())) for run in layout.runs),
+        links=tuple(strand(c) for c in conductors if c.role.endswith("link")),
         zones=tuple(_zone(zone, layout) for zone in layout.zones),
         receptors=tuple(_mark(receptor) for receptor in layout.receptors),
     )
-
-
-def bar_footprint(conductor: Conductor) -> tuple[Area, ...]:
-    """The true outline of a conductor on plan, over all its legs."""
-    return _areas(_leg_hulls(_corners(conductor)))
 
 
 def _room(room: Room) -> Place:
@@ -217,7 +233,7 @@ def _zone(zone: Zone, layout: Layout) -> Place:
 
 
 def _mark(receptor: Receptor) -> Mark:
-    return Mark(receptor.id, receptor.title, receptor.at)
+    return Mark(receptor.id, receptor.title, receptor.at, receptor.at[:2])
 
 
 def _footprint(unit: Equipment) -> Place | None:
@@ -231,28 +247,56 @@ def _footprint(unit: Equipment) -> Place | None:
     return Place(unit.id, unit.title, "equipment", Area(unit.footprint))
 
 
-def _run(run: Run, conductors: Sequence[Conductor]) -> RunShape:
-    own = [c for c in conductors if c.role == "run"]
+def run_shape(
+    run: Run, conductors: Sequence[Conductor], sight: Sight = PLAN
+) -> RunShape:
+    """A run as seen; the identical shape again while run and conductors are the same.
+
+    Parameters
+    ----------
+    run : Run
+    conductors : sequence of Conductor
+        Those of the run and its links; without them, the run shows as its route.
+    """
+    own = tuple(Same(c) for c in conductors if c.role == "run")
+    return _run_shape(Same(run), own, sight)
+
+
+@lru_cache(maxsize=N_KEPT)
+def _run_shape(
+    same: Same[Run], conductors: tuple[Same[Conductor], ...], sight: Sight
+) -> RunShape:
+    run, own = same.value, [each.value for each in conductors]
     heights = [float(z) for c in own for z in c.path[:, 2]] or [p[2] for p in run.route]
     return RunShape(
         item=run.id,
         title=run.title,
         kind=run.kind,
-        route=tuple((x, y) for x, y, _ in run.route),
-        areas=_run_areas(own),
-        strands=tuple(_strand(c) for c in own),
-        rises=tuple(_rises(run)),
+        route=_line(sight.seen(run.route)),
+        areas=band(own, sight),
+        strands=tuple(strand(c, sight) for c in own),
+        rises=tuple(_rises(run, sight)),
         levels=(min(heights), max(heights)),
     )
 
 
-def _rises(run: Run) -> Iterable[Rise]:
-    for a, b in pairwise(run.route):
-        if math.dist(a[:2], b[:2]) < _VERTICAL and abs(b[2] - a[2]) > _VERTICAL:
-            yield Rise((a[0], a[1]), a[2], b[2])
+def _rises(run: Run, sight: Sight) -> Iterable[Rise]:
+    along = sight.axis
+    index = "xyz".index(along)
+    seen = _line(sight.seen(run.route))
+    for (a, b), (p, q) in zip(pairwise(run.route), pairwise(seen), strict=True):
+        if math.dist(p, q) < _END_ON and abs(b[index] - a[index]) > _END_ON:
+            yield Rise(p, a[index], b[index], along)
 
 
-def _strand(conductor: Conductor) -> Strand:
+def strand(conductor: Conductor, sight: Sight = PLAN) -> Strand:
+    """A conductor as seen; the identical shape again for the same conductor."""
+    return _strand(Same(conductor), sight)
+
+
+@lru_cache(maxsize=2 * N_KEPT)
+def _strand(same: Same[Conductor], sight: Sight) -> Strand:
+    conductor = same.value
     labels = dict.fromkeys(load.label for load in conductor.loads)
     z = conductor.path[:, 2]
     return Strand(
@@ -260,58 +304,12 @@ def _strand(conductor: Conductor) -> Strand:
         item=conductor.item,
         letters=" + ".join(labels),
         role=conductor.role,
-        line=tuple((float(x), float(y)) for x, y in conductor.path[:, :2]),
-        areas=bar_footprint(conductor),
+        line=_line(sight.seen(conductor.path)),
+        areas=bar_footprint(conductor, sight),
         levels=(float(z.min()), float(z.max())),
+        nearness=-float(sight.depth(conductor.path).min()),
     )
 
 
-def _corners(conductor: Conductor) -> np.ndarray:
-    """Outline of the section at every vertex, on plan: (n, k, 2)."""
-    shape = conductor.shape
-    if isinstance(shape, Bar):
-        half = 0.5 * np.array([shape.width, shape.thickness])
-        around = half * np.array([(-1.0, -1.0), (1.0, -1.0), (1.0, 1.0), (-1.0, 1.0)])
-    else:
-        around = 0.5 * shape.diameter * np.stack([np.cos(_CIRCLE), np.sin(_CIRCLE)], 1)
-    offsets = np.einsum("ka,nax->nkx", around, conductor.axes)
-    return np.asarray((conductor.path[:, None, :] + offsets)[:, :, :2])
-
-
-def _leg_hulls(corners: np.ndarray) -> list[Polygon]:
-    """Convex outline of each leg, given the points of the section at its ends."""
-    hulls = []
-    for start, end in pairwise(corners):
-        hull = MultiPoint(np.concatenate([start, end])).convex_hull
-        if isinstance(hull, Polygon):
-            hulls.append(hull)
-    return hulls
-
-
-def _run_areas(conductors: Sequence[Conductor]) -> tuple[Area, ...]:
-    """The band that all conductors of a run fill together."""
-    if not conductors:
-        return ()
-    corners = [_corners(c) for c in conductors]
-    if len({len(c) for c in corners}) > 1:
-        return _areas([hull for c in corners for hull in _leg_hulls(c)])
-    return _areas(_leg_hulls(np.concatenate(corners, axis=1)))
-
-
-def _areas(polygons: Sequence[Polygon]) -> tuple[Area, ...]:
-    if not polygons:
-        return ()
-    merged = shapely.union_all(polygons)
-    return tuple(
-        Area(
-            _ring(part.exterior.coords), tuple(_ring(h.coords) for h in part.interiors)
-        )
-        for part in shapely.get_parts(merged)
-        if isinstance(part, Polygon)
-    )
-
-
-def _ring(coordinates: Iterable[Sequence[float]]) -> Line:
-    """The points of a ring without its repeated last one."""
-    points = [(float(p[0]), float(p[1])) for p in coordinates]
-    return tuple(points[:-1])
+def _line(points: npt.NDArray[np.float64]) -> Line:
+    return tuple((float(x), float(y)) for x, y in points)
