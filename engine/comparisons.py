@@ -1,0 +1,123 @@
+"""Comparisons of one place with its levels, in every load case."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import replace
+
+import numpy as np
+
+from engine.comparability import blocking_sentences, obstacles
+from engine.criteria import ReferenceLevel
+from engine.decisions import state_of
+from engine.evaluations import Quantity
+from engine.levels import Kind, is_kind, level_at, ratios
+from engine.loaded_layout import LoadedLayout
+from engine.place_details import root_sum_of_squares
+from engine.places import Receptor, Uncertainty, Zone
+from engine.results import Comparison, PlaceDetails
+from engine.zone_search import Found
+
+KINDS: tuple[Kind, ...] = ("AC", "DC")
+
+#: The largest value of each quantity that was looked for, and its place.
+Largest = Mapping[Quantity, tuple[Found, PlaceDetails]]
+
+
+def _levels(loaded: LoadedLayout, place: Zone | Receptor) -> list[ReferenceLevel]:
+    known = {level.id: level for level in loaded.layout.levels}
+    return [known[id] for id in dict.fromkeys(place.levels) if id in known]
+
+
+def quantities(loaded: LoadedLayout, place: Zone | Receptor) -> list[Quantity]:
+    """What is to be looked for: resultants, and every comparison that can be made."""
+    wanted = []
+    for k, case in enumerate(loaded.fields.cases):
+        frequencies = case.frequencies
+        for kind in KINDS:
+            if any(is_kind(f, kind) for f in frequencies):
+                wanted.append(Quantity(k, kind))
+        for level in _levels(loaded, place):
+            if not obstacles(place, level, frequencies):
+                compared = ratios(level, {f: np.zeros(1) for f in frequencies})
+                if compared.ac is not None:
+                    wanted.append(Quantity(k, "AC", level))
+                if compared.dc is not None:
+                    wanted.append(Quantity(k, "DC", level))
+    return wanted
+
+
+def comparisons(
+    loaded: LoadedLayout,
+    place: Zone | Receptor,
+    found: Largest,
+    problems: Mapping[str, str],
+    shares: Mapping[str, float],
+) -> tuple[Comparison, ...]:
+    """Every level of a place in every case, in that order."""
+    known = {level.id: level for level in loaded.layout.levels}
+    made = []
+    for level_id in dict.fromkeys(place.levels):
+        for result in loaded.cases:
+            case = result.case
+            empty = Comparison(
+                place.id, level_id, case.id, case.counted, "not evaluable",
+                masked_share=shares.get(case.id, 0.0),
+            )  # fmt: skip
+            reasons = list(blocking_sentences(loaded.layout, place, result.faults))
+            level = known.get(level_id)
+            if level is not None:
+                reasons += obstacles(place, level, result.frequencies)
+            elif not reasons:
+                reasons.append(f"The level “{level_id}” is not in the layout.")
+            reasons += [t for t in (result.reason, problems.get(case.id, "")) if t]
+            if reasons or level is None:
+                reason = " ".join(dict.fromkeys(reasons))
+                made.append(replace(empty, reason=reason))
+                continue
+            index = loaded.index[case.id]
+            kinds = [Quantity(index, kind, level) for kind in KINDS]
+            reached = {q: found[q] for q in kinds if q in found}
+            assert reached, "a comparison that can be made was looked for"
+            made.append(_compared(loaded, place, empty, level, reached))
+    return tuple(made)
+
+
+def _compared(
+    loaded: LoadedLayout,
+    place: Zone | Receptor,
+    empty: Comparison,
+    level: ReferenceLevel,
+    reached: Largest,
+) -> Comparison:
+    """A comparison that can be made: AC or DC, whichever has the larger ratio."""
+    quantity = max(reached, key=lambda q: reached[q][0].score)
+    largest, details = reached[quantity]
+    others = [f.score for q, (f, _) in reached.items() if q is not quantity]
+    value = float(root_sum_of_squares(list(largest.by_frequency.values())))
+    limits = [level_at(level, f) for f in largest.by_frequency]
+    known = [limit for limit in limits if limit is not None]
+    rule = place.uncertainty or loaded.layout.settings.uncertainty
+    # The absolute part may lie at the frequency that counts most.
+    spread = rule.relative * largest.score + rule.absolute / min(known)
+    frequencies = loaded.fields.cases[quantity.case].frequencies
+    compared = ratios(level, {f: np.zeros(1) for f in frequencies})
+    return replace(
+        empty,
+        state=state_of(largest.score, spread),
+        kind=quantity.kind,
+        value=value,
+        level_value=known[0] if len(limits) == 1 else None,
+        ratio=largest.score,
+        uncertainty_ratio=spread,
+        uncertainty=expanded(rule, value),
+        other_kind_ratio=others[0] if others else None,
+        area_above=largest.area_above if isinstance(place, Zone) else None,
+        not_covered=compared.not_covered,
+        details=details,
+    )
+
+
+def expanded(rule: Uncertainty, value: float) -> float:
+    """Expanded uncertainty U = relative · B + absolute. [T]"""
+    return rule.relative * value + rule.absolute

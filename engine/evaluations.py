@@ -1,0 +1,127 @@
+"""A quantity at places: ratio to a level or resultant, averaged where the rule says."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine import field
+from engine.case_fields import CaseCurrents, CaseFields
+from engine.criteria import ReferenceLevel
+from engine.levels import Kind, is_kind, ratios
+from engine.readings import reading
+from engine.regions import Region
+
+Floats = NDArray[np.float64]
+Complexes = NDArray[np.complex128]
+Bools = NDArray[np.bool_]
+
+
+@dataclass(frozen=True)
+class Quantity:
+    """What is to be largest: the ratio to a level, or the RMS resultant without one."""
+
+    case: int
+    kind: Kind
+    level: ReferenceLevel | None = None
+
+    def same_place_as(self, frequencies: Sequence[float]) -> tuple[object, ...]:
+        """Quantities of equal key are proportional, so largest at the same place."""
+        own = [f for f in frequencies if is_kind(f, self.kind)]
+        if len(own) != 1:
+            return (self.case, self.kind, None if self.level is None else self.level.id)
+        if self.level is None:
+            return (self.case, self.kind, "RMS", "resultant")
+        return (self.case, self.kind, self.level.basis, self.level.component)
+
+
+class Evaluation:
+    """One case's field at positions, averaged over the heights of each.
+
+    Parameters
+    ----------
+    b : (c, q p, 3) complex
+        RMS phasors, offset by offset. [T]
+    masked : (q p,) bool
+        Left out of the means; a position is masked where all of its heights are.
+    q : int
+        Heights over each position.
+    """
+
+    def __init__(self, case: CaseCurrents, b: Complexes, masked: Bools, q: int) -> None:
+        self._case, self._b = case, b
+        self._counts = ~masked.reshape(q, -1)
+        self._readings: dict[
+            tuple[str, str], tuple[dict[float, Floats], bool, str]
+        ] = {}
+
+    @property
+    def masked(self) -> Bools:
+        """(p,) positions without a value."""
+        nowhere: Bools = ~np.any(self._counts, axis=0)
+        return nowhere
+
+    def _mean(self, values: Floats) -> Floats:
+        """(p,) means of (q p,) values over the heights where somebody can be."""
+        counts = self._counts
+        if len(counts) == 1:
+            return values
+        sums = np.sum(np.where(counts, values.reshape(counts.shape), 0.0), axis=0)
+        means: Floats = sums / np.maximum(1, np.sum(counts, axis=0))
+        return means
+
+    def by_frequency(
+        self, level: ReferenceLevel | None
+    ) -> tuple[dict[float, Floats], bool, str]:
+        """(p,) values per frequency in the level's basis; whether they are a bound."""
+        basis = "RMS" if level is None else level.basis
+        axis = "resultant" if level is None else level.component
+        if (basis, axis) not in self._readings:
+            read = reading(self._b, self._case.components, basis, axis)
+            means = {f: self._mean(values) for f, values in read.by_frequency.items()}
+            self._readings[basis, axis] = (means, read.is_bound, read.reason)
+        return self._readings[basis, axis]
+
+    def total(self, kind: Kind) -> tuple[Floats, bool, str]:
+        """(p,) RMS resultant of AC or DC, zeros where none flows."""
+        whole = field.combined(self._b, self._case.components)
+        values = whole.dc if kind == "DC" else whole.total_ac
+        if values is None:
+            return np.zeros(self._counts.shape[1]), False, ""
+        return self._mean(values), whole.is_bound, whole.reason
+
+    def unmasked_score(self, quantity: Quantity) -> Floats:
+        """(p,) ratio or resultant, masks left aside."""
+        if quantity.level is None:
+            return self.total(quantity.kind)[0]
+        compared = ratios(quantity.level, self.by_frequency(quantity.level)[0])
+        values = compared.dc if quantity.kind == "DC" else compared.ac
+        assert values is not None, "asked for a comparison that cannot be made"
+        return values
+
+    def score(self, quantity: Quantity) -> Floats:
+        """(p,) ratio or resultant, −inf where masked."""
+        scores: Floats = np.where(self.masked, -np.inf, self.unmasked_score(quantity))
+        return scores
+
+
+def points_over(region: Region, positions: Floats) -> Floats:
+    """(q p, 3) points over the positions, offset by offset."""
+    up = region.offsets[:, None, None] * np.array([0.0, 0.0, 1.0])
+    points: Floats = (positions[None] + up).reshape(-1, 3)
+    return points
+
+
+def evaluation_at(
+    fields: CaseFields, region: Region, quantity: Quantity, positions: Floats
+) -> Evaluation:
+    """The case of a quantity at positions of a region, masked there."""
+    case = fields.cases[quantity.case]
+    points = points_over(region, positions)
+    b = fields.flux_density(case, points)
+    return Evaluation(
+        case, b, fields.masked(case, points, region.clearance), len(region.offsets)
+    )

@@ -1,0 +1,162 @@
+"""What a report says about a place: heights, frequencies, circuits, net current."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine import field
+from engine.case_fields import CaseCurrents, CaseFields
+from engine.circuits import Circuit
+from engine.contributions import contributions, net_current_effect, responses_at
+from engine.criteria import ReferenceLevel
+from engine.evaluations import Evaluation, Quantity
+from engine.items import Point3
+from engine.levels import Kind, is_kind, level_at
+from engine.regions import Region
+from engine.results import (
+    AtFrequency,
+    Contribution,
+    NetCurrentEffect,
+    PlaceDetails,
+)
+from engine.zone_search import Found
+
+Floats = NDArray[np.float64]
+
+
+class Surroundings:
+    """The field's parts at places, each place looked at once.
+
+    Parameters
+    ----------
+    fields : CaseFields
+        Of the layout.
+    circuits
+        For the net current.
+    """
+
+    def __init__(self, fields: CaseFields, circuits: Sequence[Circuit]) -> None:
+        self.fields = fields
+        self._circuits = circuits
+        self._responses: dict[Point3, Floats] = {}
+        self._effects: dict[Point3, NetCurrentEffect | None] = {}
+
+    def _responses_at(self, at: Point3) -> Floats:
+        if at not in self._responses:
+            self._responses[at] = responses_at(self.fields.conductors, at)
+        return self._responses[at]
+
+    def contributions(
+        self, case: CaseCurrents, at: Point3, kind: Kind
+    ) -> tuple[Contribution, ...]:
+        """The circuits' parts at a place, the largest first."""
+        responses = self._responses_at(at)
+        return contributions(case, self.fields.conductors, responses, kind)
+
+    def net_current(self, at: Point3) -> NetCurrentEffect | None:
+        """What 1 A of net current in the most sensitive circuit gives at a place."""
+        if at not in self._effects:
+            self._effects[at] = net_current_effect(
+                self._circuits, self.fields.conductors, self._responses_at(at)
+            )
+        return self._effects[at]
+
+    def is_near(self, at: Point3) -> bool:
+        """Whether a place is nearer than two bar widths or diameters."""
+        points = np.array([at], np.float64)
+        near = len(self.fields.conductors) > 0 and bool(
+            field.near_field(self.fields.conductors, points)[0]
+        )
+        return near
+
+    def details(self, region: Region, quantity: Quantity, found: Found) -> PlaceDetails:
+        """Everything about the place where a quantity is largest in a region."""
+        case = self.fields.cases[quantity.case]
+        over = self._over_heights(region, case, quantity, found.position)
+        x, y, z = (float(c) for c in found.position)
+        height: float | None = z - region.floor
+        if region.rule == "three-height mean":
+            height = None
+            largest = max(over, key=lambda pair: pair[1], default=(0.0, 0.0))
+            z = region.floor + largest[0]
+        at = (x, y, z)
+        return self._at(at, height, over, quantity, found)
+
+    def details_of_point(self, quantity: Quantity, found: Found) -> PlaceDetails:
+        """Everything about a receptor."""
+        x, y, z = (float(c) for c in found.position)
+        return self._at((x, y, z), None, (), quantity, found)
+
+    def _at(
+        self,
+        at: Point3,
+        height: float | None,
+        over: tuple[tuple[float, float], ...],
+        quantity: Quantity,
+        found: Found,
+    ) -> PlaceDetails:
+        case = self.fields.cases[quantity.case]
+        return PlaceDetails(
+            at=at,
+            height=height,
+            by_height=over,
+            by_frequency=at_frequencies(found.by_frequency, quantity.level),
+            near_field=self.is_near(at),
+            step=found.step,
+            is_bound=found.is_bound,
+            bound_reason=found.bound_reason,
+            contributions=self.contributions(case, at, quantity.kind),
+            net_current=self.net_current(at),
+        )
+
+    def _over_heights(
+        self, region: Region, case: CaseCurrents, quantity: Quantity, position: Floats
+    ) -> tuple[tuple[float, float], ...]:
+        """Pairs of height and value over a place on plan, masked ones left out."""
+        heights = np.array(region.heights)
+        points = np.column_stack(
+            [np.broadcast_to(position[:2], (len(heights), 2)), region.floor + heights]
+        )
+        b = self.fields.flux_density(case, points)
+        masked = self.fields.masked(case, points, region.clearance)
+        evaluation = Evaluation(case, b, masked, 1)
+        values = _compared(evaluation, quantity)
+        return tuple(
+            (float(h), float(v))
+            for h, v, m in zip(heights, values, masked, strict=True)
+            if not m
+        )
+
+
+def _compared(evaluation: Evaluation, quantity: Quantity) -> Floats:
+    """(n,) values in tesla: the resultant, or what is compared with the level."""
+    if quantity.level is None:
+        return evaluation.total(quantity.kind)[0]
+    by_frequency = evaluation.by_frequency(quantity.level)[0]
+    return root_sum_of_squares(
+        [v for f, v in by_frequency.items() if is_kind(f, quantity.kind)]
+    )
+
+
+def root_sum_of_squares(values: Sequence[Floats] | Sequence[float]) -> Floats:
+    """Of several frequencies together; one value stays exactly as it is."""
+    if len(values) == 1:
+        return np.asarray(values[0], np.float64)
+    total: Floats = np.sqrt(np.sum(np.square(np.asarray(values)), axis=0))
+    return total
+
+
+def at_frequencies(
+    by_frequency: Mapping[float, float], level: ReferenceLevel | None
+) -> tuple[AtFrequency, ...]:
+    """The field by frequency beside a level's values, rising."""
+    rows = []
+    for frequency in sorted(by_frequency):
+        value = by_frequency[frequency]
+        limit = None if level is None else level_at(level, frequency)
+        ratio = None if limit is None else value / limit
+        rows.append(AtFrequency(frequency, value, limit, ratio))
+    return tuple(rows)

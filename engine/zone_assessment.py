@@ -1,0 +1,116 @@
+"""One zone: its maxima without any level, and its comparisons."""
+
+from __future__ import annotations
+
+from engine.comparability import blocking_sentences
+from engine.comparisons import KINDS, Largest, comparisons, quantities
+from engine.errors import UserError
+from engine.evaluations import Quantity
+from engine.layout import Layout
+from engine.loaded_layout import LoadedLayout
+from engine.places import Zone
+from engine.regions import Region
+from engine.results import Maximum, PlaceDetails, ZoneResult
+from engine.sampling import area_of
+from engine.zone_search import Found, Search, search
+
+ALL_MASKED = "Nobody can be anywhere in it: all of it is masked."
+
+
+def zone_floor(layout: Layout, zone: Zone) -> float | None:
+    """Level of a zone's floor, its own or its storey's; None: none is stated. [m]"""
+    if zone.floor_level is not None:
+        return zone.floor_level
+    return next((s.floor_level for s in layout.storeys if s.id == zone.storey), None)
+
+
+def _region(layout: Layout, zone: Zone) -> Region | str:
+    """The region to search, or why there is none."""
+    floor = zone_floor(layout, zone)
+    if floor is None:
+        return "It states neither a floor level nor a storey; state one of them."
+    outline = area_of(zone.outline)
+    if not outline.area > 0:
+        return "Its outline encloses no area; draw it anew."
+    low, high = zone.volume or (min(zone.heights), max(zone.heights))
+    if low > high:
+        return "Its volume ends below its beginning; enter the lower height first."
+    return Region(outline, floor, zone.heights, (low, high), zone.rule, zone.clearance)
+
+
+def zone_result(loaded: LoadedLayout, zone: Zone) -> ZoneResult:
+    """The largest values of a zone by its spatial rule, and its comparisons."""
+    region = _region(loaded.layout, zone)
+    wanted = quantities(loaded, zone)
+    problem, searched = "", None
+    found: dict[Quantity, tuple[Found, PlaceDetails]] = {}
+    shares: dict[str, float] = {}
+    problems: dict[str, str] = {}
+    if isinstance(region, str):
+        problem = region
+    elif loaded.fields.cases:
+        try:
+            searched = search(loaded.fields, region, wanted)
+        except UserError as error:
+            problem = str(error)
+    if searched is not None and isinstance(region, Region):
+        for quantity, largest in zip(wanted, searched.found, strict=True):
+            if largest is not None:
+                details = loaded.surroundings.details(region, quantity, largest)
+                found[quantity] = (largest, details)
+        shares = {id: searched.masked_shares[k] for id, k in loaded.index.items()}
+        seen = {quantity.case for quantity in found}
+        problems = {id: ALL_MASKED for id, k in loaded.index.items() if k not in seen}
+        problem = "" if found else ALL_MASKED
+    elif problem:
+        problems = {result.case.id: problem for result in loaded.cases}
+    return ZoneResult(
+        zone=zone,
+        floor=zone_floor(loaded.layout, zone),
+        area=area_of(zone.outline).area,
+        masked_shares=shares,
+        maxima=_maxima(loaded, zone, found),
+        comparisons=comparisons(loaded, zone, found, problems, shares),
+        searched="" if searched is None else _described(zone, searched),
+        reason=problem,
+    )
+
+
+def _described(zone: Zone, searched: Search) -> str:
+    """How the maximum was looked for."""
+    places = f"{searched.n_places:,} places at most {searched.coarsest:.3g} m apart"
+    near = f"down to {searched.finest:.3g} m near conductors"
+    if zone.rule == "area mean":
+        return f"Averaged over {places}, {near}."
+    steps = [f.step for f in searched.found if f is not None]
+    finest = f" down to {max(steps):.2g} m" if steps else ""
+    skin = (
+        " on the skin of the volume and of the masks in it"
+        if zone.rule == "maximum over volume"
+        else ""
+    )
+    return (
+        f"Searched {places}, {near}{skin}; then around the largest ones{finest}, until "
+        "the maximum changed by less than 0.1 %."
+    )
+
+
+def _maxima(
+    loaded: LoadedLayout,
+    zone: Zone,
+    found: Largest,
+) -> tuple[Maximum, ...]:
+    """The largest resultants without any level, by case and kind."""
+    maxima = []
+    for result in loaded.cases:
+        for kind in KINDS:
+            largest = found.get(Quantity(loaded.index.get(result.case.id, -1), kind))
+            if largest is not None:
+                blocking = blocking_sentences(loaded.layout, zone, result.faults)
+                maxima.append(
+                    Maximum(
+                        result.case.id, kind, largest[0].score, largest[1],
+                        " ".join(blocking),
+                    )
+                )  # fmt: skip
+    return tuple(maxima)
