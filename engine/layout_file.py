@@ -8,7 +8,9 @@ from __future__ import annotations
 
 import codecs
 import json
+from collections import Counter
 from collections.abc import Iterator
+from functools import cache
 from pathlib import Path
 from typing import Annotated, Any
 
@@ -29,6 +31,8 @@ MAX_BYTES = 200_000_000
 MAX_MARKS = 5_000_000
 #: Most straight conductor pieces (legs times slots) of all runs.
 MAX_LEGS = 1_000_000
+#: Most currents (slots times the circuits they carry) of all runs.
+MAX_LOADS = 1_000_000
 #: Text lines are kept this short where the structure allows it.
 WIDTH = 100
 
@@ -172,8 +176,8 @@ def _parsed(text: str, opening: str) -> tuple[Any, dict[int, list[str]]]:
     def as_object(pairs: list[tuple[str, object]]) -> dict[str, object]:
         made = dict(pairs)
         if len(made) < len(pairs):
-            names = [name for name, _ in pairs]
-            repeated[id(made)] = [name for name in made if names.count(name) > 1]
+            times = Counter(name for name, _ in pairs)
+            repeated[id(made)] = [name for name in made if times[name] > 1]
             kept.append(made)
         return made
 
@@ -259,23 +263,35 @@ def _repeated_ids(layout: Layout) -> Iterator[str]:
 
 
 def _too_much(layout: Layout) -> Iterator[str]:
-    legs = sum((len(run.route) - 1) * _slot_count(run) for run in layout.runs)
+    legs = loads = 0
+    for run in layout.runs:
+        slots, carried = _slot_counts(run)
+        legs += (len(run.route) - 1) * slots
+        loads += carried
     if legs > MAX_LEGS:
         yield (
             f"runs: all together they have {legs:,} straight conductor pieces; "
             f"{MAX_LEGS:,} are the most that can be computed"
         )
+    if loads > MAX_LOADS:
+        yield (
+            f"runs: all together their slots carry {loads:,} currents; "
+            f"{MAX_LOADS:,} are the most that can be computed"
+        )
 
 
-def _slot_count(run: Run) -> int:
+def _slot_counts(run: Run) -> tuple[int, int]:
+    """How many slots a run has, and how many currents they carry together."""
     section = run.section
     if isinstance(section, FreeSection):
-        return len(section.slots)
+        return len(section.slots), sum(len(slot.loads) for slot in section.slots)
     if isinstance(section, ParallelSets):
-        return sum(len(order) for order in section.orders)
-    if isinstance(section, StackedBars):
-        return len(section.order) * section.bars_per_pole
-    return len(section.order)
+        slots = sum(len(order) for order in section.orders)
+    elif isinstance(section, StackedBars):
+        slots = len(section.order) * section.bars_per_pole
+    else:
+        slots = len(section.order)
+    return slots, slots * len(section.circuits)
 
 
 def _plain(value: Any) -> Any:
@@ -286,11 +302,17 @@ def _plain(value: Any) -> Any:
         return value
     config = value.__struct_config__
     plain = {} if config.tag is None else {str(config.tag_field): config.tag}
-    for field in structs.fields(value):
-        part = getattr(value, field.name)
-        if field.default is msgspec.NODEFAULT or part != field.default:
-            plain[field.encode_name] = _plain(part)
+    for name, default in _defaults(type(value)):
+        part = getattr(value, name)
+        if default is msgspec.NODEFAULT or part != default:
+            plain[name] = _plain(part)
     return plain
+
+
+@cache
+def _defaults(kind: type[msgspec.Struct]) -> tuple[tuple[str, Any], ...]:
+    """Names and defaults of the fields, as they stand in a file."""
+    return tuple((field.name, field.default) for field in structs.fields(kind))
 
 
 def _lines(value: Any) -> list[str]:
@@ -323,8 +345,10 @@ def _broken(
 
 
 def _scalar(value: Any) -> str:
-    if isinstance(value, float) and value.is_integer() and abs(value) < 1e15:
-        return str(int(value))
+    if isinstance(value, float):
+        if value.is_integer() and abs(value) < 1e15:
+            return str(int(value))
+        return repr(value)
     return json.dumps(value, ensure_ascii=False)
 
 

@@ -311,6 +311,13 @@ def test_too_many_conductor_pieces_are_refused() -> None:
         encode(Layout(runs=many))
 
 
+def test_too_many_carried_currents_are_refused() -> None:
+    flat = runs.Flat(circuits=(runs.CircuitShare(circuit="c"),) * 250_001)
+    run = msgspec.structs.replace(RUN, section=flat)
+    with pytest.raises(UserError, match=r"runs: .* slots carry 1,000,004 currents"):
+        encode(Layout(runs=(run,)))
+
+
 @pytest.mark.parametrize("kept", range(0, len(encode(SMALL)) - 2, 7))
 def test_no_truncated_file_is_opened(kept: int) -> None:
     assert told(encode(SMALL)[:kept]).startswith("room.json was not opened: it ")
