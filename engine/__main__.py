@@ -1,0 +1,196 @@
+"""Commands without a screen: `python -m engine COMMAND …`, or `lodestead-batch`.
+
+Exit codes: 0 done (for `assess`: every comparison of the counted load cases is
+`below`); 1 a comparison is above; 3 otherwise; 2 it could not be done.
+"""
+
+from __future__ import annotations
+
+import argparse
+import io
+import json
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+
+from engine import units
+from engine.circuits import LoadCase
+from engine.commands import assessed, points
+from engine.commands.terminal import complain, progress_line
+from engine.errors import UserError
+from engine.exchange.schedule import read_schedule
+from engine.layout import Layout
+from engine.layout_file import read, write
+
+DONE, COULD_NOT = 0, 2
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run one command; its exit code."""
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        # µ and ± must not depend on the terminal's locale.
+        sys.stdout.reconfigure(encoding="utf-8")
+    if isinstance(sys.stderr, io.TextIOWrapper):
+        sys.stderr.reconfigure(encoding="utf-8")
+    parser = _parser()
+    try:
+        asked = parser.parse_args(arguments)
+    except SystemExit as stop:
+        return stop.code if isinstance(stop.code, int) else COULD_NOT
+    try:
+        code: int = asked.run(asked)
+        return code
+    except UserError as error:
+        complain(str(error))
+        return COULD_NOT
+    except KeyboardInterrupt:
+        complain("Stopped; nothing was written.")
+        return COULD_NOT
+    except BrokenPipeError:
+        sys.stderr.close()
+        return COULD_NOT
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        prog="lodestead-batch",
+        description="Magnetic fields of electrical rooms without a screen. Values are "
+        "calculated from entered data; local regulation and licensed practice decide.",
+    )
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+
+    assess = commands.add_parser(
+        "assess", help="compare zones and receptors with their reference levels"
+    )
+    assess.add_argument("layout", metavar="LAYOUT")
+    assess.add_argument("--case", metavar="NAME", help="only this load case")
+    _add_unit(assess)
+    assess.add_argument("--json", action="store_true", help="print JSON, in tesla")
+    assess.set_defaults(run=_assess)
+
+    report = commands.add_parser("report", help="write the report as PDF")
+    report.add_argument("layout", metavar="LAYOUT")
+    report.add_argument("out", metavar="OUT.pdf", type=Path)
+    _add_unit(report)
+    report.add_argument("--json", action="store_true", help="print what was written")
+    report.set_defaults(run=_report)
+
+    plane = commands.add_parser("map", help="write the field on a horizontal plane")
+    plane.add_argument("layout", metavar="LAYOUT")
+    plane.add_argument("out", metavar="OUT.png|OUT.csv", type=Path)
+    plane.add_argument(
+        "--height", type=float, required=True, metavar="H", help="above the datum [m]"
+    )
+    plane.add_argument("--case", metavar="NAME", help="instead of the first load case")
+    _add_unit(plane)
+    plane.add_argument("--json", action="store_true", help="print what was written")
+    plane.set_defaults(run=_map)
+
+    field = commands.add_parser("field", help="print the field at points")
+    field.add_argument("source", metavar="SOURCE", help="a layout, or a schedule CSV")
+    field.add_argument(
+        "--at", action="append", required=True, metavar="X,Y,Z", help="a point [m]"
+    )
+    field.add_argument("--case", metavar="NAME", help="instead of the first load case")
+    _add_unit(field)
+    field.add_argument("--json", action="store_true", help="print JSON, in tesla")
+    field.set_defaults(run=_field)
+
+    schedule = commands.add_parser("schedule", help="turn a schedule into a layout")
+    schedule.add_argument("csv", metavar="CSV", type=Path)
+    schedule.add_argument("out", metavar="OUT.json", type=Path)
+    schedule.add_argument("--json", action="store_true", help="print what was written")
+    schedule.set_defaults(run=_schedule)
+    return parser
+
+
+def _add_unit(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument(
+        "--unit",
+        type=_unit,
+        metavar="UNIT",
+        help="of flux density: " + ", ".join(units.FLUX_DENSITY_UNITS) + " (uT is µT)",
+    )
+
+
+def _unit(name: str) -> str:
+    try:
+        return units.flux_density_unit(name)
+    except ValueError as error:
+        raise argparse.ArgumentTypeError(str(error)) from None
+
+
+def _assess(asked: argparse.Namespace) -> int:
+    from engine.assessment import assess, exit_code
+    from engine.remarks import remarks
+
+    layout = read(asked.layout)
+    cases = None if asked.case is None else (_case(layout, asked.case),)
+    assessment = assess(layout, cases=cases, progress=progress_line())
+    found = remarks(layout, assessment)
+    if asked.json:
+        _print_json(assessed.as_json(assessment, found))
+    else:
+        sys.stdout.write(assessed.as_text(assessment, found, asked.unit or "µT"))
+    return exit_code(assessment)
+
+
+def _report(asked: argparse.Namespace) -> int:
+    from engine.report import write_report
+
+    layout = read(asked.layout)
+    write_report(layout, asked.out, unit=asked.unit, progress=progress_line())
+    return _written(asked.out, asked.json)
+
+
+def _map(asked: argparse.Namespace) -> int:
+    from engine.commands.horizontal_map import write_map
+
+    layout = read(asked.layout)
+    case = _case(layout, asked.case)
+    write_map(layout, case, asked.height, asked.out, asked.unit, progress_line())
+    return _written(asked.out, asked.json)
+
+
+def _field(asked: argparse.Namespace) -> int:
+    source = Path(asked.source)
+    layout = read_schedule(source) if source.suffix.lower() == ".csv" else read(source)
+    at = [points.parsed_point(text) for text in asked.at]
+    values = points.field_at_points(layout, _case(layout, asked.case), at)
+    if asked.json:
+        _print_json(points.as_json(values))
+    else:
+        sys.stdout.write(points.as_text(values, asked.unit or "µT"))
+    return DONE
+
+
+def _schedule(asked: argparse.Namespace) -> int:
+    write(asked.out, read_schedule(asked.csv))
+    return _written(asked.out, asked.json)
+
+
+def _case(layout: Layout, name: str | None) -> LoadCase:
+    if name is None:
+        return layout.cases[0]
+    for case in layout.cases:
+        if name in (case.id, case.name):
+            return case
+    known = ", ".join(f'"{case.title}"' for case in layout.cases)
+    raise UserError(f'There is no load case "{name}" in this layout; it has {known}.')
+
+
+def _written(path: Path, as_json: bool) -> int:
+    if as_json:
+        _print_json({"written": str(path)})
+    else:
+        sys.stdout.write(f"Written: {path}\n")
+    return DONE
+
+
+def _print_json(value: object) -> None:
+    json.dump(value, sys.stdout, ensure_ascii=False, indent=1, allow_nan=False)
+    sys.stdout.write("\n")
+
+
+if __name__ == "__main__":
+    sys.exit(main())

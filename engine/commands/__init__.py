@@ -1,0 +1,1 @@
+"""The commands without a screen: arguments in, text or files out, an exit code back."""
