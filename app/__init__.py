@@ -1,0 +1,1 @@
+"""Lodestead's desktop: the screen over the engine."""

@@ -1,0 +1,72 @@
+"""What is being looked at: load case, height, storey, quantity, layers.
+
+Not part of the layout and not undone. Views listen; one value, one notice.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from typing import Any
+
+from PySide6.QtCore import QObject, Signal
+
+#: Layers of the drawing that can be hidden, from below.
+LAYERS = (
+    "backing drawing",
+    "map",
+    "iso-lines",
+    "rooms",
+    "zones",
+    "enclosures",
+    "equipment",
+    "runs",
+    "receptors",
+    "labels",
+)
+
+
+@dataclass(frozen=True, kw_only=True)
+class Look:
+    """One way of looking at the layout.
+
+    Attributes
+    ----------
+    case : str
+        Id of the load case shown; empty for the first.
+    height : float or None
+        Height of the horizontal map above the datum. None: largest over the heights
+        of the zone. [m]
+    zone : str
+        Id of the zone whose heights the map and the rail show; empty for the first.
+    storey : str
+        Id of the storey drawn upon; empty for the lowest.
+    hidden : frozenset of str
+        Layers that are not drawn.
+    """
+
+    case: str = ""
+    height: float | None = None
+    zone: str = ""
+    storey: str = ""
+    hidden: frozenset[str] = frozenset()
+
+
+class ViewState(QObject):
+    """Holds the current `Look`; `changed(look)` says that it is another one."""
+
+    changed = Signal(object)
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._look = Look()
+
+    @property
+    def look(self) -> Look:
+        return self._look
+
+    def set(self, **values: Any) -> None:
+        """Replace some fields of the look."""
+        look = replace(self._look, **values)
+        if look != self._look:
+            self._look = look
+            self.changed.emit(look)

@@ -1,0 +1,33 @@
+"""Colours can be read: contrast by WCAG 2.1 in both themes."""
+
+from __future__ import annotations
+
+import pytest
+
+from app.theme import DARK, LIGHT, Theme, contrast
+
+BACKGROUNDS = ("paper", "window", "panel")
+TEXTS = ("text", "muted", "accent", "warning", "below", "above", "not_evaluable")
+
+
+def test_contrast_of_black_and_white_is_the_largest():
+    # WCAG 2.1: 21:1 is the largest contrast ratio.
+    assert contrast("#000000", "#ffffff") == pytest.approx(21.0)
+
+
+@pytest.mark.parametrize("theme", [LIGHT, DARK], ids=lambda theme: theme.name)
+@pytest.mark.parametrize("background", BACKGROUNDS)
+@pytest.mark.parametrize("text", TEXTS)
+def test_text_stands_out(theme: Theme, background: str, text: str):
+    assert contrast(getattr(theme, text), getattr(theme, background)) >= 4.5
+
+
+@pytest.mark.parametrize("theme", [LIGHT, DARK], ids=lambda theme: theme.name)
+@pytest.mark.parametrize("background", BACKGROUNDS)
+def test_lines_that_carry_meaning_stand_out(theme: Theme, background: str):
+    assert contrast(theme.line, getattr(theme, background)) >= 3.0
+
+
+@pytest.mark.parametrize("theme", [LIGHT, DARK], ids=lambda theme: theme.name)
+def test_text_on_the_accent_can_be_read(theme: Theme):
+    assert contrast(theme.on_accent, theme.accent) >= 4.5
