@@ -1,0 +1,26 @@
+"""Icons: every drawing renders, in the colour asked for."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+from PySide6.QtGui import QColor
+
+import app
+from app.icons import icon
+
+DRAWINGS = sorted((Path(app.__file__).parent / "resources" / "icons").glob("*.svg"))
+
+
+@pytest.mark.parametrize("path", DRAWINGS, ids=lambda path: path.stem)
+def test_a_drawing_shows_in_the_colour_asked_for(qapp, path):
+    image = icon(path.stem, "#ff0000", "#777777").pixmap(24, 24).toImage()
+    colours = {
+        QColor(image.pixelColor(x, y)).name()
+        for x in range(image.width())
+        for y in range(image.height())
+        if image.pixelColor(x, y).alpha() > 250
+    }
+    assert "#ff0000" in colours
+    assert "#000000" not in colours
