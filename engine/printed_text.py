@@ -54,24 +54,24 @@ def _font(bold: bool) -> ImageFont.FreeTypeFont:
     )
 
 
+@cache
+def _advance(character: str, bold: bool) -> float:
+    """Width of one character at a size of 1; no pair is set closer."""
+    return float(_font(bold).getlength(character)) / _MEASURED_AT
+
+
 def text_width(text: str, size: float, *, bold: bool = False) -> float:
     """Width of one line of text, in the unit of its size."""
-    return float(_font(bold).getlength(text)) * size / _MEASURED_AT
+    return size * sum(_advance(character, bold) for character in text)
 
 
 def fitted(text: str, size: float, width: float, *, bold: bool = False) -> str:
     """One line of text, cut with an ellipsis where it is wider than `width`."""
     line = one_line(text)
-    if text_width(line[:2000], size, bold=bold) <= width and len(line) <= 2000:
+    if _count_that_fits(line, size, width, bold) == len(line):
         return line
-    low, high = 0, min(len(line), 2000)
-    while low < high:
-        middle = (low + high + 1) // 2
-        if text_width(line[:middle] + "…", size, bold=bold) <= width:
-            low = middle
-        else:
-            high = middle - 1
-    return line[:low].rstrip() + "…"
+    room = width - text_width("…", size, bold=bold)
+    return line[: _count_that_fits(line, size, room, bold)].rstrip() + "…"
 
 
 def wrapped(
@@ -79,30 +79,31 @@ def wrapped(
 ) -> tuple[str, ...]:
     """Text broken into lines no wider than `width`; long words are broken too."""
     lines: list[str] = []
+    blank = text_width(" ", size, bold=bold)
     for paragraph in printable(text).split("\n"):
-        line = ""
+        line, used = "", 0.0
         for word in paragraph.split():
-            trial = f"{line} {word}" if line else word
-            if text_width(trial, size, bold=bold) <= width:
-                line = trial
+            long = text_width(word, size, bold=bold)
+            if line and used + blank + long <= width:
+                line, used = f"{line} {word}", used + blank + long
                 continue
             if line:
                 lines.append(line)
-            line = word
-            while text_width(line, size, bold=bold) > width and len(line) > 1:
-                keep = _characters_that_fit(line, size, width, bold)
-                lines.append(line[:keep])
-                line = line[keep:]
+            while long > width and len(word) > 1:
+                keep = max(1, _count_that_fits(word, size, width, bold))
+                lines.append(word[:keep])
+                word = word[keep:]
+                long = text_width(word, size, bold=bold)
+            line, used = word, long
         lines.append(line)
     return tuple(lines)
 
 
-def _characters_that_fit(word: str, size: float, width: float, bold: bool) -> int:
-    low, high = 1, len(word)
-    while low < high:
-        middle = (low + high + 1) // 2
-        if text_width(word[:middle], size, bold=bold) <= width:
-            low = middle
-        else:
-            high = middle - 1
-    return low
+def _count_that_fits(text: str, size: float, width: float, bold: bool) -> int:
+    """How many characters from the start fit in a width."""
+    used = 0.0
+    for count, character in enumerate(text):
+        used += size * _advance(character, bold)
+        if used > width:
+            return count
+    return len(text)

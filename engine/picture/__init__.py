@@ -2,6 +2,7 @@
 
 from engine.picture.map_picture import map_picture
 from engine.picture.marks import Fill, Picture, Raster, Stroke, Words
+from engine.picture.references import reference_lines
 from engine.picture.subject import MapSubject, ReferenceLine
 
 __all__ = [
@@ -13,4 +14,5 @@ __all__ = [
     "Stroke",
     "Words",
     "map_picture",
+    "reference_lines",
 ]

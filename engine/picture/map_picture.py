@@ -209,7 +209,7 @@ def _letter_plan(picture: Picture, sheet: Sheet, plan: Plan) -> None:
     for run in plan.runs:
         low, high = run.levels
         span = f"z {low:.2f}" if high - low < 0.005 else f"z {low:.2f}–{high:.2f}"
-        at = _around(sheet.paper(*run.label_place), 4.0)
+        at = _around(sheet.paper(*run.label_place), 4.0)[:10]
         _letter(picture, sheet, f"{fitted(run.title, LABEL_SIZE, 45.0)}, {span} m", at)
     for place in (*plan.enclosures, *plan.equipment):
         middle = sheet.paper(*place.label_place)

@@ -11,7 +11,9 @@ from engine.picture.marks import Box, Points, Words
 
 #: Scales that a drawing may have, 1 : n.
 SCALES = tuple(
-    step * 10**power for power in range(0, 7) for step in (10, 20, 25, 50, 75)
+    step * 10**power
+    for power in range(0, 7)
+    for step in (10, 15, 20, 25, 30, 40, 50, 60, 75)
 )
 
 

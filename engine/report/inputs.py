@@ -1,0 +1,198 @@
+"""What else was entered: documents, levels, zones, settings, and what is assumed."""
+
+from __future__ import annotations
+
+from reportlab.platypus import Flowable
+
+from engine.assessment import zone_floor
+from engine.criteria import LevelRanges, LevelTable, ReferenceLevel
+from engine.layout import Layout
+from engine.origins import assumptions
+from engine.places import Zone
+from engine.report.text import fact_table, paragraph, table
+from engine.report.wording import NO_LEVELS
+from engine.report.words import length, place, uncertainty_text
+from engine.units import flux_density_text
+
+
+def documents(layout: Layout, width: float) -> list[Flowable]:
+    """The register of source documents."""
+    if not layout.documents:
+        return [paragraph("No source document was entered.")]
+    rows = [
+        (d.title, d.file_name, d.revision, d.date, d.sha256, d.note)
+        for d in layout.documents
+    ]
+    heads = ("Document", "File", "Revision", "Date", "SHA-256 of the file", "Note")
+    return [table(heads, rows, (20, 18, 10, 12, 24, 16), width)]
+
+
+def levels(layout: Layout, unit: str, width: float) -> list[Flowable]:
+    """The reference levels as entered, each with its source."""
+    if not layout.levels:
+        return [paragraph(NO_LEVELS)]
+    rows = [
+        (
+            level.title,
+            _level_values(level, unit),
+            f"{level.basis}, {level.component}; {level.sum_rule}",
+            level.category or "not chosen",
+            level.source or "no source entered: no comparison",
+            "\n".join(t for t in (level.edition, level.entered_by) if t),
+            "\n".join(t for t in (level.uncertainty_rule, level.note) if t),
+        )
+        for level in layout.levels
+    ]
+    heads = (
+        "Reference level", "Value over frequency", "Basis", "Category", "Source",
+        "Edition, entered by", "Uncertainty rule, notes",
+    )  # fmt: skip
+    return [table(heads, rows, (14, 19, 12, 11, 18, 11, 18), width)]
+
+
+def _level_values(level: ReferenceLevel, unit: str) -> str:
+    values = level.values
+    if isinstance(values, LevelTable):
+        return "\n".join(
+            f"{p.frequency:g} Hz: {flux_density_text(p.level, unit, 4)}"
+            for p in values.points
+        )
+    if not isinstance(values, LevelRanges):
+        return "no value entered: no comparison"
+    lines = []
+    for r in values.ranges:
+        span = (
+            f"{r.f_from:g} Hz" if r.f_from == r.f_to else f"{r.f_from:g}–{r.f_to:g} Hz"
+        )
+        value = flux_density_text(r.coefficient, unit, 4)
+        if r.exponent == 1:
+            value += " · 1 Hz / f"
+        elif r.exponent:
+            value += f" · (f / 1 Hz)^{-r.exponent:g}".replace("-", "−")
+        lines.append(f"{span}: {value}")
+    return "\n".join(lines)
+
+
+def places(layout: Layout, width: float) -> list[Flowable]:
+    """Rooms and enclosures."""
+    unit = layout.settings.length_unit
+    rows = [
+        (
+            room.title,
+            "room",
+            _outline(room.outline, unit),
+            f"floor {length(room.floor_level, unit)}, "
+            f"ceiling {length(room.ceiling_level, unit)}"
+            + (
+                f", slab above {length(room.slab_above, unit)}"
+                if room.slab_above
+                else ""
+            ),
+            room.note,
+        )
+        for room in layout.rooms
+    ]
+    rows += [
+        (
+            e.title,
+            f"enclosure, {e.state}",
+            _outline(e.footprint, unit),
+            f"from {length(e.z_from, unit)} to {length(e.z_to, unit)}"
+            + (
+                f"; clearance around it {length(e.front_clearance, unit)}"
+                if e.front_clearance
+                else ""
+            ),
+            e.note,
+        )
+        for e in layout.enclosures
+    ]
+    if not rows:
+        return [paragraph("No room and no enclosure was entered.")]
+    heads = ("Place", "Kind", f"Outline x, y [{unit}]", f"Levels z [{unit}]", "Note")
+    return [table(heads, rows, (20, 14, 30, 20, 16), width)]
+
+
+def _outline(outline: tuple[tuple[float, float], ...], unit: str) -> str:
+    shown = "; ".join(place(point, unit) for point in outline[:40])
+    return shown + (f"; … {len(outline)} corners in all" if len(outline) > 40 else "")
+
+
+def zones(layout: Layout, unit: str, width: float) -> list[Flowable]:
+    """Zones as entered: where, how high, for whom, by which rule."""
+    measure = layout.settings.length_unit
+    if not layout.zones:
+        return [paragraph("No zone was entered.")]
+    names = {level.id: level.title for level in layout.levels}
+    rows = [
+        (
+            zone.title,
+            zone.category or "not chosen",
+            zone_heights(zone, layout, measure),
+            zone.rule,
+            "\n".join(
+                part for part in (zone.use, zone.hours, zone.part_of_body) if part
+            ),
+            ", ".join(names.get(level, level) for level in zone.levels) or "none",
+            length(zone.clearance, measure),
+            uncertainty_text(zone.uncertainty or layout.settings.uncertainty, unit),
+        )
+        for zone in layout.zones
+    ]
+    heads = (
+        "Zone", "Category", f"Heights [{measure}]", "Rule", "Use", "Reference levels",
+        f"Clearance [{measure}]", "U",
+    )  # fmt: skip
+    return [table(heads, rows, (14, 12, 16, 12, 14, 13, 11, 14), width)]
+
+
+def zone_heights(zone: Zone, layout: Layout, unit: str) -> str:
+    """The heights above the zone's floor, and where that floor is."""
+    above = ", ".join(length(height, unit) for height in zone.heights)
+    floor = zone_floor(layout, zone)
+    text = f"{above} above "
+    text += "a floor not stated" if floor is None else f"floor z {length(floor, unit)}"
+    if zone.volume is not None:
+        low, high = (length(edge, unit) for edge in zone.volume)
+        text += f"; volume {low} to {high}"
+    return text
+
+
+def settings(layout: Layout, unit: str, width: float) -> list[Flowable]:
+    """What holds for the whole layout."""
+    chosen = layout.settings
+    low = flux_density_text(chosen.map_low, unit)
+    high = flux_density_text(chosen.map_high, unit)
+    rule = chosen.decision_rule
+    facts = [
+        ("Range of every map", f"{low} to {high}, {chosen.map_scale}"),
+        ("Uncertainty unless stated", uncertainty_text(chosen.uncertainty, unit)),
+        ("Decision rule", f"{rule.kind}, chosen by {rule.chosen_by or 'nobody'}"),
+        ("Frequency of the supply", f"{chosen.frequency:g} Hz"),
+    ]
+    return [fact_table(facts, width)]
+
+
+def assumption_list(layout: Layout, width: float) -> list[Flowable]:
+    """Values without an origin, counted and listed."""
+    found = assumptions(layout)
+    names = {item.id: item.title for item in layout.items()}
+    if not found:
+        return [paragraph("Every entered value has an origin.")]
+    count = len(found)
+    sentence = (
+        f"Entered values without an origin: {count}. Each is an assumption until a "
+        "document, a measurement or a named person confirms it."
+    )
+    rows = [
+        (
+            str(k),
+            names.get(a.item, a.item),
+            a.field.replace("_", " "),
+            a.value,
+            a.reason,
+        )
+        for k, a in enumerate(found, start=1)
+    ]
+    heads = ("No.", "Item", "Value of", "As assumed", "Reason given")
+    return [paragraph(sentence), table(heads, rows, (6, 22, 16, 38, 18), width)]

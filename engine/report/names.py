@@ -1,0 +1,40 @@
+"""How values of one report are written: its units, and the names of the items."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from engine.layout import Layout
+from engine.units import in_unit, significant, text_beside
+
+
+@dataclass(frozen=True)
+class Wording:
+    """How values of one report are written: its units, and the names of the items."""
+
+    unit: str
+    length_unit: str
+    names: dict[str, str]
+
+    def name(self, item: str) -> str:
+        """What a person calls the item."""
+        return self.names.get(item, item)
+
+    def value(self, tesla: float | None) -> str:
+        """A flux density without its unit, three figures."""
+        return "–" if tesla is None else significant(in_unit(tesla, self.unit))
+
+    def beside(self, tesla: float | None, limit: float | None) -> str:
+        """A value with the figures that show its side of a limit."""
+        if tesla is None or limit is None:
+            return self.value(tesla)
+        # Rounded to what was typed: 7.5 µT is 7.500000000000001 after conversion.
+        typed = float(f"{in_unit(limit, self.unit):.12g}")
+        return text_beside(in_unit(tesla, self.unit), typed)
+
+
+def wording(layout: Layout, unit: str) -> Wording:
+    """The wording of a layout's report in one unit."""
+    names = {item.id: item.title for item in layout.items()}
+    names.update({case.id: case.title for case in layout.cases})
+    return Wording(unit, layout.settings.length_unit, names)

@@ -1,0 +1,171 @@
+"""Paragraphs and tables; user text is escaped here and nowhere else."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from xml.sax.saxutils import escape
+
+from reportlab.lib.colors import Color
+from reportlab.lib.enums import TA_LEFT
+from reportlab.lib.styles import ParagraphStyle
+from reportlab.lib.units import mm
+from reportlab.platypus import (
+    CondPageBreak,
+    Flowable,
+    Paragraph,
+    Spacer,
+    Table,
+    TableStyle,
+)
+
+from engine.printed_text import printable, wrapped
+from engine.report.page import BOLD_FONT, FONT
+
+INK = Color(0.08, 0.09, 0.11)
+HAIR = Color(0.62, 0.65, 0.68)
+HEAD = Color(0.93, 0.94, 0.95)
+
+#: Text of tables. [pt]
+CELL_SIZE = 7.0
+LEADING = 9.0
+PADDING = 2.5
+
+#: Lines of a cell before it goes on in a further row.
+MOST_LINES = 24
+
+BODY = ParagraphStyle(
+    "body", fontName=FONT, fontSize=8.5, leading=11.5, textColor=INK, alignment=TA_LEFT,
+    spaceAfter=4, splitLongWords=1, allowWidows=0, allowOrphans=0,
+)  # fmt: skip
+STRONG = ParagraphStyle("strong", parent=BODY, fontName=BOLD_FONT)
+HEADING = ParagraphStyle(
+    "heading", parent=BODY, fontName=BOLD_FONT, fontSize=12, leading=15,
+    spaceBefore=10, spaceAfter=5,
+)  # fmt: skip
+SUBHEADING = ParagraphStyle(
+    "subheading", parent=HEADING, fontSize=9.5, leading=12, spaceBefore=7, spaceAfter=3
+)
+TITLE = ParagraphStyle("title", parent=HEADING, fontSize=17, leading=21, spaceBefore=0)
+NOTE = ParagraphStyle("note", parent=BODY, fontSize=7.5, leading=10)
+BULLET = ParagraphStyle("bullet", parent=BODY, leftIndent=10, bulletIndent=0)
+
+
+def paragraph(text: str, style: ParagraphStyle = BODY) -> Paragraph:
+    """Text as a paragraph; what looks like markup in it is printed as it stands."""
+    return Paragraph(escape(printable(text)).replace("\n", "<br/>"), style)
+
+
+def paragraphs(text: str) -> list[Flowable]:
+    """A text of any length, each of its lines a paragraph."""
+    return [paragraph(line) for line in printable(text).split("\n") if line.strip()]
+
+
+def heading(text: str, style: ParagraphStyle = HEADING) -> list[Flowable]:
+    """A heading that does not stand alone at the foot of a page."""
+    return [CondPageBreak(32 * mm), paragraph(text, style)]
+
+
+def subheading(text: str) -> list[Flowable]:
+    """A heading within a section."""
+    return heading(text, SUBHEADING)
+
+
+def bullets(texts: Sequence[str]) -> list[Flowable]:
+    """Texts as a list."""
+    return [
+        Paragraph(escape(printable(text)), BULLET, bulletText="–") for text in texts
+    ]
+
+
+def gap(height: float = 2.0) -> Spacer:
+    """Empty space. [mm]"""
+    return Spacer(1, height * mm)
+
+
+def table(
+    heads: Sequence[str],
+    rows: Sequence[Sequence[str]],
+    shares: Sequence[float],
+    width: float,
+) -> Table:
+    """A table whose cells wrap and whose head comes again on each page.
+
+    Parameters
+    ----------
+    shares : sequence of float
+        Widths of the columns, in any common measure.
+    width : float
+        Of the whole table. [mm]
+
+    Notes
+    -----
+    Cells are broken into lines here and handed on as plain text, which no markup can
+    reach. A cell longer than a part of the page goes on in a further row, so that
+    every table can be split between rows.
+    """
+    assert len(heads) == len(shares), heads
+    assert all(len(row) == len(heads) for row in rows), heads
+    columns = [share / sum(shares) * width * mm for share in shares]
+    cells = [
+        [_lines(head, room, bold=True) for head, room in _with_room(heads, columns)]
+    ]
+    ends = [0]
+    for row in rows:
+        wrapped_row = [_lines(text, room) for text, room in _with_room(row, columns)]
+        cells += _parts(wrapped_row)
+        ends.append(len(cells) - 1)
+    heights = [max(len(cell) for cell in row) * LEADING + 2 * PADDING for row in cells]
+    made = Table(
+        [["\n".join(cell) for cell in row] for row in cells],
+        colWidths=columns,
+        rowHeights=heights,
+        repeatRows=1,
+        hAlign="LEFT",
+        spaceBefore=2,
+        spaceAfter=6,
+    )
+    rules = [("LINEBELOW", (0, end), (-1, end), 0.25, HAIR) for end in ends[1:]]
+    made.setStyle(
+        TableStyle(
+            [
+                ("FONT", (0, 0), (-1, 0), BOLD_FONT, CELL_SIZE, LEADING),
+                ("FONT", (0, 1), (-1, -1), FONT, CELL_SIZE, LEADING),
+                ("TEXTCOLOR", (0, 0), (-1, -1), INK),
+                ("VALIGN", (0, 0), (-1, -1), "TOP"),
+                ("BACKGROUND", (0, 0), (-1, 0), HEAD),
+                ("LINEBELOW", (0, 0), (-1, 0), 0.6, INK),
+                ("LEFTPADDING", (0, 0), (-1, -1), PADDING),
+                ("RIGHTPADDING", (0, 0), (-1, -1), PADDING),
+                ("TOPPADDING", (0, 0), (-1, -1), PADDING - 0.8),
+                ("BOTTOMPADDING", (0, 0), (-1, -1), PADDING),
+                *rules,
+            ]
+        )
+    )
+    return made
+
+
+def _with_room(
+    texts: Sequence[str], columns: Sequence[float]
+) -> Iterator[tuple[str, float]]:
+    """Each cell's text with the room for it. [pt]"""
+    for text, column in zip(texts, columns, strict=True):
+        yield text, column - 2 * PADDING
+
+
+def _lines(text: str, room: float, *, bold: bool = False) -> tuple[str, ...]:
+    return wrapped(text or "–", CELL_SIZE, room, bold=bold)
+
+
+def _parts(row: Sequence[tuple[str, ...]]) -> list[list[tuple[str, ...]]]:
+    """A row as one or more, none with more lines than a page can hold."""
+    tallest = max(len(cell) for cell in row)
+    return [
+        [cell[first : first + MOST_LINES] for cell in row]
+        for first in range(0, tallest, MOST_LINES)
+    ]
+
+
+def fact_table(facts: Sequence[tuple[str, str]], width: float) -> Table:
+    """Pairs of a matter and what holds for it."""
+    return table(("Matter", "Stated"), facts, (0.28, 0.72), width)

@@ -1,0 +1,215 @@
+"""Zones: comparisons, largest values without any level, circuits that matter."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+from reportlab.platypus import Flowable
+
+from engine.report.names import Wording
+from engine.report.text import bullets, paragraph, table
+from engine.report.wording import STATE_SENTENCES
+from engine.report.words import length, place
+from engine.results import (
+    Assessment,
+    Comparison,
+    Contribution,
+    NetCurrentEffect,
+    PlaceDetails,
+    ReceptorResult,
+    ZoneResult,
+)
+from engine.units import significant, text_beside
+
+#: Circuits listed under one result: those that matter most.
+MOST_CIRCUITS = 6
+
+
+def zone_section(
+    assessment: Assessment, words: Wording, width: float
+) -> list[Flowable]:
+    """Zones: comparisons, maxima without any level, circuits that matter."""
+    if not assessment.zones:
+        return [paragraph("No zone was entered.")]
+    story: list[Flowable] = []
+    rows = [row for z in assessment.zones for row in comparison_rows(z, words)]
+    if rows:
+        story.append(comparison_table("Zone", rows, words, width))
+    else:
+        story.append(paragraph("No zone names a reference level."))
+    reasons = [f"{z.zone.title}: {z.reason}" for z in assessment.zones if z.reason]
+    story += bullets(reasons)
+    story += _maxima_table(assessment, words, width)
+    details = [
+        (z.zone.title, words.name(m.case), m.details)
+        for z in assessment.zones
+        for m in z.maxima
+    ]
+    story += _contribution_table(details, words, width)
+    searched = [f"{z.zone.title}: {z.searched}" for z in assessment.zones if z.searched]
+    story += bullets(searched)
+    return story
+
+
+def comparison_table(
+    what: str, rows: Sequence[Sequence[str]], words: Wording, width: float
+) -> Flowable:
+    """Comparisons, one a row."""
+    heads = (
+        f"{what}, reference level, load case", f"B [{words.unit}]", f"L [{words.unit}]",
+        "B/L", f"U [{words.unit}]", "State", f"Place x, y, z [{words.length_unit}]",
+        "Masked, near field, area above",
+    )  # fmt: skip
+    return table(heads, rows, (21, 9, 9, 8, 7, 17, 13, 18), width)
+
+
+def comparison_rows(
+    result: ZoneResult | ReceptorResult, words: Wording
+) -> list[tuple[str, ...]]:
+    """A row of the table for each comparison of a zone or receptor."""
+    return [_comparison_row(c, words) for c in result.comparisons]
+
+
+def _comparison_row(comparison: Comparison, words: Wording) -> tuple[str, ...]:
+    limit = comparison.level_value
+    case = words.name(comparison.case)
+    if not comparison.counted:
+        case += " (for information)"
+    state = f"{comparison.state}: " + (
+        comparison.reason
+        if comparison.state == "not evaluable"
+        else STATE_SENTENCES[comparison.state]
+    )
+    kind = f" ({comparison.kind})" if comparison.kind else ""
+    ratio = "–" if comparison.ratio is None else text_beside(comparison.ratio, 1.0)
+    several = "several frequencies" if comparison.ratio is not None else ""
+    return (
+        f"{words.name(comparison.place)}\n{words.name(comparison.level)}\n{case}",
+        words.beside(comparison.value, limit) + kind,
+        words.value(limit) if limit is not None else several,
+        ratio,
+        words.value(comparison.uncertainty),
+        state,
+        _place(comparison.details, words),
+        _marks(comparison, words),
+    )
+
+
+def _place(details: PlaceDetails | None, words: Wording) -> str:
+    if details is None:
+        return "–"
+    text = place(details.at, words.length_unit)
+    if details.height is not None:
+        text += f"\n{length(details.height, words.length_unit)} above the floor"
+    return text
+
+
+def _marks(comparison: Comparison, words: Wording) -> str:
+    lines = [f"masked {100 * comparison.masked_share:.0f} %"]
+    if comparison.area_above is not None:
+        lines.append(f"ratio above 1 on {comparison.area_above:.2f} m²")
+    details = comparison.details
+    if details is not None and details.near_field:
+        lines.append("near field, even current assumed")
+    if details is not None and details.is_bound:
+        lines.append(f"upper bound: {details.bound_reason}")
+    if comparison.other_kind_ratio is not None:
+        other = "DC" if comparison.kind == "AC" else "AC"
+        lines.append(f"{other} ratio {significant(comparison.other_kind_ratio)}")
+    if comparison.not_covered:
+        listed = ", ".join(f"{f:g} Hz" for f in comparison.not_covered)
+        lines.append(f"not dealt with by the level: {listed}")
+    return "\n".join(lines)
+
+
+def _maxima_table(
+    assessment: Assessment, words: Wording, width: float
+) -> list[Flowable]:
+    rows = []
+    for zone in assessment.zones:
+        for m in zone.maxima:
+            details = m.details
+            heights = "\n".join(
+                f"{length(h, words.length_unit)}: {words.value(b)}"
+                for h, b in details.by_height
+            )
+            spectrum = "\n".join(
+                f"{part.frequency:g} Hz: {words.value(part.value)}"
+                for part in details.by_frequency
+            )
+            notes = [m.reason] if m.reason else []
+            notes.append(f"last step of the search {1000 * details.step:.3g} mm")
+            if details.near_field:
+                notes.append("near field, even current assumed")
+            if details.is_bound:
+                notes.append(f"upper bound: {details.bound_reason}")
+            rows.append(
+                (
+                    zone.zone.title,
+                    words.name(m.case),
+                    f"{words.value(m.value)} ({m.kind})",
+                    _place(details, words),
+                    heights,
+                    spectrum,
+                    "\n".join(notes),
+                )
+            )
+    if not rows:
+        return []
+    measure = words.length_unit
+    heads = (
+        "Zone", "Load case", f"Largest B [{words.unit}]", f"Place x, y, z [{measure}]",
+        f"Over that point, height [{measure}]: B", f"By frequency [{words.unit}]",
+        "Notes",
+    )  # fmt: skip
+    text = "Largest RMS resultant of each zone by its spatial rule, without any level:"
+    return [paragraph(text), table(heads, rows, (14, 14, 10, 15, 14, 13, 20), width)]
+
+
+def _contribution_table(
+    places: Iterable[tuple[str, str, PlaceDetails]], words: Wording, width: float
+) -> list[Flowable]:
+    rows = [
+        _contribution_row(title, case, d.contributions, d.net_current, words)
+        for title, case, d in places
+        if d.contributions or d.net_current
+    ]
+    if not rows:
+        return []
+    text = (
+        "Circuits that matter at the place of the largest value. A share is the "
+        "circuit's part along the whole field; the shares add up to B, and a negative "
+        "one weakens it. Beside it: what remains without the circuit."
+    )
+    heads = (
+        "Place", "Load case", f"Circuit: share [{words.unit}] (without it)",
+        f"1 A of net current alone would give [{words.unit}]",
+    )  # fmt: skip
+    return [paragraph(text), table(heads, rows, (20, 20, 34, 26), width)]
+
+
+def _contribution_row(
+    title: str,
+    case: str,
+    contributions: Sequence[Contribution],
+    net: NetCurrentEffect | None,
+    words: Wording,
+) -> tuple[str, ...]:
+    ordered = sorted(contributions, key=lambda c: -abs(c.share))
+    lines = [
+        f"{words.name(c.circuit)}: {_signed(c.share, words)} ({words.value(c.without)})"
+        for c in ordered[:MOST_CIRCUITS]
+    ]
+    if len(ordered) > MOST_CIRCUITS:
+        lines.append(f"and {len(ordered) - MOST_CIRCUITS} more")
+    effect = "–"
+    if net is not None:
+        effect = (
+            f"{words.value(net.per_ampere)} in {words.name(net.circuit)}, along "
+            f"{' '.join(net.labels)}"
+        )
+    return (title, case, "\n".join(lines) or "–", effect)
+
+
+def _signed(tesla: float, words: Wording) -> str:
+    return words.value(tesla).replace("-", "−")
