@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
+import numpy as np
+
 from engine.circuits import LoadCase
 from engine.decisions import Counts, counts, exit_code, state_of, worst_comparisons
 from engine.errors import Cancelled, Progress, stop_if
@@ -83,6 +85,9 @@ def assess(
     """
     chosen = layout.cases if cases is None else cases
     loaded = loaded_layout(layout, chosen, cache, cancelled)
+    if layout.receptors and loaded.fields.cases:
+        points = [receptor.at for receptor in layout.receptors]
+        loaded.fields.look_at(np.array(points, np.float64))
     places: list[Item] = [*layout.zones, *layout.receptors]
     zones, receptors = [], []
     for k, place in enumerate(places):

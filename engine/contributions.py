@@ -8,25 +8,15 @@ from dataclasses import replace
 import numpy as np
 from numpy.typing import NDArray
 
-from engine import field
 from engine.case_fields import CaseCurrents
 from engine.circuits import LINES, RETURNS, STRAY, Circuit
 from engine.conductor import Conductor
 from engine.currents import conductor_currents
-from engine.items import Point3
 from engine.levels import Kind, is_kind
 from engine.results import Contribution, NetCurrentEffect
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
-
-
-def responses_at(conductors: Sequence[Conductor], at: Point3) -> Floats:
-    """(m, 3) field of 1 A in each conductor at a point. [T/A]"""
-    if not conductors:
-        return np.zeros((0, 3))
-    found: Floats = field.responses(conductors, np.array([at], np.float64))[:, 0]
-    return found
 
 
 def contributions(

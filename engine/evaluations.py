@@ -107,6 +107,13 @@ class Evaluation:
         scores: Floats = np.where(self.masked, -np.inf, self.unmasked_score(quantity))
         return scores
 
+    def part(self, positions: slice) -> Evaluation:
+        """The same at some of the positions."""
+        q, p = self._counts.shape
+        b = self._b.reshape(len(self._b), q, p, 3)[:, :, positions]
+        masked = ~self._counts[:, positions]
+        return Evaluation(self._case, b.reshape(len(b), -1, 3), masked.reshape(-1), q)
+
 
 def points_over(region: Region, positions: Floats) -> Floats:
     """(q p, 3) points over the positions, offset by offset."""
@@ -115,13 +122,28 @@ def points_over(region: Region, positions: Floats) -> Floats:
     return points
 
 
-def evaluation_at(
-    fields: CaseFields, region: Region, quantity: Quantity, positions: Floats
-) -> Evaluation:
-    """The case of a quantity at positions of a region, masked there."""
-    case = fields.cases[quantity.case]
+def evaluations(
+    fields: CaseFields, region: Region, positions: Floats, *, keep: bool = False
+) -> tuple[Evaluation, ...]:
+    """Every case at (p, 3) positions of a region, masked there."""
     points = points_over(region, positions)
-    b = fields.flux_density(case, points)
-    return Evaluation(
-        case, b, fields.masked(case, points, region.clearance), len(region.offsets)
+    q = len(region.offsets)
+    return tuple(
+        Evaluation(case, b, masked, q)
+        for case, b, masked in zip(
+            fields.cases,
+            fields.flux_densities(points, keep=keep),
+            fields.masked(points, region.clearance),
+            strict=True,
+        )
     )
+
+
+def evaluation_at(
+    fields: CaseFields, region: Region, case: CaseCurrents, position: Floats
+) -> Evaluation:
+    """One case at one position (3,), of which everything is remembered."""
+    points = points_over(region, position[None])
+    b = fields.flux_density_at(case, points)
+    masked = fields.masked_at(case, points, region.clearance)
+    return Evaluation(case, b, masked, len(region.offsets))

@@ -99,11 +99,15 @@ def masked(
     -------
     (n,) bool
     """
-    if conductors:
-        distances = field.surface_distance(conductors, points)
-    else:
-        distances = np.full(len(points), np.inf)
+    distances = distances_to(conductors, points)
     return masked_at(distances, closed, points, clearance)
+
+
+def distances_to(conductors: Sequence[Conductor], points: Floats) -> Floats:
+    """(n,) to the nearest conductor's surface, infinite without any. [m]"""
+    if not conductors:
+        return np.full(len(points), np.inf)
+    return field.surface_distance(conductors, points)
 
 
 def masked_at(

@@ -7,12 +7,11 @@ from collections.abc import Mapping, Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from engine import field
 from engine.case_fields import CaseCurrents, CaseFields
 from engine.circuits import Circuit
-from engine.contributions import contributions, net_current_effect, responses_at
+from engine.contributions import contributions, net_current_effect
 from engine.criteria import ReferenceLevel
-from engine.evaluations import Evaluation, Quantity
+from engine.evaluations import Evaluation, Quantity, points_over
 from engine.items import Point3
 from engine.levels import Kind, is_kind, level_at
 from engine.regions import Region
@@ -41,36 +40,29 @@ class Surroundings:
     def __init__(self, fields: CaseFields, circuits: Sequence[Circuit]) -> None:
         self.fields = fields
         self._circuits = circuits
-        self._responses: dict[Point3, Floats] = {}
         self._effects: dict[Point3, NetCurrentEffect | None] = {}
-
-    def _responses_at(self, at: Point3) -> Floats:
-        if at not in self._responses:
-            self._responses[at] = responses_at(self.fields.conductors, at)
-        return self._responses[at]
 
     def contributions(
         self, case: CaseCurrents, at: Point3, kind: Kind
     ) -> tuple[Contribution, ...]:
         """The circuits' parts at a place, the largest first."""
-        responses = self._responses_at(at)
+        responses = self.fields.at(at).responses
         return contributions(case, self.fields.conductors, responses, kind)
 
     def net_current(self, at: Point3) -> NetCurrentEffect | None:
         """What 1 A of net current in the most sensitive circuit gives at a place."""
         if at not in self._effects:
             self._effects[at] = net_current_effect(
-                self._circuits, self.fields.conductors, self._responses_at(at)
+                self._circuits, self.fields.conductors, self.fields.at(at).responses
             )
         return self._effects[at]
 
-    def is_near(self, at: Point3) -> bool:
-        """Whether a place is nearer than two bar widths or diameters."""
-        points = np.array([at], np.float64)
-        near = len(self.fields.conductors) > 0 and bool(
-            field.near_field(self.fields.conductors, points)[0]
+    def look_around(self, region: Region, positions: Floats) -> None:
+        """Look at all heights over (p, 3) positions and at their means' at once."""
+        over = [_over(region, position) for position in positions]
+        self.fields.look_at(
+            np.concatenate([positions, points_over(region, positions), *over])
         )
-        return near
 
     def details(self, region: Region, quantity: Quantity, found: Found) -> PlaceDetails:
         """Everything about the place where a quantity is largest in a region."""
@@ -104,7 +96,7 @@ class Surroundings:
             height=height,
             by_height=over,
             by_frequency=at_frequencies(found.by_frequency, quantity.level),
-            near_field=self.is_near(at),
+            near_field=self.fields.at(at).near,
             step=found.step,
             is_bound=found.is_bound,
             bound_reason=found.bound_reason,
@@ -116,19 +108,22 @@ class Surroundings:
         self, region: Region, case: CaseCurrents, quantity: Quantity, position: Floats
     ) -> tuple[tuple[float, float], ...]:
         """Pairs of height and value over a place on plan, masked ones left out."""
-        heights = np.array(region.heights)
-        points = np.column_stack(
-            [np.broadcast_to(position[:2], (len(heights), 2)), region.floor + heights]
-        )
-        b = self.fields.flux_density(case, points)
-        masked = self.fields.masked(case, points, region.clearance)
+        points = _over(region, position)
+        b = self.fields.flux_density_at(case, points)
+        masked = self.fields.masked_at(case, points, region.clearance)
         evaluation = Evaluation(case, b, masked, 1)
         values = _compared(evaluation, quantity)
         return tuple(
             (float(h), float(v))
-            for h, v, m in zip(heights, values, masked, strict=True)
+            for h, v, m in zip(region.heights, values, masked, strict=True)
             if not m
         )
+
+
+def _over(region: Region, position: Floats) -> Floats:
+    """(h, 3) points at the region's heights over a position. [m]"""
+    z = region.floor + np.array(region.heights)
+    return np.column_stack([np.broadcast_to(position[:2], (len(z), 2)), z])
 
 
 def _compared(evaluation: Evaluation, quantity: Quantity) -> Floats:

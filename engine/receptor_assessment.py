@@ -40,7 +40,7 @@ def receptor_result(loaded: LoadedLayout, receptor: Receptor) -> ReceptorResult:
             fields.append(_no_field(result.case, problem))
             continue
         points = np.array([receptor.at], np.float64)
-        b = loaded.fields.flux_density(case, points)
+        b = loaded.fields.flux_density_at(case, points)
         evaluation = Evaluation(case, b, np.zeros(1, bool), 1)
         fields.append(_field(loaded, receptor, case, b[:, 0], evaluation))
         for quantity in wanted:
@@ -58,7 +58,7 @@ def _masked_reason(loaded: LoadedLayout, case: CaseCurrents, receptor: Receptor)
     for keepout in case.closed:
         if keepout.masks(points)[0]:
             return f"It lies in the closed enclosure “{keepout.title}”."
-    if loaded.fields.masked(case, points, 0.0)[0]:
+    if loaded.fields.masked_at(case, points, 0.0)[0]:
         return "It lies inside a conductor, where no value can be given."
     return ""
 
@@ -92,7 +92,7 @@ def _field(
         by_frequency=at_frequencies(by_frequency, None),
         is_bound=totals[kind][1],
         bound_reason=totals[kind][2],
-        near_field=loaded.surroundings.is_near(receptor.at),
+        near_field=loaded.fields.at(receptor.at).near,
         measured_ratio=ratio,
         contributions=loaded.surroundings.contributions(case, receptor.at, kind),
         net_current=loaded.surroundings.net_current(receptor.at),

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from engine.comparability import blocking_sentences
 from engine.comparisons import KINDS, Largest, comparisons, quantities
 from engine.errors import UserError
@@ -54,6 +56,9 @@ def zone_result(loaded: LoadedLayout, zone: Zone) -> ZoneResult:
         except UserError as error:
             problem = str(error)
     if searched is not None and isinstance(region, Region):
+        positions = [f.position for f in searched.found if f is not None]
+        if positions:
+            loaded.surroundings.look_around(region, np.array(positions))
         for quantity, largest in zip(wanted, searched.found, strict=True):
             if largest is not None:
                 details = loaded.surroundings.details(region, quantity, largest)

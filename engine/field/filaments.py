@@ -49,10 +49,10 @@ _TOLERANCE = 5e-4
 
 #: Numbers of points in use, so that tiles share their filaments.
 _LADDER = np.array(
-    [*range(1, 7), 8, 10, 12, 16, 20, 24, 32, 40, 48, 64, 80, 96, 128, 160, 192]
-    + [256, 320, 384, 512, 640, 768, 1024],
+    (1, 2, 3, 4, 5, 6, 8, 10, 12, 16, 20, 24, 32, 40, 48, 64, 80, 96, 128, 160, 192,
+     256, 320, 384, 512, 640, 768, 1024),
     dtype=np.int16,
-)
+)  # fmt: skip
 
 #: Distance over side at which 1, 2, 3 ... points leave half a thousandth of a field
 #: that falls with the fourth power of distance (Gauss-Legendre remainder).
@@ -140,6 +140,7 @@ class _Group:
         return bool((self.sides == self.sides[0]).all() and len(set(self.round)) == 1)
 
 
+@lru_cache(maxsize=4096)
 def _short_loop(conductor: Conductor) -> bool:
     path, shape = conductor.path, conductor.shape
     if not np.allclose(path[0], path[-1], rtol=0, atol=1e-6):

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 from numba import njit
@@ -58,7 +59,12 @@ def sides_of(conductor: Conductor) -> tuple[float, float]:
 
 
 def legs_of(conductors: Sequence[Conductor]) -> Legs:
-    """Tabulate the legs of the conductors."""
+    """Tabulate the legs of the conductors; of the same ones, once."""
+    return _legs_of(tuple(conductors))
+
+
+@lru_cache(maxsize=8)
+def _legs_of(conductors: tuple[Conductor, ...]) -> Legs:
     tables = [_table(conductor) for conductor in conductors]
     counts = [len(table) for table in tables]
     sides = np.array([sides_of(c) for c in conductors]).reshape(-1, 2)
