@@ -23,7 +23,7 @@ from engine.runs import Bar, Joint, Round, Run
 
 AnyItem = TypeVar("AnyItem", bound=Item)
 
-#: Coordinates are kept to a tenth of a nanometre, so that 0.1 + 0.2 is 0.3. [digits after 1 m]
+#: Decimals of coordinates, a tenth of a nanometre, so that 0.1 + 0.2 is 0.3.
 _DIGITS = 10
 
 
