@@ -5,7 +5,7 @@ from __future__ import annotations
 import csv
 import io
 import math
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from itertools import pairwise
 from pathlib import Path
 
@@ -53,11 +53,15 @@ def write_png(
     write_file(path, png(picture))
 
 
-def write_csv(path: Path | str, subject: MapSubject, heights: Iterable[float]) -> None:
-    """Write the values of a map: x, y, z and the flux density, one point a row.
+def write_csv(
+    path: Path | str, subjects: Sequence[MapSubject], heights: Iterable[float]
+) -> None:
+    """Write the values of maps on one grid: x, y, z and the values, a point a row.
 
     Parameters
     ----------
+    subjects : sequence of MapSubject
+        On the same grid and in the same units; a column for each.
     heights : (ny · nx) float
         z of each point, row by row. [m]
 
@@ -70,27 +74,32 @@ def write_csv(path: Path | str, subject: MapSubject, heights: Iterable[float]) -
     -----
     The header names the units. Where nothing can be assessed the value is empty.
     """
-    write_file(path, grid_csv(subject, heights).encode("utf-8"))
+    write_file(path, grid_csv(subjects, heights).encode("utf-8"))
 
 
-def grid_csv(subject: MapSubject, heights: Iterable[float]) -> str:
-    """The values of a map as CSV text, see `write_csv`."""
-    unit, length = subject.unit, subject.length_unit
+def grid_csv(subjects: Sequence[MapSubject], heights: Iterable[float]) -> str:
+    """The values of maps as CSV text, see `write_csv`."""
+    first = subjects[0]
+    unit, length = first.unit, first.length_unit
     metres = LENGTH_UNITS[length]
     file = io.StringIO()
     writer = csv.writer(file, lineterminator="\n")
-    writer.writerow(
-        [f"x [{length}]", f"y [{length}]", f"z [{length}]", f"B RMS resultant [{unit}]"]
-    )
+    heads = [f"{axis} [{length}]" for axis in "xyz"]
+    writer.writerow([*heads, *(f"B {s.quantity} [{unit}]" for s in subjects)])
     z = iter(heights)
-    for row, y in enumerate(subject.ys):
-        for column, x in enumerate(subject.xs):
+    for row, y in enumerate(first.ys):
+        for column, x in enumerate(first.xs):
             place = [f"{v / metres + 0.0:.9g}" for v in (x, y, next(z))]
-            value = subject.values[row, column]
-            hidden = subject.mask[row, column] or not math.isfinite(value)
-            shown = "" if hidden else f"{value / FLUX_DENSITY_UNITS[unit]:.9g}"
-            writer.writerow([*place, shown])
+            values = [_cell(subject, row, column) for subject in subjects]
+            writer.writerow([*place, *values])
     return file.getvalue()
+
+
+def _cell(subject: MapSubject, row: int, column: int) -> str:
+    value = float(subject.values[row, column])
+    if subject.mask[row, column] or not math.isfinite(value):
+        return ""
+    return f"{value / FLUX_DENSITY_UNITS[subject.unit]:.9g}"
 
 
 def png(picture: Picture, dots_per_inch: int = DOTS_PER_INCH) -> bytes:

@@ -2,6 +2,7 @@
 
 from engine.picture.map_picture import map_picture
 from engine.picture.marks import Fill, Picture, Raster, Stroke, Words
+from engine.picture.of_result import map_subjects
 from engine.picture.references import reference_lines
 from engine.picture.subject import MapSubject, ReferenceLine
 
@@ -14,5 +15,6 @@ __all__ = [
     "Stroke",
     "Words",
     "map_picture",
+    "map_subjects",
     "reference_lines",
 ]

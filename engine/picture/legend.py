@@ -26,7 +26,8 @@ BAR_HEIGHT = 40.0
 
 CAUTION = (
     "Calculated from the currents and positions entered, in the undisturbed field; not "
-    "a measurement, not a statement on health, and not a judgement under any rule."
+    "a measurement, not a statement on health, and not a judgement under any rule. "
+    "Local regulation and licensed, competent practice decide."
 )
 
 
@@ -36,7 +37,7 @@ def draw_legend(
     """Draw the colour bar with its unit, and what the marks on the map mean."""
     picture.add(Words((left, top - 1.5), "Flux density B", SIZE, bold=True))
     picture.add(
-        Words((left, top - 1.5 - STEP), f"RMS resultant [{subject.unit}]", SIZE)
+        Words((left, top - 1.5 - STEP), f"{subject.quantity} [{subject.unit}]", SIZE)
     )
     bottom = top - 9.0 - BAR_HEIGHT
     _draw_bar(picture, subject, left, bottom)

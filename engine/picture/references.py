@@ -12,12 +12,12 @@ from engine.picture.subject import ReferenceLine
 def reference_lines(
     layout: Layout, frequencies: Iterable[float]
 ) -> tuple[tuple[ReferenceLine, ...], str]:
-    """The levels that a map of the AC resultant can show, and a note for its legend.
+    """The levels that a map can show, and a note for its legend.
 
     Parameters
     ----------
     frequencies : float
-        Of the currents that flow. [Hz]
+        Of the currents whose field the map shows: AC, or 0 Hz alone. [Hz]
 
     Notes
     -----
@@ -25,7 +25,7 @@ def reference_lines(
     or the only one. Where several frequencies flow the note says so. Levels of peak or
     axis values, and those that lack a source, a category or a value, are not drawn.
     """
-    flowing = sorted({f for f in frequencies if f > 0})
+    flowing = sorted(set(frequencies))
     if not flowing or not layout.levels:
         return (), ""
     at = layout.settings.frequency

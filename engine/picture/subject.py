@@ -32,11 +32,13 @@ class MapSubject:
     xs, ys : (nx,), (ny,) float
         Axes of the grid. [m]
     values : (ny, nx) float
-        RMS resultant. [T]
+        Not negative. [T]
     mask : (ny, nx) bool
         True where nothing can be assessed.
     title : str
         Case and height, for people.
+    quantity : str
+        What the values are.
     unit : str
         Display unit of flux density.
     low, high : float
@@ -58,6 +60,7 @@ class MapSubject:
     values: Floats
     mask: Bools
     title: str
+    quantity: str = "RMS resultant"
     unit: str = "µT"
     low: float = 1e-7
     high: float = 1e-3

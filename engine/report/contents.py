@@ -59,6 +59,7 @@ def story(
     plan: Plan,
     words: Wording,
     paper: Paper,
+    left_out: int,
 ) -> list[Flowable]:
     """All that the report prints, title block aside."""
     layout = assessment.layout
@@ -70,7 +71,9 @@ def story(
     told.section("Remarks not cleared", _remarks(layout, remarks, words, width))
     figures = [_figure(subject, plan, paper) for subject in maps]
     told.section(
-        "Maps", _maps(figures), room=figures[0].height / mm if figures else 0.0
+        "Maps",
+        _maps(figures, left_out),
+        room=figures[0].height / mm if figures else 0.0,
     )
     told.section("Zones", zone_section(assessment, words, width))
     told.section("Receptors", receptor_section(assessment, words, width))
@@ -185,12 +188,14 @@ def _figure(subject: MapSubject, plan: Plan, paper: Paper) -> Figure:
     return Figure(map_picture(subject, plan, width=paper.text_width, height=room))
 
 
-def _maps(figures: Sequence[Figure]) -> list[Flowable]:
+def _maps(figures: Sequence[Figure], left_out: int) -> list[Flowable]:
     if not figures:
         return [paragraph("No map: there is no zone, or its field is not determined.")]
     made: list[Flowable] = []
     for figure in figures:
         made += [figure, gap(4.0)]
+    if left_out:
+        made.append(paragraph(f"Heights of zones without a map here: {left_out}."))
     return made
 
 

@@ -21,6 +21,7 @@ def report_pdf(
     maps: Sequence[MapSubject],
     plan: Plan,
     unit: str,
+    left_out: int = 0,
 ) -> bytes:
     """The report as the bytes of a PDF file; equal results give equal bytes.
 
@@ -32,6 +33,8 @@ def report_pdf(
         In the order in which they are printed.
     unit : str
         Display unit of flux density, for every value.
+    left_out : int
+        Maps that were not computed for want of room.
 
     Raises
     ------
@@ -41,5 +44,5 @@ def report_pdf(
     register_fonts()
     layout = assessment.layout
     words = wording(layout, flux_density_unit(unit))
-    parts = story(assessment, remarks, maps, plan, words, paper(layout))
+    parts = story(assessment, remarks, maps, plan, words, paper(layout), left_out)
     return pdf(layout, parts)

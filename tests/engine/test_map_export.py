@@ -156,7 +156,7 @@ def test_the_same_map_gives_the_same_bytes():
 
 def test_grid_has_units_places_and_empty_masked_values():
     shown = subject()
-    rows = list(csv.reader(io.StringIO(grid_csv(shown, [1.0] * shown.values.size))))
+    rows = list(csv.reader(io.StringIO(grid_csv((shown,), [1.0] * shown.values.size))))
     assert rows[0] == ["x [m]", "y [m]", "z [m]", "B RMS resultant [µT]"]
     assert len(rows) == 1 + shown.values.size
     assert [float(cell) for cell in rows[1][:3]] == [-1.0, -1.0, 1.0]
@@ -168,7 +168,9 @@ def test_grid_has_units_places_and_empty_masked_values():
 
 def test_grid_in_milligauss_and_feet():
     shown = subject(unit="mG", length_unit="ft")
-    rows = list(csv.reader(io.StringIO(grid_csv(shown, [0.3048] * shown.values.size))))
+    rows = list(
+        csv.reader(io.StringIO(grid_csv((shown,), [0.3048] * shown.values.size)))
+    )
     assert rows[0] == ["x [ft]", "y [ft]", "z [ft]", "B RMS resultant [mG]"]
     assert float(rows[1][2]) == pytest.approx(1.0)
     assert float(rows[1][3]) == pytest.approx(shown.values[0, 0] * 1e7, rel=1e-8)
@@ -176,10 +178,20 @@ def test_grid_in_milligauss_and_feet():
 
 def test_a_folder_that_is_not_there_is_named(tmp_path):
     with pytest.raises(UserError, match=r"map\.csv was not written"):
-        write_csv(tmp_path / "none" / "map.csv", subject(), [1.0] * 81 * 51)
+        write_csv(tmp_path / "none" / "map.csv", (subject(),), [1.0] * 81 * 51)
 
 
 def test_values_that_do_not_fit_their_grid_are_refused():
     wrong = subject(values=np.ones((3, 3)))
     with pytest.raises(ValueError, match="on a grid of"):
         map_picture(wrong, plan(Layout(), ()), width=180, height=150)
+
+
+def test_alternating_and_direct_fields_stand_side_by_side():
+    shown = subject()
+    direct = subject(quantity="resultant at 0 Hz", values=2.0 * shown.values)
+    rows = list(
+        csv.reader(io.StringIO(grid_csv((shown, direct), [1.0] * shown.values.size)))
+    )
+    assert rows[0][3:] == ["B RMS resultant [µT]", "B resultant at 0 Hz [µT]"]
+    assert float(rows[1][4]) == pytest.approx(2.0 * float(rows[1][3]))

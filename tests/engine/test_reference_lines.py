@@ -4,7 +4,13 @@ from __future__ import annotations
 
 from msgspec.structs import replace
 
-from engine.criteria import LevelRange, LevelRanges, ReferenceLevel
+from engine.criteria import (
+    LevelPoint,
+    LevelRange,
+    LevelRanges,
+    LevelTable,
+    ReferenceLevel,
+)
 from engine.layout import Layout
 from engine.picture.references import reference_lines
 
@@ -26,7 +32,7 @@ def test_the_value_is_that_at_the_supply_frequency():
 
 
 def test_several_frequencies_are_said():
-    _, note = reference_lines(Layout(levels=(LEVEL,)), (0.0, 50.0, 150.0))
+    _, note = reference_lines(Layout(levels=(LEVEL,)), (50.0, 150.0))
     assert "comparisons count every frequency" in note
 
 
@@ -49,5 +55,18 @@ def test_levels_that_a_line_cannot_show_are_counted():
     assert note == "reference levels not drawn: 5"
 
 
-def test_direct_current_has_no_line():
-    assert reference_lines(Layout(levels=(LEVEL,)), (0.0,)) == ((), "")
+def test_direct_current_has_its_own_level():
+    assert reference_lines(Layout(levels=(LEVEL,)), (0.0,)) == (
+        (),
+        "reference levels not drawn: 1",
+    )
+    row = LevelTable(points=(LevelPoint(frequency=0, level=4.3e-4),))
+    (line,), note = reference_lines(
+        Layout(levels=(replace(LEVEL, values=row),)), (0.0,)
+    )
+    assert line.value == 4.3e-4
+    assert note == "reference level at 0 Hz"
+
+
+def test_nothing_that_flows_has_no_line():
+    assert reference_lines(Layout(levels=(LEVEL,)), ()) == ((), "")
