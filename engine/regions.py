@@ -19,7 +19,7 @@ Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
 
 #: Pieces along a side of an average zone, and the finest piece near conductors. [m]
-_PIECES = 40
+_PIECES = 60
 _COARSE_LEAST = 0.05
 _FINEST = 0.02
 

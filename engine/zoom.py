@@ -17,7 +17,8 @@ Floats = NDArray[np.float64]
 
 #: Places that are zoomed into, at least two steps apart.
 _CANDIDATES = 10
-#: Zooming ends when the maximum changes by less. Relative.
+#: Zooming ends when the maximum changes by less, over the last step too beside a mask.
+#: Relative.
 _SETTLED = 1e-3
 _MOST_ROUNDS = 12
 #: Each round looks this much closer.
@@ -88,7 +89,7 @@ class Zoom:
         self._step = float(np.max(self._reach)) * _spacing(self._region)
         self._rounds += 1
         reached = float(np.max(self._values))
-        settled = reached - best < _SETTLED * reached
+        settled = reached - best < _SETTLED * reached and not self._is_at_mask(tried)
         if (self._rounds > 1 and settled) or self._rounds == _MOST_ROUNDS:
             self.is_done = True
             return
@@ -96,6 +97,21 @@ class Zoom:
         self._centres, self._values = self._centres[kept], self._values[kept]
         self._reach = self._reach[kept] / _CLOSER
         self._places = self._next_places()
+
+    def _is_at_mask(self, tried: Floats) -> bool:
+        """Whether a mask next to the best place may hide more than is settled.
+
+        The mask's edge lies within a step; what is hidden there is about as much as
+        the field changes over a step.
+        """
+        best = int(np.argmax(self._values))
+        away = np.linalg.norm(self._places[best] - self._centres[best], axis=1)
+        beside = tried[best][away <= 1.8 * self._step]
+        open_beside = beside[np.isfinite(beside)]
+        if len(open_beside) in (0, len(beside)):
+            return False
+        change = float(self._values[best] - np.min(open_beside))
+        return change > _SETTLED * float(self._values[best])
 
 
 def zoom_in(fields: CaseFields, region: Region, zooms: Sequence[Zoom]) -> None:
