@@ -9,18 +9,20 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, TypeVar
 
 from msgspec import Struct
-from msgspec.structs import fields
+from msgspec.structs import fields, replace
 
 from engine.circuits import Circuit, LoadCase, OwnCurrents, Power
 from engine.criteria import ReferenceLevel
 from engine.equipment import Board, ConductorLoop, Transformer
-from engine.items import Item
+from engine.items import Item, ValueOrigin
 from engine.layout import Layout, Settings
 from engine.places import Enclosure, Receptor, Room, Storey, Zone
 from engine.runs import Joint, Run
+
+AnyItem = TypeVar("AnyItem", bound=Item)
 
 #: What a result depends on, by type of item. The other fields are wording, wiring or
 #: appearance.
@@ -115,6 +117,56 @@ def assumptions(layout: Layout) -> tuple[Assumption, ...]:
             if _is_stated(item, name):
                 found.extend(_of_field(item, name))
     return tuple(found)
+
+
+def is_assumed(item: Item, path: str) -> bool:
+    """Whether nothing confirms the value of an item at a dotted name.
+
+    The origin nearest to the value counts: its own, else that of the whole it is a
+    part of. What no result depends on is never an assumption.
+    """
+    name = path.partition(".")[0]
+    if name not in ENTERED_VALUES.get(type(item), ()) or not _is_stated(item, name):
+        return False
+    kinds = {origin.field: origin.kind for origin in item.origins}
+    while path:
+        if path in kinds:
+            return kinds[path] == "assumed"
+        path = path.rpartition(".")[0]
+    return True
+
+
+def with_origin(item: AnyItem, origin: ValueOrigin) -> AnyItem:
+    """The item with this origin of a value in place of the one it had.
+
+    Origins of the value's parts stay. "assumed" without a note is no origin at all.
+    """
+    kept = tuple(o for o in item.origins if o.field != origin.field)
+    if origin.kind == "assumed" and not origin.note:
+        return replace(item, origins=kept)
+    return replace(item, origins=(*kept, origin))
+
+
+def origin_of(item: Item, field: str) -> ValueOrigin | None:
+    """The origin stated for a value, or for the whole that it is a part of."""
+    stated = {origin.field: origin for origin in item.origins}
+    while field:
+        if field in stated:
+            return stated[field]
+        field = field.rpartition(".")[0]
+    return None
+
+
+def restated(item: AnyItem, **values: Any) -> AnyItem:
+    """The item with other values; what changed loses its origin and is assumed again.
+
+    What a document or a person vouched for was the value before.
+    """
+    changed = {name for name, value in values.items() if getattr(item, name) != value}
+    if not changed:
+        return item
+    kept = tuple(o for o in item.origins if o.field.partition(".")[0] not in changed)
+    return replace(item, **{name: values[name] for name in changed}, origins=kept)
 
 
 def value_text(value: object, field: str = "") -> str:

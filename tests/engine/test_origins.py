@@ -5,7 +5,13 @@ from __future__ import annotations
 from engine.circuits import BalancedCurrent, Circuit, Power
 from engine.items import ValueOrigin
 from engine.layout import Layout, Settings
-from engine.origins import Assumption, assumptions
+from engine.origins import (
+    Assumption,
+    assumptions,
+    origin_of,
+    restated,
+    with_origin,
+)
 from engine.runs import CircuitShare, Flat, Run
 
 
@@ -80,3 +86,28 @@ def test_nothing_entered_is_an_assumption_that_says_so() -> None:
 def test_confirmed_uncertainty_leaves_a_fresh_layout_without_assumptions() -> None:
     origin = ValueOrigin(field="uncertainty", kind="confirmed", by="R. Thornquist")
     assert assumptions(Layout(settings=Settings(origins=(origin,)))) == ()
+
+
+def test_a_changed_value_loses_its_origin_and_the_others_keep_theirs():
+    document = ValueOrigin(field="demand", kind="document", document="d", page="3")
+    part = ValueOrigin(field="demand.rms", kind="measured")
+    other = ValueOrigin(field="voltage", kind="confirmed", by="A. Tester")
+    circuit = Circuit(
+        id="F1",
+        voltage=400.0,
+        demand=BalancedCurrent(rms=10.0),
+        origins=(document, part, other),
+    )
+    changed = restated(circuit, demand=BalancedCurrent(rms=11.0), voltage=400.0)
+    assert changed.origins == (other,)
+    assert restated(circuit, voltage=400.0) is circuit
+
+
+def test_an_origin_takes_the_place_of_the_one_before():
+    circuit = Circuit(id="F1")
+    first = ValueOrigin(field="demand", kind="measured", date="2024-02-05")
+    second = ValueOrigin(field="demand", kind="confirmed", by="A. Tester")
+    stated = with_origin(with_origin(circuit, first), second)
+    assert stated.origins == (second,)
+    assert origin_of(stated, "demand.rms") == second
+    assert with_origin(stated, ValueOrigin(field="demand", kind="assumed")) == circuit
