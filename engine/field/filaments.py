@@ -109,10 +109,13 @@ def orders_of(conductors: Sequence[Conductor], legs: Legs, points: Floats) -> Or
     exact_within = 4.0 * legs.sides.max(axis=1, initial=0.0)
     distances = tile_distances(legs.table, exact_within, points, TILE, NEAREST)
     orders = np.ones((len(distances), len(legs.table), 2), np.int16)
-    names = [conductor.group for conductor in conductors]
-    for name in dict.fromkeys(names):
-        members = [i for i, other in enumerate(names) if other == name]
-        where = np.isin(legs.conductor, members)
+    members_of: dict[str, list[int]] = {}
+    for i, conductor in enumerate(conductors):
+        members_of.setdefault(conductor.group, []).append(i)
+    for members in members_of.values():
+        where = np.concatenate(
+            [np.arange(legs.first[i], legs.first[i + 1]) for i in members]
+        )
         group = _Group(
             distances[:, where, 0],
             distances[:, where, 1],

@@ -24,6 +24,8 @@ _START, _TANGENT, _WIDTH, _THICKNESS = 0, 3, 6, 9
 _LENGTH, _HALF_WIDTH, _HALF_THICKNESS, _FIRST, _LAST, _ROUND = 12, 13, 14, 15, 17, 19
 _COLUMNS = 20
 
+_BLOCK = 16  # points that share one sphere
+
 
 @dataclass(frozen=True, eq=False)
 class Legs:
@@ -168,6 +170,24 @@ def _end_distance(leg: Floats, x: float, y: float, z: float) -> float:
 
 
 @njit(nogil=True, cache=True, error_model="numpy")
+def _spheres(points: Floats) -> Floats:
+    """Centre and radius around each `_BLOCK` points in order."""
+    n = points.shape[0]
+    out = np.empty(((n + _BLOCK - 1) // _BLOCK, 4))
+    for j in range(out.shape[0]):
+        squares = 0.0
+        for axis in range(3):
+            low = high = points[j * _BLOCK, axis]
+            for i in range(j * _BLOCK, min(n, (j + 1) * _BLOCK)):
+                low = min(low, points[i, axis])
+                high = max(high, points[i, axis])
+            out[j, axis] = (low + high) / 2
+            squares += (high - low) ** 2
+        out[j, 3] = np.sqrt(squares) / 2
+    return out
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
 def tile_distances(
     table: Floats, exact_within: Floats, points: Floats, tile: int, floor: float
 ) -> Floats:
@@ -178,9 +198,11 @@ def tile_distances(
     table : (k, 20) float64
         Legs.
     exact_within : (k,) float64
-        Beyond it a lower bound by the tile's sphere will do. [m]
+        Beyond it a lower bound, by spheres around some points, will do. [m]
     points : (n, 3) float64
         Tile i holds the points from i·tile on. [m]
+    tile : int
+        A multiple of 16.
     floor : float
         Nothing nearer is reported; points inside a leg do not count. [m]
 
@@ -191,33 +213,33 @@ def tile_distances(
     """
     n = points.shape[0]
     tiles = (n + tile - 1) // tile
-    out = np.empty((tiles, table.shape[0], 2))
-    for j in range(tiles):
-        own = points[j * tile : min(n, (j + 1) * tile)]
-        low = own[0].copy()
-        high = own[0].copy()
-        for i in range(own.shape[0]):
-            for axis in range(3):
-                low[axis] = min(low[axis], own[i, axis])
-                high[axis] = max(high[axis], own[i, axis])
-        x, y, z = (low[0] + high[0]) / 2, (low[1] + high[1]) / 2, (low[2] + high[2]) / 2
-        radius = np.sqrt(np.sum((high - low) ** 2)) / 2
+    spheres = _spheres(points)
+    blocks = tile // _BLOCK
+    out = np.full((tiles, table.shape[0], 2), np.inf)
+    for j in range(spheres.shape[0]):
+        x, y, z, radius = spheres[j, 0], spheres[j, 1], spheres[j, 2], spheres[j, 3]
         for k in range(table.shape[0]):
-            leg = table[k]
-            near = _leg_distance(leg, x, y, z) - radius
-            end = _end_distance(leg, x, y, z) - radius
-            if near < exact_within[k]:
-                near = np.inf
-                end = np.inf
-                for i in range(own.shape[0]):
-                    d = _leg_distance(leg, own[i, 0], own[i, 1], own[i, 2])
-                    if d > 0.0:
-                        near = min(near, d)
-                        e = _end_distance(leg, own[i, 0], own[i, 1], own[i, 2])
-                        end = min(end, e)
-                if near == np.inf:
-                    near = floor
-                    end = max(_end_distance(leg, x, y, z) - radius, floor)
-            out[j, k, 0] = max(near, floor)
-            out[j, k, 1] = max(end, floor)
+            nearest = out[j // blocks, k]
+            near = _leg_distance(table[k], x, y, z) - radius
+            end = _end_distance(table[k], x, y, z) - radius
+            # The bound is at least half of the distance, so that no tile pays for it.
+            if near >= max(exact_within[k], 2 * radius):
+                nearest[0] = min(nearest[0], near)
+                nearest[1] = min(nearest[1], end)
+                continue
+            for i in range(j * _BLOCK, min(n, (j + 1) * _BLOCK)):
+                px, py, pz = points[i, 0], points[i, 1], points[i, 2]
+                near = _leg_distance(table[k], px, py, pz)
+                if near > 0.0:
+                    nearest[0] = min(nearest[0], near)
+                    nearest[1] = min(nearest[1], _end_distance(table[k], px, py, pz))
+    for j in range(tiles):
+        for k in range(table.shape[0]):
+            if out[j, k, 0] == np.inf:
+                # All points lie inside the leg; nothing depends on them.
+                x, y, z = points[j * tile]
+                out[j, k, 0] = floor
+                out[j, k, 1] = _end_distance(table[k], x, y, z)
+            for what in range(2):
+                out[j, k, what] = max(out[j, k, what], floor)
     return out

@@ -28,6 +28,9 @@ _LONGEST = 5000
 #: Frequencies are compared as fractions of a hertz with at most this denominator.
 _DENOMINATOR = 1000
 
+#: Crests of a cycle that are refined.
+_CRESTS = 6
+
 _MOST_SAMPLES = 4_000_000  # held at once
 
 
@@ -242,12 +245,23 @@ def _sampled_peak(amplitudes: Phasors, orders: Floats) -> Floats:
     parts = np.concatenate([turns.real, -turns.imag], axis=1)
     samples = parts @ np.concatenate([flat.real, flat.imag])
     squares = (samples.reshape(count, -1, 3) ** 2).sum(axis=2)
-    best = squares.argmax(axis=0)
-    angle = angles[best]
     largest = squares.max(axis=0)
+    # Several crests may be nearly equal: each of the highest is climbed.
+    crest = (squares >= np.roll(squares, 1, 0)) & (squares >= np.roll(squares, -1, 0))
+    squares[~crest] = -1.0
+    for start in np.argpartition(-squares, _CRESTS - 1, axis=0)[:_CRESTS]:
+        largest = np.maximum(largest, _climbed(amplitudes, orders, angles[start]))
+    root: Floats = np.sqrt(largest)
+    return root
+
+
+def _climbed(amplitudes: Phasors, orders: Floats, angle: Floats) -> Floats:
+    """(n,) |b|² at the crest near the angles (n,)."""
+    largest = np.zeros(len(angle))
+    k = orders[:, None, None]
+    furthest = 2.0 * np.pi / (_INSTANTS * orders.max())
     for _ in range(4):
         turned = amplitudes * np.exp(1j * orders[:, None] * angle)[:, :, None]
-        k = orders[:, None, None]
         value = turned.real.sum(axis=0)
         slope = (1j * k * turned).real.sum(axis=0)
         bend = (-(k**2) * turned).real.sum(axis=0)
@@ -257,6 +271,5 @@ def _sampled_peak(amplitudes: Phasors, orders: Floats) -> Floats:
         second = (slope * slope + value * bend).sum(axis=1)
         curved = second < 0
         step = np.where(curved, -first / np.where(curved, second, 1.0), 0.0)
-        angle = angle + np.clip(step, -angles[1], angles[1])
-    root: Floats = np.sqrt(largest)
-    return root
+        angle = angle + np.clip(step, -furthest, furthest)
+    return largest
