@@ -37,7 +37,7 @@ from numpy.typing import NDArray
 from engine.conductor import Conductor
 from engine.field.kernel import TILE, Floats, Integers
 from engine.field.legs import Legs, tile_distances
-from engine.runs import Bar
+from engine.runs import Bar, Round
 
 Orders = NDArray[np.int16]
 
@@ -216,7 +216,10 @@ def _gauss(n: int) -> tuple[Floats, Floats]:
     return nodes, weights / 2.0
 
 
-def section_points(shape: object, first: int, second: int) -> tuple[Floats, Floats]:
+@lru_cache(maxsize=128)
+def section_points(
+    shape: Round | Bar, first: int, second: int
+) -> tuple[Floats, Floats]:
     """Offsets (k, 2) in the section [m] and weights (k,) of sum 1."""
     if isinstance(shape, Bar):
         a, wa = _gauss(first)
@@ -228,7 +231,7 @@ def section_points(shape: object, first: int, second: int) -> tuple[Floats, Floa
         return np.zeros((1, 2)), np.ones(1)
     # Even weights in the square of the radius are even current; alternate rings are
     # turned by half a step.
-    radius = shape.diameter / 2  # type: ignore[attr-defined]
+    radius = shape.diameter / 2
     nodes, weights = _gauss(first)
     radii = radius * np.sqrt((nodes + 1.0) / 2.0)
     turns = np.arange(second) + 0.5 * (np.arange(first)[:, None] % 2)
@@ -241,27 +244,40 @@ def filaments_of(
     conductors: Sequence[Conductor], orders: Sequence[Orders]
 ) -> Filaments:
     """Filaments of conductors with the numbers (legs, 2) for each one's legs."""
+    return joined([_filaments(*one) for one in zip(conductors, orders, strict=True)])
+
+
+def joined(parts: Sequence[Filaments]) -> Filaments:
+    """Filaments of several conductors, each made by itself, in their order."""
+    counts = [len(part.weights) for part in parts]
+    sizes = np.concatenate([np.diff(part.offsets) for part in parts])
+    return Filaments(
+        vertices=np.concatenate([part.vertices for part in parts]),
+        offsets=np.concatenate([[0], np.cumsum(sizes)]),
+        weights=np.concatenate([part.weights for part in parts]),
+        owners=np.repeat(np.arange(len(parts)), counts),
+    )
+
+
+def _filaments(conductor: Conductor, numbers: Orders) -> Filaments:
+    """Of one conductor: legs in a row with the same numbers share their polylines."""
+    changes = np.flatnonzero((numbers[1:] != numbers[:-1]).any(axis=1)) + 1
+    bounds = [0, *changes.tolist(), len(numbers)]
     blocks: list[Floats] = []
-    sizes: list[Integers] = []
+    sizes: list[int] = []
     weights: list[Floats] = []
-    owners: list[Integers] = []
-    for i, (conductor, numbers) in enumerate(zip(conductors, orders, strict=True)):
-        changes = np.flatnonzero((np.diff(numbers, axis=0) != 0).any(axis=1)) + 1
-        bounds = [0, *changes.tolist(), len(numbers)]
-        for start, stop in pairwise(bounds):
-            first, second = (int(n) for n in numbers[start])
-            offsets, shares = section_points(conductor.shape, first, second)
-            axes = conductor.axes[start : stop + 1]
-            path = conductor.path[start : stop + 1]
-            blocks.append(
-                (path + np.tensordot(offsets, axes, axes=(1, 1))).reshape(-1, 3)
-            )
-            sizes.append(np.full(len(shares), stop + 1 - start))
-            weights.append(shares)
-            owners.append(np.full(len(shares), i))
+    for start, stop in pairwise(bounds):
+        first, second = numbers[start].tolist()
+        offsets, shares = section_points(conductor.shape, first, second)
+        path = conductor.path[start : stop + 1]
+        axes = conductor.axes[start : stop + 1].transpose(1, 0, 2)
+        shifts = (offsets @ axes.reshape(2, -1)).reshape(len(offsets), *path.shape)
+        blocks.append((path + shifts).reshape(-1, 3))
+        sizes += [stop + 1 - start] * len(shares)
+        weights.append(shares)
     return Filaments(
         vertices=np.concatenate(blocks),
-        offsets=np.concatenate([[0], np.cumsum(np.concatenate(sizes))]),
+        offsets=np.concatenate([[0], np.cumsum(sizes)]),
         weights=np.concatenate(weights),
-        owners=np.concatenate(owners),
+        owners=np.zeros(len(sizes), np.int64),
     )

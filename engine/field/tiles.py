@@ -17,7 +17,7 @@ from numpy.typing import NDArray
 
 from engine.conductor import Conductor
 from engine.errors import Cancelled, Progress, stop_if
-from engine.field.filaments import Filaments, Orders, filaments_of, orders_of
+from engine.field.filaments import Filaments, Orders, filaments_of, joined, orders_of
 from engine.field.kernel import TILE, Floats, Integers
 from engine.field.legs import Legs, legs_of
 from engine.field.points import as_points, compact_order
@@ -122,27 +122,38 @@ def _threads() -> int:
 
 
 class _SharedFilaments:
-    """Filaments by their numbers: most tiles far away have the same ones."""
+    """Filaments of each conductor by their numbers, which many tiles have in common."""
 
     def __init__(self, tiling: Tiling, which: Sequence[int]) -> None:
         self._tiling = tiling
         self._which = which
-        self._conductors = [tiling.conductors[i] for i in which]
-        mine = np.isin(tiling.legs.conductor, np.array(which))
-        self._keys = tiling.orders[:, mine]
-        self._kept: OrderedDict[bytes, Filaments] = OrderedDict()
+        self._kept: OrderedDict[tuple[int, bytes], Filaments] = OrderedDict()
         self._segments = 0
         self._lock = Lock()
+        mine = np.isin(tiling.legs.conductor, np.array(which))
+        self._orders = tiling.orders[:, mine]
+        self._last: tuple[bytes, Filaments] | None = None
 
     def of(self, tile: int) -> Filaments:
-        key = self._keys[tile].tobytes()
+        """Filaments of all conductors in one tile."""
+        key = self._orders[tile].tobytes()
+        # Read once: another thread may put its own there.
+        last = self._last
+        if last is not None and last[0] == key:
+            return last[1]
+        made = joined([self._of_one(tile, i) for i in self._which])
+        self._last = (key, made)
+        return made
+
+    def _of_one(self, tile: int, conductor: int) -> Filaments:
+        numbers = self._tiling.numbers(tile, conductor)
+        key = (conductor, numbers.tobytes())
         with self._lock:
             found = self._kept.get(key)
             if found is not None:
                 self._kept.move_to_end(key)
                 return found
-        numbers = [self._tiling.numbers(tile, i) for i in self._which]
-        made = filaments_of(self._conductors, numbers)
+        made = filaments_of([self._tiling.conductors[conductor]], [numbers])
         with self._lock:
             if key not in self._kept:
                 self._kept[key] = made
