@@ -1,0 +1,435 @@
+"""The drawing: shows the layout from one side and gives the active tool its pointer.
+
+The picture under the tool's overlay is kept as pixels until something in it changes,
+so that following the pointer costs next to nothing.
+"""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QEvent, QPoint, QPointF, QRectF, Qt, Signal
+from PySide6.QtGui import (
+    QInputDevice,
+    QKeyEvent,
+    QMouseEvent,
+    QNativeGestureEvent,
+    QPainter,
+    QPaintEvent,
+    QPixmap,
+    QResizeEvent,
+    QTransform,
+    QWheelEvent,
+)
+from PySide6.QtWidgets import QFrame, QGraphicsView, QWidget
+
+from app.document import Document
+from app.map_picture import MapPicture
+from app.theme import LIGHT, Theme
+from app.tools.catch import NO_TARGETS, Catch, catch, held
+from app.tools.tool import Pointer, Tool
+from app.view_state import Look, ViewState
+from app.views.camera import Camera
+from app.views.drawing_scene import DrawingScene
+from app.views.inks import Inks
+from app.views.legend import Legend
+from app.views.overlay_painter import draw_catch, draw_overlay
+from app.views.picking import picked
+from app.views.picture_painter import PicturePainter
+from app.views.projection import PLAN, Sight
+from app.views.scale_bar import grid_step
+
+#: [px/m]
+_FARTHEST, _NEAREST = 0.02, 5000.0
+
+_ZOOM_STEP = 1.25
+_MARGIN = 56.0
+
+#: How near is near enough. [px]
+PICK_REACH = 5.0
+CATCH_REACH = 8.0
+
+_ARROWS = {
+    Qt.Key.Key_Left: (-1.0, 0.0),
+    Qt.Key.Key_Right: (1.0, 0.0),
+    Qt.Key.Key_Down: (0.0, -1.0),
+    Qt.Key.Key_Up: (0.0, 1.0),
+}
+_PAN_BUTTONS = (Qt.MouseButton.RightButton, Qt.MouseButton.MiddleButton)
+
+
+class DrawingView(QGraphicsView):
+    """The layout on plan or from a side.
+
+    Signals
+    -------
+    pointer_moved(x, y)
+        Place in the view's plane under the pointer, after the catch. [m]
+    pointer_left()
+    camera_changed()
+        Another part of the drawing shows, or at another zoom.
+    """
+
+    pointer_moved = Signal(float, float)
+    pointer_left = Signal()
+    camera_changed = Signal()
+
+    def __init__(
+        self,
+        document: Document,
+        view_state: ViewState,
+        theme: Theme = LIGHT,
+        sight: Sight = PLAN,
+        parent: QWidget | None = None,
+    ) -> None:
+        super().__init__(parent)
+        self._document = document
+        self._view_state = view_state
+        self._sight = sight
+        self._inks = Inks(theme)
+        self._scene = DrawingScene(sight, self._inks, self)
+        self.setScene(self._scene)
+        self._picture = PicturePainter(self._scene, sight, self._inks)
+        self._pixels: QPixmap | None = None
+        self._tool: Tool | None = None
+        self._pointer: Pointer | None = None
+        self._pan_from: QPoint | None = None
+        self._is_fitted = True
+        self.catches_places = True
+        self.holds_directions = False
+        self._legend = Legend(self._inks, self.viewport())
+        self._prepare_widget()
+        document.changed.connect(self._on_changed)
+        document.selection_changed.connect(self._on_selection_changed)
+        view_state.changed.connect(self._on_look_changed)
+        self._scene.touched.connect(self.refresh)
+        self._scene.show_layout(document.layout, view_state.look)
+        self.set_scale(60.0)
+
+    def _prepare_widget(self) -> None:
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setViewportUpdateMode(QGraphicsView.ViewportUpdateMode.NoViewportUpdate)
+        self.setTransformationAnchor(QGraphicsView.ViewportAnchor.NoAnchor)
+        self.setResizeAnchor(QGraphicsView.ViewportAnchor.AnchorViewCenter)
+        self.setMouseTracking(True)
+        self.viewport().setMouseTracking(True)
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.setMinimumSize(280, 180)
+        name = "Plan" if self._sight is PLAN else f"Elevation {self._sight.name}"
+        self.setAccessibleName(name)
+        self.setAccessibleDescription(
+            "The drawing. Arrow keys move the selection by the grid, Home shows all."
+        )
+
+    # -- what is shown ----------------------------------------------------------
+
+    @property
+    def sight(self) -> Sight:
+        return self._sight
+
+    @property
+    def drawing(self) -> DrawingScene:
+        """The items shown."""
+        return self._scene
+
+    @property
+    def tool(self) -> Tool | None:
+        return self._tool
+
+    @property
+    def grid(self) -> float:
+        """Step of the visible grid. [m]"""
+        return grid_step(self.camera().scale, self._unit)
+
+    @property
+    def _unit(self) -> str:
+        return self._document.layout.settings.length_unit
+
+    def set_tool(self, tool: Tool | None) -> None:
+        """Make a tool the active one; the caller activates it."""
+        if self._tool is not None:
+            self._tool.overlay_changed.disconnect(self._on_overlay_changed)
+        self._tool = tool
+        if tool is not None:
+            tool.overlay_changed.connect(self._on_overlay_changed)
+        self.viewport().update()
+
+    def set_theme(self, theme: Theme, text_factor: float = 1.0) -> None:
+        """Draw in another theme, or with larger text."""
+        self._inks = Inks(theme, text_factor)
+        self._picture.inks = self._inks
+        self._legend.set_inks(self._inks)
+        self._place_legend()
+        self._scene.set_inks(self._inks)
+
+    def set_map(self, picture: MapPicture | None) -> None:
+        """Show another map under the drawing, or none."""
+        self._scene.map_layer.set_picture(picture)
+        self._legend.set_picture(picture)
+        self._place_legend()
+        self.refresh()
+
+    def refresh(self) -> None:
+        """Draw the picture anew."""
+        self._pixels = None
+        self.viewport().update()
+
+    # -- the camera -------------------------------------------------------------
+
+    def camera(self) -> Camera:
+        """Where the view looks."""
+        made = self.viewportTransform()
+        size = self.viewport().size()
+        return Camera(made.m11(), made.dx(), made.dy(), size.width(), size.height())
+
+    def set_scale(self, scale: float) -> None:
+        """Zoom about the middle of the view. [px/m]"""
+        middle = QPointF(self.viewport().width() / 2, self.viewport().height() / 2)
+        self._zoom(scale / self.camera().scale, middle)
+
+    def look_at(self, x: float, y: float) -> None:
+        """Bring a place into the middle. [m]"""
+        self._is_fitted = False
+        self.centerOn(x, y)
+        self._on_camera_changed()
+
+    def fit(self) -> None:
+        """Show everything that is drawn."""
+        box = self._everything()
+        width = max(60.0, self.viewport().width() - 2 * _MARGIN)
+        height = max(60.0, self.viewport().height() - 2 * _MARGIN)
+        scale = min(width / max(box.width(), 0.5), height / max(box.height(), 0.5))
+        self._set_transform(scale)
+        self.centerOn(box.center())
+        self._is_fitted = True
+        self._on_camera_changed()
+
+    def _everything(self) -> QRectF:
+        bounds = self._scene.plan.bounds()
+        box = QRectF()
+        if bounds is not None:
+            x0, y0, x1, y1 = bounds
+            box = QRectF(x0, y0, max(x1 - x0, 1e-6), max(y1 - y0, 1e-6))
+        for backing in self._scene.backings.values():
+            box = box.united(backing.sceneBoundingRect())
+        return QRectF(-1.0, -1.0, 12.0, 8.0) if box.isNull() else box
+
+    def _zoom(self, factor: float, at: QPointF) -> None:
+        """Zoom so that the place under a pixel stays there."""
+        place = self.camera().metres(at)
+        self._set_transform(self.camera().scale * factor)
+        moved = self.camera().pixel(place) - at
+        self._scroll(round(moved.x()), round(moved.y()))
+        self._on_camera_changed()
+
+    def _set_transform(self, scale: float) -> None:
+        scale = min(max(scale, _FARTHEST), _NEAREST)
+        self.setTransform(QTransform(scale, 0.0, 0.0, -scale, 0.0, 0.0))
+
+    def _scroll(self, dx: int, dy: int) -> None:
+        bar = self.horizontalScrollBar()
+        bar.setValue(bar.value() + dx)
+        bar = self.verticalScrollBar()
+        bar.setValue(bar.value() + dy)
+
+    def _on_camera_changed(self) -> None:
+        self._scene.set_scale(self.camera().scale)
+        self.refresh()
+        self.camera_changed.emit()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._place_legend()
+        if self._is_fitted:
+            self.fit()
+        else:
+            self._on_camera_changed()
+
+    def _place_legend(self) -> None:
+        size, place = self.viewport().size(), self._legend.size()
+        self._legend.move(
+            size.width() - place.width() - 12, size.height() - place.height() - 12
+        )
+        self._legend.setVisible(
+            self._scene.map_layer.picture is not None
+            and "map" not in self._view_state.look.hidden
+        )
+
+    # -- painting ---------------------------------------------------------------
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        ratio = self.viewport().devicePixelRatioF()
+        size = self.viewport().size()
+        camera = self.camera()
+        if (
+            self._pixels is None
+            or self._pixels.deviceIndependentSize() != size.toSizeF()
+        ):
+            legend = QRectF(self._legend.geometry()) if self._legend_shows else QRectF()
+            self._pixels = QPixmap(size * ratio)
+            self._pixels.setDevicePixelRatio(ratio)
+            self._picture.paint(self._pixels, camera, self._document.layout, legend)
+        painter = QPainter(self.viewport())
+        painter.drawPixmap(0, 0, self._pixels)
+        if self._tool is not None:
+            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+            draw_overlay(painter, self._tool.overlay(), camera, self._inks)
+            if self._pointer is not None and self._tool.catches():
+                draw_catch(painter, self._pointer, camera, self._inks)
+        painter.end()
+
+    @property
+    def _legend_shows(self) -> bool:
+        return not self._legend.isHidden()
+
+    # -- the pointer ------------------------------------------------------------
+
+    def pointer_at(self, pixel: QPointF, modifiers: Qt.KeyboardModifier) -> Pointer:
+        """What the tool is told of a pixel place."""
+        camera = self.camera()
+        raw = camera.metres(pixel)
+        found = self._caught(raw, camera)
+        reach = PICK_REACH / camera.scale
+        return Pointer(
+            at=found.at,
+            raw=raw,
+            caught=found.caught,
+            shift=bool(modifiers & Qt.KeyboardModifier.ShiftModifier),
+            control=bool(modifiers & Qt.KeyboardModifier.ControlModifier),
+            pick=picked(self._scene, self._picture.labels, raw, pixel, reach),
+            reach=reach,
+            plane=self._sight.name,
+        )
+
+    def _caught(self, raw: tuple[float, float], camera: Camera) -> Catch:
+        tool = self._tool
+        if tool is None or not tool.catches():
+            return Catch(raw, "")
+        anchor = tool.anchor() if self.holds_directions else None
+        if not self.catches_places:
+            return Catch(raw if anchor is None else held(raw, anchor), "")
+        return catch(
+            raw,
+            self._scene.targets(tool.moving()) if self._scene else NO_TARGETS,
+            CATCH_REACH / camera.scale,
+            grid=self.grid,
+            anchor=anchor,
+        )
+
+    def mousePressEvent(self, event: QMouseEvent) -> None:
+        if event.button() in _PAN_BUTTONS:
+            self._pan_from = event.position().toPoint()
+            self.viewport().setCursor(Qt.CursorShape.ClosedHandCursor)
+        elif event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
+            self._pointer = self.pointer_at(event.position(), event.modifiers())
+            self._tool.press(self._pointer)
+        event.accept()
+
+    def mouseMoveEvent(self, event: QMouseEvent) -> None:
+        if self._pan_from is not None:
+            here = event.position().toPoint()
+            moved, self._pan_from = self._pan_from - here, here
+            self._is_fitted = False
+            self._scroll(moved.x(), moved.y())
+            self._on_camera_changed()
+            return
+        self._pointer = self.pointer_at(event.position(), event.modifiers())
+        self.pointer_moved.emit(*self._pointer.at)
+        if self._tool is not None:
+            self._tool.move(self._pointer)
+            self._set_cursor(self._pointer)
+        self.viewport().update()
+
+    def mouseReleaseEvent(self, event: QMouseEvent) -> None:
+        if event.button() in _PAN_BUTTONS:
+            self._pan_from = None
+            self.viewport().unsetCursor()
+        elif event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
+            self._pointer = self.pointer_at(event.position(), event.modifiers())
+            self._tool.release(self._pointer)
+        event.accept()
+
+    def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
+        if event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
+            pointer = self.pointer_at(event.position(), event.modifiers())
+            self._tool.double_click(pointer)
+        event.accept()
+
+    def _set_cursor(self, pointer: Pointer) -> None:
+        assert self._tool is not None
+        shape = Qt.CursorShape.ArrowCursor
+        if self._tool.catches():
+            shape = Qt.CursorShape.CrossCursor
+        elif pointer.pick is not None:
+            shape = Qt.CursorShape.PointingHandCursor
+        self.viewport().setCursor(shape)
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        is_pad = event.device().type() == QInputDevice.DeviceType.TouchPad
+        zooms = not is_pad or event.modifiers() & Qt.KeyboardModifier.ControlModifier
+        self._is_fitted = False
+        if zooms:
+            steps = event.angleDelta().y() / 120.0
+            self._zoom(_ZOOM_STEP**steps, event.position())
+        else:
+            moved = event.pixelDelta() or event.angleDelta()
+            self._scroll(-moved.x(), -moved.y())
+            self._on_camera_changed()
+        event.accept()
+
+    def viewportEvent(self, event: QEvent) -> bool:
+        if event.type() == QEvent.Type.Leave:
+            self._pointer = None
+            self.viewport().update()
+            self.pointer_left.emit()
+        if (
+            isinstance(event, QNativeGestureEvent)
+            and event.gestureType() == Qt.NativeGestureType.ZoomNativeGesture
+        ):
+            self._is_fitted = False
+            self._zoom(1.0 + event.value(), event.position())
+            return True
+        return super().viewportEvent(event)
+
+    # -- keys -------------------------------------------------------------------
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        key, tool = Qt.Key(event.key()), self._tool
+        middle = QPointF(self.viewport().width() / 2, self.viewport().height() / 2)
+        if key == Qt.Key.Key_Home:
+            self.fit()
+        elif key in (Qt.Key.Key_Plus, Qt.Key.Key_Minus):
+            self._is_fitted = False
+            self._zoom(_ZOOM_STEP ** (1 if key == Qt.Key.Key_Plus else -1), middle)
+        elif tool is None:
+            event.ignore()
+        elif key in _ARROWS:
+            dx, dy = _ARROWS[key]
+            tool.nudge(dx * self.grid, dy * self.grid)
+        elif key in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            tool.enter()
+        elif key == Qt.Key.Key_Backspace:
+            tool.backspace()
+        elif key == Qt.Key.Key_Delete:
+            tool.delete()
+        elif key != Qt.Key.Key_Escape or not tool.back():
+            event.ignore()
+
+    # -- listening --------------------------------------------------------------
+
+    def _on_changed(self, layout: object, ids: object) -> None:
+        was_empty = self._scene.plan.bounds() is None
+        self._scene.show_layout(self._document.layout, self._view_state.look)
+        self._scene.set_scale(self.camera().scale)
+        if ids == frozenset({"*"}) or (was_empty and self._is_fitted):
+            self.fit()
+
+    def _on_selection_changed(self, selection: frozenset[str]) -> None:
+        self._scene.select(selection)
+
+    def _on_look_changed(self, look: Look) -> None:
+        self._scene.show_layout(self._document.layout, look)
+        self._place_legend()
+
+    def _on_overlay_changed(self) -> None:
+        self.viewport().update()

@@ -1,0 +1,113 @@
+"""Paints the picture of a view into pixels: paper, grid, map, items, labels, scale."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QFont, QPainter, QPixmap
+from PySide6.QtWidgets import QStyleOptionGraphicsItem
+
+from app.theme import TITLE
+from app.views.camera import Camera
+from app.views.drawing_scene import DrawingScene
+from app.views.inks import Inks
+from app.views.labels import PlacedLabel, draw_labels, draw_text, placed, text_box
+from app.views.overlay_painter import draw_handle
+from app.views.picking import selected
+from app.views.projection import Sight
+from app.views.scale_bar import draw_grid, draw_scale_bar
+from engine.layout import Layout
+
+EMPTY = "Draw the room, or place a backing drawing"
+
+
+class PicturePainter:
+    """Paints one scene.
+
+    Attributes
+    ----------
+    labels : list of PlacedLabel
+        Those of the last picture; a click on one means its item.
+    """
+
+    def __init__(self, scene: DrawingScene, sight: Sight, inks: Inks) -> None:
+        self.inks = inks
+        self.labels: list[PlacedLabel] = []
+        self._scene = scene
+        self._sight = sight
+
+    def paint(
+        self, pixels: QPixmap, camera: Camera, layout: Layout, legend: QRectF
+    ) -> None:
+        """Paint everything but the tool's overlay, keeping the legend's box free."""
+        settings = layout.settings
+        unit = settings.length_unit
+        pixels.fill(QColor(self.inks.theme.paper))
+        painter = QPainter(pixels)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        draw_grid(painter, camera, self.inks, unit)
+        visible = self._paint_items(painter, camera)
+        painter.resetTransform()
+        bar = draw_scale_bar(
+            painter, camera, self.inks, self._sight, unit, settings.north
+        )
+        taken = [legend, bar] if not legend.isEmpty() else [bar]
+        taken += self._paint_notices(painter, camera)
+        for item in reversed(visible):
+            taken += item.decorate(painter, camera)
+        for item in selected(self._scene):
+            for grip in item.grips():
+                taken.append(draw_handle(painter, camera.pixel(grip), self.inks))
+        self.labels = []
+        if self._scene.shows_labels:
+            found = [label for item in visible for label in item.labels(camera, unit)]
+            found += self._scene.map_layer.labels(camera)
+            frame = camera.frame.adjusted(4, 4, -4, -4)
+            self.labels = placed(found, self.inks, frame, taken)
+            draw_labels(painter, self.labels, self.inks)
+        painter.end()
+
+    def _paint_items(self, painter: QPainter, camera: Camera) -> list:
+        """Paint what has its size in metres; returns the visible shapes, top first."""
+        option = QStyleOptionGraphicsItem()
+        window = camera.visible
+        to_pixels = camera.transform()
+        visible = [
+            i for i in self._scene.shapes() if i.boundingRect().intersects(window)
+        ]
+        below = [b for b in self._scene.backings.values() if b.isVisible()]
+        for backing in below:
+            painter.setTransform(backing.transform() * to_pixels)
+            painter.setOpacity(backing.opacity())
+            backing.paint(painter, option)
+        painter.setOpacity(1.0)
+        painter.setTransform(to_pixels)
+        self._scene.map_layer.paint(painter, option)
+        for item in reversed(visible):
+            painter.setTransform(to_pixels)
+            item.paint(painter, option)
+        return visible
+
+    def _paint_notices(self, painter: QPainter, camera: Camera) -> list[QRectF]:
+        """What the user must know of the picture as a whole."""
+        inks, taken = self.inks, []
+        picture = self._scene.map_layer.picture
+        if picture is not None and picture.is_stale:
+            box = text_box("Map out of date", inks, QPointF(camera.width / 2, 18.0))
+            draw_text(painter, box, "Map out of date", inks, colour=inks.theme.warning)
+            taken.append(box)
+        if self._scene.problem:
+            text = inks.small_metrics.elidedText(
+                "Some runs show as routes only: " + self._scene.problem,
+                Qt.TextElideMode.ElideRight,
+                camera.width - 40.0,
+            )
+            box = text_box(text, inks, QPointF(camera.width / 2, 40.0))
+            draw_text(painter, box, text, inks, colour=inks.theme.warning)
+            taken.append(box)
+        if self._scene.plan.bounds() is None and not self._scene.backings:
+            font = QFont()
+            font.setPixelSize(round(TITLE * inks.text_factor))
+            painter.setFont(font)
+            painter.setPen(QColor(inks.theme.muted))
+            painter.drawText(camera.frame, Qt.AlignmentFlag.AlignCenter, EMPTY)
+        return taken

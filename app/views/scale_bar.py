@@ -1,0 +1,122 @@
+"""Grid, scale bar, axes and north: what gives the drawing its measure."""
+
+from __future__ import annotations
+
+import math
+
+from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QPainter, QPen
+
+from app.views.camera import Camera
+from app.views.inks import Inks
+from app.views.projection import PLAN, Sight, across_text
+from engine.units import LENGTH_UNITS
+
+#: Grid lines are at least this far apart. [px]
+_FINE = 12.0
+
+_LONGEST_BAR = 140.0
+_EDGE = 14.0
+
+
+def grid_step(scale: float, unit: str, apart: float = _FINE) -> float:
+    """Smallest 1-2-5 step of the length unit that shows at least `apart` px wide. [m]
+
+    Examples
+    --------
+    >>> grid_step(100.0, "m"), grid_step(60.0, "m")
+    (0.2, 0.2)
+    """
+    metres = 1.0 if unit == "mm" else LENGTH_UNITS[unit]
+    least = apart / scale / metres
+    power = math.floor(math.log10(least))
+    for factor in (1, 2, 5, 10):
+        step = float(f"{factor}e{power}")
+        if step >= least * (1 - 1e-9):
+            break
+    return step * metres
+
+
+def draw_grid(painter: QPainter, camera: Camera, inks: Inks, unit: str) -> None:
+    """Fine and coarse grid lines in pixels."""
+    fine = grid_step(camera.scale, unit)
+    coarse = grid_step(camera.scale, unit, 5 * _FINE)
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
+    for step, pen in ((fine, inks.fine_hairline), (coarse, inks.hairline)):
+        painter.setPen(pen)
+        painter.drawLines(_grid_lines(camera, step))
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+
+
+def _grid_lines(camera: Camera, step: float) -> list[QLineF]:
+    visible = camera.visible
+    first = math.ceil(visible.left() / step)
+    last = math.floor(visible.right() / step)
+    lines = []
+    for index in range(first, last + 1):
+        x = round(camera.left + camera.scale * index * step) + 0.5
+        lines.append(QLineF(x, 0.0, x, camera.height))
+    first = math.ceil(visible.top() / step)
+    last = math.floor(visible.bottom() / step)
+    for index in range(first, last + 1):
+        y = round(camera.top - camera.scale * index * step) + 0.5
+        lines.append(QLineF(0.0, y, camera.width, y))
+    return lines
+
+
+def draw_scale_bar(
+    painter: QPainter,
+    camera: Camera,
+    inks: Inks,
+    sight: Sight,
+    unit: str,
+    north: float | None,
+) -> QRectF:
+    """The scale bar in the lower left corner; returns the box it fills. [px]"""
+    metres = 1.0 if unit == "mm" else LENGTH_UNITS[unit]
+    length = grid_step(camera.scale, unit, 0.5 * _LONGEST_BAR)
+    wide = length * camera.scale
+    name = "m" if unit == "mm" else unit
+    right, up = across_text(sight)
+    view = "Plan" if sight is PLAN else sight.name.capitalize()
+    text = f"{length / metres:g} {name}"
+    words = f"{view}:  {right} →  {up} ↑"
+    metrics = inks.small_metrics
+    line = metrics.height()
+    across = max(wide + 10 + metrics.horizontalAdvance(text), _advance(inks, words))
+    box = QRectF(
+        _EDGE - 6, camera.height - _EDGE - 2 * line - 6, across + 14, 2 * line + 10
+    )
+    painter.setPen(Qt.PenStyle.NoPen)
+    painter.setBrush(inks.patch)
+    painter.drawRoundedRect(box, 4, 4)
+    painter.setFont(inks.small)
+    painter.setPen(QColor(inks.theme.muted))
+    painter.drawText(QPointF(_EDGE, box.top() + 3 + metrics.ascent()), words)
+    y = box.bottom() - 5 - 0.35 * line
+    painter.setPen(QPen(QColor(inks.theme.text), 1.6))
+    painter.drawLine(QPointF(_EDGE, y), QPointF(_EDGE + wide, y))
+    for x in (_EDGE, _EDGE + wide):
+        painter.drawLine(QPointF(x, y - 4), QPointF(x, y + 4))
+    painter.drawText(QPointF(_EDGE + wide + 8, y + 0.36 * metrics.ascent()), text)
+    if sight is PLAN and north is not None:
+        _draw_north(painter, QPointF(box.right() + 22, box.center().y()), inks, north)
+        box = box.adjusted(0, 0, 40, 0)
+    return box
+
+
+def _advance(inks: Inks, text: str) -> float:
+    return inks.small_metrics.horizontalAdvance(text)
+
+
+def _draw_north(painter: QPainter, at: QPointF, inks: Inks, north: float) -> None:
+    turn = math.radians(north)
+    tip = QPointF(math.cos(turn), -math.sin(turn))
+    painter.setPen(QPen(QColor(inks.theme.text), 1.6))
+    painter.drawLine(at - tip * 12, at + tip * 6)
+    side = QPointF(-tip.y(), tip.x())
+    painter.drawLine(at + tip * 6, at + tip * 1 + side * 4)
+    painter.drawLine(at + tip * 6, at + tip * 1 - side * 4)
+    middle = at + tip * 14
+    box = QRectF(middle.x() - 8, middle.y() - 8, 16, 16)
+    painter.drawText(box, Qt.AlignmentFlag.AlignCenter, "N")
