@@ -34,25 +34,40 @@ class IsoLine:
         """[m]"""
         return float(np.linalg.norm(np.diff(self.points, axis=0), axis=1).sum())
 
-    def label_place(self, fraction: float = 0.5) -> tuple[float, float, float]:
+    def label_place(
+        self, fraction: float = 0.5, span: float = 0.0
+    ) -> tuple[float, float, float]:
         """Where a label sits: x, y in metres and the line's direction in degrees.
 
-        `fraction` is the part of the line before the label. The direction lies in
-        (−90, 90], so that the label never stands on its head.
+        `fraction` is the part of the line before the label; the direction is that of
+        the chord over `span` metres of it. It lies in (−90, 90], so that the label
+        never stands on its head.
         """
-        steps = np.linalg.norm(np.diff(self.points, axis=0), axis=1)
-        walked = np.concatenate([[0.0], np.cumsum(steps)])
+        walked = self._walked()
         middle = fraction * walked[-1]
-        x = float(np.interp(middle, walked, self.points[:, 0]))
-        y = float(np.interp(middle, walked, self.points[:, 1]))
-        before = _at(self.points, walked, middle - 0.03 * walked[-1])
-        after = _at(self.points, walked, middle + 0.03 * walked[-1])
+        reach = max(0.5 * span, 0.01 * walked[-1])
+        x, y = _at(self.points, walked, middle)
+        before = _at(self.points, walked, middle - reach)
+        after = _at(self.points, walked, middle + reach)
         turn = math.degrees(math.atan2(after[1] - before[1], after[0] - before[0]))
         if turn > 90.0:
             turn -= 180.0
         elif turn <= -90.0:
             turn += 180.0
         return x, y, turn
+
+    def straightness(self, fraction: float, span: float) -> float:
+        """Chord over length of the `span` metres around a place: 1 where straight."""
+        walked = self._walked()
+        middle = fraction * walked[-1]
+        before = _at(self.points, walked, middle - 0.5 * span)
+        after = _at(self.points, walked, middle + 0.5 * span)
+        return math.dist(before, after) / span
+
+    def _walked(self) -> Floats:
+        """Length of the line up to each of its points. [m]"""
+        steps = np.linalg.norm(np.diff(self.points, axis=0), axis=1)
+        return np.concatenate([[0.0], np.cumsum(steps)])
 
 
 def _at(points: Floats, walked: Floats, where: float) -> tuple[float, float]:

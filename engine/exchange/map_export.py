@@ -15,7 +15,6 @@ from PIL.PngImagePlugin import PngInfo
 
 from engine.drawing import Plan
 from engine.picture import (
-    Fill,
     MapSubject,
     Picture,
     Raster,
@@ -133,11 +132,9 @@ class _Painter:
         self._draw = ImageDraw.Draw(image)
         self._factor = factor
 
-    def paint(self, part: Stroke | Fill | Raster | Words) -> None:
+    def paint(self, part: Stroke | Raster | Words) -> None:
         if isinstance(part, Stroke):
             self._stroke(part)
-        elif isinstance(part, Fill):
-            self._draw.polygon(self._pixels(part.points), fill=part.colour)
         elif isinstance(part, Raster):
             self._raster(part)
         else:

@@ -1,13 +1,12 @@
 """Pictures of maps as marks on paper, for pixels and for vectors alike."""
 
 from engine.picture.map_picture import map_picture
-from engine.picture.marks import Fill, Picture, Raster, Stroke, Words
+from engine.picture.marks import Picture, Raster, Stroke, Words
 from engine.picture.of_result import map_subjects
 from engine.picture.references import reference_lines
 from engine.picture.subject import MapSubject, ReferenceLine
 
 __all__ = [
-    "Fill",
     "MapSubject",
     "Picture",
     "Raster",

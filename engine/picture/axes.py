@@ -51,15 +51,18 @@ def draw_axes(picture: Picture, sheet: Sheet, subject: MapSubject, scale: int) -
             turn=90.0,
         )
     )
-    _draw_scale_bar(picture, sheet, subject, step, scale)
+    _draw_scale_bar(picture, sheet, subject, scale)
     if subject.north is not None:
         _draw_north(picture, sheet, subject.north)
 
 
 def _draw_scale_bar(
-    picture: Picture, sheet: Sheet, subject: MapSubject, step: float, scale: int
+    picture: Picture, sheet: Sheet, subject: MapSubject, scale: int
 ) -> None:
-    """Two fields of the tick step, the first one filled."""
+    """Two fields, the first one filled, together at most half the map."""
+    metres = LENGTH_UNITS[subject.length_unit]
+    room = 0.25 * sheet.width / sheet.factor / metres
+    step = round_values(room / 10.0, room)[-1]
     length = step * LENGTH_UNITS[subject.length_unit] * sheet.factor
     y = sheet.bottom - 10.5
     x = sheet.left

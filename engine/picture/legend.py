@@ -4,14 +4,16 @@ from __future__ import annotations
 
 from itertools import pairwise
 
+import numpy as np
+
 from engine.colour_ramp import on_paper, position, rgb_ramp
 from engine.iso_lines import round_values
 from engine.picture.marks import (
     BLACK,
     GREY,
-    Fill,
     Picture,
     Points,
+    Raster,
     Stroke,
     Words,
 )
@@ -31,24 +33,49 @@ CAUTION = (
 )
 
 
-def draw_legend(
-    picture: Picture, subject: MapSubject, left: float, top: float, width: float
+#: Width and height that the legend takes beside a map, and under it. [mm]
+BESIDE = (40.0, 96.0)
+UNDER = (120.0, 64.0)
+
+
+def draw_legend_beside(
+    picture: Picture, subject: MapSubject, left: float, top: float
 ) -> None:
-    """Draw the colour bar with its unit, and what the marks on the map mean."""
+    """Draw the colour bar, and what the marks on the map mean, one over the other."""
+    y = _draw_scale(picture, subject, left, top)
+    _draw_entries(picture, subject, left, y - 1.0, BESIDE[0] - 2.0)
+
+
+def draw_legend_under(
+    picture: Picture, subject: MapSubject, left: float, top: float
+) -> None:
+    """Draw the colour bar, and what the marks on the map mean, side by side."""
+    _draw_scale(picture, subject, left, top)
+    _draw_entries(picture, subject, left + 46.0, top - 1.5, UNDER[0] - 48.0)
+
+
+def _draw_scale(
+    picture: Picture, subject: MapSubject, left: float, top: float
+) -> float:
+    """The colour bar with its unit and its ends; the height where it stops. [mm]"""
     picture.add(Words((left, top - 1.5), "Flux density B", SIZE, bold=True))
-    picture.add(
-        Words((left, top - 1.5 - STEP), f"{subject.quantity} [{subject.unit}]", SIZE)
-    )
+    unit = f"{subject.quantity} [{subject.unit}]"
+    picture.add(Words((left, top - 1.5 - STEP), unit, SIZE))
     bottom = top - 9.0 - BAR_HEIGHT
     _draw_bar(picture, subject, left, bottom)
     y = bottom - 4.0
     low = value_text(subject.low, subject.unit)
     high = value_text(subject.high, subject.unit)
     for text in (f"under {low} not coloured", f"over {high} as {high}"):
-        y = _paragraph(picture, text, left, y, width)
-    y -= 1.0
-    for entry in _entries(subject):
-        strokes, text = entry
+        y = _paragraph(picture, text, left, y, BESIDE[0] - 2.0)
+    return y
+
+
+def _draw_entries(
+    picture: Picture, subject: MapSubject, left: float, top: float, width: float
+) -> None:
+    y = top
+    for strokes, text in _entries(subject):
         for line, stroke in strokes:
             moved: Points = tuple((left + px, y + py) for px, py in line)
             picture.add(Stroke(moved, stroke.width, stroke.colour, stroke.dash))
@@ -58,20 +85,10 @@ def draw_legend(
 def _draw_bar(
     picture: Picture, subject: MapSubject, left: float, bottom: float
 ) -> None:
-    ramp = on_paper(rgb_ramp())
-    n = 64
-    for k in range(n):
-        red, green, blue = (
-            int(c) for c in ramp[round((k + 0.5) / n * (len(ramp) - 1))]
-        )
-        low = bottom + BAR_HEIGHT * k / n
-        # A hair taller than its share, so that no seam shows between neighbours.
-        high = bottom + min(BAR_HEIGHT, BAR_HEIGHT * (k + 1) / n + 0.05)
-        corners = (
-            (left, low), (left + BAR_WIDTH, low),
-            (left + BAR_WIDTH, high), (left, high),
-        )  # fmt: skip
-        picture.add(Fill(corners, (red, green, blue)))
+    colours = on_paper(rgb_ramp())[:, None, :]
+    solid = np.full((*colours.shape[:2], 1), 255, np.uint8)
+    area = (left, bottom, left + BAR_WIDTH, bottom + BAR_HEIGHT)
+    picture.add(Raster(area, np.concatenate([colours, solid], axis=2)))
     top, right = bottom + BAR_HEIGHT, left + BAR_WIDTH
     frame = ((left, bottom), (right, bottom), (right, top), (left, top), (left, bottom))
     picture.add(Stroke(frame, 0.2))

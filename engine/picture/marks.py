@@ -34,14 +34,6 @@ class Stroke:
 
 
 @dataclass(frozen=True)
-class Fill:
-    """A filled outline without a stroke. [mm]"""
-
-    points: Points
-    colour: Colour
-
-
-@dataclass(frozen=True)
 class Raster:
     """Pixels in a box (left, bottom, right, top); row 0 is at the bottom. [mm]"""
 
@@ -69,7 +61,7 @@ class Words:
         return text_width(self.text, self.size, bold=self.bold)
 
 
-Part = Stroke | Fill | Raster | Words
+Part = Stroke | Raster | Words
 
 
 @dataclass

@@ -50,6 +50,10 @@ class Sheet:
             if isinstance(part, LineString) and len(part.coords) > 1
         ]
 
+    def occupy(self, area: BaseGeometry) -> None:
+        """Keep labels off an area on paper. [mm]"""
+        self._lettered.append(area)
+
     def has_room(self, words: Words) -> bool:
         """Whether a label lies in the frame and on no other; if so it is taken."""
         half = 0.5 * words.width + 0.6

@@ -11,7 +11,7 @@ from reportlab.lib.utils import ImageReader
 from reportlab.pdfgen.canvas import Canvas
 from reportlab.platypus import Flowable
 
-from engine.picture import Fill, Picture, Raster, Stroke, Words
+from engine.picture import Picture, Raster, Stroke, Words
 from engine.picture.marks import Colour, Points
 from engine.report.page import BOLD_FONT, FONT
 
@@ -35,8 +35,6 @@ class Figure(Flowable):  # type: ignore[misc]
         for part in self.picture.parts:
             if isinstance(part, Stroke):
                 _draw_stroke(canvas, part)
-            elif isinstance(part, Fill):
-                _draw_fill(canvas, part)
             elif isinstance(part, Raster):
                 _draw_raster(canvas, part)
             else:
@@ -64,11 +62,6 @@ def _draw_stroke(canvas: Canvas, stroke: Stroke) -> None:
     canvas.setDash(*((stroke.dash[0] * mm, stroke.dash[1] * mm) if stroke.dash else ()))
     canvas.drawPath(_path(canvas, stroke.points), stroke=1, fill=0)
     canvas.setDash()
-
-
-def _draw_fill(canvas: Canvas, fill: Fill) -> None:
-    canvas.setFillColorRGB(*_ink(fill.colour))
-    canvas.drawPath(_path(canvas, fill.points), stroke=0, fill=1)
 
 
 def _draw_raster(canvas: Canvas, raster: Raster) -> None:

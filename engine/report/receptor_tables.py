@@ -35,18 +35,13 @@ def receptor_section(
         "Measured",
     )  # fmt: skip
     story: list[Flowable] = [table(heads, about, (18, 15, 15, 20, 14, 18), width)]
-    fields = [
-        row
-        for r in assessment.receptors
-        for f in r.fields
-        for row in _field_rows(r, f, words)
-    ]
+    fields = [_field_row(r, f, words) for r in assessment.receptors for f in r.fields]
     unit = words.unit
     field_heads = (
         "Receptor", "Load case", "Frequency", f"Bx By Bz, RMS [{unit}]",
         f"Resultant [{unit}]", f"Semi-axes, RMS [{unit}]", "Notes",
     )  # fmt: skip
-    story.append(table(field_heads, fields, (16, 17, 10, 20, 11, 14, 12), width))
+    story.append(table(field_heads, fields, (15, 16, 11, 19, 11, 15, 13), width))
     rows = [row for r in assessment.receptors for row in comparison_rows(r, words)]
     if rows:
         story.append(comparison_table("Receptor", rows, words, width))
@@ -64,32 +59,27 @@ def _measured(result: ReceptorResult, words: Wording) -> str:
     return "\n".join(lines)
 
 
-def _field_rows(
+def _field_row(
     result: ReceptorResult, found: ReceptorField, words: Wording
-) -> list[tuple[str, ...]]:
+) -> tuple[str, ...]:
+    """One load case: a line for each frequency, and one for the AC total."""
     title, case = result.receptor.title, words.name(found.case)
     if found.reason:
-        return [(title, case, "–", "–", "–", "–", found.reason)]
-    rows: list[tuple[str, ...]] = []
-    for k, frequency in enumerate(found.frequencies):
-        axes = np.abs(found.components[k])
-        rows.append(
-            (
-                title,
-                case,
-                "DC" if frequency == 0 else f"{frequency:g} Hz",
-                "  ".join(words.value(float(b)) for b in axes),
-                words.value(float(np.linalg.norm(axes))),
-                " × ".join(words.value(float(b)) for b in found.semi_axes[k]),
-                "",
-            )
-        )
+        return (title, case, "–", "–", "–", "–", found.reason)
+    parts = [np.abs(b) for b in found.components]
+    at = ["DC" if f == 0 else f"{f:g} Hz" for f in found.frequencies]
+    axes = [", ".join(words.value(float(b)) for b in part) for part in parts]
+    whole = [words.value(float(np.linalg.norm(part))) for part in parts]
+    ellipses = [
+        " × ".join(words.value(float(b)) for b in pair) for pair in found.semi_axes
+    ]
+    if found.ac is not None:
+        at.append("AC total")
+        whole.append(words.value(found.ac))
     notes = ["near field, even current assumed"] if found.near_field else []
     if found.is_bound:
         notes.append(f"upper bound: {found.bound_reason}")
     if found.measured_ratio is not None:
         notes.append(f"measured / calculated {significant(found.measured_ratio)}")
-    rows.append(
-        (title, case, "AC total", "", words.value(found.ac), "", "\n".join(notes))
-    )
-    return rows
+    columns = (at, axes, whole, ellipses, notes)
+    return (title, case, *("\n".join(lines) for lines in columns))

@@ -39,12 +39,12 @@ METHOD: tuple[str, ...] = (
     "B is the RMS resultant, √(Σ |B_axis,f|²) over the three axes and all frequencies "
     "above 0 Hz; it is not the semi-major axis of the field's ellipse. DC is compared "
     "on its own and is in no AC total.",
-    "The largest value of a zone is searched between grid points too; the value and "
-    "its state use the upper bound of that search. Points inside conductors, in closed "
-    "enclosures and within the zone's clearance are masked, not assessed, and their "
-    "share is stated. Nearer than two bar widths or diameters to a conductor the value "
-    "counts and is marked “near field, even current assumed”: real current crowds to "
-    "the edges.",
+    "The largest value of a zone is searched between grid points too; how, and down to "
+    "which distance, stands under the table of zones. Points inside conductors, in "
+    "closed enclosures and within the zone's clearance are masked, not assessed, and "
+    "their share is stated. Nearer than two bar widths or diameters to a conductor the "
+    "value counts and is marked “near field, even current assumed”: real current "
+    "crowds to the edges.",
     "A free end of a run is closed across its section by an assumed link, since the "
     "field of a current that does not close has no physical meaning. Parallel "
     "conductors share their current equally unless stated otherwise: an assumption.",

@@ -12,6 +12,7 @@ from engine.report.wording import STATE_SENTENCES
 from engine.report.words import length, place
 from engine.results import (
     Assessment,
+    AtFrequency,
     Comparison,
     Contribution,
     NetCurrentEffect,
@@ -58,9 +59,9 @@ def comparison_table(
     heads = (
         f"{what}, reference level, load case", f"B [{words.unit}]", f"L [{words.unit}]",
         "B/L", f"U [{words.unit}]", "State", f"Place x, y, z [{words.length_unit}]",
-        "Masked, near field, area above",
+        "Masked, near field, area with B/L above 1",
     )  # fmt: skip
-    return table(heads, rows, (21, 9, 9, 8, 7, 17, 13, 18), width)
+    return table(heads, rows, (20, 9, 10, 7, 7, 16, 13, 18), width)
 
 
 def comparison_rows(
@@ -82,7 +83,7 @@ def _comparison_row(comparison: Comparison, words: Wording) -> tuple[str, ...]:
     )
     kind = f" ({comparison.kind})" if comparison.kind else ""
     ratio = "–" if comparison.ratio is None else text_beside(comparison.ratio, 1.0)
-    several = "several frequencies" if comparison.ratio is not None else ""
+    several = "per frequency" if comparison.ratio is not None else ""
     return (
         f"{words.name(comparison.place)}\n{words.name(comparison.level)}\n{case}",
         words.beside(comparison.value, limit) + kind,
@@ -107,12 +108,14 @@ def _place(details: PlaceDetails | None, words: Wording) -> str:
 def _marks(comparison: Comparison, words: Wording) -> str:
     lines = [f"masked {100 * comparison.masked_share:.0f} %"]
     if comparison.area_above is not None:
-        lines.append(f"ratio above 1 on {comparison.area_above:.2f} m²")
+        lines.append(f"above 1 on {significant(comparison.area_above)} m²")
     details = comparison.details
     if details is not None and details.near_field:
         lines.append("near field, even current assumed")
     if details is not None and details.is_bound:
         lines.append(f"upper bound: {details.bound_reason}")
+    if details is not None and len(details.by_frequency) > 1:
+        lines += [_at_frequency(part, words) for part in details.by_frequency]
     if comparison.other_kind_ratio is not None:
         other = "DC" if comparison.kind == "AC" else "AC"
         lines.append(f"{other} ratio {significant(comparison.other_kind_ratio)}")
@@ -120,6 +123,13 @@ def _marks(comparison: Comparison, words: Wording) -> str:
         listed = ", ".join(f"{f:g} Hz" for f in comparison.not_covered)
         lines.append(f"not dealt with by the level: {listed}")
     return "\n".join(lines)
+
+
+def _at_frequency(part: AtFrequency, words: Wording) -> str:
+    text = f"{part.frequency:g} Hz: {words.value(part.value)}"
+    if part.level is None:
+        return text
+    return f"{text}, level {words.value(part.level)}"
 
 
 def _maxima_table(
