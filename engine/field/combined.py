@@ -80,6 +80,7 @@ def combined(b: Phasors, components: Sequence[Component]) -> Combined:
     by_frequency: dict[float, Floats] = {}
     reasons: set[str] = set()
     pairs: dict[float, tuple[Phasors, Phasors]] = {}
+    # Without what two sources add by being together; larger where a sum bounds them.
     squares = np.zeros(b.shape[1])
     for frequency in sorted({c.frequency for c in components}):
         if frequency == 0.0:
@@ -88,7 +89,8 @@ def combined(b: Phasors, components: Sequence[Component]) -> Combined:
             continue
         sources = _sources(b, components, frequency)
         fields = list(sources.values())
-        squares += np.sum([resultant(x) ** 2 for x in fields], axis=0)
+        if len(fields) <= 2:
+            squares += np.sum([resultant(x) ** 2 for x in fields], axis=0)
         if len(fields) == 1:
             by_frequency[frequency] = resultant(fields[0])
         elif len(fields) == 2:
@@ -97,6 +99,7 @@ def combined(b: Phasors, components: Sequence[Component]) -> Combined:
             reasons.add(WORST_OF_TWO)
         else:
             by_frequency[frequency] = np.sum([resultant(x) for x in fields], axis=0)
+            squares += by_frequency[frequency] ** 2
             reasons.add(SUM_OF_SOURCES)
     dc = by_frequency.get(0.0)
     alternating = [values for f, values in by_frequency.items() if f > 0]

@@ -268,6 +268,17 @@ class TestCombined:
         assert found.total_ac == pytest.approx(trial, rel=1e-3)
         assert "time shift" in found.reason
 
+    def test_bounded_frequency_keeps_its_bound_beside_a_time_shift(self) -> None:
+        b = phasors(np.random.default_rng(8), 7, 4)
+        shifted = [Component(f, 50, g) for f in (50, 150) for g in ("", "C2")]
+        bounded = [Component(350, 50, g) for g in ("", "C2 @ 350 Hz", "C3 @ 350 Hz")]
+        found = combined(b, [*shifted, *bounded])
+        alone = combined(b[:4], shifted).total_ac
+        assert alone is not None
+        assert found.total_ac == pytest.approx(
+            np.hypot(alone, resultant(b[4:]).sum(axis=0))
+        )
+
     def test_angles_unknown_one_by_one_are_worst_one_by_one(self) -> None:
         components = [
             Component(150, 50, ""),
