@@ -109,13 +109,14 @@ def _bar_ticks(subject: MapSubject) -> list[float]:
         chosen += [
             v * factor for v in inner if significant(v, 1).strip("0.")[0] in kept
         ]
-        ticks = sorted(set(chosen))
+        # Rounded: 1000 mG is both an end and a round value, apart by the last digit.
+        ticks = sorted({float(f"{v:.9g}") for v in chosen})
         places = [
             float(position(v, subject.low, subject.high, subject.scale)) * BAR_HEIGHT
             for v in ticks
         ]
         spaced = [b - a for a, b in pairwise(places)]
-        if all(gap > 2.6 or gap < 1e-6 for gap in spaced):
+        if all(gap > 2.6 for gap in spaced):
             return ticks
     return [subject.low, subject.high]
 

@@ -141,6 +141,13 @@ def test_the_legend_has_room_for_its_ticks():
     assert {"0.1 µT", "1000 µT"} <= set(texts(picture()))
 
 
+@pytest.mark.parametrize("unit", ["µT", "mT", "nT", "mG", "G"])
+def test_no_tick_of_the_legend_is_written_twice(unit):
+    written = texts(picture(unit=unit, references=(), mask=np.zeros((51, 81), bool)))
+    end = {"µT": "1000 µT", "mT": "1 mT", "nT": "1000000 nT"}
+    assert written.count(end.get(unit, {"mG": "10000 mG", "G": "10 G"}.get(unit))) == 1
+
+
 def test_a_picture_is_written_and_can_be_read(tmp_path):
     path = tmp_path / "map.png"
     write_png(path, subject(), plan(layout(), ()), width=180, height=150)

@@ -1,0 +1,123 @@
+"""A report is computed and written whole, or the old file stays."""
+
+from __future__ import annotations
+
+import io
+
+import pytest
+from msgspec.structs import replace
+from pypdf import PdfReader
+
+from engine.assessment import assess
+from engine.circuits import BalancedCurrent, Circuit, LoadCase
+from engine.errors import ComputationCancelled, UserError
+from engine.layout import Layout, Settings
+from engine.places import Receptor, Room, Zone
+from engine.report import maps, write_report
+from engine.runs import CircuitShare, Flat, Run
+
+ROOM = ((0.0, 0.0), (4.0, 0.0), (4.0, 3.0), (0.0, 3.0))
+
+
+def layout(rms=400.0):
+    return Layout(
+        rooms=(Room(id="room", outline=ROOM, floor_level=0, ceiling_level=3),),
+        circuits=(
+            Circuit(
+                id="feeder", name="Feeder", demand=BalancedCurrent(rms=rms), voltage=400
+            ),
+        ),
+        runs=(
+            Run(
+                id="bars",
+                name="Bars",
+                kind="busbar",
+                route=((0.5, 1.5, 2.5), (3.5, 1.5, 2.5)),
+                section=Flat(circuits=(CircuitShare(circuit="feeder"),)),
+            ),
+        ),
+        zones=(
+            Zone(id="floor", name="Floor", outline=ROOM, floor_level=0, heights=(1.0,)),
+        ),
+        receptors=(Receptor(id="desk", name="Desk", at=(1, 1, 1)),),
+    )
+
+
+def text_of(path):
+    reader = PdfReader(io.BytesIO(path.read_bytes()))
+    return " ".join(" ".join(page.extract_text().split()) for page in reader.pages)
+
+
+def test_a_report_is_computed_in_the_asked_unit(tmp_path):
+    told = []
+    path = tmp_path / "report.pdf"
+    write_report(
+        layout(), path, unit="uT", progress=lambda share, _: told.append(share)
+    )
+    text = text_of(path)
+    assert "Entered currents: RMS resultant, z 1.00 m" in text
+    assert "Largest B [µT]" in text
+    assert told == sorted(told)
+    assert told[-1] == 1.0
+    write_report(layout(), path, unit="mG")
+    assert "Largest B [mG]" in text_of(path)
+
+
+def test_the_largest_value_is_that_of_the_assessment(tmp_path):
+    drawn = layout()
+    assessment = assess(drawn)
+    path = tmp_path / "report.pdf"
+    write_report(drawn, path, assessment=assessment)
+    largest = assessment.zones[0].maxima[0].value * 1e6
+    assert f"{largest:.3g} (AC)" in text_of(path)
+
+
+def test_a_failed_write_keeps_the_old_file(tmp_path, monkeypatch):
+    path = tmp_path / "report.pdf"
+    path.write_bytes(b"old")
+
+    def refuse(*_):
+        raise OSError(28, "No space left on device")
+
+    monkeypatch.setattr("engine.written_file.os.replace", refuse)
+    with pytest.raises(UserError, match=r"report\.pdf was not written: No space left"):
+        write_report(layout(), path)
+    assert path.read_bytes() == b"old"
+    assert [entry.name for entry in tmp_path.iterdir()] == ["report.pdf"]
+
+
+def test_a_cancelled_report_writes_nothing(tmp_path):
+    with pytest.raises(ComputationCancelled):
+        write_report(layout(), tmp_path / "report.pdf", cancelled=lambda: True)
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_an_assessment_of_another_layout_is_refused(tmp_path):
+    other = assess(layout(rms=100.0))
+    with pytest.raises(ValueError, match="another layout"):
+        write_report(layout(), tmp_path / "report.pdf", assessment=other)
+
+
+def test_maps_show_the_counted_case_with_the_largest_value():
+    drawn = replace(
+        layout(),
+        load_cases=(
+            LoadCase(id="night", others="off", counted=True),
+            LoadCase(id="day", counted=True),
+        ),
+    )
+    ((z, case),) = maps.wanted_maps(assess(drawn))
+    assert (z, case.id) == (pytest.approx(1.0), "day")
+
+
+def test_a_layout_that_cannot_be_computed_still_has_a_report(tmp_path):
+    broken = replace(
+        layout(),
+        circuits=(Circuit(id="feeder", name="Feeder"),),
+        settings=Settings(paper="Letter"),
+    )
+    path = tmp_path / "report.pdf"
+    write_report(broken, path)
+    text = text_of(path)
+    assert "no current entered" in text
+    assert "No map" in text
