@@ -1,0 +1,1 @@
+"""Side panels: what the layout holds, as forms and tables that edit it."""

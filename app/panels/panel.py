@@ -1,0 +1,116 @@
+"""What all side panels share: they follow the document while they are seen."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QEvent, QLocale, Qt
+from PySide6.QtGui import QShowEvent
+from PySide6.QtWidgets import QFrame, QLabel, QScrollArea, QVBoxLayout, QWidget
+
+from app.document import Document
+from app.theme import SMALL, STEP, TITLE, theme_for
+from engine.layout import Layout
+
+
+def decimal_sign() -> str:
+    """The decimal sign of the place: a point or a comma."""
+    return "," if QLocale().decimalPoint() == "," else "."
+
+
+class Panel(QWidget):
+    """A panel that shows some collections of the layout.
+
+    A subclass names the fields of `Layout` it shows in `shows` and fills itself in
+    `refresh`. It is told of changes to those fields only; while hidden it waits.
+    """
+
+    shows: tuple[str, ...] = ()
+
+    def __init__(self, document: Document, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._document = document
+        self._seen: Layout | None = None
+        document.changed.connect(self._on_changed)
+        document.selection_changed.connect(self._on_selection_changed)
+
+    def refresh(self) -> None:
+        """Fill the panel from the document."""
+        raise NotImplementedError
+
+    def follow_selection(self, ids: frozenset[str]) -> None:
+        """Take note of another selection; nothing by default."""
+
+    def _on_changed(self, layout: Layout, _ids: object) -> None:
+        if self.isVisible() and self._is_stale(layout):
+            self._fill()
+
+    def _on_selection_changed(self, ids: frozenset[str]) -> None:
+        if self.isVisible():
+            self.follow_selection(ids)
+
+    def _is_stale(self, layout: Layout) -> bool:
+        seen = self._seen
+        return seen is None or any(
+            getattr(layout, name) is not getattr(seen, name) for name in self.shows
+        )
+
+    def _fill(self) -> None:
+        self._seen = self._document.layout
+        self.refresh()
+
+    def showEvent(self, event: QShowEvent) -> None:
+        if self._is_stale(self._document.layout):
+            self._fill()
+        self.follow_selection(self._document.selection)
+        super().showEvent(event)
+
+
+class Words(QLabel):
+    """A wrapped text in plain words: muted, small, a title, or a warning."""
+
+    def __init__(self, text: str = "", style: str = "muted") -> None:
+        super().__init__(text)
+        self._style = style
+        self.setWordWrap(True)
+        # What users typed is shown as it is and never as markup.
+        self.setTextFormat(Qt.TextFormat.PlainText)
+        self.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
+        self._colour()
+
+    def set_style(self, style: str) -> None:
+        """One of "plain", "muted", "title" and "warning"."""
+        if style != self._style:
+            self._style = style
+            self._colour()
+
+    def changeEvent(self, event: QEvent) -> None:
+        if event.type() == QEvent.Type.PaletteChange:
+            self._colour()
+        super().changeEvent(event)
+
+    def _colour(self) -> None:
+        theme = theme_for(self.palette())
+        colours = {"muted": theme.muted, "warning": theme.warning}
+        sizes = {"title": TITLE, "muted": SMALL, "warning": SMALL}
+        wanted = f"color: {colours.get(self._style, theme.text)};"
+        if self._style in sizes:
+            wanted += f" font-size: {sizes[self._style]}px;"
+        # Setting a style sheet changes the palette, which would come back here.
+        if wanted != self.styleSheet():
+            self.setStyleSheet(wanted)
+
+
+def scrolled(content: QWidget) -> QScrollArea:
+    """A frameless scroll area around `content` that follows its width."""
+    area = QScrollArea()
+    area.setWidgetResizable(True)
+    area.setFrameShape(QFrame.Shape.NoFrame)
+    area.setWidget(content)
+    return area
+
+
+def column(widget: QWidget | None = None, margin: int = 0) -> QVBoxLayout:
+    """A column of widgets with the spacing of all panels."""
+    box = QVBoxLayout() if widget is None else QVBoxLayout(widget)
+    box.setContentsMargins(margin, margin, margin, margin)
+    box.setSpacing(2 * STEP)
+    return box
