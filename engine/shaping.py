@@ -81,10 +81,14 @@ def placed(layout: Layout, ids: Collection[str], motion: Motion) -> Layout:
         elif item.id in going:
             new.append(carried(item, motion, floors))
         elif isinstance(item, Run):
-            new.append(_with_ends_along(item, going, motion))
+            run = _with_ends_along(item, going, motion)
+            if run is not item:
+                new.append(run)
     for joint in layout.joints:
-        goes = joint.id in going or {end.item for end in joint.ends} <= going
-        new.append(_joint_along(joint, names, motion if goes else None))
+        ends = {end.item for end in joint.ends}
+        goes = joint.id in going or ends <= going
+        if goes or any(names.get(end) for end in ends):
+            new.append(_joint_along(joint, names, motion if goes else None))
     return replaced(layout, *new)
 
 
@@ -311,7 +315,7 @@ def _kept(connection: Connection | None, gone: Collection[str]) -> Connection | 
 
 
 def counted(items: Collection[Item]) -> str:
-    """What the items are, for a sentence: "busbar LV link" or "3 items".
+    """What the items are, for a sentence: "busbar LV link", "Room 1" or "3 items".
 
     Examples
     --------
@@ -321,7 +325,9 @@ def counted(items: Collection[Item]) -> str:
     kinds = Counter(kind_of(item) for item in items)
     if len(items) == 1:
         (item,) = items
-        return f"{kind_of(item)} {item.title}"
+        kind = kind_of(item)
+        named = item.title.casefold().startswith(kind.casefold())
+        return item.title if named else f"{kind} {item.title}"
     if len(kinds) == 1:
         (kind,) = kinds
         return f"{len(items)} {_plural(kind)}"

@@ -153,7 +153,7 @@ POINTS = np.array(
 @pytest.mark.parametrize("route", ROUTES.values(), ids=ROUTES.keys())
 @pytest.mark.parametrize("section", SECTIONS.values(), ids=SECTIONS.keys())
 def test_the_field_goes_along(section: object, route: object, motion: Motion) -> None:
-    """Rotation, translation and mirror carry the resultant; the sum is good to 0.1 %."""
+    """Rotation, translation, mirror carry the resultant; the sum is good to 0.1 %."""
     before = layout_with(section, route)
     after = placed(before, ("bars",), motion)
     there = carried_points(POINTS, motion)
