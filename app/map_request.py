@@ -1,0 +1,287 @@
+"""What map is wanted, and its values: frozen requests in, plain arrays out, no Qt."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Literal
+
+import numpy as np
+import numpy.typing as npt
+
+from app.field_store import FieldStore, Sample, sample_of
+from app.view_state import Look
+from engine import field
+from engine.case_fields import CaseCurrents, case_currents
+from engine.circuits import LoadCase
+from engine.conductor import Conductor
+from engine.conductors import conductors
+from engine.criteria import ReferenceLevel
+from engine.currents import case_phasors
+from engine.errors import Cancelled
+from engine.layout import Layout
+from engine.levels import ratios, what_is_missing
+from engine.masks import keepouts
+from engine.places import Zone
+from engine.readings import reading
+from engine.zone_assessment import zone_floor
+
+Floats = npt.NDArray[np.float64]
+Rect = tuple[float, float, float, float]
+Fineness = Literal["coarse", "fine"]
+
+#: Nodes of one map, and its points over all heights.
+_NODES = {"coarse": 1120, "fine": 16_000}
+_POINTS = {"coarse": 3400, "fine": 24_000}
+_FEWEST_NODES = 300
+
+#: Above the floor, where no zone says at what height people are. [m]
+DEFAULT_HEIGHT = 1.0
+
+
+@dataclass(frozen=True)
+class MapRequest:
+    """A map of a rectangle on plan.
+
+    Attributes
+    ----------
+    layout : Layout
+    case : str
+        Id of the load case.
+    heights : tuple of float
+        The values are the largest over them; rising, at least one. [m above the datum]
+    rect : (x0, y0, x1, y1)
+        [m]
+    pixels : (across, up)
+        Of the view that shows it.
+    fineness
+        "coarse" while something is being dragged.
+    heights_name : str
+        The heights in words, for the caption.
+    """
+
+    layout: Layout
+    case: str
+    heights: tuple[float, ...]
+    rect: Rect
+    pixels: tuple[int, int]
+    fineness: Fineness
+    heights_name: str = ""
+
+
+@dataclass(frozen=True, eq=False)
+class Loaded:
+    """A layout's conductors with the currents of one load case."""
+
+    case: LoadCase
+    conductors: tuple[Conductor, ...]
+    currents: CaseCurrents
+
+
+@dataclass(frozen=True, eq=False)
+class MapValues:
+    """Values at the nodes of a map, height by height, masks left aside.
+
+    Attributes
+    ----------
+    request : MapRequest
+    loaded : Loaded
+    xs, ys : (nx,), (ny,) float
+        [m]
+    values : (h, ny, nx) float
+        RMS resultant of all frequencies above 0 Hz; at 0 Hz where only direct current
+        flows. [T]
+    level_ratios : pairs of level and (h, ny, nx) float
+        Ratio to each reference level that can be compared in this case. [-]
+    is_direct : bool
+        Only direct current flows.
+    is_bound : bool
+        Some value is an upper bound, because angles are unknown.
+    """
+
+    request: MapRequest
+    loaded: Loaded
+    xs: Floats
+    ys: Floats
+    values: Floats
+    level_ratios: tuple[tuple[ReferenceLevel, Floats], ...]
+    is_direct: bool
+    is_bound: bool
+
+
+def case_of(layout: Layout, case: str) -> LoadCase:
+    """The load case with that id, or the first."""
+    return next((c for c in layout.cases if c.id == case), layout.cases[0])
+
+
+def zone_of(layout: Layout, zone: str) -> Zone | None:
+    """The zone with that id, or the first that states its floor, or None."""
+    chosen = next((z for z in layout.zones if z.id == zone), None)
+    if chosen is not None and zone_floor(layout, chosen) is not None:
+        return chosen
+    return next((z for z in layout.zones if zone_floor(layout, z) is not None), None)
+
+
+def heights_of(layout: Layout, look: Look) -> tuple[tuple[float, ...], str]:
+    """The heights of the map that a look asks for, and how to call them. [m]"""
+    zone = zone_of(layout, look.zone)
+    if look.height is not None:
+        return (look.height,), height_text(layout, look.height, zone)
+    if zone is not None:
+        floor = zone_floor(layout, zone) or 0.0
+        levels = tuple(sorted({floor + h for h in zone.heights}))
+        return levels, f"largest over heights, {zone.title}"
+    level = _lowest_floor(layout) + DEFAULT_HEIGHT
+    return (level,), height_text(layout, level, None)
+
+
+def _lowest_floor(layout: Layout) -> float:
+    floors = [s.floor_level for s in layout.storeys]
+    floors += [room.floor_level for room in layout.rooms]
+    return min(floors, default=0.0)
+
+
+def height_text(layout: Layout, z: float, zone: Zone | None = None) -> str:
+    """A height as "z 5.10 (Office +1.00)": above the datum and above a floor. [m]"""
+    text = f"z {z:.2f}".replace("-", "−")
+    name, floor = floor_below(layout, z, zone)
+    return text if floor is None else f"{text} ({name} +{z - floor:.2f})"
+
+
+def floor_below(
+    layout: Layout, z: float, zone: Zone | None = None
+) -> tuple[str, float | None]:
+    """The highest floor not above a height, and its name; a zone's own goes first."""
+    if zone is not None:
+        floor = zone_floor(layout, zone)
+        if floor is not None and floor <= z <= floor + max(zone.heights) + 1e-9:
+            return zone.title, floor
+    floors = [(s.floor_level, s.title) for s in layout.storeys]
+    floors += [(room.floor_level, room.title) for room in layout.rooms]
+    below = [(level, name) for level, name in floors if level <= z + 1e-9]
+    if not below:
+        return "", None
+    level = max(level for level, _ in below)
+    return next(name for at, name in below if at == level), level
+
+
+def loaded(layout: Layout, case: str) -> Loaded:
+    """Conductors and currents of a layout in one case.
+
+    Raises
+    ------
+    UserError
+        When the geometry or the currents cannot be evaluated.
+    """
+    chosen = case_of(layout, case)
+    parts = conductors(layout)
+    phasors = case_phasors(layout, chosen)
+    return Loaded(
+        chosen, parts, case_currents(phasors, parts, keepouts(layout, chosen))
+    )
+
+
+def nodes(request: MapRequest) -> tuple[Floats, Floats, Sample]:
+    """Axes of the map's grid, and its points height by height. [m]"""
+    x0, y0, x1, y1 = request.rect
+    across, up = max(x1 - x0, 1e-6), max(y1 - y0, 1e-6)
+    count = max(
+        _FEWEST_NODES,
+        min(
+            _NODES[request.fineness],
+            _POINTS[request.fineness] // len(request.heights),
+        ),
+    )
+    nx = int(min(max(8, round(math.sqrt(count * across / up))), count // 8))
+    ny = max(8, count // nx)
+    xs, ys = np.linspace(x0, x1, nx), np.linspace(y0, y1, ny)
+    plan = np.stack(np.meshgrid(xs, ys), axis=-1).reshape(-1, 2)
+    points = np.concatenate(
+        [np.column_stack([plan, np.full(len(plan), z)]) for z in request.heights]
+    )
+    return xs, ys, sample_of(points)
+
+
+def map_values(
+    request: MapRequest,
+    store: FieldStore,
+    *,
+    transient: bool = False,
+    cancelled: Cancelled | None = None,
+) -> MapValues:
+    """Compute the values of a map.
+
+    Parameters
+    ----------
+    store : FieldStore
+        Keeps what does not change from one request to the next.
+    transient : bool
+        A drag goes on.
+
+    Raises
+    ------
+    UserError
+        When the geometry or the currents cannot be evaluated.
+    ComputationCancelled
+        When `cancelled` says so.
+    """
+    ready = loaded(request.layout, request.case)
+    xs, ys, sample = nodes(request)
+    b = store.flux_density(
+        ready.conductors,
+        ready.currents.currents,
+        sample,
+        transient=transient,
+        cancelled=cancelled,
+    )
+    shape = (len(request.heights), len(ys), len(xs))
+    whole = field.combined(b, ready.currents.components)
+    values = whole.total_ac if whole.total_ac is not None else whole.dc
+    is_direct = whole.total_ac is None and whole.dc is not None
+    return MapValues(
+        request=request,
+        loaded=ready,
+        xs=xs,
+        ys=ys,
+        values=(np.zeros(len(sample.points)) if values is None else values).reshape(
+            shape
+        ),
+        level_ratios=tuple(
+            (level, found.reshape(shape))
+            for level, found in ratios_at(
+                request.layout, ready, b, comparable_levels(request.layout)
+            )
+        ),
+        is_direct=is_direct,
+        is_bound=whole.is_bound,
+    )
+
+
+def comparable_levels(layout: Layout) -> tuple[ReferenceLevel, ...]:
+    """The levels that some zone or receptor names and that lack nothing."""
+    named = {id for place in (*layout.zones, *layout.receptors) for id in place.levels}
+    return tuple(
+        level
+        for level in layout.levels
+        if level.id in named and not what_is_missing(level)
+    )
+
+
+def ratios_at(
+    layout: Layout,
+    ready: Loaded,
+    b: npt.NDArray[np.complex128],
+    levels: tuple[ReferenceLevel, ...],
+) -> list[tuple[ReferenceLevel, Floats]]:
+    """Levels with the ratio (n,) of a field (c, n, 3) to each, AC or DC the larger."""
+    found = []
+    read = {}
+    for level in levels:
+        key = (level.basis, level.component)
+        if key not in read:
+            read[key] = reading(b, ready.currents.components, *key).by_frequency
+        compared = ratios(level, read[key])
+        known = [r for r in (compared.ac, compared.dc) if r is not None]
+        if known and not compared.missing:
+            found.append((level, np.max(known, axis=0)))
+    return found
