@@ -42,7 +42,8 @@ def copies(items: Collection[Item], taken: Collection[str]) -> tuple[Item, ...]:
     used = set(taken)
     new: dict[str, str] = {}
     for item in items:
-        new[item.id] = readable_id(_stem(item.id), used)
+        stem = item.id if item.id not in used else _stem(item.id)
+        new[item.id] = readable_id(stem, used)
         used.add(new[item.id])
     return tuple(
         renamed(item, new, ties=new.keys())

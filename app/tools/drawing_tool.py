@@ -252,10 +252,10 @@ class Points(DrawingTool):
         assert entry.x is not None
         assert entry.y is not None
         at = (entry.x, entry.y)
-        z = entry.z
-        if z is None:
-            z = self._height(at) if self._typed_z is None else self._typed_z
-        return (neat(at[0]), neat(at[1]), neat(z))
+        height = self._typed_z if entry.z is None else entry.z
+        if height is None:
+            height = self._height(at)
+        return (neat(at[0]), neat(at[1]), neat(height))
 
     def _place_at(self, at: Point, pointer: Pointer) -> None:
         z = self._points[-1][2] if self._points else self._height(at)

@@ -9,7 +9,8 @@ from collections.abc import Collection, Iterator
 from dataclasses import dataclass
 from math import dist
 
-from app.tools.tool import Point
+from app.tools.catch import NO_TARGETS, catch, targets
+from app.tools.tool import Point, Pointer
 from app.view_state import Look
 from engine.items import Item, Point3
 from engine.layout import Layout
@@ -19,6 +20,9 @@ from engine.places import BackingDrawing, Enclosure, Profile, Receptor, Room, Zo
 from engine.runs import Run
 from engine.sight import SIGHTS, Sight
 from engine.vertices import extent, is_closed, nearest_leg, vertices
+
+#: Step of the grid on plan. [m]
+GRID = 0.1
 
 
 @dataclass(frozen=True)
@@ -85,6 +89,23 @@ def leg_near(
     along = dist(start, foot) / length if length > 0 else 0.5
     x, y, z = (neat(p + along * (q - p)) for p, q in zip(a, b, strict=True))
     return leg, (x, y, z)
+
+
+def grip(item: Item, view: Sight, pointer: Pointer) -> Point:
+    """The exact place of an item that a pointer takes hold of, in the view's plane.
+
+    A vertex or the middle of a leg in reach; else the grid, on the leg where that
+    runs along an axis. [m]
+    """
+    flat = [seen(view, place) for place in vertices(item) or extent(item)]
+    wanted = targets(outlines=[flat]) if is_closed(item) else targets(lines=[flat])
+    near = catch(pointer.raw, wanted, 2 * pointer.reach, grid=GRID)
+    if near.caught != "edge":
+        return near.at
+    x, y = catch(near.at, NO_TARGETS, pointer.reach, grid=GRID).at
+    leg, _ = nearest_leg(flat, is_closed(item), near.at)
+    a, b = flat[leg], flat[(leg + 1) % len(flat)]
+    return (a[0] if a[0] == b[0] else x, a[1] if a[1] == b[1] else y)
 
 
 def inside_box(

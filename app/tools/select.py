@@ -1,7 +1,7 @@
 """Select: choose items, move them or their vertices by exact amounts, delete them.
 
 A box selects what lies wholly inside it. A drag previews and ends as one step of the
-history; its way is counted from the caught place where it began.
+history; its way is counted from the exact place of the item that was gripped.
 """
 
 from __future__ import annotations
@@ -17,6 +17,7 @@ from app.messages import Messages
 from app.tools.drawing_tool import DrawingTool, direction_text
 from app.tools.picking import (
     Handle,
+    grip,
     handle_near,
     handles,
     in_space,
@@ -51,6 +52,8 @@ class _Drag:
     start: Point
     raw: Point
     at: Point
+    #: Where the way begins when its end is caught.
+    grip: Point
     is_under_way: bool = False
 
 
@@ -94,7 +97,7 @@ class SelectTool(DrawingTool):
         return self._document.selection
 
     def catches(self) -> bool:
-        return self._drag is None or self._drag.kind != "box"
+        return self._drag is not None and self._drag.kind != "box"
 
     def press(self, pointer: Pointer) -> None:
         self._view = sight(pointer.plane)
@@ -107,17 +110,18 @@ class SelectTool(DrawingTool):
             pointer.reach,
         )
         if handle is not None and not pointer.shift:
-            self._begin("vertex", pointer, handle, handle.at)
+            self._begin("vertex", pointer, handle.at, handle)
             return
         pick = pointer.pick
         if pick is None:
-            self._begin("box", pointer, None, pointer.raw)
+            self._begin("box", pointer, pointer.raw)
             return
         if pointer.shift:
             document.select(document.selection | {pick})
         elif pick not in document.selection:
             document.select({pick})
-        self._begin("items", pointer, None, pointer.at)
+        item = document.committed.by_id()[pick]
+        self._begin("items", pointer, grip(item, self._view, pointer))
 
     def move(self, pointer: Pointer) -> None:
         drag = self._drag
@@ -127,6 +131,8 @@ class SelectTool(DrawingTool):
             return
         if not drag.is_under_way:
             drag.is_under_way = True
+            if pointer.caught:
+                drag.start = drag.grip
             self.set_hint("Release to end the move; Esc leaves everything as it was.")
         drag.at = pointer.raw if drag.kind == "box" else pointer.at
         if drag.kind != "box":
@@ -226,19 +232,18 @@ class SelectTool(DrawingTool):
         points = tuple(handle.at for handle in shown)
         if drag is None or not drag.is_under_way:
             return Overlay(points=points, labels=self._active_label())
-        length = dist(drag.start, drag.at)
-        if length <= SHORTEST:
+        start, end = drag.start, drag.at
+        if dist(start, end) <= SHORTEST:
             return Overlay(points=points)
-        text = f"{self._length_text(length)} · {direction_text(drag.start, drag.at)}"
-        return Overlay(
-            points=points, dimensions=(Dimension(drag.start, drag.at, text),)
-        )
+        text = f"{self._length_text(dist(start, end))} · {direction_text(start, end)}"
+        return Overlay(points=points, dimensions=(Dimension(start, end, text),))
 
     def _begin(
-        self, kind: str, pointer: Pointer, handle: Handle | None, start: Point
+        self, kind: str, pointer: Pointer, at: Point, handle: Handle | None = None
     ) -> None:
         self._handle = handle
-        self._drag = _Drag(kind, start, pointer.raw, start)
+        start = pointer.raw if handle is None else at
+        self._drag = _Drag(kind, start, pointer.raw, start, at)
         self.overlay_changed.emit()
 
     def _cancel(self) -> None:

@@ -380,6 +380,33 @@ def test_a_drag_moves_by_the_exact_way_in_one_step() -> None:
     assert d.layout.runs[0].route == before
 
 
+@pytest.mark.parametrize(
+    ("grip", "end", "way"),
+    [
+        # By the middle of its leg, by a vertex, and elsewhere by the grid on the leg.
+        ((4.12, 3.02), (4.6, 3.5), None),
+        ((1.52, 3.03), (2.0, 4.0), (0.5, 1.0)),
+        ((3.017, 3.02), (4.2, 3.7), (1.2, 0.7)),
+    ],
+)
+def test_a_caught_drag_counts_from_the_exact_place_gripped(
+    grip: tuple[float, float],
+    end: tuple[float, float],
+    way: tuple[float, float] | None,
+) -> None:
+    d = desk(SelectTool, transformer_link_board())
+    before = d.layout.runs[0].route
+    if way is None:
+        middle = (before[1][0] + before[2][0]) / 2
+        way = (end[0] - middle, end[1] - 3.0)
+    d.tool.press(at(*grip, pick=LINK))
+    d.tool.move(at(*end, raw=(end[0] + 0.03, end[1]), caught="grid"))
+    d.tool.release(at(*end, raw=(end[0] + 0.03, end[1]), caught="grid"))
+    after = d.layout.runs[0].route
+    assert after[0][0] == pytest.approx(before[0][0] + way[0], abs=1e-9)
+    assert after[0][1] == pytest.approx(before[0][1] + way[1], abs=1e-9)
+
+
 def test_a_twitch_is_a_click() -> None:
     d = desk(SelectTool, transformer_link_board())
     d.drag((3.0, 3.0), (3.02, 3.0), pick=LINK)
