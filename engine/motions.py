@@ -64,7 +64,7 @@ class Motion:
         return (*self.point(at[:2]), neat(at[2] + self.lift))
 
     def _linear(self, at: Point2) -> Point2:
-        c, s = _cos_sin(self.degrees)
+        c, s = cos_sin(self.degrees)
         x, y = at
         if self.mirrors:
             return (c * x + s * y, s * x - c * y)
@@ -273,7 +273,7 @@ def _backing_drawing(item: BackingDrawing, motion: Motion) -> BackingDrawing:
     )
 
 
-def _cos_sin(degrees: float) -> tuple[float, float]:
+def cos_sin(degrees: float) -> tuple[float, float]:
     """Exact at right angles, so that a quarter turn keeps coordinates as they are."""
     quarters = degrees / 90.0
     if quarters == round(quarters):

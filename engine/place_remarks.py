@@ -6,15 +6,17 @@ from collections.abc import Iterator
 
 import shapely
 
+from engine.calibration import is_calibrated
 from engine.criteria import ReferenceLevel
 from engine.currents import CasePhasors
+from engine.embedded_picture import picture_size
 from engine.faults import Remark
 from engine.items import Point3
 from engine.layout import Layout
 from engine.levels import covers, level_at, what_is_missing
 from engine.masks import keepouts
 from engine.origins import assumptions
-from engine.places import BackingDrawing, Receptor, Zone
+from engine.places import Receptor, Zone
 from engine.sampling import area_of
 from engine.units import significant
 
@@ -32,6 +34,7 @@ def place_remarks(layout: Layout) -> Iterator[Remark]:
     yield from _levels_without_statements(layout)
     yield from _receptor_heights(layout)
     yield from _missing_heights(layout)
+    yield from _backing_drawings(layout)
     yield from _masked_zones(layout)
     yield from _particular_risk(layout)
     yield from _assumed_values(layout)
@@ -168,7 +171,7 @@ def _receptor_heights(layout: Layout) -> Iterator[Remark]:
 
 
 def _missing_heights(layout: Layout) -> Iterator[Remark]:
-    """W24: no heights of floors, or a drawing without a scale."""
+    """W24: no heights of floors."""
     has_places = bool(layout.zones or layout.receptors)
     if has_places and not layout.storeys and not layout.rooms:
         yield Remark(
@@ -187,17 +190,26 @@ def _missing_heights(layout: Layout) -> Iterator[Remark]:
                 (zone.id,),
                 (*zone.outline[0], zone.heights[0]),
             )
-    fresh = BackingDrawing(id="fresh")
+
+
+def _backing_drawings(layout: Layout) -> Iterator[Remark]:
+    """W24: drawings without a scale, or without a picture that can be seen."""
     for drawing in layout.backing_drawings:
-        if all(
-            getattr(drawing, name) == getattr(fresh, name)
-            for name in ("first", "second", "distance")
-        ):
+        title = f"Backing drawing “{drawing.title}”"
+        if not is_calibrated(drawing):
             yield Remark(
                 "W24",
                 "warning",
-                f"Backing drawing “{drawing.title}” is not calibrated: distances taken "
+                f"{title} is not calibrated: distances taken "
                 "from it are not reliable. Give two of its points and their distance.",
+                (drawing.id,),
+            )
+        if picture_size(drawing) is None:
+            fault = "is damaged" if drawing.picture else "is missing"
+            yield Remark(
+                "W24",
+                "warning",
+                f"{title} cannot be shown: its picture {fault}. Choose its file again.",
                 (drawing.id,),
             )
 

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import base64
 import dataclasses
+import io
 from pathlib import Path
 
 import pytest
 from msgspec.structs import replace
+from PIL import Image
 
 from engine import layout_file
 from engine.assessment import assess
@@ -506,10 +509,34 @@ def test_zone_without_a_floor_is_a_warning(clean: Layout) -> None:
 
 
 def test_backing_drawing_without_scale_is_a_warning(clean: Layout) -> None:
-    layout = replace(clean, backing_drawings=(BackingDrawing(id="plan"),))
-    assert only(layout, "W24").items == ("plan",)
-    scaled = BackingDrawing(id="plan", second=(800.0, 0.0), distance=8.0)
+    drawing = BackingDrawing(id="plan", picture=dot())
+    layout = replace(clean, backing_drawings=(drawing,))
+    assert "is not calibrated" in only(layout, "W24").sentence
+    scaled = replace(drawing, second=(800.0, 0.0), distance=8.0)
     assert remarks(replace(clean, backing_drawings=(scaled,))) == ()
+
+
+def test_damaged_or_missing_backing_drawing_is_a_warning(clean: Layout) -> None:
+    whole = BackingDrawing(id="plan", second=(800.0, 0.0), distance=8.0, picture=dot())
+    middle = len(whole.picture) // 2
+    other = "A" if whole.picture[middle] != "A" else "B"
+    for picture, fault in (
+        (whole.picture[:middle] + other + whole.picture[middle + 1 :], "is damaged"),
+        (whole.picture[:middle], "is damaged"),
+        ("no base64 at all", "is damaged"),
+        ("", "is missing"),
+    ):
+        drawing = replace(whole, picture=picture)
+        remark = only(replace(clean, backing_drawings=(drawing,)), "W24")
+        assert fault in remark.sentence
+        assert remark.items == ("plan",)
+
+
+def dot() -> str:
+    """A small picture as a backing drawing holds it."""
+    kept = io.BytesIO()
+    Image.new("RGB", (8, 6), "white").save(kept, "PNG")
+    return base64.b64encode(kept.getvalue()).decode("ascii")
 
 
 def test_enclosure_in_a_zone_is_a_note(clean: Layout) -> None:
