@@ -1,0 +1,250 @@
+"""The mark beside a value that says where it comes from, and the form that sets it.
+
+A letter A marks an assumption; a value with an origin has a small dot. The form opens
+beneath the mark and goes with Escape.
+"""
+
+from __future__ import annotations
+
+from typing import Literal
+
+from msgspec.structs import replace
+from PySide6.QtCore import QEvent, Qt
+from PySide6.QtWidgets import (
+    QComboBox,
+    QFormLayout,
+    QFrame,
+    QLineEdit,
+    QPushButton,
+    QToolButton,
+    QVBoxLayout,
+)
+
+from app.document import Document
+from app.panels.field import Choice
+from app.panels.panel import Words
+from app.theme import BODY, STEP, theme_for
+from engine.edits import added, checked, collections, replaced, unused_id
+from engine.errors import UserError
+from engine.items import Item, SourceDocument, ValueOrigin
+from engine.layout import Layout
+from engine.origins import assumptions, origin_of, with_origin
+
+Kind = Literal["assumed", "document", "measured", "confirmed"]
+
+KINDS: tuple[tuple[Kind, str], ...] = (
+    ("document", "from a document"),
+    ("measured", "measured"),
+    ("confirmed", "confirmed by a person"),
+    ("assumed", "assumed"),
+)
+
+#: Lines of the form for each kind, with what they hold.
+_LINES: dict[str, tuple[str, ...]] = {
+    "document": ("page", "note"),
+    "measured": ("date", "instrument", "note"),
+    "confirmed": ("by", "date", "note"),
+    "assumed": ("note",),
+}
+_TITLES = {
+    "page": "Page or place", "note": "Note", "date": "Date",
+    "instrument": "Instrument", "by": "By",
+}  # fmt: skip
+
+
+def field_words(field: str) -> str:
+    """A dotted field name as words: "net_current" is "net current"."""
+    return field.replace("_", " ").replace(".", ", ")
+
+
+def origin_text(layout: Layout, origin: ValueOrigin | None) -> str:
+    """An origin as a phrase: "from Load list, F1"."""
+    if origin is None:
+        return "assumed"
+    if origin.kind == "document":
+        source = layout.by_id().get(origin.document or "")
+        name = source.title if source is not None else origin.document or "a document"
+        parts = [f"from {name}", origin.page]
+    elif origin.kind == "measured":
+        with_what = f"with {origin.instrument}" if origin.instrument else ""
+        parts = ["measured", origin.date, with_what]
+    elif origin.kind == "confirmed":
+        parts = [f"confirmed by {origin.by}" if origin.by else "confirmed", origin.date]
+    else:
+        parts = ["assumed"]
+    said = ", ".join(part for part in parts if part)
+    return f"{said}: {origin.note}" if origin.note else said
+
+
+class OriginForm(QFrame):
+    """Where one value comes from; `Set` enters it as one undo step."""
+
+    def __init__(self, document: Document, item: str, field: str) -> None:
+        super().__init__(None, Qt.WindowType.Popup)
+        self._document, self._item, self._field = document, item, field
+        self.setFrameShape(QFrame.Shape.StyledPanel)
+        present = origin_of(self._present(), field)
+        self.kind = Choice(
+            KINDS, self._on_kind, name="Origin", tip="Where the value comes from"
+        )
+        self.source = QComboBox()
+        self.source.setEditable(True)
+        self.source.setAccessibleName("Document")
+        self.source.setToolTip("A document of this layout, or the name of a new one")
+        self.source.addItem("", None)
+        for held in document.layout.documents:
+            self.source.addItem(held.title, held.id)
+        self.lines = {name: QLineEdit() for name in _TITLES}
+        self.reason = Words(style="warning")
+        self.reason.hide()
+        self.set_button = QPushButton("Set")
+        self.set_button.setDefault(True)
+        self.set_button.setToolTip("Enter this origin")
+        self.set_button.clicked.connect(self.apply)
+        self._form = QFormLayout()
+        self._form.setSpacing(STEP)
+        self._form.addRow("Origin", self.kind)
+        self._form.addRow("Document", self.source)
+        for name, title in _TITLES.items():
+            self.lines[name].setAccessibleName(title)
+            self.lines[name].setToolTip(title)
+            self.lines[name].setMaxLength(400)
+            self.lines[name].returnPressed.connect(self.apply)
+            self._form.addRow(title, self.lines[name])
+        box = QVBoxLayout(self)
+        box.setContentsMargins(3 * STEP, 3 * STEP, 3 * STEP, 3 * STEP)
+        box.addWidget(Words(f"Origin of {field_words(field)}", "plain"))
+        box.addLayout(self._form)
+        box.addWidget(self.reason)
+        box.addWidget(self.set_button)
+        self.setFixedWidth(75 * STEP)
+        self._fill(present)
+
+    def apply(self) -> None:
+        """Enter the origin, or say what is missing."""
+        try:
+            layout = self._stated()
+        except UserError as error:
+            self.reason.setText(str(error))
+            self.reason.show()
+            self.adjustSize()
+            return
+        words = field_words(self._field)
+        title = self._present().title
+        self.close()
+        self._document.edit(f"State where {words} of {title} comes from", layout)
+
+    def _present(self) -> Item:
+        return self._document.committed.by_id()[self._item]
+
+    def _fill(self, present: ValueOrigin | None) -> None:
+        kind: Kind = "document" if present is None else present.kind
+        self.kind.set_value(kind)
+        if present is not None:
+            for name, line in self.lines.items():
+                line.setText(getattr(present, name))
+            self.source.setCurrentIndex(max(self.source.findData(present.document), 0))
+        self._on_kind(kind)
+
+    def _on_kind(self, kind: Kind) -> None:
+        self._form.setRowVisible(self.source, kind == "document")
+        for name, line in self.lines.items():
+            self._form.setRowVisible(line, name in _LINES[kind])
+        self.adjustSize()
+
+    def _stated(self) -> Layout:
+        layout = self._document.committed
+        kind: Kind = self.kind.value
+        texts = {name: self.lines[name].text().strip() for name in _LINES[kind]}
+        if kind == "measured" and not texts["date"]:
+            raise UserError("State the date of the measurement.")
+        if kind == "confirmed" and not texts["by"]:
+            raise UserError("State who confirms the value.")
+        source = None
+        if kind == "document":
+            layout, source = self._with_document(layout)
+        origin = ValueOrigin(field=self._field, kind=kind, document=source, **texts)
+        return replaced(layout, checked(with_origin(self._present(), origin)))
+
+    def _with_document(self, layout: Layout) -> tuple[Layout, str]:
+        """The document named in the form; one that is not there yet is added."""
+        name = self.source.currentText().strip()
+        if not name:
+            raise UserError("Choose the document, or type the name of a new one.")
+        for held in layout.documents:
+            if name in (held.title, held.id):
+                return layout, held.id
+        new = checked(SourceDocument(id=unused_id(layout, name), name=name))
+        return added(layout, new), new.id
+
+
+class OriginMark(QToolButton):
+    """Says whether a value is an assumption; a press opens its `OriginForm`."""
+
+    def __init__(self, document: Document) -> None:
+        super().__init__()
+        self._document = document
+        self._item = self._field = ""
+        self._is_assumed = False
+        self.form: OriginForm | None = None
+        self.setFixedSize(6 * STEP, 6 * STEP)
+        self.setAutoRaise(True)
+        self.clicked.connect(self.open_form)
+
+    @property
+    def is_assumed(self) -> bool:
+        return self._is_assumed
+
+    def show_value(self, item: Item, field: str, assumed: bool) -> None:
+        """Stand for the value `field` of `item`."""
+        self._item, self._field, self._is_assumed = item.id, field, assumed
+        origin = origin_text(self._document.layout, origin_of(item, field))
+        self.setText("A" if assumed else "•")
+        words = field_words(field)
+        self.setAccessibleName(f"Origin of {words}: {origin}")
+        if assumed:
+            origin += " until its origin is stated" if origin == "assumed" else ""
+        self.setToolTip(f"{words.capitalize()}: {origin}. Press to state its origin.")
+        self._colour()
+
+    def open_form(self) -> None:
+        """Open the form beneath the mark."""
+        if self._item not in self._document.committed.by_id():
+            return
+        self.form = OriginForm(self._document, self._item, self._field)
+        self.form.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self.form.destroyed.connect(self._on_form_gone)
+        below = self.mapToGlobal(self.rect().bottomRight())
+        screen = self.screen().availableGeometry()
+        left = min(below.x() - self.form.width(), screen.right() - self.form.width())
+        top = min(below.y(), screen.bottom() - self.form.sizeHint().height())
+        self.form.move(max(left, screen.left()), max(top, screen.top()))
+        self.form.show()
+        self.form.kind.setFocus()
+
+    def changeEvent(self, event: QEvent) -> None:
+        if event.type() == QEvent.Type.PaletteChange:
+            self._colour()
+        super().changeEvent(event)
+
+    def _colour(self) -> None:
+        theme = theme_for(self.palette())
+        colour = theme.warning if self._is_assumed else theme.muted
+        wanted = f"color: {colour}; font-size: {BODY}px; border: none;"
+        wanted = (
+            f"QToolButton {{{wanted}}} "
+            f"QToolButton:focus {{border: 1px solid {theme.accent};}}"
+        )
+        if wanted != self.styleSheet():
+            self.setStyleSheet(wanted)
+
+    def _on_form_gone(self) -> None:
+        self.form = None
+
+
+def assumed_fields(item: Item) -> frozenset[str]:
+    """Fields of one item that are assumptions."""
+    place = collections()[type(item)]
+    held = item if place in ("title", "settings") else (item,)
+    alone = assumptions(replace(Layout(), **{place: held}))
+    return frozenset(a.field for a in alone if a.item == item.id)
