@@ -77,7 +77,7 @@ def _parser() -> argparse.ArgumentParser:
 
     plane = commands.add_parser("map", help="write the field on a horizontal plane")
     plane.add_argument("layout", metavar="LAYOUT")
-    plane.add_argument("out", metavar="OUT.png|OUT.csv", type=Path)
+    plane.add_argument("out", metavar="OUT.png|.svg|.csv", type=Path)
     plane.add_argument(
         "--height", type=float, required=True, metavar="H", help="above the datum [m]"
     )
@@ -148,7 +148,14 @@ def _map(asked: argparse.Namespace) -> int:
 
     layout = read(asked.layout)
     case = _case(layout, asked.case)
-    write_map(layout, case, asked.height, asked.out, asked.unit, progress_line())
+    write_map(
+        layout,
+        case,
+        (asked.height,),
+        asked.out,
+        unit=asked.unit,
+        progress=progress_line(),
+    )
     return _written(asked.out, asked.json)
 
 

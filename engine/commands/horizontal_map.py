@@ -1,7 +1,8 @@
-"""`map`: the field on a horizontal plane, as a picture or as numbers."""
+"""`map`: the field on horizontal planes, as a picture or as numbers."""
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import Path
 
 import numpy as np
@@ -9,42 +10,60 @@ import numpy as np
 from engine.circuits import LoadCase
 from engine.conductors import conductors
 from engine.drawing import plan
-from engine.errors import Progress, UserError
+from engine.errors import Cancelled, Progress, UserError
 from engine.exchange.map_export import write_csv, write_png
+from engine.exchange.svg import svg
 from engine.layout import Layout
 from engine.maps import field_map
-from engine.picture import map_subjects
+from engine.picture import map_picture, map_subjects
+from engine.written_file import write_file
+
+#: Endings of a file name that say what a map is written as.
+KINDS = (".png", ".svg", ".csv")
 
 
 def write_map(
     layout: Layout,
     case: LoadCase,
-    height: float,
+    heights: Sequence[float],
     out: Path,
-    unit: str | None,
-    progress: Progress,
+    *,
+    unit: str | None = None,
+    progress: Progress | None = None,
+    cancelled: Cancelled | None = None,
 ) -> None:
-    """Write the map at `height` above the datum; the ending of `out` says its kind.
+    """Write the map at a height above the datum, or the largest over several.
+
+    The ending of `out` says its kind. Numbers are written for one height only.
 
     Raises
     ------
     UserError
-        When the ending is neither .png nor .csv, when the layout cannot be evaluated,
-        or when the file cannot be written.
+        When the ending is of no known kind, when the layout cannot be evaluated, or
+        when the file cannot be written.
     """
     kind = out.suffix.lower()
-    if kind not in (".png", ".csv"):
+    if kind not in KINDS:
         raise UserError(
-            f"{out.name} was not written: a map is written as .png or .csv, "
+            f"{out.name} was not written: a map is written as .png, .svg or .csv, "
             "by the ending of the file's name."
         )
-    if not np.isfinite(height):
-        raise UserError("--height must be a finite number of metres above the datum.")
+    if not heights or not np.all(np.isfinite(heights)):
+        raise UserError("The height must be a finite number of metres above the datum.")
     step = layout.settings.grid_step if kind == ".csv" else None
-    result = field_map(layout, case, (height,), step=step, progress=progress)
+    if kind == ".csv" and len(heights) > 1:
+        raise UserError("Numbers are written for one height: choose one for the map.")
+    result = field_map(
+        layout, case, heights, step=step, progress=progress, cancelled=cancelled
+    )
     subjects = map_subjects(layout, case, result, unit=unit)
     if kind == ".csv":
-        write_csv(out, subjects, np.full(result.values.size, height))
+        write_csv(out, subjects, np.full(result.values.size, heights[0]))
+        return
+    # AC, or the direct field where no other flows; the caption says which.
+    drawn = plan(layout, conductors(layout))
+    if kind == ".png":
+        write_png(out, subjects[0], drawn)
     else:
-        # AC, or the direct field where no other flows; the caption says which.
-        write_png(out, subjects[0], plan(layout, conductors(layout)))
+        picture = map_picture(subjects[0], drawn, width=277.0, height=190.0)
+        write_file(out, svg(picture).encode("utf-8"))

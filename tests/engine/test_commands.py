@@ -7,6 +7,7 @@ import math
 import subprocess
 import sys
 from pathlib import Path
+from xml.etree import ElementTree
 
 import pytest
 
@@ -125,6 +126,8 @@ def test_report_and_maps_are_written(tmp_path):
     assert (tmp_path / "r.pdf").read_bytes().startswith(b"%PDF")
     run("map", SMALL, "--height", 1, tmp_path / "m.png")
     assert (tmp_path / "m.png").read_bytes().startswith(b"\x89PNG")
+    run("map", SMALL, "--height", 1, tmp_path / "m.svg")
+    assert ElementTree.parse(tmp_path / "m.svg").getroot().tag.endswith("svg")
     run("map", SMALL, "--height", 1, tmp_path / "m.csv")
     head, first = (tmp_path / "m.csv").read_text(encoding="utf-8").splitlines()[:2]
     assert head.startswith("x [m],y [m],z [m],B RMS resultant [µT]")
@@ -133,7 +136,7 @@ def test_report_and_maps_are_written(tmp_path):
 
 def test_a_map_of_another_kind_is_refused(tmp_path):
     message = run("map", SMALL, "--height", 1, tmp_path / "m.bmp", code=2)
-    assert ".png or .csv" in message
+    assert ".png, .svg or .csv" in message
 
 
 def test_a_report_that_cannot_be_written_says_so(tmp_path):
