@@ -9,9 +9,9 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 from itertools import pairwise
-from typing import Literal
+from operator import is_
+from typing import Literal, TypeVar
 
 import numpy as np
 import numpy.typing as npt
@@ -22,7 +22,6 @@ from engine.equipment import Board, ConductorLoop, Equipment, Transformer
 from engine.layout import Layout
 from engine.outlines import Area, Line, Point, band, bar_footprint
 from engine.places import Enclosure, Receptor, Room, Zone
-from engine.run_conductors import N_KEPT, Same
 from engine.runs import Run
 from engine.sight import PLAN, Sight
 
@@ -37,6 +36,7 @@ __all__ = [
     "RunShape",
     "Strand",
     "bar_footprint",
+    "parted",
     "plan",
     "run_shape",
     "strand",
@@ -44,6 +44,15 @@ __all__ = [
 
 #: A leg that moves less than this in the picture is drawn as a rise or a fall. [m]
 _END_ON = 1e-3
+
+# By identity, which a held value keeps from being used again. Plain dictionaries:
+# a drag asks for thousands of unchanged conductors at every step.
+_Key = tuple[int, str]
+_AnyKey = TypeVar("_AnyKey")
+_Kept = TypeVar("_Kept")
+_N_KEPT = 40_000
+_RUNS: dict[_Key, tuple[Run, Sequence[Conductor], RunShape]] = {}
+_STRANDS: dict[str, dict[int, tuple[Conductor, Strand]]] = {}
 
 
 @dataclass(frozen=True)
@@ -185,9 +194,7 @@ def plan(layout: Layout, conductors: Sequence[Conductor]) -> Plan:
     conductors : sequence of Conductor
         The conductors of that layout; without them, runs show as routes only.
     """
-    of_item: dict[str, list[Conductor]] = {}
-    for conductor in conductors:
-        of_item.setdefault(conductor.item, []).append(conductor)
+    parts = parted(conductors, PLAN)
     return Plan(
         rooms=tuple(_room(room) for room in layout.rooms),
         enclosures=tuple(_enclosure(enclosure) for enclosure in layout.enclosures),
@@ -196,12 +203,35 @@ def plan(layout: Layout, conductors: Sequence[Conductor]) -> Plan:
             for unit in layout.equipment
             if (place := _footprint(unit)) is not None
         ),
-        equipment_strands=tuple(strand(c) for c in conductors if c.role == "equipment"),
-        runs=tuple(run_shape(run, of_item.get(run.id, ())) for run in layout.runs),
-        links=tuple(strand(c) for c in conductors if c.role.endswith("link")),
+        equipment_strands=parts.equipment,
+        runs=tuple(run_shape(run, parts.runs.get(run.id, ())) for run in layout.runs),
+        links=parts.links,
         zones=tuple(_zone(zone, layout) for zone in layout.zones),
         receptors=tuple(_mark(receptor) for receptor in layout.receptors),
     )
+
+
+@dataclass(frozen=True)
+class Parted:
+    """Conductors by what they stand for: those of runs, and shapes of the others."""
+
+    runs: dict[str, list[Conductor]]
+    equipment: tuple[Strand, ...]
+    links: tuple[Strand, ...]
+
+
+def parted(conductors: Sequence[Conductor], sight: Sight) -> Parted:
+    """Conductors by what they stand for."""
+    runs: dict[str, list[Conductor]] = {}
+    equipment, links = [], []
+    for conductor in conductors:
+        if conductor.role == "run":
+            runs.setdefault(conductor.item, []).append(conductor)
+        elif conductor.role == "equipment":
+            equipment.append(strand(conductor, sight))
+        else:
+            links.append(strand(conductor, sight))
+    return Parted(runs, tuple(equipment), tuple(links))
 
 
 def _room(room: Room) -> Place:
@@ -256,17 +286,17 @@ def run_shape(
     ----------
     run : Run
     conductors : sequence of Conductor
-        Those of the run and its links; without them, the run shows as its route.
+        The run's own, without links; without any, it shows as its route.
     """
-    own = tuple(Same(c) for c in conductors if c.role == "run")
-    return _run_shape(Same(run), own, sight)
+    kept = _RUNS.get((id(run), sight.name))
+    if kept is not None and kept[0] is run and _same(kept[1], conductors):
+        return kept[2]
+    made = _run_shape(run, conductors, sight)
+    _keep(_RUNS, (id(run), sight.name), (run, conductors, made))
+    return made
 
 
-@lru_cache(maxsize=N_KEPT)
-def _run_shape(
-    same: Same[Run], conductors: tuple[Same[Conductor], ...], sight: Sight
-) -> RunShape:
-    run, own = same.value, [each.value for each in conductors]
+def _run_shape(run: Run, own: Sequence[Conductor], sight: Sight) -> RunShape:
     heights = [float(z) for c in own for z in c.path[:, 2]] or [p[2] for p in run.route]
     return RunShape(
         item=run.id,
@@ -291,12 +321,16 @@ def _rises(run: Run, sight: Sight) -> Iterable[Rise]:
 
 def strand(conductor: Conductor, sight: Sight = PLAN) -> Strand:
     """A conductor as seen; the identical shape again for the same conductor."""
-    return _strand(Same(conductor), sight)
+    of_sight = _STRANDS.setdefault(sight.name, {})
+    kept = of_sight.get(id(conductor))
+    if kept is not None and kept[0] is conductor:
+        return kept[1]
+    made = _strand(conductor, sight)
+    _keep(of_sight, id(conductor), (conductor, made))
+    return made
 
 
-@lru_cache(maxsize=2 * N_KEPT)
-def _strand(same: Same[Conductor], sight: Sight) -> Strand:
-    conductor = same.value
+def _strand(conductor: Conductor, sight: Sight) -> Strand:
     labels = dict.fromkeys(load.label for load in conductor.loads)
     z = conductor.path[:, 2]
     return Strand(
@@ -309,6 +343,17 @@ def _strand(same: Same[Conductor], sight: Sight) -> Strand:
         levels=(float(z.min()), float(z.max())),
         nearness=-float(sight.depth(conductor.path).min()),
     )
+
+
+def _same(one: Sequence[object], other: Sequence[object]) -> bool:
+    return len(one) == len(other) and all(map(is_, one, other))
+
+
+def _keep(kept: dict[_AnyKey, _Kept], key: _AnyKey, value: _Kept) -> None:
+    """Remember a value, dropping the oldest ones when there are very many."""
+    kept[key] = value
+    while len(kept) > _N_KEPT:
+        del kept[next(iter(kept))]
 
 
 def _line(points: npt.NDArray[np.float64]) -> Line:

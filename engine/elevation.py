@@ -19,9 +19,10 @@ from engine.drawing import (
     Place,
     Plan,
     Point,
+    Strand,
+    parted,
     plan,
     run_shape,
-    strand,
 )
 from engine.layout import Layout
 from engine.sight import Sight
@@ -45,22 +46,18 @@ def elevation(layout: Layout, conductors: Sequence[Conductor], sight: Sight) -> 
         not stated, and equipment without any height, are left out.
     """
     on_plan = plan(layout, ())
-    of_item: dict[str, list[Conductor]] = {}
-    for conductor in conductors:
-        of_item.setdefault(conductor.item, []).append(conductor)
+    parts = parted(conductors, sight)
     equipment = tuple(
-        _with_levels(place, _equipment_levels(place, layout, of_item))
+        _with_levels(place, _equipment_levels(place, layout, parts.equipment))
         for place in on_plan.equipment
     )
     return Plan(
         rooms=_from_side(on_plan.rooms, sight),
         enclosures=_from_side(on_plan.enclosures, sight),
         equipment=_from_side(equipment, sight),
-        equipment_strands=tuple(
-            strand(c, sight) for c in conductors if c.role == "equipment"
-        ),
-        runs=tuple(run_shape(r, of_item.get(r.id, ()), sight) for r in layout.runs),
-        links=tuple(strand(c, sight) for c in conductors if c.role.endswith("link")),
+        equipment_strands=parts.equipment,
+        runs=tuple(run_shape(r, parts.runs.get(r.id, ()), sight) for r in layout.runs),
+        links=parts.links,
         zones=_from_side(on_plan.zones, sight),
         receptors=tuple(
             Mark(mark.item, mark.title, mark.at, _seen(mark.at, sight))
@@ -90,12 +87,12 @@ def _with_levels(place: Place, levels: tuple[float, float] | None) -> Place:
 
 
 def _equipment_levels(
-    place: Place, layout: Layout, of_item: dict[str, list[Conductor]]
+    place: Place, layout: Layout, strands: Sequence[Strand]
 ) -> tuple[float, float] | None:
     """From the floor of the room it stands in up to its highest conductor. [m]"""
     if place.levels is not None:
         return place.levels
-    heights = [float(z) for c in of_item.get(place.item, ()) for z in c.path[:, 2]]
+    heights = [z for s in strands if s.item == place.item for z in s.levels]
     if not heights:
         return None
     low, high = min(heights), max(heights)

@@ -80,6 +80,8 @@ def clipped(a: Point, b: Point, width: float, height: float) -> Leg | None:
 
     Source: Liang and Barsky's parametric clipping.
     """
+    if all(0 <= x <= width and 0 <= y <= height for x, y in (a, b)):
+        return (a, b)
     dx, dy = b[0] - a[0], b[1] - a[1]
     first, last = 0.0, 1.0
     for step, room in (

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from operator import is_
 
 from PySide6.QtCore import QObject, QRectF, Signal
 from PySide6.QtWidgets import QGraphicsScene
@@ -83,7 +84,10 @@ class DrawingScene(QGraphicsScene):
         else:
             self.plan = elevation(layout, shown, self._sight)
         keys = flowing(layout, shown_case(layout, look.case))
-        live = {c.item for c in shown if c.role == "run" and carries(c, keys)}
+        live: set[str] = set()
+        for each in shown:
+            if each.role == "run" and each.item not in live and carries(each, keys):
+                live.add(each.item)
         if not shown:
             live = {run.id for run in layout.runs}
         kept: set[str] = set()
@@ -125,6 +129,17 @@ class DrawingScene(QGraphicsScene):
         """Tell the items how near the view is. [px/m]"""
         for item in self.items_by_id.values():
             item.scale_now = scale
+
+    @property
+    def is_empty(self) -> bool:
+        """Whether nothing at all is drawn."""
+        return not self.items_by_id and not self.backings
+
+    def ground_state(self) -> tuple[object, ...]:
+        """What lies below the items, to tell whether it has changed."""
+        layer = self.map_layer
+        below = [b.drawing for b in self.backings.values() if b.isVisible()]
+        return (layer.picture, layer.shows_colours, layer.shows_lines, *below)
 
     def shapes(self) -> list[ShapeItem]:
         """The visible items, uppermost first."""
@@ -266,9 +281,7 @@ class DrawingScene(QGraphicsScene):
 
 
 def _same(one: Sequence[Strand], other: Sequence[Strand]) -> bool:
-    return len(one) == len(other) and all(
-        a is b for a, b in zip(one, other, strict=True)
-    )
+    return len(one) == len(other) and all(map(is_, one, other))
 
 
 def _by_item(

@@ -6,20 +6,16 @@ so that following the pointer costs next to nothing.
 
 from __future__ import annotations
 
-from PySide6.QtCore import QEvent, QPoint, QPointF, QRectF, Qt, Signal
+from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
 from PySide6.QtGui import (
-    QInputDevice,
     QKeyEvent,
     QMouseEvent,
-    QNativeGestureEvent,
     QPainter,
     QPaintEvent,
     QPixmap,
     QResizeEvent,
-    QTransform,
-    QWheelEvent,
 )
-from PySide6.QtWidgets import QFrame, QGraphicsView, QWidget
+from PySide6.QtWidgets import QWidget
 
 from app.document import Document
 from app.map_picture import MapPicture
@@ -36,11 +32,8 @@ from app.views.picking import picked
 from app.views.picture_painter import PicturePainter
 from app.views.projection import PLAN, Sight
 from app.views.scale_bar import grid_step
+from app.views.zoomable_view import ZoomableView
 
-#: [px/m]
-_FARTHEST, _NEAREST = 0.02, 5000.0
-
-_ZOOM_STEP = 1.25
 _MARGIN = 56.0
 
 #: How near is near enough. [px]
@@ -53,10 +46,9 @@ _ARROWS = {
     Qt.Key.Key_Down: (0.0, -1.0),
     Qt.Key.Key_Up: (0.0, 1.0),
 }
-_PAN_BUTTONS = (Qt.MouseButton.RightButton, Qt.MouseButton.MiddleButton)
 
 
-class DrawingView(QGraphicsView):
+class DrawingView(ZoomableView):
     """The layout on plan or from a side.
 
     Signals
@@ -64,13 +56,10 @@ class DrawingView(QGraphicsView):
     pointer_moved(x, y)
         Place in the view's plane under the pointer, after the catch. [m]
     pointer_left()
-    camera_changed()
-        Another part of the drawing shows, or at another zoom.
     """
 
     pointer_moved = Signal(float, float)
     pointer_left = Signal()
-    camera_changed = Signal()
 
     def __init__(
         self,
@@ -91,12 +80,11 @@ class DrawingView(QGraphicsView):
         self._pixels: QPixmap | None = None
         self._tool: Tool | None = None
         self._pointer: Pointer | None = None
-        self._pan_from: QPoint | None = None
-        self._is_fitted = True
         self.catches_places = True
         self.holds_directions = False
         self._legend = Legend(self._inks, self.viewport())
         self._prepare_widget()
+        self.camera_changed.connect(self._on_camera_changed)
         document.changed.connect(self._on_changed)
         document.selection_changed.connect(self._on_selection_changed)
         view_state.changed.connect(self._on_look_changed)
@@ -105,14 +93,6 @@ class DrawingView(QGraphicsView):
         self.set_scale(60.0)
 
     def _prepare_widget(self) -> None:
-        self.setFrameShape(QFrame.Shape.NoFrame)
-        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.setViewportUpdateMode(QGraphicsView.ViewportUpdateMode.NoViewportUpdate)
-        self.setTransformationAnchor(QGraphicsView.ViewportAnchor.NoAnchor)
-        self.setResizeAnchor(QGraphicsView.ViewportAnchor.AnchorViewCenter)
-        self.setMouseTracking(True)
-        self.viewport().setMouseTracking(True)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMinimumSize(280, 180)
         name = "Plan" if self._sight is PLAN else f"Elevation {self._sight.name}"
@@ -164,9 +144,12 @@ class DrawingView(QGraphicsView):
 
     def set_map(self, picture: MapPicture | None) -> None:
         """Show another map under the drawing, or none."""
+        was_shown = self._legend_shows
         self._scene.map_layer.set_picture(picture)
         self._legend.set_picture(picture)
         self._place_legend()
+        if self.is_fitted and self._legend_shows != was_shown:
+            self.fit()
         self.refresh()
 
     def refresh(self) -> None:
@@ -174,35 +157,19 @@ class DrawingView(QGraphicsView):
         self._pixels = None
         self.viewport().update()
 
-    # -- the camera -------------------------------------------------------------
-
-    def camera(self) -> Camera:
-        """Where the view looks."""
-        made = self.viewportTransform()
-        size = self.viewport().size()
-        return Camera(made.m11(), made.dx(), made.dy(), size.width(), size.height())
-
-    def set_scale(self, scale: float) -> None:
-        """Zoom about the middle of the view. [px/m]"""
-        middle = QPointF(self.viewport().width() / 2, self.viewport().height() / 2)
-        self._zoom(scale / self.camera().scale, middle)
-
-    def look_at(self, x: float, y: float) -> None:
-        """Bring a place into the middle. [m]"""
-        self._is_fitted = False
-        self.centerOn(x, y)
-        self._on_camera_changed()
+    # -- what is in sight -------------------------------------------------------
 
     def fit(self) -> None:
         """Show everything that is drawn."""
         box = self._everything()
-        width = max(60.0, self.viewport().width() - 2 * _MARGIN)
+        beside = self._legend.width() if self._legend_shows else 0
+        width = max(60.0, self.viewport().width() - 2 * _MARGIN - beside)
         height = max(60.0, self.viewport().height() - 2 * _MARGIN)
         scale = min(width / max(box.width(), 0.5), height / max(box.height(), 0.5))
-        self._set_transform(scale)
-        self.centerOn(box.center())
-        self._is_fitted = True
-        self._on_camera_changed()
+        self.set_transform(scale)
+        self.centerOn(box.center() + QPointF(0.5 * beside / scale, 0.0))
+        self.is_fitted = True
+        self.camera_changed.emit()
 
     def _everything(self) -> QRectF:
         bounds = self._scene.plan.bounds()
@@ -214,36 +181,17 @@ class DrawingView(QGraphicsView):
             box = box.united(backing.sceneBoundingRect())
         return QRectF(-1.0, -1.0, 12.0, 8.0) if box.isNull() else box
 
-    def _zoom(self, factor: float, at: QPointF) -> None:
-        """Zoom so that the place under a pixel stays there."""
-        place = self.camera().metres(at)
-        self._set_transform(self.camera().scale * factor)
-        moved = self.camera().pixel(place) - at
-        self._scroll(round(moved.x()), round(moved.y()))
-        self._on_camera_changed()
-
-    def _set_transform(self, scale: float) -> None:
-        scale = min(max(scale, _FARTHEST), _NEAREST)
-        self.setTransform(QTransform(scale, 0.0, 0.0, -scale, 0.0, 0.0))
-
-    def _scroll(self, dx: int, dy: int) -> None:
-        bar = self.horizontalScrollBar()
-        bar.setValue(bar.value() + dx)
-        bar = self.verticalScrollBar()
-        bar.setValue(bar.value() + dy)
-
     def _on_camera_changed(self) -> None:
         self._scene.set_scale(self.camera().scale)
         self.refresh()
-        self.camera_changed.emit()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self._place_legend()
-        if self._is_fitted:
+        if self.is_fitted:
             self.fit()
         else:
-            self._on_camera_changed()
+            self.camera_changed.emit()
 
     def _place_legend(self) -> None:
         size, place = self.viewport().size(), self._legend.size()
@@ -317,21 +265,15 @@ class DrawingView(QGraphicsView):
         )
 
     def mousePressEvent(self, event: QMouseEvent) -> None:
-        if event.button() in _PAN_BUTTONS:
-            self._pan_from = event.position().toPoint()
-            self.viewport().setCursor(Qt.CursorShape.ClosedHandCursor)
-        elif event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
+        super().mousePressEvent(event)
+        if event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
             self._pointer = self.pointer_at(event.position(), event.modifiers())
             self._tool.press(self._pointer)
         event.accept()
 
     def mouseMoveEvent(self, event: QMouseEvent) -> None:
-        if self._pan_from is not None:
-            here = event.position().toPoint()
-            moved, self._pan_from = self._pan_from - here, here
-            self._is_fitted = False
-            self._scroll(moved.x(), moved.y())
-            self._on_camera_changed()
+        super().mouseMoveEvent(event)
+        if self.is_panning:
             return
         self._pointer = self.pointer_at(event.position(), event.modifiers())
         self.pointer_moved.emit(*self._pointer.at)
@@ -341,10 +283,8 @@ class DrawingView(QGraphicsView):
         self.viewport().update()
 
     def mouseReleaseEvent(self, event: QMouseEvent) -> None:
-        if event.button() in _PAN_BUTTONS:
-            self._pan_from = None
-            self.viewport().unsetCursor()
-        elif event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
+        super().mouseReleaseEvent(event)
+        if event.button() == Qt.MouseButton.LeftButton and self._tool is not None:
             self._pointer = self.pointer_at(event.position(), event.modifiers())
             self._tool.release(self._pointer)
         event.accept()
@@ -364,43 +304,21 @@ class DrawingView(QGraphicsView):
             shape = Qt.CursorShape.PointingHandCursor
         self.viewport().setCursor(shape)
 
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        is_pad = event.device().type() == QInputDevice.DeviceType.TouchPad
-        zooms = not is_pad or event.modifiers() & Qt.KeyboardModifier.ControlModifier
-        self._is_fitted = False
-        if zooms:
-            steps = event.angleDelta().y() / 120.0
-            self._zoom(_ZOOM_STEP**steps, event.position())
-        else:
-            moved = event.pixelDelta() or event.angleDelta()
-            self._scroll(-moved.x(), -moved.y())
-            self._on_camera_changed()
-        event.accept()
-
     def viewportEvent(self, event: QEvent) -> bool:
         if event.type() == QEvent.Type.Leave:
             self._pointer = None
             self.viewport().update()
             self.pointer_left.emit()
-        if (
-            isinstance(event, QNativeGestureEvent)
-            and event.gestureType() == Qt.NativeGestureType.ZoomNativeGesture
-        ):
-            self._is_fitted = False
-            self._zoom(1.0 + event.value(), event.position())
-            return True
         return super().viewportEvent(event)
 
     # -- keys -------------------------------------------------------------------
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         key, tool = Qt.Key(event.key()), self._tool
-        middle = QPointF(self.viewport().width() / 2, self.viewport().height() / 2)
         if key == Qt.Key.Key_Home:
             self.fit()
         elif key in (Qt.Key.Key_Plus, Qt.Key.Key_Minus):
-            self._is_fitted = False
-            self._zoom(_ZOOM_STEP ** (1 if key == Qt.Key.Key_Plus else -1), middle)
+            self.zoom_step(1.0 if key == Qt.Key.Key_Plus else -1.0)
         elif tool is None:
             event.ignore()
         elif key in _ARROWS:
@@ -418,10 +336,10 @@ class DrawingView(QGraphicsView):
     # -- listening --------------------------------------------------------------
 
     def _on_changed(self, layout: object, ids: object) -> None:
-        was_empty = self._scene.plan.bounds() is None
+        was_empty = self._scene.is_empty
         self._scene.show_layout(self._document.layout, self._view_state.look)
         self._scene.set_scale(self.camera().scale)
-        if ids == frozenset({"*"}) or (was_empty and self._is_fitted):
+        if ids == frozenset({"*"}) or (was_empty and self.is_fitted):
             self.fit()
 
     def _on_selection_changed(self, selection: frozenset[str]) -> None:

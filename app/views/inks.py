@@ -63,6 +63,12 @@ def shade(colour: str, alpha: float = 1.0) -> QColor:
     return made
 
 
+def _mixed(colour: str, paper: str, part: float) -> QColor:
+    """A colour laid over paper, opaque."""
+    over = zip(QColor(colour).getRgb()[:3], QColor(paper).getRgb()[:3], strict=True)
+    return QColor(*(round(part * c + (1.0 - part) * p) for c, p in over))
+
+
 class Inks:
     """Everything that the drawing is drawn with, in one theme.
 
@@ -71,11 +77,14 @@ class Inks:
     theme : Theme
     text_factor : float
         All text of the drawing is larger by this.
+    over_map : bool
+        A map shows: nothing may tint its colours.
     """
 
     def __init__(self, theme: Theme, text_factor: float = 1.0) -> None:
         self.theme = theme
         self.text_factor = text_factor
+        self.over_map = False
         self.room = pen(theme.text, 2.0)
         self.other_storey = pen(theme.line, 1.0)
         self.zone = pen(theme.text, 1.4, (6.0, 3.0, 1.0, 3.0))
@@ -93,8 +102,8 @@ class Inks:
         self.overlay = pen(theme.accent, 1.8)
         self.suggestion = pen(theme.accent, 1.2, (4.0, 4.0))
         self.catch_mark = pen(theme.above, 1.8)
-        self.hairline = pen(theme.hairline, 1.0)
-        self.fine_hairline = pen(theme.hairline, 1.0, alpha=0.45)
+        self.coarse_grid = _mixed(theme.hairline, theme.paper, 0.75)
+        self.fine_grid = _mixed(theme.hairline, theme.paper, 0.35)
         self.band_fill = QBrush(shade(theme.text, 0.10))
         self.enclosure_fill = QBrush(shade(theme.line, 0.12))
         self.equipment_fill = QBrush(shade(theme.paper, 0.55))
@@ -105,6 +114,7 @@ class Inks:
         self.small_metrics = QFontMetricsF(self.small)
         self.bold_metrics = QFontMetricsF(self.bold)
         self._strands: dict[str, QBrush] = {}
+        self._widths: dict[tuple[str, bool], float] = {}
 
     def strand_brush(self, letters: str) -> QBrush:
         """The fill of a conductor."""
@@ -112,6 +122,17 @@ class Inks:
         if found is None:
             found = QBrush(QColor(conductor_colour(letters, self.theme)))
             self._strands[letters] = found
+        return found
+
+    def width(self, text: str, *, bold: bool = False) -> float:
+        """How wide a text is. [px]"""
+        found = self._widths.get((text, bold))
+        if found is None:
+            metrics = self.bold_metrics if bold else self.small_metrics
+            found = metrics.horizontalAdvance(text)
+            if len(self._widths) > 5000:
+                self._widths.clear()
+            self._widths[text, bold] = found
         return found
 
     def _font(self, size: int, *, bold: bool = False) -> QFont:

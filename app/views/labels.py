@@ -6,10 +6,12 @@ that is free and in sight; those without a free place are left out.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from enum import IntEnum
 
+import numpy as np
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter
 
@@ -19,6 +21,12 @@ from app.views.inks import Inks
 _PAD_X, _PAD_Y = 4.0, 1.0
 
 _LONGEST = 44
+
+#: More labels than this are not read but in the way.
+_MOST = 150
+
+#: [px]
+_CELL = 3.0
 
 
 class Importance(IntEnum):
@@ -79,25 +87,54 @@ def placed(
     taken : sequence of QRectF
         Boxes to keep free. [px]
     """
-    boxes = [_sides(box) for box in taken]
-    found = []
-    left, top, right, bottom = _sides(frame)
+    ground = _Ground(frame)
+    for box in taken:
+        ground.take(*_sides(box))
+    found: list[PlacedLabel] = []
     for label in sorted(labels, key=lambda each: -each.importance):
+        if len(found) >= _MOST:
+            break
         metrics = inks.bold_metrics if label.bold else inks.small_metrics
-        half_width = 0.5 * metrics.horizontalAdvance(label.text) + _PAD_X
+        half_width = 0.5 * inks.width(label.text, bold=label.bold) + _PAD_X
         half_height = 0.5 * metrics.height() + _PAD_Y
         for x, y in label.places:
-            x0, y0, x1, y1 = (
+            sides = (
                 x - half_width, y - half_height, x + half_width, y + half_height,
             )  # fmt: skip
-            if x0 < left or x1 > right or y0 < top or y1 > bottom:
-                continue
-            if any(x0 < c and a < x1 and y0 < d and b < y1 for a, b, c, d in boxes):
-                continue
-            boxes.append((x0, y0, x1, y1))
-            found.append(PlacedLabel(label, QRectF(x0, y0, x1 - x0, y1 - y0)))
-            break
+            if ground.is_free(*sides):
+                ground.take(*sides)
+                box = QRectF(sides[0], sides[1], 2 * half_width, 2 * half_height)
+                found.append(PlacedLabel(label, box))
+                break
     return found
+
+
+class _Ground:
+    """Where something stands already, in cells of a few pixels."""
+
+    def __init__(self, frame: QRectF) -> None:
+        self._left, self._top, self._right, self._bottom = _sides(frame)
+        columns = max(1, math.ceil(frame.width() / _CELL) + 1)
+        rows = max(1, math.ceil(frame.height() / _CELL) + 1)
+        self._cells = np.zeros((rows, columns), dtype=bool)
+
+    def is_free(self, x0: float, y0: float, x1: float, y1: float) -> bool:
+        """Whether a box lies in the frame and on nothing. [px]"""
+        if x0 < self._left or x1 > self._right or y0 < self._top or y1 > self._bottom:
+            return False
+        return not self._cells[self._part(x0, y0, x1, y1)].any()
+
+    def take(self, x0: float, y0: float, x1: float, y1: float) -> None:
+        """Let a box stand here. [px]"""
+        self._cells[self._part(x0, y0, x1, y1)] = True
+
+    def _part(self, x0: float, y0: float, x1: float, y1: float) -> tuple[slice, slice]:
+        rows = slice(_cell(y0 - self._top), _cell(y1 - self._top) + 1)
+        return rows, slice(_cell(x0 - self._left), _cell(x1 - self._left) + 1)
+
+
+def _cell(pixels: float) -> int:
+    return max(0, int(pixels / _CELL))
 
 
 def draw_labels(painter: QPainter, labels: Iterable[PlacedLabel], inks: Inks) -> None:
@@ -143,8 +180,17 @@ def around(
     x: float, y: float, half_width: float, gap: float
 ) -> tuple[tuple[float, float], ...]:
     """Places for a label right, left, above and below a mark. [px]"""
-    across = gap + half_width
-    return ((x + across, y), (x - across, y), (x, y - gap - 8), (x, y + gap + 8))
+    across, down = gap + half_width, gap + 8.0
+    return (
+        (x + across, y),
+        (x - across, y),
+        (x, y - down),
+        (x, y + down),
+        (x + across, y - down),
+        (x + across, y + down),
+        (x - across, y - down),
+        (x - across, y + down),
+    )
 
 
 def _sides(box: QRectF) -> tuple[float, float, float, float]:

@@ -51,7 +51,7 @@ class Legend(QWidget):
             self._fit()
 
     def sizeHint(self) -> QSize:
-        metrics = self._inks.small_metrics
+        metrics = self._inks.bold_metrics
         words = [*self._head(), *self._foot()]
         values = [text for _, text, _ in self._ticks()]
         beside = max((metrics.horizontalAdvance(text) for text in values), default=0.0)

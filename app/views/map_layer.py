@@ -52,6 +52,11 @@ class MapLayer(QGraphicsItem):
             for line in picture.iso_lines
         ]
 
+    @property
+    def is_coloured(self) -> bool:
+        """Whether a map shows under the drawing."""
+        return self._picture is not None and self.shows_colours
+
     def boundingRect(self) -> QRectF:
         return self._box
 
@@ -84,14 +89,15 @@ class MapLayer(QGraphicsItem):
         """Pens of an iso-line: paper below, so that it reads on any colour."""
         theme = self.inks.theme
         fade = 0.45 if self._is_stale else 1.0
+        assert self._picture is not None
+        dashes = (5.0, 3.0) if self._picture.is_coarse else ()
         if bold:
             return [
                 pen(theme.paper, 4.6, alpha=0.75 * fade),
-                pen(theme.text, 2.4, alpha=fade),
+                pen(theme.text, 2.4, dashes, alpha=fade),
             ]
         return [
-            pen(theme.paper, 2.2, alpha=0.45 * fade),
-            pen(theme.text, 0.9, alpha=0.75 * fade),
+            pen(theme.text, 1.1, dashes, alpha=0.85 * fade),
         ]
 
     def _hatch(self, painter: QPainter) -> None:
@@ -159,7 +165,7 @@ class MapLayer(QGraphicsItem):
         pixels = tuple((p.x(), p.y()) for p in map(camera.pixel, places))
         is_coarse = self._picture.is_coarse
         return Label(
-            ("≈" if is_coarse else "") + line.text,
+            line.text,
             pixels,
             Importance.REFERENCE_LEVEL if line.bold else Importance.ISO_LINE,
             bold=line.bold,

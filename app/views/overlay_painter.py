@@ -47,7 +47,8 @@ def draw_overlay(
 
 def draw_handle(painter: QPainter, at: QPointF, inks: Inks) -> QRectF:
     """A square that can be gripped."""
-    box = QRectF(at.x() - HANDLE / 2, at.y() - HANDLE / 2, HANDLE, HANDLE)
+    x, y = round(at.x()), round(at.y())
+    box = QRectF(x - HANDLE / 2, y - HANDLE / 2, HANDLE, HANDLE)
     painter.setPen(QPen(QColor(inks.theme.accent), 2.0))
     painter.setBrush(QColor(inks.theme.paper))
     painter.drawRect(box.adjusted(1, 1, -1, -1))

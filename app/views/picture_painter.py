@@ -9,13 +9,18 @@ from PySide6.QtWidgets import QStyleOptionGraphicsItem
 from app.theme import TITLE
 from app.views.camera import Camera
 from app.views.drawing_scene import DrawingScene
+from app.views.ground import Ground
 from app.views.inks import Inks
 from app.views.labels import PlacedLabel, draw_labels, draw_text, placed, text_box
 from app.views.overlay_painter import draw_handle
 from app.views.picking import selected
 from app.views.projection import Sight
-from app.views.scale_bar import draw_grid, draw_scale_bar
+from app.views.scale_bar import draw_scale_bar
+from app.views.shape_item import ShapeItem
 from engine.layout import Layout
+
+#: With more items in sight, only their names are written.
+_CROWDED = 120
 
 EMPTY = "Draw the room, or place a backing drawing"
 
@@ -34,6 +39,7 @@ class PicturePainter:
         self.labels: list[PlacedLabel] = []
         self._scene = scene
         self._sight = sight
+        self._ground = Ground(scene)
 
     def paint(
         self, pixels: QPixmap, camera: Camera, layout: Layout, legend: QRectF
@@ -41,12 +47,11 @@ class PicturePainter:
         """Paint everything but the tool's overlay, keeping the legend's box free."""
         settings = layout.settings
         unit = settings.length_unit
-        pixels.fill(QColor(self.inks.theme.paper))
         painter = QPainter(pixels)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        draw_grid(painter, camera, self.inks, unit)
+        ratio = pixels.devicePixelRatio()
+        self._ground.paint(painter, camera, self.inks, unit, ratio)
         visible = self._paint_items(painter, camera)
-        painter.resetTransform()
         bar = draw_scale_bar(
             painter, camera, self.inks, self._sight, unit, settings.north
         )
@@ -57,35 +62,41 @@ class PicturePainter:
         for item in selected(self._scene):
             for grip in item.grips():
                 taken.append(draw_handle(painter, camera.pixel(grip), self.inks))
-        self.labels = []
-        if self._scene.shows_labels:
-            found = [label for item in visible for label in item.labels(camera, unit)]
-            found += self._scene.map_layer.labels(camera)
-            frame = camera.frame.adjusted(4, 4, -4, -4)
-            self.labels = placed(found, self.inks, frame, taken)
-            draw_labels(painter, self.labels, self.inks)
+        self._paint_labels(painter, camera, visible, unit, taken)
         painter.end()
 
-    def _paint_items(self, painter: QPainter, camera: Camera) -> list:
+    def _paint_items(self, painter: QPainter, camera: Camera) -> list[ShapeItem]:
         """Paint what has its size in metres; returns the visible shapes, top first."""
         option = QStyleOptionGraphicsItem()
         window = camera.visible
-        to_pixels = camera.transform()
+        self.inks.over_map = self._scene.map_layer.is_coloured
         visible = [
             i for i in self._scene.shapes() if i.boundingRect().intersects(window)
         ]
-        below = [b for b in self._scene.backings.values() if b.isVisible()]
-        for backing in below:
-            painter.setTransform(backing.transform() * to_pixels)
-            painter.setOpacity(backing.opacity())
-            backing.paint(painter, option)
-        painter.setOpacity(1.0)
-        painter.setTransform(to_pixels)
-        self._scene.map_layer.paint(painter, option)
+        painter.setTransform(camera.transform())
         for item in reversed(visible):
-            painter.setTransform(to_pixels)
             item.paint(painter, option)
+        painter.resetTransform()
         return visible
+
+    def _paint_labels(
+        self,
+        painter: QPainter,
+        camera: Camera,
+        visible: list[ShapeItem],
+        unit: str,
+        taken: list[QRectF],
+    ) -> None:
+        self.labels = []
+        if not self._scene.shows_labels:
+            return
+        is_crowded = len(visible) > _CROWDED
+        found = self._scene.map_layer.labels(camera)
+        for item in visible:
+            found += item.labels(camera, unit, is_crowded=is_crowded)
+        frame = camera.frame.adjusted(4, 4, -4, -4)
+        self.labels = placed(found, self.inks, frame, taken)
+        draw_labels(painter, self.labels, self.inks)
 
     def _paint_notices(self, painter: QPainter, camera: Camera) -> list[QRectF]:
         """What the user must know of the picture as a whole."""
@@ -104,7 +115,7 @@ class PicturePainter:
             box = text_box(text, inks, QPointF(camera.width / 2, 40.0))
             draw_text(painter, box, text, inks, colour=inks.theme.warning)
             taken.append(box)
-        if self._scene.plan.bounds() is None and not self._scene.backings:
+        if self._scene.is_empty:
             font = QFont()
             font.setPixelSize(round(TITLE * inks.text_factor))
             painter.setFont(font)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QPainter, QPainterPath, QPen
+from PySide6.QtGui import QBrush, QColor, QPainter, QPainterPath, QPen
 from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 from app.tools.catch import Targets, targets
@@ -81,15 +81,18 @@ class PlaceItem(ShapeItem):
         }
         return pens[self.place.kind]
 
-    def _brush(self) -> object:
+    def _brush(self) -> QBrush:
+        if self.inks.over_map:
+            return QBrush()
+        closed = self.inks.enclosure_fill if self.place.closed else QBrush()
         brushes = {
-            "enclosure": self.inks.enclosure_fill,
+            "enclosure": closed,
             "equipment": self.inks.equipment_fill,
             "zone": self.inks.zone_fill,
         }
-        return brushes.get(self.place.kind, Qt.BrushStyle.NoBrush)
+        return brushes.get(self.place.kind, QBrush())
 
-    def labels(self, camera: Camera, unit: str) -> list[Label]:
+    def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:
         title = shortened(self.place.title)
         if self.place.closed:
             title += ", closed"
@@ -118,7 +121,7 @@ class PlaceItem(ShapeItem):
         shown = camera.transform().mapRect(self._path.boundingRect())
         shown = shown.intersected(camera.frame)
         metrics = self.inks.bold_metrics
-        across = 0.5 * metrics.horizontalAdvance(title) + 8.0
+        across = 0.5 * self.inks.width(title, bold=True) + 8.0
         down = 0.5 * metrics.height() + 6.0
         x0, x1 = shown.left() + across, shown.right() - across
         y0, y1 = shown.top() + down, shown.bottom() - down
@@ -128,6 +131,11 @@ class PlaceItem(ShapeItem):
             return ((x0, y0), (x1, y0), (x0, y1), (x1, y1), (centre.x(), y0))
         if self.place.kind == "zone":
             return ((x1, y1), (x0, y1), (x1, y0), (x0, y0), (centre.x(), y1))
+        if self.place.kind == "enclosure":
+            return (
+                (x0, y0), (x1, y0), (x0, y1), (x1, y1),
+                (centre.x(), shown.bottom() + down), (centre.x(), shown.top() - down),
+            )  # fmt: skip
         at = (middle.x(), middle.y())
         return (
             at,
@@ -186,7 +194,7 @@ class LooseStrandsItem(ShapeItem):
             painter.drawPolyline(polygon(strand.line))
         self._painter.paint(painter, self.inks, self.scale_now)
 
-    def labels(self, camera: Camera, unit: str) -> list[Label]:
+    def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:
         if self._box.width() * camera.scale < 30:
             return []
         middle = camera.pixel((self._box.center().x(), self._box.center().y()))
@@ -243,11 +251,11 @@ class ReceptorItem(ShapeItem):
         painter.drawPoint(at)
         return [QRectF(at.x() - _MARK, at.y() - _MARK, 2 * _MARK, 2 * _MARK)]
 
-    def labels(self, camera: Camera, unit: str) -> list[Label]:
+    def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:
         at = camera.pixel(self.mark.seen)
         z = self.mark.at[2]
         text = f"{shortened(self.mark.title)}  {range_text((z, z), unit)}"
-        half = 0.5 * self.inks.small_metrics.horizontalAdvance(text) + 4.0
+        half = 0.5 * self.inks.width(text) + 4.0
         importance = Importance.SELECTED if self.is_selected else Importance.RECEPTOR
         places = around(at.x(), at.y(), half, _MARK + 4.0)
         return [Label(text, places, importance, self.item_id, bold=self.is_selected)]

@@ -6,7 +6,7 @@ import math
 from collections.abc import Sequence
 
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QPainter, QPen, QPolygonF
+from PySide6.QtGui import QColor, QPainter, QPainterPath, QPen, QPolygonF
 from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 from app.tools.catch import Targets, targets
@@ -51,9 +51,18 @@ class RunItem(ShapeItem):
         self.run = run
         self.links = tuple(links)
         self.has_current = has_current
+        self._legs: tuple[Camera, list[Leg]] | None = None
         self._route = polygon(run.route)
         self._band = area_path(run.areas)
-        self._links = [(polygon(s.line), s.role == "closing link") for s in links]
+        self._closing = QPainterPath()
+        for link in links:
+            if link.role == "closing link":
+                self._closing.addPolygon(polygon(link.line))
+        joining = [s for s in links if s.role != "closing link"]
+        self._joining = QPainterPath()
+        for link in joining:
+            self._joining.addPolygon(polygon(link.line))
+        self._link_painter = StrandPainter(joining)
         self._painter = StrandPainter(run.strands)
         self._half_band = 0.5 * across(run.route, run.areas)
         box = self._band.boundingRect() if run.areas else QRectF()
@@ -76,13 +85,16 @@ class RunItem(ShapeItem):
             painter.drawPolyline(self._route)
             if is_wide:
                 painter.drawPath(self._band)
-        for line, is_assumed in self._links:
-            painter.setPen(inks.assumed_link if is_assumed else inks.link)
-            painter.drawPolyline(line)
+        painter.setPen(inks.link)
+        painter.drawPath(self._joining)
+        self._link_painter.paint(painter, inks, self.scale_now)
+        painter.setBrush(Qt.BrushStyle.NoBrush)
         if not is_wide:
             painter.setPen(self._route_pen())
             painter.drawPolyline(self._route)
             return
+        painter.setPen(inks.assumed_link)
+        painter.drawPath(self._closing)
         painter.setPen(inks.band if self.has_current else inks.band_without_current)
         if self.is_selected:
             painter.setPen(inks.selected)
@@ -100,6 +112,12 @@ class RunItem(ShapeItem):
             return self.inks.route
         return self.inks.route_without_current
 
+    def _visible_legs(self, camera: Camera) -> list[Leg]:
+        """Those of the route, found once for each picture. [px]"""
+        if self._legs is None or self._legs[0] is not camera:
+            self._legs = (camera, camera.visible_legs(self.run.route))
+        return self._legs[1]
+
     def decorate(self, painter: QPainter, camera: Camera) -> list[QRectF]:
         taken = []
         for rise in self.run.rises:
@@ -108,7 +126,7 @@ class RunItem(ShapeItem):
             if camera.frame.intersects(box):
                 self._draw_rise(painter, at, rise)
                 taken.append(box)
-        leg = longest(camera.visible_legs(self.run.route))
+        leg = longest(self._visible_legs(camera))
         if leg is not None and math.dist(*leg) >= _SHORT:
             taken.append(self._draw_arrow(painter, leg))
         return taken
@@ -153,13 +171,17 @@ class RunItem(ShapeItem):
         painter.drawPolygon(head)
         return head.boundingRect()
 
-    def labels(self, camera: Camera, unit: str) -> list[Label]:
+    def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:
         run = self.run
         text = f"{shortened(run.title)}  {range_text(run.levels, unit)}"
-        legs = sorted(camera.visible_legs(run.route), key=lambda leg: -math.dist(*leg))
-        half = 0.5 * self.inks.bold_metrics.horizontalAdvance(text) + 4.0
+        legs = sorted(self._visible_legs(camera), key=lambda leg: -math.dist(*leg))
+        half = 0.5 * self.inks.width(text, bold=True) + 4.0
         places: list[tuple[float, float]] = []
         offset = self._half_band * camera.scale + 11.0
+        if is_crowded and not self.is_selected:
+            if not legs or math.dist(*legs[0]) < half:
+                return []
+            legs, places = [], _beside(legs[0], half, offset)[:2]
         for leg in legs[:2]:
             places += _beside(leg, half, offset)
         if not any(math.dist(*leg) >= _SHORT for leg in legs):
@@ -173,6 +195,8 @@ class RunItem(ShapeItem):
         name = Label(
             text, tuple(places), importance, self.item_id, bold=self.is_selected
         )
+        if is_crowded:
+            return [name]
         return [
             name,
             *self._rise_labels(camera, unit),
@@ -187,7 +211,7 @@ class RunItem(ShapeItem):
                 continue
             start, end = length_text(rise.z_from, unit), length_text(rise.z_to, unit)
             text = f"{rise.axis} {start} → {end}"
-            half = 0.5 * self.inks.small_metrics.horizontalAdvance(text) + 4.0
+            half = 0.5 * self.inks.width(text) + 4.0
             places = around(at.x(), at.y(), half, _SIGN + 3.0)
             found.append(Label(text, places, Importance.HEIGHT, self.item_id))
         return found

@@ -81,8 +81,11 @@ class ShapeItem(QGraphicsItem):
         """Draw what has a size in pixels; return the boxes that it fills. [px]"""
         return []
 
-    def labels(self, camera: Camera, unit: str) -> list[Label]:
-        """Texts to be placed; heights in the length unit `unit`."""
+    def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:
+        """Texts to be placed; heights in the length unit `unit`.
+
+        Where it is crowded, only the most important one, with few places.
+        """
         return []
 
     def distance(self, at: Point) -> float:
