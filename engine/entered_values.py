@@ -31,12 +31,17 @@ _FIRST: dict[tuple[type, str], Struct] = {
 }
 
 
-def value_at(item: Struct, path: str) -> Any:
-    """The value at a dotted name, such as "section.pitch" or "poles.0.z".
+def value_at(item: Item, path: str) -> Any:
+    """The value of an item at a dotted name, such as "section.pitch" or "poles.0.z".
 
     None where a part on the way is not there.
     """
-    found: Any = item
+    return part_at(item, path)
+
+
+def part_at(whole: Any, path: str) -> Any:
+    """The part of any value at a dotted name; tuples by number."""
+    found = whole
     for step in path.split("."):
         if found is None:
             return None
@@ -46,6 +51,11 @@ def value_at(item: Struct, path: str) -> Any:
         else:
             found = getattr(found, step, None)
     return found
+
+
+def with_part(whole: Any, path: str, value: Any) -> Any:
+    """Any value with another part at a dotted name."""
+    return _with(whole, path.split("."), value)
 
 
 def with_value(item: AnyItem, path: str, value: Any) -> AnyItem:

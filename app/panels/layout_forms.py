@@ -1,0 +1,100 @@
+"""What can be edited of the layout as a whole: title block and settings."""
+
+from __future__ import annotations
+
+from typing import get_args
+
+from app.panels.kinds import (
+    DEGREES,
+    HERTZ,
+    Amount,
+    Distance,
+    FluxDensity,
+    Lines,
+    Words,
+    one_of,
+)
+from app.panels.parts import Group, Part
+from app.panels.place_forms import uncertainty_parts
+from engine.layout import FluxDensityUnit, Layout
+
+_TITLE = (
+    Part("project", "Project", Words(), "Printed in the title block"),
+    Part("client", "Client", Words(), "Printed in the title block"),
+    Part("document_number", "Number", Words(), "Number of the document"),
+    Part("revision", "Revision", Words(), "Revision of the document"),
+    Part("status", "Status", Words(), "Status of the document, such as draft"),
+    Part("date", "Date", Words(), "Date of the document, as it is to be printed"),
+    Part("prepared_by", "Prepared by", Words(), "Who prepared it"),
+    Part("checked_by", "Checked by", Words(), "Who checked it"),
+    Part("approved_by", "Approved by", Words(), "Who approved it"),
+    Part("question", "Question", Lines(), "The question that the calculation answers"),
+    Part("scope", "Scope", Lines(), "What is looked at and what is not"),
+    Part("conclusions", "Conclusions", Lines(), "Conclusions in the user's words"),
+)
+
+_UNITS = (
+    Part("frequency", "Frequency", Amount(HERTZ, "Hz"), "Of new circuits, in hertz"),
+    Part(
+        "flux_density_unit",
+        "Flux density in",
+        one_of(*get_args(FluxDensityUnit)),
+        "Unit in which flux densities are shown and typed",
+        "unit of flux density",
+    ),
+    Part(
+        "length_unit",
+        "Lengths in",
+        one_of("m", "mm", "ft", "in"),
+        "Unit in which lengths are shown and typed",
+        "unit of length",
+    ),
+    Part("paper", "Paper", one_of("A4", "A3", "Letter", "Tabloid"), "Size of prints"),
+    Part(
+        "north",
+        "North",
+        Amount(DEGREES, "°", is_optional=True),
+        "Direction of north on plan, counter-clockwise from +x, degrees; may be empty",
+    ),
+)
+
+_MAP = (
+    Part("map_low", "Map from", FluxDensity(), "Values under it are not coloured"),
+    Part("map_high", "Map to", FluxDensity(), "Values over it have the last colour"),
+    Part(
+        "map_scale",
+        "Scale",
+        one_of("logarithmic", "linear"),
+        "How colours follow values, the same in all maps",
+        "scale of the map",
+    ),
+    Part("grid_step", "Grid step", Distance(), "Step of exported grids"),
+)
+
+_RULE = (
+    Part(
+        "decision_rule.kind",
+        "Decision rule",
+        one_of("none chosen", "additive", "value only"),
+        "How the summary counts: additive takes the uncertainty in, value only does "
+        "not. The states themselves are always printed",
+    ),
+    Part(
+        "decision_rule.chosen_by",
+        "Chosen by",
+        Words(),
+        "Who chose the rule",
+        "chooser of the decision rule",
+    ),
+)
+
+
+def layout_groups(layout: Layout) -> tuple[Group, ...]:
+    """Everything about the layout as a whole."""
+    title, settings = (layout.title,), (layout.settings,)
+    return (
+        Group("Title block", title, _TITLE),
+        Group("Units and paper", settings, _UNITS),
+        Group("Maps", settings, _MAP),
+        Group("Uncertainty and decision", settings, (*uncertainty_parts(), *_RULE)),
+    )
