@@ -151,10 +151,18 @@ def with_route(run: Run, leg: int, route: Sequence[Point3]) -> Run:
         The first leg of the part, from 0.
     route : points
         The part's vertices; its first leg lies on that leg. [m]
+
+    Raises
+    ------
+    UserError
+        When the run up to there cannot be built.
     """
     old = run.turns or (0.0,) * (len(run.route) - 1)
-    frames = stations(run.route[: leg + 2])
-    natural = stations(route[:2])
+    try:
+        frames = stations(run.route[: leg + 2])
+        natural = stations(route[:2])
+    except UserError as error:
+        raise UserError(f"Run “{run.title}”: {error}") from None
     # At the end of the last leg the section stands square to it.
     u = frames.plain_axes[-1][0]
     along_u, along_v = (float(axis @ u) for axis in natural.plain_axes[0])

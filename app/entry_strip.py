@@ -1,0 +1,385 @@
+"""The entry strip above the drawing: labelled fields, a line for words, the toggles.
+
+Tab walks from the way of entering through its fields to the line of words. What is
+entered goes to the active tool; what cannot be understood turns its field, says why
+beside it, and changes nothing.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from PySide6.QtCore import QEvent, QLocale, Qt, Signal
+from PySide6.QtGui import QKeyEvent
+from PySide6.QtWidgets import (
+    QComboBox,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QToolButton,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app import entry_words
+from app.theme import BODY, STEP, theme_for
+from app.tools.drawing_tool import DrawingTool
+from app.tools.tool import Entry, Tool
+from app.wrapping import WrappingRow
+from engine.errors import UserError
+
+#: Labels of the fields of each way of entering; an empty one is not used.
+FIELDS: dict[str, tuple[str, str, str]] = {
+    "to": ("x", "y", "z"),
+    "by": ("dx", "dy", "dz"),
+    "go": ("length", "toward", "up"),
+    "size": ("along x", "along y", ""),
+}
+
+_MEANINGS = {
+    "x": "Across, from the origin of the plan",
+    "y": "Upwards on the plan, from the origin",
+    "z": "Height above the datum; empty keeps the height",
+    "dx": "Across, from the last place",
+    "dy": "Upwards on the plan, from the last place",
+    "dz": "Higher than the last place",
+    "length": "Length on plan, from the last place",
+    "toward": "Direction in degrees: 0 is +x, counter-clockwise",
+    "up": "Higher than the last place",
+    "along x": "Side along x; a negative one goes to the left",
+    "along y": "Side along y; a negative one goes downwards",
+}
+
+_EXAMPLE = "to 3.2 -0.35 z 2.6"
+
+
+class EntryStrip(QWidget):
+    """Takes exact places and sizes for the active tool.
+
+    Signals
+    -------
+    entered(entry)
+        An `Entry` that was understood; the active tool has it already.
+    hold_toggled(on), catch_toggled(on)
+    left()
+        Escape in a field: the drawing should have the keyboard again.
+    """
+
+    entered = Signal(object)
+    hold_toggled = Signal(bool)
+    catch_toggled = Signal(bool)
+    left = Signal()
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._tool: Tool | None = None
+        self._unit = "m"
+        self._combos: dict[str, QComboBox] = {}
+        self.setAccessibleName("Entry strip")
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(0)
+        parts = QWidget()
+        row = WrappingRow(parts, gap=2 * STEP, margin=2 * STEP)
+        row.addWidget(self._field_group())
+        row.addWidget(self._words_line())
+        row.addWidget(self._toggle_group())
+        row.addWidget(self._choice_group())
+        column.addWidget(parts)
+        self.fault = QLabel()
+        self.fault.setWordWrap(True)
+        self.fault.setTextFormat(Qt.TextFormat.PlainText)
+        self.fault.setContentsMargins(2 * STEP, 0, 2 * STEP, STEP)
+        self.fault.hide()
+        column.addWidget(self.fault)
+        self.way.currentTextChanged.connect(self._show_way)
+        self._show_way(self.way.currentText())
+        self._paint_toggles()
+
+    def _field_group(self) -> QWidget:
+        """The way of entering and its labelled fields."""
+        group, row = _group()
+        self.way = QComboBox()
+        self.way.addItems(list(FIELDS))
+        self._explain(self.way, "Way of entering", "to a place, by a way, go, or size")
+        row.addWidget(self.way)
+        self.labels: list[QLabel] = []
+        self.fields: list[QLineEdit] = []
+        for _ in range(3):
+            label, field = QLabel(), QLineEdit()
+            label.setBuddy(field)
+            field.setFixedWidth(5 * BODY)
+            field.returnPressed.connect(self._enter_fields)
+            field.textEdited.connect(self._clear_fault)
+            row.addWidget(label)
+            row.addWidget(field)
+            self.labels.append(label)
+            self.fields.append(field)
+        return group
+
+    def _words_line(self) -> QWidget:
+        self.words = QLineEdit()
+        self.words.setPlaceholderText(_EXAMPLE)
+        self.words.setFixedWidth(13 * BODY)
+        self.words.returnPressed.connect(self._enter_words)
+        self.words.textEdited.connect(self._clear_fault)
+        self._explain(
+            self.words,
+            "Entry in words",
+            "to x y z, by dx dy dz, go length toward degrees, size along-x along-y; "
+            "units glued to their number, as in 320mm or 10ft6in",
+        )
+        return self.words
+
+    def _choice_group(self) -> QWidget:
+        """What the active tool offers, and the height at which it draws."""
+        self._offered, self._choices = _group()
+        self.height_shown = QLabel()
+        self.height_shown.setToolTip("Height at which the tool draws")
+        self.height_shown.hide()
+        self._choices.addWidget(self.height_shown)
+        self._offered.hide()
+        return self._offered
+
+    def _toggle_group(self) -> QWidget:
+        group, row = _group()
+        self.hold = self._toggle(
+            "Hold 0/45/90", "Legs run at multiples of 45°", self.hold_toggled.emit
+        )
+        self.catch = self._toggle(
+            "Catch",
+            "Places are caught by vertices, middles, edges and the grid",
+            self.catch_toggled.emit,
+        )
+        self.catch.setChecked(True)
+        row.addWidget(self.hold)
+        row.addWidget(self.catch)
+        return group
+
+    def set_unit(self, unit: str) -> None:
+        """Take numbers without a unit in this one: "m", "mm", "ft" or "in"."""
+        self._unit = unit
+        self._show_way(self.way.currentText())
+
+    def set_tool(self, tool: Tool | None) -> None:
+        """Hand entries to this tool, and show what it offers to choose."""
+        old = self._tool
+        if old is tool:
+            return
+        if isinstance(old, DrawingTool):
+            old.choices_changed.disconnect(self._show_choices)
+            old.overlay_changed.disconnect(self._show_height)
+        self._tool = tool
+        if isinstance(tool, DrawingTool):
+            tool.choices_changed.connect(self._show_choices)
+            tool.overlay_changed.connect(self._show_height)
+        self._clear_fault()
+        self._show_choices()
+
+    def take_focus(self, text: str = "") -> None:
+        """Go to the line of words, beginning with `text`."""
+        self.words.setText(text)
+        self.words.setFocus(Qt.FocusReason.ShortcutFocusReason)
+
+    def changeEvent(self, event: QEvent) -> None:
+        super().changeEvent(event)
+        if event.type() == QEvent.Type.PaletteChange:
+            self._paint_toggles()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self._clear()
+            self.left.emit()
+        else:
+            super().keyPressEvent(event)
+
+    # -- entering ---------------------------------------------------------------
+
+    def _enter_words(self) -> None:
+        try:
+            found = entry_words.entry(
+                self.words.text(), unit=self._unit, decimal=_decimal_sign()
+            )
+        except UserError as error:
+            self._show_fault(self.words, str(error))
+            return
+        self._hand_over(found)
+
+    def _enter_fields(self) -> None:
+        way = self.way.currentText()
+        values: list[float | None] = []
+        for label, field in zip(FIELDS[way], self.fields, strict=True):
+            text = field.text().strip()
+            if not label or not text:
+                values.append(None)
+                continue
+            try:
+                values.append(self._value(label, text))
+            except UserError as error:
+                self._show_fault(field, str(error))
+                return
+        try:
+            found = self._entry(way, values)
+        except UserError as error:
+            blank = next(
+                (f for f, v in zip(self.fields, values, strict=True) if v is None),
+                self.fields[0],
+            )
+            self._show_fault(blank, str(error))
+            return
+        self._hand_over(found)
+
+    def _value(self, label: str, text: str) -> float:
+        if label == "toward":
+            return entry_words.angle(text, decimal=_decimal_sign())
+        return entry_words.length(text, unit=self._unit, decimal=_decimal_sign())
+
+    def _entry(self, way: str, values: list[float | None]) -> Entry:
+        first, second, third = values
+        if way == "go":
+            if first is None or second is None:
+                raise UserError("Enter a length and a direction.")
+            return entry_words.walked(first, second, third)
+        if way == "size":
+            if first is None or second is None:
+                raise UserError("Enter both sides.")
+            return entry_words.sized(first, second)
+        if values == [None, None, None]:
+            raise UserError("Enter a number.")
+        return Entry("point", first, second, third, is_relative=way == "by")
+
+    def _hand_over(self, found: Entry) -> None:
+        had = next((field for field in self.fields if field.hasFocus()), None)
+        self._clear()
+        if had is not None:
+            self.fields[0].setFocus(Qt.FocusReason.OtherFocusReason)
+        if self._tool is not None:
+            self._tool.entry(found)
+        self.entered.emit(found)
+
+    # -- showing ----------------------------------------------------------------
+
+    def _show_way(self, way: str) -> None:
+        for text, label, field in zip(
+            FIELDS[way], self.labels, self.fields, strict=True
+        ):
+            label.setText(text)
+            label.setVisible(bool(text))
+            field.setVisible(bool(text))
+            field.clear()
+            field.setPlaceholderText("°" if text == "toward" else self._unit)
+            unit = "" if text == "toward" else f" [{self._unit}]"
+            if text:
+                self._explain(field, f"{way} {text}", f"{_MEANINGS[text]}{unit}")
+        self._clear_fault()
+
+    def _show_choices(self) -> None:
+        tool = self._tool
+        choices = tool.choices() if isinstance(tool, DrawingTool) else ()
+        names = [choice.name for choice in choices]
+        if names != list(self._combos):
+            for combo in self._combos.values():
+                self._choices.removeWidget(combo)
+                combo.hide()
+                combo.deleteLater()
+            self._combos = {name: self._new_combo(name) for name in names}
+            for combo in self._combos.values():
+                self._choices.addWidget(combo)
+        for choice in choices:
+            combo = self._combos[choice.name]
+            if combo.hasFocus() and combo.currentText() == choice.value:
+                continue
+            combo.blockSignals(True)
+            combo.clear()
+            combo.addItems(choice.values)
+            combo.setCurrentText(choice.value)
+            combo.blockSignals(False)
+        self._show_height()
+
+    def _new_combo(self, name: str) -> QComboBox:
+        combo = QComboBox()
+        combo.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
+        combo.setMaximumWidth(14 * BODY)
+        self._explain(combo, name.capitalize(), "What the tool draws next")
+        combo.textActivated.connect(lambda value: self._choose(name, value))
+        return combo
+
+    def _choose(self, name: str, value: str) -> None:
+        if isinstance(self._tool, DrawingTool):
+            self._tool.choose(name, value)
+
+    def _show_height(self) -> None:
+        tool = self._tool
+        text = tool.heading() if isinstance(tool, DrawingTool) else ""
+        if text != self.height_shown.text():
+            self.height_shown.setText(text)
+            self.height_shown.setVisible(bool(text))
+        self._offered.setVisible(bool(text or self._combos))
+
+    def _show_fault(self, field: QLineEdit, sentence: str) -> None:
+        warning = theme_for(self.palette()).warning
+        field.setStyleSheet(f"QLineEdit {{ border: 2px solid {warning}; }}")
+        field.setFocus(Qt.FocusReason.OtherFocusReason)
+        self.fault.setStyleSheet(f"color: {warning};")
+        self.fault.setText(sentence)
+        self.fault.setToolTip(sentence)
+        self.fault.setAccessibleName(sentence)
+        self.fault.show()
+
+    def _clear_fault(self) -> None:
+        if not self.fault.text():
+            return
+        for field in (*self.fields, self.words):
+            field.setStyleSheet("")
+        self.fault.clear()
+        self.fault.hide()
+        self.fault.setToolTip("")
+
+    def _clear(self) -> None:
+        self._clear_fault()
+        for field in (*self.fields, self.words):
+            field.clear()
+
+    def _paint_toggles(self) -> None:
+        """A toggle that is on is filled, so that it shows in every theme."""
+        theme = theme_for(self.palette())
+        style = (
+            f"QToolButton {{ border: 1px solid {theme.line}; border-radius: {STEP}px;"
+            f" padding: {STEP // 2}px {STEP}px; color: {theme.text}; }}"
+            f"QToolButton:checked {{ background: {theme.accent};"
+            f" border-color: {theme.accent}; color: {theme.on_accent}; }}"
+            f"QToolButton:focus {{ border: 2px solid {theme.accent}; }}"
+            f"QToolButton:checked:focus {{ border: 2px solid {theme.text}; }}"
+        )
+        for button in (self.hold, self.catch):
+            button.setStyleSheet(style)
+
+    def _toggle(
+        self, text: str, meaning: str, heard: Callable[[bool], None]
+    ) -> QToolButton:
+        button = QToolButton()
+        button.setText(text)
+        button.setCheckable(True)
+        button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
+        self._explain(button, text, meaning)
+        button.toggled.connect(heard)
+        return button
+
+    @staticmethod
+    def _explain(widget: QWidget, name: str, meaning: str) -> None:
+        widget.setAccessibleName(name)
+        widget.setAccessibleDescription(meaning)
+        widget.setToolTip(f"{name}: {meaning}" if name not in meaning else meaning)
+
+
+def _group() -> tuple[QWidget, QHBoxLayout]:
+    """Widgets that stay together in a row."""
+    group = QWidget()
+    row = QHBoxLayout(group)
+    row.setContentsMargins(0, 0, 0, 0)
+    row.setSpacing(STEP)
+    return group, row
+
+
+def _decimal_sign() -> str:
+    return QLocale().decimalPoint()
