@@ -88,12 +88,7 @@ def mirror_in(at: Point2, angle: float) -> Motion:
 
 def _fixing(motion: Motion, at: Point2) -> Motion:
     x, y = motion._linear(at)
-    return replace_shift(motion, (at[0] - x, at[1] - y))
-
-
-def replace_shift(motion: Motion, shift: Point2) -> Motion:
-    """The motion with another shift."""
-    return Motion(motion.degrees, motion.mirrors, shift, motion.lift)
+    return Motion(motion.degrees, motion.mirrors, (at[0] - x, at[1] - y), motion.lift)
 
 
 def carried(item: AnyItem, motion: Motion, floors: dict[str, float]) -> AnyItem:
