@@ -218,3 +218,10 @@ class Tool(QObject):
 
     def entry(self, entry: Entry) -> None:
         """Take what was typed into the entry strip."""
+
+    def takes_length(self) -> bool:
+        """Whether a bare length is what the entry strip should ask for now."""
+        return False
+
+    def take_length(self, metres: float) -> None:
+        """Take a bare length from the entry strip. [m]"""

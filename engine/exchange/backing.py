@@ -35,12 +35,16 @@ from engine.places import BackingDrawing
 
 __all__ = [
     "ReadPicture",
+    "View",
     "backing_drawing",
+    "page_count",
     "picture_bytes",
     "read_picture",
     "read_picture_bytes",
     "with_picture",
 ]
+
+View = Literal["plan", "looking +x", "looking +y"]
 
 #: Largest file that is read. [byte]
 MAX_FILE = 100_000_000
@@ -107,19 +111,26 @@ def read_picture(path: str | Path, page: int = 1) -> ReadPicture:
         When the file is missing, too large, damaged, encrypted or of another kind, or
         has no such page.
     """
-    path = Path(path)
-    opening = f"{path.name} was not placed"
+    opening, data = _file(Path(path))
+    return _read(data, Path(path).name, opening, page)
+
+
+def page_count(path: str | Path) -> int:
+    """How many pages a file has to choose from; 1 for a picture.
+
+    Raises
+    ------
+    UserError
+        As `read_picture`.
+    """
+    opening, data = _file(Path(path))
+    if not _is_pdf(data):
+        return 1
+    document = _opened(data, opening)
     try:
-        if not path.exists():
-            raise UserError(f"{opening}: there is no such file.")
-        if not path.is_file():
-            raise UserError(f"{opening}: it is not a file.")
-        with path.open("rb") as file:
-            data = file.read(MAX_FILE + 1)
-    except (OSError, ValueError) as error:
-        reason = error.strerror if isinstance(error, OSError) else str(error)
-        raise UserError(f"{opening}: {reason or 'it cannot be read'}.") from error
-    return _read(data, path.name, opening, page)
+        return len(document)
+    finally:
+        document.close()
 
 
 def read_picture_bytes(data: bytes, page: int = 1) -> ReadPicture:
@@ -136,7 +147,7 @@ def read_picture_bytes(data: bytes, page: int = 1) -> ReadPicture:
 def backing_drawing(
     layout: Layout,
     picture: ReadPicture,
-    view: Literal["plan", "looking +x", "looking +y"] = "plan",
+    view: View = "plan",
     at: Point2 = (0.0, 0.0),
 ) -> BackingDrawing:
     """A new drawing that is not calibrated, its lower left corner at a place. [m]"""
@@ -186,6 +197,25 @@ def with_picture(drawing: BackingDrawing, picture: ReadPicture) -> BackingDrawin
     )
 
 
+def _file(path: Path) -> tuple[str, bytes]:
+    """How sentences on a file begin, and its bytes."""
+    opening = f"{path.name} was not placed"
+    try:
+        if not path.exists():
+            raise UserError(f"{opening}: there is no such file.")
+        if not path.is_file():
+            raise UserError(f"{opening}: it is not a file.")
+        with path.open("rb") as file:
+            return opening, file.read(MAX_FILE + 1)
+    except (OSError, ValueError) as error:
+        reason = error.strerror if isinstance(error, OSError) else str(error)
+        raise UserError(f"{opening}: {reason or 'it cannot be read'}.") from error
+
+
+def _is_pdf(data: bytes) -> bool:
+    return b"%PDF-" in data[:1024]
+
+
 def _read(data: bytes, name: str, opening: str, page: int) -> ReadPicture:
     if len(data) > MAX_FILE:
         limit = MAX_FILE // 1_000_000
@@ -195,9 +225,8 @@ def _read(data: bytes, name: str, opening: str, page: int) -> ReadPicture:
         )
     if not data:
         raise UserError(f"{opening}: it is empty.")
-    is_pdf = b"%PDF-" in data[:1024]
     n_pages = 1
-    if is_pdf:
+    if _is_pdf(data):
         image, n_pages = _page(data, opening, page)
         copy = _copy(image)
     else:
@@ -296,26 +325,31 @@ def _copy(image: Image.Image) -> bytes:
     return kept.getvalue()
 
 
-def _page(data: bytes, opening: str, page: int) -> tuple[Image.Image, int]:
-    """A page of a PDF as a picture, and the number of pages."""
+def _opened(data: bytes, opening: str) -> Any:
+    """A PDF for reading."""
     # Loaded here: its library takes longer to load than the rest of the engine.
     import pypdfium2
 
     try:
-        document = pypdfium2.PdfDocument(data)
+        return pypdfium2.PdfDocument(data)
     except pypdfium2.PdfiumError as error:
         if error.err_code == _PASSWORD:
             raise UserError(
                 f"{opening}: the PDF is encrypted. Save a copy without a password."
             ) from error
         raise UserError(f"{opening}: the PDF is damaged. Export it again.") from error
+
+
+def _page(data: bytes, opening: str, page: int) -> tuple[Image.Image, int]:
+    """A page of a PDF as a picture, and the number of pages."""
+    document = _opened(data, opening)
     try:
         n_pages = len(document)
         if not 1 <= page <= n_pages:
             has = "1 page" if n_pages == 1 else f"{n_pages} pages"
             raise UserError(f"{opening}: the PDF has {has}, and not a page {page}.")
         return _rendered(document[page - 1]), n_pages
-    except (pypdfium2.PdfiumError, *DAMAGE) as error:
+    except (RuntimeError, *DAMAGE) as error:
         raise UserError(
             f"{opening}: page {page} of the PDF is damaged. Export it again."
         ) from error

@@ -19,6 +19,7 @@ from engine.errors import UserError
 from engine.exchange import backing
 from engine.exchange.backing import (
     backing_drawing,
+    page_count,
     read_picture,
     read_picture_bytes,
     with_picture,
@@ -76,6 +77,7 @@ def test_an_embedded_drawing_survives_its_file(tmp_path: Path) -> None:
 def test_a_page_of_a_pdf_is_a_picture_the_right_way_up(sheet: Path) -> None:
     picture = read_picture(sheet, 2)
     assert (picture.page, picture.n_pages) == (2, 2)
+    assert page_count(sheet) == 2
     # 842 points at 300 dots per inch, finer than which nothing is drawn.
     assert max(picture.width, picture.height) == pytest.approx(842 / 72 * 300, abs=2)
     image = shown(picture.data).convert("L")

@@ -1,0 +1,135 @@
+"""Backing drawings placed, replaced and turned over: each one step of the history."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from PySide6.QtCore import QBuffer, QByteArray, QIODevice
+from PySide6.QtGui import QGuiApplication, QImage
+from PySide6.QtWidgets import QFileDialog, QWidget
+
+from app.document import Document
+from engine.calibration import is_calibrated
+from engine.edits import added, replaced
+from engine.errors import UserError
+from engine.exchange.backing import (
+    ReadPicture,
+    View,
+    backing_drawing,
+    page_count,
+    read_picture,
+    read_picture_bytes,
+    with_picture,
+)
+from engine.layout import Layout
+from engine.places import BackingDrawing
+
+KINDS = (
+    "Drawings (*.pdf *.png *.jpg *.jpeg);;PDF (*.pdf);;Pictures (*.png *.jpg *.jpeg)"
+)
+
+#: Where the files of placed drawings were, by their SHA-256, while the program runs.
+_known: dict[str, Path] = {}
+
+
+def chosen_file(parent: QWidget | None, title: str = "Place backing drawing") -> str:
+    """The file that the user chooses; empty when none."""
+    name, _ = QFileDialog.getOpenFileName(parent, title, "", KINDS)
+    return name
+
+
+def place_backing_file(
+    document: Document, path: str | Path, page: int = 1, view: View = "plan"
+) -> str:
+    """Put a page of a PDF, a PNG or a JPEG under a view, select it; its id.
+
+    Raises
+    ------
+    UserError
+        When the file cannot be placed.
+    """
+    picture = read_picture(path, page)
+    _known[picture.sha256] = Path(path)
+    return _place(document, picture, view)
+
+
+def place_backing_picture(
+    document: Document, image: QImage, view: View = "plan"
+) -> str:
+    """Put a picture, as from the clipboard, under a view, select it; its id.
+
+    Raises
+    ------
+    UserError
+        When there is no picture.
+    """
+    if image.isNull():
+        raise UserError("The clipboard holds no picture: copy one first.")
+    kept = QByteArray()
+    buffer = QBuffer(kept)
+    buffer.open(QIODevice.OpenModeFlag.WriteOnly)
+    image.save(buffer, "PNG")
+    return _place(document, read_picture_bytes(kept.data()), view)
+
+
+def clipboard_picture() -> QImage:
+    """The picture on the clipboard; a null one when there is none."""
+    return QGuiApplication.clipboard().image()
+
+
+def replace_backing_file(
+    document: Document, item_id: str, path: str | Path, page: int = 1
+) -> None:
+    """Give a drawing the picture of another file or page.
+
+    Raises
+    ------
+    UserError
+        When the file cannot be placed.
+    """
+    drawing = _drawing(document.committed, item_id)
+    picture = read_picture(path, page)
+    _known[picture.sha256] = Path(path)
+    after = with_picture(drawing, picture)
+    same_file = picture.sha256 == drawing.sha256
+    what = f"page {page}" if same_file else picture.file_name
+    text = f"Show {what} in {drawing.title}"
+    if is_calibrated(drawing) and not is_calibrated(after):
+        text += ", no longer calibrated"
+    document.edit(text, replaced(document.committed, after))
+
+
+def known_file(document: Document, drawing: BackingDrawing) -> Path | None:
+    """The file that a drawing came from, where it is still to be found.
+
+    It is looked for where it was placed from, then beside the layout's file.
+    """
+    places = [_known.get(drawing.sha256)]
+    if document.path is not None and drawing.file_name:
+        places.append(document.path.parent / Path(drawing.file_name).name)
+    return next((path for path in places if path is not None and path.is_file()), None)
+
+
+def pages_of(document: Document, drawing: BackingDrawing) -> int | None:
+    """How many pages a drawing's file has; None when it is not to be found."""
+    path = known_file(document, drawing)
+    if path is None:
+        return None
+    try:
+        return page_count(path)
+    except UserError:
+        return None
+
+
+def _place(document: Document, picture: ReadPicture, view: View) -> str:
+    made = backing_drawing(document.committed, picture, view)
+    document.edit(f"Place {made.title}", added(document.committed, made))
+    document.select([made.id])
+    return made.id
+
+
+def _drawing(layout: Layout, item_id: str) -> BackingDrawing:
+    for drawing in layout.backing_drawings:
+        if drawing.id == item_id:
+            return drawing
+    raise ValueError(f"no backing drawing with the id {item_id}")
