@@ -39,7 +39,7 @@ def case_columns() -> tuple[Column, ...]:
         Column(
             "Counts", lambda c: "counted" if c.counted else "for information",
             _with_counting, ("counted", "for information"),
-            tip="Counted in the margins, or for information", width=25,
+            tip="Counted in the margins, or for information", width=27,
         ),
         Column(
             "Basis", lambda c: c.basis, _with_basis,

@@ -221,6 +221,7 @@ class LoadCasesPanel(Panel):
                 "the place of the circuit's; empty it to go back."
             )
         )
+        box.addStretch(1)
         second = QWidget()
         box = column(second)
         box.addWidget(self.measured)

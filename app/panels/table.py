@@ -253,6 +253,7 @@ class RowsTable(QWidget):
         for i, column in enumerate(columns):
             header.resizeSection(i, column.width * STEP)
         self.view.setShowGrid(False)
+        self.view.setWordWrap(False)
         self.view.setAlternatingRowColors(True)
         self.view.setTabKeyNavigation(False)
         self.reason = Words(style="warning")
