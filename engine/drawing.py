@@ -223,14 +223,17 @@ class Parted:
 def parted(conductors: Sequence[Conductor], sight: Sight) -> Parted:
     """Conductors by what they stand for."""
     runs: dict[str, list[Conductor]] = {}
-    equipment, links = [], []
+    equipment: list[Strand] = []
+    links: list[Strand] = []
+    of_sight = _STRANDS.setdefault(sight.name, {})
     for conductor in conductors:
         if conductor.role == "run":
             runs.setdefault(conductor.item, []).append(conductor)
-        elif conductor.role == "equipment":
-            equipment.append(strand(conductor, sight))
-        else:
-            links.append(strand(conductor, sight))
+            continue
+        kept = of_sight.get(id(conductor))
+        same = kept is not None and kept[0] is conductor
+        shape = kept[1] if kept is not None and same else strand(conductor, sight)
+        (equipment if conductor.role == "equipment" else links).append(shape)
     return Parted(runs, tuple(equipment), tuple(links))
 
 

@@ -173,7 +173,9 @@ class RunItem(ShapeItem):
 
     def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:
         run = self.run
-        text = f"{shortened(run.title)}  {range_text(run.levels, unit)}"
+        text = shortened(run.title)
+        if self.is_selected or not is_crowded:
+            text += "  " + range_text(run.levels, unit)
         legs = sorted(self._visible_legs(camera), key=lambda leg: -math.dist(*leg))
         half = 0.5 * self.inks.width(text, bold=True) + 4.0
         places: list[tuple[float, float]] = []
