@@ -11,7 +11,7 @@ import numpy.typing as npt
 from PySide6.QtGui import QImage
 
 from app.map_picture import DrawnIsoLine, MapPicture, MaskedArea
-from app.map_request import MapValues
+from app.map_request import MapValues, height_figures
 from engine import field
 from engine.colour_ramp import N_COLOURS, Scale, rgb_ramp
 from engine.conductor import Conductor
@@ -314,7 +314,10 @@ def _level_text(values: MapValues, level: str, unit: str) -> str:
     """ "Client target 7.5 µT · at 1.00 m", or its ratio where frequencies add up."""
     found = next(x for x in values.request.layout.levels if x.id == level)
     heights = values.request.heights
-    where = f"at z {heights[0]:.2f} m" if len(heights) == 1 else "over all heights"
+    where = "largest over heights"
+    if len(heights) == 1:
+        kind = values.request.layout.settings.length_unit
+        where = f"at z {height_figures(heights[0], kind)} {kind}"
     frequencies = values.loaded.currents.frequencies
     if len(frequencies) == 1:
         value = level_at(found, frequencies[0])

@@ -22,8 +22,9 @@ from engine.errors import Cancelled
 from engine.layout import Layout
 from engine.levels import ratios, what_is_missing
 from engine.masks import keepouts
-from engine.places import Zone
+from engine.places import Receptor, Zone
 from engine.readings import reading
+from engine.units import LENGTH_UNITS
 from engine.zone_assessment import zone_floor
 
 Floats = npt.NDArray[np.float64]
@@ -141,11 +142,29 @@ def _lowest_floor(layout: Layout) -> float:
     return min(floors, default=0.0)
 
 
+def height_figures(metres: float, unit: str) -> str:
+    """A height in the display unit `unit`, without its name.
+
+    Examples
+    --------
+    >>> height_figures(5.1, "m"), height_figures(-0.25, "mm"), height_figures(-0.0, "m")
+    ('5.10', '−250', '0.00')
+    """
+    places = {"m": 2, "mm": 0, "ft": 2, "in": 1}[unit]
+    text = f"{metres / LENGTH_UNITS[unit]:.{places}f}"
+    if float(text) == 0.0:
+        text = text.removeprefix("-")
+    return text.replace("-", "−")
+
+
 def height_text(layout: Layout, z: float, zone: Zone | None = None) -> str:
-    """A height as "z 5.10 (Office +1.00)": above the datum and above a floor. [m]"""
-    text = f"z {z:.2f}".replace("-", "−")
+    """A height as "z 5.10 m (Office +1.00)": above the datum and above a floor. [m]"""
+    unit = layout.settings.length_unit
+    text = f"z {height_figures(z, unit)} {unit}"
     name, floor = floor_below(layout, z, zone)
-    return text if floor is None else f"{text} ({name} +{z - floor:.2f})"
+    if floor is None:
+        return text
+    return f"{text} ({name} +{height_figures(z - floor, unit)})"
 
 
 def floor_below(
@@ -259,7 +278,8 @@ def map_values(
 
 def comparable_levels(layout: Layout) -> tuple[ReferenceLevel, ...]:
     """The levels that some zone or receptor names and that lack nothing."""
-    named = {id for place in (*layout.zones, *layout.receptors) for id in place.levels}
+    places: list[Zone | Receptor] = [*layout.zones, *layout.receptors]
+    named = {id for place in places for id in place.levels}
     return tuple(
         level
         for level in layout.levels

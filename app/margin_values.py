@@ -193,7 +193,8 @@ def sampled_margins(
     """
     counted = [case for case in layout.cases if case.counted]
     loaded = loaded_layout(layout, counted, None, cancelled)
-    places = [p for p in (*layout.zones, *layout.receptors) if p.levels]
+    every: list[Zone | Receptor] = [*layout.zones, *layout.receptors]
+    places = [place for place in every if place.levels]
     titles = _titles(layout)
     spread = [positions(layout, p, (seeds or {}).get(p.id, ())) for p in places]
     if not places or not loaded.fields.cases:
@@ -277,39 +278,47 @@ def _sampled(
     rows = {row.level: row for row in empty}
     if not len(points):
         return list(rows.values())
-    is_zone = isinstance(place, Zone)
-    averaged = is_zone and place.rule == "three-height mean"
-    q = len(_heights(place)) if averaged and isinstance(place, Zone) else 1
+    rule = place.rule if isinstance(place, Zone) else ""
     clearance = place.clearance if isinstance(place, Zone) else 0.0
+    q = 1
+    if isinstance(place, Zone) and rule == "three-height mean":
+        q = len(_heights(place))
     positions = points[: len(points) // q]
+    wanted = quantities(loaded, place)
     for k, case in enumerate(loaded.fields.cases):
         faults = next(r.faults for r in loaded.cases if r.case.id == case.case.id)
         if blocking_sentences(loaded.layout, place, faults):
             continue
         mask = masked(loaded.fields.conductors, case.closed, points, clearance)
         evaluation = Evaluation(case, by_case[k], mask, q)
-        for quantity in quantities(loaded, place):
+        for quantity in wanted:
             if quantity.case != k or quantity.level is None:
                 continue
             score = evaluation.score(quantity)
             best = int(np.argmax(score))
             if not np.isfinite(score[best]):
                 continue
-            value = float(score[best])
-            if is_zone and place.rule == "area mean":
-                value = float(np.mean(score[np.isfinite(score)]))
+            ratio = float(score[best])
+            if rule == "area mean":
+                ratio = float(np.mean(score[np.isfinite(score)]))
             row = rows[quantity.level.id]
-            if row.ratio is None or value > row.ratio:
-                rows[row.level] = replace(
-                    row,
-                    case=case.case.id,
-                    case_title=case.case.title,
-                    reason="",
-                    ratio=value,
-                    at=tuple(float(x) for x in positions[best]),
-                    height=float(positions[best, 2]),
-                    **_absolute(quantity, evaluation, case.frequencies, best, value),
-                )
+            if row.ratio is not None and ratio <= row.ratio:
+                continue
+            x, y, z = (float(c) for c in positions[best])
+            value, limit = _absolute(
+                quantity, evaluation, case.frequencies, best, ratio
+            )
+            rows[row.level] = replace(
+                row,
+                case=case.case.id,
+                case_title=case.case.title,
+                reason="",
+                ratio=ratio,
+                value=value,
+                level_value=limit,
+                at=(x, y, z),
+                height=z,
+            )
     return list(rows.values())
 
 
@@ -319,13 +328,13 @@ def _absolute(
     frequencies: Sequence[float],
     best: int,
     ratio: float,
-) -> dict[str, float | None]:
-    """Value and level in tesla of a sampled ratio."""
+) -> tuple[float, float | None]:
+    """Value of a sampled ratio, and the level where it is one frequency. [T]"""
     assert quantity.level is not None
     own = [f for f in frequencies if is_kind(f, quantity.kind)]
     limit = level_at(quantity.level, own[0]) if len(own) == 1 else None
     if limit is not None:
-        return {"value": ratio * limit, "level_value": limit}
+        return ratio * limit, limit
     by_frequency = evaluation.by_frequency(quantity.level)[0]
     parts = [float(by_frequency[f][best]) for f in own if f in by_frequency]
-    return {"value": float(np.linalg.norm(parts)), "level_value": None}
+    return float(np.linalg.norm(parts)), None

@@ -1,0 +1,287 @@
+"""The margins at the foot: the worst comparison, the counts, the standing caution."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QEvent, QSize, Qt, Signal
+from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen
+from PySide6.QtWidgets import (
+    QAbstractButton,
+    QHBoxLayout,
+    QLabel,
+    QPushButton,
+    QSizePolicy,
+    QStackedWidget,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app.document import Document
+from app.margin_values import MarginRow, Margins
+from app.panels import margin_words as words
+from app.panels.cautions import CautionsPanel
+from app.panels.margin_marks import RatioBar, StateSign, state_colour
+from app.panels.margin_table import MarginTable
+from app.panels.panel import Words
+from app.theme import SMALL, STEP, theme_for
+from engine.layout import Layout
+
+
+class _Text(QLabel):
+    """One line of plain text that gives way with an ellipsis."""
+
+    def __init__(self, stretch: bool = True) -> None:
+        super().__init__()
+        self._whole = ""
+        self._stretches = stretch
+        self.setTextFormat(Qt.TextFormat.PlainText)
+        self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        policy = QSizePolicy.Policy.Preferred if stretch else QSizePolicy.Policy.Fixed
+        self.setSizePolicy(policy, QSizePolicy.Policy.Fixed)
+
+    def set_whole(self, text: str, colour: str = "") -> None:
+        self._whole = text
+        style = f"color: {colour};" if colour else ""
+        if style != self.styleSheet():
+            self.setStyleSheet(style)
+        self.setVisible(bool(text))
+        self.updateGeometry()
+        self._elide()
+
+    @property
+    def whole(self) -> str:
+        return self._whole
+
+    def sizeHint(self) -> QSize:
+        width = self.fontMetrics().horizontalAdvance(self._whole) + STEP
+        return QSize(width, self.fontMetrics().height() + STEP)
+
+    def minimumSizeHint(self) -> QSize:
+        hint = self.sizeHint()
+        return QSize(min(hint.width(), 40), hint.height()) if self._stretches else hint
+
+    def resizeEvent(self, event: object) -> None:
+        self._elide()
+
+    def _elide(self) -> None:
+        metrics = self.fontMetrics()
+        mode = Qt.TextElideMode.ElideRight
+        self.setText(metrics.elidedText(self._whole, mode, max(self.width(), 20)))
+
+
+class MarginTile(QAbstractButton):
+    """The worst comparison; a click shows its place."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.row: MarginRow | None = None
+        self.setCursor(Qt.CursorShape.PointingHandCursor)
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.sign, self.bar = StateSign(), RatioBar()
+        self.title, self.value = _Text(), _Text(stretch=False)
+        self.state, self.case = _Text(), _Text()
+        for mark in (self.sign, self.bar):
+            mark.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
+        self._box = box = QHBoxLayout(self)
+        box.setContentsMargins(STEP, 0, STEP, 0)
+        box.setSpacing(2 * STEP)
+        for part, stretch in (
+            (self.title, 3), (self.bar, 3), (self.value, 0),
+            (self.sign, 0), (self.state, 2), (self.case, 2),
+        ):  # fmt: skip
+            box.addWidget(part, stretch)
+        self.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Fixed)
+
+    def sizeHint(self) -> QSize:
+        return QSize(self._box.sizeHint().width(), 7 * STEP)
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(300, 7 * STEP)
+
+    def show_row(self, row: MarginRow, shown: Layout, is_sampled: bool) -> None:
+        self.row = row
+        theme = theme_for(self.palette())
+        muted = theme.muted if is_sampled else ""
+        state = "" if is_sampled else row.state
+        self.title.set_whole(f"{row.place_title} · {words.level_text(row, shown)}")
+        self.bar.set_row(row, is_sampled)
+        value = words.value_text(row, shown, is_sampled)
+        if row.ratio is not None and row.level_value is None:
+            value += f" · ratio {words.ratio_text(row, is_sampled)}"
+        self.value.set_whole(value, muted)
+        self.sign.set_state(state)
+        text = "" if is_sampled else words.state_text(row)
+        self.state.set_whole(text, state_colour(theme, state))
+        self.case.set_whole(row.case_title, theme.muted)
+        said = words.sentence(row, shown, is_sampled)
+        self.setAccessibleName(said)
+        self.setToolTip(f"{said}.\nClick to see the place.")
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        if not (self.underMouse() or self.hasFocus()):
+            return
+        painter = QPainter(self)
+        theme = theme_for(self.palette())
+        ink = QColor(theme.accent if self.hasFocus() else theme.hairline)
+        painter.setPen(QPen(ink, 1.0))
+        painter.drawRect(self.rect().adjusted(0, 0, -1, -1))
+        painter.end()
+
+
+class MarginsPanel(QWidget):
+    """Margins of the whole layout.
+
+    Signals
+    -------
+    go_to(at, height, case)
+        Show this place: (x, y, z), the height of the map, the id of the load case. [m]
+    opened(bool)
+        The full table or the cautions need more room, or no longer.
+    """
+
+    go_to = Signal(object, object, str)
+    opened = Signal(bool)
+
+    def __init__(self, document: Document, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._document = document
+        self._margins: Margins | None = None
+        self._kept: tuple[str, str] | None = None
+        self.setAccessibleName("Margins")
+        self.tile = MarginTile()
+        self.tile.clicked.connect(self._go_to_worst)
+        self.empty = Words("", "muted")
+        self.table, self.cautions = MarginTable(), CautionsPanel()
+        self.counts = _link("Open the table of all zones and reference levels")
+        self.counts.clicked.connect(lambda: self._open(self.table))
+        self.net_current = Words("", "muted")
+        self.open_board = Words(words.OPEN_BOARD, "warning")
+        self.caution = _link("Open the full text of the cautions")
+        self.caution.setText(f"{words.CAUTION_LINE} · Cautions ▸")
+        self.caution.clicked.connect(lambda: self._open(self.cautions))
+        self.table.chosen.connect(self._go_to_row)
+        self.cautions.closed.connect(self.close_opened)
+        self.below = QStackedWidget()
+        self.below.addWidget(self.table)
+        self.below.addWidget(self.cautions)
+        self.below.hide()
+        self._arrange()
+        document.changed.connect(self._on_changed)
+        self._show_empty()
+
+    def _arrange(self) -> None:
+        row = QHBoxLayout()
+        row.setSpacing(2 * STEP)
+        name = Words("Margins", "plain")
+        name.setWordWrap(False)
+        row.addWidget(name)
+        row.addWidget(self.tile, 1)
+        row.addWidget(self.empty, 1)
+        row.addWidget(self.counts)
+        box = QVBoxLayout(self)
+        box.setContentsMargins(2 * STEP, STEP, 2 * STEP, STEP)
+        box.setSpacing(STEP // 2)
+        box.addLayout(row)
+        box.addWidget(self.net_current)
+        box.addWidget(self.open_board)
+        box.addWidget(self.below, 1)
+        box.addWidget(self.caution)
+
+    @property
+    def is_open(self) -> bool:
+        """Whether the table or the cautions show."""
+        return self.below.isVisibleTo(self)
+
+    def set_margins(self, margins: Margins) -> None:
+        """Show other margins, sampled or exact."""
+        self._margins = margins
+        self.table.set_margins(margins)
+        row = self._worst(margins)
+        if row is None:
+            self._show_empty()
+            return
+        is_sampled = margins.is_sampled
+        self._kept = (row.place, row.level)
+        self.empty.hide()
+        self.tile.show()
+        self.tile.show_row(row, margins.layout, is_sampled)
+        self.counts.show()
+        counted = "" if is_sampled else words.counts_text(margins.rows)
+        self.counts.setText(f"{counted or 'counts once settled'} ▸")
+        self.counts.setAccessibleName(counted or "Counts once settled")
+        text = "" if is_sampled else words.net_current_text(row, margins.layout)
+        # The line keeps its place while dragging, so that nothing jumps.
+        if text or not is_sampled:
+            self.net_current.setText(text)
+            self.net_current.setVisible(bool(text))
+        self.net_current.setEnabled(not is_sampled)
+        self.open_board.setVisible(words.is_at_open_board(margins.layout))
+
+    def close_opened(self) -> bool:
+        """Close table or cautions; False when neither was open."""
+        if not self.is_open:
+            return False
+        self.below.hide()
+        self.opened.emit(False)
+        return True
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape and self.close_opened():
+            return
+        super().keyPressEvent(event)
+
+    def changeEvent(self, event: QEvent) -> None:
+        if event.type() == QEvent.Type.PaletteChange and self._margins is not None:
+            self.set_margins(self._margins)
+        super().changeEvent(event)
+
+    def _worst(self, margins: Margins) -> MarginRow | None:
+        """The worst; while sampled the one that was shown, so that it keeps still."""
+        if margins.is_sampled:
+            for row in margins.rows:
+                if (row.place, row.level) == self._kept and row.ratio is not None:
+                    return row
+        return margins.worst
+
+    def _show_empty(self) -> None:
+        self.tile.hide()
+        self.counts.hide()
+        self.net_current.hide()
+        self.open_board.setVisible(words.is_at_open_board(self._document.layout))
+        self.empty.setText(words.empty_text(self._document.layout, self._margins))
+        self.empty.show()
+
+    def _on_changed(self, layout: Layout, _ids: object) -> None:
+        if words.empty_text(layout, self._margins):
+            self._show_empty()
+
+    def _open(self, what: QWidget) -> None:
+        if self.is_open and self.below.currentWidget() is what:
+            self.close_opened()
+            return
+        self.below.setCurrentWidget(what)
+        self.below.show()
+        what.setFocus()
+        self.opened.emit(True)
+
+    def _go_to_worst(self) -> None:
+        if self.tile.row is not None:
+            self._go_to_row(self.tile.row)
+
+    def _go_to_row(self, row: MarginRow) -> None:
+        if row.at is not None:
+            self.go_to.emit(row.at, row.height, row.case)
+
+
+def _link(tip: str) -> QPushButton:
+    """A flat button that reads like a line of text."""
+    made = QPushButton()
+    made.setFlat(True)
+    made.setToolTip(tip)
+    made.setCursor(Qt.CursorShape.PointingHandCursor)
+    made.setStyleSheet(
+        f"QPushButton {{ text-align: left; font-size: {SMALL}px; border: none;"
+        " padding: 2px; }"
+        "QPushButton:focus { text-decoration: underline; }"
+        "QPushButton:hover { text-decoration: underline; }"
+    )
+    return made
