@@ -52,7 +52,7 @@ class BackingItem(QGraphicsItem):
 
     def corners(self) -> list[tuple[float, float]]:
         """Where the picture's corners lie. [m]"""
-        shown = self.transform().map(QPolygonF(self.boundingRect()))
+        shown = self.transform().map(QPolygonF(self.boundingRect())).toList()
         return [(p.x(), p.y()) for p in shown]
 
 

@@ -65,8 +65,13 @@ def shade(colour: str, alpha: float = 1.0) -> QColor:
 
 def _mixed(colour: str, paper: str, part: float) -> QColor:
     """A colour laid over paper, opaque."""
-    over = zip(QColor(colour).getRgb()[:3], QColor(paper).getRgb()[:3], strict=True)
-    return QColor(*(round(part * c + (1.0 - part) * p) for c, p in over))
+    over, under = QColor(colour), QColor(paper)
+    pairs = (
+        (over.red(), under.red()),
+        (over.green(), under.green()),
+        (over.blue(), under.blue()),
+    )
+    return QColor(*(round(part * c + (1.0 - part) * p) for c, p in pairs))
 
 
 class Inks:

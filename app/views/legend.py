@@ -90,7 +90,8 @@ class Legend(QWidget):
             y += line
 
     def _draw_bar(self, painter: QPainter, x: float, y: float) -> None:
-        paper = QColor(self._inks.theme.paper)
+        ground = QColor(self._inks.theme.paper)
+        paper = (ground.red(), ground.green(), ground.blue())
         stale = self._picture is not None and self._picture.is_stale
         ramp = rgb_ramp()
         painter.setPen(Qt.PenStyle.NoPen)
@@ -101,7 +102,7 @@ class Legend(QWidget):
                 r = g = b = 0.2126 * r + 0.7152 * g + 0.0722 * b
             mixed = [
                 round(OPACITY * c + (1 - OPACITY) * p)
-                for c, p in zip((r, g, b), paper.getRgb()[:3], strict=True)
+                for c, p in zip((r, g, b), paper, strict=True)
             ]
             painter.fillRect(QRectF(x, y + row, _BAR_WIDTH, 1.0), QColor(*mixed))
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
