@@ -22,33 +22,12 @@ from PySide6.QtWidgets import (
 )
 
 from app import entry_words
+from app.entry_fields import FIELDS, LENGTH, MEANINGS
 from app.theme import BODY, STEP, theme_for
 from app.tools.drawing_tool import DrawingTool
 from app.tools.tool import Entry, Tool
 from app.wrapping import WrappingRow
 from engine.errors import UserError
-
-#: Labels of the fields of each way of entering; an empty one is not used.
-FIELDS: dict[str, tuple[str, str, str]] = {
-    "to": ("x", "y", "z"),
-    "by": ("dx", "dy", "dz"),
-    "go": ("length", "toward", "up"),
-    "size": ("along x", "along y", ""),
-}
-
-_MEANINGS = {
-    "x": "Across, from the origin of the plan",
-    "y": "Upwards on the plan, from the origin",
-    "z": "Height above the datum; empty keeps the height",
-    "dx": "Across, from the last place",
-    "dy": "Upwards on the plan, from the last place",
-    "dz": "Higher than the last place",
-    "length": "Length on plan, from the last place",
-    "toward": "Direction in degrees: 0 is +x, counter-clockwise",
-    "up": "Higher than the last place",
-    "along x": "Side along x; a negative one goes to the left",
-    "along y": "Side along y; a negative one goes downwards",
-}
 
 _EXAMPLE = "to 3.2 -0.35 z 2.6"
 
@@ -100,7 +79,7 @@ class EntryStrip(QWidget):
         """The way of entering and its labelled fields."""
         group, row = _group()
         self.way = QComboBox()
-        self.way.addItems(list(FIELDS))
+        self.way.addItems([way for way in FIELDS if way != LENGTH])
         self._explain(self.way, "Way of entering", "to a place, by a way, go, or size")
         row.addWidget(self.way)
         self.labels: list[QLabel] = []
@@ -169,11 +148,16 @@ class EntryStrip(QWidget):
         if isinstance(old, DrawingTool):
             old.choices_changed.disconnect(self._show_choices)
             old.overlay_changed.disconnect(self._show_height)
+        if old is not None:
+            old.hint_changed.disconnect(self._offer_length)
         self._tool = tool
         if isinstance(tool, DrawingTool):
             tool.choices_changed.connect(self._show_choices)
             tool.overlay_changed.connect(self._show_height)
+        if tool is not None:
+            tool.hint_changed.connect(self._offer_length)
         self._clear_fault()
+        self._offer_length()
         self._show_choices()
 
     def take_focus(self, text: str = "") -> None:
@@ -196,10 +180,11 @@ class EntryStrip(QWidget):
     # -- entering ---------------------------------------------------------------
 
     def _enter_words(self) -> None:
+        text = self.words.text().strip()
+        if self.way.currentText() == LENGTH and not text[:1].isalpha():
+            text = f"go {text} toward 0"
         try:
-            found = entry_words.entry(
-                self.words.text(), unit=self._unit, decimal=_decimal_sign()
-            )
+            found = entry_words.entry(text, unit=self._unit, decimal=_decimal_sign())
         except UserError as error:
             self._show_fault(self.words, str(error))
             return
@@ -236,6 +221,10 @@ class EntryStrip(QWidget):
 
     def _entry(self, way: str, values: list[float | None]) -> Entry:
         first, second, third = values
+        if way == LENGTH:
+            if first is None or first <= 0:
+                raise UserError("Enter a distance greater than 0.")
+            return entry_words.walked(first, 0.0)
         if way == "go":
             if first is None or second is None:
                 raise UserError("Enter a length and a direction.")
@@ -270,8 +259,20 @@ class EntryStrip(QWidget):
             field.setPlaceholderText("°" if text == "toward" else self._unit)
             unit = "" if text == "toward" else f" [{self._unit}]"
             if text:
-                self._explain(field, f"{way} {text}", f"{_MEANINGS[text]}{unit}")
+                self._explain(field, f"{way} {text}", f"{MEANINGS[text]}{unit}")
         self._clear_fault()
+
+    def _offer_length(self) -> None:
+        """Ask for a bare length while the tool wants one, and then no more."""
+        wanted = self._tool is not None and self._tool.takes_length()
+        index = self.way.findText(LENGTH)
+        if wanted and index < 0:
+            self.way.insertItem(0, LENGTH)
+            self.way.setCurrentIndex(0)
+            self.fields[0].setFocus(Qt.FocusReason.OtherFocusReason)
+        elif not wanted and index >= 0:
+            self.way.removeItem(index)
+            self.way.setCurrentIndex(0)
 
     def _show_choices(self) -> None:
         tool = self._tool

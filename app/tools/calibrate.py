@@ -99,6 +99,7 @@ class CalibrateTool(DrawingTool):
         self._say()
 
     def take_length(self, metres: float) -> None:
+        """Take the distance of the two points. [m]"""
         with self._shown():
             if not self._wants_distance():
                 raise UserError("Click two points of the picture first.")

@@ -220,8 +220,8 @@ class Tool(QObject):
         """Take what was typed into the entry strip."""
 
     def takes_length(self) -> bool:
-        """Whether a bare length is what the entry strip should ask for now."""
-        return False
+        """Whether the entry strip should ask for a bare length.
 
-    def take_length(self, metres: float) -> None:
-        """Take a bare length from the entry strip. [m]"""
+        It comes as an entry that is a way of that length.
+        """
+        return False

@@ -7,13 +7,16 @@ from itertools import pairwise
 
 import pytest
 from PySide6.QtCore import QLocale, Qt
+from PySide6.QtGui import QImage
 from PySide6.QtWidgets import QWidget
 from pytestqt.qtbot import QtBot
 
+from app.backing import place_backing_picture
 from app.document import Document
 from app.entry_strip import EntryStrip
+from app.tools.calibrate import SCALE, CalibrateTool
 from app.tools.run import RunTool
-from app.tools.tool import Entry
+from app.tools.tool import Entry, Pointer
 from app.view_state import ViewState
 
 
@@ -145,3 +148,27 @@ def test_everything_is_named_and_explained(strip: EntryStrip) -> None:
     for widget in (strip.way, *strip.fields, strip.words, strip.hold, strip.catch):
         assert widget.accessibleName()
         assert widget.toolTip()
+
+
+def test_a_bare_length_is_asked_for_and_only_then(
+    strip: EntryStrip, qtbot: QtBot
+) -> None:
+    document = Document()
+    image = QImage(800, 600, QImage.Format.Format_RGB32)
+    image.fill(0xFFFFFFFF)
+    place_backing_picture(document, image)
+    tool = CalibrateTool(document, ViewState())
+    strip.set_tool(tool)
+    assert strip.way.currentText() == "to"
+    for typed_in, text in ((strip.fields[0], "8400mm"), (strip.words, "8.4")):
+        for x in (1.0, 5.0):
+            tool.press(Pointer((x, 1.0), (x, 1.0)))
+        assert strip.way.currentText() == "length"
+        typed(qtbot, strip.fields[0], "0")
+        assert strip.fault.text() == "Enter a distance greater than 0."
+        strip.fields[0].clear()
+        typed(qtbot, typed_in, text)
+        assert document.committed.backing_drawings[0].distance == 8.4
+        assert strip.way.findText("length") < 0
+        document.undo_stack.undo()
+        tool.choose("step", SCALE)
