@@ -1,4 +1,4 @@
-"""The import rule: app imports engine, never the reverse, and nothing goes in circles."""
+"""The import rule: app imports engine, never the reverse; nothing goes in circles."""
 
 from __future__ import annotations
 
