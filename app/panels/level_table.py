@@ -6,7 +6,7 @@ from collections.abc import Callable
 from typing import Any
 
 from PySide6.QtCore import QEvent
-from PySide6.QtWidgets import QHBoxLayout, QPushButton, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QPushButton, QSizePolicy, QWidget
 
 from app.document import Document
 from app.panels import level_values as values_of
@@ -50,6 +50,8 @@ class LevelTableEditor(QWidget):
             tip="Unit in which the values are entered and plotted; the layout's unless "
             "another is chosen here",
         )  # fmt: skip
+        # An ignored width would count as none beside the other choice.
+        self.unit.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Fixed)
         self.unit.setFixedWidth(20 * STEP)
         self.mark = OriginMark(document)
         self.ranges = RowsTable(

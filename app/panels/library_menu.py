@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from pathlib import Path
 
-from PySide6.QtWidgets import QFileDialog, QMenu, QToolButton
+from PySide6.QtWidgets import QFileDialog, QMenu, QPushButton
 
 from app.library import Content, Library, read, write
 from app.messages import Messages
@@ -14,7 +14,7 @@ from engine.criteria import ReferenceLevel
 _FILTER = "Library (*.json)"
 
 
-class LevelLibraryButton(QToolButton):
+class LevelLibraryButton(QPushButton):
     """Keeps levels for the next project, takes them out, and exchanges files."""
 
     def __init__(
@@ -29,7 +29,6 @@ class LevelLibraryButton(QToolButton):
         self._level: ReferenceLevel | None = None
         self.setText("Library")
         self.setToolTip("Your own levels, kept for the next project")
-        self.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
         self.library_menu = QMenu(self)
         self.library_menu.aboutToShow.connect(self.fill)
         self.setMenu(self.library_menu)

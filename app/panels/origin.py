@@ -6,6 +6,7 @@ beneath the mark and goes with Escape.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Literal
 
 from msgspec.structs import replace
@@ -18,6 +19,7 @@ from PySide6.QtWidgets import (
     QPushButton,
     QToolButton,
     QVBoxLayout,
+    QWidget,
 )
 
 from app.document import Document
@@ -77,13 +79,15 @@ def origin_text(layout: Layout, origin: ValueOrigin | None) -> str:
 
 
 class OriginForm(QFrame):
-    """Where one value comes from; `Set` enters it as one undo step."""
+    """Where values come from; `Set` enters it for all of them as one undo step."""
 
-    def __init__(self, document: Document, item: str, field: str) -> None:
+    def __init__(self, document: Document, targets: Sequence[tuple[str, str]]) -> None:
+        """`targets` are ids of items, each with the name of a field."""
         super().__init__(None, Qt.WindowType.Popup)
-        self._document, self._item, self._field = document, item, field
+        self._document, self._targets = document, tuple(targets)
         self.setFrameShape(QFrame.Shape.StyledPanel)
-        present = origin_of(self._present(), field)
+        item, field = self._targets[0]
+        present = origin_of(document.committed.by_id()[item], field)
         self.kind = Choice(
             KINDS, self._on_kind, name="Origin", tip="Where the value comes from"
         )
@@ -113,12 +117,23 @@ class OriginForm(QFrame):
             self._form.addRow(title, self.lines[name])
         box = QVBoxLayout(self)
         box.setContentsMargins(3 * STEP, 3 * STEP, 3 * STEP, 3 * STEP)
-        box.addWidget(Words(f"Origin of {field_words(field)}", "plain"))
+        box.addWidget(Words(f"Origin of {self._words()}", "plain"))
         box.addLayout(self._form)
         box.addWidget(self.reason)
         box.addWidget(self.set_button)
         self.setFixedWidth(75 * STEP)
         self._fill(present)
+
+    def open_under(self, widget: QWidget) -> None:
+        """Show the form beneath a widget, within its screen; it goes when closed."""
+        self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        below = widget.mapToGlobal(widget.rect().bottomRight())
+        screen = widget.screen().availableGeometry()
+        left = min(below.x() - self.width(), screen.right() - self.width())
+        top = min(below.y(), screen.bottom() - self.sizeHint().height())
+        self.move(max(left, screen.left()), max(top, screen.top()))
+        self.show()
+        self.kind.setFocus()
 
     def apply(self) -> None:
         """Enter the origin, or say what is missing."""
@@ -129,13 +144,18 @@ class OriginForm(QFrame):
             self.reason.show()
             self.adjustSize()
             return
-        words = field_words(self._field)
-        title = self._present().title
+        verb = "comes" if len(self._targets) == 1 else "come"
+        words = self._words()
+        document = self._document
+        # Nothing of the form is touched after it has closed: closing deletes it.
         self.close()
-        self._document.edit(f"State where {words} of {title} comes from", layout)
+        document.edit(f"State where {words} {verb} from", layout)
 
-    def _present(self) -> Item:
-        return self._document.committed.by_id()[self._item]
+    def _words(self) -> str:
+        item, field = self._targets[0]
+        if len(self._targets) > 1:
+            return f"{len(self._targets)} values"
+        return f"{field_words(field)} of {self._document.committed.by_id()[item].title}"
 
     def _fill(self, present: ValueOrigin | None) -> None:
         kind: Kind = "document" if present is None else present.kind
@@ -163,8 +183,13 @@ class OriginForm(QFrame):
         source = None
         if kind == "document":
             layout, source = self._with_document(layout)
-        origin = ValueOrigin(field=self._field, kind=kind, document=source, **texts)
-        return replaced(layout, checked(with_origin(self._present(), origin)))
+        changed: dict[str, Item] = {}
+        present = layout.by_id()
+        for item, field in self._targets:
+            origin = ValueOrigin(field=field, kind=kind, document=source, **texts)
+            before = changed.get(item, present[item])
+            changed[item] = checked(with_origin(before, origin))
+        return replaced(layout, *changed.values())
 
     def _with_document(self, layout: Layout) -> tuple[Layout, str]:
         """The document named in the form; one that is not there yet is added."""
@@ -211,16 +236,9 @@ class OriginMark(QToolButton):
         """Open the form beneath the mark."""
         if self._item not in self._document.committed.by_id():
             return
-        self.form = OriginForm(self._document, self._item, self._field)
-        self.form.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        self.form = OriginForm(self._document, [(self._item, self._field)])
         self.form.destroyed.connect(self._on_form_gone)
-        below = self.mapToGlobal(self.rect().bottomRight())
-        screen = self.screen().availableGeometry()
-        left = min(below.x() - self.form.width(), screen.right() - self.form.width())
-        top = min(below.y(), screen.bottom() - self.form.sizeHint().height())
-        self.form.move(max(left, screen.left()), max(top, screen.top()))
-        self.form.show()
-        self.form.kind.setFocus()
+        self.form.open_under(self)
 
     def changeEvent(self, event: QEvent) -> None:
         if event.type() == QEvent.Type.PaletteChange:

@@ -249,6 +249,7 @@ class RowsTable(QWidget):
         header = self.view.horizontalHeader()
         header.setSectionResizeMode(QHeaderView.ResizeMode.Interactive)
         header.setHighlightSections(False)
+        header.setStretchLastSection(True)
         header.setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
         for i, column in enumerate(columns):
             header.resizeSection(i, column.width * STEP)
