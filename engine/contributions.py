@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,7 +10,6 @@ from numpy.typing import NDArray
 from engine.case_fields import CaseCurrents
 from engine.circuits import LINES, RETURNS, STRAY, Circuit
 from engine.conductor import Conductor
-from engine.currents import conductor_currents
 from engine.levels import Kind, is_kind
 from engine.results import Contribution, NetCurrentEffect
 
@@ -43,11 +41,14 @@ def contributions(
     rows = [k for k, c in enumerate(case.components) if is_kind(c.frequency, kind)]
     whole = case.currents[rows] @ responses
     total = _size(whole)
+    per_ampere = _label_responses(conductors, responses)
+    fields: dict[str, Complexes] = {}
+    for key, phasors in case.phasors.values.items():
+        if key in per_ampere:
+            b = phasors[rows, None] * per_ampere[key]
+            fields[key[0]] = fields[key[0]] + b if key[0] in fields else b
     parts = []
-    for circuit in dict.fromkeys(key[0] for key in case.phasors.values):
-        own = {k: v for k, v in case.phasors.values.items() if k[0] == circuit}
-        currents = conductor_currents(replace(case.phasors, values=own), conductors)
-        b = currents[rows] @ responses
+    for circuit, b in fields.items():
         alone = _size(b)
         if alone == 0:
             continue
@@ -70,38 +71,47 @@ def net_current_effect(
     neutral is shared; in a circuit without one, evenly along its lines. Its way back
     is far away and left out. None without any conductor of a circuit.
     """
+    per_ampere = _label_responses(conductors, responses)
+    drawn: dict[str, list[str]] = {}
+    for owner, label in per_ampere:
+        drawn.setdefault(owner, []).append(label)
     best: NetCurrentEffect | None = None
     for circuit in circuits:
-        labels = _net_labels(circuit, conductors)
+        labels = _net_labels(circuit, drawn.get(circuit.id, ()))
         if not labels:
             continue
-        weights = np.array([_weight(c, circuit.id, labels) for c in conductors])
-        effect = float(np.linalg.norm(weights @ responses))
+        # The ampere is split evenly over the labels.
+        whole = np.sum([per_ampere[circuit.id, label] for label in labels], axis=0)
+        effect = float(np.linalg.norm(whole)) / len(labels)
         if best is None or effect > best.per_ampere:
             best = NetCurrentEffect(circuit.id, labels, effect)
     return best
 
 
-def _weight(conductor: Conductor, circuit: str, labels: tuple[str, ...]) -> float:
-    """Current along the conductor when 1 A is split evenly over the labels."""
-    shares = (
-        load.share
-        for load in conductor.loads
-        if load.circuit == circuit and load.label in labels
-    )
-    return sum(shares) / len(labels)
+def _label_responses(
+    conductors: Sequence[Conductor], responses: Floats
+) -> dict[tuple[str, str], Floats]:
+    """(3,) field at the point of 1 A in each circuit's label, as it is shared. [T/A]"""
+    rows: dict[tuple[str, str], int] = {}
+    into: list[int] = []
+    which: list[int] = []
+    shares: list[float] = []
+    for k, conductor in enumerate(conductors):
+        for load in conductor.loads:
+            into.append(rows.setdefault((load.circuit, load.label), len(rows)))
+            which.append(k)
+            shares.append(load.share)
+    sums = np.zeros((len(rows), 3))
+    if rows:
+        np.add.at(sums, into, responses[which] * np.array(shares)[:, None])
+    return {key: sums[row] for key, row in rows.items()}
 
 
-def _net_labels(circuit: Circuit, conductors: Sequence[Conductor]) -> tuple[str, ...]:
+def _net_labels(circuit: Circuit, drawn: Sequence[str]) -> tuple[str, ...]:
     """The conductors that the ampere takes: the return, else the lines, else all."""
-    drawn = dict.fromkeys(
-        load.label
-        for conductor in conductors
-        for load in conductor.loads
-        if load.circuit == circuit.id and load.label not in (STRAY, "PE")
-    )
+    taken = tuple(label for label in drawn if label not in (STRAY, "PE"))
     back = RETURNS.get(circuit.supply)
-    if back in drawn:
+    if back in taken:
         return (back,)
-    lines = tuple(label for label in LINES[circuit.supply] if label in drawn)
-    return lines or tuple(drawn)
+    lines = tuple(label for label in LINES[circuit.supply] if label in taken)
+    return lines or taken
