@@ -15,7 +15,7 @@ from engine.levels import Kind, is_kind, level_at, ratios
 from engine.loaded_layout import LoadedLayout
 from engine.place_details import root_sum_of_squares
 from engine.places import Receptor, Uncertainty, Zone
-from engine.results import Comparison, PlaceDetails
+from engine.results import STATES, Comparison, PlaceDetails
 from engine.zone_search import Found
 
 KINDS: tuple[Kind, ...] = ("AC", "DC")
@@ -90,16 +90,21 @@ def _compared(
     level: ReferenceLevel,
     reached: Largest,
 ) -> Comparison:
-    """A comparison that can be made: AC or DC, whichever has the larger ratio."""
-    quantity = max(reached, key=lambda q: reached[q][0].score)
+    """A comparison that can be made: AC or DC, whichever is of more concern."""
+    rule = place.uncertainty or loaded.layout.settings.uncertainty
+    spreads = {q: _spread(rule, level, f) for q, (f, _) in reached.items()}
+
+    def concern(q: Quantity) -> tuple[int, float]:
+        # U may reach the level from the smaller of the two ratios.
+        score = reached[q][0].score
+        return STATES.index(state_of(score, spreads[q])), score
+
+    quantity = max(reached, key=concern)
     largest, details = reached[quantity]
+    spread = spreads[quantity]
     others = [f.score for q, (f, _) in reached.items() if q is not quantity]
     value = float(root_sum_of_squares(list(largest.by_frequency.values())))
     limits = [level_at(level, f) for f in largest.by_frequency]
-    known = [limit for limit in limits if limit is not None]
-    rule = place.uncertainty or loaded.layout.settings.uncertainty
-    # The absolute part may lie at the frequency that counts most.
-    spread = rule.relative * largest.score + rule.absolute / min(known)
     frequencies = loaded.fields.cases[quantity.case].frequencies
     compared = ratios(level, {f: np.zeros(1) for f in frequencies})
     return replace(
@@ -107,7 +112,7 @@ def _compared(
         state=state_of(largest.score, spread),
         kind=quantity.kind,
         value=value,
-        level_value=known[0] if len(limits) == 1 else None,
+        level_value=limits[0] if len(limits) == 1 else None,
         ratio=largest.score,
         uncertainty_ratio=spread,
         uncertainty=expanded(rule, value),
@@ -116,6 +121,13 @@ def _compared(
         not_covered=compared.not_covered,
         details=details,
     )
+
+
+def _spread(rule: Uncertainty, level: ReferenceLevel, largest: Found) -> float:
+    """Expanded uncertainty of a ratio."""
+    known = [x for f in largest.by_frequency if (x := level_at(level, f)) is not None]
+    # The absolute part may lie at the frequency that counts most.
+    return rule.relative * largest.score + rule.absolute / min(known)
 
 
 def expanded(rule: Uncertainty, value: float) -> float:

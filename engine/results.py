@@ -147,7 +147,8 @@ class Comparison:
     state, reason
         The reason says why it is not evaluable, in sentences; empty otherwise.
     kind : "AC", "DC" or None
-        Which comparison this is: the one with the larger ratio of the two.
+        Which comparison this is: of the two the one in the state of more concern, then
+        with the larger ratio.
     value : float or None
         The compared field in the level's basis and component; over several frequencies
         the root of the sum of squares. [T]

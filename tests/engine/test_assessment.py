@@ -260,6 +260,29 @@ def test_direct_current_is_compared_on_its_own_and_named():
     assert [m.kind for m in assessment.zones[0].maxima] == ["AC", "DC"]
 
 
+def test_the_kind_whose_uncertainty_reaches_the_level_is_the_comparison():
+    limits = LevelRanges(
+        ranges=(
+            LevelRange(f_from=0, f_to=0, coefficient=2e-4),
+            LevelRange(f_from=1, f_to=400, coefficient=2e-5),
+        )
+    )
+    typed = replace(level(1.0), values=limits)
+    layout = room(
+        zone(uncertainty=Uncertainty(relative=0.0, absolute=8e-6)),
+        levels=(typed,),
+        circuits=(circuit("c", rms=70), circuit("d", rms=1500, frequency=0)),
+        equipment=(wire("w", "c"), wire("v", "d", y=-1)),
+    )
+    comparison = one(layout)
+    direct = ampere(math.hypot(2, 0.5), 1500) / 2e-4
+    alternating = ampere(math.hypot(1, 0.5), 70) / 2e-5
+    assert alternating < direct < 0.9
+    assert comparison.ratio == pytest.approx(alternating, rel=1e-3)
+    assert comparison.other_kind_ratio == pytest.approx(direct, rel=2e-3)
+    assert (comparison.kind, comparison.state) == ("AC", "below, U reaches")
+
+
 def test_a_level_without_0_hz_says_that_direct_current_is_not_covered():
     layout = room(
         zone(),
