@@ -120,7 +120,6 @@ class FieldStore:
         currents: Complexes,
         sample: Sample,
         *,
-        transient: bool = False,
         cancelled: Cancelled | None = None,
     ) -> Complexes:
         """Flux-density phasors at the sample, as `engine.field.flux_density`.
@@ -132,8 +131,6 @@ class FieldStore:
             RMS phasors. [A]
         sample : Sample
             n points.
-        transient : bool
-            A drag goes on: what moved will not be wanted again.
 
         Returns
         -------
@@ -157,10 +154,10 @@ class FieldStore:
             work = _Work(conductors, currents, sample, cancelled)
             if still:
                 out += self._still_sum(work, last, {n: parts[n] for n in still})
-                changed: Iterable[_Part] = [parts[n] for n in moved]
-                out += self._sum(work, changed, transient)
+                for name in moved:
+                    out += self._moved_sum(work, parts[name])
             else:
-                out += self._sum(work, parts.values(), False)
+                out += self._sum(work, parts.values())
             last.signatures = {n: (p.geometry, p.currents) for n, p in parts.items()}
             self._last[sample.key] = last
             while len(self._last) > _MOST_SAMPLES:
@@ -173,11 +170,29 @@ class FieldStore:
         """Sum of the groups that stand still, computed once in a drag."""
         names = frozenset((n, (p.geometry, p.currents)) for n, p in parts.items())
         if last.still_sum is None or last.still != names:
-            last.still_sum = self._sum(work, parts.values(), False)
+            last.still_sum = self._sum(work, parts.values())
             last.still = names
         return last.still_sum
 
-    def _sum(self, work: _Work, parts: Iterable[_Part], transient: bool) -> Complexes:
+    def _moved_sum(self, work: _Work, part: _Part) -> Complexes:
+        """(c, n, 3) field of a group that moved, or whose currents did.
+
+        Nothing is kept of it as a group: the next place of a drag is another.
+        """
+        if (part.geometry, work.sample.key) in self._kept:
+            return self._sum(work, [part])
+        return field.flux_density(
+            [work.conductors[row] for row in part.rows],
+            work.currents[:, list(part.rows)],
+            work.sample.points,
+            cache=self._cache(work.sample),
+            cancelled=work.cancelled,
+        )
+
+    def _cache(self, sample: Sample) -> field.ResponseCache:
+        return self._few if len(sample.points) <= _FEW else self._many
+
+    def _sum(self, work: _Work, parts: Iterable[_Part]) -> Complexes:
         """(c, n, 3) field of some groups."""
         chosen = list(parts)
         n, c = len(work.sample.points), len(work.currents)
@@ -185,7 +200,7 @@ class FieldStore:
         if needed > self._limit:
             return self._direct(work, chosen)
         flat = np.zeros((2 * c, 3 * n))
-        responses = [(part, self._responses(work, part, transient)) for part in chosen]
+        responses = [(part, self._responses(work, part)) for part in chosen]
         stop_if(work.cancelled)
         weights = [
             np.concatenate([own.real, own.imag])
@@ -206,7 +221,7 @@ class FieldStore:
             cancelled=work.cancelled,
         )
 
-    def _responses(self, work: _Work, part: _Part, transient: bool) -> Floats:
+    def _responses(self, work: _Work, part: _Part) -> Floats:
         """(m, 3 n) field per ampere of a group's conductors. [T/A]"""
         key = (part.geometry, work.sample.key)
         found = self._kept.get(key)
@@ -216,11 +231,10 @@ class FieldStore:
         made = field.responses(
             [work.conductors[row] for row in part.rows],
             work.sample.points,
-            cache=self._few if len(work.sample.points) <= _FEW else self._many,
+            cache=self._cache(work.sample),
             cancelled=work.cancelled,
         ).reshape(len(part.rows), -1)
-        if not transient:
-            self._keep(key, made)
+        self._keep(key, made)
         return made
 
     def _keep(self, key: tuple[bytes, bytes], response: Floats) -> None:
@@ -263,3 +277,19 @@ def _geometry(conductor: Conductor) -> bytes:
         (shape.width, shape.thickness) if isinstance(shape, Bar) else (shape.diameter,)
     )
     return digest(conductor.path, conductor.axes, np.array(sides))
+
+
+def load_kernels() -> None:
+    """Have the compiled functions in memory before the first layout needs them."""
+    path = np.array([[0.0, 0.0, 0.0], [1.0, 0.0, 0.0]])
+    axes = np.tile(np.array([[0.0, 1.0, 0.0], [0.0, 0.0, 1.0]]), (2, 1, 1))
+    for array in (path, axes):
+        array.setflags(write=False)
+    bar = Conductor(
+        "", "", "", "run", path, axes, Bar(width=0.1, thickness=0.01), (), ""
+    )
+    point = np.array([[0.5, 0.5, 0.5]])
+    field.responses([bar], point)
+    field.flux_density([bar], np.ones((1, 1), np.complex128), point)
+    field.surface_distance([bar], point)
+    field.near_field([bar], point)

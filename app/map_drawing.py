@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from functools import lru_cache
 
 import numpy as np
@@ -155,6 +155,10 @@ def _in_nodes(axis: Floats, at: Floats) -> tuple[int, float, float, int]:
     return len(axis), round(first, 9), float(apart / step), len(at)
 
 
+#: What masks a height: enclosures, conductors, and the height itself.
+_Alike = tuple[tuple[Keepout, ...], tuple[Conductor, ...], float]
+
+
 class _Masks:
     """Where nobody is, height by height, and the largest of what is left."""
 
@@ -164,11 +168,13 @@ class _Masks:
         self._closed = values.loaded.currents.closed
         fine = values.request.fineness == "fine"
         self._conductors = values.loaded.conductors if fine else ()
-        self._kept: dict[tuple[object, ...], Bools] = {}
 
-    def _at(self, z: float) -> tuple[tuple[Keepout, ...], tuple[Conductor, ...]]:
+    def _at(self, z: float, with_conductors: bool) -> _Alike:
         closed = tuple(k for k in self._closed if k.z_from < z < k.z_to)
-        return closed, tuple(c for c in self._conductors if _crosses(c, z))
+        crossing: tuple[Conductor, ...] = ()
+        if with_conductors:
+            crossing = tuple(c for c in self._conductors if _crosses(c, z))
+        return closed, crossing, z
 
     def areas(self) -> tuple[MaskedArea, ...]:
         """Closed enclosures that mask every height of the map."""
@@ -179,38 +185,36 @@ class _Masks:
             if k.z_from < lowest and highest < k.z_to and not k.outline.is_empty
         )
 
-    def largest(self, logs: Floats, xs: Floats, ys: Floats) -> Floats:
+    def largest(
+        self, logs: Floats, xs: Floats, ys: Floats, *, with_conductors: bool = True
+    ) -> Floats:
         """(rows, columns) largest over the heights (h, ny, nx); −inf where masked."""
-        alike: dict[tuple[object, ...], list[int]] = {}
+        alike: dict[tuple[object, ...], tuple[_Alike, list[int]]] = {}
         for k, z in enumerate(self._heights):
-            closed, crossing = self._at(z)
-            # Conductors are cut differently at every height.
-            key = (closed, crossing, z if crossing else None)
-            alike.setdefault(key, []).append(k)
+            key = self._at(z, with_conductors)
+            # Prisms mask all heights alike; conductors are cut anew at each.
+            same = (key[0], key[1], z if key[1] else None)
+            alike.setdefault(same, (key, []))[1].append(k)
         found: Floats | None = None
-        for layers in alike.values():
+        for key, layers in alike.values():
             merged = logs[layers[0]] if len(layers) == 1 else logs[layers].max(axis=0)
             layer = interpolated(merged, xs, ys, self._axes)
-            mask = self._mask(self._heights[layers[0]], xs, ys)
+            mask = self._mask(key, xs, ys)
             if mask is not None:
                 layer[mask] = -np.inf
             found = layer if found is None else np.maximum(found, layer)
         assert found is not None, "a map has at least one height"
         return found
 
-    def _mask(self, z: float, xs: Floats, ys: Floats) -> Bools | None:
-        closed, crossing = self._at(z)
+    def _mask(self, key: _Alike, xs: Floats, ys: Floats) -> Bools | None:
+        closed, crossing, z = key
         if not closed and not crossing:
             return None
-        key = (closed, crossing, z if crossing else None, len(xs), len(ys))
-        if key not in self._kept:
-            mask = np.zeros((len(ys), len(xs)), np.bool_)
-            for keepout in closed:
-                _add(mask, xs, ys, keepout.outline.bounds, z, keepout.masks)
-            for conductor in crossing:
-                _add_conductor(mask, xs, ys, z, conductor)
-            self._kept[key] = mask
-        return self._kept[key]
+        mask = np.zeros((len(ys), len(xs)), np.bool_)
+        for keepout in closed:
+            _add(mask, xs, ys, keepout.outline.bounds, z, keepout.masks)
+        _add_conductors(mask, xs, ys, z, crossing)
+        return mask
 
 
 def _half_size(conductor: Conductor) -> float:
@@ -232,18 +236,26 @@ def _levels(conductor: Conductor) -> tuple[float, float]:
     return float(levels.min()) - reach, float(levels.max()) + reach
 
 
-def _add_conductor(
-    mask: Bools, xs: Floats, ys: Floats, z: float, conductor: Conductor
+def _add_conductors(
+    mask: Bools, xs: Floats, ys: Floats, z: float, crossing: Sequence[Conductor]
 ) -> None:
-    """Mask what lies inside a conductor, leg by leg."""
-    # At a mitre a corner reaches further than the section.
-    reach = 2.5 * _half_size(conductor)
-    for a, b in zip(conductor.path[:-1], conductor.path[1:], strict=True):
-        if not min(a[2], b[2]) - reach < z < max(a[2], b[2]) + reach:
-            continue
-        low, high = np.minimum(a, b) - reach, np.maximum(a, b) + reach
-        bounds = (low[0], low[1], high[0], high[1])
-        _add(mask, xs, ys, bounds, z, lambda p: field.inside([conductor], p))
+    """Mask what lies inside conductors; looked for around their legs only."""
+    if not crossing:
+        return
+    around = np.zeros_like(mask)
+    for conductor in crossing:
+        # At a mitre a corner reaches further than the section.
+        reach = 2.5 * _half_size(conductor)
+        low = np.minimum(conductor.path[:-1], conductor.path[1:]) - reach
+        high = np.maximum(conductor.path[:-1], conductor.path[1:]) + reach
+        for k in np.flatnonzero((low[:, 2] < z) & (z < high[:, 2])):
+            across = slice(*np.searchsorted(xs, (low[k, 0], high[k, 0])))
+            up = slice(*np.searchsorted(ys, (low[k, 1], high[k, 1])))
+            around[up, across] = True
+    rows, columns = np.nonzero(around)
+    if len(rows):
+        points = np.column_stack([xs[columns], ys[rows], np.full(len(rows), z)])
+        mask[rows, columns] |= field.inside(crossing, points)
 
 
 def _add(
@@ -252,10 +264,9 @@ def _add(
     ys: Floats,
     bounds: Sequence[float],
     z: float,
-    test: object,
+    test: Callable[[Floats], Bools],
 ) -> None:
     """Mask the points of a grid that pass a test, looked for inside `bounds`."""
-    assert callable(test)
     if len(bounds) < 4 or not np.all(np.isfinite(bounds)):
         return
     across = slice(*np.searchsorted(xs, (bounds[0], bounds[2])))
@@ -292,11 +303,11 @@ def _lines(values: MapValues, masks: _Masks, unit: str) -> tuple[DrawnIsoLine, .
     ]
     found: list[DrawnIsoLine] = []
     if np.any(values.values > 0):
-        logs = masks.largest(_logs(values.values), xs, ys)
+        logs = masks.largest(_logs(values.values), xs, ys, with_conductors=False)
         found += drawn(_contours(xs, ys, logs, wanted), False, "")
     for level, ratios in values.level_ratios:
         if np.any(ratios > 0):
-            logs = masks.largest(_logs(ratios), xs, ys)
+            logs = masks.largest(_logs(ratios), xs, ys, with_conductors=False)
             name = _level_text(values, level.id, unit)
             found += drawn(_contours(xs, ys, logs, (1.0,)), True, name)
     return tuple(found)
@@ -338,7 +349,7 @@ def _marks(values: MapValues, unit: str) -> tuple[tuple[float, str], ...]:
     if not flowing:
         return ()
     lowest = min(flowing)
-    named = "" if len(flowing) == 1 else f" at {lowest:g} Hz"
+    named = "" if len(flowing) == 1 else f", {lowest:g} Hz"
     marks = []
     for level, _ in values.level_ratios:
         value = level_at(level, lowest)

@@ -32,8 +32,8 @@ Rect = tuple[float, float, float, float]
 Fineness = Literal["coarse", "fine"]
 
 #: Nodes of one map, and its points over all heights.
-_NODES = {"coarse": 1120, "fine": 16_000}
-_POINTS = {"coarse": 3400, "fine": 24_000}
+_NODES = {"coarse": 1120, "fine": 14_000}
+_POINTS = {"coarse": 3400, "fine": 18_000}
 _FEWEST_NODES = 300
 
 #: Above the floor, where no zone says at what height people are. [m]
@@ -225,7 +225,6 @@ def map_values(
     request: MapRequest,
     store: FieldStore,
     *,
-    transient: bool = False,
     cancelled: Cancelled | None = None,
 ) -> MapValues:
     """Compute the values of a map.
@@ -234,8 +233,6 @@ def map_values(
     ----------
     store : FieldStore
         Keeps what does not change from one request to the next.
-    transient : bool
-        A drag goes on.
 
     Raises
     ------
@@ -250,7 +247,6 @@ def map_values(
         ready.conductors,
         ready.currents.currents,
         sample,
-        transient=transient,
         cancelled=cancelled,
     )
     shape = (len(request.heights), len(ys), len(xs))

@@ -206,7 +206,6 @@ def sampled_margins(
         loaded.fields.conductors,
         currents,
         sample_of(points),
-        transient=True,
         cancelled=cancelled,
     )
     ends = np.cumsum([len(case.components) for case in loaded.fields.cases])

@@ -14,7 +14,7 @@ from threading import Lock
 from PySide6.QtCore import QCoreApplication, QObject, Qt, QTimer, Signal
 
 from app.document import Document
-from app.field_store import FieldStore
+from app.field_store import FieldStore, load_kernels
 from app.height_curve import HeightCurve, curve_heights, height_curve
 from app.map_drawing import map_picture
 from app.map_picture import MapPicture
@@ -27,6 +27,9 @@ from engine.layout import Layout
 
 #: Exact margins that are remembered, so that undo shows them at once.
 _REMEMBERED = 6
+
+#: Seconds between sampled margins while newer maps wait.
+_SAMPLED_EVERY = 0.12
 
 #: Seconds between two notices of progress.
 _NOTICE = 0.1
@@ -147,7 +150,9 @@ class Recompute(QObject):
         self._stale_timer.setSingleShot(True)
         self._stale_timer.setInterval(stale_after)
         self._stale_timer.timeout.connect(self._call_stale)
-        self._worker: Worker[Request] = Worker("recompute", self._results.compute)
+        self._worker: Worker[Request] = Worker(
+            "recompute", self._results.compute, load_kernels
+        )
         document.changed.connect(self._on_changed)
         document.settled.connect(self._on_changed)
         view_state.changed.connect(self._on_changed)
@@ -273,6 +278,7 @@ class _Results:
         self._margins: Layout | None = None
         self._curve: tuple[object, ...] | None = None
         self._told = 0.0
+        self._sampled = -1e9
 
     def compute(self, request: Request, outdated: Outdated) -> None:
         """All that a request asks for, the quickest first."""
@@ -283,6 +289,8 @@ class _Results:
             steps += [self._fine_map, self._exact_margins, self._height_curve]
         self._told = self._clock()
         for step in steps:
+            if outdated() and step != self._sampled_margins:
+                return
             try:
                 step(request, outdated)
             except ComputationCancelled:
@@ -291,8 +299,6 @@ class _Results:
                 self._hand_over(_Result(request, error))
             except Exception as error:
                 self._hand_over(error)
-                return
-            if outdated():
                 return
         self._hand_over(_Progress(1.0, ""))
 
@@ -303,7 +309,7 @@ class _Results:
         if wanted is None or same in (self._coarse, self._fine):
             return
         self._fine = None
-        values = map_values(wanted, self._store, transient=request.is_preview)
+        values = map_values(wanted, self._store)
         self._hand_over(_Result(request, map_picture(values)))
         self._coarse = same
 
@@ -317,6 +323,11 @@ class _Results:
         self._fine, self._coarse = same, None
 
     def _sampled_margins(self, request: Request, outdated: Outdated) -> None:
+        # A quick drag asks for maps without end; margins get their turn all the same.
+        now = self._clock()
+        if outdated() and now - self._sampled < _SAMPLED_EVERY:
+            return
+        self._sampled = now
         self._margins = None
         sampled = sampled_margins(request.layout, self._store, self._seeds)
         self._hand_over(_Result(request, sampled))

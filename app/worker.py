@@ -21,13 +21,21 @@ class Worker(Generic[Task]):
         Of the thread.
     work : callable
         Gets the task, and a callable that says whether a newer one waits.
+    prepare : callable or None
+        Done in the thread before the first task.
     """
 
-    def __init__(self, name: str, work: Callable[[Task, Outdated], None]) -> None:
+    def __init__(
+        self,
+        name: str,
+        work: Callable[[Task, Outdated], None],
+        prepare: Callable[[], None] | None = None,
+    ) -> None:
         self._work = work
+        self._prepare = prepare
         self._condition = Condition()
         self._next: list[Task] = []
-        self._is_busy = False
+        self._is_busy = True
         self._is_closed = False
         self._thread = Thread(target=self._run, name=name, daemon=True)
         self._thread.start()
@@ -56,6 +64,8 @@ class Worker(Generic[Task]):
         return self._is_closed or bool(self._next)
 
     def _run(self) -> None:
+        if self._prepare is not None:
+            self._prepare()
         while True:
             with self._condition:
                 self._is_busy = False

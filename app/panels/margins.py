@@ -84,11 +84,10 @@ class MarginTile(QAbstractButton):
         self._box = box = QHBoxLayout(self)
         box.setContentsMargins(STEP, 0, STEP, 0)
         box.setSpacing(2 * STEP)
-        for part, stretch in (
-            (self.title, 3), (self.bar, 3), (self.value, 0),
-            (self.sign, 0), (self.state, 2), (self.case, 2),
-        ):  # fmt: skip
-            box.addWidget(part, stretch)
+        for part in (self.title, self.bar, self.value, self.sign, self.state):
+            box.addWidget(part, 1 if part is self.bar else 0)
+        box.addWidget(self.case)
+        box.addStretch(0)
         self.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Fixed)
 
     def sizeHint(self) -> QSize:
@@ -280,7 +279,7 @@ def _link(tip: str) -> QPushButton:
     made.setCursor(Qt.CursorShape.PointingHandCursor)
     made.setStyleSheet(
         f"QPushButton {{ text-align: left; font-size: {SMALL}px; border: none;"
-        " padding: 2px; }"
+        " padding: 2px 0; }"
         "QPushButton:focus { text-decoration: underline; }"
         "QPushButton:hover { text-decoration: underline; }"
     )

@@ -47,7 +47,7 @@ _REACH = 7.0
 #: Steps of the arrow keys and of a drag. [m]
 _KEY_STEP, _DRAG_STEP = 0.05, 0.01
 
-_WIDTH = 156
+_WIDTH = 172
 _PAD = 10.0
 
 
@@ -299,8 +299,6 @@ class RailScale(QWidget):
             painter.fillRect(rect, QColor(theme.window))
             hatch = QBrush(QColor(theme.line), Qt.BrushStyle.BDiagPattern)
             painter.fillRect(rect, hatch)
-            if rect.height() >= SMALL:
-                self._write(painter, theme, slab.name, rect.center().y(), theme.text)
 
     def _paint_curve(self, painter: QPainter, theme: Theme) -> None:
         """The zone's largest value against height, on the map's scale."""
@@ -337,12 +335,14 @@ class RailScale(QWidget):
         chosen = "" if zone is None else zone.id
         shown = sorted(self._contents.ticks, key=lambda t: t.zone != chosen)
         taken: list[float] = []
-        for tick in (*shown, *self._contents.floors):
+        slabs = [Tick(0.5 * (b.low + b.high), b.name) for b in self._contents.slabs]
+        for tick in (*shown, *self._contents.floors, *slabs):
             y = self.pixel_of(tick.z)
-            is_floor = not tick.zone
-            painter.setPen(QPen(QColor(theme.line), 2.0 if is_floor else 1.0))
-            end = self.width() if is_floor else 10.0
-            painter.drawLine(QLineF(0.0, y, end, y))
+            if tick not in slabs:
+                is_floor = not tick.zone
+                painter.setPen(QPen(QColor(theme.line), 2.0 if is_floor else 1.0))
+                end = self.width() if is_floor else 10.0
+                painter.drawLine(QLineF(0.0, y, end, y))
             if all(abs(y - other) >= SMALL + 2 for other in taken):
                 taken.append(y)
                 ink = theme.text if tick.zone == chosen else theme.muted

@@ -88,13 +88,13 @@ def _slabs(layout: Layout) -> tuple[Band, ...]:
 
 
 def _floors(layout: Layout) -> tuple[Tick, ...]:
+    # Storeys come first: where there is no room for all names, theirs are written.
     named = {s.floor_level: s.title for s in layout.storeys}
     for room in layout.rooms:
         named.setdefault(room.floor_level, f"floor of {room.title}")
     unit = layout.settings.length_unit
     return tuple(
-        Tick(z, f"z {height_figures(z, unit)} · {name}")
-        for z, name in sorted(named.items())
+        Tick(z, f"z {height_figures(z, unit)} · {name}") for z, name in named.items()
     )
 
 
