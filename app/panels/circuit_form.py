@@ -150,9 +150,12 @@ class CircuitForm(QWidget):
             assert self._circuit is not None
             self._enter(change(self._circuit, text, decimal_sign()), what)
 
-        made = ValueField(
-            str.strip, str, enter, name=title, tip=tip, mark=self._mark(origin)
-        )
+        mark: QWidget | None = self._mark(origin)
+        if mark is None:
+            # As wide as a mark, so that all fields end in one line.
+            mark = QWidget()
+            mark.setFixedWidth(6 * STEP)
+        made = ValueField(str.strip, str, enter, name=title, tip=tip, mark=mark)
         label = QLabel(title)
         label.setBuddy(made.line)
         self._form.addRow(label, made)

@@ -11,7 +11,9 @@ from typing import Literal
 
 from msgspec.structs import replace
 from PySide6.QtCore import QEvent, Qt
+from PySide6.QtGui import QCloseEvent, QKeyEvent
 from PySide6.QtWidgets import (
+    QApplication,
     QComboBox,
     QFormLayout,
     QFrame,
@@ -83,9 +85,11 @@ class OriginForm(QFrame):
 
     def __init__(self, document: Document, targets: Sequence[tuple[str, str]]) -> None:
         """`targets` are ids of items, each with the name of a field."""
-        super().__init__(None, Qt.WindowType.Popup)
+        super().__init__()
         self._document, self._targets = document, tuple(targets)
+        self._opener: QWidget = self
         self.setFrameShape(QFrame.Shape.StyledPanel)
+        self.setAutoFillBackground(True)
         item, field = self._targets[0]
         present = origin_of(document.committed.by_id()[item], field)
         self.kind = Choice(
@@ -125,15 +129,42 @@ class OriginForm(QFrame):
         self._fill(present)
 
     def open_under(self, widget: QWidget) -> None:
-        """Show the form beneath a widget, within its screen; it goes when closed."""
+        """Show the form beneath a widget, inside its window; it goes when closed."""
+        window = widget.window()
+        self.setParent(window)
         self.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        below = widget.mapToGlobal(widget.rect().bottomRight())
-        screen = widget.screen().availableGeometry()
-        left = min(below.x() - self.width(), screen.right() - self.width())
-        top = min(below.y(), screen.bottom() - self.sizeHint().height())
-        self.move(max(left, screen.left()), max(top, screen.top()))
+        self._opener = widget
+        below = widget.mapTo(window, widget.rect().bottomRight())
+        self.adjustSize()
+        left = min(below.x(), window.width() - STEP) - self.width()
+        top = min(below.y(), window.height() - self.height() - STEP)
+        self.move(max(left, 0), max(top, 0))
         self.show()
+        self.raise_()
         self.kind.setFocus()
+        application = QApplication.instance()
+        assert isinstance(application, QApplication)
+        application.focusChanged.connect(self._on_focus)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.close()
+            return
+        super().keyPressEvent(event)
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        had_focus = self.isAncestorOf(QApplication.focusWidget() or self._opener)
+        super().closeEvent(event)
+        if had_focus:
+            self._opener.setFocus()
+
+    def _on_focus(self, _old: QWidget | None, new: QWidget | None) -> None:
+        """Go when the focus goes elsewhere, but not to a list that drops down."""
+        inside = new
+        while inside is not None and inside is not self:
+            inside = inside.parentWidget()
+        if new is not None and inside is None:
+            self.close()
 
     def apply(self) -> None:
         """Enter the origin, or say what is missing."""

@@ -8,7 +8,6 @@ from PySide6.QtCore import QEvent, Qt, Signal
 from PySide6.QtGui import QColor, QFont
 from PySide6.QtWidgets import (
     QHBoxLayout,
-    QListWidget,
     QListWidgetItem,
     QPushButton,
     QTabWidget,
@@ -19,6 +18,7 @@ from app.document import Document
 from app.panels.assumed import AssumptionsPage
 from app.panels.field import ValueField
 from app.panels.panel import Panel, Words, column
+from app.panels.wrapped_items import WrappedList
 from app.remark_search import Found, RemarkSearch
 from app.theme import STEP, theme_for
 from engine.edits import added, checked, removed, unused_id
@@ -85,12 +85,9 @@ class RemarksPanel(Panel):
         document.settled.connect(self._on_settled)
         self.head = Words(style="plain")
         self.results = Words()
-        self.list = QListWidget()
+        self.list = WrappedList()
         self.list.setAccessibleName("Remarks")
         self.list.setToolTip("A click selects what the remark is about and goes there")
-        self.list.setWordWrap(True)
-        self.list.setSpacing(STEP // 2)
-        self.list.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.list.itemClicked.connect(self._on_item)
         self.list.itemActivated.connect(self._on_item)
         self.list.currentItemChanged.connect(lambda _new, _old: self._show_foot())
