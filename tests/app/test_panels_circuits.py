@@ -258,3 +258,11 @@ def test_a_hidden_panel_waits(panel, document):
     assert len(panel.table.rows) == 2
     panel.show()
     assert [circuit.name for circuit in panel.table.rows] == ["Other"]
+
+
+def test_what_users_type_is_never_markup(panel, document):
+    typed(panel, 0, "Name", "<b>Bold</b> & co")
+    assert panel.title.text() == "<b>Bold</b> & co"
+    assert panel.title.textFormat() is Qt.TextFormat.PlainText
+    panel.form.voltage.refuse("“<img src=x>” is no number.")
+    assert "&lt;img" in panel.form.voltage.line.toolTip()
