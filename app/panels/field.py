@@ -19,7 +19,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.panels.panel import Words, column, decimal_sign
+from app.panels.panel import Words, column, decimal_sign, plain_tip
 from app.theme import STEP, theme_for
 from engine.errors import UserError
 from engine.typed_numbers import number_text, typed_quantity
@@ -184,7 +184,7 @@ class ValueField(QWidget):
         """Turn the field and say why."""
         colour = theme_for(self.palette()).warning
         self.line.setStyleSheet(f"border: 2px solid {colour};")
-        self.line.setToolTip(sentence)
+        self.line.setToolTip(plain_tip(sentence))
         self.reason.setText(sentence)
         self.reason.show()
 

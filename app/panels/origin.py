@@ -26,7 +26,7 @@ from PySide6.QtWidgets import (
 
 from app.document import Document
 from app.panels.field import Choice
-from app.panels.panel import Words
+from app.panels.panel import Words, plain_tip
 from app.theme import BODY, STEP, theme_for
 from engine.edits import added, checked, collections, replaced, unused_id
 from engine.errors import UserError
@@ -260,7 +260,8 @@ class OriginMark(QToolButton):
         self.setAccessibleName(f"Origin of {words}: {origin}")
         if assumed:
             origin += " until its origin is stated" if origin == "assumed" else ""
-        self.setToolTip(f"{words.capitalize()}: {origin}. Press to state its origin.")
+        said = f"{words.capitalize()}: {origin}. Press to state its origin."
+        self.setToolTip(plain_tip(said))
         self._colour()
 
     def open_form(self) -> None:

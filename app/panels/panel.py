@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from html import escape
+
 from PySide6.QtCore import QEvent, QLocale, Qt
 from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import QFrame, QLabel, QScrollArea, QVBoxLayout, QWidget
@@ -14,6 +16,13 @@ from engine.layout import Layout
 def decimal_sign() -> str:
     """The decimal sign of the place: a point or a comma."""
     return "," if QLocale().decimalPoint() == "," else "."
+
+
+def plain_tip(text: str) -> str:
+    """A tooltip that shows what users typed as it is, never as markup."""
+    if not Qt.mightBeRichText(text):
+        return text
+    return f"<qt>{escape(text)}</qt>".replace("\n", "<br>")
 
 
 class Panel(QWidget):

@@ -30,7 +30,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.panels.panel import Words, decimal_sign
+from app.panels.panel import Words, decimal_sign, plain_tip
 from app.spreadsheet import Cells, cells, copied, placed
 from app.theme import STEP, theme_for
 from engine.errors import UserError
@@ -129,7 +129,7 @@ class RowsModel(QAbstractTableModel):
             return column.text(row)
         if role == Qt.ItemDataRole.ToolTipRole:
             said = column.made(row) if column.made is not None else ""
-            return f"{column.tip}\n{said}".strip()
+            return plain_tip(f"{column.tip}\n{said}".strip())
         if role == Qt.ItemDataRole.BackgroundRole:
             if self._refused == (index.row(), index.column()):
                 colour = QColor(self._warning)
