@@ -36,6 +36,9 @@ _NODES = {"coarse": 1120, "fine": 14_000}
 _POINTS = {"coarse": 3400, "fine": 18_000}
 _FEWEST_NODES = 300
 
+#: A zone's levels count up to here above its floor, a receptor's this near. [m]
+_STANDING, _NEAR = 2.0, 0.5
+
 #: Above the floor, where no zone says at what height people are. [m]
 DEFAULT_HEIGHT = 1.0
 
@@ -264,7 +267,7 @@ def map_values(
         level_ratios=tuple(
             (level, found.reshape(shape))
             for level, found in ratios_at(
-                request.layout, ready, b, comparable_levels(request.layout)
+                ready, b, comparable_levels(request.layout, request.heights)
             )
         ),
         is_direct=is_direct,
@@ -272,19 +275,38 @@ def map_values(
     )
 
 
-def comparable_levels(layout: Layout) -> tuple[ReferenceLevel, ...]:
-    """The levels that some zone or receptor names and that lack nothing."""
-    places: list[Zone | Receptor] = [*layout.zones, *layout.receptors]
-    named = {id for place in places for id in place.levels}
-    return tuple(
-        level
-        for level in layout.levels
-        if level.id in named and not what_is_missing(level)
-    )
+def reaches(layout: Layout, zone: Zone, heights: tuple[float, ...]) -> bool:
+    """Whether some of the heights are those of people in the zone. [m]"""
+    floor = zone_floor(layout, zone)
+    if floor is None:
+        return False
+    top = floor + max(*zone.heights, *(zone.volume or ()), _STANDING)
+    return any(floor <= z <= top for z in heights)
+
+
+def comparable_levels(
+    layout: Layout, heights: tuple[float, ...]
+) -> tuple[ReferenceLevel, ...]:
+    """The levels that lack nothing and that are named at some of the heights.
+
+    Of zones that reach them, and of receptors; where there is none, of all.
+    """
+    complete = [level for level in layout.levels if not what_is_missing(level)]
+    low, high = min(heights) - _NEAR, max(heights) + _NEAR
+    here: list[Zone | Receptor] = [
+        *(zone for zone in layout.zones if reaches(layout, zone, heights)),
+        *(place for place in layout.receptors if low <= place.at[2] <= high),
+    ]
+    every: list[Zone | Receptor] = [*layout.zones, *layout.receptors]
+    for places in (here, every):
+        named = {id for place in places for id in place.levels}
+        found = tuple(level for level in complete if level.id in named)
+        if found:
+            return found
+    return ()
 
 
 def ratios_at(
-    layout: Layout,
     ready: Loaded,
     b: npt.NDArray[np.complex128],
     levels: tuple[ReferenceLevel, ...],

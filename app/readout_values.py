@@ -14,6 +14,7 @@ from app.map_request import (
     heights_of,
     loaded,
     ratios_at,
+    reaches,
     zone_of,
 )
 from app.view_state import Look
@@ -27,10 +28,6 @@ from engine.layout import Layout
 from engine.masks import masked
 from engine.places import Zone
 from engine.sampling import area_of
-from engine.zone_assessment import zone_floor
-
-#: A zone's levels are shown up to here above its floor. [m]
-_STANDING = 2.0
 
 
 @dataclass(frozen=True)
@@ -115,7 +112,7 @@ def readout(request: ReadoutRequest, *, cancelled: Cancelled | None = None) -> R
         if (c.frequency == 0) == is_direct
     ]
     axes = np.sqrt(np.sum(np.abs(b[rows, best]) ** 2, axis=0))
-    compared = ratios_at(layout, ready, b, _levels(request, ready, heights))
+    compared = ratios_at(ready, b, _levels(request, ready, heights))
     level, ratio = max(
         ((level, float(r.max())) for level, r in compared),
         key=lambda pair: pair[1],
@@ -150,15 +147,6 @@ def _why_masked(ready: Loaded, points: object) -> str:
     return "inside a conductor"
 
 
-def _reaches(layout: Layout, zone: Zone, heights: tuple[float, ...]) -> bool:
-    """Whether some of the heights are those of people in the zone. [m]"""
-    floor = zone_floor(layout, zone)
-    if floor is None:
-        return False
-    top = floor + max(*zone.heights, *(zone.volume or ()), _STANDING)
-    return any(floor <= z <= top for z in heights)
-
-
 def _levels(
     request: ReadoutRequest, ready: Loaded, heights: tuple[float, ...]
 ) -> tuple[ReferenceLevel, ...]:
@@ -167,7 +155,7 @@ def _levels(
     around = [
         zone
         for zone in layout.zones
-        if _reaches(layout, zone, heights)
+        if reaches(layout, zone, heights)
         and shapely.intersects_xy(area_of(zone.outline), request.x, request.y)
     ]
     shown = zone_of(layout, request.look.zone)
@@ -184,4 +172,4 @@ def _levels(
         for level in layout.levels
         if level.id == id and not obstacles(zone, level, ready.currents.frequencies)
     }
-    return tuple(x for x in comparable_levels(layout) if x.id in named)
+    return tuple(x for x in comparable_levels(layout, heights) if x.id in named)
