@@ -6,6 +6,8 @@ stands in the way; the caller shows it.
 
 from __future__ import annotations
 
+import math
+from itertools import pairwise
 from typing import TypeVar
 
 from app.document import Document
@@ -114,6 +116,15 @@ def split_selected_run(document: Document, leg: int, at: Point3) -> None:
     known = {one.id for one in document.committed.runs}
     document.edit(f"Split {counted((run,))}", after)
     document.select([run.id, *(one.id for one in after.runs if one.id not in known)])
+
+
+def split_at_middle(document: Document) -> None:
+    """Make two runs of the selected one, in the middle of its longest leg."""
+    route = _only(document, Run, "run").route
+    legs = [math.dist(a, b) for a, b in pairwise(route)]
+    leg = legs.index(max(legs))
+    x, y, z = (0.5 * (a + b) for a, b in zip(route[leg], route[leg + 1], strict=True))
+    split_selected_run(document, leg, (x, y, z))
 
 
 def insert_vertex(document: Document, id: str, leg: int, at: Point3) -> None:

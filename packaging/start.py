@@ -19,6 +19,7 @@ ROOT = os.path.dirname(os.path.dirname(os.path.abspath(__file__)))
 ENVIRONMENT = os.path.join(ROOT, ".venv")
 CONSTRAINTS = os.path.join(ROOT, "packaging", "constraints.txt")
 SAMPLE = os.path.join(ROOT, "sample_layouts", "small-switch-room.json")
+DESKTOP_SAMPLE = os.path.join(ROOT, "sample_layouts", "office-over-switch-room.json")
 OLDEST = (3, 11)
 
 # What Qt loads on Linux, as (library, Debian packages of which one exists).
@@ -184,11 +185,6 @@ def has_screen():
     return bool(os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
 
 
-def has_desktop():
-    """Whether this version of the project has the desktop."""
-    return os.path.exists(os.path.join(ROOT, "app", "__main__.py"))
-
-
 def run(*arguments):
     """Run the environment's Python in this folder; its exit code."""
     return subprocess.call([environment_python()] + list(arguments))
@@ -232,8 +228,8 @@ def main(arguments):
         if arguments[:1] == ["test"]:
             os.chdir(ROOT)
             return run("-m", "pytest", *arguments[1:])
-        if has_desktop() and has_screen():
-            return run("-m", "app", SAMPLE)
+        if has_screen():
+            return run("-m", "app", DESKTOP_SAMPLE)
         return first_look()
     except Stopped as stopped:
         print(str(stopped), file=sys.stderr)

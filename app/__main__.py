@@ -1,0 +1,28 @@
+"""Starts the desktop: `python -m app [LAYOUT]`, or `lodestead`."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+
+from PySide6.QtCore import QCoreApplication, Qt
+from PySide6.QtWidgets import QApplication
+
+
+def main() -> int:
+    """Open the window, with the layout named on the command line; the exit code."""
+    # A second OpenGL view draws nothing unless contexts are shared from the start.
+    QCoreApplication.setAttribute(Qt.ApplicationAttribute.AA_ShareOpenGLContexts)
+    application = QApplication(sys.argv)
+    application.setApplicationName("Lodestead")
+    application.setStyle("Fusion")
+    from app.start import started
+
+    paths = [Path(name) for name in application.arguments()[1:2]]
+    window = started(paths[0] if paths else None)
+    window.show()
+    return application.exec()
+
+
+if __name__ == "__main__":
+    sys.exit(main())

@@ -1,0 +1,176 @@
+"""The caption above the drawing: what the map shows, each part a choice.
+
+The same words stand on every export: quantity, heights, load case.
+"""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QEvent, Qt, Signal
+from PySide6.QtGui import QAction, QResizeEvent
+from PySide6.QtWidgets import (
+    QComboBox,
+    QHBoxLayout,
+    QLabel,
+    QMenu,
+    QSizePolicy,
+    QToolButton,
+    QWidget,
+)
+
+from app.document import Document
+from app.map_request import height_text, heights_of
+from app.theme import STEP, theme_for
+from app.view_state import LAYERS, ViewState
+from engine.assessment import zone_floor
+from engine.layout import Layout
+
+QUANTITY = "RMS flux density"
+
+
+def caption(layout: Layout, view_state: ViewState) -> str:
+    """The caption in one line, as exports print it."""
+    look = view_state.look
+    _, heights = heights_of(layout, look)
+    return f"{QUANTITY} · {heights} · case {case_title(layout, look.case)}"
+
+
+def case_title(layout: Layout, case: str) -> str:
+    """The name of the load case shown."""
+    cases = layout.cases
+    return next((c.title for c in cases if c.id == case), cases[0].title)
+
+
+class CaptionBar(QWidget):
+    """Quantity, zone, height, storey and load case of the drawing, and its layers.
+
+    Signals
+    -------
+    state_told(text)
+        Nothing to compute, out of date, still coarse: shown at the right end.
+    """
+
+    state_told = Signal(str)
+
+    def __init__(self, document: Document, view_state: ViewState) -> None:
+        super().__init__()
+        self._document = document
+        self._view_state = view_state
+        self._zone = _choice("Zone whose heights the map shows")
+        self._height = _choice("Height of the map above the datum [m]")
+        self._case = _choice("Load case of the map")
+        self._storey = _choice("Storey that is drawn upon")
+        self._state = QLabel()
+        self._layers = QToolButton()
+        self._layers.setText("Layers")
+        self._layers.setToolTip("Which layers of the drawing show")
+        self._layers.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
+        self._layers.setAutoRaise(True)
+        self._layers.setMenu(self._layer_menu())
+        row = QHBoxLayout(self)
+        row.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
+        row.setSpacing(STEP)
+        row.addWidget(QLabel(QUANTITY))
+        for widget in (self._zone, self._height, self._case, self._storey):
+            row.addWidget(QLabel("·"))
+            row.addWidget(widget)
+        row.addStretch(1)
+        row.addWidget(self._state)
+        row.addWidget(self._layers)
+        self._zone.activated.connect(self._on_zone)
+        self._height.activated.connect(self._on_height)
+        self._case.activated.connect(self._on_case)
+        self._storey.activated.connect(self._on_storey)
+        document.changed.connect(self._fill)
+        view_state.changed.connect(self._fill)
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
+        self._fill()
+
+    def tell(self, text: str) -> None:
+        """Say at the right end what the map's state is; empty for nothing."""
+        self._state.setText(text)
+        self.state_told.emit(text)
+
+    def changeEvent(self, event: QEvent) -> None:
+        if event.type() == QEvent.Type.PaletteChange:
+            self._state.setStyleSheet(f"color: {theme_for(self.palette()).muted};")
+        super().changeEvent(event)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        # A storey is chosen on the rail too: it gives way first.
+        self._storey.setVisible(self.width() > 760 and self._storey.count() > 1)
+        super().resizeEvent(event)
+
+    def _layer_menu(self) -> QMenu:
+        menu = QMenu(self)
+        for layer in LAYERS:
+            action = QAction(layer, menu, checkable=True, checked=True)
+            action.toggled.connect(lambda on, name=layer: self._show_layer(name, on))
+            menu.addAction(action)
+        return menu
+
+    def _show_layer(self, layer: str, shown: bool) -> None:
+        hidden = self._view_state.look.hidden - {layer}
+        self._view_state.set(hidden=hidden if shown else hidden | {layer})
+
+    def _fill(self, *_: object) -> None:
+        layout, look = self._document.layout, self._view_state.look
+        zones = [(zone.title, zone.id) for zone in layout.zones]
+        _refill(self._zone, zones, look.zone)
+        self._zone.setVisible(bool(zones))
+        _refill(self._height, self._heights(layout), look.height)
+        cases = [(f"case {case.title}", case.id) for case in layout.cases]
+        _refill(self._case, cases, look.case)
+        storeys = [(storey.title, storey.id) for storey in layout.storeys]
+        _refill(self._storey, storeys, look.storey)
+        self._storey.setVisible(self.width() > 760 and len(storeys) > 1)
+
+    def _heights(self, layout: Layout) -> list[tuple[str, float | None]]:
+        look = self._view_state.look
+        zone = next((z for z in layout.zones if z.id == look.zone), None)
+        if zone is None and layout.zones:
+            zone = layout.zones[0]
+        heights: list[tuple[str, float | None]] = [("one height", None)]
+        if zone is not None:
+            floor = zone_floor(layout, zone) or 0.0
+            heights = [("largest over heights", None)]
+            heights += [
+                (height_text(layout, floor + h, zone), floor + h) for h in zone.heights
+            ]
+        if look.height is not None and look.height not in [z for _, z in heights]:
+            heights.append((height_text(layout, look.height, zone), look.height))
+        return heights
+
+    def _on_zone(self, index: int) -> None:
+        self._view_state.set(zone=self._zone.itemData(index), height=None)
+
+    def _on_height(self, index: int) -> None:
+        self._view_state.set(height=self._height.itemData(index))
+
+    def _on_case(self, index: int) -> None:
+        self._view_state.set(case=self._case.itemData(index))
+
+    def _on_storey(self, index: int) -> None:
+        self._view_state.set(storey=self._storey.itemData(index))
+
+
+def _choice(tip: str) -> QComboBox:
+    box = QComboBox()
+    box.setToolTip(tip)
+    box.setAccessibleName(tip)
+    box.setFrame(False)
+    box.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
+    box.setMinimumContentsLength(4)
+    box.setFocusPolicy(Qt.FocusPolicy.TabFocus)
+    box.setSizePolicy(QSizePolicy.Policy.Maximum, QSizePolicy.Policy.Fixed)
+    return box
+
+
+def _refill(box: QComboBox, entries: list[tuple[str, object]], chosen: object) -> None:
+    """Put `entries` (text, data) into `box`, with `chosen` or else the first shown."""
+    shown = [(box.itemText(i), box.itemData(i)) for i in range(box.count())]
+    if shown != entries:
+        box.clear()
+        for text, data in entries:
+            box.addItem(text, data)
+    index = next((i for i, (_, data) in enumerate(entries) if data == chosen), 0)
+    box.setCurrentIndex(index if entries else -1)

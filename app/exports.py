@@ -1,0 +1,102 @@
+"""Printing the report and exporting the map: one action each, off the main thread."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from PySide6.QtCore import QObject
+from PySide6.QtWidgets import QFileDialog, QWidget
+
+from app.document import Document
+from app.jobs import Jobs
+from app.map_request import heights_of
+from app.messages import Messages
+from app.view_state import ViewState
+from engine.commands.horizontal_map import write_map
+from engine.errors import Cancelled, Progress
+from engine.layout import Layout
+from engine.report import write_report
+
+MAP_KINDS = "Picture (*.png);;Vectors (*.svg);;Numbers (*.csv)"
+
+
+class Exports(QObject):
+    """Writes what is shown to files, with progress and cancel."""
+
+    def __init__(
+        self,
+        document: Document,
+        view_state: ViewState,
+        jobs: Jobs,
+        messages: Messages,
+        window: QWidget,
+    ) -> None:
+        super().__init__(window)
+        self._document = document
+        self._view_state = view_state
+        self._jobs = jobs
+        self._messages = messages
+        self._window = window
+
+    def choose_report(self) -> None:
+        """Ask where to, and write the report."""
+        path = self._ask("Write report", self._suggested(".pdf"), "Report (*.pdf)")
+        if path is not None:
+            self.report(path.with_suffix(".pdf"))
+
+    def choose_map(self) -> None:
+        """Ask where to, and write the map that is shown."""
+        path = self._ask("Export map", self._suggested(".png"), MAP_KINDS)
+        if path is not None:
+            self.map(path if path.suffix else path.with_suffix(".png"))
+
+    def report(self, path: Path) -> None:
+        """Write the report of the committed layout."""
+        layout = self._document.committed
+
+        def work(cancelled: Cancelled, progress: Progress) -> None:
+            write_report(layout, path, cancelled=cancelled, progress=progress)
+
+        self._start("Writing the report", work, path)
+
+    def map(self, path: Path) -> None:
+        """Write the map as the view shows it: its load case, its heights."""
+        layout, look = self._document.committed, self._view_state.look
+        heights, _ = heights_of(layout, look)
+        case = next((c for c in layout.cases if c.id == look.case), layout.cases[0])
+
+        def work(cancelled: Cancelled, progress: Progress) -> None:
+            write_map(
+                layout, case, heights, path, cancelled=cancelled, progress=progress
+            )
+
+        self._start("Exporting the map", work, path)
+
+    def _start(self, title: str, work: object, path: Path) -> None:
+        assert callable(work)
+        self._jobs.start(
+            title, work, lambda _: self._messages.inform(f"{path} was written.")
+        )
+
+    def _suggested(self, ending: str) -> str:
+        path = self._document.path
+        if path is not None:
+            return str(path.with_suffix(ending))
+        return _stem(self._document.layout) + ending
+
+    def _ask(self, title: str, start: str, kinds: str) -> Path | None:
+        name, kind = QFileDialog.getSaveFileName(self._window, title, start, kinds)
+        if not name:
+            return None
+        path = Path(name)
+        if not path.suffix and "*." in kind:
+            path = path.with_suffix("." + kind.split("*.")[1].rstrip(")"))
+        return path
+
+
+def _stem(layout: Layout) -> str:
+    """A file name from the project's, without what file systems refuse."""
+    name = "".join(
+        c if c.isalnum() or c in " -_" else "-" for c in layout.title.project
+    )
+    return name.strip(" -") or "room"

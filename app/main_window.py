@@ -1,0 +1,367 @@
+"""The window: builds the parts, connects them, and holds no state of its own."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QByteArray, QEvent, QSize, Qt, QTimer
+from PySide6.QtGui import (
+    QCloseEvent,
+    QDragEnterEvent,
+    QDropEvent,
+    QKeyEvent,
+    QResizeEvent,
+)
+from PySide6.QtWidgets import (
+    QApplication,
+    QHBoxLayout,
+    QLabel,
+    QMainWindow,
+    QSizePolicy,
+    QSplitter,
+    QStackedWidget,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app import preferences
+from app.arrange import Arrange
+from app.ask_bar import AskBar
+from app.caption_bar import CaptionBar
+from app.document import Document
+from app.drawings import Drawings
+from app.entry_strip import EntryStrip
+from app.exports import Exports
+from app.files import Files
+from app.guide import AboutPage, CautionsPage, GuidePage
+from app.jobs import Jobs
+from app.message_bar import JobBar, MessageBar
+from app.messages import Messages
+from app.new_layout import NewLayoutPage
+from app.panels.circuits import CircuitsPanel
+from app.panels.item import ItemPanel
+from app.panels.levels import LevelsPanel
+from app.panels.load_cases import LoadCasesPanel
+from app.panels.margins import MarginsPanel
+from app.panels.readout import ReadoutLine
+from app.panels.remarks import RemarksPanel
+from app.panels.section import SectionPanel
+from app.recompute import Recompute
+from app.recovery import Autosave
+from app.side_panels import WIDTH, SidePanels
+from app.theme import DARK, LIGHT, Theme, qt_palette
+from app.tool_row import ToolRow
+from app.toolbox import Toolbox
+from app.view_state import ViewState
+from app.views.height_rail import HeightRail
+from app.window_menus import WindowMenus
+
+#: Under this height the foot panels open in the drawing's place. [logical pixels]
+LOW = 800
+
+
+class MainWindow(QMainWindow):
+    """Everything a user sees.
+
+    Parameters
+    ----------
+    document : Document
+    messages : Messages
+    theme : Theme
+        To start with; `set_theme` changes it.
+    """
+
+    def __init__(
+        self, document: Document, messages: Messages, theme: Theme = LIGHT
+    ) -> None:
+        super().__init__()
+        self.document, self.messages = document, messages
+        self.view_state = ViewState()
+        self.jobs = Jobs(self)
+        self.files = Files(document, messages, self)
+        self.exports = Exports(document, self.view_state, self.jobs, messages, self)
+        self.toolbox = Toolbox(document, self.view_state, messages)
+        self.recompute = Recompute(document, self.view_state)
+        self.autosave = Autosave(document)
+        self.theme = theme
+        self._build()
+        self.menus = WindowMenus(self)
+        self._connect()
+        self.set_theme(theme)
+        self.setAcceptDrops(True)
+        self.setMinimumSize(980, 560)
+        self.resize(1360, 860)
+        self._show_title()
+
+    # -- building ---------------------------------------------------------------
+
+    def _build(self) -> None:
+        document, state = self.document, self.view_state
+        self.tool_row = ToolRow(self.toolbox, self.theme)
+        self.addToolBar(Qt.ToolBarArea.TopToolBarArea, self.tool_row)
+        self.message_bar, self.ask_bar = MessageBar(self.messages), AskBar()
+        self.arrange = Arrange(document, self.ask_bar)
+        self.caption, self.strip = CaptionBar(document, state), EntryStrip()
+        self.drawings = Drawings(document, state, self.theme)
+        self.rail = HeightRail(document, state)
+        self.margins = MarginsPanel(document)
+        self._build_pages()
+        self._build_panels()
+        column = QWidget()
+        box = QVBoxLayout(column)
+        box.setContentsMargins(0, 0, 0, 0)
+        box.setSpacing(0)
+        for widget in (self.caption, self.strip, self.message_bar, self.ask_bar):
+            box.addWidget(widget)
+        drawing = QHBoxLayout()
+        drawing.setSpacing(0)
+        drawing.addWidget(self.rail)
+        drawing.addWidget(self.pages, 1)
+        box.addLayout(drawing, 1)
+        column.setMinimumWidth(560)
+        self.splitter = QSplitter(Qt.Orientation.Horizontal)
+        self.splitter.setChildrenCollapsible(False)
+        self.splitter.addWidget(column)
+        self.splitter.addWidget(self.panels)
+        self.splitter.setStretchFactor(0, 1)
+        self.splitter.setSizes([1000, WIDTH])
+        whole = QWidget()
+        outer = QVBoxLayout(whole)
+        outer.setContentsMargins(0, 0, 0, 0)
+        outer.setSpacing(0)
+        outer.addWidget(self.splitter, 1)
+        outer.addWidget(self.margins)
+        self.setCentralWidget(whole)
+        self._build_status()
+
+    def _build_pages(self) -> None:
+        """What may stand in the drawing's place."""
+        self.section = SectionPanel(self.document, self.view_state)
+        self.new_page, self.guide = NewLayoutPage(), GuidePage()
+        self.cautions, self.about = CautionsPage(self.document), AboutPage()
+        self.pages = QStackedWidget()
+        for page in (
+            self.drawings, self.section, self.new_page,
+            self.guide, self.cautions, self.about,
+        ):  # fmt: skip
+            self.pages.addWidget(page)
+        self.pages.setSizePolicy(
+            QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding
+        )
+
+    def _build_panels(self) -> None:
+        document, state = self.document, self.view_state
+        self.item = ItemPanel(document)
+        self.circuits = CircuitsPanel(document, state)
+        self.load_cases = LoadCasesPanel(document, state)
+        self.levels = LevelsPanel(document, self.messages)
+        self.remarks = RemarksPanel(document)
+        self.panels = SidePanels()
+        for name, panel, tip in (
+            ("Item", self.item, "The values of what is selected"),
+            ("Circuits", self.circuits, "Currents, neutrals, harmonics"),
+            ("Cases", self.load_cases, "Load cases: which currents flow together"),
+            (
+                "Ref. levels",
+                self.levels,
+                "Reference levels: what the field is compared with",
+            ),
+            ("Remarks", self.remarks, "What to bear in mind, and what is assumed"),
+        ):
+            self.panels.add(name, panel, tip)
+
+    def _build_status(self) -> None:
+        self.hint, self.working = QLabel(), QLabel()
+        self.hint.setTextFormat(Qt.TextFormat.PlainText)
+        self.readout = ReadoutLine(self.document, self.view_state)
+        bar = self.statusBar()
+        bar.setSizeGripEnabled(False)
+        bar.addWidget(self.hint, 2)
+        bar.addPermanentWidget(self.working)
+        bar.addPermanentWidget(JobBar(self.jobs))
+        bar.addPermanentWidget(self.readout, 3)
+
+    # -- connecting -------------------------------------------------------------
+
+    def _connect(self) -> None:
+        document, recompute = self.document, self.recompute
+        self.toolbox.activated.connect(self.drawings.set_tool)
+        self.toolbox.activated.connect(self.strip.set_tool)
+        self.toolbox.hint_changed.connect(self.hint.setText)
+        self.toolbox.activated.connect(lambda _tool: self.show_drawing())
+        self.strip.hold_toggled.connect(self.drawings.set_holds)
+        self.strip.catch_toggled.connect(self.drawings.set_catches)
+        self.strip.left.connect(self.drawings.take_keyboard)
+        self.drawings.area_changed.connect(recompute.set_view)
+        self.drawings.pointed.connect(self.readout.show_at)
+        self.drawings.pointer_left.connect(self.readout.clear_place)
+        recompute.map_ready.connect(self.drawings.set_map)
+        recompute.map_ready.connect(self._tell_map_state)
+        recompute.margins_ready.connect(self._take_margins)
+        recompute.curve_ready.connect(self.rail.set_curve)
+        recompute.problem.connect(self.caption.tell)
+        recompute.progress.connect(
+            lambda share, text: self.working.setText(text if share < 1 else "")
+        )
+        self.rail.refused.connect(self.messages.warn)
+        self.margins.go_to.connect(self.go_to)
+        self.margins.opened.connect(self._make_room)
+        self.item.section_requested.connect(self.open_section)
+        self.section.closed.connect(self.show_drawing)
+        for page in (self.new_page, self.guide, self.cautions, self.about):
+            page.closed.connect(self.show_drawing)
+        self.new_page.chosen.connect(self._start_with)
+        self.remarks.go_to.connect(self._go_to_place)
+        self.remarks.counted.connect(
+            lambda count: self.panels.rename(
+                "Remarks", f"Remarks {count}" if count else "Remarks"
+            )
+        )
+        self.jobs.refused.connect(self.messages.error)
+        self.files.changed_outside.connect(self._on_changed_outside)
+        document.path_changed.connect(lambda _path: self._show_title())
+        document.undo_stack.cleanChanged.connect(lambda _clean: self._show_title())
+        document.changed.connect(self._on_changed)
+        self.toolbox.activate(self.toolbox.tools[0])
+        self._on_changed(document.layout, frozenset())
+
+    # -- pages ------------------------------------------------------------------
+
+    def show_page(self, page: QWidget) -> None:
+        """Show a page in the drawing's place; Esc returns."""
+        self.pages.setCurrentWidget(page)
+        self.rail.setVisible(page is self.drawings)
+        self.strip.setVisible(page is self.drawings)
+        page.setFocus()
+
+    def show_drawing(self) -> None:
+        """Show the drawing again."""
+        self.show_page(self.drawings)
+        self.drawings.take_keyboard()
+
+    def open_section(self, run: str) -> None:
+        """Show a run cut across."""
+        self.section.show_run(run)
+        self.show_page(self.section)
+
+    def go_to(self, at: object, height: object, case: str) -> None:
+        """Show a place: the drawing there, the map at that height, in that case."""
+        self.show_drawing()
+        self.view_state.set(height=height, case=case or self.view_state.look.case)
+        if isinstance(at, tuple):
+            self.drawings.look_at(at)
+
+    def _go_to_place(self, at: object) -> None:
+        if isinstance(at, tuple):
+            self.show_drawing()
+            self.drawings.look_at(at)
+
+    def _start_with(self, layout: object) -> None:
+        if self.files.new(layout):
+            self.show_drawing()
+
+    def _take_margins(self, margins: object) -> None:
+        self.margins.set_margins(margins)
+        assessment = margins.assessment
+        if assessment is not None:
+            self.remarks.set_assessment(assessment)
+
+    def _tell_map_state(self, picture: object) -> None:
+        text = "out of date" if picture.is_stale else ""
+        self.caption.tell("coarse" if picture.is_coarse and not text else text)
+
+    def _make_room(self, opened: bool) -> None:
+        """Foot panels take at most 40 % of the height, or the drawing's place."""
+        low = self.height() < LOW
+        self.splitter.setVisible(not (opened and low))
+        limit = 16777215 if low and opened else int(0.4 * self.height())
+        self.margins.setMaximumHeight(limit)
+
+    def _on_changed(self, layout: object, _ids: object) -> None:
+        self.strip.set_unit(self.document.layout.settings.length_unit)
+
+    def _on_changed_outside(self, path: object) -> None:
+        self.messages.warn(
+            f"{path} was changed by another program. Open it again to see the change, "
+            "or save to replace it with what is shown here."
+        )
+
+    def _show_title(self) -> None:
+        path = self.document.path
+        name = path.name if path else "not saved yet"
+        self.setWindowTitle(f"{name}[*] — Lodestead")
+        self.setWindowModified(self.document.is_modified)
+
+    def show_first_strip(self, strip: QWidget) -> None:
+        """Put the strip of the first start above everything."""
+        whole = self.centralWidget()
+        assert whole is not None
+        box = whole.layout()
+        assert isinstance(box, QVBoxLayout)
+        box.insertWidget(0, strip)
+
+    # -- look -------------------------------------------------------------------
+
+    def set_theme(self, theme: Theme) -> None:
+        """Show everything in another theme."""
+        self.theme = theme
+        QApplication.setPalette(qt_palette(theme))
+        self.drawings.set_theme(theme)
+        self.tool_row.set_theme(theme)
+
+    def follow_preferences(self) -> None:
+        """Take theme and text size from the preferences."""
+        choices = preferences.load()
+        scheme = QApplication.styleHints().colorScheme()
+        dark = choices.theme == "dark" or (
+            choices.theme == "system" and scheme == Qt.ColorScheme.Dark
+        )
+        self.set_theme(DARK if dark else LIGHT)
+
+    # -- window -----------------------------------------------------------------
+
+    def restore(self) -> None:
+        """Bring back size and place of the last time."""
+        state = preferences.load().geometry
+        if state:
+            self.restoreGeometry(QByteArray.fromBase64(state.encode("ascii")))
+
+    def sizeHint(self) -> QSize:
+        return QSize(1360, 860)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        self.tool_row.set_wide(self.width() >= 1500)
+        self.drawings.set_wide(self.width() >= 1900)
+        self._make_room(self.margins.is_open)
+        super().resizeEvent(event)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() != Qt.Key.Key_Escape:
+            super().keyPressEvent(event)
+        elif self.pages.currentWidget() is not self.drawings:
+            self.show_drawing()
+        elif not self.margins.close_opened():
+            self.toolbox.back()
+
+    def changeEvent(self, event: QEvent) -> None:
+        if event.type() == QEvent.Type.ActivationChange and self.isActiveWindow():
+            QTimer.singleShot(0, self.menus.refresh)
+        super().changeEvent(event)
+
+    def dragEnterEvent(self, event: QDragEnterEvent) -> None:
+        if event.mimeData().hasUrls():
+            event.acceptProposedAction()
+
+    def dropEvent(self, event: QDropEvent) -> None:
+        paths = [url.toLocalFile() for url in event.mimeData().urls()]
+        self.menus.open_dropped([path for path in paths if path])
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        if not self.files.may_leave():
+            event.ignore()
+            return
+        self.jobs.wait()
+        self.recompute.close()
+        self.readout.close_worker()
+        self.remarks.close_search()
+        self.autosave.forget()
+        self.menus.remember_geometry()
+        event.accept()

@@ -1,0 +1,119 @@
+"""The bar that shows what the user is told in passing, above the drawing."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt, QTimer
+from PySide6.QtWidgets import (
+    QApplication,
+    QHBoxLayout,
+    QLabel,
+    QProgressBar,
+    QPushButton,
+    QSizePolicy,
+    QToolButton,
+    QWidget,
+)
+
+from app.jobs import Jobs
+from app.messages import Messages
+from app.theme import STEP, theme_for
+
+#: How long an information stays; warnings and errors stay until closed. [ms]
+PATIENCE = 6000
+
+
+class MessageBar(QWidget):
+    """One sentence, and a way to put it aside."""
+
+    def __init__(self, messages: Messages) -> None:
+        super().__init__()
+        self._text = QLabel()
+        self._text.setWordWrap(True)
+        # What users typed is shown as it is and never as markup.
+        self._text.setTextFormat(Qt.TextFormat.PlainText)
+        self._text.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
+        self._copy = QPushButton("Copy details")
+        self._copy.clicked.connect(self._copy_details)
+        self._close = QToolButton()
+        self._close.setText("Close")
+        self._close.setAutoRaise(True)
+        self._close.clicked.connect(self.hide)
+        self._details = ""
+        row = QHBoxLayout(self)
+        row.setContentsMargins(3 * STEP, STEP, 2 * STEP, STEP)
+        row.addWidget(self._text, 1)
+        row.addWidget(self._copy)
+        row.addWidget(self._close)
+        self.setAutoFillBackground(True)
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Maximum)
+        self._timer = QTimer(self)
+        self._timer.setSingleShot(True)
+        self._timer.timeout.connect(self.hide)
+        messages.told.connect(self.tell)
+        messages.failed.connect(self._tell_failure)
+        self.hide()
+
+    @property
+    def sentence(self) -> str:
+        """What is shown."""
+        return self._text.text()
+
+    def tell(self, kind: str, sentence: str) -> None:
+        """Show a sentence."""
+        self._show(kind, sentence, "")
+
+    def _tell_failure(self, summary: str, details: str) -> None:
+        sentence = (
+            "Something went wrong that should not have; we are sorry. Your work is "
+            f"still here: save it. ({summary})"
+        )
+        self._show("error", sentence, details)
+
+    def _show(self, kind: str, sentence: str, details: str) -> None:
+        theme = theme_for(self.palette())
+        colour = theme.text if kind == "information" else theme.warning
+        self._text.setStyleSheet(f"color: {colour};")
+        self._text.setText(sentence)
+        self._details = details
+        self._copy.setVisible(bool(details))
+        self._timer.stop()
+        if kind == "information":
+            self._timer.start(PATIENCE)
+        self.show()
+
+    def _copy_details(self) -> None:
+        QApplication.clipboard().setText(self._details)
+
+
+class JobBar(QWidget):
+    """Progress of the job that runs, with a way to cancel it."""
+
+    def __init__(self, jobs: Jobs) -> None:
+        super().__init__()
+        self._title = ""
+        self._text = QLabel()
+        self._bar = QProgressBar()
+        self._bar.setRange(0, 1000)
+        self._bar.setTextVisible(False)
+        self._bar.setFixedWidth(160)
+        cancel = QPushButton("Cancel")
+        cancel.clicked.connect(jobs.cancel)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(0, 0, 0, 0)
+        row.addWidget(self._text)
+        row.addWidget(self._bar)
+        row.addWidget(cancel)
+        jobs.started.connect(self._on_started)
+        jobs.progressed.connect(self._on_progressed)
+        jobs.ended.connect(self.hide)
+        self.hide()
+
+    def _on_started(self, title: str) -> None:
+        self._title = title
+        self._text.setText(title)
+        self._bar.setValue(0)
+        self.show()
+
+    def _on_progressed(self, share: float, doing: str) -> None:
+        self._bar.setValue(round(1000 * share))
+        self._text.setText(f"{self._title} · {doing}" if doing else self._title)

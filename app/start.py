@@ -1,0 +1,57 @@
+"""What the window shows first: rescued work, the named file, or a sample."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import msgspec
+
+from app import preferences, recovery
+from app.document import Document
+from app.files import empty_layout
+from app.first_strip import FirstStrip
+from app.main_window import MainWindow
+from app.messages import Messages
+
+SAMPLES = Path(__file__).parents[1] / "sample_layouts"
+FIRST_SAMPLE = SAMPLES / "office-over-switch-room.json"
+
+
+def started(path: Path | None) -> MainWindow:
+    """The window, not yet shown."""
+    choices = preferences.load()
+    messages = Messages()
+    messages.catch_unexpected()
+    document = Document(empty_layout(choices))
+    window = MainWindow(document, messages)
+    window.follow_preferences()
+    window.restore()
+    left = recovery.rescues()
+    if left:
+        rescue = left[0]
+        if window.files.open_rescued(rescue.copy, rescue.path):
+            recovery.give_up(rescue)
+            messages.warn(
+                "Unsaved work of a program that ended unexpectedly is open again: save "
+                "it, or undo to see the file as it was saved."
+            )
+    elif path is not None:
+        window.files.open(path)
+    elif not choices.chosen and FIRST_SAMPLE.exists():
+        window.files.open(FIRST_SAMPLE)
+    if not choices.chosen:
+        _ask_first(window)
+    return window
+
+
+def _ask_first(window: MainWindow) -> None:
+    """Units and paper, in one strip above everything."""
+    strip = FirstStrip(preferences.load())
+
+    def chosen(choices: preferences.Preferences) -> None:
+        recent = preferences.load().recent
+        preferences.save(msgspec.structs.replace(choices, chosen=True, recent=recent))
+        strip.hide()
+
+    strip.chosen.connect(chosen)
+    window.show_first_strip(strip)

@@ -1,0 +1,322 @@
+"""What the menus of the window hold, and the few commands that need the window."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import msgspec
+from PySide6.QtGui import QAction, QActionGroup, QKeySequence
+from PySide6.QtWidgets import QApplication, QFileDialog, QMenu
+
+from app import clipboard, commands, preferences
+from app.backing import place_backing_file, place_backing_picture
+from app.drawings import VIEWS
+from app.icons import icon
+from app.menus import LINE, Command, add_menu
+from engine.edits import replaced
+from engine.errors import UserError
+from engine.units import FLUX_DENSITY_UNITS
+
+if TYPE_CHECKING:
+    from app.main_window import MainWindow
+
+PICTURES = "Drawings and pictures (*.pdf *.png *.jpg *.jpeg)"
+Standard = QKeySequence.StandardKey
+
+
+class WindowMenus:
+    """Builds the menus; keeps what in them changes up to date."""
+
+    def __init__(self, window: MainWindow) -> None:
+        self._window = window
+        self._file()
+        self._edit()
+        self._draw()
+        self._view()
+        self._field()
+        self._report()
+        self._help()
+        window.files.recent_changed.connect(self._fill_recent)
+        stack = window.document.undo_stack
+        stack.undoTextChanged.connect(self._on_undo_text)
+        stack.redoTextChanged.connect(self._on_redo_text)
+        self._on_undo_text(stack.undoText())
+        self._on_redo_text(stack.redoText())
+        self.refresh()
+
+    # -- building ---------------------------------------------------------------
+
+    def _add(self, title: str, entries: list[Command]) -> dict[str, QAction]:
+        menu, actions = add_menu(self._window, title, entries, self._window.messages)
+        self._menu: QMenu = menu
+        return actions
+
+    def _file(self) -> None:
+        w, files = self._window, self._window.files
+        actions = self._add(
+            "File",
+            [
+                Command("New …", lambda: w.show_page(w.new_page), Standard.New,
+                        "An empty layout, or one of three starters"),
+                Command("Open …", files.choose, Standard.Open,
+                        "A layout, or a conductor schedule as CSV"),
+                LINE,
+                Command("Save", files.save, Standard.Save, "Write the layout's file"),
+                Command("Save as …", files.save_as, "Ctrl+Shift+S",
+                        "Write the layout to another file"),
+                LINE,
+                Command("Close the window", w.close, Standard.Quit,
+                        "Ask about unsaved work, then end"),
+            ],
+        )  # fmt: skip
+        self._recent = QMenu("Recent", w)
+        self._menu.insertMenu(actions["Save"], self._recent)
+        self._fill_recent()
+
+    def _edit(self) -> None:
+        w, document, arrange = self._window, self._window.document, self._window.arrange
+        stack = document.undo_stack
+        actions = self._add(
+            "Edit",
+            [
+                Command("Undo", stack.undo, Standard.Undo, "Take the last edit back"),
+                Command("Redo", stack.redo, Standard.Redo, "Do it again"),
+                LINE,
+                Command("Copy", lambda: clipboard.copy(document), Standard.Copy,
+                        "Items for this or another window"),
+                Command("Paste", lambda: clipboard.paste(document), Standard.Paste,
+                        "Items, or a picture as backing drawing"),
+                Command("Delete", lambda: commands.delete_selection(document), "",
+                        "Delete what is selected (Del on the drawing)"),
+                Command("Select everything", self._select_all, Standard.SelectAll,
+                        "All items that are drawn"),
+                LINE,
+                Command("Move by …", arrange.move, "", "By typed lengths"),
+                Command("Turn by …", arrange.rotate, "", "About the middle"),
+                Command("Mirror …", arrange.mirror, "", "In a line through the middle"),
+                Command("Repeat …", arrange.repeat, "", "Copies at equal steps"),
+                Command("Align …", arrange.align, "", "On one line or height"),
+                Command("Split run at its middle",
+                        lambda: commands.split_at_middle(document), "",
+                        "Two runs of one, in the middle of its longest leg"),
+            ],
+        )  # fmt: skip
+        self._undo, self._redo = actions["Undo"], actions["Redo"]
+        for action, name in ((self._undo, "undo"), (self._redo, "redo")):
+            action.setIcon(icon(name, w.theme.text, w.theme.muted))
+
+    def _draw(self) -> None:
+        w, document, arrange = self._window, self._window.document, self._window.arrange
+        entries = [
+            Command(tool.name, lambda chosen=tool: w.toolbox.activate(chosen), "",
+                    f"The tool {tool.name} (key {tool.key})")
+            for tool in w.toolbox.tools
+        ]  # fmt: skip
+        self._add(
+            "Draw",
+            [
+                *entries,
+                LINE,
+                Command("Fill room with a zone", lambda: commands.fill_room(document),
+                        "", "The room's outline less 0.20 m, where people are"),
+                Command("Add room above …", arrange.room_above, "",
+                        "The same outline on the slab above"),
+                Command("Add room below …", arrange.room_below, "",
+                        "The same outline under the floor"),
+                LINE,
+                Command("Open the section", self._open_section, "F6",
+                        "The selected run cut across at true scale"),
+                LINE,
+                Command("Place backing drawing …", self._place_file, "",
+                        "A page of a PDF, a PNG or a JPEG under the drawing"),
+                Command("Place picture from the clipboard", self._place_picture, "",
+                        "The copied picture under the drawing"),
+                Command("Calibrate backing drawing", self._calibrate, "",
+                        "Two points and their distance; then where one point lies"),
+            ],
+        )  # fmt: skip
+
+    def _view(self) -> None:
+        w = self._window
+        self._add(
+            "View",
+            [
+                *(
+                    Command(name, lambda shown=name: w.drawings.show_view(shown), "",
+                            "Seen from above" if name == "Plan"
+                            else f"Elevation, {name.lower()}")
+                    for name in VIEWS
+                ),
+                LINE,
+                Command("Fit", w.drawings.fit, "", "Show everything (Home)"),
+            ],
+        )  # fmt: skip
+        themes = self._menu.addMenu("Colours")
+        self._choices(themes, ("system", "light", "dark"), "theme")
+
+    def _field(self) -> None:
+        w = self._window
+        self._add(
+            "Field",
+            [
+                Command("Largest over heights",
+                        lambda: w.view_state.set(height=None), "",
+                        "The largest value over the zone's heights"),
+                Command("Fit range", self._fit_range, "",
+                        "Let the map's range hold the values that it shows"),
+            ],
+        )  # fmt: skip
+        units = self._menu.addMenu("Unit")
+        group = QActionGroup(units)
+        for unit in FLUX_DENSITY_UNITS:
+            action = QAction(unit, units, checkable=True)
+            action.triggered.connect(lambda _on, u=unit: self._set_unit(u))
+            group.addAction(action)
+            units.addAction(action)
+        self._units = group
+
+    def _report(self) -> None:
+        w = self._window
+        self._add(
+            "Report",
+            [
+                Command("Write report …", w.exports.choose_report, Standard.Print,
+                        "A PDF that a reviewer can retrace"),
+                Command("Export map …", w.exports.choose_map, "",
+                        "The map that is shown, as PNG, SVG or CSV"),
+            ],
+        )  # fmt: skip
+
+    def _help(self) -> None:
+        w = self._window
+        self._add(
+            "Help",
+            [
+                Command("From an empty room to a report", lambda: w.show_page(w.guide),
+                        Standard.HelpContents, "Step by step"),
+                Command("Cautions", lambda: w.show_page(w.cautions), "",
+                        "What the figures are, and what they are not"),
+                Command("About Lodestead", lambda: w.show_page(w.about), "",
+                        "Version, licence, cautions"),
+            ],
+        )  # fmt: skip
+
+    def _choices(self, menu: QMenu, values: tuple[str, ...], field: str) -> None:
+        group = QActionGroup(menu)
+        chosen = getattr(preferences.load(), field)
+        for value in values:
+            action = QAction(value, menu, checkable=True, checked=value == chosen)
+            action.triggered.connect(lambda _on, v=value: self._prefer(field, v))
+            group.addAction(action)
+            menu.addAction(action)
+
+    # -- following --------------------------------------------------------------
+
+    def refresh(self) -> None:
+        """Mark the unit in use."""
+        unit = self._window.document.layout.settings.flux_density_unit
+        for action in self._units.actions():
+            action.setChecked(action.text() == unit)
+
+    def _on_undo_text(self, text: str) -> None:
+        self._undo.setText(f"Undo: {text}" if text else "Undo")
+        self._undo.setEnabled(bool(text))
+
+    def _on_redo_text(self, text: str) -> None:
+        self._redo.setText(f"Redo: {text}" if text else "Redo")
+        self._redo.setEnabled(bool(text))
+
+    def _fill_recent(self) -> None:
+        self._recent.clear()
+        for name in preferences.load().recent:
+            action = self._recent.addAction(name)
+            action.triggered.connect(lambda _on, n=name: self._open_recent(n))
+        self._recent.setEnabled(not self._recent.isEmpty())
+
+    def remember_geometry(self) -> None:
+        """Keep size and place of the window for the next time."""
+        state = bytes(self._window.saveGeometry().toBase64().data()).decode("ascii")
+        preferences.save(msgspec.structs.replace(preferences.load(), geometry=state))
+
+    # -- doing ------------------------------------------------------------------
+
+    def open_dropped(self, names: list[str]) -> None:
+        """Open a dropped layout or schedule; place a dropped drawing."""
+        for name in names[:1]:
+            path = Path(name)
+            if path.suffix.lower() in (".json", ".csv"):
+                self._window.files.open(path)
+            else:
+                with self._window.messages.shown():
+                    place_backing_file(self._window.document, path)
+
+    def _open_recent(self, name: str) -> None:
+        if not Path(name).exists():
+            self._window.files.forget(name)
+            raise UserError(f"{name} is not there any more.")
+        self._window.files.open(Path(name))
+
+    def _prefer(self, field: str, value: str) -> None:
+        preferences.save(msgspec.structs.replace(preferences.load(), **{field: value}))
+        self._window.follow_preferences()
+
+    def _set_unit(self, unit: str) -> None:
+        document = self._window.document
+        settings = msgspec.structs.replace(
+            document.committed.settings, flux_density_unit=unit
+        )
+        document.edit(f"Show {unit}", replaced(document.committed, settings))
+        self.refresh()
+
+    def _fit_range(self) -> None:
+        document = self._window.document
+        picture = self._window.drawings.plan.drawing.map_layer.picture
+        if picture is None or picture.largest <= 0:
+            raise UserError("There is no map yet whose range could be fitted.")
+        settings = msgspec.structs.replace(
+            document.committed.settings,
+            map_low=max(picture.smallest, 1e-4 * picture.largest),
+            map_high=picture.largest,
+        )
+        document.edit("Fit the map's range", replaced(document.committed, settings))
+
+    def _select_all(self) -> None:
+        layout = self._window.document.layout
+        self._window.document.select(
+            item.id
+            for items in (
+                layout.rooms, layout.enclosures, layout.equipment, layout.runs,
+                layout.zones, layout.receptors,
+            )
+            for item in items
+        )  # fmt: skip
+
+    def _open_section(self) -> None:
+        document = self._window.document
+        runs = [run.id for run in document.layout.runs if run.id in document.selection]
+        if len(runs) != 1:
+            raise UserError("Select one run to see its section.")
+        self._window.open_section(runs[0])
+
+    def _place_file(self) -> None:
+        name, _ = QFileDialog.getOpenFileName(
+            self._window, "Place backing drawing", "", PICTURES
+        )
+        if name:
+            place_backing_file(self._window.document, Path(name))
+
+    def _calibrate(self) -> None:
+        document = self._window.document
+        drawings = document.layout.backing_drawings
+        chosen = [d for d in drawings if d.id in document.selection] or drawings[-1:]
+        if not chosen:
+            raise UserError("There is no backing drawing to calibrate: place one.")
+        self._window.toolbox.activate(self._window.toolbox.calibrate)
+        self._window.toolbox.calibrate.begin(chosen[0].id)
+
+    def _place_picture(self) -> None:
+        image = QApplication.clipboard().image()
+        if image.isNull():
+            raise UserError("There is no picture on the clipboard: copy one first.")
+        place_backing_picture(self._window.document, image)

@@ -1,0 +1,104 @@
+"""The window: opens, shows the sample's map and margins, and closes."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+from PySide6.QtCore import Qt
+
+from app import preferences, recovery
+from app.document import Document
+from app.files import empty_layout
+from app.main_window import MainWindow
+from app.messages import Messages
+from app.theme import DARK, LIGHT
+from engine import layout_file
+
+SAMPLES = Path(__file__).parents[2] / "sample_layouts"
+
+
+@pytest.fixture
+def settings(monkeypatch, tmp_path):
+    monkeypatch.setattr(preferences, "folder", lambda: tmp_path / "settings")
+    monkeypatch.setattr(recovery, "folder", lambda: tmp_path / "unsaved")
+
+
+@pytest.fixture
+def window(qtbot, settings):
+    made = MainWindow(Document(empty_layout(preferences.Preferences())), Messages())
+    qtbot.addWidget(made, before_close_func=lambda w: w.document.undo_stack.setClean())
+    made.show()
+    return made
+
+
+def open_sample(window: MainWindow, name: str) -> None:
+    path = SAMPLES / f"{name}.json"
+    window.document.open(layout_file.read(path), path)
+    assert window.recompute.wait_until_idle(60)
+
+
+def test_a_sample_opens_with_its_map_and_margins(window):
+    open_sample(window, "small-switch-room")
+    picture = window.drawings.plan.drawing.map_layer.picture
+    assert picture is not None
+    assert not picture.is_coarse
+    assert not picture.is_stale
+    assert window.margins.tile.row is not None
+    assert window.margins.tile.row.state == "below"
+    assert "small-switch-room.json" in window.windowTitle()
+
+
+def test_the_caution_line_always_shows(window):
+    assert "licensed practice decide" in window.margins.caution.text()
+    assert window.margins.caution.isVisible()
+
+
+def test_an_empty_layout_says_what_to_do(window):
+    assert window.hint.text()
+    assert window.margins.empty.isVisible()
+    assert "zone" in window.margins.empty.text()
+
+
+def test_escape_returns_from_a_page_to_the_drawing(window, qtbot):
+    window.show_page(window.guide)
+    qtbot.keyClick(window.guide, Qt.Key.Key_Escape)
+    assert window.pages.currentWidget() is window.drawings
+
+
+def test_escape_leaves_a_tool(window, qtbot):
+    room = window.toolbox.tools[1]
+    window.toolbox.activate(room)
+    window.drawings.take_keyboard()
+    qtbot.keyClick(window.drawings.plan, Qt.Key.Key_Escape)
+    assert window.toolbox.active is window.toolbox.tools[0]
+
+
+def test_both_themes_show(window, qtbot):
+    open_sample(window, "small-switch-room")
+    for theme in (DARK, LIGHT):
+        window.set_theme(theme)
+        qtbot.waitUntil(
+            lambda wanted=theme.window: (
+                window.palette().window().color().name() == wanted
+            )
+        )
+
+
+def test_undo_says_what_it_takes_back(window):
+    open_sample(window, "small-switch-room")
+    window.document.select(["reception"])
+    window.menus._set_unit("mG")
+    assert window.menus._undo.text() == "Undo: Show mG"
+    window.document.undo_stack.undo()
+    assert window.menus._undo.text() == "Undo"
+
+
+@pytest.mark.parametrize("size", [(1024, 576), (1280, 720), (1920, 1080)])
+def test_the_drawing_keeps_its_room(window, size):
+    window.resize(*size)
+    assert window.width() <= size[0]
+    assert window.height() <= size[1]
+    if size[0] >= 1280:
+        assert window.drawings.plan.width() >= 560
+    assert window.drawings.plan.height() >= 280
