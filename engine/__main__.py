@@ -127,11 +127,12 @@ def _assess(asked: argparse.Namespace) -> int:
     layout = read(asked.layout)
     cases = None if asked.case is None else (_case(layout, asked.case),)
     assessment = assess(layout, cases=cases, progress=progress_line())
-    found = remarks(layout, assessment)
+    unit = asked.unit or "µT"
+    found = remarks(layout, assessment, unit=unit)
     if asked.json:
         _print_json(assessed.as_json(assessment, found))
     else:
-        sys.stdout.write(assessed.as_text(assessment, found, asked.unit or "µT"))
+        sys.stdout.write(assessed.as_text(assessment, found, unit))
     return exit_code(assessment)
 
 

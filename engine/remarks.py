@@ -41,7 +41,9 @@ _ORDER = {"blocking": 0, "warning": 1, "note": 2}
 _SAID_ONCE = frozenset({"W09", "W10", "W15"})
 
 
-def remarks(layout: Layout, assessment: Assessment | None = None) -> tuple[Remark, ...]:
+def remarks(
+    layout: Layout, assessment: Assessment | None = None, *, unit: str | None = None
+) -> tuple[Remark, ...]:
     """What is open: everything but the remarks that a person has confirmed.
 
     Parameters
@@ -50,6 +52,8 @@ def remarks(layout: Layout, assessment: Assessment | None = None) -> tuple[Remar
         What is drawn and entered.
     assessment : Assessment, optional
         Its results; without it nothing is said on results.
+    unit : str, optional
+        Of the flux densities in sentences; None: the layout's.
 
     Returns
     -------
@@ -58,17 +62,18 @@ def remarks(layout: Layout, assessment: Assessment | None = None) -> tuple[Remar
     """
     return tuple(
         remark
-        for remark in _all(layout, assessment)
+        for remark in _all(layout, assessment, unit)
         if confirmation(layout, remark) is None
     )
 
 
 def confirmed_remarks(
-    layout: Layout, assessment: Assessment | None = None
+    layout: Layout, assessment: Assessment | None = None, *, unit: str | None = None
 ) -> tuple[tuple[Remark, ConfirmedRemark], ...]:
     """Remarks that a person has looked at and lets stand, with who and when."""
     found = [
-        (remark, confirmation(layout, remark)) for remark in _all(layout, assessment)
+        (remark, confirmation(layout, remark))
+        for remark in _all(layout, assessment, unit)
     ]
     return tuple((remark, by) for remark, by in found if by is not None)
 
@@ -88,16 +93,20 @@ def confirmation(layout: Layout, remark: Remark) -> ConfirmedRemark | None:
     return None
 
 
-def _all(layout: Layout, assessment: Assessment | None) -> list[Remark]:
+def _all(
+    layout: Layout, assessment: Assessment | None, unit: str | None
+) -> list[Remark]:
     found: dict[object, Remark] = {}
-    for remark in _found(layout, assessment):
+    for remark in _found(layout, assessment, unit or layout.settings.flux_density_unit):
         once = remark.code in _SAID_ONCE
         key = (remark.code, remark.items, remark.place) if once else remark
         found.setdefault(key, remark)
     return sorted(found.values(), key=lambda remark: _ORDER[remark.severity])
 
 
-def _found(layout: Layout, assessment: Assessment | None) -> Iterator[Remark]:
+def _found(
+    layout: Layout, assessment: Assessment | None, unit: str
+) -> Iterator[Remark]:
     blocking = layout_faults(layout)
     yield from blocking
     for case in layout.cases:
@@ -110,7 +119,7 @@ def _found(layout: Layout, assessment: Assessment | None) -> Iterator[Remark]:
     for case in layout.cases:
         yield from _of_case(layout, case)
     if assessment is not None:
-        yield from result_remarks(assessment)
+        yield from result_remarks(assessment, unit)
 
 
 def _of_case(layout: Layout, case: LoadCase) -> Iterator[Remark]:

@@ -21,11 +21,11 @@ _NEAR = (
 )
 
 
-def result_remarks(assessment: Assessment) -> Iterator[Remark]:
-    """What is to say on the results of a layout."""
+def result_remarks(assessment: Assessment, unit: str) -> Iterator[Remark]:
+    """What is to say on the results of a layout, flux densities in the unit."""
     yield from _near_fields(assessment)
     for comparison in assessment.comparisons:
-        yield from _reached_by_uncertainty(assessment, comparison)
+        yield from _reached_by_uncertainty(assessment, comparison, unit)
         yield from _rounding(assessment, comparison)
 
 
@@ -63,7 +63,7 @@ def _near_fields(assessment: Assessment) -> Iterator[Remark]:
 
 
 def _reached_by_uncertainty(
-    assessment: Assessment, comparison: Comparison
+    assessment: Assessment, comparison: Comparison, unit: str
 ) -> Iterator[Remark]:
     """W20: the declared uncertainty reaches over the level."""
     if comparison.state not in ("below, U reaches", "above, U reaches"):
@@ -72,7 +72,6 @@ def _reached_by_uncertainty(
     side = "below" if comparison.state.startswith("below") else "above"
     amount = ""
     if comparison.uncertainty is not None:
-        unit = assessment.layout.settings.flux_density_unit
         amount = f" of {flux_density_text(comparison.uncertainty, unit)}"
     yield Remark(
         "W20",

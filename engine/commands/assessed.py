@@ -10,7 +10,14 @@ import msgspec
 from engine import __version__, units
 from engine.decisions import counts, worst_comparisons
 from engine.faults import Remark
-from engine.results import STATES, Assessment, Comparison, Maximum, PlaceDetails
+from engine.results import (
+    STATES,
+    Assessment,
+    Comparison,
+    Maximum,
+    PlaceDetails,
+    ReceptorField,
+)
 
 CAUTION = (
     "Calculated from entered data, not measured. Reference levels were entered by the "
@@ -34,11 +41,7 @@ def as_text(assessment: Assessment, remarks: Sequence[Remark], unit: str) -> str
         place = ", ".join(f"{c:g}" for c in receptor.receptor.at)
         lines += ["", f"Receptor {receptor.receptor.title} at ({place}) m"]
         for field in receptor.fields:
-            lines.append(
-                f"  {names[field.case]}: {_field_text(field.ac, field.dc, unit)}"
-                if not field.reason
-                else f"  {names[field.case]}: {field.reason}"
-            )
+            lines.append(f"  {names[field.case]}: {_field_text(field, unit)}")
             if field.measured_ratio is not None:
                 lines.append(f"    measured / calculated = {field.measured_ratio:.2f}")
         for comparison in receptor.comparisons:
@@ -62,21 +65,31 @@ def _names(assessment: Assessment) -> dict[str, str]:
     return names
 
 
-def _field_text(ac: float | None, dc: float | None, unit: str) -> str:
+def _field_text(field: ReceptorField, unit: str) -> str:
+    if field.reason:
+        return field.reason
     parts = []
-    if ac is not None:
-        parts.append(f"{units.flux_density_text(ac, unit)} (AC, RMS)")
-    if dc is not None:
-        parts.append(f"{units.flux_density_text(dc, unit)} (0 Hz)")
-    return ", ".join(parts) or "no current"
+    if field.ac is not None:
+        parts.append(f"{units.flux_density_text(field.ac, unit)} (AC, RMS)")
+    if field.dc is not None:
+        parts.append(f"{units.flux_density_text(field.dc, unit)} (0 Hz)")
+    text = ", ".join(parts) or "no current"
+    if field.near_field:
+        text += "; near field, even current assumed"
+    if field.is_bound:
+        text += f"; upper bound: {field.bound_reason}"
+    return text
 
 
 def _maximum_text(maximum: Maximum, names: dict[str, str], unit: str) -> str:
     value = units.flux_density_text(maximum.value, unit)
-    return (
+    text = (
         f"  {names[maximum.case]}: largest {maximum.kind} value {value}"
         f" {_place_text(maximum.details)}"
     )
+    if maximum.reason:
+        text += "; not that of a real room, see the blocking remarks"
+    return text
 
 
 def _place_text(details: PlaceDetails) -> str:
@@ -108,6 +121,13 @@ def _comparison_text(c: Comparison, names: dict[str, str], unit: str) -> list[st
     lines = [
         f"{head}{shown} {unit} ± {uncertainty} ({c.kind}), ratio {ratio}: {c.state}"
     ]
+    if c.other_kind_ratio is not None:
+        other = "DC" if c.kind == "AC" else "AC"
+        ratio = units.text_beside(c.other_kind_ratio, 1.0)
+        lines.append(f"    {other} on its own: ratio {ratio}")
+    if c.not_covered:
+        listed = ", ".join(f"{f:g} Hz" for f in c.not_covered)
+        lines.append(f"    not dealt with by the level: {listed}")
     if c.area_above:
         lines.append(f"    area above the level {units.significant(c.area_above)} m²")
     if c.masked_share:
@@ -190,6 +210,7 @@ def as_json(assessment: Assessment, remarks: Sequence[Remark]) -> dict[str, Any]
                         "case": m.case,
                         "kind": m.kind,
                         "value_T": m.value,
+                        "reason": m.reason,
                         **_details_json(m.details),
                     }
                     for m in result.maxima
@@ -211,8 +232,9 @@ def as_json(assessment: Assessment, remarks: Sequence[Remark]) -> dict[str, Any]
                         "dc_T": field.dc,
                         "measured_over_calculated": field.measured_ratio,
                         "near_field": field.near_field,
+                        "upper_bound": field.bound_reason if field.is_bound else "",
                         "by_frequency": {
-                            f"{part.frequency:g}": part.value
+                            f"{part.frequency:.12g}": part.value
                             for part in field.by_frequency
                         },
                     }
@@ -250,6 +272,8 @@ def _comparison_json(c: Comparison) -> dict[str, Any]:
         "value_T": c.value,
         "level_T": c.level_value,
         "ratio": c.ratio,
+        "other_kind_ratio": c.other_kind_ratio,
+        "not_covered_Hz": list(c.not_covered),
         "uncertainty_T": c.uncertainty,
         "uncertainty_ratio": c.uncertainty_ratio,
         "area_above_m2": c.area_above,
@@ -266,7 +290,7 @@ def _details_json(details: PlaceDetails) -> dict[str, Any]:
         "near_field": details.near_field,
         "search_step_m": details.step,
         "upper_bound": details.bound_reason if details.is_bound else "",
-        "by_frequency": {f"{p.frequency:g}": p.value for p in details.by_frequency},
+        "by_frequency": {f"{p.frequency:.12g}": p.value for p in details.by_frequency},
         "contributions": [
             {"circuit": c.circuit, "share_T": c.share, "without_T": c.without}
             for c in details.contributions

@@ -139,7 +139,8 @@ def _point_json(value: PointValue) -> dict[str, Any]:
         "resultant_T": value.resultant,
         "peak_T": value.peak,
         "by_frequency": {
-            f"{frequency:g}": _frequency_json(part)
+            # Frequencies are told apart to a millionth of a hertz.
+            f"{frequency:.12g}": _frequency_json(part)
             for frequency, part in value.by_frequency.items()
         },
     }
@@ -189,7 +190,7 @@ def _frequency_text(frequency: float, part: FrequencyValue, unit: str) -> str:
     def text(tesla: float) -> str:
         return units.significant(units.in_unit(tesla, unit), 5)
 
-    line = f"    {frequency:g} Hz: resultant {text(part.resultant)} {unit}"
+    line = f"    {frequency:.12g} Hz: resultant {text(part.resultant)} {unit}"
     if part.components is None or part.semi_major is None or part.semi_minor is None:
         return line + " (largest over the unknown phase relation)"
     if frequency == 0:

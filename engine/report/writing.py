@@ -77,7 +77,7 @@ def write_report(
         drawn = plan(layout, ())
     content = report_pdf(
         assessment,
-        remarks=remarks(layout, assessment),
+        remarks=remarks(layout, assessment, unit=shown),
         maps=maps,
         plan=drawn,
         unit=shown,

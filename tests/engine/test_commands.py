@@ -142,3 +142,33 @@ def test_a_map_of_another_kind_is_refused(tmp_path):
 def test_a_report_that_cannot_be_written_says_so(tmp_path):
     message = run("report", SMALL, tmp_path / "no folder" / "r.pdf", code=2)
     assert "r.pdf" in message
+
+
+def test_assess_prints_one_unit_only():
+    text = run("assess", SAMPLES / "imaging-corridor.json", code=1)
+    assert "uncertainty U of" in text
+    assert " mG" not in text
+    text = run("assess", SAMPLES / "imaging-corridor.json", "--unit", "mG", code=1)
+    assert "µT" not in text
+
+
+def test_assess_says_what_direct_current_comes_to_on_its_own():
+    name = SAMPLES / "battery-laboratory.json"
+    text = run("assess", name, code=1)
+    assert "    DC on its own: ratio " in text
+    told = json.loads(run("assess", name, "--json", code=1))
+    both = [c for c in told["worst"] if c["other_kind_ratio"] is not None]
+    assert both
+    assert all(c["other_kind_ratio"] <= c["ratio"] for c in both)
+
+
+def test_frequencies_that_differ_little_are_told_apart(tmp_path):
+    rows = [
+        f"W{k},C,L1,{f},1,0,{k},0,{z}"
+        for k, f in enumerate((100_000.25, 100_000.5))
+        for z in (-10, 10)
+    ]
+    source = tmp_path / "near.csv"
+    source.write_text(HEADER + "\n".join(rows) + "\n", encoding="utf-8")
+    (point,) = json.loads(run("field", source, "--at=5,0,0", "--json"))["points"]
+    assert list(point["by_frequency"]) == ["100000.25", "100000.5"]
