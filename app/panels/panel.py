@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from html import escape
 
-from PySide6.QtCore import QEvent, QLocale, Qt
-from PySide6.QtGui import QShowEvent
+from PySide6.QtCore import QEvent, QLocale
+from PySide6.QtGui import QShowEvent, Qt
 from PySide6.QtWidgets import QFrame, QLabel, QScrollArea, QVBoxLayout, QWidget
 
 from app.document import Document
@@ -20,7 +20,7 @@ def decimal_sign() -> str:
 
 def plain_tip(text: str) -> str:
     """A tooltip that shows what users typed as it is, never as markup."""
-    if not Qt.mightBeRichText(text):
+    if not any(sign in text for sign in "<&"):
         return text
     return f"<qt>{escape(text)}</qt>".replace("\n", "<br>")
 
