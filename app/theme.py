@@ -9,6 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from PySide6.QtGui import QColor, QPalette
+from PySide6.QtWidgets import QApplication
 
 #: Font sizes and the step of all spacing. [logical pixels]
 SMALL, BODY, TITLE = 11, 13, 16
@@ -111,6 +112,25 @@ def qt_palette(theme: Theme) -> QPalette:
     ):
         palette.setColor(QPalette.ColorGroup.Disabled, role, QColor(theme.muted))
     return palette
+
+
+#: Controls whose outline has to be seen against window and panel.
+_OUTLINED = (
+    "QAbstractSpinBox", "QCheckBox", "QComboBox", "QGroupBox", "QLineEdit",
+    "QPlainTextEdit", "QPushButton", "QRadioButton", "QTextEdit",
+)  # fmt: skip
+
+
+def apply(theme: Theme) -> None:
+    """Show the application in a theme."""
+    palette = qt_palette(theme)
+    QApplication.setPalette(palette)
+    # The style draws outlines as the window's colour darkened to 1/1.4, which cannot
+    # be seen on dark windows: these controls are told of a window that suits.
+    outlined = QPalette(palette)
+    outlined.setColor(QPalette.ColorRole.Window, QColor(theme.line).lighter(140))
+    for name in _OUTLINED:
+        QApplication.setPalette(outlined, name)
 
 
 def contrast(first: str, second: str) -> float:

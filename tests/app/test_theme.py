@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import pytest
+from PySide6.QtWidgets import QLineEdit, QStyleFactory
 
-from app.theme import DARK, LIGHT, Theme, contrast
+from app.theme import DARK, LIGHT, Theme, apply, contrast
 
 BACKGROUNDS = ("paper", "window", "panel")
 TEXTS = ("text", "muted", "accent", "warning", "below", "above", "not_evaluable")
@@ -31,3 +32,15 @@ def test_lines_that_carry_meaning_stand_out(theme: Theme, background: str):
 @pytest.mark.parametrize("theme", [LIGHT, DARK], ids=lambda theme: theme.name)
 def test_text_on_the_accent_can_be_read(theme: Theme):
     assert contrast(theme.on_accent, theme.accent) >= 4.5
+
+
+@pytest.mark.parametrize("theme", [LIGHT, DARK], ids=lambda theme: theme.name)
+def test_the_outline_of_a_field_stands_out(qtbot, theme: Theme):
+    apply(theme)
+    field = QLineEdit()
+    qtbot.addWidget(field)
+    field.setStyle(QStyleFactory.create("Fusion"))
+    field.resize(80, 24)
+    image = field.grab().toImage()
+    edge = image.pixelColor(40, 0).name()
+    assert contrast(edge, theme.window) >= 3.0
