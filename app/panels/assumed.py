@@ -56,6 +56,7 @@ class AssumptionsPage(QWidget):
     def show_assumptions(self, layout: Layout, assumed: tuple[Assumption, ...]) -> None:
         """Show the assumptions of a layout."""
         titles = {item.id: item.title for item in layout.items()}
+        titles[layout.settings.id] = "the whole layout"
         self.table.set_rows([_Row(titles.get(a.item, a.item), a) for a in assumed])
         self.none.setVisible(not assumed)
         self.table.setVisible(bool(assumed))

@@ -8,7 +8,6 @@ from typing import Any
 from PySide6.QtCore import QEvent
 from PySide6.QtWidgets import (
     QHBoxLayout,
-    QPushButton,
     QTabWidget,
     QVBoxLayout,
     QWidget,
@@ -25,7 +24,7 @@ from app.panels.circuit_form import (
     CircuitForm,
 )
 from app.panels.origin import OriginMark, assumed_fields
-from app.panels.panel import Panel, Words, column, decimal_sign, scrolled
+from app.panels.panel import Panel, Words, button, column, decimal_sign, scrolled
 from app.panels.spectrum import SpectrumEditor
 from app.panels.table import Column, RowsTable
 from app.theme import STEP
@@ -156,10 +155,7 @@ class CircuitsPanel(Panel):
             ("Duplicate", "Add the chosen circuit once more", self.duplicate),
             ("Remove", "Remove the chosen circuit", self.remove),
         ):
-            button = QPushButton(title)
-            button.setToolTip(tip)
-            button.clicked.connect(slot)
-            row.addWidget(button)
+            row.addWidget(button(title, tip, slot))
         row.addStretch(1)
         return row
 

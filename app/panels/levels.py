@@ -13,7 +13,6 @@ from PySide6.QtCore import QEvent
 from PySide6.QtWidgets import (
     QFormLayout,
     QHBoxLayout,
-    QPushButton,
     QVBoxLayout,
     QWidget,
 )
@@ -27,7 +26,7 @@ from app.panels.level_table import LevelTableEditor
 from app.panels.level_uses import LevelUses
 from app.panels.library_menu import LevelLibraryButton
 from app.panels.origin import OriginMark, assumed_fields
-from app.panels.panel import Panel, Words, column, scrolled
+from app.panels.panel import Panel, Words, button, column, scrolled
 from app.panels.table import Column, RowsTable
 from app.theme import STEP
 from engine.criteria import ReferenceLevel
@@ -168,10 +167,7 @@ class LevelsPanel(Panel):
             ("Duplicate", "Add the chosen level once more", self.duplicate),
             ("Remove", "Remove the chosen level, also from its places", self.remove),
         ):
-            button = QPushButton(title)
-            button.setToolTip(tip)
-            button.clicked.connect(slot)
-            row.addWidget(button)
+            row.addWidget(button(title, tip, slot))
         row.addWidget(self.library)
         row.addStretch(1)
         return row

@@ -25,7 +25,7 @@ from app.panels.case_rows import CaseRow
 from app.panels.field import Choice, ValueField
 from app.panels.measured import MeasuredForm
 from app.panels.origin import OriginMark, assumed_fields
-from app.panels.panel import Panel, Words, column, scrolled
+from app.panels.panel import Panel, Words, button, column, scrolled
 from app.panels.spectrum import SpectrumEditor
 from app.panels.table import RowsTable
 from app.theme import STEP
@@ -166,10 +166,7 @@ class LoadCasesPanel(Panel):
             ("Remove", "Remove the chosen load case", self.remove),
             ("Show", "Show the field of the chosen load case", self.show_in_drawing),
         ):
-            button = QPushButton(title)
-            button.setToolTip(tip)
-            button.clicked.connect(slot)
-            row.addWidget(button)
+            row.addWidget(button(title, tip, slot))
         row.addStretch(1)
         return row
 

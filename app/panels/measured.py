@@ -101,7 +101,9 @@ class MeasuredForm(QWidget):
         for label, field in self.lines.items():
             self._form.setRowVisible(field, label in labels)
             field.set_value(found.get(label))
-        self._form.setRowVisible(self.neutral, back is not None)
+        self._form.setRowVisible(
+            self.neutral, back is not None or survey.neutral is not None
+        )
         self.neutral.set_value(survey.neutral)
         self.net.set_value(survey.net)
         shown = replace(circuit, demand=survey)

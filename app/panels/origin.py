@@ -254,14 +254,20 @@ class OriginMark(QToolButton):
     def show_value(self, item: Item, field: str, assumed: bool) -> None:
         """Stand for the value `field` of `item`."""
         self._item, self._field, self._is_assumed = item.id, field, assumed
-        origin = origin_text(self._document.layout, origin_of(item, field))
-        self.setText("A" if assumed else "•")
+        stated = origin_of(item, field)
         words = field_words(field)
-        self.setAccessibleName(f"Origin of {words}: {origin}")
         if assumed:
-            origin += " until its origin is stated" if origin == "assumed" else ""
-        said = f"{words.capitalize()}: {origin}. Press to state its origin."
-        self.setToolTip(plain_tip(said))
+            text = "A"
+            said = f"{origin_text(self._document.layout, stated)}; nothing backs it yet"
+        elif stated is not None:
+            text, said = "•", origin_text(self._document.layout, stated)
+        else:
+            text, said = "", "nothing is entered that needs an origin"
+        self.setText(text)
+        self.setEnabled(bool(text))
+        self.setAccessibleName(f"Origin of {words}: {said}")
+        press = " Press to state its origin." if text else ""
+        self.setToolTip(plain_tip(f"{words.capitalize()}: {said}.{press}"))
         self._colour()
 
     def open_form(self) -> None:

@@ -2,11 +2,20 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from html import escape
 
 from PySide6.QtCore import QEvent, QLocale
 from PySide6.QtGui import QShowEvent, Qt
-from PySide6.QtWidgets import QFrame, QLabel, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QFrame,
+    QLabel,
+    QPushButton,
+    QScrollArea,
+    QSizePolicy,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.document import Document
 from app.theme import SMALL, STEP, TITLE, theme_for
@@ -106,6 +115,16 @@ class Words(QLabel):
         # Setting a style sheet changes the palette, which would come back here.
         if wanted != self.styleSheet():
             self.setStyleSheet(wanted)
+
+
+def button(title: str, tip: str, press: Callable[[], None]) -> QPushButton:
+    """A button no wider than its words need, so that a row of them fits a panel."""
+    made = QPushButton(title)
+    made.setToolTip(tip)
+    made.setMinimumWidth(made.fontMetrics().horizontalAdvance(title) + 5 * STEP)
+    made.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Fixed)
+    made.clicked.connect(lambda _checked=False: press())
+    return made
 
 
 def scrolled(content: QWidget) -> QScrollArea:

@@ -203,7 +203,7 @@ class SpectrumEditor(QWidget):
                         brush=pg.mkBrush(theme.accent if known else None),
                     )
                 )
-        for name, title in (("bottom", "Hz"), ("left", "% of fundamental")):
+        for name, title in (("bottom", "Hz"), ("left", "%")):
             axis = item.getAxis(name)
             axis.setPen(pg.mkPen(theme.line))
             axis.setTextPen(pg.mkPen(theme.text))
