@@ -20,11 +20,13 @@ from engine.exchange.schedule_conductors import (
     MOST_VERTICES,
     ListedConductor,
     StatedCurrent,
+    bend,
     listed_conductors,
 )
 from engine.exchange.schedule_text import MAX_BYTES, rows
 from engine.items import Point3, SourceDocument, TitleData, ValueOrigin
 from engine.layout import Layout, Settings
+from engine.routes import SHARPEST_BEND
 from engine.runs import FreeSection, Joint, Round, Run, Slot, SlotEnd, SlotLoad
 from engine.value_faults import told
 
@@ -238,7 +240,7 @@ def _origin(field: str, page: str = "") -> ValueOrigin:
 def _runs(
     conductor: ListedConductor, loads: Sequence[SlotLoad], taken: set[str]
 ) -> Iterator[Run]:
-    """The conductor as one run, or as several where it has too many vertices."""
+    """The conductor as one run, or as several: too many vertices, or sharp bends."""
     page = f"lines {conductor.first_line} to {conductor.last_line}"
     origins = [_origin("route", page)]
     if conductor.shape is not None:
@@ -250,7 +252,7 @@ def _runs(
         shape=conductor.shape or Round(),
         loads=tuple(loads),
     )
-    for first in range(0, len(conductor.path) - 1, MOST_VERTICES - 1):
+    for route in _routes(conductor.path):
         run_id = readable_id(conductor.name, taken)
         taken.add(run_id)
         yield Run(
@@ -258,9 +260,23 @@ def _runs(
             name=conductor.name,
             origins=tuple(origins),
             kind="free conductor",
-            route=conductor.path[first : first + MOST_VERTICES],
+            route=route,
             section=FreeSection(slots=(slot,)),
         )
+
+
+def _routes(path: tuple[Point3, ...]) -> Iterator[tuple[Point3, ...]]:
+    """The path in parts that a run can take; a thin wire may bend as it likes."""
+    first = 0
+    for i in range(1, len(path)):
+        is_last = i == len(path) - 1
+        if (
+            is_last
+            or i - first == MOST_VERTICES - 1
+            or bend(*path[i - 1 : i + 2]) > SHARPEST_BEND
+        ):
+            yield path[first : i + 1]
+            first = i
 
 
 def _joints(runs: Sequence[Run], taken: set[str]) -> Iterator[Joint]:

@@ -6,16 +6,21 @@ A conductor may come again at another frequency, with the same vertices and size
 from __future__ import annotations
 
 import itertools
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from engine.exchange.schedule_text import Row
 from engine.items import Point3
+from engine.routes import SHARPEST_BEND
 from engine.runs import Bar, Round
 from engine.value_faults import told
 
 #: Of one run; a round conductor with more becomes several runs.
 MOST_VERTICES = 500
+
+#: A bend this near to 180° turns straight back. [degrees]
+_STRAIGHT_BACK = 1e-4
 
 
 @dataclass(frozen=True)
@@ -63,6 +68,7 @@ def listed_conductors(schedule: Sequence[Row], opening: str) -> list[ListedCondu
             )
             continue
         faults.extend(_block_faults(block))
+        faults.extend(_bend_faults(block))
         if earlier:
             faults.extend(_repeat_faults(next(iter(earlier.values())), block))
         earlier[frequency] = block
@@ -99,6 +105,37 @@ def _block_faults(block: Sequence[Row]) -> Iterator[str]:
                     f"line {row.line}: {column} differs from line {first.line}, the "
                     f'first of conductor "{row.conductor}" at {row.frequency:g} Hz'
                 )
+
+
+def bend(before: Point3, at: Point3, after: Point3) -> float:
+    """Change of direction at a vertex; 0 beside a leg without length. [degrees]"""
+    there = [b - a for a, b in zip(before, at, strict=True)]
+    on = [b - a for a, b in zip(at, after, strict=True)]
+    across = math.hypot(
+        there[1] * on[2] - there[2] * on[1],
+        there[2] * on[0] - there[0] * on[2],
+        there[0] * on[1] - there[1] * on[0],
+    )
+    return math.degrees(
+        math.atan2(across, sum(a * b for a, b in zip(there, on, strict=True)))
+    )
+
+
+def _bend_faults(block: Sequence[Row]) -> Iterator[str]:
+    """Bends that a conductor cannot make: back along itself, or too sharp for a bar."""
+    for before, row, after in zip(block, block[1:], block[2:], strict=False):
+        angle = bend(before.at, row.at, after.at)
+        if angle > 180.0 - _STRAIGHT_BACK:
+            yield (
+                f'line {after.line}: conductor "{row.conductor}" goes straight back '
+                f"from line {row.line}; remove the vertex, or divide the conductor"
+            )
+        elif isinstance(row.shape, Bar) and angle > SHARPEST_BEND + 1e-6:
+            yield (
+                f'line {row.line}: the bar "{row.conductor}" bends by {angle:.0f}°, '
+                f"more than {SHARPEST_BEND:.0f}°; draw it as two bends, or divide it "
+                "into two conductors"
+            )
 
 
 def _repeat_faults(first: Sequence[Row], again: Sequence[Row]) -> Iterator[str]:

@@ -486,3 +486,27 @@ def test_limits_are_those_of_the_layout() -> None:
     assert most(Layout, "runs") == schedule._MOST_RUNS
     assert most(Layout, "circuits") == schedule._MOST_CIRCUITS
     assert most(Joint, "ends") == schedule._MOST_ENDS
+
+
+def test_a_thin_wire_may_bend_as_sharply_as_it_likes() -> None:
+    corners = [(0, 0, 0), (4, 0, 0), (0, 0.5, 0.2), (3, 0.4, 1), (0, 0, 0)]
+    rows = [f"a,c,L1,50,7,30,{x},{y},{z}" for x, y, z in corners]
+    layout = layout_of("\n".join([NEEDED, *rows]))
+    made = conductors(layout)
+    assert {c.role for c in made} == {"run"}
+    drawn = [tuple(v) for c in made for v in c.path[:-1].tolist()]
+    assert drawn == corners[:-1]
+    assert set(flowing(layout).values()) == {cmath.rect(7, math.radians(30))}
+    phasors = case_phasors(layout, layout.cases[0])
+    for node in nodes(layout):
+        assert abs(load_current(phasors, node.inflow)).max() < 1e-12
+
+
+def test_turning_straight_back_and_sharp_bars_name_their_line() -> None:
+    twice = PAIR.replace("back,", "go,lamp,L1,50,10,0,0,0,0\nback,", 1)
+    assert "line 4" in told(twice)
+    assert "goes straight back from line 3" in told(twice)
+    bar = "\n".join(
+        f"a,c,L1,50,1,0,{x},{y},0,,0.1,0.01," for x, y in ((0, 0), (4, 0), (0, 1))
+    )
+    assert 'line 3: the bar "a" bends by 166°' in told(f"{HEADER}\n{bar}")
