@@ -16,6 +16,7 @@ from PySide6.QtWidgets import (
     QHBoxLayout,
     QPlainTextEdit,
     QPushButton,
+    QSizePolicy,
     QWidget,
 )
 
@@ -31,7 +32,7 @@ from app.panels.kinds import (
     YesNo,
     mixed_text,
 )
-from app.panels.panel import Words, column
+from app.panels.panel import Words, column, plain_tip
 from app.theme import STEP
 from engine.entered_values import part_at, with_part
 from engine.errors import UserError
@@ -231,7 +232,9 @@ class SeveralEditor(_Reasoned):
         self._options, self.boxes = options, []
         for place, (_, words) in enumerate(options):
             box = QCheckBox(words.replace("&", "&&"))
-            box.setToolTip(self.toolTip())
+            box.setToolTip(plain_tip(f"{words}: {self.toolTip()}"))
+            # A long name is cut short rather than widening the panel.
+            box.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
             box.setAccessibleName(f"{self._name}: {words}")
             box.clicked.connect(self._on_clicked)
             self._box.insertWidget(place, box)

@@ -2,21 +2,30 @@
 
 from __future__ import annotations
 
-from typing import get_args
+from typing import Any, get_args
+
+from msgspec.structs import replace
 
 from app.panels.kinds import (
     DEGREES,
     HERTZ,
     Amount,
+    Column,
     Distance,
     FluxDensity,
     Lines,
+    Rows,
     Words,
     one_of,
 )
 from app.panels.parts import Group, Part
 from app.panels.place_forms import uncertainty_parts
+from engine.edits import checked, unused_id
+from engine.entered_values import with_value
+from engine.items import Item
 from engine.layout import FluxDensityUnit, Layout
+from engine.new_sources import STOREY_HEIGHT
+from engine.places import Storey
 
 _TITLE = (
     Part("project", "Project", Words(), "Printed in the title block"),
@@ -89,12 +98,53 @@ _RULE = (
 )
 
 
+def _with_storeys(layout: Layout, _items: tuple[Item, ...], rows: Any) -> Layout:
+    return replace(layout, storeys=tuple(checked(storey) for storey in rows))
+
+
+def _next_storey(layout: Layout, rows: tuple[Any, ...], at: int) -> Storey:
+    """A storey above the chosen one."""
+    number = len(rows) + 1
+    level = rows[at].floor_level + STOREY_HEIGHT if rows else 0.0
+    return Storey(
+        id=unused_id(layout, f"storey-{number}"),
+        name=f"Storey {number}",
+        floor_level=round(level, 5),
+    )
+
+
+_STOREYS = Part(
+    "storeys",
+    "Storeys",
+    Rows(
+        (
+            Column("name", "name", Words(), "Name of the storey", 34),
+            Column(
+                "floor_level",
+                "floor",
+                Distance(),
+                "Level of its floor above the datum",
+                22,
+                lambda storey, level: with_value(storey, "floor_level", level),
+            ),
+        ),
+        _next_storey,
+        0,
+        "storey",
+    ),
+    "Storeys of the building by the level of their floor",
+    read=lambda layout, _item: layout.storeys,
+    change=_with_storeys,
+)
+
+
 def layout_groups(layout: Layout) -> tuple[Group, ...]:
     """Everything about the layout as a whole."""
     title, settings = (layout.title,), (layout.settings,)
     return (
         Group("Title block", title, _TITLE),
         Group("Units and paper", settings, _UNITS),
+        Group("Building", settings, (_STOREYS,)),
         Group("Maps", settings, _MAP),
         Group("Uncertainty and decision", settings, (*uncertainty_parts(), *_RULE)),
     )

@@ -92,4 +92,4 @@ def _terms_text(part: SectionCurrents) -> str:
         name = f"{circuit} {label}" if several else label
         shown.append(f"{name} {phasor_text(value, decimal_sign())}")
     more = len(part.terms) - len(shown)
-    return "\n".join(shown) + (f"\nand {more} more" if more else "")
+    return " · ".join(shown) + (f" and {more} more" if more else "")

@@ -10,7 +10,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Any
 
-from app.panels.kinds import Kind, Terms
+from app.panels.kinds import Kind, Rows, Terms
 from engine.edits import checked, replaced
 from engine.entered_values import value_at, with_value
 from engine.items import Item
@@ -87,7 +87,7 @@ class Part:
         text = " ".join(self.kind.text(value, terms).split())
         if not text:
             return f"Clear the {what} of {called(items)}"
-        if len(text) > _LONGEST:
+        if len(text) > _LONGEST or isinstance(self.kind, Rows):
             return f"Change the {what} of {called(items)}"
         return f"Set the {what} of {called(items)} to {text}"
 

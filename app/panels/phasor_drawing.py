@@ -22,7 +22,8 @@ class PhasorDrawing(QWidget):
     def __init__(self) -> None:
         super().__init__()
         self._currents: SectionCurrents | None = None
-        self.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Fixed)
+        self.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Maximum)
+        self.setMinimumHeight(28 * STEP)
         self.setAccessibleName("Phasors of the currents in the section")
         self.setToolTip(
             "RMS phasors in amperes, along the route; 0° to the right, leading "
@@ -30,7 +31,7 @@ class PhasorDrawing(QWidget):
         )
 
     def sizeHint(self) -> QSize:
-        return QSize(54 * STEP, 46 * STEP)
+        return QSize(44 * STEP, 42 * STEP)
 
     def show_currents(self, currents: SectionCurrents | None) -> None:
         """Show the currents of one component, or none."""

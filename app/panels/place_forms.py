@@ -188,7 +188,7 @@ def _uncertainty(items: tuple[Any, ...]) -> tuple[Part, ...]:
     toggle = Part(
         "own uncertainty",
         "Uncertainty",
-        YesNo("Its own, not the layout's"),
+        YesNo("Of its own"),
         "Whether an uncertainty other than the layout's holds here",
         "use of an own uncertainty",
         lambda _layout, item: getattr(item, "uncertainty", None) is not None,

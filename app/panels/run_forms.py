@@ -25,11 +25,13 @@ from engine.circuits import Circuit
 from engine.edits import checked, replaced
 from engine.entered_values import with_value
 from engine.equipment import Board, ConductorLoop, Transformer
+from engine.errors import UserError
 from engine.formations import circuits_of
 from engine.items import Item
 from engine.layout import Layout
 from engine.origins import restated
 from engine.runs import Connection, Run, RunKind, SlotEnd
+from engine.sections import slots
 from engine.shown_currents import current_text
 from engine.typed_currents import typed_current
 from engine.vertices import without_vertex
@@ -241,9 +243,19 @@ def _ends(layout: Layout) -> list[Option]:
     return [(i.id, i.title) for i in (*layout.runs, *layout.equipment)]
 
 
-def _next_end(layout: Layout, rows: tuple[Any, ...], _at: int) -> SlotEnd:
-    last: SlotEnd = rows[-1]
-    return replace(last, slot="?")
+def _next_end(layout: Layout, rows: tuple[Any, ...], at: int) -> SlotEnd:
+    """The next conductor of the same end that does not meet here yet."""
+    chosen: SlotEnd = rows[at]
+    run = layout.by_id().get(chosen.item)
+    names = [slot.name for slot in slots(run.section)] if isinstance(run, Run) else []
+    for name in names:
+        end = replace(chosen, slot=name)
+        if end not in rows:
+            return end
+    raise UserError(
+        "All conductors of that end meet here already: choose the row of another item, "
+        "or change the item of one row."
+    )
 
 
 JOINT = (

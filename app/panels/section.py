@@ -103,8 +103,8 @@ class SectionPanel(Panel):
         for widget in (self._work, self._other_end, self._direction):
             widget.setVisible(run is not None)
         self._title.setText(f"Section of {run.title}" if run else "Section")
+        self._tell("" if run else _EMPTY)
         if run is None:
-            self._tell(_EMPTY)
             self.canvas.show_slots((), from_end=False)
             return
         try:
@@ -156,7 +156,7 @@ class SectionPanel(Panel):
         picture.addWidget(self.canvas, 1)
         picture.addWidget(self.net_current)
         right = QWidget()
-        right.setMinimumWidth(72 * STEP)
+        right.setMinimumWidth(61 * STEP)
         side = column(right)
         side.addWidget(self.acts)
         side.addWidget(scrolled(self.form), 1)

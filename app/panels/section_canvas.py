@@ -6,7 +6,6 @@ Looking from the other end mirrors the picture, never the data.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from math import cos, hypot, radians, sin
 
 from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
@@ -37,7 +36,8 @@ _MARGIN = 14 * STEP
 #: How far the pointer goes before a press becomes a drag. [logical pixels]
 _DRAG = 4.0
 
-Places = Mapping[str, tuple[float, float]]
+#: Keys that lead to the next conductor.
+_FORWARD = (Qt.Key.Key_Right, Qt.Key.Key_Down)
 
 
 class SectionCanvas(QWidget):
@@ -65,13 +65,14 @@ class SectionCanvas(QWidget):
 
     def __init__(self) -> None:
         super().__init__()
-        self.setMinimumSize(240, 180)
+        self.setMinimumSize(240, 120)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMouseTracking(True)
         self.setAccessibleName("Section across the run")
         self.setToolTip(
-            "Click a conductor, Shift adds; drag or use the arrow keys to move it in "
-            "steps of 5 mm; the wheel zooms, Home fits"
+            "Click a conductor, Shift adds, Ctrl with arrow keys goes on to the next; "
+            "drag or use the arrow keys to move it in steps of 5 mm; the wheel zooms, "
+            "Home fits"
         )
         self.catches = True
         self._slots: tuple[Slot, ...] = ()
@@ -111,6 +112,9 @@ class SectionCanvas(QWidget):
         known = names & {slot.name for slot in self._slots}
         if known != self._names:
             self._names = known
+            self.setAccessibleDescription(
+                f"Chosen: {', '.join(sorted(known)) or 'none'}"
+            )
             self.update()
             self.chosen.emit(known)
 
@@ -248,7 +252,10 @@ class SectionCanvas(QWidget):
             Qt.Key.Key_Down: (0.0, -1.0),
         }
         step = steps.get(Qt.Key(event.key()))
-        if step is not None and self._names:
+        control = event.modifiers() & Qt.KeyboardModifier.ControlModifier
+        if step is not None and (control or not self._names):
+            self._choose_beside(1 if event.key() in _FORWARD else -1, event)
+        elif step is not None:
             self.nudged.emit(GRID * step[0], GRID * step[1])
         elif event.key() == Qt.Key.Key_Escape and self._is_dragging:
             self._end_drag()
@@ -261,6 +268,18 @@ class SectionCanvas(QWidget):
             self.choose(frozenset(slot.name for slot in self._slots))
         else:
             super().keyPressEvent(event)
+
+    def _choose_beside(self, step: int, event: QKeyEvent) -> None:
+        """Choose the conductor beside the chosen ones, as they are seen."""
+        seen = sorted(self._slots, key=lambda s: (self._sign * s.u, -s.v))
+        names = [slot.name for slot in seen]
+        if not names:
+            return
+        places = [i for i, name in enumerate(names) if name in self._names]
+        at = (max(places) if step > 0 else min(places)) + step if places else 0
+        chosen = frozenset({names[at % len(names)]})
+        adds = event.modifiers() & Qt.KeyboardModifier.ShiftModifier
+        self.choose(self._names | chosen if adds else chosen)
 
     def _end_drag(self) -> None:
         self._press, self._grabbed, self._from = None, "", {}

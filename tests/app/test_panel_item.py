@@ -143,7 +143,7 @@ def test_a_cell_of_a_table_is_one_step(document, panel):
     model = panel.form.editor("route").table.model
     assert model.setData(model.index(0, 2), "650mm")
     assert item(document, "riser").route[0][2] == 0.65
-    assert document.undo_stack.undoText().startswith("Set the route of F1 riser")
+    assert document.undo_stack.undoText().startswith("Change the route of F1 riser")
     assert not model.setData(model.index(0, 2), "up")
     assert item(document, "riser").route[0][2] == 0.65
 
@@ -181,6 +181,31 @@ def test_nothing_selected_shows_the_layout(document, panel):
     assert document.layout.settings.map_high == 2e-3
     type_in(panel, "uncertainty.relative", "20")
     assert document.layout.settings.uncertainty.relative == 0.2
+
+
+def test_storeys_are_a_table_of_the_layout(document, panel):
+    document.select([])
+    table = panel.form.editor("storeys")
+    before = document.layout.storeys
+    table.table.set_current(len(before) - 1, 0)
+    table.add.click()
+    assert document.layout.storeys[:-1] == before
+    assert document.layout.storeys[-1].floor_level > before[-1].floor_level
+    model = panel.form.editor("storeys").table.model
+    assert model.setData(model.index(len(before), 1), "9.5 m")
+    assert document.layout.storeys[-1].floor_level == 9.5
+    assert document.undo_stack.undoText() == "Change the storeys of the layout"
+
+
+def test_a_joint_takes_conductors_that_are_still_free(document, panel):
+    joint = document.layout.joints[0]
+    few = replace(joint, ends=joint.ends[:2])
+    document.edit("Fewer", replace(document.layout, joints=(few,)))
+    document.select([joint.id])
+    panel.form.editor("ends").add.click()
+    ends = item(document, joint.id).ends
+    assert len(set(ends)) == 3
+    assert ends[2].item == ends[1].item
 
 
 def test_lengths_follow_the_layouts_unit(document, panel):

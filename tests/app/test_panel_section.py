@@ -123,6 +123,26 @@ def test_arrow_keys_move_as_one_sees_it(document, panel):
     assert after.u == pytest.approx(before.u - 0.005)
 
 
+def test_conductors_are_chosen_by_keyboard_as_they_are_seen(panel):
+    QTest.keyClick(panel.canvas, Qt.Key.Key_Right)
+    assert panel.canvas.names == {"L1.1"}
+    control = Qt.KeyboardModifier.ControlModifier
+    QTest.keyClick(panel.canvas, Qt.Key.Key_Right, control)
+    assert panel.canvas.names == {"L2.1"}
+    both = control | Qt.KeyboardModifier.ShiftModifier
+    QTest.keyClick(panel.canvas, Qt.Key.Key_Right, both)
+    assert panel.canvas.names == {"L2.1", "L3.1"}
+
+
+def test_the_view_fits_the_smallest_drawing(panel):
+    assert panel.minimumSizeHint().width() <= 560
+    assert panel.minimumSizeHint().height() <= 360
+
+
+def test_a_hint_goes_when_a_run_is_cut(panel):
+    assert panel.reason.isHidden()
+
+
 def test_two_chosen_conductors_swap(document, panel):
     QTest.mouseClick(panel.canvas, Qt.MouseButton.LeftButton, pos=at(panel, "L1.1"))
     assert not panel.acts.buttons["swap"].isEnabled()
