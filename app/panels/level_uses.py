@@ -11,6 +11,7 @@ from app.panels.panel import Words, column
 from app.theme import STEP
 from engine.criteria import ReferenceLevel
 from engine.layout import Layout
+from engine.places import Receptor, Zone
 
 
 class LevelUses(QWidget):
@@ -34,7 +35,7 @@ class LevelUses(QWidget):
 
     def show_level(self, layout: Layout, level: ReferenceLevel) -> None:
         """Show which places name the level."""
-        places = (*layout.zones, *layout.receptors)
+        places: tuple[Zone | Receptor, ...] = (*layout.zones, *layout.receptors)
         self.list.blockSignals(True)
         self.list.clear()
         for place in places:

@@ -10,6 +10,7 @@ import math
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, replace
 from itertools import pairwise
+from typing import Any
 
 from engine.criteria import (
     LevelPoint,
@@ -130,8 +131,10 @@ def with_frequency(name: str) -> Callable[[Row, str, str], Row]:
     """What enters the frequency that a row calls `name`."""
 
     def enter(row: Row, text: str, decimal: str) -> Row:
-        value = frequency(text, decimal) if text.strip() else None
-        return replace(row, **{name: value})
+        changed: dict[str, Any] = {
+            name: frequency(text, decimal) if text.strip() else None
+        }
+        return replace(row, **changed)
 
     return enter
 

@@ -34,6 +34,7 @@ from engine.edits import added, checked, removed, replaced, unused_id
 from engine.errors import UserError
 from engine.levels import what_is_missing
 from engine.origins import restated
+from engine.places import Receptor, Zone
 
 CATEGORIES: tuple[tuple[str, str], ...] = (
     ("", "not chosen"),
@@ -146,9 +147,10 @@ class LevelsPanel(Panel):
         if level is None:
             return
         layout = self._document.committed
+        assessed: tuple[Zone | Receptor, ...] = (*layout.zones, *layout.receptors)
         places = [
             replace(place, levels=tuple(x for x in place.levels if x != level.id))
-            for place in (*layout.zones, *layout.receptors)
+            for place in assessed
             if level.id in place.levels
         ]
         after = removed(replaced(layout, *places), level.id)

@@ -253,7 +253,7 @@ class LoadCasesPanel(Panel):
         return found
 
     def _row(self) -> CaseRow | None:
-        rows = self.circuits.rows
+        rows: tuple[CaseRow, ...] = self.circuits.rows
         at = max(self.circuits.row, 0)
         return rows[at] if at < len(rows) else None
 

@@ -145,7 +145,8 @@ class RemarksPanel(Panel):
     def remark(self) -> Remark | None:
         """The current remark."""
         item = self.list.currentItem()
-        return None if item is None else item.data(_REMARK)
+        found: Remark | None = None if item is None else item.data(_REMARK)
+        return found
 
     def confirm(self) -> None:
         """Let the current remark stand, in the name that is typed."""

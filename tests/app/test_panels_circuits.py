@@ -3,7 +3,10 @@
 from __future__ import annotations
 
 import pytest
+from msgspec.structs import replace
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QGuiApplication
+from PySide6.QtWidgets import QLineEdit
 
 from app.document import Document
 from app.panels.circuits import CircuitsPanel
@@ -20,6 +23,7 @@ from engine.circuits import (
     Power,
     SpectrumLine,
 )
+from engine.edits import replaced
 from engine.items import ValueOrigin
 from engine.layout import Layout
 from engine.origins import assumptions
@@ -266,3 +270,34 @@ def test_what_users_type_is_never_markup(panel, document):
     assert panel.title.textFormat() is Qt.TextFormat.PlainText
     panel.form.voltage.refuse("“<img src=x>” is no number.")
     assert "&lt;img" in panel.form.voltage.line.toolTip()
+
+
+def test_cells_are_typed_and_pasted_by_keyboard_alone(panel, document, qtbot):
+    view = panel.table.view
+    view.setFocus()
+    panel.table.set_current(1, 1)
+    qtbot.keyClicks(view, "8")
+    editor = view.viewport().findChild(QLineEdit)
+    qtbot.keyClicks(editor, "00 A 0.8 lag")
+    qtbot.keyClick(editor, Qt.Key.Key_Return)
+    qtbot.waitUntil(lambda: document.layout.circuits[1].demand is not None)
+    demand = document.layout.circuits[1].demand
+    assert demand == BalancedCurrent(rms=800.0, cos_phi=0.8)
+    QGuiApplication.clipboard().setText("1,6 kA\n90")
+    panel.table.set_current(0, 1)
+    qtbot.keyClick(view, Qt.Key.Key_V, Qt.KeyboardModifier.ControlModifier)
+    assert document.layout.circuits[1].demand.rms == 90
+    assert document.undo_stack.undoText() == "Paste 2 rows of circuits"
+    panel.table.set_current(1, 1)
+    qtbot.keyClick(view, Qt.Key.Key_Delete)
+    assert document.layout.circuits[1].demand is None
+
+
+def test_typing_is_kept_while_the_document_changes(panel, document):
+    panel._show_one()
+    line = panel.form.voltage.line
+    line.setFocus()
+    line.setText("41")
+    other = replace(LAYOUT.circuits[1], name="Pumps")
+    document.edit("Rename Plant", replaced(document.layout, other))
+    assert line.text() == ("41" if line.hasFocus() else "400 V")
