@@ -13,7 +13,7 @@ from PySide6.QtWidgets import QGridLayout, QLabel, QVBoxLayout, QWidget
 
 from app.document import Document
 from app.panels.editors import Editor, editor_for, is_wide
-from app.panels.kinds import Terms
+from app.panels.kinds import Kind, Terms, si_unit
 from app.panels.origin import OriginMark
 from app.panels.panel import Words, decimal_sign
 from app.panels.parts import Group, Part
@@ -152,8 +152,17 @@ class Row(QWidget):
         try:
             layout = self.part.entered(self._document.committed, self._items, value)
         except UserError as error:
-            raise UserError(_without_opening(str(error), self._items)) from None
+            reason = _without_opening(str(error), self._items)
+            raise UserError(_with_unit(reason, self.part.kind)) from None
         self._document.edit(self.part.sentence(self._items, value, terms), layout)
+
+
+def _with_unit(reason: str, kind: Kind) -> str:
+    """The reason with the unit that its numbers are in: values are SI inside."""
+    unit = si_unit(kind)
+    if not unit or ", got " not in reason:
+        return reason
+    return f"{reason.removesuffix('.')} (in {unit})."
 
 
 def _make(groups: tuple[Group, ...]) -> list[object]:
@@ -177,5 +186,6 @@ def _without_opening(sentence: str, items: tuple[Item, ...]) -> str:
         if sentence.startswith(opening):
             rest = sentence.removeprefix(opening)
             _, _, reason = rest.rpartition(": ")
+            reason = reason.replace(" or null", " or nothing")
             return reason[:1].upper() + reason[1:]
     return sentence

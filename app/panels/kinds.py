@@ -314,6 +314,18 @@ class Rows:
         raise UserError(f"“{text}” cannot be entered here.")
 
 
+def si_unit(kind: Kind) -> str:
+    """The unit of a kind's values inside, or nothing where they have none."""
+    if isinstance(kind, Distance | Distances):
+        return "m"
+    if isinstance(kind, FluxDensity):
+        return "T"
+    if isinstance(kind, Amount):
+        named = [unit for unit, factor in kind.units.items() if factor == 1.0]
+        return named[0] if named else "parts of one" if "%" in kind.units else ""
+    return ""
+
+
 def mixed_text(values: Sequence[Any], kind: Kind, terms: Terms) -> str:
     """What a field says of several items with different values.
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QComboBox, QHBoxLayout, QVBoxLayout, QWidget
 
-from app.panels.panel import Words, decimal_sign
+from app.panels.panel import Words, decimal_sign, scrolled
 from app.panels.phasor_drawing import PhasorDrawing
 from app.theme import BODY, STEP
 from engine.circuits import LoadCase
@@ -41,7 +41,9 @@ class NetCurrent(QWidget):
         self._frequencies.setAccessibleName("Frequency")
         self._frequencies.setToolTip("Whose phasors are drawn, in hertz")
         self._frequencies.activated.connect(lambda _index: self._show_phasors())
-        words = QVBoxLayout()
+        told = QWidget()
+        words = QVBoxLayout(told)
+        words.setContentsMargins(0, 0, 0, 0)
         words.setSpacing(2 * STEP)
         words.addWidget(self.net)
         words.addWidget(self._frequencies, 0, Qt.AlignmentFlag.AlignLeft)
@@ -51,7 +53,10 @@ class NetCurrent(QWidget):
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(3 * STEP)
         row.addWidget(self.phasors)
-        row.addLayout(words, 1)
+        area = scrolled(told)
+        area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        area.setMinimumWidth(34 * STEP)
+        row.addWidget(area, 1)
 
     def show_section(self, layout: Layout, case: LoadCase, section: Section) -> None:
         """Show the currents of a section in a load case."""

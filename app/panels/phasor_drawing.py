@@ -22,8 +22,8 @@ class PhasorDrawing(QWidget):
     def __init__(self) -> None:
         super().__init__()
         self._currents: SectionCurrents | None = None
-        self.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Maximum)
-        self.setMinimumHeight(28 * STEP)
+        self.setSizePolicy(QSizePolicy.Policy.Maximum, QSizePolicy.Policy.Maximum)
+        self.setMinimumSize(28 * STEP, 28 * STEP)
         self.setAccessibleName("Phasors of the currents in the section")
         self.setToolTip(
             "RMS phasors in amperes, along the route; 0° to the right, leading "

@@ -12,6 +12,7 @@ from PySide6.QtWidgets import (
     QCheckBox,
     QHBoxLayout,
     QPushButton,
+    QSizePolicy,
     QSplitter,
     QWidget,
 )
@@ -61,6 +62,8 @@ class SectionPanel(Panel):
         self._run_id = ""
         self._base: Layout | None = None
         self._title = Words(style="title")
+        self._title.setWordWrap(False)
+        self._title.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
         self._direction = Words(style="plain")
         self.reason = Words(style="warning")
         self.canvas = SectionCanvas()

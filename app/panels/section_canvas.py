@@ -129,8 +129,8 @@ class SectionCanvas(QWidget):
         low_v = min(v - h / 2 for _, v, _, h in boxes)
         high_v = max(v + h / 2 for _, v, _, h in boxes)
         self._middle = ((low_u + high_u) / 2, (low_v + high_v) / 2)
-        wide = max(self.width() - 2 * _MARGIN, 40)
-        high = max(self.height() - 2 * _MARGIN, 40)
+        margin = min(_MARGIN, self.width() / 8, self.height() / 5)
+        wide, high = self.width() - 2 * margin, self.height() - 2 * margin
         self._scale = min(
             wide / max(high_u - low_u, 0.02), high / max(high_v - low_v, 0.02)
         )

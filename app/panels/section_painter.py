@@ -72,7 +72,9 @@ class SectionPainter:
         path.translate(at)
         if isinstance(slot.shape, Multicore):
             self._sheath(path, is_chosen)
-            self._cores(slot, at, flip)
+            if not self._cores(slot, at, flip):
+                box = path.boundingRect()
+                self._letter(QRectF(box.topLeft(), box.topRight()), label_of(slot))
             return
         label = label_of(slot)
         self._conductor(path, label, is_chosen)
@@ -138,7 +140,9 @@ class SectionPainter:
         self._painter.fillPath(path, QBrush(QColor(self._theme.panel)))
         self._edge(path, is_chosen)
 
-    def _cores(self, slot: Slot, at: QPointF, flip: QTransform) -> None:
+    def _cores(self, slot: Slot, at: QPointF, flip: QTransform) -> bool:
+        """Draw the cores; whether their letters fit into them."""
+        fit = True
         try:
             cores = single_conductors(FreeSection(slots=(slot,)))
         except UserError:
@@ -149,17 +153,27 @@ class SectionPainter:
             path.translate(at + away)
             label = core.name.rpartition("/")[2].partition(".")[0]
             self._conductor(path, label, False)
-            self._letter(path.boundingRect(), label)
+            fit = fit and self._fits(path.boundingRect(), label)
+            if fit:
+                self._letter(path.boundingRect(), label)
+        return fit and bool(cores)
+
+    def _fits(self, box: QRectF, label: str) -> bool:
+        self._font.setPixelSize(BODY)
+        self._font.setBold(True)
+        metrics = QFontMetricsF(self._font)
+        wide = metrics.horizontalAdvance(label) + 4
+        return box.width() >= wide and box.height() >= metrics.height()
 
     def _letter(self, box: QRectF, label: str) -> None:
         """The letters inside where they fit, else above the conductor."""
         self._font.setPixelSize(BODY)
         self._font.setBold(True)
         metrics = QFontMetricsF(self._font)
-        width, height = metrics.horizontalAdvance(label), metrics.height()
+        width = metrics.horizontalAdvance(label)
         self._painter.setFont(self._font)
         middle = box.center()
-        fits = box.width() >= width + 4 and box.height() >= height
+        fits = self._fits(box, label)
         if fits and label.partition(" ")[0] not in TWO_COLOURED:
             fill = conductor_colour(label, self._theme)
             inks = ("#ffffff", "#101214")
