@@ -47,7 +47,7 @@ from app.panels.section import SectionPanel
 from app.recompute import Recompute
 from app.recovery import Autosave
 from app.side_panels import WIDTH, SidePanels
-from app.theme import DARK, LIGHT, Theme, qt_palette
+from app.theme import DARK, LIGHT, Theme, apply
 from app.tool_row import ToolRow
 from app.toolbox import Toolbox
 from app.view_state import ViewState
@@ -205,6 +205,7 @@ class MainWindow(QMainWindow):
         self.margins.go_to.connect(self.go_to)
         self.margins.opened.connect(self._make_room)
         self.item.section_requested.connect(self.open_section)
+        self.item.calibrate_requested.connect(self.calibrate)
         self.section.closed.connect(self.show_drawing)
         for page in (self.new_page, self.guide, self.cautions, self.about):
             page.closed.connect(self.show_drawing)
@@ -241,6 +242,12 @@ class MainWindow(QMainWindow):
         """Show a run cut across."""
         self.section.show_run(run)
         self.show_page(self.section)
+
+    def calibrate(self, drawing: str) -> None:
+        """Give a backing drawing its scale and place."""
+        self.show_drawing()
+        self.toolbox.activate(self.toolbox.calibrate)
+        self.toolbox.calibrate.begin(drawing)
 
     def go_to(self, at: object, height: object, case: str) -> None:
         """Show a place: the drawing there, the map at that height, in that case."""
@@ -303,7 +310,7 @@ class MainWindow(QMainWindow):
     def set_theme(self, theme: Theme) -> None:
         """Show everything in another theme."""
         self.theme = theme
-        QApplication.setPalette(qt_palette(theme))
+        apply(theme)
         self.drawings.set_theme(theme)
         self.tool_row.set_theme(theme)
 

@@ -137,6 +137,7 @@ class NewLayoutPage(Page):
             label = QLabel(ask.label)
             label.setBuddy(field)
             label.setToolTip(ask.tip)
+            label.setMinimumHeight(field.sizeHint().height())
             self._asks.addWidget(label, at, 0, Qt.AlignmentFlag.AlignTop)
             self._asks.addWidget(field, at, 1)
             self.fields[ask.key] = field

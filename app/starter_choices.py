@@ -124,7 +124,7 @@ BEGINNINGS: tuple[Beginning, ...] = (
     ),
     Beginning(
         "Run past a room",
-        "Cables or bars over, under or beside an office of 6 × 5 m.",
+        "Cables or bars over, under or beside an office of 6 × 5 m.",
         (
             Offered(
                 "where", "Where", "Over the ceiling, under the floor, or behind a wall",

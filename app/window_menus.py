@@ -312,8 +312,7 @@ class WindowMenus:
         chosen = [d for d in drawings if d.id in document.selection] or drawings[-1:]
         if not chosen:
             raise UserError("There is no backing drawing to calibrate: place one.")
-        self._window.toolbox.activate(self._window.toolbox.calibrate)
-        self._window.toolbox.calibrate.begin(chosen[0].id)
+        self._window.calibrate(chosen[0].id)
 
     def _place_picture(self) -> None:
         image = QApplication.clipboard().image()

@@ -20,6 +20,7 @@ from engine.mirrored_sections import mirrored_bar, mirrored_section
 from engine.places import BackingDrawing, Enclosure, Profile, Receptor, Room, Zone
 from engine.routes import UPRIGHT
 from engine.runs import Bar, Joint, Round, Run
+from engine.sight import SIGHTS
 
 AnyItem = TypeVar("AnyItem", bound=Item)
 
@@ -261,6 +262,14 @@ def _backing_drawing(item: BackingDrawing, motion: Motion) -> BackingDrawing:
             f"The backing drawing “{item.title}” cannot be mirrored: leave it out of "
             "the selection."
         )
+    if item.view != "plan":
+        if motion.degrees % 360.0:
+            # It hangs in a view of its own, which a turn on plan leaves as it is.
+            return item
+        right = SIGHTS[item.view].right
+        across = right[0] * motion.shift[0] + right[1] * motion.shift[1]
+        x, z = item.origin
+        return replace(item, origin=(neat(x + across), neat(z + motion.lift)))
     return replace(
         item,
         origin=motion.point(item.origin),

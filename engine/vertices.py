@@ -11,6 +11,8 @@ from typing import TypeVar
 
 from msgspec.structs import replace
 
+from engine.calibration import place_of
+from engine.embedded_picture import picture_size
 from engine.equipment import Board, ConductorLoop, Transformer
 from engine.equipment_conductors import board_parts
 from engine.errors import UserError
@@ -19,6 +21,7 @@ from engine.motions import neat, tidy_turns
 from engine.places import BackingDrawing, Enclosure, Profile, Receptor, Room, Zone
 from engine.routes import SHORTEST, stations
 from engine.runs import Run
+from engine.sight import SIGHTS
 
 AnyItem = TypeVar("AnyItem", bound=Item)
 
@@ -56,7 +59,7 @@ def extent(item: Item) -> tuple[Point3, ...]:
         case Board():
             return _board_extent(item)
         case BackingDrawing():
-            return ((*item.origin, 0.0),)
+            return _picture_corners(item)
         case Room():
             top = [(x, y, item.ceiling_level) for x, y in item.outline]
             return (*vertices(item), *top)
@@ -219,6 +222,23 @@ def _floor(item: _Area) -> float:
         case Room():
             return item.floor_level
     return item.floor_level or 0.0
+
+
+def _picture_corners(drawing: BackingDrawing) -> tuple[Point3, ...]:
+    """Corners of a backing drawing in the plane through the origin. [m]"""
+    sight = SIGHTS[drawing.view]
+    width, height = picture_size(drawing) or (0, 0)
+    pixels = ((0, 0), (width, 0), (width, height), (0, height))
+    has_scale = drawing.first != drawing.second
+    seen = [place_of(drawing, p) for p in pixels] if has_scale else [drawing.origin]
+    return tuple(
+        (
+            sight.right[0] * across + sight.up[0] * up,
+            sight.right[1] * across + sight.up[1] * up,
+            sight.right[2] * across + sight.up[2] * up,
+        )
+        for across, up in seen
+    )
 
 
 def _board_extent(board: Board) -> tuple[Point3, ...]:

@@ -90,6 +90,11 @@ class BackingForm(QWidget):
         document.changed.connect(self._on_changed)
         self._fill()
 
+    @property
+    def item_id(self) -> str:
+        """Id of the drawing."""
+        return self._id
+
     def _prepare(self) -> None:
         self.opacity.setRange(0, 100)
         self.opacity.setSingleStep(5)

@@ -6,11 +6,13 @@ from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QPushButton
 
 from app.document import Document
+from app.panels.backing import BackingForm
 from app.panels.form import Form
 from app.panels.item_forms import editable, groups, heading
 from app.panels.panel import Panel, Words, column, scrolled
 from app.theme import STEP
 from engine.items import Item
+from engine.places import BackingDrawing
 from engine.runs import Run
 
 
@@ -21,6 +23,8 @@ class ItemPanel(Panel):
     -------
     section_requested(id)
         The section of that run is to be opened.
+    calibrate_requested(id)
+        That backing drawing is to be given its scale and place.
     """
 
     shows = (
@@ -30,6 +34,7 @@ class ItemPanel(Panel):
     )  # fmt: skip
 
     section_requested = Signal(str)
+    calibrate_requested = Signal(str)
 
     def __init__(self, document: Document) -> None:
         super().__init__(document)
@@ -47,6 +52,9 @@ class ItemPanel(Panel):
         box = column(self, 3 * STEP)
         for widget in (self._title, self._hint, self._section):
             box.addWidget(widget)
+        self._picture: BackingForm | None = None
+        self._picture_place = column()
+        box.addLayout(self._picture_place)
         box.addWidget(scrolled(self.form), 1)
 
     @property
@@ -62,11 +70,28 @@ class ItemPanel(Panel):
         self._hint.setText("Nothing is selected: this is what holds for all of it.")
         runs = [item for item in self._items if isinstance(item, Run)]
         self._section.setVisible(len(runs) == 1 == len(self._items))
+        self._show_picture()
         self.form.show_groups(groups(layout, self._items))
 
     def follow_selection(self, ids: frozenset[str]) -> None:
         if {item.id for item in self._items} != ids or not self._items:
             self._fill()
+
+    def _show_picture(self) -> None:
+        """The form of the one backing drawing that is selected, above its values."""
+        pictures = [item.id for item in self._items if isinstance(item, BackingDrawing)]
+        wanted = pictures[0] if len(pictures) == 1 == len(self._items) else ""
+        shown = self._picture
+        if (shown.item_id if shown is not None else "") == wanted:
+            return
+        if shown is not None:
+            shown.hide()
+            shown.deleteLater()
+            self._picture = None
+        if wanted:
+            self._picture = BackingForm(self._document, wanted)
+            self._picture.calibrate_requested.connect(self.calibrate_requested)
+            self._picture_place.addWidget(self._picture)
 
     def _on_section(self) -> None:
         if len(self._items) == 1:

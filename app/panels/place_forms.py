@@ -6,7 +6,6 @@ from typing import Any, get_args
 
 from app.panels.kinds import (
     AMPERES,
-    DEGREES,
     PERCENT,
     Amount,
     Choice,
@@ -295,21 +294,12 @@ _MEASURED = (
 
 PROFILE = (path_table("path", "Line", "Vertices of the line plotted along"),)
 
+#: File, page, view, turn, opacity and lock stand in the form of `app.panels.backing`.
 BACKING = (
-    Part("file_name", "File", Words(), "Name of the file it came from", "file name"),
-    Part(
-        "view",
-        "Lies under",
-        one_of("plan", "looking +x", "looking +y"),
-        "The view that it lies under",
-        "view",
-    ),
-    Part("page", "Page", Amount(is_whole=True), "Page of the document, from 1"),
     Part("first", "First point", Numbers(2), "In the picture, in pixels"),
     Part("second", "Second point", Numbers(2), "In the picture, in pixels"),
     Part("distance", "Distance", Distance(), "Distance of the two points"),
-    Part("origin", "First point at", Distances(2), "Where it lies on plan", "place"),
-    Part("turn", "Turn", Amount(DEGREES, "°"), "Turn counter-clockwise, degrees"),
-    Part("opacity", "Opacity", Amount(PERCENT, "%"), "How strongly it shows, per cent"),
-    Part("locked", "Lock", YesNo("Cannot be moved by mouse"), "Whether it is locked"),
+    Part(
+        "origin", "First point at", Distances(2), "Where it lies in the view", "place"
+    ),
 )

@@ -141,8 +141,10 @@ def selectable(layout: Layout, look: Look, view: Sight) -> Iterator[Item]:
             and drawn is not None
             and item.storey not in (None, drawn.id)
         )
-        is_locked = isinstance(item, BackingDrawing) and item.locked
-        if not other_storey and not is_locked:
+        out_of_reach = isinstance(item, BackingDrawing) and (
+            item.locked or item.view != view.name
+        )
+        if not other_storey and not out_of_reach:
             yield item
 
 

@@ -6,10 +6,19 @@ import base64
 import binascii
 import math
 
-from PySide6.QtCore import QPointF, QRectF
-from PySide6.QtGui import QImage, QPainter, QPolygonF, QTransform
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import (
+    QGuiApplication,
+    QImage,
+    QPainter,
+    QPolygonF,
+    QTransform,
+)
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
+from app.theme import theme_for
+from app.views.inks import pen
+from app.views.shape_item import distance_to_line
 from engine.places import BackingDrawing
 
 
@@ -20,6 +29,7 @@ class BackingItem(QGraphicsItem):
         super().__init__()
         self._drawing: BackingDrawing | None = None
         self._image = QImage()
+        self._is_selected = False
         self.show_drawing(drawing)
 
     @property
@@ -38,6 +48,17 @@ class BackingItem(QGraphicsItem):
         self.setOpacity(drawing.opacity)
         self.setTransform(placement(drawing))
 
+    def set_selected(self, is_selected: bool) -> None:
+        """Show whether the drawing is selected, by its frame."""
+        if is_selected != self._is_selected:
+            self._is_selected = is_selected
+            self.update()
+
+    def edge_distance(self, at: tuple[float, float]) -> float:
+        """From a place to the nearest edge of the picture. [m]"""
+        corners = self.corners()
+        return distance_to_line(at, (*corners, corners[0]))
+
     def boundingRect(self) -> QRectF:
         return QRectF(self._image.rect())
 
@@ -49,6 +70,11 @@ class BackingItem(QGraphicsItem):
     ) -> None:
         painter.setRenderHint(QPainter.RenderHint.SmoothPixmapTransform)
         painter.drawImage(QPointF(0.0, 0.0), self._image)
+        if self._is_selected:
+            painter.setOpacity(1.0)
+            painter.setPen(pen(theme_for(QGuiApplication.palette()).accent, 2.5))
+            painter.setBrush(Qt.BrushStyle.NoBrush)
+            painter.drawRect(self.boundingRect())
 
     def corners(self) -> list[tuple[float, float]]:
         """Where the picture's corners lie. [m]"""

@@ -114,6 +114,9 @@ class DrawingScene(QGraphicsScene):
             if item is not None:
                 item.is_selected = item_id in selection
                 self._raise(item)
+            backing = self.backings.get(item_id)
+            if backing is not None:
+                backing.set_selected(item_id in selection)
         self._selection = selection
         self.touched.emit()
 
@@ -243,6 +246,7 @@ class DrawingScene(QGraphicsScene):
             if item is None:
                 item = self.backings[item_id] = BackingItem(drawing)
                 item.setZValue(_ORDER.index("backing drawing"))
+                item.set_selected(item_id in self._selection)
                 self.addItem(item)
             else:
                 item.show_drawing(drawing)

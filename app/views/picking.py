@@ -50,7 +50,17 @@ def picked_shape(scene: DrawingScene, at: Point, reach: float) -> str | None:
         rank = (_ORDER.index(item.layer), distance, -item.zValue())
         if distance <= wide and (best is None or rank < best):
             best, found = rank, item.item_id
-    return found
+    return found or _picked_backing(scene, at, reach)
+
+
+def _picked_backing(scene: DrawingScene, at: Point, reach: float) -> str | None:
+    """The uppermost backing drawing whose edge is within reach, unless locked. [m]"""
+    for item_id, backing in reversed(scene.backings.items()):
+        drawing = backing.drawing
+        is_free = drawing is not None and not drawing.locked and backing.isVisible()
+        if is_free and backing.edge_distance(at) <= reach:
+            return item_id
+    return None
 
 
 def selected(scene: DrawingScene) -> list[ShapeItem]:

@@ -11,6 +11,10 @@ from reportlab.pdfgen.canvas import Canvas
 from app import backing
 from app.document import Document
 from app.panels.backing import BackingForm
+from app.panels.item import ItemPanel
+from app.view_state import ViewState
+from app.views.drawing_view import DrawingView
+from app.views.picking import picked_shape
 from engine.calibration import calibrated
 from engine.edits import replaced
 from engine.errors import UserError
@@ -167,3 +171,31 @@ def test_removing_and_undoing(form, document):
     document.undo_stack.undo()
     assert document.committed == before
     assert form.isEnabled()
+
+
+def test_the_item_panel_holds_the_form(document, qtbot):
+    panel = ItemPanel(document)
+    qtbot.addWidget(panel)
+    panel.show()
+    form = panel.findChild(BackingForm)
+    qtbot.waitUntil(form.isVisible)
+    with qtbot.waitSignal(panel.calibrate_requested) as asked:
+        form.calibrate.click()
+    assert asked.args == [drawing_of(document).id]
+    form.remove.click()
+    assert document.selection == frozenset()
+    qtbot.waitUntil(lambda: panel.findChild(BackingForm) is None)
+
+
+def test_an_unlocked_drawing_is_taken_by_its_edge(document, qtbot):
+    view = DrawingView(document, ViewState())
+    qtbot.addWidget(view)
+    view.resize(800, 600)
+    view.show()
+    scene = view.drawing
+    # 1250 × 834 px at 100 px/m before it is calibrated.
+    assert picked_shape(scene, (12.5, 4.0), 0.05) == drawing_of(document).id
+    assert picked_shape(scene, (6.0, 4.0), 0.05) is None
+    locked = replace(drawing_of(document), locked=True)
+    document.edit("Lock", replaced(document.committed, locked))
+    assert picked_shape(scene, (12.5, 4.0), 0.05) is None

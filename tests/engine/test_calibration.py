@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+import base64
+import io
 import math
 
+import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from msgspec.structs import replace
+from PIL import Image
 
 from engine.calibration import (
     calibrated,
@@ -19,7 +23,9 @@ from engine.calibration import (
     turned,
 )
 from engine.errors import UserError
+from engine.motions import carried, shift_by, turn_about
 from engine.places import BackingDrawing
+from engine.vertices import extent
 
 PLAN = BackingDrawing(
     id="plan",
@@ -127,3 +133,25 @@ def test_one_point_twice_is_refused() -> None:
     broken = replace(PLAN, second=PLAN.first)
     with pytest.raises(UserError, match="no scale"):
         place_of(broken, (0.0, 0.0))
+
+
+def test_a_drawing_reaches_to_the_corners_of_its_picture() -> None:
+    kept = io.BytesIO()
+    Image.new("L", (400, 200), 255).save(kept, "PNG")
+    picture = base64.b64encode(kept.getvalue()).decode("ascii")
+    drawing = replace(PLAN, picture=picture, first=(0.0, 0.0), second=(400.0, 0.0))
+    # 400 px are 8 m; the upper left corner lies at (2, 1).
+    assert extent(drawing) == pytest.approx(
+        np.array([(2, 1, 0), (10, 1, 0), (10, -3, 0), (2, -3, 0)])
+    )
+    behind = replace(drawing, view="looking +x")
+    assert extent(behind)[2] == pytest.approx((0.0, -10.0, -3.0))
+
+
+def test_a_drawing_under_an_elevation_follows_shifts_only() -> None:
+    drawing = replace(PLAN, view="looking +x")
+    # Looking along +x, +y is to the left.
+    assert carried(drawing, shift_by(5.0, 2.0, 0.5), {}).origin == (0.0, 1.5)
+    assert carried(drawing, turn_about((3.0, 3.0), 90.0), {}) == drawing
+    ahead = replace(PLAN, view="looking +y")
+    assert carried(ahead, shift_by(5.0, 2.0, 0.5), {}).origin == (7.0, 1.5)
