@@ -9,7 +9,6 @@ from collections.abc import Iterator
 from typing import Annotated, Literal
 
 from msgspec import Meta
-from msgspec.structs import fields
 
 from engine.circuits import ENTERED_CURRENTS, Circuit, LoadCase
 from engine.criteria import ReferenceLevel
@@ -87,8 +86,8 @@ class Layout(Value, frozen=True, kw_only=True):
 
     def items(self) -> Iterator[Item]:
         """Every item, in the order of the file."""
-        for field in fields(type(self)):
-            value = getattr(self, field.name)
+        for name in self.__struct_fields__:
+            value = getattr(self, name)
             if isinstance(value, tuple):
                 yield from value
             else:

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from functools import cache
 from typing import Any, TypeVar
 
 from msgspec import Struct
@@ -191,8 +192,12 @@ def _is_stated(item: Item, name: str) -> bool:
         return isinstance(item.demand, Power)
     if (type(item), name) not in _SILENT:
         return True
-    default = next(field for field in fields(item) if field.name == name).default
-    return bool(getattr(item, name) != default)
+    return bool(getattr(item, name) != _defaults(type(item))[name])
+
+
+@cache
+def _defaults(kind: type[Item]) -> dict[str, Any]:
+    return {field.name: field.default for field in fields(kind)}
 
 
 def _of_field(item: Item, name: str) -> list[Assumption]:
