@@ -16,6 +16,7 @@ from PySide6.QtGui import (
     QMouseEvent,
     QPainter,
     QPaintEvent,
+    QPixmap,
     QResizeEvent,
     QTransform,
     QWheelEvent,
@@ -85,6 +86,7 @@ class SectionCanvas(QWidget):
         self._grabbed = ""
         self._from: dict[str, tuple[float, float]] = {}
         self._is_dragging = False
+        self._grid: tuple[object, QPixmap] | None = None
 
     @property
     def is_dragging(self) -> bool:
@@ -162,7 +164,7 @@ class SectionCanvas(QWidget):
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         drawing = SectionPainter(painter, theme_for(self.palette()), self._scale)
-        drawing.paper(QRectF(self.rect()), self.to_pixels(0.0, 0.0), GRID)
+        painter.drawPixmap(0, 0, self._paper())
         drawing.route(self.to_pixels(0.0, 0.0))
         flip = QTransform.fromScale(self._sign, -1.0)
         for slot in self._slots:
@@ -177,6 +179,21 @@ class SectionCanvas(QWidget):
             painter.setPen(QColor(theme_for(self.palette()).accent))
             painter.setBrush(Qt.BrushStyle.NoBrush)
             painter.drawRect(QRectF(self.rect()).adjusted(0.5, 0.5, -0.5, -0.5))
+
+    def _paper(self) -> QPixmap:
+        """The grid: it takes ten times as long as all conductors and seldom changes."""
+        theme, ratio = theme_for(self.palette()), self.devicePixelRatioF()
+        middle = self.to_pixels(0.0, 0.0)
+        key = (theme.name, ratio, self.size(), self._scale, middle)
+        if self._grid is None or self._grid[0] != key:
+            pixmap = QPixmap(self.size() * ratio)
+            pixmap.setDevicePixelRatio(ratio)
+            painter = QPainter(pixmap)
+            drawing = SectionPainter(painter, theme, self._scale)
+            drawing.paper(QRectF(self.rect()), middle, GRID)
+            painter.end()
+            self._grid = (key, pixmap)
+        return self._grid[1]
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
