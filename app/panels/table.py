@@ -7,18 +7,16 @@ makes one edit of them; a text that is refused stays out and its reason is told.
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
 from typing import Any
 
 from PySide6.QtCore import (
     QAbstractItemModel,
-    QAbstractTableModel,
+    QEvent,
     QModelIndex,
-    QPersistentModelIndex,
     Qt,
     Signal,
 )
-from PySide6.QtGui import QColor, QGuiApplication, QKeyEvent, QKeySequence
+from PySide6.QtGui import QGuiApplication, QKeyEvent, QKeySequence
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QComboBox,
@@ -30,153 +28,25 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.panels.panel import Words, decimal_sign, plain_tip
+from app.panels.panel import Words, decimal_sign
+from app.panels.rows_model import Column, Index, RowsModel
 from app.spreadsheet import Cells, cells, copied, placed
 from app.theme import STEP, theme_for
 from engine.errors import UserError
 
-_Index = QModelIndex | QPersistentModelIndex
-
-
-@dataclass(frozen=True)
-class Column:
-    """One column of a table.
-
-    Attributes
-    ----------
-    title : str
-        Heading, with its unit.
-    text : function of a row
-        What the cell shows.
-    enter : function of row, text and decimal sign, or None
-        The row after a text was entered; raises `UserError`. None: a result.
-    choices : tuple of str
-        Offered instead of free text.
-    tip : str
-        What the column holds.
-    made : function of a row
-        A cell's own tooltip: what the program made of it.
-    width : int
-        In steps of 4 px.
-    """
-
-    title: str
-    text: Callable[[Any], str]
-    enter: Callable[[Any, str, str], Any] | None = None
-    choices: tuple[str, ...] = ()
-    tip: str = ""
-    made: Callable[[Any], str] | None = None
-    width: int = 18
-
-
-class RowsModel(QAbstractTableModel):
-    """Rows of values as cells.
-
-    Signals
-    -------
-    entered(rows, row, column)
-        A cell was entered: all rows as they would be, and where.
-    refused(sentence)
-        A cell was not taken.
-    """
-
-    entered = Signal(object, int, int)
-    refused = Signal(str)
-
-    def __init__(self, columns: Sequence[Column]) -> None:
-        super().__init__()
-        self.columns = tuple(columns)
-        self.rows: tuple[Any, ...] = ()
-        self._refused: tuple[int, int] | None = None
-        self._muted = self._warning = QColor()
-
-    def set_colours(self, muted: str, warning: str) -> None:
-        self._muted, self._warning = QColor(muted), QColor(warning)
-
-    def set_rows(self, rows: Sequence[Any]) -> None:
-        """Show other rows; the count may differ."""
-        new = tuple(rows)
-        self._refused = None
-        if len(new) == len(self.rows):
-            self.rows = new
-            if new:
-                last = self.index(len(new) - 1, len(self.columns) - 1)
-                self.dataChanged.emit(self.index(0, 0), last)
-            return
-        self.beginResetModel()
-        self.rows = new
-        self.endResetModel()
-
-    def rowCount(self, parent: _Index = QModelIndex()) -> int:  # noqa: B008
-        return 0 if parent.isValid() else len(self.rows)
-
-    def columnCount(self, parent: _Index = QModelIndex()) -> int:  # noqa: B008
-        return 0 if parent.isValid() else len(self.columns)
-
-    def headerData(
-        self, section: int, orientation: Qt.Orientation, role: int = 0
-    ) -> Any:
-        if orientation is Qt.Orientation.Vertical:
-            return section + 1 if role == Qt.ItemDataRole.DisplayRole else None
-        column = self.columns[section]
-        if role == Qt.ItemDataRole.DisplayRole:
-            return column.title
-        return column.tip if role == Qt.ItemDataRole.ToolTipRole else None
-
-    def data(self, index: _Index, role: int = Qt.ItemDataRole.DisplayRole) -> Any:
-        row, column = self.rows[index.row()], self.columns[index.column()]
-        if role in (Qt.ItemDataRole.DisplayRole, Qt.ItemDataRole.EditRole):
-            return column.text(row)
-        if role == Qt.ItemDataRole.ToolTipRole:
-            said = column.made(row) if column.made is not None else ""
-            return plain_tip(f"{column.tip}\n{said}".strip())
-        if role == Qt.ItemDataRole.BackgroundRole:
-            if self._refused == (index.row(), index.column()):
-                colour = QColor(self._warning)
-                colour.setAlpha(70)
-                return colour
-            return None
-        if role == Qt.ItemDataRole.ForegroundRole and column.enter is None:
-            return self._muted
-        return None
-
-    def flags(self, index: _Index) -> Qt.ItemFlag:
-        flags = super().flags(index)
-        if self.columns[index.column()].enter is not None:
-            flags |= Qt.ItemFlag.ItemIsEditable
-        return flags
-
-    def setData(
-        self, index: _Index, value: Any, role: int = Qt.ItemDataRole.EditRole
-    ) -> bool:
-        row, place = index.row(), index.column()
-        column = self.columns[place]
-        text = str(value)
-        if column.enter is None or text == column.text(self.rows[row]):
-            return False
-        try:
-            new = column.enter(self.rows[row], text, decimal_sign())
-        except UserError as error:
-            self.refuse(row, place, str(error))
-            return False
-        rows = (*self.rows[:row], new, *self.rows[row + 1 :])
-        self.entered.emit(rows, row, place)
-        return True
-
-    def refuse(self, row: int, column: int, sentence: str) -> None:
-        """Turn a cell and tell why it was not taken."""
-        self._refused = (row, column)
-        if row < len(self.rows):
-            here = self.index(row, column)
-            self.dataChanged.emit(here, here)
-        self.refused.emit(sentence)
+#: What may be held down while text is typed.
+_TYPING = (
+    Qt.KeyboardModifier.NoModifier,
+    Qt.KeyboardModifier.ShiftModifier,
+    Qt.KeyboardModifier.KeypadModifier,
+)
 
 
 class _Cell(QStyledItemDelegate):
     """Edits a cell as text, or as a choice where the column offers some."""
 
     def createEditor(
-        self, parent: QWidget, option: QStyleOptionViewItem, index: _Index
+        self, parent: QWidget, option: QStyleOptionViewItem, index: Index
     ) -> QWidget:
         model = index.model()
         assert isinstance(model, RowsModel)
@@ -188,14 +58,14 @@ class _Cell(QStyledItemDelegate):
         editor.activated.connect(lambda _index: self.commitData.emit(editor))
         return editor
 
-    def setEditorData(self, editor: QWidget, index: _Index) -> None:
+    def setEditorData(self, editor: QWidget, index: Index) -> None:
         if isinstance(editor, QComboBox):
             editor.setCurrentText(str(index.data(Qt.ItemDataRole.EditRole)))
             return
         super().setEditorData(editor, index)
 
     def setModelData(
-        self, editor: QWidget, model: QAbstractItemModel, index: _Index
+        self, editor: QWidget, model: QAbstractItemModel, index: Index
     ) -> None:
         if isinstance(editor, QComboBox):
             model.setData(index, editor.currentText())
@@ -242,7 +112,6 @@ class RowsTable(QWidget):
             QAbstractItemView.EditTrigger.AnyKeyPressed
             | QAbstractItemView.EditTrigger.EditKeyPressed
             | QAbstractItemView.EditTrigger.DoubleClicked
-            | QAbstractItemView.EditTrigger.SelectedClicked
         )
         self.view.verticalHeader().hide()
         self.view.verticalHeader().setDefaultSectionSize(7 * STEP)
@@ -378,6 +247,19 @@ class _View(QTableView):
     def __init__(self, owner: RowsTable) -> None:
         super().__init__()
         self._owner = owner
+
+    def event(self, event: QEvent) -> bool:
+        """A key that begins a cell is not the key of a tool."""
+        if (
+            isinstance(event, QKeyEvent)
+            and event.type() == QEvent.Type.ShortcutOverride
+            and event.modifiers() in _TYPING
+            and event.text().isprintable()
+            and event.text()
+        ):
+            event.accept()
+            return True
+        return super().event(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         clipboard = QGuiApplication.clipboard()
