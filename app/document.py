@@ -14,6 +14,7 @@ from PySide6.QtGui import QUndoCommand, QUndoStack
 
 from engine.edits import changed_ids
 from engine.layout import Layout
+from engine.vouched import with_true_origins
 
 EVERYTHING = frozenset({"*"})
 
@@ -85,7 +86,11 @@ class Document(QObject):
             self.selection_changed.emit(selection)
 
     def edit(self, text: str, layout: Layout) -> None:
-        """Commit `layout` as one undo step named by the sentence `text`."""
+        """Commit `layout` as one undo step named by the sentence `text`.
+
+        Values that changed lose the origin that stood for them as they were.
+        """
+        layout = with_true_origins(self._committed, layout)
         if layout == self._committed:
             self.revert()
             return
