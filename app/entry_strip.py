@@ -79,7 +79,9 @@ class EntryStrip(QWidget):
         """The way of entering and its labelled fields."""
         group, row = _group()
         self.way = QComboBox()
+        self.way.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
         self.way.addItems([way for way in FIELDS if way != LENGTH])
+        self.way.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
         self._explain(self.way, "Way of entering", "to a place, by a way, go, or size")
         row.addWidget(self.way)
         self.labels: list[QLabel] = []
@@ -161,9 +163,12 @@ class EntryStrip(QWidget):
         self._show_choices()
 
     def take_focus(self, text: str = "") -> None:
-        """Go to the line of words, beginning with `text`."""
-        self.words.setText(text)
-        self.words.setFocus(Qt.FocusReason.ShortcutFocusReason)
+        """Go to the line of words, beginning with `text`; without one to the fields."""
+        field = self.words if text else self.fields[0]
+        # Not as by a key of its own: that would select what is typed already.
+        field.setFocus(Qt.FocusReason.OtherFocusReason)
+        if text:
+            self.words.setText(text)
 
     def changeEvent(self, event: QEvent) -> None:
         super().changeEvent(event)
@@ -269,9 +274,11 @@ class EntryStrip(QWidget):
         if wanted and index < 0:
             self.way.insertItem(0, LENGTH)
             self.way.setCurrentIndex(0)
+            self.words.setPlaceholderText("8.40")
             self.fields[0].setFocus(Qt.FocusReason.OtherFocusReason)
         elif not wanted and index >= 0:
             self.way.removeItem(index)
+            self.words.setPlaceholderText(_EXAMPLE)
             self.way.setCurrentIndex(0)
 
     def _show_choices(self) -> None:

@@ -138,13 +138,17 @@ class LayoutPreview(QWidget):
             for leg in pairwise(run.route)
         ]
         for places in (shapes.equipment, shapes.rooms):
-            boxes = [
-                to_pixels.mapRect(area_path([place.area]).boundingRect())
-                for place in places
-            ]
-            for place, box in zip(places, boxes, strict=True):
-                self._name(painter, place.title, box, taken)
-            taken += boxes
+            # Places that show as one, such as rooms over each other, share a name.
+            names: dict[tuple[float, ...], list[str]] = {}
+            for place in places:
+                box = to_pixels.mapRect(area_path([place.area]).boundingRect())
+                corners = (box.left(), box.top(), box.width(), box.height())
+                names.setdefault(tuple(round(c) for c in corners), []).append(
+                    place.title
+                )
+            for corners, titles in names.items():
+                self._name(painter, " · ".join(titles), QRectF(*corners), taken)
+            taken += [QRectF(*corners) for corners in names]
 
     def _name(
         self, painter: QPainter, text: str, box: QRectF, taken: list[QRectF]

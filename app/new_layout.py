@@ -24,11 +24,12 @@ from app import preferences
 from app.layout_preview import LayoutPreview
 from app.page import Page
 from app.panels.field import Choice, Quantity, ValueField
-from app.panels.panel import Words, scrolled
+from app.panels.panel import Words, decimal_sign, scrolled
 from app.starter_choices import BEGINNINGS, Asked, Beginning, Offered
 from app.theme import STEP
 from engine.errors import UserError
 from engine.layout import Layout
+from engine.typed_lengths import length_text
 from engine.units import LENGTH_UNITS
 
 #: Width of the choices beside the picture. [logical pixels]
@@ -159,8 +160,11 @@ class NewLayoutPage(Page):
             low=ask.low,
             high=ask.high,
         )
+        write = quantity.write
+        if ask.is_length:
+            write = partial(length_text, unit=unit, decimal=decimal_sign())
         tip = f"{ask.tip}, in {unit}"
-        field = ValueField.of(quantity, enter, name=ask.label, tip=tip)
+        field = ValueField(quantity.read, write, enter, name=ask.label, tip=tip)
         field.set_value(value, keep_typing=False)
         return field
 

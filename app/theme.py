@@ -94,6 +94,7 @@ def qt_palette(theme: Theme) -> QPalette:
         QPalette.ColorRole.ToolTipBase: theme.panel,
         QPalette.ColorRole.ToolTipText: theme.text,
         QPalette.ColorRole.PlaceholderText: theme.muted,
+        QPalette.ColorRole.BrightText: theme.warning,
         QPalette.ColorRole.Highlight: theme.accent,
         QPalette.ColorRole.HighlightedText: theme.on_accent,
         QPalette.ColorRole.Link: theme.accent,

@@ -211,7 +211,9 @@ class BackingForm(QWidget):
             if is_calibrated(drawing):
                 unit = self._document.layout.settings.length_unit
                 scale = metres_per_pixel(drawing)
-                across, down = (length_text(scale * side, unit) for side in size)
+                across, down = (
+                    length_text(round(scale * side, 2), unit) for side in size
+                )
                 parts.append(f"{across} × {down}")
         if not is_calibrated(drawing):
             parts.append("not calibrated")

@@ -5,8 +5,8 @@ from __future__ import annotations
 from collections.abc import Callable
 from html import escape
 
-from PySide6.QtCore import QEvent, QLocale
-from PySide6.QtGui import QShowEvent, Qt
+from PySide6.QtCore import QLocale
+from PySide6.QtGui import QGuiApplication, QPalette, QShowEvent, Qt
 from PySide6.QtWidgets import (
     QFrame,
     QLabel,
@@ -18,7 +18,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.document import Document
-from app.theme import SMALL, STEP, TITLE, theme_for
+from app.theme import SMALL, STEP, TITLE
 from engine.layout import Layout
 
 
@@ -92,29 +92,29 @@ class Words(QLabel):
         # What users typed is shown as it is and never as markup.
         self.setTextFormat(Qt.TextFormat.PlainText)
         self.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
-        self._colour()
+        self._dress()
 
     def set_style(self, style: str) -> None:
         """One of "plain", "muted", "title" and "warning"."""
         if style != self._style:
             self._style = style
-            self._colour()
+            self._dress()
 
-    def changeEvent(self, event: QEvent) -> None:
-        if event.type() == QEvent.Type.PaletteChange:
-            self._colour()
-        super().changeEvent(event)
+    def _dress(self) -> None:
+        # No style sheet: a styled widget would keep the colours of its first theme.
+        self.setForegroundRole(_ROLES.get(self._style, QPalette.ColorRole.WindowText))
+        font = QGuiApplication.font()
+        if self._style in _SIZES:
+            font.setPixelSize(_SIZES[self._style])
+        self.setFont(font)
 
-    def _colour(self) -> None:
-        theme = theme_for(self.palette())
-        colours = {"muted": theme.muted, "warning": theme.warning}
-        sizes = {"title": TITLE, "muted": SMALL, "warning": SMALL}
-        wanted = f"color: {colours.get(self._style, theme.text)};"
-        if self._style in sizes:
-            wanted += f" font-size: {sizes[self._style]}px;"
-        # Setting a style sheet changes the palette, which would come back here.
-        if wanted != self.styleSheet():
-            self.setStyleSheet(wanted)
+
+#: Colours and sizes of texts by their style; of others the window's.
+_ROLES = {
+    "muted": QPalette.ColorRole.PlaceholderText,
+    "warning": QPalette.ColorRole.BrightText,
+}
+_SIZES = {"title": TITLE, "muted": SMALL, "warning": SMALL}
 
 
 def button(title: str, tip: str, press: Callable[[], None]) -> QPushButton:

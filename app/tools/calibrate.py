@@ -171,7 +171,8 @@ class CalibrateTool(DrawingTool):
                 raise UserError(
                     "The second point is the first: click one that is far from it."
                 )
-        self._pixels.append(pixel_at(drawing, pointer.raw))
+        x, y = pixel_at(drawing, pointer.raw)
+        self._pixels.append((round(x, 2), round(y, 2)))
 
     def _locate(self, place: Point) -> None:
         drawing = self._drawing()

@@ -8,7 +8,6 @@ import math
 
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import (
-    QGuiApplication,
     QImage,
     QPainter,
     QPolygonF,
@@ -16,17 +15,25 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
-from app.theme import theme_for
+from app.theme import LIGHT, Theme
 from app.views.inks import pen
 from app.views.shape_item import distance_to_line
 from engine.places import BackingDrawing
 
+#: A shade of grey from here on is paper, and how many samples a side tells that.
+_PAPER, _SIDE = 200, 40
+
 
 class BackingItem(QGraphicsItem):
-    """Shows a `BackingDrawing`; pixels run down, metres up."""
+    """Shows a `BackingDrawing`; pixels run down, metres up.
 
-    def __init__(self, drawing: BackingDrawing) -> None:
+    On dark paper a line drawing shows light on dark, so that it does not glare.
+    """
+
+    def __init__(self, drawing: BackingDrawing, theme: Theme = LIGHT) -> None:
         super().__init__()
+        self._theme = theme
+        self._shown: QImage | None = None
         self._drawing: BackingDrawing | None = None
         self._image = QImage()
         self._is_selected = False
@@ -44,9 +51,15 @@ class BackingItem(QGraphicsItem):
         self.prepareGeometryChange()
         if before is None or drawing.picture != before.picture:
             self._image = _decoded(drawing.picture)
+            self._shown = None
         self._drawing = drawing
         self.setOpacity(drawing.opacity)
         self.setTransform(placement(drawing))
+
+    def set_theme(self, theme: Theme) -> None:
+        """Show the picture in another theme."""
+        self._theme, self._shown = theme, None
+        self.update()
 
     def set_selected(self, is_selected: bool) -> None:
         """Show whether the drawing is selected, by its frame."""
@@ -69,10 +82,13 @@ class BackingItem(QGraphicsItem):
         widget: QWidget | None = None,
     ) -> None:
         painter.setRenderHint(QPainter.RenderHint.SmoothPixmapTransform)
-        painter.drawImage(QPointF(0.0, 0.0), self._image)
+        if self._shown is None:
+            dark = self._theme.is_dark and _is_line_drawing(self._image)
+            self._shown = _inverted(self._image) if dark else self._image
+        painter.drawImage(QPointF(0.0, 0.0), self._shown)
         if self._is_selected:
             painter.setOpacity(1.0)
-            painter.setPen(pen(theme_for(QGuiApplication.palette()).accent, 2.5))
+            painter.setPen(pen(self._theme.accent, 2.5))
             painter.setBrush(Qt.BrushStyle.NoBrush)
             painter.drawRect(self.boundingRect())
 
@@ -95,6 +111,24 @@ def placement(drawing: BackingDrawing) -> QTransform:
     made.rotate(drawing.turn)
     made.scale(scale, -scale)
     made.translate(-drawing.first[0], -drawing.first[1])
+    return made
+
+
+def _is_line_drawing(image: QImage) -> bool:
+    """Whether most of the picture is paper: near white."""
+    if image.isNull():
+        return False
+    small = image.scaled(_SIDE, _SIDE).convertToFormat(QImage.Format.Format_Grayscale8)
+    shades = [
+        small.pixelColor(x, y).value() for x in range(_SIDE) for y in range(_SIDE)
+    ]
+    return sum(shade > _PAPER for shade in shades) > 0.6 * len(shades)
+
+
+def _inverted(image: QImage) -> QImage:
+    """The picture with light lines on dark paper."""
+    made = image.convertToFormat(QImage.Format.Format_RGB32)
+    made.invertPixels()
     return made
 
 

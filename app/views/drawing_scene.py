@@ -126,6 +126,8 @@ class DrawingScene(QGraphicsScene):
         self.map_layer.inks = inks
         for item in self.items_by_id.values():
             item.inks = inks
+        for backing in self.backings.values():
+            backing.set_theme(inks.theme)
         self.touched.emit()
 
     def set_scale(self, scale: float) -> None:
@@ -244,7 +246,8 @@ class DrawingScene(QGraphicsScene):
         for item_id, drawing in wanted.items():
             item = self.backings.get(item_id)
             if item is None:
-                item = self.backings[item_id] = BackingItem(drawing)
+                item = BackingItem(drawing, self._inks.theme)
+                self.backings[item_id] = item
                 item.setZValue(_ORDER.index("backing drawing"))
                 item.set_selected(item_id in self._selection)
                 self.addItem(item)

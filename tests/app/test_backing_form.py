@@ -5,14 +5,17 @@ from __future__ import annotations
 import pytest
 from msgspec.structs import replace
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QColor, QImage
+from PySide6.QtGui import QColor, QImage, QPainter
+from PySide6.QtWidgets import QStyleOptionGraphicsItem
 from reportlab.pdfgen.canvas import Canvas
 
 from app import backing
 from app.document import Document
 from app.panels.backing import BackingForm
 from app.panels.item import ItemPanel
+from app.theme import DARK, LIGHT
 from app.view_state import ViewState
+from app.views.backing_item import BackingItem
 from app.views.drawing_view import DrawingView
 from app.views.picking import picked_shape
 from engine.calibration import calibrated
@@ -136,7 +139,7 @@ def test_replacing_says_when_the_calibration_is_lost(
 ):
     scaled = calibrated(drawing_of(document), (0.0, 0.0), (500.0, 0.0), 6.0)
     document.edit("Calibrate", replaced(document.committed, scaled))
-    assert "15.00 m × 10.008 m" in form.about.text()
+    assert "15.00 m × 10.01 m" in form.about.text()
     image = QImage(40, 90, QImage.Format.Format_RGB32)
     image.fill(QColor("white"))
     other = tmp_path / "section.png"
@@ -199,3 +202,28 @@ def test_an_unlocked_drawing_is_taken_by_its_edge(document, qtbot):
     locked = replace(drawing_of(document), locked=True)
     document.edit("Lock", replaced(document.committed, locked))
     assert picked_shape(scene, (12.5, 4.0), 0.05) is None
+
+
+@pytest.mark.parametrize(("theme", "paper"), [(LIGHT, "#ffffff"), (DARK, "#000000")])
+def test_a_line_drawing_does_not_glare_on_dark_paper(document, theme, paper):
+    opaque = replace(drawing_of(document), opacity=1.0)
+    item = BackingItem(opaque, theme)
+    image = QImage(50, 50, QImage.Format.Format_RGB32)
+    image.fill(QColor("red"))
+    painter = QPainter(image)
+    item.paint(painter, QStyleOptionGraphicsItem())
+    painter.end()
+    assert image.pixelColor(5, 5).name() == paper
+
+
+def test_a_dark_photograph_stays_as_it_is_on_dark_paper(document):
+    image = QImage(60, 60, QImage.Format.Format_RGB32)
+    image.fill(QColor("#405060"))
+    backing.place_backing_picture(document, image)
+    item = BackingItem(document.committed.backing_drawings[-1], DARK)
+    shown = QImage(50, 50, QImage.Format.Format_RGB32)
+    shown.fill(QColor("red"))
+    painter = QPainter(shown)
+    item.paint(painter, QStyleOptionGraphicsItem())
+    painter.end()
+    assert shown.pixelColor(5, 5).name() == "#405060"

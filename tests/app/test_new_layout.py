@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor
 from app.files import empty_layout
 from app.new_layout import NewLayoutPage
 from app.preferences import Preferences
-from app.theme import LIGHT, apply
+from app.theme import LIGHT, apply, theme_for
 from engine.faults import faults
 from engine.starters import run_past_room, transformer_link_board
 
@@ -104,6 +104,7 @@ def test_values_are_kept_when_another_way_was_looked_at(page, qtbot):
 
 def test_the_preview_draws_in_the_themes_colours(page, qtbot):
     apply(LIGHT)
+    qtbot.waitUntil(lambda: theme_for(page.preview.palette()) is LIGHT)
     page.buttons[3].setChecked(True)
     image = page.preview.grab().toImage()
     colours = {

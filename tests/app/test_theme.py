@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import pytest
-from PySide6.QtWidgets import QLineEdit, QStyleFactory
+from PySide6.QtWidgets import QLineEdit, QStyleFactory, QVBoxLayout, QWidget
 
-from app.theme import DARK, LIGHT, Theme, apply, contrast
+from app.panels.panel import Words
+from app.theme import DARK, LIGHT, Theme, apply, contrast, theme_for
 
 BACKGROUNDS = ("paper", "window", "panel")
 TEXTS = ("text", "muted", "accent", "warning", "below", "above", "not_evaluable")
@@ -44,3 +45,21 @@ def test_the_outline_of_a_field_stands_out(qtbot, theme: Theme):
     image = field.grab().toImage()
     edge = image.pixelColor(40, 0).name()
     assert contrast(edge, theme.window) >= 3.0
+
+
+def test_words_follow_a_change_of_theme(qtbot):
+    apply(LIGHT)
+    top = QWidget()
+    qtbot.addWidget(top)
+    column = QVBoxLayout(top)
+    texts = {style: Words("Words", style) for style in ("plain", "muted", "warning")}
+    for words in texts.values():
+        column.addWidget(words)
+    top.show()
+    for theme in (DARK, LIGHT):
+        apply(theme)
+        # The style hands a palette on with the next turn of the event loop.
+        qtbot.waitUntil(lambda: theme_for(top.palette()) is theme)  # noqa: B023
+        for style, words in texts.items():
+            shown = words.palette().color(words.foregroundRole()).name()
+            assert shown == getattr(theme, "text" if style == "plain" else style)
