@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from PySide6.QtCore import QBuffer, QByteArray, QIODevice
-from PySide6.QtGui import QGuiApplication, QImage
+from PySide6.QtGui import QImage
 from PySide6.QtWidgets import QFileDialog, QWidget
 
 from app.document import Document
@@ -70,11 +70,6 @@ def place_backing_picture(
     buffer.open(QIODevice.OpenModeFlag.WriteOnly)
     image.save(buffer, "PNG")
     return _place(document, read_picture_bytes(kept.data()), view)
-
-
-def clipboard_picture() -> QImage:
-    """The picture on the clipboard; a null one when there is none."""
-    return QGuiApplication.clipboard().image()
 
 
 def replace_backing_file(
