@@ -43,8 +43,11 @@ def add_menu(
             menu.addSeparator()
             continue
         action = QAction(entry.text, window)
-        if entry.key:
-            action.setShortcut(QKeySequence(entry.key))
+        if isinstance(entry.key, QKeySequence.StandardKey):
+            # All that the platform knows: redo has several keys.
+            action.setShortcuts(entry.key)
+        elif entry.key:
+            action.setShortcut(entry.key)
         action.setToolTip(entry.tip or entry.text)
         action.setStatusTip(entry.tip)
         action.triggered.connect(_guarded(entry.act, messages))
