@@ -16,6 +16,10 @@ def main() -> int:
     application = QApplication(sys.argv)
     application.setApplicationName("Lodestead")
     application.setStyle("Fusion")
+    from app import preferences, theme
+
+    # Before anything takes its sizes from there.
+    theme.set_text_size(preferences.load().text_size)
     from app.start import started
 
     paths = [Path(name) for name in application.arguments()[1:2]]

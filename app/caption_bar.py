@@ -5,6 +5,8 @@ The same words stand on every export: quantity, heights, load case.
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from PySide6.QtCore import QEvent, Qt, Signal
 from PySide6.QtGui import QAction, QResizeEvent
 from PySide6.QtWidgets import (
@@ -70,8 +72,10 @@ class CaptionBar(QWidget):
         row.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
         row.setSpacing(STEP)
         row.addWidget(QLabel(QUANTITY))
+        self._dots: dict[QComboBox, QLabel] = {}
         for widget in (self._zone, self._height, self._case, self._storey):
-            row.addWidget(QLabel("·"))
+            self._dots[widget] = QLabel("·")
+            row.addWidget(self._dots[widget])
             row.addWidget(widget)
         row.addStretch(1)
         row.addWidget(self._state)
@@ -97,8 +101,16 @@ class CaptionBar(QWidget):
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         # A storey is chosen on the rail too: it gives way first.
-        self._storey.setVisible(self.width() > 760 and self._storey.count() > 1)
+        self._show_storey()
         super().resizeEvent(event)
+
+    def _show_storey(self) -> None:
+        self._show(self._storey, self.width() > 760 and self._storey.count() > 1)
+
+    def _show(self, choice: QComboBox, shown: bool) -> None:
+        """A choice with the dot before it."""
+        choice.setVisible(shown)
+        self._dots[choice].setVisible(shown)
 
     def _layer_menu(self) -> QMenu:
         menu = QMenu(self)
@@ -116,21 +128,24 @@ class CaptionBar(QWidget):
         layout, look = self._document.layout, self._view_state.look
         zones = [(zone.title, zone.id) for zone in layout.zones]
         _refill(self._zone, zones, look.zone)
-        self._zone.setVisible(bool(zones))
+        self._show(self._zone, bool(zones))
         _refill(self._height, self._heights(layout), look.height)
         cases = [(f"case {case.title}", case.id) for case in layout.cases]
         _refill(self._case, cases, look.case)
         storeys = [(storey.title, storey.id) for storey in layout.storeys]
         _refill(self._storey, storeys, look.storey)
-        self._storey.setVisible(self.width() > 760 and len(storeys) > 1)
+        self._show_storey()
 
     def _heights(self, layout: Layout) -> list[tuple[str, float | None]]:
         look = self._view_state.look
         zone = next((z for z in layout.zones if z.id == look.zone), None)
         if zone is None and layout.zones:
             zone = layout.zones[0]
-        heights: list[tuple[str, float | None]] = [("one height", None)]
-        if zone is not None:
+        heights: list[tuple[str, float | None]]
+        if zone is None:
+            # Without a zone the map lies at one height above the lowest floor.
+            heights = [(heights_of(layout, replace(look, height=None))[1], None)]
+        else:
             floor = zone_floor(layout, zone) or 0.0
             heights = [("largest over heights", None)]
             heights += [

@@ -10,12 +10,15 @@ import math
 from itertools import pairwise
 from typing import TypeVar
 
+from msgspec.structs import replace
+
 from app.document import Document
-from engine.edits import added, replaced
+from engine.edits import added, checked, replaced
 from engine.errors import UserError
 from engine.items import Item, Point3
 from engine.layout import Layout
 from engine.new_places import middle, with_room_above, with_room_below, zone_filling
+from engine.new_sources import riser_to
 from engine.places import Room
 from engine.runs import Run
 from engine.shaping import (
@@ -125,6 +128,38 @@ def split_at_middle(document: Document) -> None:
     leg = legs.index(max(legs))
     x, y, z = (0.5 * (a + b) for a, b in zip(route[leg], route[leg + 1], strict=True))
     split_selected_run(document, leg, (x, y, z))
+
+
+def raise_selected_run(document: Document, *, down: bool = False) -> None:
+    """Lead the selected run from its end to the next floor above, or below.
+
+    Raises
+    ------
+    UserError
+        When not one run is selected, or its end is connected.
+    """
+    run = _only(document, Run, "run")
+    is_joined = any(
+        end.item == run.id and end.end == "end"
+        for joint in document.committed.joints
+        for end in joint.ends
+    )
+    if run.end is not None or is_joined:
+        raise UserError(
+            f"The end of {counted((run,))} is connected: free it first, or draw a "
+            "riser of its own."
+        )
+    x, y, z = run.route[-1]
+    top = (x, y, riser_to(document.committed, z, down=down))
+    is_upright = run.route[-2][:2] == (x, y) and (top[2] > z) == (z > run.route[-2][2])
+    before = run.route[:-1] if is_upright else run.route
+    turns = run.turns if is_upright or not run.turns else (*run.turns, run.turns[-1])
+    after = checked(replace(run, route=(*before, top), turns=turns))
+    word = "Lower" if down else "Raise"
+    document.edit(
+        f"{word} the end of {counted((run,))} to the next floor",
+        replaced(document.committed, after),
+    )
 
 
 def insert_vertex(document: Document, id: str, leg: int, at: Point3) -> None:

@@ -28,11 +28,14 @@ class Drawings(QWidget):
     pointed(x, y, z)
         The pointer is there; z is None on the plan. [m]
     pointer_left()
+    entry_wanted(text)
+        What was typed on the drawing and belongs into the entry strip.
     """
 
     area_changed = Signal(object, object)
     pointed = Signal(float, float, object)
     pointer_left = Signal()
+    entry_wanted = Signal(str)
 
     def __init__(self, document: Document, view_state: ViewState, theme: Theme) -> None:
         super().__init__()
@@ -42,6 +45,7 @@ class Drawings(QWidget):
         for name, sight in VIEWS.items():
             view = DrawingView(document, view_state, theme, sight)
             view.pointer_left.connect(self.pointer_left)
+            view.entry_wanted.connect(self.entry_wanted)
             view.pointer_moved.connect(
                 lambda x, y, shown=name: self._point(shown, x, y)
             )
@@ -90,6 +94,10 @@ class Drawings(QWidget):
 
     def set_map(self, picture: MapPicture) -> None:
         self.plan.set_map(picture)
+
+    def set_cut(self, run: str, from_end: bool) -> None:
+        """Mark on the plan where that run is cut."""
+        self.plan.set_cut(run, from_end)
 
     def take_keyboard(self) -> None:
         """Let the view in front have the keys."""

@@ -25,8 +25,8 @@ from PySide6.QtWidgets import (
 from app import preferences
 from app.arrange import Arrange
 from app.ask_bar import AskBar
-from app.caption_bar import CaptionBar
-from app.document import Document
+from app.caption_bar import CaptionBar, caption
+from app.document import EVERYTHING, Document
 from app.drawings import Drawings
 from app.entry_strip import EntryStrip
 from app.exports import Exports
@@ -47,7 +47,7 @@ from app.panels.section import SectionPanel
 from app.recompute import Recompute
 from app.recovery import Autosave
 from app.side_panels import WIDTH, SidePanels
-from app.theme import DARK, LIGHT, Theme, apply
+from app.theme import DARK, LIGHT, STEP, Theme, apply
 from app.tool_row import ToolRow
 from app.toolbox import Toolbox
 from app.view_state import ViewState
@@ -174,6 +174,7 @@ class MainWindow(QMainWindow):
         self.readout = ReadoutLine(self.document, self.view_state)
         bar = self.statusBar()
         bar.setSizeGripEnabled(False)
+        bar.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
         bar.addWidget(self.hint, 2)
         bar.addPermanentWidget(self.working)
         bar.addPermanentWidget(JobBar(self.jobs))
@@ -190,6 +191,8 @@ class MainWindow(QMainWindow):
         self.strip.hold_toggled.connect(self.drawings.set_holds)
         self.strip.catch_toggled.connect(self.drawings.set_catches)
         self.strip.left.connect(self.drawings.take_keyboard)
+        self.drawings.entry_wanted.connect(self.strip.take_focus)
+        self.section.turned.connect(self.drawings.set_cut)
         self.drawings.area_changed.connect(recompute.set_view)
         self.drawings.pointed.connect(self.readout.show_at)
         self.drawings.pointer_left.connect(self.readout.clear_place)
@@ -231,7 +234,8 @@ class MainWindow(QMainWindow):
         self.pages.setCurrentWidget(page)
         self.rail.setVisible(page is self.drawings)
         self.strip.setVisible(page is self.drawings)
-        page.setFocus()
+        # The page itself shows no mark of the keyboard: what it hands on to does.
+        (page.focusProxy() or page).setFocus(Qt.FocusReason.TabFocusReason)
 
     def show_drawing(self) -> None:
         """Show the drawing again."""
@@ -248,6 +252,10 @@ class MainWindow(QMainWindow):
         self.show_drawing()
         self.toolbox.activate(self.toolbox.calibrate)
         self.toolbox.calibrate.begin(drawing)
+
+    def caption_text(self) -> str:
+        """The caption of the drawing in one line, as exports print it."""
+        return caption(self.document.layout, self.view_state)
 
     def go_to(self, at: object, height: object, case: str) -> None:
         """Show a place: the drawing there, the map at that height, in that case."""
@@ -282,8 +290,10 @@ class MainWindow(QMainWindow):
         limit = 16777215 if low and opened else int(0.4 * self.height())
         self.margins.setMaximumHeight(limit)
 
-    def _on_changed(self, layout: object, _ids: object) -> None:
+    def _on_changed(self, layout: object, ids: object) -> None:
         self.strip.set_unit(self.document.layout.settings.length_unit)
+        if ids == EVERYTHING:
+            self.menus.release_held()
 
     def _on_changed_outside(self, path: object) -> None:
         self.messages.warn(
@@ -330,6 +340,9 @@ class MainWindow(QMainWindow):
         state = preferences.load().geometry
         if state:
             self.restoreGeometry(QByteArray.fromBase64(state.encode("ascii")))
+        sharing = preferences.load().sharing
+        if sharing:
+            self.splitter.restoreState(QByteArray.fromBase64(sharing.encode("ascii")))
 
     def sizeHint(self) -> QSize:
         return QSize(1360, 860)

@@ -32,6 +32,8 @@ class Preferences(Struct, frozen=True, kw_only=True):
     recent: tuple[str, ...] = ()
     #: Window geometry and state as Qt gives them, base64.
     geometry: str = ""
+    #: How the width is shared between drawing and panel, likewise.
+    sharing: str = ""
     #: False until the first strip was answered.
     chosen: bool = False
 

@@ -48,6 +48,15 @@ class SidePanels(QWidget):
         for index in range(self._tabs.count()):
             if self._tabs.tabText(index).startswith(name):
                 self._tabs.setCurrentIndex(index)
+                self._tabs.setFocus(Qt.FocusReason.ShortcutFocusReason)
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """Names of the panels, in the order of their tabs."""
+        return tuple(
+            self._stack.widget(index).accessibleName()
+            for index in range(self._stack.count())
+        )
 
     def rename(self, name: str, text: str) -> None:
         """Show `text`, which starts with `name`, on its tab."""

@@ -30,6 +30,8 @@ def started(path: Path | None) -> MainWindow:
     if left:
         rescue = left[0]
         if window.files.open_rescued(rescue.copy, rescue.path):
+            # Its own copy first: the next crash may come within the minute.
+            window.autosave.keep()
             recovery.give_up(rescue)
             messages.warn(
                 "Unsaved work of a program that ended unexpectedly is open again: save "
@@ -52,6 +54,7 @@ def _ask_first(window: MainWindow) -> None:
         recent = preferences.load().recent
         preferences.save(msgspec.structs.replace(choices, chosen=True, recent=recent))
         strip.hide()
+        window.drawings.take_keyboard()
 
     strip.chosen.connect(chosen)
     window.show_first_strip(strip)

@@ -16,6 +16,21 @@ SMALL, BODY, TITLE = 11, 13, 16
 STEP = 4
 
 
+def set_text_size(percent: int) -> None:
+    """Show texts larger or smaller than the system does.
+
+    To be called before the modules of the screen are loaded, which take the sizes.
+    """
+    global SMALL, BODY, TITLE
+    SMALL, BODY, TITLE = (round(size * percent / 100) for size in (SMALL, BODY, TITLE))
+    font = QApplication.font()
+    if font.pointSizeF() > 0:
+        font.setPointSizeF(font.pointSizeF() * percent / 100)
+    else:
+        font.setPixelSize(round(font.pixelSize() * percent / 100))
+    QApplication.setFont(font)
+
+
 @dataclass(frozen=True)
 class Theme:
     """One set of colours; strings as #rrggbb."""

@@ -2,18 +2,22 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import msgspec
+from PySide6.QtCore import QObject
 from PySide6.QtGui import QAction, QActionGroup, QKeySequence
 from PySide6.QtWidgets import QApplication, QFileDialog, QMenu
 
 from app import clipboard, commands, preferences
 from app.backing import place_backing_file, place_backing_picture
+from app.copying import copy_picture, copy_sentence
 from app.drawings import VIEWS
 from app.icons import icon
 from app.menus import LINE, Command, add_menu
+from app.tools.run import RunTool
 from engine.edits import replaced
 from engine.errors import UserError
 from engine.units import FLUX_DENSITY_UNITS
@@ -22,13 +26,17 @@ if TYPE_CHECKING:
     from app.main_window import MainWindow
 
 PICTURES = "Drawings and pictures (*.pdf *.png *.jpg *.jpeg)"
+#: Sizes of text beside the system's. [%]
+TEXT_SIZES = (90, 100, 110, 125, 150)
 Standard = QKeySequence.StandardKey
 
 
-class WindowMenus:
+class WindowMenus(QObject):
     """Builds the menus; keeps what in them changes up to date."""
 
     def __init__(self, window: MainWindow) -> None:
+        # A child of the window: its connections end with the window's actions.
+        super().__init__(window)
         self._window = window
         self._file()
         self._edit()
@@ -55,7 +63,7 @@ class WindowMenus:
     def _file(self) -> None:
         w, files = self._window, self._window.files
         actions = self._add(
-            "File",
+            "&File",
             [
                 Command("New …", lambda: w.show_page(w.new_page), Standard.New,
                         "An empty layout, or one of three starters"),
@@ -78,7 +86,7 @@ class WindowMenus:
         w, document, arrange = self._window, self._window.document, self._window.arrange
         stack = document.undo_stack
         actions = self._add(
-            "Edit",
+            "&Edit",
             [
                 Command("Undo", stack.undo, Standard.Undo, "Take the last edit back"),
                 Command("Redo", stack.redo, Standard.Redo, "Do it again"),
@@ -108,15 +116,13 @@ class WindowMenus:
 
     def _draw(self) -> None:
         w, document, arrange = self._window, self._window.document, self._window.arrange
-        entries = [
-            Command(tool.name, lambda chosen=tool: w.toolbox.activate(chosen), "",
-                    f"The tool {tool.name} (key {tool.key})")
-            for tool in w.toolbox.tools
-        ]  # fmt: skip
         self._add(
-            "Draw",
+            "&Draw",
             [
-                *entries,
+                Command("Riser to the next floor", lambda: self._rise(down=False), "",
+                        "From the last vertex, or from the selected run's end"),
+                Command("Riser to the floor below", lambda: self._rise(down=True), "",
+                        "From the last vertex, or from the selected run's end"),
                 LINE,
                 Command("Fill room with a zone", lambda: commands.fill_room(document),
                         "", "The room's outline less 0.20 m, where people are"),
@@ -136,11 +142,15 @@ class WindowMenus:
                         "Two points and their distance; then where one point lies"),
             ],
         )  # fmt: skip
+        # The row's own actions, so that the menu shows their keys.
+        first = self._menu.actions()[0]
+        self._menu.insertActions(first, w.tool_row.actions())
+        self._menu.insertSeparator(first)
 
     def _view(self) -> None:
         w = self._window
         self._add(
-            "View",
+            "&View",
             [
                 *(
                     Command(name, lambda shown=name: w.drawings.show_view(shown), "",
@@ -150,23 +160,43 @@ class WindowMenus:
                 ),
                 LINE,
                 Command("Fit", w.drawings.fit, "", "Show everything (Home)"),
+                LINE,
+                *(
+                    Command(name, lambda shown=name: w.panels.show_panel(shown),
+                            f"Ctrl+{key}", f"Show the panel {name}")
+                    for key, name in enumerate(w.panels.names, start=1)
+                ),
+                LINE,
             ],
         )  # fmt: skip
         themes = self._menu.addMenu("Colours")
         self._choices(themes, ("system", "light", "dark"), "theme")
+        sizes = self._menu.addMenu("Text size")
+        self._choices(sizes, TEXT_SIZES, "text_size", " %")
 
     def _field(self) -> None:
         w = self._window
-        self._add(
-            "Field",
+        actions = self._add(
+            "F&ield",
             [
                 Command("Largest over heights",
                         lambda: w.view_state.set(height=None), "",
                         "The largest value over the zone's heights"),
                 Command("Fit range", self._fit_range, "",
                         "Let the map's range hold the values that it shows"),
+                LINE,
+                Command("Hold as before", self._hold, "F7",
+                        "Keep the present margins beside the coming ones"),
+                Command("Copy as sentence",
+                        lambda: copy_sentence(w.margins.sentence), "Ctrl+Shift+C",
+                        "The worst comparison, or the one chosen in the table"),
+                Command("Copy picture", self._copy_picture, "",
+                        "The drawing as it shows, with its caption"),
+                LINE,
             ],
         )  # fmt: skip
+        self._held = actions["Hold as before"]
+        self._held.setCheckable(True)
         units = self._menu.addMenu("Unit")
         group = QActionGroup(units)
         for unit in FLUX_DENSITY_UNITS:
@@ -179,7 +209,7 @@ class WindowMenus:
     def _report(self) -> None:
         w = self._window
         self._add(
-            "Report",
+            "&Report",
             [
                 Command("Write report …", w.exports.choose_report, Standard.Print,
                         "A PDF that a reviewer can retrace"),
@@ -191,7 +221,7 @@ class WindowMenus:
     def _help(self) -> None:
         w = self._window
         self._add(
-            "Help",
+            "&Help",
             [
                 Command("From an empty room to a report", lambda: w.show_page(w.guide),
                         Standard.HelpContents, "Step by step"),
@@ -202,11 +232,14 @@ class WindowMenus:
             ],
         )  # fmt: skip
 
-    def _choices(self, menu: QMenu, values: tuple[str, ...], field: str) -> None:
+    def _choices(
+        self, menu: QMenu, values: Sequence[object], field: str, unit: str = ""
+    ) -> None:
         group = QActionGroup(menu)
         chosen = getattr(preferences.load(), field)
         for value in values:
-            action = QAction(value, menu, checkable=True, checked=value == chosen)
+            text = f"{value}{unit}"
+            action = QAction(text, menu, checkable=True, checked=value == chosen)
             action.triggered.connect(lambda _on, v=value: self._prefer(field, v))
             group.addAction(action)
             menu.addAction(action)
@@ -218,6 +251,11 @@ class WindowMenus:
         unit = self._window.document.layout.settings.flux_density_unit
         for action in self._units.actions():
             action.setChecked(action.text() == unit)
+
+    def release_held(self) -> None:
+        """Another layout is shown: nothing is as before."""
+        self._held.setChecked(False)
+        self._window.margins.hold(False)
 
     def _on_undo_text(self, text: str) -> None:
         self._undo.setText(f"Undo: {text}" if text else "Undo")
@@ -237,7 +275,13 @@ class WindowMenus:
     def remember_geometry(self) -> None:
         """Keep size and place of the window for the next time."""
         state = bytes(self._window.saveGeometry().toBase64().data()).decode("ascii")
-        preferences.save(msgspec.structs.replace(preferences.load(), geometry=state))
+        sharing = self._window.splitter.saveState().toBase64().data()
+        choices = msgspec.structs.replace(
+            preferences.load(),
+            geometry=state,
+            sharing=bytes(sharing).decode("ascii"),
+        )
+        preferences.save(choices)
 
     # -- doing ------------------------------------------------------------------
 
@@ -257,8 +301,12 @@ class WindowMenus:
             raise UserError(f"{name} is not there any more.")
         self._window.files.open(Path(name))
 
-    def _prefer(self, field: str, value: str) -> None:
+    def _prefer(self, field: str, value: Any) -> None:
         preferences.save(msgspec.structs.replace(preferences.load(), **{field: value}))
+        if field == "text_size":
+            self._window.messages.inform(
+                f"Texts are shown at {value} % from the next start on."
+            )
         self._window.follow_preferences()
 
     def _set_unit(self, unit: str) -> None:
@@ -268,6 +316,24 @@ class WindowMenus:
         )
         document.edit(f"Show {unit}", replaced(document.committed, settings))
         self.refresh()
+
+    def _hold(self) -> None:
+        if not self._window.margins.hold(self._held.isChecked()):
+            self._held.setChecked(False)
+            raise UserError(
+                "There is no margin to hold yet: it takes a zone, a reference level "
+                "and a current."
+            )
+
+    def _copy_picture(self) -> None:
+        w = self._window
+        copy_picture(w.drawings, w.caption_text())
+        w.messages.inform("The picture is on the clipboard, with its caption.")
+
+    def _rise(self, *, down: bool) -> None:
+        tool = self._window.toolbox.active
+        if not (isinstance(tool, RunTool) and tool.rise(down=down)):
+            commands.raise_selected_run(self._window.document, down=down)
 
     def _fit_range(self) -> None:
         document = self._window.document

@@ -52,7 +52,10 @@ def heading(items: tuple[Item, ...]) -> str:
     kinds = {type(item) for item in items}
     if len(items) == 1:
         one, _, _ = _FORMS[type(items[0])]
-        return f"{one.capitalize()} {items[0].title}"
+        title = items[0].title
+        # "Room 1" says what it is.
+        is_said = title.lower().startswith(one)
+        return title if is_said else f"{one.capitalize()} {title}"
     if len(kinds) == 1:
         return f"{len(items)} {_FORMS[kinds.pop()][1]}"
     return f"{len(items)} items"

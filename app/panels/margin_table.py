@@ -31,6 +31,7 @@ from app.panels.margin_words import (
     sentence,
     state_text,
     value_text,
+    was_text,
 )
 from app.theme import STEP, theme_for
 from engine.layout import Layout
@@ -59,10 +60,12 @@ class MarginModel(QAbstractTableModel):
         self.rows: tuple[MarginRow, ...] = ()
         self._layout_shown = Layout()
         self._is_sampled = False
+        self._held: Margins | None = None
         self._theme = theme_for(QWidget().palette())
 
-    def set_margins(self, margins: Margins) -> None:
+    def set_margins(self, margins: Margins, held: Margins | None = None) -> None:
         """Show other margins: sorted when exact, else in the order they had."""
+        self._held = held
         self._layout_shown, self._is_sampled = margins.layout, margins.is_sampled
         if margins.is_sampled:
             places = {(r.place, r.level): k for k, r in enumerate(self.rows)}
@@ -119,7 +122,7 @@ class MarginModel(QAbstractTableModel):
             "",
             row.place_title,
             level_text(row, shown),
-            value_text(row, shown, sampled),
+            value_text(row, shown, sampled) + was_text(row, self._held),
             ratio_text(row, sampled),
             "–" if spread is None else flux_density_text(spread, unit),
             "" if sampled else state_text(row),
@@ -182,9 +185,17 @@ class MarginTable(QTableView):
         self.clicked.connect(self._on_chosen)
         self.activated.connect(self._on_chosen)
 
-    def set_margins(self, margins: Margins) -> None:
+    def set_margins(self, margins: Margins, held: Margins | None = None) -> None:
         self._model._theme = theme_for(self.palette())
-        self._model.set_margins(margins)
+        self._model.set_margins(margins, held)
+        width = 84 if held is None else 190
+        self.horizontalHeader().resizeSection(3, width)
+
+    @property
+    def current(self) -> MarginRow | None:
+        """The row that is chosen."""
+        index = self.currentIndex()
+        return self._model.rows[index.row()] if index.isValid() else None
 
     @property
     def rows(self) -> tuple[MarginRow, ...]:

@@ -67,6 +67,16 @@ def value_text(row: MarginRow, layout: Layout, sampled: bool) -> str:
     return f"{wording(layout, unit).beside(row.value, row.level_value)} {unit}"
 
 
+def was_text(row: MarginRow, held: Margins | None) -> str:
+    """ ", was 61.2 µT" for a row whose value is held as before; else empty."""
+    if held is None:
+        return ""
+    for before in held.rows:
+        if (before.place, before.level) == (row.place, row.level):
+            return f", was {value_text(before, held.layout, held.is_sampled)}"
+    return ", was not there"
+
+
 def level_text(row: MarginRow, layout: Layout) -> str:
     """The level's name, with its value where one frequency is compared."""
     if row.level_value is None:

@@ -96,14 +96,21 @@ class MarginTile(QAbstractButton):
     def minimumSizeHint(self) -> QSize:
         return QSize(300, 7 * STEP)
 
-    def show_row(self, row: MarginRow, shown: Layout, is_sampled: bool) -> None:
+    def show_row(
+        self,
+        row: MarginRow,
+        shown: Layout,
+        is_sampled: bool,
+        held: Margins | None = None,
+    ) -> None:
         self.row = row
         theme = theme_for(self.palette())
         muted = theme.muted if is_sampled else ""
         state = "" if is_sampled else row.state
         self.title.set_whole(f"{row.place_title} · {words.level_text(row, shown)}")
         self.bar.set_row(row, is_sampled)
-        value = words.value_text(row, shown, is_sampled)
+        was = words.was_text(row, held)
+        value = words.value_text(row, shown, is_sampled) + was
         if row.ratio is not None and row.level_value is None:
             value += f" · ratio {words.ratio_text(row, is_sampled)}"
         self.value.set_whole(value, muted)
@@ -111,7 +118,7 @@ class MarginTile(QAbstractButton):
         text = "" if is_sampled else words.state_text(row)
         self.state.set_whole(text, state_colour(theme, state))
         self.case.set_whole(row.case_title, theme.muted)
-        said = words.sentence(row, shown, is_sampled)
+        said = words.sentence(row, shown, is_sampled) + was
         self.setAccessibleName(said)
         self.setToolTip(f"{said}.\nClick to see the place.")
 
@@ -145,6 +152,7 @@ class MarginsPanel(QWidget):
         self._document = document
         self._margins: Margins | None = None
         self._kept: tuple[str, str] | None = None
+        self._held: Margins | None = None
         self.setAccessibleName("Margins")
         self.tile = MarginTile()
         self.tile.clicked.connect(self._go_to_worst)
@@ -193,7 +201,7 @@ class MarginsPanel(QWidget):
     def set_margins(self, margins: Margins) -> None:
         """Show other margins, sampled or exact."""
         self._margins = margins
-        self.table.set_margins(margins)
+        self.table.set_margins(margins, self._held)
         row = self._worst(margins)
         if row is None:
             self._show_empty()
@@ -202,7 +210,7 @@ class MarginsPanel(QWidget):
         self._kept = (row.place, row.level)
         self.empty.hide()
         self.tile.show()
-        self.tile.show_row(row, margins.layout, is_sampled)
+        self.tile.show_row(row, margins.layout, is_sampled, self._held)
         self.counts.show()
         counted = "" if is_sampled else words.counts_text(margins.rows)
         self.counts.setText(f"{counted or 'counts once settled'} ▸")
@@ -214,6 +222,26 @@ class MarginsPanel(QWidget):
             self.net_current.setVisible(bool(text))
         self.net_current.setEnabled(not is_sampled)
         self.open_board.setVisible(words.is_at_open_board(margins.layout))
+
+    @property
+    def sentence(self) -> str:
+        """The chosen comparison of the table, or the worst, in words; may be empty."""
+        margins = self._margins
+        row = self.table.current if self.is_open else None
+        row = row or (self.tile.row if self.tile.isVisibleTo(self) else None)
+        if margins is None or row is None:
+            return ""
+        was = words.was_text(row, self._held)
+        return f"{words.sentence(row, margins.layout, margins.is_sampled)}{was}."
+
+    def hold(self, on: bool) -> bool:
+        """Keep the present values beside the coming ones; False without any."""
+        if on and (self._margins is None or self._margins.worst is None):
+            return False
+        self._held = self._margins if on else None
+        if self._margins is not None:
+            self.set_margins(self._margins)
+        return True
 
     def close_opened(self) -> bool:
         """Close table or cautions; False when neither was open."""

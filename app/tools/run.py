@@ -60,6 +60,16 @@ class RunTool(Points):
             self._chosen["next leg"] = LEVEL
             self._say()
 
+    def rise(self, *, down: bool = False) -> bool:
+        """Go from the last vertex to the next floor; False when none is placed."""
+        if not self._points:
+            return False
+        x, y, z = self._points[-1]
+        with self._shown():
+            self._add((x, y, riser_to(self._document.committed, z, down=down)))
+        self._say()
+        return True
+
     def double_click(self, pointer: Pointer) -> None:
         if self.next_leg != LEVEL:
             self.press(pointer)

@@ -24,6 +24,7 @@ from app.tools.catch import NO_TARGETS, Catch, catch, held
 from app.tools.tool import Pointer, Tool
 from app.view_state import Look, ViewState
 from app.views.camera import Camera
+from app.views.cut_mark import cut_place, draw_cut
 from app.views.drawing_scene import DrawingScene
 from app.views.inks import Inks
 from app.views.legend import Legend
@@ -33,6 +34,7 @@ from app.views.picture_painter import PicturePainter
 from app.views.projection import PLAN, Sight
 from app.views.scale_bar import grid_step
 from app.views.zoomable_view import ZoomableView
+from engine.runs import Run
 
 _MARGIN = 56.0
 
@@ -48,6 +50,13 @@ _ARROWS = {
 }
 
 
+_COMMANDS = (
+    Qt.KeyboardModifier.ControlModifier
+    | Qt.KeyboardModifier.AltModifier
+    | Qt.KeyboardModifier.MetaModifier
+)
+
+
 class DrawingView(ZoomableView):
     """The layout on plan or from a side.
 
@@ -56,10 +65,13 @@ class DrawingView(ZoomableView):
     pointer_moved(x, y)
         Place in the view's plane under the pointer, after the catch. [m]
     pointer_left()
+    entry_wanted(text)
+        Tab or a letter while a tool awaits a place: it belongs into the entry strip.
     """
 
     pointer_moved = Signal(float, float)
     pointer_left = Signal()
+    entry_wanted = Signal(str)
 
     def __init__(
         self,
@@ -80,6 +92,7 @@ class DrawingView(ZoomableView):
         self._pixels: QPixmap | None = None
         self._tool: Tool | None = None
         self._pointer: Pointer | None = None
+        self._cut: tuple[str, bool] | None = None
         self.catches_places = True
         self.holds_directions = False
         self._legend = Legend(self._inks, self.viewport())
@@ -152,6 +165,11 @@ class DrawingView(ZoomableView):
             self.fit()
         self.refresh()
 
+    def set_cut(self, run: str, from_end: bool) -> None:
+        """Mark where that run is cut while it is selected; an empty id for none."""
+        self._cut = (run, from_end) if run else None
+        self.viewport().update()
+
     def refresh(self) -> None:
         """Draw the picture anew."""
         self._pixels = None
@@ -219,12 +237,25 @@ class DrawingView(ZoomableView):
             self._picture.paint(self._pixels, camera, self._document.layout, legend)
         painter = QPainter(self.viewport())
         painter.drawPixmap(0, 0, self._pixels)
+        self._paint_cut(painter, camera)
         if self._tool is not None:
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             draw_overlay(painter, self._tool.overlay(), camera, self._inks)
             if self._pointer is not None and self._tool.catches():
                 draw_catch(painter, self._pointer, camera, self._inks)
         painter.end()
+
+    def _paint_cut(self, painter: QPainter, camera: Camera) -> None:
+        run, from_end = self._cut or ("", False)
+        if run not in self._document.selection or self._sight is not PLAN:
+            return
+        item = self._document.layout.by_id().get(run)
+        if not isinstance(item, Run):
+            return
+        found = cut_place([(x, y) for x, y, _ in item.route], from_end)
+        if found is not None:
+            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+            draw_cut(painter, *found, camera, self._inks)
 
     @property
     def _legend_shows(self) -> bool:
@@ -313,6 +344,19 @@ class DrawingView(ZoomableView):
 
     # -- keys -------------------------------------------------------------------
 
+    def event(self, event: QEvent) -> bool:
+        # While a tool awaits a place, Tab leads to where it can be typed.
+        if (
+            isinstance(event, QKeyEvent)
+            and event.type() == QEvent.Type.KeyPress
+            and event.key() == Qt.Key.Key_Tab
+            and self._tool is not None
+            and self._tool.catches()
+        ):
+            self.entry_wanted.emit("")
+            return True
+        return super().event(event)
+
     def keyPressEvent(self, event: QKeyEvent) -> None:
         key, tool = Qt.Key(event.key()), self._tool
         if key == Qt.Key.Key_Home:
@@ -330,6 +374,8 @@ class DrawingView(ZoomableView):
             tool.backspace()
         elif key == Qt.Key.Key_Delete:
             tool.delete()
+        elif event.text().isalpha() and not event.modifiers() & _COMMANDS:
+            self.entry_wanted.emit(event.text())
         elif key != Qt.Key.Key_Escape or not tool.back():
             event.ignore()
 
