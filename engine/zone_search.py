@@ -18,7 +18,9 @@ from engine.evaluations import (
     points_over,
 )
 from engine.levels import Kind, is_kind, ratios
+from engine.mask_edges import MaskEdges
 from engine.regions import Region, Sample, first_sample
+from engine.surface_cells import joined
 from engine.zoom import Zoom, zoom_in
 
 Floats = NDArray[np.float64]
@@ -77,8 +79,8 @@ def search(
 
     A grid whose pieces are no longer than half the distance to the nearest conductor
     (down to 20 mm), then ever finer grids around the largest separate candidates until
-    the maximum changes by less than 0.1 %. Masks are applied at every step, so a
-    maximum on the edge of a mask is found. The volume rule looks at the volume's skin
+    the maximum changes by less than 0.1 %. Points that a mask hides are moved onto its
+    edge, so a maximum there is found. The volume rule looks at the volume's skin
     and the surfaces of the masks: free of currents, RMS² is subharmonic and largest on
     the boundary.
 
@@ -87,7 +89,7 @@ def search(
     UserError
         When the region takes too many points.
     """
-    sample = first_sample(fields, region)
+    sample = _with_edges(fields, region, first_sample(fields, region))
     scores, masks = _scores(fields, region, quantities, sample.cells.points)
     if region.rule == "area mean":
         found = _area_means(fields, region, quantities, sample)
@@ -107,6 +109,18 @@ def search(
     )
 
 
+def _with_edges(fields: CaseFields, region: Region, sample: Sample) -> Sample:
+    """The sample with places on the edges of the masks, which stand for no area."""
+    if region.rule in ("area mean", "maximum over volume"):
+        return sample
+    closed = {k.item: k for case in fields.cases for k in case.closed}
+    edges = MaskEdges(fields, region, tuple(closed.values())).beside(sample.cells)
+    layers = np.full(len(edges.areas), -1)
+    return Sample(
+        joined([sample.cells, edges]), np.concatenate([sample.layers, layers])
+    )
+
+
 def _largest(
     fields: CaseFields,
     region: Region,
@@ -121,7 +135,9 @@ def _largest(
         key = quantity.same_place_as(fields.cases[quantity.case].frequencies)
         keys.append(key)
         if key not in zooms and np.any(np.isfinite(score)):
-            zooms[key] = Zoom(region, quantity, sample.cells, score)
+            closed = fields.cases[quantity.case].closed
+            edges = MaskEdges(fields, region, closed)
+            zooms[key] = Zoom(region, quantity, sample.cells, score, edges)
     zoom_in(fields, region, list(zooms.values()))
     ends = [zooms[key].end if key in zooms else None for key in keys]
     places = [end[0] for end in ends if end is not None]

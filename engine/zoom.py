@@ -9,6 +9,7 @@ from numpy.typing import NDArray
 
 from engine.case_fields import CaseFields
 from engine.evaluations import Quantity, evaluations
+from engine.mask_edges import MaskEdges
 from engine.regions import Region
 from engine.sampling import held_inside
 from engine.surface_cells import Cells
@@ -40,12 +41,20 @@ class Zoom:
         The first grid of n places.
     score : (n,) float
         Of the grid's places, −inf where masked, somewhere finite.
+    edges : MaskEdges
+        Places that are hidden are moved onto them.
     """
 
     def __init__(
-        self, region: Region, quantity: Quantity, cells: Cells, score: Floats
+        self,
+        region: Region,
+        quantity: Quantity,
+        cells: Cells,
+        score: Floats,
+        edges: MaskEdges,
     ) -> None:
         self.quantity = quantity
+        self._edges = edges
         self._region = region
         self._grid = _grid(region)
         chosen = _candidates(cells, score)
@@ -67,14 +76,16 @@ class Zoom:
         return self._centres[int(np.argmax(self._values))], self._step
 
     def _next_places(self) -> Floats:
-        """(candidates, grid, 3) places around the candidates, inside the region."""
+        """(candidates, k, 3) places around the candidates, inside the region."""
         around = self._reach[:, None, None] * self._grid
         places = (self._centres[:, None] + around).reshape(-1, 3)
         held = held_inside(self._region.outline, places)
         if _is_volume(self._region):
             low, high = (self._region.floor + h for h in self._region.volume)
             held = np.column_stack([held[:, :2], np.clip(held[:, 2], low, high)])
-        return held.reshape(len(self._centres), -1, 3)
+        variants = self._edges.variants(held)
+        by_centre = variants.reshape(len(variants), len(self._centres), -1, 3)
+        return by_centre.swapaxes(0, 1).reshape(len(self._centres), -1, 3)
 
     def take(self, scores: Floats) -> None:
         """Go on from the scores (k,) of the places."""
