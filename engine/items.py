@@ -91,6 +91,22 @@ class SourceDocument(Item, frozen=True, kw_only=True):
     sha256: Digest = ""
 
 
+class IssuedResult(Value, frozen=True, kw_only=True):
+    """A result as it was issued: the largest value, or a comparison with a level."""
+
+    #: Id of the zone or receptor, and of the load case.
+    place: Id
+    case: Id
+    #: Id of the level; empty: the RMS resultant without any level.
+    level: Name = ""
+    #: "AC", "DC", or empty where nothing was compared.
+    kind: Name = ""
+    #: [T]
+    value: float | None = None
+    ratio: float | None = None
+    state: Name = ""
+
+
 class IssuedRevision(Item, frozen=True, kw_only=True):
     """A revision that left the house: digests tie it to its layout and results."""
 
@@ -99,6 +115,8 @@ class IssuedRevision(Item, frozen=True, kw_only=True):
     layout_digest: Name
     results_digest: Name
     program_version: Name
+    #: What was issued, so that a later program can be held against it.
+    results: Annotated[tuple[IssuedResult, ...], Meta(max_length=200_000)] = ()
 
 
 class ConfirmedRemark(Item, frozen=True, kw_only=True):
@@ -127,3 +145,13 @@ class TitleData(Item, frozen=True, kw_only=True):
     question: Text = ""
     scope: Text = ""
     conclusions: Text = ""
+    #: What is left out on purpose, beside what the program never models.
+    exclusions: Text = ""
+    #: The house that issues the document: name and address, under the logo.
+    letterhead: Text = ""
+    #: A PNG or JPEG picture (base64) at the head of the first page; empty: none.
+    logo: Annotated[str, Meta(max_length=4_000_000)] = ""
+    #: Why those who sign are competent, in their words.
+    competence: Text = ""
+    #: A text of the house before the signatures: terms, distribution, thanks.
+    closing: Text = ""
