@@ -158,8 +158,11 @@ def changed_ids(before: Layout, after: Layout) -> frozenset[str]:
 
 
 def unused_id(layout: Layout, stem: str) -> str:
-    """A readable id that no item of the layout has, made from `stem`."""
-    return readable_id(stem, {item.id for item in layout.items()})
+    """A readable id that no item of the layout or its variants has, from `stem`."""
+    taken = {item.id for item in layout.items()}
+    for variant in layout.variants:
+        taken.update(item.id for item in variant.added.items())
+    return readable_id(stem, taken)
 
 
 def readable_id(stem: str, taken: Collection[str]) -> str:

@@ -32,10 +32,12 @@ from engine.places import (
     Receptor,
     Room,
     Storey,
+    Tolerances,
     Uncertainty,
     Zone,
 )
 from engine.runs import Joint, Run
+from engine.variant import Variant
 
 FluxDensityUnit = Literal["µT", "mT", "nT", "mG", "G", "A/m"]
 
@@ -55,6 +57,8 @@ class Settings(Item, frozen=True, kw_only=True):
     #: Step of exported grids. [m]
     grid_step: Length = 0.25
     uncertainty: Uncertainty = Uncertainty()
+    #: What budgets of uncertainty are made of.
+    tolerances: Tolerances = Tolerances()
     decision_rule: DecisionRule = DecisionRule()
     #: Direction of north on plan, counter-clockwise from +x. None: not stated.
     north: float | None = None
@@ -78,6 +82,7 @@ class Layout(Value, frozen=True, kw_only=True):
     levels: Annotated[tuple[ReferenceLevel, ...], Meta(max_length=500)] = ()
     load_cases: Annotated[tuple[LoadCase, ...], Meta(max_length=200)] = ()
     profiles: Annotated[tuple[Profile, ...], Meta(max_length=500)] = ()
+    variants: Annotated[tuple[Variant, ...], Meta(max_length=50)] = ()
     backing_drawings: Annotated[tuple[BackingDrawing, ...], Meta(max_length=50)] = ()
     revisions: Annotated[tuple[IssuedRevision, ...], Meta(max_length=500)] = ()
     confirmed_remarks: Annotated[

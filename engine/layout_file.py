@@ -9,20 +9,20 @@ from __future__ import annotations
 import codecs
 import json
 from collections import Counter
-from collections.abc import Iterator
-from functools import cache
+from collections.abc import Iterable, Iterator
 from pathlib import Path
 from typing import Annotated, Any
 
 import msgspec
 from msgspec import Meta, structs
 
-from engine import migrations
+from engine import migrations, plain_values
 from engine.errors import UserError
 from engine.items import Value
 from engine.layout import Layout
 from engine.runs import FreeSection, ParallelSets, Run, StackedBars
 from engine.value_faults import faults, told
+from engine.variant import Variant
 from engine.written_file import write_file
 
 #: Largest file that is opened. [bytes]
@@ -117,8 +117,10 @@ def encode(layout: Layout) -> bytes:
     UserError
         When a value is not one that could be read back.
     """
-    plain = _plain(layout)
-    content = {"lodestead_layout": migrations.SCHEMA_VERSION, "layout": plain}
+    content = {
+        "lodestead_layout": migrations.SCHEMA_VERSION,
+        "layout": plain_values.plain(layout),
+    }
     found = [_without_root(fault) for fault in faults(LayoutFile, content)]
     found = found or [*_repeated_ids(layout), *_too_much(layout)]
     if found:
@@ -251,8 +253,14 @@ def _paths(layout: Layout) -> Iterator[tuple[str, str]]:
 
 
 def _repeated_ids(layout: Layout) -> Iterator[str]:
+    yield from _repeated(_paths(layout))
+    for index, variant in enumerate(layout.variants):
+        yield from _repeated(_paths_in(f"variants[{index}]", variant))
+
+
+def _repeated(paths: Iterable[tuple[str, str]]) -> Iterator[str]:
     first: dict[str, str] = {}
-    for path, item_id in _paths(layout):
+    for path, item_id in paths:
         if item_id in first:
             yield (
                 f'{path}.id: "{item_id}" is the id of {first[item_id]} already; '
@@ -262,9 +270,17 @@ def _repeated_ids(layout: Layout) -> Iterator[str]:
             first[item_id] = path
 
 
+def _paths_in(path: str, variant: Variant) -> Iterator[tuple[str, str]]:
+    """Where each item of a variant stands, and its id."""
+    for name, items in (("replaced", variant.replaced), ("added", variant.added)):
+        for field in structs.fields(items):
+            for index, item in enumerate(getattr(items, field.name)):
+                yield f"{path}.{name}.{field.name}[{index}]", item.id
+
+
 def _too_much(layout: Layout) -> Iterator[str]:
     legs = loads = 0
-    for run in layout.runs:
+    for run in _all_runs(layout):
         slots, carried = _slot_counts(run)
         legs += (len(run.route) - 1) * slots
         loads += carried
@@ -280,6 +296,13 @@ def _too_much(layout: Layout) -> Iterator[str]:
         )
 
 
+def _all_runs(layout: Layout) -> Iterator[Run]:
+    """Runs of the base and of every variant."""
+    yield from layout.runs
+    for variant in layout.variants:
+        yield from (*variant.replaced.runs, *variant.added.runs)
+
+
 def _slot_counts(run: Run) -> tuple[int, int]:
     """How many slots a run has, and how many currents they carry together."""
     section = run.section
@@ -292,27 +315,6 @@ def _slot_counts(run: Run) -> tuple[int, int]:
     else:
         slots = len(section.order)
     return slots, slots * len(section.circuits)
-
-
-def _plain(value: Any) -> Any:
-    """Lists, dictionaries, text and numbers; fields with their default left out."""
-    if isinstance(value, tuple | list):
-        return [_plain(part) for part in value]
-    if not isinstance(value, msgspec.Struct):
-        return value
-    config = value.__struct_config__
-    plain = {} if config.tag is None else {str(config.tag_field): config.tag}
-    for name, default in _defaults(type(value)):
-        part = getattr(value, name)
-        if default is msgspec.NODEFAULT or part != default:
-            plain[name] = _plain(part)
-    return plain
-
-
-@cache
-def _defaults(kind: type[msgspec.Struct]) -> tuple[tuple[str, Any], ...]:
-    """Names and defaults of the fields, as they stand in a file."""
-    return tuple((field.name, field.default) for field in structs.fields(kind))
 
 
 def _lines(value: Any) -> list[str]:

@@ -11,7 +11,7 @@ from collections.abc import Callable, Mapping
 from typing import Any
 
 #: Version of the form that this program writes.
-SCHEMA_VERSION = 2
+SCHEMA_VERSION = 3
 
 Plain = dict[str, Any]
 
@@ -69,4 +69,15 @@ def _with_floor_level(zone: object) -> object:
     }
 
 
-_MIGRATIONS: Mapping[int, Callable[[Plain], Plain]] = {1: _settings_from_defaults}
+def _with_variants(layout: Plain) -> Plain:
+    """Version 2 to 3: variants came, and an uncertainty that a budget gives.
+
+    Older files have neither; programs of version 2 must refuse files that may.
+    """
+    return layout
+
+
+_MIGRATIONS: Mapping[int, Callable[[Plain], Plain]] = {
+    1: _settings_from_defaults,
+    2: _with_variants,
+}

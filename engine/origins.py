@@ -28,7 +28,7 @@ AnyItem = TypeVar("AnyItem", bound=Item)
 #: What a result depends on, by type of item. The other fields are wording, wiring or
 #: appearance.
 ENTERED_VALUES: dict[type[Item], tuple[str, ...]] = {
-    Settings: ("uncertainty",),
+    Settings: ("uncertainty", "tolerances"),
     Storey: ("floor_level",),
     Room: ("outline", "floor_level", "ceiling_level"),
     Enclosure: ("footprint", "z_from", "z_to", "state", "front_clearance"),
@@ -53,6 +53,7 @@ ENTERED_VALUES: dict[type[Item], tuple[str, ...]] = {
 #: Fields that say nothing while they hold their default: not an assumption then.
 _SILENT: frozenset[tuple[type[Item], str]] = frozenset(
     {
+        (Settings, "tolerances"),
         (Enclosure, "front_clearance"),
         (Board, "rated_current"),
         (Run, "turns"),

@@ -39,6 +39,10 @@ SpatialRule = Literal[
 Heights = Annotated[tuple[Coordinate, ...], Meta(min_length=1, max_length=50)]
 
 
+#: A part of a value.
+Tolerance = Annotated[float, Meta(ge=0, le=10)]
+
+
 class Storey(Item, frozen=True, kw_only=True):
     """A storey of the building, by the level of its floor above the datum."""
 
@@ -80,6 +84,36 @@ class Uncertainty(Value, frozen=True, kw_only=True):
     absolute: Annotated[float, Meta(ge=0, le=10)] = 0.0
     coverage: Annotated[float, Meta(gt=0, le=10)] = 2.0
     basis: Text = "assumed"
+    #: "from the budget": the coverage factor times the standard uncertainty of the
+    #: place's own budget stands instead of the relative part.
+    kind: Literal["entered", "from the budget"] = "entered"
+
+
+class Tolerances(Value, frozen=True, kw_only=True):
+    """Standard uncertainties (k = 1) of what a budget is made of.
+
+    The defaults are assumed: 5 % of the current, 7 mm on 150 mm of spacing, 50 mm of
+    distance (35 mm each of the run and of the place), 10 % of sharing.
+    """
+
+    #: Of every circuit's current, as a part of it.
+    current: Tolerance = 0.05
+    #: Of every circuit's angle against the others. [degrees]
+    angle: Annotated[float, Meta(ge=0, le=180)] = 3.0
+    #: Of each line's current by itself, in step and across it, as a part of it.
+    unbalance: Tolerance = 0.03
+    #: Of an entered net current, as a part of it.
+    net_current: Tolerance = 0.1
+    #: Of the spacings in a section, as a part of them.
+    pitch: Tolerance = 0.05
+    #: Of a run or an equipment along each axis. [m]
+    position: Annotated[float, Meta(ge=0, le=100)] = 0.035
+    #: Of the place itself along each axis. [m]
+    place: Annotated[float, Meta(ge=0, le=100)] = 0.035
+    #: Of the calculation, steel and crowded current left out, as a part of the value.
+    model: Tolerance = 0.03
+    #: What is measured counts with this part of the tolerance.
+    measured_part: Tolerance = 0.5
 
 
 class DecisionRule(Value, frozen=True, kw_only=True):

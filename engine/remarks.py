@@ -8,7 +8,8 @@ statements, W19 frequencies without a level, W20 values that U reaches, W21 and 
 scaled measurements, W23 heights of receptors, W24 missing heights and scales, W25
 coils, W26 persons at particular risk, W27 stray fields of transformers, W28 assumed
 values, W29 cables as net current only, W30 rounding, W31 assumed angles, W32 measured
-neutrals, W33 circuits without a phase relation.
+neutrals, W33 circuits without a phase relation, W34 to W36 variants whose base has
+changed.
 """
 
 from __future__ import annotations
@@ -32,6 +33,7 @@ from engine.run_remarks import (
     rating_remarks,
     run_remarks,
 )
+from engine.variant_remarks import variant_remarks
 
 __all__ = ["Remark", "confirmed_remarks", "remarks"]
 
@@ -118,6 +120,7 @@ def _found(
         yield from free_end_remarks(layout, nodes(layout), conductors(layout))
     for case in layout.cases:
         yield from _of_case(layout, case)
+    yield from variant_remarks(layout)
     if assessment is not None:
         yield from result_remarks(assessment, unit)
 

@@ -39,6 +39,7 @@ from rooms.invented import (
     lagging,
 )
 from rooms.laboratory_places import enclosures, levels, receptors, rooms, zones
+from rooms.laboratory_variants import variants
 
 POLES = ("L1", "L2", "L3", "N")
 #: Places of the output conductors along y. [m]
@@ -310,6 +311,7 @@ def battery_laboratory() -> Layout:
             for letter, category, values, use in levels()
         ),
         load_cases=load_cases(),
+        variants=variants((string(1, 4.55), string(2, 4.15)), output_cables()),
         profiles=(
             Profile(
                 id="to-the-microscope",

@@ -27,6 +27,7 @@ from engine.runs import (
     SlotLoad,
 )
 from rooms.imaging_places import enclosures, milligauss, receptors, rooms, zones
+from rooms.imaging_variants import variants
 from rooms.invented import (
     assumed,
     example_level,
@@ -324,6 +325,7 @@ def imaging_corridor() -> Layout:
                 basis="normal supply lost",
             ),
         ),
+        variants=variants(circuits(), runs()),
         profiles=(
             Profile(
                 id="from-the-shaft",

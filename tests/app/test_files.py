@@ -53,7 +53,7 @@ def test_saved_work_comes_back(files, tmp_path, told):
 
 def test_a_damaged_file_is_explained_and_the_open_layout_stays(files, tmp_path, told):
     path = tmp_path / "broken.json"
-    path.write_text('{"lodestead_layout": 2, "layout": {"runs": 7}}', "utf-8")
+    path.write_text('{"lodestead_layout": 3, "layout": {"runs": 7}}', "utf-8")
     before = files._document.layout
     assert not files.open(path)
     assert files._document.layout is before

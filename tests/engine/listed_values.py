@@ -28,10 +28,12 @@ def rich_layout() -> Layout:
     return msgspec.convert(by_field, Layout)
 
 
-def _number_ids(by_field: Plain) -> None:
+def _number_ids(by_field: Plain, stem: str = "") -> None:
     for name, held in by_field.items():
         for index, item in enumerate(held if isinstance(held, list) else [held]):
-            item["id"] = f"{name} {index}"
+            item["id"] = f"{stem}{name} {index}"
+            for part in ("replaced", "added") if name == "variants" else ():
+                _number_ids(item[part], f"{part} ")
 
 
 def _examples(kind: inspect.Type) -> list[Any]:

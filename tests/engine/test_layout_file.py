@@ -35,7 +35,7 @@ RUN = Run(
 SMALL = Layout(runs=(RUN,))
 
 
-def faulty(layout: object, version: object = 2) -> bytes:
+def faulty(layout: object, version: object = 3) -> bytes:
     return json.dumps({"lodestead_layout": version, "layout": layout}).encode()
 
 
@@ -123,7 +123,7 @@ ONE_FAULT = {
     "empty": (b"", ["it is empty"]),
     "blank": (b" \n\t", ["it is empty"]),
     "text": (b"Dear all,", ["not valid JSON", "line 1, column 1"]),
-    "second line": (b'{"lodestead_layout": 2,\n nothing}', ["line 2, column 2"]),
+    "second line": (b'{"lodestead_layout": 3,\n nothing}', ["line 2, column 2"]),
     "truncated": (encode(SMALL)[:-20], ["ends too early"]),
     "truncated in text": (b'{"lodestead_l', ["ends too early"]),
     "two documents": (faulty({}) * 2, ["not valid JSON", "Extra data"]),
@@ -133,31 +133,31 @@ ONE_FAULT = {
     "list": (b"[]", ["it is not a layout"]),
     "number": (b"7", ["it is not a layout"]),
     "other JSON": (b'{"rooms": []}', ["it is not a layout"]),
-    "version text": (faulty({}, "2"), ["lodestead_layout", "whole number from 1 to 2"]),
+    "version text": (faulty({}, "2"), ["lodestead_layout", "whole number from 1 to 3"]),
     "version true": (faulty({}, True), ["lodestead_layout", "whole number"]),
     "version zero": (faulty({}, 0), ["lodestead_layout", "whole number"]),
     "version 2.5": (faulty({}, 2.5), ["lodestead_layout", "whole number"]),
-    "future": (faulty({}, 3), ["newer version of the program", "form 3", "up to 2"]),
+    "future": (faulty({}, 4), ["newer version of the program", "form 4", "up to 3"]),
     "far future": (faulty({}, 10**40), ["newer version of the program"]),
-    "no layout": (b'{"lodestead_layout": 2}', ["layout: is missing"]),
+    "no layout": (b'{"lodestead_layout": 3}', ["layout: is missing"]),
     "layout a list": (faulty([]), ["layout: expected an object, got a list"]),
     "old, a list": (faulty([], 1), ["layout: expected an object, got a list"]),
     "beside": (
-        b'{"lodestead_layout": 2, "layout": {}, "extra": 1}',
+        b'{"lodestead_layout": 3, "layout": {}, "extra": 1}',
         ["extra: is no field that is known here"],
     ),
     "deep": (b"[" * 200_000, ["nested too deeply"]),
     "deepish": (
-        b'{"lodestead_layout": 2, "layout": ' + b"[" * 99 + b"]" * 99 + b"}",
+        b'{"lodestead_layout": 3, "layout": ' + b"[" * 99 + b"]" * 99 + b"}",
         ["nested more than 40 levels"],
     ),
     "many": (b"[" + b"[]," * 5_000_001 + b"[]]", ["more than 5,000,000 entries"]),
     "twice": (
-        b'{"lodestead_layout": 2, "layout": {"runs": [], "runs": []}}',
+        b'{"lodestead_layout": 3, "layout": {"runs": [], "runs": []}}',
         ["runs: stands more than once"],
     ),
     "twice inside": (
-        b'{"lodestead_layout": 2, "layout": {"title": {"id": "t", "id": "t"}}}',
+        b'{"lodestead_layout": 3, "layout": {"title": {"id": "t", "id": "t"}}}',
         ["title.id: stands more than once"],
     ),
     "twice, old": (
@@ -228,15 +228,15 @@ ONE_FAULT = {
         ["title.name: has half a character"],
     ),
     "infinite": (
-        b'{"lodestead_layout": 2, "layout": {"settings": {"north": 1e999}}}',
+        b'{"lodestead_layout": 3, "layout": {"settings": {"north": 1e999}}}',
         ["settings.north: expected a finite number"],
     ),
     "not a number": (
-        b'{"lodestead_layout": 2, "layout": {"settings": {"north": NaN}}}',
+        b'{"lodestead_layout": 3, "layout": {"settings": {"north": NaN}}}',
         ["settings.north: expected a finite number"],
     ),
     "endless digits": (
-        b'{"lodestead_layout": 2, "layout": {"settings": {"north": 1%s}}}'
+        b'{"lodestead_layout": 3, "layout": {"settings": {"north": 1%s}}}'
         % (b"0" * 10_000),
         ["settings.north: expected a finite number"],
     ),
@@ -431,13 +431,34 @@ def test_a_file_of_version_1_becomes_the_present_layout() -> None:
     assert decode(encode(layout), "again") == layout
 
 
+def test_a_file_of_version_2_has_no_variants_and_entered_uncertainties() -> None:
+    data = (DATA / "version-2-switch-room.json").read_bytes()
+    assert json.loads(data)["lodestead_layout"] == 2
+    layout = decode(data, "old.json")
+    assert layout.variants == ()
+    assert layout.settings.uncertainty.kind == "entered"
+    assert [run.id for run in layout.runs] == ["incoming-bars", "chiller-cables"]
+    again = encode(layout)
+    assert decode(again, "again") == layout
+    # Nothing but the version of the form has come to the text.
+    assert again == data.replace(b'"lodestead_layout": 2', b'"lodestead_layout": 3')
+
+
+def test_ids_in_a_variant_are_unique() -> None:
+    run = msgspec.to_builtins(RUN)
+    variant = {"id": "v", "replaced": {"runs": [run]}, "added": {"runs": [run]}}
+    text = told(faulty({"variants": [variant]}))
+    assert "variants[0].added.runs[0].id" in text
+    assert "variants[0].replaced.runs[0] already" in text
+
+
 def test_a_migration_leaves_its_input_alone() -> None:
     old = {"defaults": {"unit": "mG"}, "zones": [{"floor": 1}]}
     kept = json.dumps(old)
     migrations.migrated(old, 1)
     assert json.dumps(old) == kept
-    with pytest.raises(ValueError, match="no migration from version 3"):
-        migrations.migrated(old, 3)
+    with pytest.raises(ValueError, match="no migration from version 4"):
+        migrations.migrated(old, 4)
 
 
 def test_the_published_schema_is_that_of_the_types() -> None:
