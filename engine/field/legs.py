@@ -112,7 +112,7 @@ def _table(conductor: Conductor) -> Floats:
 
 
 @njit(nogil=True, cache=True, error_model="numpy")
-def _leg_distance(leg: Floats, x: float, y: float, z: float) -> float:
+def leg_distance(leg: Floats, x: float, y: float, z: float) -> float:
     dx, dy, dz = x - leg[0], y - leg[1], z - leg[2]
     along = dx * leg[3] + dy * leg[4] + dz * leg[5]
     if leg[_ROUND] > 0:
@@ -141,7 +141,7 @@ def nearest_surface(table: Floats, points: Floats) -> Floats:
     out = np.full(points.shape[0], np.inf)
     for i in range(points.shape[0]):
         for k in range(table.shape[0]):
-            d = _leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
+            d = leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
             out[i] = min(out[i], d)
     return out
 
@@ -152,7 +152,7 @@ def any_nearer(table: Floats, limits: Floats, points: Floats) -> NDArray[np.bool
     out = np.zeros(points.shape[0], np.bool_)
     for i in range(points.shape[0]):
         for k in range(table.shape[0]):
-            d = _leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
+            d = leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
             if d < limits[k] or d == 0.0:
                 out[i] = True
                 break
@@ -220,7 +220,7 @@ def tile_distances(
         x, y, z, radius = spheres[j, 0], spheres[j, 1], spheres[j, 2], spheres[j, 3]
         for k in range(table.shape[0]):
             nearest = out[j // blocks, k]
-            near = _leg_distance(table[k], x, y, z) - radius
+            near = leg_distance(table[k], x, y, z) - radius
             end = _end_distance(table[k], x, y, z) - radius
             # The bound is at least half of the distance, so that no tile pays for it.
             if near >= max(exact_within[k], 2 * radius):
@@ -229,7 +229,7 @@ def tile_distances(
                 continue
             for i in range(j * _BLOCK, min(n, (j + 1) * _BLOCK)):
                 px, py, pz = points[i, 0], points[i, 1], points[i, 2]
-                near = _leg_distance(table[k], px, py, pz)
+                near = leg_distance(table[k], px, py, pz)
                 if near > 0.0:
                     nearest[0] = min(nearest[0], near)
                     nearest[1] = min(nearest[1], _end_distance(table[k], px, py, pz))
