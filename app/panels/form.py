@@ -34,12 +34,27 @@ class Form(QWidget):
         self._groups: tuple[Group, ...] = ()
         self._rows: list[Row] = []
         self._notes: list[Words] = []
+        self._waiting: tuple[Group, ...] | None = None
+        self._is_showing = False
         self._column = QVBoxLayout(self)
         self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(STEP)
 
     def show_groups(self, groups: tuple[Group, ...]) -> None:
         """Show groups of values; fields whose make is the same stay."""
+        # A field that goes may enter what was typed in it, which comes back here.
+        self._waiting = groups
+        if self._is_showing:
+            return
+        self._is_showing = True
+        try:
+            while (newest := self._waiting) is not None:
+                self._waiting = None
+                self._show_groups(newest)
+        finally:
+            self._is_showing = False
+
+    def _show_groups(self, groups: tuple[Group, ...]) -> None:
         is_new = _make(groups) != _make(self._groups)
         self._groups = groups
         if is_new:
