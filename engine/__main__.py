@@ -19,6 +19,7 @@ from engine.commands import assessed, points
 from engine.commands.terminal import complain, progress_line
 from engine.errors import UserError
 from engine.exchange.schedule import read_schedule
+from engine.faults import faults
 from engine.layout import Layout
 from engine.layout_file import read, write
 
@@ -157,18 +158,24 @@ def _map(asked: argparse.Namespace) -> int:
         unit=asked.unit,
         progress=progress_line(),
     )
+    _tell(_blocking(layout, case))
     return _written(asked.out, asked.json)
 
 
 def _field(asked: argparse.Namespace) -> int:
     source = Path(asked.source)
-    layout = read_schedule(source) if source.suffix.lower() == ".csv" else read(source)
+    is_schedule = source.suffix.lower() == ".csv"
+    layout = read_schedule(source) if is_schedule else read(source)
+    case = _case(layout, asked.case)
     at = [points.parsed_point(text) for text in asked.at]
-    values = points.field_at_points(layout, _case(layout, asked.case), at)
+    values = points.field_at_points(layout, case, at)
+    # A schedule's currents are taken as stated, open or not.
+    blocking = () if is_schedule else _blocking(layout, case)
     if asked.json:
         _print_json(points.as_json(values))
     else:
         sys.stdout.write(points.as_text(values, asked.unit or "µT"))
+    _tell(blocking)
     return DONE
 
 
@@ -185,6 +192,19 @@ def _case(layout: Layout, name: str | None) -> LoadCase:
             return case
     known = ", ".join(f'"{case.title}"' for case in layout.cases)
     raise UserError(f'There is no load case "{name}" in this layout; it has {known}.')
+
+
+def _blocking(layout: Layout, case: LoadCase) -> tuple[str, ...]:
+    """What makes values not those of a real room, as sentences."""
+    return tuple(f.sentence for f in faults(layout, case) if f.severity == "blocking")
+
+
+def _tell(blocking: Sequence[str]) -> None:
+    """Tell what blocks beside the output, whose form stays the same."""
+    if blocking:
+        complain("These values are not those of a real room:")
+        for sentence in blocking:
+            complain(f"  {sentence}")
 
 
 def _written(path: Path, as_json: bool) -> int:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import numpy as np
+from shapely.geometry import Polygon
 
 from engine.comparability import blocking_sentences
 from engine.comparisons import KINDS, Largest, comparisons, quantities
@@ -34,6 +35,8 @@ def _region(layout: Layout, zone: Zone) -> Region | str:
     outline = area_of(zone.outline)
     if not outline.area > 0:
         return "Its outline encloses no area; draw it anew."
+    if not Polygon(zone.outline).is_valid:
+        return "Its outline crosses or touches itself; draw it anew."
     low, high = zone.volume or (min(zone.heights), max(zone.heights))
     if low > high:
         return "Its volume ends below its beginning; enter the lower height first."
@@ -69,6 +72,8 @@ def zone_result(loaded: LoadedLayout, zone: Zone) -> ZoneResult:
         problem = "" if found else ALL_MASKED
     elif problem:
         problems = {result.case.id: problem for result in loaded.cases}
+    elif loaded.cases:
+        problem = loaded.cases[0].reason
     return ZoneResult(
         zone=zone,
         floor=zone_floor(loaded.layout, zone),

@@ -15,6 +15,9 @@ from engine.errors import UserError
 from engine.field import combined, ellipse, flux_density, inside, peak
 from engine.layout import Layout
 
+#: Ten times as far as a conductor can be. [m]
+FARTHEST = 1e6
+
 
 @dataclass(frozen=True)
 class FrequencyValue:
@@ -114,15 +117,16 @@ def parsed_point(text: str) -> tuple[float, float, float]:
     Raises
     ------
     UserError
-        When these are not three finite numbers.
+        When these are not three numbers within `FARTHEST`.
     """
     try:
         numbers = [float(part) for part in text.split(",")]
     except ValueError:
         numbers = []
-    if len(numbers) != 3 or not np.all(np.isfinite(numbers)):
+    if len(numbers) != 3 or not np.all(np.abs(numbers) <= FARTHEST):
         raise UserError(
-            f"--at={text} is no point: give three numbers in metres, as --at=1.2,3,0.5."
+            f"--at={text} is no point: give three numbers in metres, none beyond "
+            f"{FARTHEST:,.0f} m, as --at=1.2,3,0.5."
         )
     return (numbers[0], numbers[1], numbers[2])
 

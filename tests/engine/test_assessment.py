@@ -241,6 +241,16 @@ def test_harmonics_add_by_the_ratio_sum():
     assert rows[150].value == pytest.approx(0.3 * value, rel=1e-3)
 
 
+def test_an_outline_that_crosses_itself_is_not_searched_in_part():
+    star = tuple(
+        (2 * math.sin(0.8 * math.pi * k), 3 + 2 * math.cos(0.8 * math.pi * k))
+        for k in range(5)
+    )
+    comparison = one(room(zone(outline=star), levels=(level(1.0),)))
+    assert comparison.state == "not evaluable"
+    assert "crosses or touches itself" in comparison.reason
+
+
 def test_direct_current_is_compared_on_its_own_and_named():
     layout = room(
         zone(),

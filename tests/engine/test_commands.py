@@ -172,3 +172,27 @@ def test_frequencies_that_differ_little_are_told_apart(tmp_path):
     source.write_text(HEADER + "\n".join(rows) + "\n", encoding="utf-8")
     (point,) = json.loads(run("field", source, "--at=5,0,0", "--json"))["points"]
     assert list(point["by_frequency"]) == ["100000.25", "100000.5"]
+
+
+def test_points_beyond_reach_are_told(tmp_path):
+    for point in ("1e300,0,0", "nan,0,0", "0,0,inf"):
+        assert "is no point" in run("field", SMALL, f"--at={point}", code=2)
+
+
+def test_values_of_a_layout_that_is_no_real_room_say_so(tmp_path):
+    raw = json.loads(SMALL.read_text(encoding="utf-8"))
+    section = raw["layout"]["runs"][0]["section"]
+    section["circuits"].append({"circuit": "forgotten"})
+    source = tmp_path / "open.json"
+    source.write_text(json.dumps(raw), encoding="utf-8")
+    for command in (
+        ("field", source, "--at=1,1,1", "--json"),
+        ("map", source, "--height", "1", tmp_path / "open.csv", "--json"),
+    ):
+        done = subprocess.run(
+            [sys.executable, "-m", "engine", *map(str, command)],
+            cwd=ROOT, capture_output=True, encoding="utf-8", check=True,
+        )  # fmt: skip
+        assert "not those of a real room" in done.stderr
+        assert "forgotten" in done.stderr
+        assert json.loads(done.stdout)
