@@ -1,0 +1,208 @@
+"""The fall-off of a curve: how it falls with distance from what makes it, and its name.
+
+The slope is that of log B over log r. Far from them, a net current gives 1/r, two or
+three conductors with balanced currents 1/r², two opposed circuits 1/r³.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from itertools import pairwise
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.conductor import Conductor
+from engine.levels import Kind
+from engine.profiles import ProfileCurve
+from engine.runs import Run
+from engine.units import significant
+
+Floats = NDArray[np.float64]
+Integers = NDArray[np.int64]
+
+#: A slope this near to a whole number, over all of the range, bears its name.
+_NEAR = 0.1
+_NEAR_EVERYWHERE = 0.25
+#: The distance must grow at least so many times.
+_LEAST_RANGE = 1.5
+#: Without a stated range, the outermost part over which the distance grows so much.
+_OUTERMOST = 4.0
+#: Rises smaller than this are the field's own accuracy.
+_FLAT = 2e-3
+#: Places of the fit, evenly spread in log r.
+_PLACES = 64
+
+_POWERS = {1: "1/r", 2: "1/r²", 3: "1/r³"}
+
+
+@dataclass(frozen=True)
+class FallOff:
+    """How a curve falls with distance.
+
+    Attributes
+    ----------
+    slope : float
+        n of B ∝ 1/rⁿ, fitted over the range.
+    near_slope, far_slope : float
+        Of the inner and the outer half of the range.
+    name : str
+        "1/r²", or "between 1/r and 1/r²".
+    r_from, r_to : float
+        Range of distances. [m]
+    measured_from : str
+        What r is measured from, in words.
+    """
+
+    slope: float
+    near_slope: float
+    far_slope: float
+    name: str
+    r_from: float
+    r_to: float
+    measured_from: str
+
+    @property
+    def sentence(self) -> str:
+        """In words, with the range."""
+        return (
+            f"Falls as {self.name} (exponent {self.slope:.2f}) from "
+            f"{significant(self.r_from)} to {significant(self.r_to)} m from "
+            f"{self.measured_from}."
+        )
+
+
+@dataclass(frozen=True)
+class NoFallOff:
+    """Why a curve has no fall-off, as a sentence."""
+
+    sentence: str
+
+
+def distances_from_run(run: Run, points: Floats) -> Floats:
+    """(n,) distances of points (n, 3) from the line of a run's route. [m]"""
+    return _distances([np.array(run.route, np.float64)], points)
+
+
+def distances_from_nearest(conductors: Sequence[Conductor], points: Floats) -> Floats:
+    """(n,) distances of points (n, 3) from the nearest conductor's axis. [m]
+
+    Infinite without any conductor.
+    """
+    return _distances([conductor.path for conductor in conductors], points)
+
+
+def _distances(paths: Sequence[Floats], points: Floats) -> Floats:
+    nearest = np.full(len(points), np.inf)
+    for path in paths:
+        for a, b in pairwise(path):
+            leg = b - a
+            part = np.clip((points - a) @ leg / (leg @ leg), 0.0, 1.0)
+            apart = points - a - part[:, None] * leg
+            nearest = np.minimum(nearest, np.linalg.norm(apart, axis=1))
+    return nearest
+
+
+def fall_off(
+    curve: ProfileCurve,
+    kind: Kind,
+    distances: Floats,
+    measured_from: str,
+    *,
+    r_range: tuple[float, float] | None = None,
+) -> FallOff | NoFallOff:
+    """The fall-off of a profile's curve.
+
+    Parameters
+    ----------
+    distances : (n,) float
+        Of the curve's samples from a run or the nearest conductor. [m]
+    measured_from
+        What these are measured from: "Riser", "the nearest conductor".
+    r_range
+        Smallest and largest distance to fit; None: the outermost part of the line
+        that leads away, over which the distance grows four times. [m]
+
+    Returns
+    -------
+    FallOff or NoFallOff
+        None is given where the line does not lead away, the field does not fall all
+        the way, or the distance grows less than one and a half times.
+    """
+    values = curve.values(kind)
+    if values is None:
+        return NoFallOff(f"No {kind} current flows in this load case.")
+    branch = _leading_away(distances, curve.mask)
+    r, b = distances[branch], values[branch]
+    if r_range is None and len(r):
+        r_range = (max(float(r[0]), float(r[-1]) / _OUTERMOST), float(r[-1]))
+    if r_range is not None and len(r):
+        low, high = max(r_range[0], float(r[0])), min(r_range[1], float(r[-1]))
+    if not len(r) or not low > 0 or high < _LEAST_RANGE * low:
+        return NoFallOff(
+            f"No fall-off is given: the line does not lead far enough away from "
+            f"{measured_from}; the distance must grow at least {_LEAST_RANGE:g} times."
+        )
+    within = (r >= low) & (r <= high)
+    if np.any(b <= 0) or _rises(b[within]):
+        return NoFallOff(
+            f"No fall-off is given: the field does not fall all the way from "
+            f"{significant(low)} to {significant(high)} m from {measured_from}."
+        )
+    slope, near, far = _slopes(r, b, low, high)
+    return FallOff(slope, near, far, _name(slope, near, far), low, high, measured_from)
+
+
+def _leading_away(distances: Floats, masked: NDArray[np.bool_]) -> Integers:
+    """Samples of the longer way out, from its innermost; masked ones end it."""
+    best = np.zeros(0, np.int64)
+    if not len(distances) or not np.all(np.isfinite(distances)):
+        return best
+    reach = 0.0
+    for order in (np.arange(len(distances)), np.arange(len(distances))[::-1]):
+        # Inwards from the line's end, as long as nothing turns back or is masked.
+        inwards = order[::-1]
+        r = distances[inwards]
+        stops = np.flatnonzero((np.diff(r) >= 0) | masked[inwards][1:])
+        count = int(stops[0]) + 1 if len(stops) else len(r)
+        if masked[inwards[0]] or count < 3:
+            continue
+        if r[0] / max(r[count - 1], 1e-12) > reach:
+            reach = r[0] / max(r[count - 1], 1e-12)
+            best = inwards[:count][::-1]
+    return best
+
+
+def _rises(b: Floats) -> bool:
+    """Whether values anywhere rise above what they had fallen to."""
+    return bool(np.any(b > np.minimum.accumulate(b) * (1 + _FLAT)))
+
+
+def _slopes(
+    r: Floats, b: Floats, low: float, high: float
+) -> tuple[float, float, float]:
+    """Fitted exponent over all of the range, over its inner and its outer half."""
+    x = np.linspace(np.log(low), np.log(high), _PLACES)
+    y = np.interp(x, np.log(r), np.log(b))
+
+    def fitted(part: slice) -> float:
+        return float(-np.polyfit(x[part], y[part], 1)[0])
+
+    half = _PLACES // 2
+    return fitted(slice(None)), fitted(slice(None, half)), fitted(slice(half, None))
+
+
+def _name(slope: float, near: float, far: float) -> str:
+    for power, name in _POWERS.items():
+        halves = max(abs(near - power), abs(far - power))
+        if abs(slope - power) <= _NEAR and halves <= _NEAR_EVERYWHERE:
+            return name
+    if slope < 1:
+        return "less than 1/r"
+    if slope > 3:
+        return "more than 1/r³"
+    below = int(slope)
+    if slope - below <= _NEAR:
+        below = max(1, below - (1 if near < below else 0))
+    return f"between {_POWERS[below]} and {_POWERS[min(3, below + 1)]}"
