@@ -41,7 +41,7 @@ def contributions(
     rows = [k for k, c in enumerate(case.components) if is_kind(c.frequency, kind)]
     whole = case.currents[rows] @ responses
     total = _size(whole)
-    per_ampere = _label_responses(conductors, responses)
+    per_ampere = label_responses(conductors, responses)
     fields: dict[str, Complexes] = {}
     for key, phasors in case.phasors.values.items():
         if key in per_ampere:
@@ -65,17 +65,25 @@ def _size(b: Complexes) -> float:
 def net_current_effect(
     circuits: Sequence[Circuit], conductors: Sequence[Conductor], responses: Floats
 ) -> NetCurrentEffect | None:
-    """The circuit in which 1 A of net current gives most at a point.
+    """The circuit in which 1 A of net current gives most at a point, or None."""
+    effects = net_current_effects(circuits, conductors, responses)
+    return effects[0] if effects else None
+
+
+def net_current_effects(
+    circuits: Sequence[Circuit], conductors: Sequence[Conductor], responses: Floats
+) -> tuple[NetCurrentEffect, ...]:
+    """What 1 A of net current in each drawn circuit gives at a point, most first.
 
     The ampere flows along the circuit's neutral (or other return), shared as the
     neutral is shared; in a circuit without one, evenly along its lines. Its way back
-    is far away and left out. None without any conductor of a circuit.
+    is far away and left out.
     """
-    per_ampere = _label_responses(conductors, responses)
+    per_ampere = label_responses(conductors, responses)
     drawn: dict[str, list[str]] = {}
     for owner, label in per_ampere:
         drawn.setdefault(owner, []).append(label)
-    best: NetCurrentEffect | None = None
+    effects = []
     for circuit in circuits:
         labels = _net_labels(circuit, drawn.get(circuit.id, ()))
         if not labels:
@@ -83,12 +91,11 @@ def net_current_effect(
         # The ampere is split evenly over the labels.
         whole = np.sum([per_ampere[circuit.id, label] for label in labels], axis=0)
         effect = float(np.linalg.norm(whole)) / len(labels)
-        if best is None or effect > best.per_ampere:
-            best = NetCurrentEffect(circuit.id, labels, effect)
-    return best
+        effects.append(NetCurrentEffect(circuit.id, labels, effect))
+    return tuple(sorted(effects, key=lambda effect: -effect.per_ampere))
 
 
-def _label_responses(
+def label_responses(
     conductors: Sequence[Conductor], responses: Floats
 ) -> dict[tuple[str, str], Floats]:
     """(3,) field at the point of 1 A in each circuit's label, as it is shared. [T/A]"""
