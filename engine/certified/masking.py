@@ -37,14 +37,17 @@ class Masked:
     ties : (q, n) int64
         Heights of one box that are masked in a part and have the same number here are
         masked by the same upright things, so over each place on plan all or none.
+    loose : (q, n) bool
+        Masked in a part by something else besides, or only.
     """
 
     states: NDArray[np.int8]
     ties: NDArray[np.int64]
+    loose: Bools
 
     def __getitem__(self, which: Bools) -> Masked:
         """Some of the boxes."""
-        return Masked(self.states[:, which], self.ties[:, which])
+        return Masked(self.states[:, which], self.ties[:, which], self.loose[:, which])
 
     @property
     def hidden(self) -> Bools:
@@ -79,22 +82,24 @@ class Masks:
 
     def of(self, boxes_at_heights: Sequence[Boxes]) -> list[Masked]:
         """How the same boxes at q heights are masked, case by case."""
-        at = [
-            self._at(boxes, -1 - height)
-            for height, boxes in enumerate(boxes_at_heights)
-        ]
+        at = list(
+            zip(
+                *(self._at(b, -1 - h) for h, b in enumerate(boxes_at_heights)),
+                strict=True,
+            )
+        )
         return [
-            Masked(np.stack([s[k] for s, _ in at]), np.stack([t[k] for _, t in at]))
+            Masked(*(np.stack([parts[k] for parts in of_what]) for of_what in at))
             for k in range(len(self._closed))
         ]
 
     def _at(
         self, boxes: Boxes, untied: int
-    ) -> tuple[NDArray[np.int8], NDArray[np.int64]]:
-        """(cases, n) states and ties."""
+    ) -> tuple[NDArray[np.int8], NDArray[np.int64], Bools]:
+        """(cases, n) states, ties, or `untied`, and what is loose."""
         legs, reach = self._legs, boxes.reaches
         bound = self._clearance if self._clearance > 0 else 1e-12
-        most, marks, upright = _to_legs(
+        most, marks, loose = _to_legs(
             legs, self._slopes, self._leg_marks, boxes.centres, reach, bound
         )
         hidden = most < self._clearance * (1 - 1e-9)
@@ -106,7 +111,7 @@ class Masks:
         known: dict[str, tuple[Bools, Bools]] = {}
         for row, tie, closed in zip(states, ties, self._closed, strict=True):
             whose = marks.copy()
-            row[marks != 0] = PART
+            row[(marks != 0) | loose] = PART
             for keepout in closed:
                 if keepout.item not in known:
                     known[keepout.item] = _in_prism(keepout, shadow, low, high)
@@ -115,8 +120,8 @@ class Masks:
                 row[inside] = MASKED
                 whose[near] += self._marks[keepout.item]
             row[hidden] = MASKED
-            tie[upright] = whose[upright]
-        return states, ties
+            tie[whose != 0] = whose[whose != 0]
+        return states, ties, np.broadcast_to(loose, states.shape)
 
 
 def slopes_of(legs: Floats) -> Floats:
@@ -141,11 +146,12 @@ def _to_legs(
 ) -> tuple[Floats, NDArray[np.int64], Bools]:
     """Of each ball: most distance to the nearest surface, and the legs within reach.
 
-    Those as the sum of their marks, and whether all are upright over the whole ball.
+    Those that are upright over the whole ball as the sum of their marks, and whether
+    there are others.
     """
     n = centres.shape[0]
     most, marks = np.full(n, np.inf), np.zeros(n, np.int64)
-    upright = np.ones(n, np.bool_)
+    loose = np.zeros(n, np.bool_)
     for i in range(n):
         for k in range(legs.shape[0]):
             leg = legs[k]
@@ -153,14 +159,14 @@ def _to_legs(
             most[i] = min(most[i], d + slopes[k] * reach[i])
             if d - slopes[k] * reach[i] >= clearance:
                 continue
-            marks[i] += leg_marks[k]
-            along = abs(centres[i, 2] - leg[2])
-            first = abs(leg[15]) * leg[13] + abs(leg[16]) * leg[14]
-            last = abs(leg[17]) * leg[13] + abs(leg[18]) * leg[14]
-            upright[i] &= leg[3] == 0.0 and leg[4] == 0.0
-            upright[i] &= (centres[i, 2] - leg[2]) * leg[5] > 0.0
-            upright[i] &= first + reach[i] <= along <= leg[12] - last - reach[i]
-    return most, marks, upright
+            along = (centres[i, 2] - leg[2]) * leg[5]
+            first = abs(leg[15]) * leg[13] + abs(leg[16]) * leg[14] + reach[i]
+            last = abs(leg[17]) * leg[13] + abs(leg[18]) * leg[14] + reach[i]
+            if leg[3] == 0.0 and leg[4] == 0.0 and first <= along <= leg[12] - last:
+                marks[i] += leg_marks[k]
+            else:
+                loose[i] = True
+    return most, marks, loose
 
 
 def _shadow(boxes: Boxes) -> NDArray[np.object_]:

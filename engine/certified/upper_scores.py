@@ -29,6 +29,9 @@ Bools = NDArray[np.bool_]
 #: samples are raised by ½ (π/128)² Σ |x_k| with 2 Σ |x_k| below the square. Relative.
 _SHIFT_SLACK = 2e-4
 
+#: Of the largest mean: to a ten-thousandth of the largest value.
+_HALVINGS = 14
+
 
 @dataclass(frozen=True, eq=False)
 class Enclosure:
@@ -165,25 +168,26 @@ def _by_height(
 
 
 def _largest_mean(scores: Floats, masks: Masked) -> Floats:
-    """(n,) largest mean over all heights that count and any of those that may.
+    """(n,) bound of the mean over all heights that count and any of those that may.
 
-    Heights that are tied count together. A mean of norms is at least the norm of the
-    mean.
+    Heights that are tied count together, but for loose ones, which may be masked
+    besides. A mean of norms is at least the norm of the mean. A mean exceeds x where
+    the excesses over x add up to more than 0; the bound is the x where they no longer
+    can, by halving.
     """
     states, ties = masks.states, masks.ties
     sure, maybe = (states != MASKED) & (states != PART), states == PART
-    total = np.where(sure, scores, 0.0).sum(axis=0)
-    count = sure.sum(axis=0)
-    best = np.where(count > 0, total / np.maximum(count, 1), 0.0)
-    together = (ties[:, None] == ties[None]) & maybe[:, None] & maybe[None]
-    sums = np.where(together, scores[None], 0.0).sum(axis=1)
-    sizes = together.sum(axis=1)
-    # Each group once, by its first height; groups in falling order of their means.
-    first = maybe & (np.argmax(together, axis=1) == np.arange(len(ties))[:, None])
-    means = np.where(first, sums / np.maximum(sizes, 1), -np.inf)
-    for row in np.argsort(-means, axis=0):
-        at = row, np.arange(len(row))
-        total = total + np.where(first[at], sums[at], 0.0)
-        count = count + np.where(first[at], sizes[at], 0)
-        best = np.maximum(best, np.where(first[at], total / np.maximum(count, 1), 0.0))
-    return best
+    tied = (ties[:, None] == ties[None]) & maybe[:, None] & maybe[None]
+    # Each group once, by its first height.
+    first = maybe & (np.argmax(tied, axis=1) == np.arange(len(ties))[:, None])
+    low = np.zeros(scores.shape[1])
+    high: Floats = np.where(sure | maybe, scores, 0.0).max(axis=0)
+    for _ in range(_HALVINGS):
+        middle = 0.5 * (low + high)
+        over = scores - middle
+        together = np.where(masks.loose, np.maximum(over, 0.0), over)
+        groups = np.where(tied, together[None], 0.0).sum(axis=1)
+        total = np.where(sure, over, 0.0).sum(axis=0)
+        total += np.where(first, np.maximum(groups, 0.0), 0.0).sum(axis=0)
+        low, high = np.where(total > 0, middle, low), np.where(total > 0, high, middle)
+    return high
