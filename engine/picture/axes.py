@@ -8,62 +8,69 @@ from collections.abc import Sequence
 from engine.iso_lines import round_values
 from engine.picture.marks import BLACK, Picture, Stroke, Words
 from engine.picture.sheet import Sheet
-from engine.picture.subject import MapSubject
 from engine.units import LENGTH_UNITS
 
 TICK_SIZE = 2.3
 
 
-def draw_axes(picture: Picture, sheet: Sheet, subject: MapSubject, scale: int) -> None:
-    """Draw the frame, its ticks, the scale bar and, where stated, north."""
+def draw_axes(
+    picture: Picture,
+    sheet: Sheet,
+    scale: int,
+    *,
+    length_unit: str,
+    north: float | None = None,
+    names: tuple[str, str] = ("x", "y"),
+) -> None:
+    """Draw the frame, its ticks, the scale bar and, where stated, north.
+
+    `names` are what the axes to the right and upwards stand for; "−y" for an axis on
+    which y falls to the right.
+    """
     left, bottom = sheet.left, sheet.bottom
     right, top = left + sheet.width, bottom + sheet.height
     corners = ((left, bottom), (right, bottom), (right, top), (left, top))
     picture.add(Stroke((*corners, (left, bottom)), 0.25, BLACK))
-    metres = LENGTH_UNITS[subject.length_unit]
+    metres = LENGTH_UNITS[length_unit]
     step = _tick_step(14.0 / sheet.factor / metres)
-    world = [edge / metres for edge in subject.world()]
+    world = [edge / metres for edge in sheet.world]
+    sign = -1.0 if names[0].startswith("−") else 1.0
     for value in _ticks(world[0], world[2], step):
         x, _ = sheet.paper(value * metres, 0.0)
+        text = _tick_text(sign * value, step)
         picture.add(Stroke(((x, bottom), (x, bottom - 1.2)), 0.2))
-        picture.add(
-            Words(
-                (x, bottom - 3.0), _tick_text(value, step), TICK_SIZE, anchor="middle"
-            )
-        )
+        picture.add(Words((x, bottom - 3.0), text, TICK_SIZE, anchor="middle"))
     for value in _ticks(world[1], world[3], step):
         _, y = sheet.paper(0.0, value * metres)
         picture.add(Stroke(((left, y), (left - 1.2, y)), 0.2))
         picture.add(
             Words((left - 1.8, y), _tick_text(value, step), TICK_SIZE, anchor="right")
         )
-    unit = subject.length_unit
     middle = 0.5 * (left + right)
-    picture.add(
-        Words((middle, bottom - 6.2), f"x [{unit}]", TICK_SIZE, anchor="middle")
-    )
+    across = f"{names[0].removeprefix('−')} [{length_unit}]"
+    picture.add(Words((middle, bottom - 6.2), across, TICK_SIZE, anchor="middle"))
     picture.add(
         Words(
             (2.0, 0.5 * (bottom + top)),
-            f"y [{unit}]",
+            f"{names[1]} [{length_unit}]",
             TICK_SIZE,
             anchor="middle",
             turn=90.0,
         )
     )
-    _draw_scale_bar(picture, sheet, subject, scale)
-    if subject.north is not None:
-        _draw_north(picture, sheet, subject.north)
+    _draw_scale_bar(picture, sheet, scale, length_unit)
+    if north is not None:
+        _draw_north(picture, sheet, north)
 
 
 def _draw_scale_bar(
-    picture: Picture, sheet: Sheet, subject: MapSubject, scale: int
+    picture: Picture, sheet: Sheet, scale: int, length_unit: str
 ) -> None:
     """Two fields, the first one filled, together at most half the map."""
-    metres = LENGTH_UNITS[subject.length_unit]
+    metres = LENGTH_UNITS[length_unit]
     room = 0.25 * sheet.width / sheet.factor / metres
     step = round_values(room / 10.0, room)[-1]
-    length = step * LENGTH_UNITS[subject.length_unit] * sheet.factor
+    length = step * metres * sheet.factor
     y = sheet.bottom - 10.5
     x = sheet.left
     picture.add(Stroke(((x, y), (x + length, y)), 1.4))
@@ -78,7 +85,7 @@ def _draw_scale_bar(
             0.2,
         )
     )
-    text = f"{_tick_text(2 * step, step)} {subject.length_unit}, scale 1:{scale}"
+    text = f"{_tick_text(2 * step, step)} {length_unit}, scale 1:{scale}"
     picture.add(Words((x + 2 * length + 2.0, y), text, TICK_SIZE))
 
 

@@ -141,6 +141,12 @@ def _entries(
         (((1.8, 1.2), (4.2, -1.2)), bar(0.35)),
     ]
     entries.append((cross, "receptor"))
+    if subject.largest is not None:
+        ring: Points = tuple(
+            (3.0 + 1.5 * float(np.cos(a)), 1.5 * float(np.sin(a)))
+            for a in np.linspace(0.0, 2.0 * np.pi, 25)
+        )
+        entries.append(([(ring, bar(0.4))], "largest value of a zone at this height"))
     if subject.mask.any():
         lines: list[tuple[Points, Stroke]] = [
             (((x, -1.0), (x + 2.0, 1.0)), Stroke((), 0.12, GREY))

@@ -11,6 +11,7 @@ from engine.iso_lines import IsoLine
 from engine.picture.marks import BLACK, Picture, Words
 from engine.picture.sheet import Sheet
 from engine.printed_text import fitted, one_line, text_width
+from engine.units import LENGTH_UNITS
 
 LABEL_SIZE = 2.2
 
@@ -27,7 +28,7 @@ _STRAIGHT = 0.94
 def keep_clear(sheet: Sheet, plan: Plan) -> None:
     """Let no label cover a receptor."""
     for mark in plan.receptors:
-        x, y = sheet.paper(mark.at[0], mark.at[1])
+        x, y = sheet.paper(*mark.seen)
         sheet.occupy(box(x - 1.3, y - 1.3, x + 1.3, y + 1.3))
 
 
@@ -79,24 +80,44 @@ def letter_line(
 
 def letter_places(picture: Picture, sheet: Sheet, plan: Plan) -> None:
     """Name receptors, rooms and zones."""
-    for mark in plan.receptors:
-        _letter(picture, sheet, mark.title, _around(sheet.paper(*mark.at[:2]), 3.4))
+    for at, titles in _by_place(plan).items():
+        _letter(picture, sheet, ", ".join(titles), _around(sheet.paper(*at), 3.4))
     for place in plan.rooms:
         _letter(picture, sheet, place.title, _corners(sheet, place, 2.6), bold=True)
     for place in plan.zones:
         _letter(picture, sheet, place.title, _corners(sheet, place, -2.6), bold=True)
 
 
-def letter_sources(picture: Picture, sheet: Sheet, plan: Plan) -> None:
+def _by_place(plan: Plan) -> dict[Point, list[str]]:
+    """Names of receptors by where they show: several may stand over one point."""
+    found: dict[Point, list[str]] = {}
+    for mark in plan.receptors:
+        found.setdefault(mark.seen, []).append(mark.title)
+    return found
+
+
+def letter_sources(
+    picture: Picture, sheet: Sheet, plan: Plan, length_unit: str = "m"
+) -> None:
     """Name runs with their heights, enclosures and equipment."""
     for run in plan.runs:
-        low, high = run.levels
-        span = f"z {low:.2f}" if high - low < 0.005 else f"z {low:.2f}–{high:.2f}"
+        span = _span(run.levels, length_unit)
         at = _around(sheet.paper(*run.label_place), 4.0)[:10]
-        _letter(picture, sheet, f"{fitted(run.title, LABEL_SIZE, 45.0)}, {span} m", at)
+        title = fitted(run.title, LABEL_SIZE, 45.0)
+        _letter(picture, sheet, f"{title}, z {span} {length_unit}", at)
     for place in (*plan.enclosures, *plan.equipment):
         middle = sheet.paper(*place.label_place)
         _letter(picture, sheet, place.title, [middle, *_around(middle, 3.4)])
+
+
+def _span(levels: tuple[float, float], unit: str) -> str:
+    """Two levels in a unit of length, or one where they are the same."""
+    digits = {"m": 2, "mm": 0, "ft": 2, "in": 1}[unit]
+    low, high = (
+        f"{level / LENGTH_UNITS[unit] + 0.0:.{digits}f}".replace("-", "−")
+        for level in levels
+    )
+    return low if levels[1] - levels[0] < 0.005 else f"{low}–{high}"
 
 
 def _around(at: Point, step: float) -> list[Point]:

@@ -6,9 +6,11 @@ All lengths on paper are in millimetres; the drawing is to scale.
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
+from shapely.geometry import box
 
 from engine.colour_ramp import colours, on_paper
 from engine.drawing import Plan
@@ -29,7 +31,16 @@ from engine.picture.lettering import (
     letter_references,
     letter_sources,
 )
-from engine.picture.marks import BLACK, GREY, Picture, Points, Raster, Stroke
+from engine.picture.marks import (
+    BLACK,
+    GREY,
+    WHITE,
+    Picture,
+    Points,
+    Raster,
+    Stroke,
+    Words,
+)
 from engine.picture.plan_marks import draw_plan
 from engine.picture.sheet import Sheet, drawing_scale
 from engine.picture.subject import MapSubject, value_text
@@ -81,13 +92,21 @@ def map_picture(
         for piece in sheet.clipped(on_sheet):
             picture.add(Stroke(piece, 0.55 if bold else 0.18, BLACK))
     keep_clear(sheet, plan)
+    if subject.largest is not None:
+        _mark_largest(picture, sheet, subject.largest)
     letter_references(picture, sheet, [line[:2] for line in lines if line[2]])
     letter_places(picture, sheet, plan)
     for line, text, bold in lines:
         if not bold:
             letter_line(picture, sheet, line, text)
-    letter_sources(picture, sheet, plan)
-    draw_axes(picture, sheet, subject, arranged.scale)
+    letter_sources(picture, sheet, plan, subject.length_unit)
+    draw_axes(
+        picture,
+        sheet,
+        arranged.scale,
+        length_unit=subject.length_unit,
+        north=subject.north,
+    )
     if arranged.legend_under:
         draw_legend_under(picture, subject, LEFT, sheet.bottom - BOTTOM)
     else:
@@ -95,6 +114,23 @@ def map_picture(
         draw_legend_beside(picture, subject, left, arranged.height - TOP)
     draw_caption(picture, subject, picture.width)
     return picture
+
+
+def _mark_largest(picture: Picture, sheet: Sheet, at: tuple[float, float]) -> None:
+    """A ring with a dot where the largest value of a zone was found."""
+    x, y = sheet.paper(*at)
+    for radius, width in ((1.9, 0.9), (1.9, 0.4), (0.35, 0.7)):
+        ring = tuple(
+            (x + radius * math.cos(a), y + radius * math.sin(a))
+            for a in np.linspace(0.0, 2.0 * math.pi, 33)
+        )
+        for piece in sheet.clipped(ring):
+            picture.add(Stroke(piece, width, WHITE if width == 0.9 else BLACK))
+    words = Words((x + 2.8, y), "largest", 2.2, bold=True, patch=True)
+    placed = Words((x + 2.8 + 0.5 * words.width, y), "largest", 2.2, anchor="middle")
+    sheet.occupy(box(x - 2.2, y - 2.2, x + 2.2, y + 2.2))
+    if sheet.has_room(placed):
+        picture.add(words)
 
 
 def _arranged(

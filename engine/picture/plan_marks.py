@@ -44,7 +44,7 @@ def draw_plan(picture: Picture, sheet: Sheet, plan: Plan) -> None:
     for run in plan.runs:
         _draw_run(picture, sheet, run)
     for mark in plan.receptors:
-        x, y = sheet.paper(mark.at[0], mark.at[1])
+        x, y = sheet.paper(*mark.seen)
         for dx, dy in ((1.2, 1.2), (1.2, -1.2)):
             for piece in sheet.clipped(((x - dx, y - dy), (x + dx, y + dy))):
                 picture.add(Stroke(piece, 0.35, BLACK))

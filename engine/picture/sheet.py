@@ -54,6 +54,10 @@ class Sheet:
         """Keep labels off an area on paper. [mm]"""
         self._lettered.append(area)
 
+    def is_occupied(self, area: BaseGeometry) -> bool:
+        """Whether a label in an area on paper would cover another one. [mm]"""
+        return any(area.intersects(other) for other in self._lettered)
+
     def has_room(self, words: Words) -> bool:
         """Whether a label lies in the frame and on no other; if so it is taken."""
         half = 0.5 * words.width + 0.6
@@ -70,7 +74,7 @@ class Sheet:
         outline = LineString(corners).convex_hull
         if not self.frame.contains(outline):
             return False
-        if any(outline.intersects(other) for other in self._lettered):
+        if self.is_occupied(outline):
             return False
         self._lettered.append(outline)
         return True

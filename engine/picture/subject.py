@@ -53,6 +53,8 @@ class MapSubject:
         Unit of axes and scale bar.
     north : float or None
         Direction of north from +x, counter-clockwise. [degrees]
+    largest : pair of float or None
+        Where on plan the largest value of a zone was found; drawn as a ring. [m]
     """
 
     xs: Floats
@@ -70,6 +72,7 @@ class MapSubject:
     lines: tuple[str, ...] = ()
     length_unit: str = "m"
     north: float | None = None
+    largest: tuple[float, float] | None = None
 
     def world(self) -> Box:
         """Left, bottom, right, top of the grid with half a step around it. [m]"""
