@@ -22,6 +22,7 @@ from engine.exchange.schedule import read_schedule
 from engine.faults import faults
 from engine.layout import Layout
 from engine.layout_file import read, write
+from engine.variants import layout_of
 
 DONE, COULD_NOT = 0, 2
 
@@ -65,9 +66,28 @@ def _parser() -> argparse.ArgumentParser:
     )
     assess.add_argument("layout", metavar="LAYOUT")
     assess.add_argument("--case", metavar="NAME", help="only this load case")
+    assess.add_argument("--variant", metavar="NAME", help="instead of the base")
+    assess.add_argument(
+        "--certify", action="store_true", help="prove upper bounds of zones' maxima"
+    )
+    assess.add_argument(
+        "--tolerance",
+        type=_share,
+        default=_share("1%"),
+        metavar="1%",
+        help="by how much a proven bound may exceed the value found",
+    )
     _add_unit(assess)
     assess.add_argument("--json", action="store_true", help="print JSON, in tesla")
     assess.set_defaults(run=_assess)
+
+    compare = commands.add_parser(
+        "compare", help="set the base and its variants side by side"
+    )
+    compare.add_argument("layout", metavar="LAYOUT")
+    _add_unit(compare)
+    compare.add_argument("--json", action="store_true", help="print JSON, in tesla")
+    compare.set_defaults(run=_compare)
 
     report = commands.add_parser("report", help="write the report as PDF")
     report.add_argument("layout", metavar="LAYOUT")
@@ -121,13 +141,34 @@ def _unit(name: str) -> str:
         raise argparse.ArgumentTypeError(str(error)) from None
 
 
+def _share(text: str) -> float:
+    """A share of one from "1%", "1 %" or "0.01"."""
+    number = text.strip()
+    divisor = 100.0 if number.endswith("%") else 1.0
+    try:
+        share = float(number.removesuffix("%")) / divisor
+    except ValueError:
+        share = 0.0
+    if not 1e-6 <= share <= 1.0:
+        raise argparse.ArgumentTypeError(
+            f"{text!r} is not a tolerance; enter one from 0.0001% to 100%"
+        )
+    return share
+
+
 def _assess(asked: argparse.Namespace) -> int:
     from engine.assessment import assess, exit_code
     from engine.remarks import remarks
 
-    layout = read(asked.layout)
+    layout = layout_of(read(asked.layout), asked.variant)
     cases = None if asked.case is None else (_case(layout, asked.case),)
-    assessment = assess(layout, cases=cases, progress=progress_line())
+    assessment = assess(
+        layout,
+        cases=cases,
+        certify=asked.certify,
+        tolerance=asked.tolerance,
+        progress=progress_line(),
+    )
     unit = asked.unit or "µT"
     found = remarks(layout, assessment, unit=unit)
     if asked.json:
@@ -135,6 +176,21 @@ def _assess(asked: argparse.Namespace) -> int:
     else:
         sys.stdout.write(assessed.as_text(assessment, found, unit))
     return exit_code(assessment)
+
+
+def _compare(asked: argparse.Namespace) -> int:
+    from engine.commands import compared
+    from engine.variant_comparison import compare_variants
+    from engine.variant_remarks import variant_remarks
+
+    layout = read(asked.layout)
+    table = compare_variants(layout, progress=progress_line())
+    found = tuple(variant_remarks(layout))
+    if asked.json:
+        _print_json(compared.as_json(table, found))
+    else:
+        sys.stdout.write(compared.as_text(table, found, asked.unit or "µT"))
+    return DONE
 
 
 def _report(asked: argparse.Namespace) -> int:
