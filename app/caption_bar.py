@@ -33,13 +33,22 @@ def caption(layout: Layout, view_state: ViewState) -> str:
     """The caption in one line, as exports print it."""
     look = view_state.look
     _, heights = heights_of(layout, look)
-    return f"{QUANTITY} · {heights} · case {case_title(layout, look.case)}"
+    return f"{QUANTITY} · {heights} · {case_text(layout, look.case)}"
 
 
 def case_title(layout: Layout, case: str) -> str:
     """The name of the load case shown."""
     cases = layout.cases
     return next((c.title for c in cases if c.id == case), cases[0].title)
+
+
+def case_text(layout: Layout, case: str) -> str:
+    """ "case Highest operation"; a title that says "case" itself stands alone."""
+    return _with_case(case_title(layout, case))
+
+
+def _with_case(title: str) -> str:
+    return title if "case" in title.lower().split() else f"case {title}"
 
 
 class CaptionBar(QWidget):
@@ -130,7 +139,7 @@ class CaptionBar(QWidget):
         _refill(self._zone, zones, look.zone)
         self._show(self._zone, bool(zones))
         _refill(self._height, self._heights(layout), look.height)
-        cases = [(f"case {case.title}", case.id) for case in layout.cases]
+        cases = [(_with_case(case.title), case.id) for case in layout.cases]
         _refill(self._case, cases, look.case)
         storeys = [(storey.title, storey.id) for storey in layout.storeys]
         _refill(self._storey, storeys, look.storey)

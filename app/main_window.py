@@ -186,7 +186,7 @@ class MainWindow(QMainWindow):
         document, recompute = self.document, self.recompute
         self.toolbox.activated.connect(self.drawings.set_tool)
         self.toolbox.activated.connect(self.strip.set_tool)
-        self.toolbox.hint_changed.connect(self.hint.setText)
+        self.toolbox.hint_changed.connect(lambda _hint: self._tell_hint())
         self.toolbox.activated.connect(lambda _tool: self.show_drawing())
         self.strip.hold_toggled.connect(self.drawings.set_holds)
         self.strip.catch_toggled.connect(self.drawings.set_catches)
@@ -234,8 +234,22 @@ class MainWindow(QMainWindow):
         self.pages.setCurrentWidget(page)
         self.rail.setVisible(page is self.drawings)
         self.strip.setVisible(page is self.drawings)
+        self._tell_hint()
         # The page itself shows no mark of the keyboard: what it hands on to does.
         (page.focusProxy() or page).setFocus(Qt.FocusReason.TabFocusReason)
+
+    def _tell_hint(self) -> None:
+        """What can be done in the drawing's place now."""
+        page, tool = self.pages.currentWidget(), self.toolbox.active
+        if page is self.section:
+            self.hint.setText(
+                "Click a conductor, Shift adds; drag it or press an arrow key to move "
+                "it. Esc goes back to the drawing."
+            )
+        elif page is self.drawings and tool is not None:
+            self.hint.setText(tool.hint)
+        else:
+            self.hint.setText("Esc goes back to the drawing.")
 
     def show_drawing(self) -> None:
         """Show the drawing again."""
@@ -294,11 +308,15 @@ class MainWindow(QMainWindow):
         self.strip.set_unit(self.document.layout.settings.length_unit)
         if ids == EVERYTHING:
             self.menus.release_held()
+            # What was told of the layout before is not true of this one.
+            self.message_bar.hide()
 
     def _on_changed_outside(self, path: object) -> None:
-        self.messages.warn(
-            f"{path} was changed by another program. Open it again to see the change, "
-            "or save to replace it with what is shown here."
+        self.message_bar.offer(
+            f"{path} was changed by another program. Read it again to see the change, "
+            "or save to replace it with what is shown here.",
+            "Read it again",
+            lambda: self.files.open(path),
         )
 
     def _show_title(self) -> None:

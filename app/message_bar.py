@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from PySide6.QtCore import Qt, QTimer
 from PySide6.QtWidgets import (
     QApplication,
@@ -39,9 +41,13 @@ class MessageBar(QWidget):
         self._close.setAutoRaise(True)
         self._close.clicked.connect(self.hide)
         self._details = ""
+        self._offer = QPushButton()
+        self._offer.clicked.connect(self._take_offer)
+        self._offered: Callable[[], object] | None = None
         row = QHBoxLayout(self)
         row.setContentsMargins(3 * STEP, STEP, 2 * STEP, STEP)
         row.addWidget(self._text, 1)
+        row.addWidget(self._offer)
         row.addWidget(self._copy)
         row.addWidget(self._close)
         self.setAutoFillBackground(True)
@@ -62,6 +68,18 @@ class MessageBar(QWidget):
         """Show a sentence."""
         self._show(kind, sentence, "")
 
+    def offer(self, sentence: str, button: str, act: Callable[[], object]) -> None:
+        """Show a warning with something that can be done about it at once."""
+        self._show("warning", sentence, "")
+        self._offer.setText(button)
+        self._offer.show()
+        self._offered = act
+
+    def _take_offer(self) -> None:
+        self.hide()
+        if self._offered is not None:
+            self._offered()
+
     def _tell_failure(self, summary: str, details: str) -> None:
         sentence = (
             "Something went wrong that should not have; we are sorry. Your work is "
@@ -76,6 +94,8 @@ class MessageBar(QWidget):
         self._text.setText(sentence)
         self._details = details
         self._copy.setVisible(bool(details))
+        self._offer.hide()
+        self._offered = None
         self._timer.stop()
         if kind == "information":
             self._timer.start(PATIENCE)
@@ -116,4 +136,5 @@ class JobBar(QWidget):
 
     def _on_progressed(self, share: float, doing: str) -> None:
         self._bar.setValue(round(1000 * share))
-        self._text.setText(f"{self._title} · {doing}" if doing else self._title)
+        is_said = not doing or doing == self._title
+        self._text.setText(self._title if is_said else f"{self._title} · {doing}")

@@ -86,7 +86,7 @@ def free_end_remarks(
     nodes, conductors : sequences
         Of the layout.
     """
-    titles = {item.id: item.title for item in layout.items()}
+    by_id = layout.by_id()
     ends = defaultdict(list)
     for conductor in conductors:
         if conductor.role == "closing link":
@@ -108,12 +108,20 @@ def free_end_remarks(
         yield Remark(
             code="W02",
             severity="warning" if wide else "note",
-            sentence=f"“{titles.get(item, item)}”: conductors end unjoined; "
-            f"a closing link across ends {significant(spread)} m apart is "
+            sentence=f"{_end_named(by_id.get(item), item, node.place)}: conductors end "
+            f"unjoined; a closing link across ends {significant(spread)} m apart is "
             f"assumed{advice}",
             items=(item,),
             place=node.place,
         )
+
+
+def _end_named(item: object, id: str, place: Point3) -> str:
+    """The item by its title, of a run with the end that lies nearer to `place`."""
+    if not isinstance(item, Run):
+        return f"“{getattr(item, 'title', id)}”"
+    first, last = (math.dist(item.route[i], place) for i in (0, -1))
+    return f"The {'start' if first <= last else 'end'} of “{item.title}”"
 
 
 def rating_remarks(layout: Layout, phasors: CasePhasors) -> Iterator[Remark]:

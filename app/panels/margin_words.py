@@ -73,8 +73,10 @@ def was_text(row: MarginRow, held: Margins | None) -> str:
         return ""
     for before in held.rows:
         if (before.place, before.level) == (row.place, row.level):
+            if before.value is None:
+                break
             return f", was {value_text(before, held.layout, held.is_sampled)}"
-    return ", was not there"
+    return "" if row.value is None else ", had no value before"
 
 
 def level_text(row: MarginRow, layout: Layout) -> str:

@@ -31,14 +31,14 @@ def cut_place(route: Sequence[Point], from_end: bool) -> tuple[Point, Point] | N
     Returns
     -------
     (x, y), (dx, dy)
-        A third along the first leg that shows on plan, and a unit vector. [m]
+        A sixth along the first leg that shows on plan, and a unit vector. [m]
     """
     for a, b in pairwise(route):
         length = math.dist(a, b)
         if length < 1e-6:
             continue
         way = ((b[0] - a[0]) / length, (b[1] - a[1]) / length)
-        at = (a[0] + way[0] * length / 3, a[1] + way[1] * length / 3)
+        at = (a[0] + way[0] * length / 6, a[1] + way[1] * length / 6)
         return at, (-way[0], -way[1]) if from_end else way
     return None
 
