@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QRect, Qt
+from PySide6.QtCore import QPoint, QRect, Qt
 from PySide6.QtGui import QColor, QFontMetrics, QImage, QPainter
 from PySide6.QtWidgets import QApplication, QWidget
 
@@ -48,7 +48,7 @@ def captioned(drawing: QWidget, caption: str) -> QImage:
     image.setDevicePixelRatio(ratio)
     image.fill(QColor(theme.paper))
     painter = QPainter(image)
-    drawing.render(painter)
+    QWidget.render(drawing, painter, QPoint(0, 0))
     painter.setFont(font)
     painter.setPen(QColor(theme.text))
     painter.drawText(box, flags, caption)
