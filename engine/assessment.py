@@ -6,6 +6,7 @@ from collections.abc import Sequence
 
 import numpy as np
 
+from engine.certified import TOLERANCE
 from engine.circuits import LoadCase
 from engine.decisions import Counts, counts, exit_code, state_of, worst_comparisons
 from engine.errors import Cancelled, Progress, stop_if
@@ -34,6 +35,7 @@ from engine.zone_assessment import zone_floor, zone_result
 
 __all__ = [
     "STATES",
+    "TOLERANCE",
     "Assessment",
     "AtFrequency",
     "CaseResult",
@@ -60,6 +62,8 @@ def assess(
     layout: Layout,
     *,
     cases: Sequence[LoadCase] | None = None,
+    certify: bool = False,
+    tolerance: float = TOLERANCE,
     cache: ResponseCache | None = None,
     cancelled: Cancelled | None = None,
     progress: Progress | None = None,
@@ -75,6 +79,10 @@ def assess(
         The room.
     cases
         Load cases; None: all of the layout, counted and for information.
+    certify : bool
+        Whether the maxima of zones get proven upper bounds; the states then use them.
+    tolerance : float
+        By how much a bound may exceed the value found. Relative.
     cache
         Keeps responses between assessments of layouts with the same geometry.
 
@@ -95,9 +103,28 @@ def assess(
         if progress is not None:
             progress(k / len(places), f"Assessing “{place.title}”")
         if isinstance(place, Zone):
-            zones.append(zone_result(loaded, place))
+            zones.append(
+                zone_result(
+                    loaded,
+                    place,
+                    tolerance=tolerance if certify else None,
+                    progress=_part(progress, k, len(places)),
+                )
+            )
         elif isinstance(place, Receptor):
             receptors.append(receptor_result(loaded, place))
     if progress is not None:
         progress(1.0, "Assessed")
     return Assessment(layout, loaded.cases, tuple(zones), tuple(receptors))
+
+
+def _part(progress: Progress | None, k: int, count: int) -> Progress | None:
+    """The progress of the k-th of some places, as progress of them all."""
+    if progress is None:
+        return None
+    tell = progress
+
+    def told(share: float, text: str) -> None:
+        tell((k + share) / count, text)
+
+    return told

@@ -15,7 +15,7 @@ from engine.levels import Kind, is_kind, level_at, ratios
 from engine.loaded_layout import LoadedLayout
 from engine.place_details import root_sum_of_squares
 from engine.places import Receptor, Uncertainty, Zone
-from engine.results import STATES, Comparison, PlaceDetails
+from engine.results import STATES, Comparison, PlaceDetails, State
 from engine.zone_search import Found
 
 KINDS: tuple[Kind, ...] = ("AC", "DC")
@@ -92,30 +92,34 @@ def _compared(
 ) -> Comparison:
     """A comparison that can be made: AC or DC, whichever is of more concern."""
     rule = place.uncertainty or loaded.layout.settings.uncertainty
-    spreads = {q: _spread(rule, level, f) for q, (f, _) in reached.items()}
+    states = {
+        q: _judged(rule, level, f, details.upper) for q, (f, details) in reached.items()
+    }
 
     def concern(q: Quantity) -> tuple[int, float]:
         # U may reach the level from the smaller of the two ratios.
-        score = reached[q][0].score
-        return STATES.index(state_of(score, spreads[q])), score
+        return STATES.index(states[q]), reached[q][0].score
 
     quantity = max(reached, key=concern)
     largest, details = reached[quantity]
-    spread = spreads[quantity]
     others = [f.score for q, (f, _) in reached.items() if q is not quantity]
     value = float(root_sum_of_squares(list(largest.by_frequency.values())))
     limits = [level_at(level, f) for f in largest.by_frequency]
+    limit = limits[0] if len(limits) == 1 else None
+    bound = details.upper
     frequencies = loaded.fields.cases[quantity.case].frequencies
     compared = ratios(level, {f: np.zeros(1) for f in frequencies})
     return replace(
         empty,
-        state=state_of(largest.score, spread),
+        state=states[quantity],
         kind=quantity.kind,
         value=value,
-        level_value=limits[0] if len(limits) == 1 else None,
+        level_value=limit,
         ratio=largest.score,
-        uncertainty_ratio=spread,
+        uncertainty_ratio=_spread(rule, level, largest, largest.score),
         uncertainty=expanded(rule, value),
+        upper_ratio=bound,
+        upper=None if bound is None or limit is None else bound * limit,
         other_kind_ratio=others[0] if others else None,
         area_above=largest.area_above if isinstance(place, Zone) else None,
         not_covered=compared.not_covered,
@@ -123,11 +127,27 @@ def _compared(
     )
 
 
-def _spread(rule: Uncertainty, level: ReferenceLevel, largest: Found) -> float:
+def _judged(
+    rule: Uncertainty, level: ReferenceLevel, largest: Found, upper: float | None
+) -> State:
+    """The state of the value found, or of its proven bound while that is below.
+
+    A bound above the level says no more than that the level may be reached.
+    """
+    found = state_of(largest.score, _spread(rule, level, largest, largest.score))
+    if upper is None or largest.score > 1:
+        return found
+    bound = state_of(upper, _spread(rule, level, largest, upper))
+    return "above, U reaches" if bound == "above" else bound
+
+
+def _spread(
+    rule: Uncertainty, level: ReferenceLevel, largest: Found, ratio: float
+) -> float:
     """Expanded uncertainty of a ratio."""
     known = [x for f in largest.by_frequency if (x := level_at(level, f)) is not None]
     # The absolute part may lie at the frequency that counts most.
-    return rule.relative * largest.score + rule.absolute / min(known)
+    return rule.relative * ratio + rule.absolute / min(known)
 
 
 def expanded(rule: Uncertainty, value: float) -> float:

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Literal
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.certificate import Certificate
 from engine.circuits import LoadCase
 from engine.criteria import ReferenceLevel
 from engine.items import Point3
@@ -105,6 +106,9 @@ class PlaceDetails:
         Last step of the search. [m]
     is_bound, bound_reason
         Whether the value is an upper bound because angles are unknown, and why.
+    certificate : Certificate or None
+        What is proven of the maximum, where that was asked for: a ratio against a
+        level, else a flux density.
     """
 
     at: Point3
@@ -117,6 +121,12 @@ class PlaceDetails:
     bound_reason: str
     contributions: tuple[Contribution, ...]
     net_current: NetCurrentEffect | None
+    certificate: Certificate | None = None
+
+    @property
+    def upper(self) -> float | None:
+        """Proven upper bound of the ratio, or without a level of the value [T]."""
+        return None if self.certificate is None else self.certificate.upper
 
 
 @dataclass(frozen=True)
@@ -156,6 +166,11 @@ class Comparison:
         The level where one frequency is compared. [T]
     ratio, uncertainty_ratio : float or None
         B/L over the frequencies by the level's rule, and U in the same measure.
+    upper_ratio : float or None
+        No place has a larger ratio, where a bound was asked for and proven. The state
+        is that of the bound where the value itself is not above the level.
+    upper : float or None
+        The same as a flux density where one frequency is compared. [T]
     uncertainty : float or None
         Expanded uncertainty U of the value. [T]
     other_kind_ratio : float or None
@@ -183,6 +198,8 @@ class Comparison:
     ratio: float | None = None
     uncertainty_ratio: float | None = None
     uncertainty: float | None = None
+    upper_ratio: float | None = None
+    upper: float | None = None
     other_kind_ratio: float | None = None
     area_above: float | None = None
     masked_share: float = 0.0

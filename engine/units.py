@@ -75,6 +75,36 @@ def significant(value: float, digits: int = 3) -> str:
     return f"{rounded:.{max(0, digits - 1 - magnitude)}f}"
 
 
+def significant_above(value: float, digits: int = 3) -> str:
+    """As `significant`, but never less than the value, as a bound is printed.
+
+    Examples
+    --------
+    >>> significant_above(3.5901), significant_above(3.59), significant_above(99.96)
+    ('3.60', '3.59', '100')
+    """
+    text = significant(value, digits)
+    if float(text) >= value or not math.isfinite(value):
+        return text
+    step = 10.0 ** (math.floor(math.log10(abs(value))) - digits + 1)
+    return significant(float(text) + step, digits)
+
+
+def bound_beside(value: float, limit: float, digits: int = 3) -> str:
+    """A bound, rounded up, with as many figures as it takes to stay below a limit.
+
+    Examples
+    --------
+    >>> bound_beside(0.99951, 1.0), bound_beside(1.0012, 1.0)
+    ('0.9996', '1.01')
+    """
+    for count in range(digits, 12):
+        text = significant_above(value, count)
+        if value >= limit or float(text) < limit:
+            return text
+    return repr(value)
+
+
 def flux_density_text(tesla: float, unit: str, digits: int = 3) -> str:
     """A flux density as printed, with its unit.
 

@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import replace
+
 import numpy as np
 from shapely.geometry import Polygon
 
+from engine.certificate import Certificate
+from engine.certified import certified_maxima
 from engine.comparability import blocking_sentences
 from engine.comparisons import KINDS, Largest, comparisons, quantities
-from engine.errors import UserError
+from engine.errors import Progress, UserError
 from engine.evaluations import Quantity
 from engine.layout import Layout
 from engine.loaded_layout import LoadedLayout
@@ -43,8 +48,17 @@ def _region(layout: Layout, zone: Zone) -> Region | str:
     return Region(outline, floor, zone.heights, (low, high), zone.rule, zone.clearance)
 
 
-def zone_result(loaded: LoadedLayout, zone: Zone) -> ZoneResult:
-    """The largest values of a zone by its spatial rule, and its comparisons."""
+def zone_result(
+    loaded: LoadedLayout,
+    zone: Zone,
+    *,
+    tolerance: float | None = None,
+    progress: Progress | None = None,
+) -> ZoneResult:
+    """The largest values of a zone by its spatial rule, and its comparisons.
+
+    With a tolerance they get a proven upper bound.
+    """
     region = _region(loaded.layout, zone)
     wanted = quantities(loaded, zone)
     problem, searched = "", None
@@ -58,14 +72,20 @@ def zone_result(loaded: LoadedLayout, zone: Zone) -> ZoneResult:
             searched = search(loaded.fields, region, wanted)
         except UserError as error:
             problem = str(error)
+    certificates: dict[Quantity, Certificate] = {}
     if searched is not None and isinstance(region, Region):
+        if tolerance is not None:
+            searched, certificates = _proven(
+                loaded, region, wanted, searched, tolerance, progress
+            )
         positions = [f.position for f in searched.found if f is not None]
         if positions:
             loaded.surroundings.look_around(region, np.array(positions))
         for quantity, largest in zip(wanted, searched.found, strict=True):
             if largest is not None:
                 details = loaded.surroundings.details(region, quantity, largest)
-                found[quantity] = (largest, details)
+                proof = certificates.get(quantity)
+                found[quantity] = (largest, replace(details, certificate=proof))
         shares = {id: searched.masked_shares[k] for id, k in loaded.index.items()}
         seen = {quantity.case for quantity in found}
         problems = {id: ALL_MASKED for id, k in loaded.index.items() if k not in seen}
@@ -81,8 +101,49 @@ def zone_result(loaded: LoadedLayout, zone: Zone) -> ZoneResult:
         masked_shares=shares,
         maxima=_maxima(loaded, zone, found),
         comparisons=comparisons(loaded, zone, found, problems, shares),
-        searched="" if searched is None else _described(zone, searched),
+        searched=(
+            ""
+            if searched is None
+            else _described(zone, searched) + _how_proven([*certificates.values()])
+        ),
         reason=problem,
+    )
+
+
+def _proven(
+    loaded: LoadedLayout,
+    region: Region,
+    wanted: Sequence[Quantity],
+    searched: Search,
+    tolerance: float,
+    progress: Progress | None,
+) -> tuple[Search, dict[Quantity, Certificate]]:
+    """The search with higher values where the proof met some, and what is proven."""
+    rows = [k for k, found in enumerate(searched.found) if found is not None]
+    results = certified_maxima(
+        loaded.fields,
+        region,
+        [wanted[k] for k in rows],
+        [found for found in searched.found if found is not None],
+        tolerance=tolerance,
+        progress=progress,
+    )
+    largest = list(searched.found)
+    certificates = {}
+    for k, (certificate, found) in zip(rows, results, strict=True):
+        largest[k], certificates[wanted[k]] = found, certificate
+    return replace(searched, found=tuple(largest)), certificates
+
+
+def _how_proven(certificates: Sequence[Certificate]) -> str:
+    """How the bounds were proven, as a sentence after others."""
+    cells = max((c.cells for c in certificates if c.upper is not None), default=0)
+    if not cells:
+        return ""
+    return (
+        f" Upper bounds hold between the places too: proven in {cells:,} boxes from "
+        "the field, its slopes and curvatures at their middles and from bounds of its "
+        "third derivatives in them, for even current in the conductors as entered."
     )
 
 

@@ -8,6 +8,7 @@ from typing import Any
 import msgspec
 
 from engine import __version__, units
+from engine.certificate import Certificate, proof_text
 from engine.decisions import counts, worst_comparisons
 from engine.faults import Remark
 from engine.results import (
@@ -87,6 +88,9 @@ def _maximum_text(maximum: Maximum, names: dict[str, str], unit: str) -> str:
         f"  {names[maximum.case]}: largest {maximum.kind} value {value}"
         f" {_place_text(maximum.details)}"
     )
+    proof = maximum.details.certificate
+    if proof is not None:
+        text += f"; {proof_text(proof, _upper(proof.upper, unit))}"
     if maximum.reason:
         text += "; not that of a real room, see the blocking remarks"
     return text
@@ -102,6 +106,25 @@ def _place_text(details: PlaceDetails) -> str:
     if details.is_bound:
         text += f"; upper bound: {details.bound_reason}"
     return text
+
+
+def _upper(tesla: float | None, unit: str) -> str:
+    """An upper bound, rounded up."""
+    if tesla is None:
+        return ""
+    return f"{units.significant_above(units.in_unit(tesla, unit))} {unit}"
+
+
+def _proof_of_comparison(c: Comparison, proof: Certificate, unit: str) -> str:
+    """What is proven of a comparison, its ratio named."""
+    upper = ""
+    if c.upper is not None and c.level_value is not None:
+        limit = units.in_unit(c.level_value, unit)
+        text = units.bound_beside(units.in_unit(c.upper, unit), limit)
+        upper = f"{text} {unit}, "
+    if c.upper_ratio is not None:
+        upper += f"ratio {units.bound_beside(c.upper_ratio, 1.0)}"
+    return proof_text(proof, upper)
 
 
 def _comparison_text(c: Comparison, names: dict[str, str], unit: str) -> list[str]:
@@ -121,6 +144,8 @@ def _comparison_text(c: Comparison, names: dict[str, str], unit: str) -> list[st
     lines = [
         f"{head}{shown} {unit} ± {uncertainty} ({c.kind}), ratio {ratio}: {c.state}"
     ]
+    if c.details is not None and c.details.certificate is not None:
+        lines.append(f"    {_proof_of_comparison(c, c.details.certificate, unit)}")
     if c.other_kind_ratio is not None:
         other = "DC" if c.kind == "AC" else "AC"
         ratio = units.text_beside(c.other_kind_ratio, 1.0)
@@ -276,9 +301,25 @@ def _comparison_json(c: Comparison) -> dict[str, Any]:
         "not_covered_Hz": list(c.not_covered),
         "uncertainty_T": c.uncertainty,
         "uncertainty_ratio": c.uncertainty_ratio,
+        "upper_T": c.upper,
+        "upper_ratio": c.upper_ratio,
         "area_above_m2": c.area_above,
         "masked_share": c.masked_share,
         **({} if c.details is None else _details_json(c.details)),
+    }
+
+
+def _proof_json(proof: Certificate) -> dict[str, Any]:
+    """What is proven; the bound of a comparison is a ratio, else in tesla."""
+    return {
+        "proof": {
+            "upper": proof.upper,
+            "found": proof.found,
+            "tolerance": proof.tolerance,
+            "reached": proof.reached,
+            "boxes": proof.cells,
+            "reason": proof.reason,
+        }
     }
 
 
@@ -290,6 +331,7 @@ def _details_json(details: PlaceDetails) -> dict[str, Any]:
         "near_field": details.near_field,
         "search_step_m": details.step,
         "upper_bound": details.bound_reason if details.is_bound else "",
+        **({} if details.certificate is None else _proof_json(details.certificate)),
         "by_frequency": {f"{p.frequency:.12g}": p.value for p in details.by_frequency},
         "contributions": [
             {"circuit": c.circuit, "share_T": c.share, "without_T": c.without}
