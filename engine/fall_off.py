@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import pairwise
+from math import ceil, floor
 
 import numpy as np
 from numpy.typing import NDArray
@@ -22,9 +23,8 @@ from engine.units import significant
 Floats = NDArray[np.float64]
 Integers = NDArray[np.int64]
 
-#: A slope this near to a whole number, over all of the range, bears its name.
-_NEAR = 0.1
-_NEAR_EVERYWHERE = 0.25
+#: Exponents this near to a whole number, over all of the range, bear its name.
+_NEAR = 0.15
 #: The distance must grow at least so many times.
 _LEAST_RANGE = 1.5
 #: Without a stated range, the outermost part over which the distance grows so much.
@@ -34,7 +34,7 @@ _FLAT = 2e-3
 #: Places of the fit, evenly spread in log r.
 _PLACES = 64
 
-_POWERS = {1: "1/r", 2: "1/r²", 3: "1/r³"}
+_DIGITS = "⁰¹²³⁴⁵⁶⁷⁸⁹"
 
 
 @dataclass(frozen=True)
@@ -194,15 +194,23 @@ def _slopes(
 
 
 def _name(slope: float, near: float, far: float) -> str:
-    for power, name in _POWERS.items():
-        halves = max(abs(near - power), abs(far - power))
-        if abs(slope - power) <= _NEAR and halves <= _NEAR_EVERYWHERE:
-            return name
-    if slope < 1:
-        return "less than 1/r"
-    if slope > 3:
-        return "more than 1/r³"
-    below = int(slope)
-    if slope - below <= _NEAR:
-        below = max(1, below - (1 if near < below else 0))
-    return f"between {_POWERS[below]} and {_POWERS[min(3, below + 1)]}"
+    """The power of r that all exponents are near to, or the two they lie between.
+
+    Examples
+    --------
+    >>> _name(2.0, 1.9, 2.1), _name(1.5, 1.4, 1.6)
+    ('1/r²', 'between 1/r and 1/r²')
+    """
+    low, high = min(slope, near, far), max(slope, near, far)
+    below, above = floor(low + _NEAR), ceil(high - _NEAR)
+    if below >= above:
+        return _power(above)
+    return f"between {_power(below)} and {_power(above)}"
+
+
+def _power(n: int) -> str:
+    if n < 1:
+        return "no fall-off"
+    if n == 1:
+        return "1/r"
+    return "1/r" + "".join(_DIGITS[int(digit)] for digit in str(n))

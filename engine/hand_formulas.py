@@ -221,10 +221,15 @@ def _across(t: Floats) -> Floats:
 def _by_label(
     conductors: Sequence[Conductor], places: Floats, currents: Complexes
 ) -> tuple[Floats | str, Complexes]:
-    """Conductors of one circuit and label as one, in the middle of their currents."""
-    groups: dict[tuple[tuple[str, str], ...], list[int]] = {}
+    """Conductors that share a circuit's conductor as one, in their middle."""
+    groups: dict[tuple[tuple[str, str, bool], ...], list[int]] = {}
     for k, conductor in enumerate(conductors):
-        key = tuple(sorted((load.circuit, load.label) for load in conductor.loads))
+        # Go and return of one label stand apart.
+        key = tuple(
+            sorted(
+                (load.circuit, load.label, load.share < 0) for load in conductor.loads
+            )
+        )
         groups.setdefault(key, []).append(k)
     together = np.stack([currents[:, g].sum(axis=1) for g in groups.values()], axis=1)
     sizes = np.linalg.norm(together, axis=0)
