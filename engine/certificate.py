@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from engine.items import Point3
-from engine.units import significant_above
 
 
 @dataclass(frozen=True)
@@ -40,19 +39,3 @@ class Certificate:
     reached: bool
     cells: int
     reason: str = ""
-
-
-def proof_text(certificate: Certificate, upper: str) -> str:
-    """What is proven, in words that can follow a value.
-
-    `upper` is the bound as printed, rounded up.
-    """
-    if certificate.upper is None:
-        return f"no bound proven: {certificate.reason}"
-    if certificate.reached:
-        return f"at most {upper}, proven to {100 * certificate.tolerance:g} %"
-    above = 100 * (certificate.upper / certificate.found - 1)
-    return (
-        f"at most {upper}, proven; that is {significant_above(above, 2)} % above the "
-        f"largest value found: {certificate.reason}"
-    )

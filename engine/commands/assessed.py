@@ -8,9 +8,10 @@ from typing import Any
 import msgspec
 
 from engine import __version__, units
-from engine.certificate import Certificate, proof_text
+from engine.certificate import Certificate
 from engine.decisions import counts, worst_comparisons
 from engine.faults import Remark
+from engine.proof_words import proof_of_comparison, proof_of_maximum
 from engine.results import (
     STATES,
     Assessment,
@@ -88,9 +89,9 @@ def _maximum_text(maximum: Maximum, names: dict[str, str], unit: str) -> str:
         f"  {names[maximum.case]}: largest {maximum.kind} value {value}"
         f" {_place_text(maximum.details)}"
     )
-    proof = maximum.details.certificate
-    if proof is not None:
-        text += f"; {proof_text(proof, _upper(proof.upper, unit))}"
+    proof = proof_of_maximum(maximum, unit)
+    if proof:
+        text += f"; {proof}"
     if maximum.reason:
         text += "; not that of a real room, see the blocking remarks"
     return text
@@ -106,25 +107,6 @@ def _place_text(details: PlaceDetails) -> str:
     if details.is_bound:
         text += f"; upper bound: {details.bound_reason}"
     return text
-
-
-def _upper(tesla: float | None, unit: str) -> str:
-    """An upper bound, rounded up."""
-    if tesla is None:
-        return ""
-    return f"{units.significant_above(units.in_unit(tesla, unit))} {unit}"
-
-
-def _proof_of_comparison(c: Comparison, proof: Certificate, unit: str) -> str:
-    """What is proven of a comparison, its ratio named."""
-    upper = ""
-    if c.upper is not None and c.level_value is not None:
-        limit = units.in_unit(c.level_value, unit)
-        text = units.bound_beside(units.in_unit(c.upper, unit), limit)
-        upper = f"{text} {unit}, "
-    if c.upper_ratio is not None:
-        upper += f"ratio {units.bound_beside(c.upper_ratio, 1.0)}"
-    return proof_text(proof, upper)
 
 
 def _comparison_text(c: Comparison, names: dict[str, str], unit: str) -> list[str]:
@@ -144,8 +126,9 @@ def _comparison_text(c: Comparison, names: dict[str, str], unit: str) -> list[st
     lines = [
         f"{head}{shown} {unit} ± {uncertainty} ({c.kind}), ratio {ratio}: {c.state}"
     ]
-    if c.details is not None and c.details.certificate is not None:
-        lines.append(f"    {_proof_of_comparison(c, c.details.certificate, unit)}")
+    proof = proof_of_comparison(c, unit)
+    if proof:
+        lines.append(f"    {proof}")
     if c.other_kind_ratio is not None:
         other = "DC" if c.kind == "AC" else "AC"
         ratio = units.text_beside(c.other_kind_ratio, 1.0)

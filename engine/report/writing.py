@@ -55,7 +55,9 @@ def write_report(
     shown = flux_density_unit(unit or layout.settings.flux_density_unit)
     if assessment is None:
         told = _part(progress, 0.0, _ASSESSED)
-        assessment = assess(layout, cache=cache, cancelled=cancelled, progress=told)
+        assessment = assess(
+            layout, certify=True, cache=cache, cancelled=cancelled, progress=told
+        )
     elif assessment.layout is not layout and assessment.layout != layout:
         raise ValueError("the assessment is of another layout")
     wanted = wanted_maps(assessment)

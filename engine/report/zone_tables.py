@@ -6,6 +6,7 @@ from collections.abc import Iterable, Sequence
 
 from reportlab.platypus import Flowable
 
+from engine.proof_words import proof_of_comparison, proof_of_maximum
 from engine.report.names import Wording
 from engine.report.text import bullets, paragraph, table
 from engine.report.wording import STATE_SENTENCES
@@ -109,6 +110,9 @@ def _marks(comparison: Comparison, words: Wording) -> str:
     lines = [f"masked {100 * comparison.masked_share:.0f} %"]
     if comparison.area_above is not None:
         lines.append(f"above 1 on {significant(comparison.area_above)} m²")
+    proof = proof_of_comparison(comparison, words.unit)
+    if proof:
+        lines.append(proof)
     details = comparison.details
     if details is not None and details.near_field:
         lines.append("near field, even current assumed")
@@ -148,6 +152,8 @@ def _maxima_table(
                 for part in details.by_frequency
             )
             notes = [m.reason] if m.reason else []
+            proof = proof_of_maximum(m, words.unit)
+            notes += [proof] if proof else []
             notes.append(f"last step of the search {1000 * details.step:.3g} mm")
             if details.near_field:
                 notes.append("near field, even current assumed")
