@@ -20,6 +20,7 @@ from engine.exchange.schedule import read_schedule
 from engine.layout import Layout, Settings
 from engine.places import Storey
 
+SAMPLES = Path(__file__).parents[1] / "sample_layouts"
 KINDS = "Layouts (*.json);;Conductor schedules (*.csv)"
 
 
@@ -86,6 +87,16 @@ class Files(QObject):
             self._document.open(layout, path)
             self._watch(path)
             self._remember(path)
+            return True
+        return False
+
+    def open_sample(self, path: Path) -> bool:
+        """Show a sample as work of one's own: saving asks where, and keeps it whole."""
+        if not self.may_leave():
+            return False
+        with self._messages.shown():
+            self._document.open(layout_file.read(path), None)
+            self._watch(None)
             return True
         return False
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QByteArray, QEvent, QSize, Qt, QTimer
+from PySide6.QtCore import QEvent, QSize, Qt, QTimer
 from PySide6.QtGui import (
     QCloseEvent,
     QDragEnterEvent,
@@ -22,7 +22,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app import preferences
+from app import preferences, window_geometry
 from app.arrange import Arrange
 from app.ask_bar import AskBar
 from app.caption_bar import CaptionBar, caption
@@ -186,7 +186,7 @@ class MainWindow(QMainWindow):
         document, recompute = self.document, self.recompute
         self.toolbox.activated.connect(self.drawings.set_tool)
         self.toolbox.activated.connect(self.strip.set_tool)
-        self.toolbox.hint_changed.connect(lambda _hint: self._tell_hint())
+        self.toolbox.hint_changed.connect(self._tell_hint)
         self.toolbox.activated.connect(lambda _tool: self.show_drawing())
         self.strip.hold_toggled.connect(self.drawings.set_holds)
         self.strip.catch_toggled.connect(self.drawings.set_catches)
@@ -221,8 +221,8 @@ class MainWindow(QMainWindow):
         )
         self.jobs.refused.connect(self.messages.error)
         self.files.changed_outside.connect(self._on_changed_outside)
-        document.path_changed.connect(lambda _path: self._show_title())
-        document.undo_stack.cleanChanged.connect(lambda _clean: self._show_title())
+        document.path_changed.connect(self._show_title)
+        document.undo_stack.cleanChanged.connect(self._show_title)
         document.changed.connect(self._on_changed)
         self.toolbox.activate(self.toolbox.tools[0])
         self._on_changed(document.layout, frozenset())
@@ -238,7 +238,7 @@ class MainWindow(QMainWindow):
         # The page itself shows no mark of the keyboard: what it hands on to does.
         (page.focusProxy() or page).setFocus(Qt.FocusReason.TabFocusReason)
 
-    def _tell_hint(self) -> None:
+    def _tell_hint(self, *_: object) -> None:
         """What can be done in the drawing's place now."""
         page, tool = self.pages.currentWidget(), self.toolbox.active
         if page is self.section:
@@ -284,8 +284,7 @@ class MainWindow(QMainWindow):
             self.drawings.look_at(at)
 
     def _start_with(self, layout: object) -> None:
-        if self.files.new(layout):
-            self.show_drawing()
+        self.files.new(layout)
 
     def _take_margins(self, margins: object) -> None:
         self.margins.set_margins(margins)
@@ -307,9 +306,11 @@ class MainWindow(QMainWindow):
     def _on_changed(self, layout: object, ids: object) -> None:
         self.strip.set_unit(self.document.layout.settings.length_unit)
         if ids == EVERYTHING:
+            self._show_title()
             self.menus.release_held()
             # What was told of the layout before is not true of this one.
             self.message_bar.hide()
+            self.show_drawing()
 
     def _on_changed_outside(self, path: object) -> None:
         self.message_bar.offer(
@@ -319,9 +320,11 @@ class MainWindow(QMainWindow):
             lambda: self.files.open(path),
         )
 
-    def _show_title(self) -> None:
+    def _show_title(self, *_: object) -> None:
         path = self.document.path
-        name = path.name if path else "not saved yet"
+        project = self.document.layout.title.project
+        unsaved = f"{project} · not saved yet" if project else "not saved yet"
+        name = path.name if path else unsaved
         self.setWindowTitle(f"{name}[*] — Lodestead")
         self.setWindowModified(self.document.is_modified)
 
@@ -352,15 +355,6 @@ class MainWindow(QMainWindow):
         self.set_theme(DARK if dark else LIGHT)
 
     # -- window -----------------------------------------------------------------
-
-    def restore(self) -> None:
-        """Bring back size and place of the last time."""
-        state = preferences.load().geometry
-        if state:
-            self.restoreGeometry(QByteArray.fromBase64(state.encode("ascii")))
-        sharing = preferences.load().sharing
-        if sharing:
-            self.splitter.restoreState(QByteArray.fromBase64(sharing.encode("ascii")))
 
     def sizeHint(self) -> QSize:
         return QSize(1360, 860)
@@ -401,5 +395,5 @@ class MainWindow(QMainWindow):
         self.readout.close_worker()
         self.remarks.close_search()
         self.autosave.forget()
-        self.menus.remember_geometry()
+        window_geometry.remember(self)
         event.accept()

@@ -49,7 +49,6 @@ def add_menu(
         elif entry.key:
             action.setShortcut(entry.key)
         action.setToolTip(entry.tip or entry.text)
-        action.setStatusTip(entry.tip)
         action.triggered.connect(_guarded(entry.act, messages))
         menu.addAction(action)
         window.addAction(action)

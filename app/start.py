@@ -6,14 +6,13 @@ from pathlib import Path
 
 import msgspec
 
-from app import preferences, recovery
+from app import preferences, recovery, window_geometry
 from app.document import Document
-from app.files import empty_layout
+from app.files import SAMPLES, empty_layout
 from app.first_strip import FirstStrip
 from app.main_window import MainWindow
 from app.messages import Messages
 
-SAMPLES = Path(__file__).parents[1] / "sample_layouts"
 FIRST_SAMPLE = SAMPLES / "office-over-switch-room.json"
 
 
@@ -25,7 +24,7 @@ def started(path: Path | None) -> MainWindow:
     document = Document(empty_layout(choices))
     window = MainWindow(document, messages)
     window.follow_preferences()
-    window.restore()
+    window_geometry.restore(window)
     left = recovery.rescues()
     if left:
         rescue = left[0]
@@ -40,7 +39,7 @@ def started(path: Path | None) -> MainWindow:
     elif path is not None:
         window.files.open(path)
     elif not choices.chosen and FIRST_SAMPLE.exists():
-        window.files.open(FIRST_SAMPLE)
+        window.files.open_sample(FIRST_SAMPLE)
     if not choices.chosen:
         _ask_first(window)
     return window

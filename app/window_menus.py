@@ -15,6 +15,7 @@ from app import clipboard, commands, preferences
 from app.backing import place_backing_file, place_backing_picture
 from app.copying import copy_picture, copy_sentence
 from app.drawings import VIEWS
+from app.files import SAMPLES
 from app.icons import icon
 from app.menus import LINE, Command, add_menu
 from app.tools.run import RunTool
@@ -81,6 +82,14 @@ class WindowMenus(QObject):
         self._recent = QMenu("Recent", w)
         self._menu.insertMenu(actions["Save"], self._recent)
         self._fill_recent()
+        samples = QMenu("Samples", w)
+        samples.setToolTipsVisible(True)
+        for path in sorted(SAMPLES.glob("*.json")):
+            action = samples.addAction(path.stem.replace("-", " ").capitalize())
+            action.setToolTip("Invented, to look at and to change; saving asks where")
+            action.triggered.connect(lambda _on, p=path: w.files.open_sample(p))
+        samples.setEnabled(not samples.isEmpty())
+        self._menu.insertMenu(actions["Save"], samples)
 
     def _edit(self) -> None:
         w, document, arrange = self._window, self._window.document, self._window.arrange
@@ -272,17 +281,6 @@ class WindowMenus(QObject):
             action.triggered.connect(lambda _on, n=name: self._open_recent(n))
         self._recent.setEnabled(not self._recent.isEmpty())
 
-    def remember_geometry(self) -> None:
-        """Keep size and place of the window for the next time."""
-        state = bytes(self._window.saveGeometry().toBase64().data()).decode("ascii")
-        sharing = self._window.splitter.saveState().toBase64().data()
-        choices = msgspec.structs.replace(
-            preferences.load(),
-            geometry=state,
-            sharing=bytes(sharing).decode("ascii"),
-        )
-        preferences.save(choices)
-
     # -- doing ------------------------------------------------------------------
 
     def open_dropped(self, names: list[str]) -> None:
@@ -296,10 +294,13 @@ class WindowMenus(QObject):
                     place_backing_file(self._window.document, path)
 
     def _open_recent(self, name: str) -> None:
-        if not Path(name).exists():
-            self._window.files.forget(name)
-            raise UserError(f"{name} is not there any more.")
-        self._window.files.open(Path(name))
+        if Path(name).exists():
+            self._window.files.open(Path(name))
+            return
+        self._window.files.forget(name)
+        self._window.messages.warn(
+            f"{name} is not there any more and was taken out of the recent files."
+        )
 
     def _prefer(self, field: str, value: Any) -> None:
         preferences.save(msgspec.structs.replace(preferences.load(), **{field: value}))

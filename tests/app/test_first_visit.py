@@ -1,0 +1,287 @@
+"""What a first visitor stumbled over, each once and not again."""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from pathlib import Path
+
+import msgspec
+import pytest
+from PySide6.QtCore import QMimeData, QPointF, Qt, QUrl
+from PySide6.QtGui import QDropEvent
+from PySide6.QtTest import QTest
+from PySide6.QtWidgets import QApplication
+
+from app import commands, preferences, recovery, start
+from app.caption_bar import case_text
+from app.document import Document
+from app.files import SAMPLES, empty_layout
+from app.main_window import MainWindow
+from app.messages import Messages
+from app.panels.item_forms import heading
+from app.views.cut_mark import cut_place
+from engine import layout_file
+from engine.circuits import LoadCase
+from engine.edits import added, replaced
+from engine.errors import UserError
+from engine.layout import Layout
+from engine.new_sources import with_new_run
+from engine.places import Room, Storey
+
+SMALL = SAMPLES / "small-switch-room.json"
+KEY = Qt.Key
+
+
+@pytest.fixture
+def settings(monkeypatch, tmp_path):
+    monkeypatch.setattr(preferences, "folder", lambda: tmp_path / "settings")
+    monkeypatch.setattr(recovery, "folder", lambda: tmp_path / "unsaved")
+
+
+@pytest.fixture
+def window(qtbot, settings):
+    made = MainWindow(Document(empty_layout(preferences.Preferences())), Messages())
+    qtbot.addWidget(made, before_close_func=lambda w: w.document.undo_stack.setClean())
+    made.show()
+    return made
+
+
+def run_tool(window: MainWindow):
+    tool = window.toolbox.tools[4]
+    window.toolbox.activate(tool)
+    return tool
+
+
+def drawn_run(document: Document, *route: tuple[float, float, float]) -> str:
+    layout, made = with_new_run(document.committed, route, "cable tray", "")
+    document.edit("Draw a run", layout)
+    document.select((made,))
+    return made
+
+
+# -- words ----------------------------------------------------------------------------
+
+
+def test_caption_without_zone_names_the_height_and_shows_no_stray_dots(window):
+    caption = window.caption
+    assert caption._height.currentText() == "z 1.00 m (Ground floor +1.00)"
+    hidden = [c for c in caption._dots if not c.isVisibleTo(caption)]
+    assert hidden
+    assert not any(caption._dots[choice].isVisibleTo(caption) for choice in hidden)
+
+
+def test_a_title_that_says_case_is_not_called_case_again():
+    named = Layout(load_cases=(LoadCase(id="a", name="Load case 1"),))
+    assert case_text(named, "a") == "Load case 1"
+    other = Layout(load_cases=(LoadCase(id="a", name="Highest operation"),))
+    assert case_text(other, "a") == "case Highest operation"
+
+
+def test_a_room_called_room_is_not_a_room_room():
+    outline = ((0.0, 0.0), (1.0, 0.0), (1.0, 1.0))
+    room = Room(
+        id="r", name="Room 1", outline=outline, floor_level=0.0, ceiling_level=3.0
+    )
+    assert heading((room,)) == "Room 1"
+    assert heading((msgspec.structs.replace(room, name="Office"),)) == "Room Office"
+
+
+def test_the_hint_belongs_to_what_is_shown(window):
+    run_tool(window)
+    drawing_hint = window.hint.text()
+    window.open_section(drawn_run(window.document, (0, 0, 2), (4, 0, 2)))
+    assert "Esc goes back to the drawing" in window.hint.text()
+    window.show_drawing()
+    assert window.hint.text() == drawing_hint
+
+
+# -- keys -----------------------------------------------------------------------------
+
+
+def test_every_menu_opens_by_a_key_of_its_own(window):
+    titles = [action.text() for action in window.menuBar().actions()]
+    keys = [title[title.index("&") + 1].lower() for title in titles]
+    assert len(set(keys)) == len(keys)
+
+
+def test_the_draw_menu_shows_the_keys_of_the_tools(window):
+    draw = next(a for a in window.menuBar().actions() if a.text() == "&Draw").menu()
+    keys = [action.shortcut().toString() for action in draw.actions()[:9]]
+    assert keys == [str(number) for number in range(1, 10)]
+
+
+def test_tab_leads_from_a_begun_drawing_to_the_entry_strip(window, qtbot):
+    run_tool(window)
+    window.drawings.take_keyboard()
+    QTest.keyClick(window.drawings.plan, KEY.Key_Tab)
+    assert window.strip.fields[0].hasFocus()
+
+
+def test_words_typed_on_the_drawing_go_into_the_entry_strip(window, qtbot):
+    tool = run_tool(window)
+    window.drawings.take_keyboard()
+    QTest.keyClicks(window.drawings.plan, "t")
+    QTest.keyClicks(window.strip.words, "o 1 2 z 3")
+    QTest.keyClick(window.strip.words, KEY.Key_Return)
+    assert tool._points == [(1.0, 2.0, 3.0)]
+
+
+def test_a_new_layout_is_chosen_by_keys_at_once(window, qtbot):
+    window.show_page(window.new_page)
+    assert QApplication.focusWidget() in window.new_page.buttons
+
+
+# -- risers and cuts ------------------------------------------------------------------
+
+
+def test_a_riser_leads_to_the_next_floor(window):
+    document = window.document
+    first = Storey(id="first", name="First floor", floor_level=4.0)
+    document.edit("Add a storey", added(document.committed, first))
+    made = drawn_run(document, (0, 0, 2.5), (5, 0, 2.5))
+    commands.raise_selected_run(document)
+    assert document.committed.by_id()[made].route[-1] == (5.0, 0.0, 4.0)
+    commands.raise_selected_run(document)
+    assert document.committed.by_id()[made].route[-2:] == ((5, 0, 2.5), (5, 0, 7.5))
+
+
+def test_a_connected_end_is_not_led_on(window):
+    sample = layout_file.read(SAMPLES / "office-over-switch-room.json")
+    window.document.open(sample, None)
+    run = next(run for run in sample.runs if run.end is not None)
+    window.document.select((run.id,))
+    with pytest.raises(UserError, match="connected"):
+        commands.raise_selected_run(window.document)
+
+
+def test_the_run_tool_rises_from_its_last_vertex(window):
+    tool = run_tool(window)
+    assert not tool.rise()
+    tool._add((1.0, 1.0, 2.0))
+    window.menus._rise(down=False)
+    assert tool._points[-1] == (1.0, 1.0, 5.5)
+
+
+def test_the_cut_looks_along_the_first_leg_that_shows():
+    route = [(1.0, 1.0), (1.0, 1.0), (1.0, 7.0)]
+    assert cut_place(route, from_end=False) == ((1.0, 2.0), (0.0, 1.0))
+    assert cut_place(route, from_end=True) == ((1.0, 2.0), (-0.0, -1.0))
+    assert cut_place(route[:2], from_end=False) is None
+
+
+# -- results --------------------------------------------------------------------------
+
+
+def test_margins_held_as_before_stand_beside_the_new_ones(window):
+    window.document.open(layout_file.read(SMALL), None)
+    assert window.recompute.wait_until_idle(60)
+    before = window.margins.tile.row
+    window.menus._held.trigger()
+    circuit = next(c for c in window.document.committed.circuits if c.demand)
+    doubled = msgspec.structs.replace(circuit, demand=None)
+    window.document.edit(
+        "Take the current", replaced(window.document.committed, doubled)
+    )
+    assert window.recompute.wait_until_idle(60)
+    assert before is not None
+    assert "was " in window.margins.tile.value.whole
+    window.document.open(layout_file.read(SMALL), None)
+    assert window.recompute.wait_until_idle(60)
+    assert "was" not in window.margins.tile.value.whole
+    assert not window.menus._held.isChecked()
+
+
+def test_nothing_is_held_where_there_is_no_margin(window):
+    window.menus._held.trigger()
+    assert not window.menus._held.isChecked()
+    assert "no margin to hold" in window.message_bar.sentence
+
+
+def test_a_result_is_copied_as_sentence_and_as_picture(window):
+    window.document.open(layout_file.read(SMALL), None)
+    assert window.recompute.wait_until_idle(60)
+    action = next(a for a in window.actions() if a.text() == "Copy as sentence")
+    action.trigger()
+    copied = QApplication.clipboard().text()
+    row = window.margins.tile.row
+    assert row is not None
+    assert copied.startswith(row.place_title)
+    assert copied.endswith(".")
+    next(a for a in window.actions() if a.text() == "Copy picture").trigger()
+    picture = QApplication.clipboard().image()
+    assert picture.height() > window.drawings.height()
+
+
+# -- files ----------------------------------------------------------------------------
+
+
+def test_the_first_sample_cannot_be_saved_over(qtbot, settings):
+    window = start.started(None)
+    qtbot.addWidget(
+        window, before_close_func=lambda w: w.document.undo_stack.setClean()
+    )
+    assert window.document.layout.runs
+    assert window.document.path is None
+    assert not window.document.is_modified
+
+
+def test_work_brought_back_is_kept_before_its_copy_goes(qtbot, settings, tmp_path):
+    lost = Document()
+    layout = added(Layout(), Storey(id="ground", floor_level=0.0))
+    lost.edit("Add a storey", layout)
+    autosave = recovery.Autosave(lost)
+    autosave.keep()
+    note = autosave.copy.with_suffix(".note")
+    ended = subprocess.Popen([sys.executable, "-c", ""])
+    ended.wait()
+    note.write_bytes(msgspec.json.encode({"path": "", "process": ended.pid}))
+    window = start.started(None)
+    qtbot.addWidget(
+        window, before_close_func=lambda w: w.document.undo_stack.setClean()
+    )
+    assert window.document.committed == layout
+    assert window.autosave.copy.exists()
+    assert not autosave.copy.exists()
+
+
+def test_what_was_told_of_another_layout_goes_with_it(window):
+    window.message_bar.offer("The file was changed.", "Read it again", lambda: None)
+    assert window.message_bar.isVisible()
+    window.document.open(layout_file.read(SMALL), None)
+    assert not window.message_bar.isVisible()
+
+
+def test_a_file_changed_outside_is_read_again_by_one_button(window, tmp_path):
+    path = tmp_path / "room.json"
+    layout_file.write(path, empty_layout(preferences.Preferences()))
+    assert window.files.open(path)
+    path.write_bytes(SMALL.read_bytes())
+    window._on_changed_outside(path)
+    window.message_bar._offer.click()
+    assert window.document.committed == layout_file.read(SMALL)
+
+
+def test_a_layout_opened_from_a_page_shows_its_drawing(window):
+    window.show_page(window.guide)
+    assert window.files.open(SMALL)
+    assert window.pages.currentWidget() is window.drawings
+
+
+def test_a_recent_file_that_is_gone_says_so(window, tmp_path):
+    window.menus._open_recent(str(tmp_path / "gone.json"))
+    assert "not there any more" in window.message_bar.sentence
+
+
+def test_a_dropped_layout_opens(window):
+    data = QMimeData()
+    data.setUrls([QUrl.fromLocalFile(str(SMALL))])
+    event = QDropEvent(
+        QPointF(10, 10),
+        Qt.DropAction.CopyAction,
+        data,
+        Qt.MouseButton.LeftButton,
+        Qt.KeyboardModifier.NoModifier,
+    )
+    window.dropEvent(event)
+    assert window.document.path == Path(SMALL)
