@@ -106,11 +106,11 @@ def certified_maxima(
     search = Branching(fields, region, quantities, found, tolerance)
     if not search.asked:
         return unproven(found, tolerance, NO_FIELD)
-    if region.clearance == 0.0 and search.may_touch():
-        return unproven(found, tolerance, AT_CONDUCTORS)
     while len(search.open) and search.work < most_work:
         stop_if(fields.cancelled)
         if progress is not None:
             progress(search.work / most_work, "Proving the maximum")
         search.step()
+        if search.touches and region.clearance == 0.0:
+            return unproven(search.best(), tolerance, AT_CONDUCTORS)
     return search.results()

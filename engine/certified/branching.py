@@ -31,6 +31,9 @@ Bools = NDArray[np.bool_]
 #: Boxes with a smaller half diagonal are not cut. [m]
 SMALLEST = 2e-4
 
+#: Smaller boxes without a bound lie at a conductor where there is no clearance. [m]
+_TOUCHING = 2e-3
+
 #: Part of the tolerance that the residues of filaments may take.
 _RESIDUE_PART = 0.1
 
@@ -62,7 +65,7 @@ class Branching:
     """The boxes still open, and the bounds of those that are done.
 
     Quantities that are largest at the same place share one row, whose number is in
-    `row_of`; `asked` has the first of each.
+    `row_of`; `asked` has the first of each. `touches`: some small box has no bound.
     """
 
     def __init__(
@@ -89,6 +92,7 @@ class Branching:
         self._upper, self._alive = np.full(shape, np.inf), np.ones(shape, np.bool_)
         self._settled, self._stuck = np.zeros((2, len(self.asked)))
         self.work, self._cells = 0, 0
+        self.touches = False
 
     def _share_rows(self) -> None:
         rows: dict[tuple[object, ...], int] = {}
@@ -127,12 +131,6 @@ class Branching:
                 needs = np.maximum(needs, need)
         currents = np.concatenate([case.currents for case in cases])
         return Source(self._fields.conductors, currents, needs)
-
-    def may_touch(self) -> bool:
-        """Whether a conductor reaches into what is covered."""
-        reach = self.open.reaches
-        distances = self._fields.distances(self.open.centres)
-        return bool(np.any(distances <= reach + float(np.max(self._region.offsets))))
 
     def step(self) -> None:
         """Cut the boxes that may hold the most, and bound their parts."""
@@ -203,6 +201,8 @@ class Branching:
         self._settled = np.maximum(self._settled, np.where(done, upper, 0).max(axis=0))
         self._stuck = np.maximum(self._stuck, np.where(small, upper, 0).max(axis=0))
         alive = alive & ~done & ~small
+        unbounded = np.isinf(upper) & alive & (boxes.reaches < _TOUCHING)[:, None]
+        self.touches |= bool(np.any(unbounded))
         left: Bools = np.any(alive, axis=1)
         self.open = joined([self.open, boxes[left]])
         self._upper = np.concatenate([self._upper, upper[left]])
@@ -257,6 +257,13 @@ class Branching:
             certificate = self._certificate(better, upper, bool(left[row]))
             results.append((certificate, better))
         return results
+
+    def best(self) -> list[Found]:
+        """The largest values so far."""
+        return [
+            self._found[k] if row is None else self._better(k, row)
+            for k, row in enumerate(self._row_of)
+        ]
 
     def _better(self, k: int, row: int) -> Found:
         """The value found, or the one at a centre that is higher."""
