@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from engine.conductor import Conductor
 from engine.field.kernel import Floats
 from engine.field.legs import any_nearer, legs_of, nearest_surface
-from engine.field.points import as_points
+from engine.field.points import as_points, compact_order
 
 #: Nearer than so many bar widths or diameters the even current is an assumption.
 NEAR_WIDTHS = 2.0
@@ -33,7 +33,10 @@ def surface_distance(conductors: Sequence[Conductor], points: Floats) -> Floats:
     (n,) float64
         0 inside; inf when there is no conductor. [m]
     """
-    distance: Floats = nearest_surface(legs_of(conductors).table, as_points(points))
+    checked = as_points(points)
+    order = compact_order(checked)
+    distance = np.empty(len(checked))
+    distance[order] = nearest_surface(legs_of(conductors).table, checked[order])
     return distance
 
 

@@ -8,8 +8,10 @@ import numpy as np
 import pytest
 
 from engine.conductor import Conductor
+from engine.conductors import conductors
 from engine.field import inside, near_field, surface_distance
-from engine.runs import Bar, Round
+from engine.layout import Layout
+from engine.runs import Bar, CircuitShare, Flat, Round, Run
 
 
 def along_y(shape: Round | Bar) -> Conductor:
@@ -29,7 +31,8 @@ def corner(shape: Round | Bar) -> Conductor:
     return Conductor("c", "c", "c", "run", path, axes, shape, (), "c")
 
 
-bar = Bar(width=0.1, thickness=0.02)
+BAR = {"width": 0.1, "thickness": 0.02}
+bar = Bar(**BAR)
 
 
 @pytest.mark.parametrize(
@@ -88,6 +91,30 @@ def test_distance_is_that_of_the_nearest_conductor() -> None:
     points = np.random.default_rng(2).uniform(-3, 3, (200, 3))
     apart = [surface_distance([one], points) for one in made]
     assert (surface_distance(made, points) == np.minimum(*apart)).all()
+
+
+def test_many_points_at_once_have_the_distances_they_have_alone() -> None:
+    # Bars with the sharpest mitres, whose distance changes fastest, and round ones.
+    rng = np.random.default_rng(3)
+    section = Flat(
+        circuits=(CircuitShare(circuit="c"),), pitch=0.12, shape=Bar(**BAR, turn=20)
+    )
+    routes = [
+        ((0.0, 0, z), (3.0, 0, z), (1.05, 2.0, z), (1.05, 2.0, z + 2))
+        for z in (0.0, 1.0, 2.5)
+    ]
+    runs = tuple(
+        Run(id=f"r{k}", route=route, section=section) for k, route in enumerate(routes)
+    )
+    made = [*conductors(Layout(runs=runs)), along_y(Round(diameter=0.04))]
+    points = rng.uniform(-2, 5, (3000, 3))
+    points[:1000] = 0.3 * points[:1000] + [2.4, 0.3, 0.5]
+    each = [surface_distance([one], points) for one in made]
+    assert surface_distance(made, points) == pytest.approx(
+        np.min(each, axis=0), abs=1e-12
+    )
+    alone = [surface_distance(made, point[None])[0] for point in points[::40]]
+    assert surface_distance(made, points)[::40] == pytest.approx(alone, abs=1e-12)
 
 
 def test_distance_grows_no_faster_than_the_way() -> None:
