@@ -95,6 +95,15 @@ def theme_for(palette: QPalette) -> Theme:
     return DARK if palette.color(QPalette.ColorRole.Window).lightness() < 128 else LIGHT
 
 
+def theme_shown() -> Theme:
+    """The theme of the whole application.
+
+    For what is coloured while the palette changes: a widget within another one has
+    its new palette only after the outer one was told of it.
+    """
+    return theme_for(QApplication.palette())
+
+
 def qt_palette(theme: Theme) -> QPalette:
     """The theme as a palette for all standard widgets."""
     palette = QPalette()

@@ -33,7 +33,7 @@ from app.panels.margin_words import (
     value_text,
     was_text,
 )
-from app.theme import STEP, theme_for
+from app.theme import STEP, theme_for, theme_shown
 from engine.layout import Layout
 from engine.units import flux_density_text
 
@@ -61,7 +61,7 @@ class MarginModel(QAbstractTableModel):
         self._layout_shown = Layout()
         self._is_sampled = False
         self._held: Margins | None = None
-        self._theme = theme_for(QWidget().palette())
+        self._theme = theme_shown()
 
     def set_margins(self, margins: Margins, held: Margins | None = None) -> None:
         """Show other margins: sorted when exact, else in the order they had."""
@@ -186,7 +186,7 @@ class MarginTable(QTableView):
         self.activated.connect(self._on_chosen)
 
     def set_margins(self, margins: Margins, held: Margins | None = None) -> None:
-        self._model._theme = theme_for(self.palette())
+        self._model._theme = theme_shown()
         self._model.set_margins(margins, held)
         width = 84 if held is None else 190
         self.horizontalHeader().resizeSection(3, width)

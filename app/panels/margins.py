@@ -22,7 +22,7 @@ from app.panels.cautions import CautionsPanel
 from app.panels.margin_marks import RatioBar, StateSign, state_colour
 from app.panels.margin_table import MarginTable
 from app.panels.panel import Words
-from app.theme import SMALL, STEP, theme_for
+from app.theme import SMALL, STEP, theme_shown
 from engine.layout import Layout
 
 
@@ -104,7 +104,7 @@ class MarginTile(QAbstractButton):
         held: Margins | None = None,
     ) -> None:
         self.row = row
-        theme = theme_for(self.palette())
+        theme = theme_shown()
         muted = theme.muted if is_sampled else ""
         state = "" if is_sampled else row.state
         self.title.set_whole(f"{row.place_title} · {words.level_text(row, shown)}")
@@ -126,7 +126,7 @@ class MarginTile(QAbstractButton):
         if not (self.underMouse() or self.hasFocus()):
             return
         painter = QPainter(self)
-        theme = theme_for(self.palette())
+        theme = theme_shown()
         ink = QColor(theme.accent if self.hasFocus() else theme.hairline)
         painter.setPen(QPen(ink, 1.0))
         painter.drawRect(self.rect().adjusted(0, 0, -1, -1))

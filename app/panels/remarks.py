@@ -20,7 +20,7 @@ from app.panels.field import ValueField
 from app.panels.panel import Panel, Words, column
 from app.panels.wrapped_items import WrappedList
 from app.remark_search import Found, RemarkSearch
-from app.theme import STEP, theme_for
+from app.theme import STEP, theme_shown
 from engine.edits import added, checked, removed, unused_id
 from engine.errors import UserError
 from engine.items import ConfirmedRemark
@@ -256,7 +256,7 @@ class RemarksPanel(Panel):
         font = QFont(self.list.font())
         font.setBold(True)
         item.setFont(font)
-        item.setForeground(QColor(theme_for(self.palette()).text))
+        item.setForeground(QColor(theme_shown().text))
         self.list.addItem(item)
 
     def _entry(self, remark: Remark, confirmed: ConfirmedRemark | None) -> None:
@@ -271,7 +271,7 @@ class RemarksPanel(Panel):
         item = QListWidgetItem(text)
         item.setData(_REMARK, remark)
         item.setData(_CONFIRMED, confirmed)
-        theme = theme_for(self.palette())
+        theme = theme_shown()
         colour = {"blocking": theme.warning, "warning": theme.text}
         is_open = confirmed is None
         item.setForeground(

@@ -31,7 +31,7 @@ from PySide6.QtWidgets import (
 from app.panels.panel import Words, decimal_sign
 from app.panels.rows_model import Column, Index, RowsModel
 from app.spreadsheet import Cells, cells, copied, placed
-from app.theme import STEP, theme_for
+from app.theme import STEP, theme_shown
 from engine.errors import UserError
 
 #: What may be held down while text is typed.
@@ -179,7 +179,7 @@ class RowsTable(QWidget):
 
     def colour(self) -> None:
         """Take the colours of the palette."""
-        theme = theme_for(self.palette())
+        theme = theme_shown()
         self.model.set_colours(theme.muted, theme.warning)
 
     def paste(self, text: str) -> None:

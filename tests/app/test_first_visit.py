@@ -20,6 +20,7 @@ from app.files import SAMPLES, empty_layout
 from app.main_window import MainWindow
 from app.messages import Messages
 from app.panels.item_forms import heading
+from app.theme import DARK, LIGHT
 from app.views.cut_mark import cut_place
 from engine import layout_file
 from engine.circuits import LoadCase
@@ -285,3 +286,20 @@ def test_a_dropped_layout_opens(window):
     )
     window.dropEvent(event)
     assert window.document.path == Path(SMALL)
+
+
+# -- look -----------------------------------------------------------------------------
+
+
+def test_state_and_load_case_follow_the_colours_of_the_window(window):
+    window.document.open(layout_file.read(SMALL), None)
+    assert window.recompute.wait_until_idle(60)
+    row = window.margins.tile.row
+    assert row is not None
+    assert row.state == "below"
+    for theme in (DARK, LIGHT):
+        window.set_theme(theme)
+        QApplication.processEvents()
+        assert theme.below in window.margins.tile.state.styleSheet()
+        assert theme.muted in window.margins.tile.case.styleSheet()
+        assert window.levels.table.model._muted.name() == theme.muted
