@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import replace
 
 import numpy as np
+from msgspec import structs
 
 from engine.comparability import blocking_sentences, obstacles
 from engine.criteria import ReferenceLevel
@@ -16,6 +17,7 @@ from engine.loaded_layout import LoadedLayout
 from engine.place_details import root_sum_of_squares
 from engine.places import Receptor, Uncertainty, Zone
 from engine.results import STATES, Comparison, PlaceDetails, State
+from engine.uncertainty_budget import places_of
 from engine.zone_search import Found
 
 KINDS: tuple[Kind, ...] = ("AC", "DC")
@@ -91,9 +93,10 @@ def _compared(
     reached: Largest,
 ) -> Comparison:
     """A comparison that can be made: AC or DC, whichever is of more concern."""
-    rule = place.uncertainty or loaded.layout.settings.uncertainty
+    rules = {q: _rules(loaded, place, q, *reached[q]) for q in reached}
     states = {
-        q: _judged(rule, level, f, details.upper) for q, (f, details) in reached.items()
+        q: _judged(rules[q][1], level, f, details.upper)
+        for q, (f, details) in reached.items()
     }
 
     def concern(q: Quantity) -> tuple[int, float]:
@@ -103,7 +106,8 @@ def _compared(
     quantity = max(reached, key=concern)
     largest, details = reached[quantity]
     others = [f.score for q, (f, _) in reached.items() if q is not quantity]
-    value = float(root_sum_of_squares(list(largest.by_frequency.values())))
+    value = _value(largest)
+    rule, ratio_rule = rules[quantity]
     limits = [level_at(level, f) for f in largest.by_frequency]
     limit = limits[0] if len(limits) == 1 else None
     bound = details.upper
@@ -116,7 +120,7 @@ def _compared(
         value=value,
         level_value=limit,
         ratio=largest.score,
-        uncertainty_ratio=_spread(rule, level, largest, largest.score),
+        uncertainty_ratio=_spread(ratio_rule, level, largest, largest.score),
         uncertainty=expanded(rule, value),
         upper_ratio=bound,
         upper=None if bound is None or limit is None else bound * limit,
@@ -125,6 +129,43 @@ def _compared(
         not_covered=compared.not_covered,
         details=details,
     )
+
+
+def _value(largest: Found) -> float:
+    """What is compared, of several frequencies the root of the sum of squares. [T]"""
+    return float(root_sum_of_squares(list(largest.by_frequency.values())))
+
+
+def _rules(
+    loaded: LoadedLayout,
+    place: Zone | Receptor,
+    quantity: Quantity,
+    largest: Found,
+    details: PlaceDetails,
+) -> tuple[Uncertainty, Uncertainty]:
+    """The uncertainty of the value and of its ratio: entered, or of its budget."""
+    rule = place.uncertainty or loaded.layout.settings.uncertainty
+    if rule.kind == "entered":
+        return rule, rule
+    value = _value(largest)
+    points = places_of(place, details)
+    budget = loaded.budgets.budget(place, quantity, points, value)
+    assert budget.ratio_standard is not None, "a comparison has a level"
+    return (
+        budgeted(rule, budget.standard, value),
+        budgeted(rule, budget.ratio_standard, largest.score),
+    )
+
+
+def budgeted(rule: Uncertainty, standard: float, value: float) -> Uncertainty:
+    """The rule whose relative part is that of a standard uncertainty of a value.
+
+    Without a value there is no relative part: the uncertainty then stands by itself.
+    """
+    expanded = rule.coverage * standard
+    if value > 0:
+        return structs.replace(rule, relative=expanded / value)
+    return structs.replace(rule, relative=0.0, absolute=rule.absolute + expanded)
 
 
 def _judged(

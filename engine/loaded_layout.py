@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 from engine.case_fields import CaseCurrents, CaseFields, case_currents
 from engine.circuits import LoadCase
@@ -17,6 +18,7 @@ from engine.layout import Layout
 from engine.masks import keepouts
 from engine.place_details import Surroundings
 from engine.results import CaseResult
+from engine.uncertainty_budget import Budgets
 
 
 @dataclass(frozen=True, eq=False)
@@ -35,6 +37,11 @@ class LoadedLayout:
     @property
     def fields(self) -> CaseFields:
         return self.surroundings.fields
+
+    @cached_property
+    def budgets(self) -> Budgets:
+        """Budgets of uncertainty of its values."""
+        return Budgets(self.layout, self.fields)
 
 
 def loaded_layout(

@@ -142,6 +142,8 @@ def shape_text(shape: Shape, unit: str) -> str:
 def uncertainty_text(uncertainty: Uncertainty, unit: str) -> str:
     """An uncertainty in words."""
     text = f"{100 * uncertainty.relative:g} %"
+    if uncertainty.kind == "from the budget":
+        text = "by the budget of the place"
     if uncertainty.absolute:
         text += f" + {flux_density_text(uncertainty.absolute, unit)}"
     return f"{text}, k = {uncertainty.coverage:g} ({uncertainty.basis})"
