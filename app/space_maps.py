@@ -232,6 +232,7 @@ class SpaceMaps(QObject):
         super().__init__()
         self._document, self._view_state = document, view_state
         self._places: tuple[MapPlace, ...] = ()
+        self._is_coarse = False
         self._asked: SpaceMapRequest | None = None
         self._cache = ResponseCache(_CACHE)
         self._found.connect(self._show, Qt.ConnectionType.QueuedConnection)
@@ -248,9 +249,12 @@ class SpaceMaps(QObject):
         """Nothing is being computed or waits to be asked."""
         return self._worker.is_idle and not self._soon.isActive()
 
-    def want(self, places: tuple[MapPlace, ...]) -> None:
-        """Compute maps on these planes, of the layout and case that are shown."""
-        self._places = places
+    def want(self, places: tuple[MapPlace, ...], *, is_coarse: bool = False) -> None:
+        """Compute maps on these planes, of the layout and case that are shown.
+
+        Coarse while planes are dragged, as while the layout is.
+        """
+        self._places, self._is_coarse = places, is_coarse
         self._soon.start()
 
     def close_worker(self) -> None:
@@ -263,7 +267,7 @@ class SpaceMaps(QObject):
             self._document.layout,
             self._view_state.look.case,
             self._places,
-            self._document.is_previewing,
+            self._is_coarse or self._document.is_previewing,
         )
         if request == self._asked:
             return

@@ -22,6 +22,7 @@ from app.cycle_values import (
     waves_csv,
 )
 from app.document import Document
+from app.field_store import load_kernels
 from app.figures import FIGURE_KINDS, ask_figure, write_figure
 from app.messages import Messages
 from app.page import Page
@@ -61,7 +62,9 @@ class CyclePage(Page):
         self.reason = Words(style="warning")
         self._build()
         self._found.connect(self._show, Qt.ConnectionType.QueuedConnection)
-        self._worker: Worker[CycleRequest] = Worker("cycle", self._compute)
+        self._worker: Worker[CycleRequest] = Worker(
+            "cycle", self._compute, load_kernels
+        )
         self._soon = QTimer(self, singleShot=True, interval=0)
         self._soon.timeout.connect(self._ask)
         self._clock = QTimer(self, interval=_FRAME)
@@ -201,6 +204,8 @@ class CyclePage(Page):
         request = CycleRequest(layout, self._view_state.look.case, self.place)
         if request != self._asked:
             self._asked = request
+            if self.view is None:
+                self._tell("The field is being computed …")
             self._worker.ask(request)
 
     def _compute(self, request: CycleRequest, _outdated: Outdated) -> None:

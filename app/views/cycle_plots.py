@@ -128,9 +128,9 @@ class EllipsePlot(_Plot):
         self.plot([0, major], [0, 0], pen=pen)
         self.plot([0, 0], [0, minor], pen=pen)
         text = f"semi-major {flux_text(ellipse.semi_major, unit)} RMS"
-        self._words(text, theme, (major, 0.0), (1.0, -0.1))
+        self._words(text, theme, (major, 0.0), (1.0, -0.7))
         text = f"semi-minor {flux_text(ellipse.semi_minor, unit)} RMS"
-        self._words(text, theme, (0.0, minor), (0.5, 1.1))
+        self._words(text, theme, (0.0, minor), (0.5, 1.7))
 
 
 class CurvesPlot(_Plot):
@@ -174,14 +174,21 @@ class CurvesPlot(_Plot):
         curves = _closed(wave.vectors) / _per(unit)
         top = max(float(np.abs(curves).max()), 1e-12)
         colours = AXIS_COLOURS[theme.name]
+        taken: list[int] = []
         for k, letter in enumerate("xyz"):
             pen = pg.mkPen(colours[k], width=1.8, style=AXIS_STYLES[k])
             self.plot(self._times, curves[:, k], pen=pen)
-            best = int(np.argmax(curves[:-1, k]))
-            if curves[best, k] > 0.04 * top:
-                at = (self._times[best], curves[best, k])
-                self._words(letter, theme, at, (0.5, 0.9))
-        self.setYRange(-1.15 * top, 1.15 * top, padding=0.0)
+            crests = [int(np.argmax(curves[:-1, k])), int(np.argmin(curves[:-1, k]))]
+            if np.ptp(curves[:, k]) < 0.1 * top:
+                crests = [int(place * (len(curves) - 1)) for place in (0.97, 0.03)]
+            best = max(
+                crests, key=lambda at: min((abs(at - t) for t in taken), default=0)
+            )
+            taken.append(best)
+            below = curves[best, k] < 0
+            at = (self._times[best], curves[best, k])
+            self._words(letter, theme, at, (0.5, 0.1 if below else 0.9))
+        self.setYRange(-1.2 * top, 1.2 * top, padding=0.0)
 
     def _draw_magnitude(self, wave: Wave, unit: str, theme: Theme) -> None:
         sizes = np.append(wave.magnitudes, wave.magnitudes[0]) / _per(unit)
