@@ -15,7 +15,8 @@ from engine.zone_search import Found
 #: How much a bound may exceed the value found, unless somebody says otherwise.
 TOLERANCE = 0.01
 
-#: Segments that one region may take; a core does some 20 million a second.
+#: Work that one region may take, in segments; a core does some 20 million a second,
+#: and a box counts as 2000 besides.
 MOST_WORK = 400_000_000
 
 AREA_MEAN = (
@@ -79,7 +80,7 @@ def certified_maxima(
     tolerance : float
         By how much the bound may exceed the value found. Relative.
     most_work : int
-        Segments after which the bound reached so far is told.
+        In segments; after it the bound reached so far is told.
 
     Returns
     -------

@@ -37,6 +37,9 @@ _TOUCHING = 2e-3
 #: Part of the tolerance that the residues of filaments may take.
 _RESIDUE_PART = 0.1
 
+#: What a box takes besides its segments, in segments.
+_BOX_WORK = 2000
+
 _BATCH = 512
 _TRIES = 4  # centres per batch that are looked at as places of the maximum
 
@@ -176,7 +179,7 @@ class Branching:
         boxes, tight, masks = boxes[left], tight[left], [m[left] for m in masks]
         above, alive = above[left], alive[left]
         expansions = [self._source.expansion(r[left]) for r in raised]
-        self.work += sum(e.work for e in expansions)
+        self.work += sum(e.work for e in expansions) + _BOX_WORK * len(boxes)
         self._cells += len(boxes)
         enclosed = enclosure(tight, expansions)
         upper = above.copy()
