@@ -55,6 +55,8 @@ class Document(QObject):
         self._selection: frozenset[str] = frozenset()
         self.path = path
         self.undo_stack = QUndoStack(self)
+        #: The layout last handed in, and what was made of it.
+        self._given = self._taken = self._committed
 
     @property
     def layout(self) -> Layout:
@@ -90,7 +92,7 @@ class Document(QObject):
 
         Values that changed lose the origin that stood for them as they were.
         """
-        layout = with_true_origins(self._committed, layout)
+        layout = self._with_true_origins(layout)
         if layout == self._committed:
             self.revert()
             return
@@ -98,7 +100,7 @@ class Document(QObject):
 
     def preview(self, layout: Layout) -> None:
         """Show `layout` without committing it."""
-        self._show(layout)
+        self._show(self._with_true_origins(layout))
 
     def revert(self) -> None:
         """End a preview without a change."""
@@ -109,7 +111,7 @@ class Document(QObject):
     def open(self, layout: Layout, path: Path | None) -> None:
         """Start over with another layout and an empty history."""
         self.undo_stack.clear()
-        self._committed = self._shown = layout
+        self._committed = self._shown = self._given = self._taken = layout
         self._selection = frozenset()
         self.set_path(path)
         self.selection_changed.emit(self._selection)
@@ -121,8 +123,15 @@ class Document(QObject):
         self.path = path
         self.path_changed.emit(path)
 
+    def _with_true_origins(self, layout: Layout) -> Layout:
+        """What is previewed and then committed is one value: views need not redraw."""
+        if layout is not self._given:
+            self._given = layout
+            self._taken = with_true_origins(self._committed, layout)
+        return self._taken
+
     def _commit(self, layout: Layout) -> None:
-        self._committed = layout
+        self._committed = self._given = self._taken = layout
         self._show(layout)
         self.settled.emit(layout)
 
