@@ -50,6 +50,7 @@ from app.side_panels import WIDTH, SidePanels
 from app.theme import DARK, LIGHT, STEP, Theme, apply
 from app.tool_row import ToolRow
 from app.toolbox import Toolbox
+from app.view_pages import ViewPages
 from app.view_state import ViewState
 from app.views.height_rail import HeightRail
 from app.window_menus import WindowMenus
@@ -83,6 +84,7 @@ class MainWindow(QMainWindow):
         self.autosave = Autosave(document)
         self.theme = theme
         self._build()
+        self.view_pages = ViewPages(self)
         self.menus = WindowMenus(self)
         self._connect()
         self.set_theme(theme)
@@ -159,11 +161,7 @@ class MainWindow(QMainWindow):
             ("Item", self.item, "The values of what is selected"),
             ("Circuits", self.circuits, "Currents, neutrals, harmonics"),
             ("Cases", self.load_cases, "Load cases: which currents flow together"),
-            (
-                "Ref. levels",
-                self.levels,
-                "Reference levels: what the field is compared with",
-            ),
+            ("Ref. levels", self.levels, "Levels that the field is compared with"),
             ("Remarks", self.remarks, "What to bear in mind, and what is assumed"),
         ):
             self.panels.add(name, panel, tip)
@@ -393,6 +391,7 @@ class MainWindow(QMainWindow):
         self.jobs.wait()
         self.recompute.close()
         self.readout.close_worker()
+        self.view_pages.close()
         self.remarks.close_search()
         self.autosave.forget()
         window_geometry.remember(self)

@@ -193,6 +193,8 @@ class WindowMenus(QObject):
                         "The largest value over the zone's heights"),
                 Command("Fit range", self._fit_range, "",
                         "Let the map's range hold the values that it shows"),
+                Command("Field over one period", w.view_pages.open_cycle, "F8",
+                        "At the selected receptor, or at the pointer"),
                 LINE,
                 Command("Hold as before", self._hold, "F7",
                         "Keep the present margins beside the coming ones"),

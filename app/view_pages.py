@@ -1,0 +1,67 @@
+"""Pages that show the layout otherwise than drawn: the field over one period."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QObject
+
+from app.cycle_values import CyclePlace
+from app.readout_values import Readout
+from app.views.cycle_page import CyclePage
+from engine.errors import UserError
+
+if TYPE_CHECKING:
+    from app.main_window import MainWindow
+
+
+class ViewPages(QObject):
+    """Builds the pages into the window, and opens them on what is meant."""
+
+    def __init__(self, window: MainWindow) -> None:
+        super().__init__(window)
+        self._window = window
+        parts = (window.document, window.view_state, window.messages)
+        self.cycle = CyclePage(*parts)
+        for page in (self.cycle,):
+            window.pages.addWidget(page)
+            page.closed.connect(window.show_drawing)
+        self._pointed: CyclePlace | None = None
+        window.readout.shown.connect(self._on_read)
+
+    def open_cycle(self) -> None:
+        """Show the field over one period: at the selected receptor, or the pointer.
+
+        Raises
+        ------
+        UserError
+            When there is neither, nor any receptor.
+        """
+        layout = self._window.document.layout
+        selected = [
+            receptor
+            for receptor in layout.receptors
+            if receptor.id in self._window.document.selection
+        ]
+        if len(selected) != 1 and self._pointed is None:
+            selected = list(layout.receptors)
+        if selected:
+            place = CyclePlace(selected[0].at, selected[0].id)
+        elif self._pointed is not None:
+            place = self._pointed
+        else:
+            raise UserError(
+                "There is no place to show yet: point at one on the drawing and press "
+                "F8, or select a receptor."
+            )
+        self.cycle.show_place(place)
+        self._window.show_page(self.cycle)
+
+    def close(self) -> None:
+        """Stop the threads, before the window goes."""
+        self.cycle.close_worker()
+
+    def _on_read(self, found: Readout | None) -> None:
+        # The menu takes the pointer off the drawing: the last place is meant then.
+        if found is not None:
+            self._pointed = CyclePlace(found.at)
