@@ -40,6 +40,7 @@ from engine.spectra import frequency_key, harmonics, phasor
 AngleKind = Literal[
     "offset unknown",
     "sequence assumed",
+    "line offset assumed",
     "power factor assumed",
     "neutral angle assumed",
     "net current angle assumed",
@@ -227,6 +228,7 @@ def _currents(same: Same[Circuit]) -> CircuitCurrents:
         for label, value in _closed(circuit, given).items():
             values[label, frequency] = value
     notes += [AngleNote("offset unknown", circuit.id, f) for f in spectrum.unknown]
+    notes += [AngleNote("line offset assumed", circuit.id, f) for f in spectrum.mixed]
     return CircuitCurrents(values, spectrum.unknown, tuple(notes))
 
 

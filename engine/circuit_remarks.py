@@ -188,6 +188,11 @@ _ANGLE_SENTENCES: dict[str, tuple[str, str]] = {
         "The angles between the lines of circuit {circuit} were not entered: 120° "
         "apart in the order L1, L2, L3 is assumed.",
     ),
+    "line offset assumed": (
+        "W31",
+        "Some lines of circuit {circuit} have a harmonic angle and others none "
+        "({frequencies}): those without are taken with an offset of 0°. Enter them all.",
+    ),
     "power factor assumed": (
         "W31",
         "The power factor of circuit {circuit} was not entered: lines in phase with "

@@ -27,10 +27,14 @@ class Harmonics:
     unknown
         Frequencies at which at least one line has no offset; the angles of the
         circuit's conductors to each other hold, their common angle does not.
+    mixed
+        Those of them at which other lines have one: a line without an offset is taken
+        with 0°, so the angles between the lines are assumed too.
     """
 
     values: Mapping[float, Mapping[str, complex]]
     unknown: frozenset[float]
+    mixed: frozenset[float] = frozenset()
 
 
 def frequency_key(frequency: float) -> float:
@@ -86,15 +90,16 @@ def harmonics(
         at_frequency[line.label] = line
     values: dict[float, dict[str, complex]] = {}
     unknown: set[float] = set()
+    known: set[float] = set()
     for frequency, by_label in named.items():
         applied = dict.fromkeys(every, by_label.pop("")) if "" in by_label else {}
         applied |= by_label
         found = values[frequency] = {}
         for label, line in applied.items():
             found[label] = _line_phasor(circuit, stated, label, line, frequency)
-            if line.offset is None and found[label] != 0:
-                unknown.add(frequency)
-    return Harmonics(values, frozenset(unknown))
+            if found[label] != 0:
+                (unknown if line.offset is None else known).add(frequency)
+    return Harmonics(values, frozenset(unknown), frozenset(unknown & known))
 
 
 def _field(line: SpectrumLine) -> str:

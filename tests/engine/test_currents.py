@@ -9,6 +9,7 @@ import numpy as np
 import pytest
 
 from engine.circuits import (
+    ENTERED_CURRENTS,
     BalancedCurrent,
     Circuit,
     CircuitFactor,
@@ -597,3 +598,20 @@ def test_refusal_names_circuit_and_what_to_do(
 def test_two_circuits_of_one_id_are_refused() -> None:
     with pytest.raises(UserError, match="Two circuits have the id a"):
         phasors_of(balanced("a"), balanced("a"))
+
+
+def test_a_frequency_with_known_and_unknown_offsets_says_what_it_assumes():
+    circuit = Circuit(
+        id="C",
+        demand=BalancedCurrent(rms=100.0),
+        spectrum=(
+            SpectrumLine(frequency=250.0, label="L1", ratio=0.1, offset=30.0),
+            SpectrumLine(frequency=250.0, label="L2", ratio=0.1),
+            SpectrumLine(frequency=350.0, ratio=0.1),
+        ),
+    )
+    notes = case_phasors(Layout(circuits=(circuit,)), ENTERED_CURRENTS).notes
+    kinds = {(note.kind, note.frequency) for note in notes}
+    assert ("line offset assumed", 250.0) in kinds
+    assert ("offset unknown", 250.0) in kinds
+    assert ("line offset assumed", 350.0) not in kinds
