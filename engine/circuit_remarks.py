@@ -191,7 +191,7 @@ _ANGLE_SENTENCES: dict[str, tuple[str, str]] = {
     "line offset assumed": (
         "W31",
         "Some lines of circuit {circuit} have a harmonic angle and others none "
-        "({frequencies}): those without are taken with an offset of 0°. Enter them all.",
+        "({frequencies}): those without are taken with an offset of 0°; enter all.",
     ),
     "power factor assumed": (
         "W31",
