@@ -32,6 +32,7 @@ from app.entry_strip import EntryStrip
 from app.exports import Exports
 from app.files import Files
 from app.guide import AboutPage, CautionsPage, GuidePage
+from app.hint_line import HintLine
 from app.jobs import Jobs
 from app.message_bar import JobBar, MessageBar
 from app.messages import Messages
@@ -167,16 +168,20 @@ class MainWindow(QMainWindow):
             self.panels.add(name, panel, tip)
 
     def _build_status(self) -> None:
-        self.hint, self.working = QLabel(), QLabel()
-        self.hint.setTextFormat(Qt.TextFormat.PlainText)
+        self.hint, self.working = HintLine(), QLabel()
         self.readout = ReadoutLine(self.document, self.view_state)
+        # What is read at the pointer is not cut; the hint gives way.
+        self.readout.setSizePolicy(
+            QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Fixed
+        )
+        self.readout.setMinimumWidth(1)
         bar = self.statusBar()
         bar.setSizeGripEnabled(False)
         bar.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
-        bar.addWidget(self.hint, 2)
+        bar.addWidget(self.hint, 1)
         bar.addPermanentWidget(self.working)
         bar.addPermanentWidget(JobBar(self.jobs))
-        bar.addPermanentWidget(self.readout, 3)
+        bar.addPermanentWidget(self.readout)
 
     # -- connecting -------------------------------------------------------------
 
@@ -240,14 +245,14 @@ class MainWindow(QMainWindow):
         """What can be done in the drawing's place now."""
         page, tool = self.pages.currentWidget(), self.toolbox.active
         if page is self.section:
-            self.hint.setText(
+            self.hint.say(
                 "Click a conductor, Shift adds; drag it or press an arrow key to move "
                 "it. Esc goes back to the drawing."
             )
         elif page is self.drawings and tool is not None:
-            self.hint.setText(tool.hint)
+            self.hint.say(tool.hint)
         else:
-            self.hint.setText("Esc goes back to the drawing.")
+            self.hint.say("Esc goes back to the drawing.")
 
     def show_drawing(self) -> None:
         """Show the drawing again."""

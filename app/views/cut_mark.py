@@ -11,6 +11,7 @@ from PySide6.QtGui import QColor, QPainter, QPen, QPolygonF
 
 from app.views.camera import Camera
 from app.views.inks import Inks
+from engine.runs import Run
 
 Point = tuple[float, float]
 
@@ -44,9 +45,17 @@ def cut_place(route: Sequence[Point], from_end: bool) -> tuple[Point, Point] | N
 
 
 def draw_cut(
-    painter: QPainter, at: Point, way: Point, camera: Camera, inks: Inks
+    painter: QPainter, run: object, from_end: bool, camera: Camera, inks: Inks
 ) -> None:
-    """Draw the cut: a line across the run with an arrow at both ends."""
+    """Draw where a run is cut; of anything else nothing."""
+    if isinstance(run, Run):
+        found = cut_place([(x, y) for x, y, _ in run.route], from_end)
+        if found is not None:
+            _draw(painter, *found, camera, inks)
+
+
+def _draw(painter: QPainter, at: Point, way: Point, camera: Camera, inks: Inks) -> None:
+    """A line across the run with an arrow at both ends."""
     middle = camera.pixel(at)
     ahead = camera.pixel((at[0] + way[0], at[1] + way[1])) - middle
     length = math.hypot(ahead.x(), ahead.y()) or 1.0

@@ -24,7 +24,7 @@ from app.tools.catch import NO_TARGETS, Catch, catch, held
 from app.tools.tool import Pointer, Tool
 from app.view_state import Look, ViewState
 from app.views.camera import Camera
-from app.views.cut_mark import cut_place, draw_cut
+from app.views.cut_mark import draw_cut
 from app.views.drawing_scene import DrawingScene
 from app.views.inks import Inks
 from app.views.legend import Legend
@@ -34,9 +34,10 @@ from app.views.picture_painter import PicturePainter
 from app.views.projection import PLAN, Sight
 from app.views.scale_bar import grid_step
 from app.views.zoomable_view import ZoomableView
-from engine.runs import Run
 
 _MARGIN = 56.0
+#: Most of the width that is kept free for the legend.
+_MOST_BESIDE = 0.35
 
 #: How near is near enough. [px]
 PICK_REACH = 5.0
@@ -92,7 +93,7 @@ class DrawingView(ZoomableView):
         self._pixels: QPixmap | None = None
         self._tool: Tool | None = None
         self._pointer: Pointer | None = None
-        self._cut: tuple[str, bool] | None = None
+        self._cut = ("", False)
         self.catches_places = True
         self.holds_directions = False
         self._legend = Legend(self._inks, self.viewport())
@@ -167,7 +168,7 @@ class DrawingView(ZoomableView):
 
     def set_cut(self, run: str, from_end: bool) -> None:
         """Mark where that run is cut while it is selected; an empty id for none."""
-        self._cut = (run, from_end) if run else None
+        self._cut = (run, from_end)
         self.viewport().update()
 
     def refresh(self) -> None:
@@ -180,9 +181,14 @@ class DrawingView(ZoomableView):
     def fit(self) -> None:
         """Show everything that is drawn."""
         box = self._everything()
+        whole = self.viewport().size()
         beside = self._legend.width() if self._legend_shows else 0
-        width = max(60.0, self.viewport().width() - 2 * _MARGIN - beside)
-        height = max(60.0, self.viewport().height() - 2 * _MARGIN)
+        margin = min(_MARGIN, 0.08 * min(whole.width(), whole.height()))
+        if beside > _MOST_BESIDE * whole.width():
+            # Better under the legend than too small to be read.
+            beside = 0
+        width = max(60.0, whole.width() - 2 * margin - beside)
+        height = max(60.0, whole.height() - 2 * margin)
         scale = min(width / max(box.width(), 0.5), height / max(box.height(), 0.5))
         self.set_transform(scale)
         self.centerOn(box.center() + QPointF(0.5 * beside / scale, 0.0))
@@ -212,10 +218,9 @@ class DrawingView(ZoomableView):
             self.camera_changed.emit()
 
     def _place_legend(self) -> None:
-        size, place = self.viewport().size(), self._legend.size()
-        self._legend.move(
-            size.width() - place.width() - 12, size.height() - place.height() - 12
-        )
+        self._legend.fit()
+        room = self.viewport().size() - self._legend.size()
+        self._legend.move(room.width() - 12, room.height() - 12)
         self._legend.setVisible(
             self._scene.map_layer.picture is not None
             and "map" not in self._view_state.look.hidden
@@ -246,16 +251,11 @@ class DrawingView(ZoomableView):
         painter.end()
 
     def _paint_cut(self, painter: QPainter, camera: Camera) -> None:
-        run, from_end = self._cut or ("", False)
-        if run not in self._document.selection or self._sight is not PLAN:
-            return
-        item = self._document.layout.by_id().get(run)
-        if not isinstance(item, Run):
-            return
-        found = cut_place([(x, y) for x, y, _ in item.route], from_end)
-        if found is not None:
+        run, from_end = self._cut
+        if self._sight is PLAN and run in self._document.selection:
+            item = self._document.layout.by_id().get(run)
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-            draw_cut(painter, *found, camera, self._inks)
+            draw_cut(painter, item, from_end, camera, self._inks)
 
     @property
     def _legend_shows(self) -> bool:

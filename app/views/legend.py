@@ -18,7 +18,11 @@ _BAR_WIDTH, _BAR_HEIGHT = 14, 128
 #: Two values on the bar are at least this far apart. [px]
 _APART = 14.0
 
-_LONGEST_NAME = 26
+#: Room for the name of a reference level; the lines carry it in full. [px]
+_NAME_WIDTH = 120.0
+
+#: In narrower views a level is told by its value alone. [px]
+_NARROW = 600
 
 
 class Legend(QWidget):
@@ -33,7 +37,7 @@ class Legend(QWidget):
     def set_inks(self, inks: Inks) -> None:
         """Take another theme."""
         self._inks = inks
-        self._fit()
+        self.fit()
 
     def set_picture(self, picture: MapPicture | None) -> None:
         """Explain another map, or none."""
@@ -48,7 +52,7 @@ class Legend(QWidget):
                 f"Resultant RMS flux density in {picture.unit}; the range of colours "
                 "is set in the Field menu"
             )
-            self._fit()
+            self.fit()
 
     def sizeHint(self) -> QSize:
         metrics = self._inks.bold_metrics
@@ -120,13 +124,22 @@ class Legend(QWidget):
             at = QPointF(x + _BAR_WIDTH + 2 * STEP, down + 0.36 * metrics.ascent())
             painter.drawText(at, text)
 
+    def _cut(self, name: str) -> str:
+        """A name as long as there is room; its end tells the frequency."""
+        parent = self.parentWidget()
+        if parent is not None and parent.width() < _NARROW:
+            return ""
+        return self._inks.bold_metrics.elidedText(
+            name, Qt.TextElideMode.ElideMiddle, _NAME_WIDTH
+        )
+
     def _ticks(self) -> list[tuple[float, str, bool]]:
         """Part of the bar, text, and whether it is a reference level; none too near."""
         picture = self._picture
         if picture is None:
             return []
         wanted = [
-            (value, f"{significant(value)} {_cut(name)}", True)
+            (value, f"{significant(value)} {self._cut(name)}".strip(), True)
             for value, name in picture.marks
             if picture.low <= value <= picture.high
         ]
@@ -164,10 +177,7 @@ class Legend(QWidget):
             return []
         return [f"under {picture.low:g} {picture.unit}", "not coloured"]
 
-    def _fit(self) -> None:
+    def fit(self) -> None:
+        """Be as large as the words need in this view."""
         self.resize(self.sizeHint())
         self.update()
-
-
-def _cut(name: str) -> str:
-    return name if len(name) <= _LONGEST_NAME else name[: _LONGEST_NAME - 1] + "…"

@@ -90,11 +90,11 @@ def test_a_room_called_room_is_not_a_room_room():
 
 def test_the_hint_belongs_to_what_is_shown(window):
     run_tool(window)
-    drawing_hint = window.hint.text()
+    drawing_hint = window.hint.sentence
     window.open_section(drawn_run(window.document, (0, 0, 2), (4, 0, 2)))
-    assert "Esc goes back to the drawing" in window.hint.text()
+    assert "Esc goes back to the drawing" in window.hint.sentence
     window.show_drawing()
-    assert window.hint.text() == drawing_hint
+    assert window.hint.sentence == drawing_hint
 
 
 # -- keys -----------------------------------------------------------------------------
@@ -303,3 +303,20 @@ def test_state_and_load_case_follow_the_colours_of_the_window(window):
         assert theme.below in window.margins.tile.state.styleSheet()
         assert theme.muted in window.margins.tile.case.styleSheet()
         assert window.levels.table.model._muted.name() == theme.muted
+
+
+def test_the_readout_is_whole_where_the_window_is_narrow(window, qtbot):
+    window.resize(1024, 576)
+    window.readout.setText("7.86 4.04 4.60 m (Office +0.50) · 12.2 µT " * 2)
+    qtbot.waitUntil(lambda: window.readout.width() >= window.readout.sizeHint().width())
+    window.hint.say("A sentence that is long enough to need more room " * 3)
+    assert window.hint.text().endswith("…")
+    assert window.hint.toolTip() == window.hint.sentence
+
+
+def test_a_narrow_view_keeps_the_legend_narrow(window):
+    window.document.open(layout_file.read(SMALL), None)
+    window.resize(1024, 576)
+    assert window.recompute.wait_until_idle(60)
+    plan = window.drawings.plan
+    assert plan._legend.width() < 0.35 * plan.viewport().width()
