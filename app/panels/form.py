@@ -17,9 +17,13 @@ from app.panels.kinds import Kind, Terms, si_unit
 from app.panels.origin import OriginMark
 from app.panels.panel import Words, decimal_sign
 from app.panels.parts import Group, Part
+from app.panels.slot_forms import SlotItem
 from app.theme import STEP
 from engine.errors import UserError
 from engine.items import Item
+from engine.layout import Layout
+from engine.runs import Run
+from engine.sections import slots
 
 #: Width of the labels before the fields. [logical pixels]
 _LABEL = 26 * STEP
@@ -162,7 +166,12 @@ class Row(QWidget):
             self.mark.setEnabled(True)
 
     def _enter(self, value: Any) -> None:
-        """One undo step. Raises `UserError` when an item cannot have the value."""
+        """One undo step. Raises `UserError` when an item cannot have the value.
+
+        A field that goes because its items went or became others enters nothing.
+        """
+        if not _are_held(self._document.committed, self._items):
+            return
         terms = Terms(self._document.layout, decimal_sign())
         try:
             layout = self.part.entered(self._document.committed, self._items, value)
@@ -170,6 +179,19 @@ class Row(QWidget):
             reason = _without_opening(str(error), self._items)
             raise UserError(_with_unit(reason, self.part.kind)) from None
         self._document.edit(self.part.sentence(self._items, value, terms), layout)
+
+
+def _are_held(layout: Layout, items: tuple[Item, ...]) -> bool:
+    """Whether the layout holds the very items, or conductors of its sections."""
+    by_id = layout.by_id()
+    for item in items:
+        if isinstance(item, SlotItem):
+            run = by_id.get(item.run)
+            if not isinstance(run, Run) or item.slot not in slots(run.section):
+                return False
+        elif by_id.get(item.id) != item:
+            return False
+    return True
 
 
 def _with_unit(reason: str, kind: Kind) -> str:
