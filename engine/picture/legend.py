@@ -169,7 +169,10 @@ def _paragraph(
 
 
 def _caption(subject: MapSubject, width: float) -> list[tuple[str, bool]]:
-    lines = [(line, True) for line in wrapped(subject.title, 2.8, width, bold=True)[:3]]
+    lines: list[tuple[str, bool]] = []
+    if subject.title:
+        title = wrapped(subject.title, 2.8, width, bold=True)[:3]
+        lines = [(line, True) for line in title]
     for text in (*subject.lines, CAUTION):
         lines += [(line, False) for line in wrapped(text, SIZE, width)[:4]]
     return lines

@@ -22,7 +22,7 @@ LEFT = 14.0
 BOTTOM = 16.0
 TOP = 15.0
 #: Room for dimensions beside a plan, and for levels beside an elevation.
-BESIDE, LEVELS = 15.0, 48.0
+BESIDE, LEVELS = 15.0, 54.0
 SIZE, STEP = 2.2, 3.1
 
 #: Around what is drawn. [m]
@@ -107,9 +107,11 @@ def room_drawing(view: RoomView, *, width: float, height: float) -> Picture:
 
 
 def _note_lines(view: RoomView, width: float) -> list[tuple[str, bool]]:
-    title = wrapped(view.title, 2.8, width - 4.0, bold=True)[:3]
-    lines = [(line, True) for line in title]
-    for text in view.lines:
+    lines: list[tuple[str, bool]] = []
+    if view.title:
+        title = wrapped(view.title, 2.8, width - 4.0, bold=True)[:3]
+        lines = [(line, True) for line in title]
+    for text in filter(None, view.lines):
         lines += [(line, False) for line in wrapped(text, SIZE, width - 4.0)[:6]]
     return lines
 

@@ -3,217 +3,256 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass, replace
 
-from reportlab.lib.units import mm
-from reportlab.platypus import CondPageBreak, Flowable, KeepTogether
+from reportlab.platypus import Flowable
 
-import engine
-from engine.drawing import Plan
-from engine.faults import Remark
-from engine.layout import Layout
-from engine.picture import MapSubject, map_picture
-from engine.report import inputs, sources
-from engine.report.figures import Figure
-from engine.report.names import Wording
-from engine.report.page import Paper
-from engine.report.receptor_tables import receptor_section
-from engine.report.summary import state_table, summary
-from engine.report.text import (
-    NOTE,
-    TITLE,
-    bullets,
-    fact_table,
-    gap,
-    heading,
-    paragraph,
-    paragraphs,
-    subheading,
-    table,
+from engine.drawing import plan
+from engine.picture import Picture, Raster, map_picture
+from engine.report import (
+    appendix,
+    closing,
+    inputs,
+    method,
+    risk,
+    scope,
+    sensitivity,
+    sources,
 )
-from engine.report.wording import CAUTIONS, METHOD, NOT_MODELLED, SIGN_OFF
-from engine.report.words import place
-from engine.report.zone_tables import zone_section
-from engine.results import Assessment
+from engine.report.attachments import Attachment
+from engine.report.drawings import HEADING_ROOM, Sheeted, room_views, sheeted
+from engine.report.figures import FigureRow
+from engine.report.front import front_page, overview
+from engine.report.maps import plan_of_map
+from engine.report.matter import Matter
+from engine.report.names import Wording
+from engine.report.page import Orientation, Pages, Paper, paper
+from engine.report.receptor_tables import measured_section, receptor_section
+from engine.report.section_figures import (
+    MOST_SECTIONS,
+    numbered_sections,
+    section_pictures,
+)
+from engine.report.story import Story
+from engine.report.text import bullets, gap, paragraph
+from engine.report.wording import CAUTIONS
+from engine.report.zone_tables import contribution_tables, zone_section
+
+#: Another orientation must make a map this much larger to be worth a turned page.
+_WORTH = 1.2
+
+#: Between sections side by side. [mm]
+_GAP = 4.0
 
 
-class Story:
-    """Flowables in order, with numbered headings."""
+@dataclass(frozen=True, eq=False)
+class Drawn:
+    """Every picture of the report, made once however often it is laid out."""
 
-    def __init__(self) -> None:
-        self.flowables: list[Flowable] = []
-        self._number = 0
+    rooms: tuple[tuple[str, Sheeted], ...]
+    maps: tuple[tuple[str, Picture, Orientation], ...]
+    sections: tuple[Picture, ...]
 
-    def section(self, text: str, *parts: Sequence[Flowable], room: float = 0.0) -> None:
-        """Add a section; `room` is what its first part needs below the heading. [mm]"""
-        self._number += 1
-        self.flowables.append(CondPageBreak((room + 16.0) * mm))
-        self.flowables += heading(f"{self._number}  {text}")
-        for part in parts:
-            self.flowables.extend(part)
+
+def drawn(matter: Matter, sheet: Paper) -> Drawn:
+    """The pictures of a report."""
+    across = 3 if sheet.orientation == "landscape" else 2
+    width = (sheet.text_width - (across - 1) * _GAP) / across
+    return Drawn(
+        rooms=tuple((view.title, sheeted(view, sheet)) for view in room_views(matter)),
+        maps=tuple(_map_pictures(matter, sheet)),
+        sections=section_pictures(matter.layout, width),
+    )
+
+
+def _map_pictures(
+    matter: Matter, sheet: Paper
+) -> Sequence[tuple[str, Picture, Orientation]]:
+    made = []
+    whole = plan(matter.layout, matter.conductors)
+    for each in matter.maps:
+        shown = plan_of_map(whole, each)
+        for subject in each.subjects:
+            pictures = [
+                map_picture(
+                    replace(subject, title=""),
+                    shown,
+                    width=p.text_width,
+                    height=p.text_height - HEADING_ROOM,
+                )
+                for p in (sheet, sheet.turned)
+            ]
+            scales = [_drawn_size(picture) for picture in pictures]
+            turned = scales[1] > _WORTH * scales[0]
+            chosen = sheet.turned if turned else sheet
+            made.append((subject.title, pictures[turned], chosen.orientation))
+    return made
+
+
+def _drawn_size(picture: Picture) -> float:
+    """Width of the field on paper. [mm]"""
+    field = next(part for part in picture.parts if isinstance(part, Raster))
+    return field.box[2] - field.box[0]
 
 
 def story(
-    assessment: Assessment,
-    remarks: Sequence[Remark],
-    maps: Sequence[MapSubject],
-    plan: Plan,
+    matter: Matter,
+    pictures: Drawn,
+    attachments: Sequence[Attachment],
     words: Wording,
-    paper: Paper,
-    left_out: int,
+    sheet: Paper,
+    pages: Pages,
 ) -> list[Flowable]:
     """All that the report prints, title block aside."""
-    layout = assessment.layout
-    width = paper.text_width
-    told = Story()
-    told.flowables += _opening(layout, width)
-    told.section("Summary", summary(assessment, words, width), _conclusions(layout))
-    _inputs(told, layout, plan, words, width)
-    told.section("Remarks not cleared", _remarks(layout, remarks, words, width))
-    figures = [_figure(subject, plan, paper) for subject in maps]
+    told = Story(sheet, pages)
+    layout, width = matter.layout, sheet.text_width
+    told.add(front_page(matter, words, sheet, told))
+    told.break_page()
+    at = len(told.flowables)
+    told.section("scope", "Scope and exclusions", scope.scope(matter, width))
     told.section(
-        "Maps",
-        _maps(figures, left_out),
-        room=figures[0].height / mm if figures else 0.0,
+        "levels",
+        "Reference levels as entered",
+        inputs.levels(layout, words.unit, width),
     )
-    told.section("Zones", zone_section(assessment, words, width))
-    told.section("Receptors", receptor_section(assessment, words, width))
+    told.section("documents", "Input documents", inputs.documents(layout, width))
+    _site(told, matter, pictures, words)
+    _sources(told, matter, pictures)
+    told.section("assumptions", "Assumptions", inputs.assumption_list(layout, width))
+    told.subsection("Where the other values come from", inputs.origins(layout, width))
     told.section(
-        "Method and conventions",
-        bullets(METHOD),
-        [state_table(width)],
-        [paragraph(_program(words), NOTE)],
+        "method", "Method and conventions", method.method(matter, words, width)
     )
-    told.section("Not modelled, and excluded", bullets(NOT_MODELLED))
-    told.section("Cautions and deferrals", bullets(CAUTIONS))
-    told.section("Signatures", [_signatures(layout, width)])
+    _validation(told, matter)
+    _results(told, matter, pictures, words)
+    _last(told, matter, words)
+    appendix.appendix(told, matter, attachments)
+    told.flowables[at:at] = overview(told)
     return told.flowables
 
 
-def _opening(layout: Layout, width: float) -> list[Flowable]:
-    title = layout.title
-    facts = [
-        ("Project", title.project or title.name),
-        ("Client", title.client),
-        ("Question", title.question),
-        ("Scope", title.scope),
-        ("Notes", title.note),
-    ]
-    return [
-        paragraph("Magnetic flux density at power frequency, calculated", TITLE),
-        fact_table([(matter, text or "not stated") for matter, text in facts], width),
-    ]
-
-
-def _conclusions(layout: Layout) -> list[Flowable]:
-    text = layout.title.conclusions
-    if not text:
-        return []
-    return [*subheading("Conclusions of the author"), *paragraphs(text)]
-
-
-def _inputs(
-    told: Story, layout: Layout, plan: Plan, words: Wording, width: float
-) -> None:
-    links = [link for link in plan.links if link.role == "closing link"]
-    closed = [*dict.fromkeys(words.name(link.item) for link in links)]
-    told.section(
-        "Reference levels as entered", inputs.levels(layout, words.unit, width)
+def _site(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> None:
+    layout, width = matter.layout, told.sheet.text_width
+    told.section("site", "Site, zones and receptors", inputs.places(layout, width))
+    told.subsection(
+        "Zones", inputs.zones(layout, words.unit, width), key="zones as entered"
     )
-    told.section("Source documents", inputs.documents(layout, width))
-    told.section(
-        "Circuits and load cases",
-        sources.circuits(layout, width),
-        subheading("Load cases"),
-        sources.load_cases(layout, width),
-        *(
-            [
-                *subheading(f"Currents used in “{case.title}”"),
-                *sources.currents(layout, case, width),
-            ]
-            for case in layout.cases
-        ),
+    told.subsection(
+        "Receptors", inputs.receptors(layout, width), key="receptors as entered"
     )
-    told.section(
-        "Runs and equipment",
-        sources.runs(layout, width),
-        sources.equipment(layout, width),
-        sources.joints(layout, closed, width),
-    )
-    told.section(
-        "Rooms, zones and settings as entered",
-        inputs.places(layout, width),
-        inputs.zones(layout, words.unit, width),
-        inputs.settings(layout, words.unit, width),
-    )
-    told.section("Assumptions", inputs.assumption_list(layout, width))
+    told.subsection("Settings", inputs.settings(layout, words.unit, width))
+    for k, (title, sheeted_picture) in enumerate(pictures.rooms):
+        key = "drawings" if k == 0 else f"drawing {k}"
+        told.figure(title, key, sheeted_picture.picture, sheeted_picture.orientation)
+    if not pictures.rooms:
+        told.subsection("Drawings", [paragraph("Omitted: nothing is drawn.")])
 
 
-def _remarks(
-    layout: Layout, remarks: Sequence[Remark], words: Wording, width: float
-) -> list[Flowable]:
-    if remarks:
-        rows = [
-            (
-                r.code,
-                r.severity,
-                r.sentence,
-                ", ".join(words.name(item) for item in r.items),
-                place(r.place, words.length_unit) if r.place else "",
-                words.name(r.case) if r.case else "every one",
-            )
-            for r in remarks
-        ]
-        heads = (
-            "Code", "Severity", "Remark", "Items", f"Place [{words.length_unit}]",
-            "Load case",
-        )  # fmt: skip
-        made: list[Flowable] = [table(heads, rows, (6, 10, 46, 16, 12, 10), width)]
-    else:
-        made = [paragraph("None.")]
-    if layout.confirmed_remarks:
-        rows_of_confirmed = [
-            (c.code, ", ".join(words.name(i) for i in c.items), c.by, c.date, c.note)
-            for c in layout.confirmed_remarks
-        ]
-        heads_of_confirmed = ("Code", "Items", "Let stand by", "Date", "Note")
-        made += subheading("Remarks that a named person lets stand")
-        made.append(
-            table(heads_of_confirmed, rows_of_confirmed, (8, 36, 18, 14, 24), width)
+def _sources(told: Story, matter: Matter, pictures: Drawn) -> None:
+    layout, width = matter.layout, told.sheet.text_width
+    told.section("sources", "Sources", sources.circuits(layout, width))
+    told.subsection("Load cases", sources.load_cases(layout, width), key="load cases")
+    for k, case in enumerate(layout.cases):
+        told.subsection(
+            f"Currents used in “{case.title}”",
+            sources.currents(layout, case, width),
+            key="currents" if k == 0 else "",
         )
-    return made
+    told.subsection("Runs", sources.runs(layout, width), key="runs")
+    told.subsection("Sections of the runs", _sections(matter, pictures), key="sections")
+    told.subsection("Equipment", sources.equipment(layout, width))
+    closed = [c.item for c in matter.conductors if c.role == "closing link"]
+    names = {item.id: item.title for item in layout.items()}
+    titles = [names.get(item, item) for item in dict.fromkeys(closed)]
+    told.subsection("Joints and ends", sources.joints(layout, titles, width))
 
 
-def _figure(subject: MapSubject, plan: Plan, paper: Paper) -> Figure:
-    room = paper.text_height - 20.0
-    return Figure(map_picture(subject, plan, width=paper.text_width, height=room))
-
-
-def _maps(figures: Sequence[Figure], left_out: int) -> list[Flowable]:
-    if not figures:
-        return [paragraph("No map: there is no zone, or its field is not determined.")]
+def _sections(matter: Matter, pictures: Drawn) -> list[Flowable]:
+    if not pictures.sections:
+        return [paragraph("Omitted: no run was entered.")]
     made: list[Flowable] = []
-    for figure in figures:
-        made += [figure, gap(4.0)]
-    if left_out:
-        made.append(paragraph(f"Heights of zones without a map here: {left_out}."))
+    wide = pictures.sections[0].width
+    across = max(1, int((paper_width(matter) + _GAP + 0.01) // (wide + _GAP)))
+    for first in range(0, len(pictures.sections), across):
+        row = pictures.sections[first : first + across]
+        made += [FigureRow(row, _GAP), gap(2.0)]
+    count = len(numbered_sections(matter.layout))
+    if count > MOST_SECTIONS:
+        text = f"Sections without a drawing here: {count - MOST_SECTIONS}."
+        made.append(paragraph(text))
     return made
 
 
-def _program(words: Wording) -> str:
-    return (
-        f"Lodestead {engine.__version__}. Flux densities in {words.unit} (A/m through "
-        f"µ0 of air), lengths in {words.length_unit}, angles in degrees; inside the "
-        "program SI units and double precision."
+def paper_width(matter: Matter) -> float:
+    """Width of the text of the report's pages. [mm]"""
+    return paper(matter.layout).text_width
+
+
+def _validation(told: Story, matter: Matter) -> None:
+    title = "Validation of the program"
+    if matter.outcomes is None:
+        told.omitted("validation", title, "the outside checks were not asked for.")
+        return
+    told.section(
+        "validation", title, method.validation(matter.outcomes, told.sheet.text_width)
     )
 
 
-def _signatures(layout: Layout, width: float) -> Flowable:
-    title = layout.title
-    rows = [
-        ("Prepared", title.prepared_by, "\n\n", ""),
-        ("Checked", title.checked_by, "\n\n", ""),
-        ("Approved", title.approved_by, "\n\n", ""),
-    ]
-    heads = ("Role", "Name", "Signature", "Date")
-    lines = table(heads, rows, (16, 34, 34, 16), width)
-    return KeepTogether([paragraph(SIGN_OFF), lines])
+def _results(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> None:
+    assessment, width = matter.assessment, told.sheet.text_width
+    told.section("results", "Results: zones", zone_section(assessment, words, width))
+    told.section(
+        "receptors", "Results: receptors", receptor_section(assessment, words, width)
+    )
+    if pictures.maps:
+        text = (
+            "One map for each height of a zone, in the load case that leads there. All "
+            "have one colour scale; iso-lines carry their values."
+        )
+        first = pictures.maps[0]
+        beside = first[2] == told.sheet.orientation
+        room = first[1].height + 40.0 if beside else 0.0
+        told.section("maps", "Results: maps", [paragraph(text)], room=room)
+        if matter.left_out:
+            left = f"Heights of zones without a map here: {matter.left_out}."
+            told.add([paragraph(left)])
+    else:
+        told.omitted("maps", "Results: maps", _no_map(matter))
+    for k, (title, picture, lying) in enumerate(pictures.maps):
+        told.figure(title, f"map {k}", picture, lying)
+    tables = contribution_tables(assessment, words, width)
+    grown = sensitivity.load_growth(assessment, words, width)
+    if tables or grown:
+        told.section("contributions", "Contributions and sensitivity", tables, grown)
+    else:
+        reason = "no value was determined, so nothing can be apportioned."
+        told.omitted("contributions", "Contributions and sensitivity", reason)
+    told.omitted("options", "Options considered", "no variant is in the layout.")
+    measured = measured_section(assessment, words, width)
+    if measured:
+        told.section("measurements", "Measurements", measured)
+    else:
+        reason = "no receptor has a measured value. " + CAUTIONS[0].partition(". ")[0]
+        told.omitted("measurements", "Measurements", reason + ".")
+
+
+def _no_map(matter: Matter) -> str:
+    if not matter.layout.zones:
+        return "no zone was entered."
+    return "the field is not determined at any height of a zone."
+
+
+def _last(told: Story, matter: Matter, words: Wording) -> None:
+    width = told.sheet.text_width
+    told.section(
+        "uncertainty",
+        "Uncertainty and decision rule",
+        risk.uncertainty(matter.assessment, words, width),
+    )
+    told.section(
+        "remarks", "Remarks not cleared", closing.remarks(matter, words, width)
+    )
+    told.section("cautions", "Cautions and deferrals", bullets(CAUTIONS))
+    told.section("conclusions", "Conclusions and actions", closing.conclusions(matter))
+    told.section("revisions", "Revisions issued", closing.revisions(matter, width))
+    told.section("signatures", "Signatures", closing.signatures(matter, width))

@@ -1,48 +1,80 @@
-"""The report's bytes from finished results: no computing, no file, no clock."""
+"""The document's bytes from finished results: no computing, no file, no clock."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Literal
 
-from engine.drawing import Plan
-from engine.faults import Remark
-from engine.picture import MapSubject
-from engine.report.contents import story
+from engine.errors import UserError
+from engine.report.attachments import Attachment
+from engine.report.contents import drawn, story
+from engine.report.files import attached_files
+from engine.report.matter import Matter
 from engine.report.names import wording
-from engine.report.page import paper, pdf, register_fonts
-from engine.results import Assessment
+from engine.report.note import note_story
+from engine.report.page import UNWATCHED, Watch, paper, pdf, register_fonts
 from engine.units import flux_density_unit
+
+DocumentKind = Literal["report", "note"]
+
+SUBJECT = "Power-frequency magnetic flux density, calculated"
 
 
 def report_pdf(
-    assessment: Assessment,
-    *,
-    remarks: Sequence[Remark],
-    maps: Sequence[MapSubject],
-    plan: Plan,
-    unit: str,
-    left_out: int = 0,
+    matter: Matter, *, kind: DocumentKind = "report", watch: Watch = UNWATCHED
 ) -> bytes:
-    """The report as the bytes of a PDF file; equal results give equal bytes.
+    """The report, or the note, as the bytes of a PDF file.
 
-    Parameters
-    ----------
-    remarks : sequence of Remark
-        Those that are not cleared.
-    maps : sequence of MapSubject
-        In the order in which they are printed.
-    unit : str
-        Display unit of flux density, for every value.
-    left_out : int
-        Maps that were not computed for want of room.
+    Equal matter gives equal bytes.
 
     Raises
     ------
+    UserError
+        When the results are not those of the whole layout.
     ValueError
         When the unit is not known.
+    ComputationCancelled
+        When `watch` says so.
     """
     register_fonts()
-    layout = assessment.layout
-    words = wording(layout, flux_density_unit(unit))
-    parts = story(assessment, remarks, maps, plan, words, paper(layout), left_out)
-    return pdf(layout, parts)
+    _refuse_partial(matter)
+    layout = matter.layout
+    sheet = paper(layout)
+    words = wording(layout, flux_density_unit(matter.unit))
+    attachments: Sequence[Attachment] = attached_files(matter)
+    if kind == "note":
+        return pdf(
+            layout,
+            lambda pages: note_story(matter, words, sheet),
+            subject=f"{SUBJECT}: note",
+            attachments=attachments[:1],
+            watch=watch,
+        )
+    pictures = drawn(matter, sheet)
+    return pdf(
+        layout,
+        lambda pages: story(matter, pictures, attachments, words, sheet, pages),
+        subject=f"{SUBJECT}: report",
+        attachments=attachments,
+        watch=watch,
+    )
+
+
+def _refuse_partial(matter: Matter) -> None:
+    """A report says nothing of load cases, zones or receptors that are missing."""
+    assessment, layout = matter.assessment, matter.layout
+    done = (
+        {result.case.id for result in assessment.cases},
+        {result.zone.id for result in assessment.zones},
+        {result.receptor.id for result in assessment.receptors},
+    )
+    whole = (
+        {case.id for case in layout.cases},
+        {zone.id for zone in layout.zones},
+        {receptor.id for receptor in layout.receptors},
+    )
+    if done != whole:
+        raise UserError(
+            "The report was not written: its results are of a part of the layout only. "
+            "Compute every load case, zone and receptor, then write it again."
+        )

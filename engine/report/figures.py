@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+from collections.abc import Sequence
 
 import numpy as np
 from PIL import Image
@@ -29,16 +30,42 @@ class Figure(Flowable):  # type: ignore[misc]
         return self.width, self.height
 
     def draw(self) -> None:
+        _draw(self.canv, self.picture)
+
+
+class FigureRow(Flowable):  # type: ignore[misc]
+    """Pictures side by side, their upper edges level, `gap` apart. [mm]"""
+
+    def __init__(self, pictures: Sequence[Picture], gap: float) -> None:
+        super().__init__()
+        self._pictures, self._gap = pictures, gap
+        self.width = (sum(p.width + gap for p in pictures) - gap) * mm
+        self.height = max(picture.height for picture in pictures) * mm
+
+    def wrap(self, width: float, height: float) -> tuple[float, float]:
+        return self.width, self.height
+
+    def draw(self) -> None:
         canvas: Canvas = self.canv
-        canvas.setLineCap(0)
-        canvas.setLineJoin(1)
-        for part in self.picture.parts:
-            if isinstance(part, Stroke):
-                _draw_stroke(canvas, part)
-            elif isinstance(part, Raster):
-                _draw_raster(canvas, part)
-            else:
-                _draw_words(canvas, part)
+        left = 0.0
+        for picture in self._pictures:
+            canvas.saveState()
+            canvas.translate(left * mm, self.height - picture.height * mm)
+            _draw(canvas, picture)
+            canvas.restoreState()
+            left += picture.width + self._gap
+
+
+def _draw(canvas: Canvas, picture: Picture) -> None:
+    canvas.setLineCap(0)
+    canvas.setLineJoin(1)
+    for part in picture.parts:
+        if isinstance(part, Stroke):
+            _draw_stroke(canvas, part)
+        elif isinstance(part, Raster):
+            _draw_raster(canvas, part)
+        else:
+            _draw_words(canvas, part)
 
 
 def _ink(colour: Colour) -> tuple[float, float, float]:

@@ -6,9 +6,12 @@ from reportlab.platypus import Flowable
 
 from engine.assessment import zone_floor
 from engine.criteria import LevelRanges, LevelTable, ReferenceLevel
+from engine.items import Item
 from engine.layout import Layout
 from engine.origins import assumptions
-from engine.places import Zone
+from engine.places import Room, Zone
+from engine.report.drawings import receptor_marks
+from engine.report.origin_words import origin_text, told_origin
 from engine.report.text import fact_table, paragraph, table
 from engine.report.wording import NO_LEVELS
 from engine.report.words import length, place, uncertainty_text
@@ -16,15 +19,48 @@ from engine.units import flux_density_text
 
 
 def documents(layout: Layout, width: float) -> list[Flowable]:
-    """The register of source documents."""
-    if not layout.documents:
-        return [paragraph("No source document was entered.")]
-    rows = [
-        (d.title, d.file_name, d.revision, d.date, d.sha256, d.note)
-        for d in layout.documents
+    """The register of source documents and backing drawings."""
+    made: list[Flowable] = []
+    if layout.documents:
+        rows = [
+            (
+                d.title,
+                d.file_name or "not stated",
+                d.revision or "not stated",
+                d.date or "not stated",
+                d.sha256 or "not stated",
+                d.note,
+            )
+            for d in layout.documents
+        ]
+        heads = ("Document", "File", "Revision", "Date", "SHA-256 of the file", "Note")
+        made.append(table(heads, rows, (22, 16, 9, 12, 25, 16), width))
+    else:
+        made.append(paragraph("No source document was entered."))
+    if not layout.backing_drawings:
+        return made
+    unit = layout.settings.length_unit
+    drawings = [
+        (
+            d.title,
+            f"{d.file_name or 'not stated'}, page {d.page}",
+            d.sha256 or "not stated",
+            d.view,
+            f"{_pixels(d.first)} to {_pixels(d.second)} px = "
+            f"{length(d.distance, unit)} {unit}; first point at "
+            f"{place(d.origin, unit)} {unit}, turned {d.turn:g}°",
+        )
+        for d in layout.backing_drawings
     ]
-    heads = ("Document", "File", "Revision", "Date", "SHA-256 of the file", "Note")
-    return [table(heads, rows, (20, 18, 10, 12, 24, 16), width)]
+    heads_of_drawings = (
+        "Backing drawing", "File", "SHA-256 of the file", "View", "Calibration",
+    )  # fmt: skip
+    made.append(table(heads_of_drawings, drawings, (20, 18, 24, 10, 28), width))
+    return made
+
+
+def _pixels(point: tuple[float, float]) -> str:
+    return f"({point[0]:.5g}, {point[1]:.5g})"
 
 
 def levels(layout: Layout, unit: str, width: float) -> list[Flowable]:
@@ -81,14 +117,8 @@ def places(layout: Layout, width: float) -> list[Flowable]:
             room.title,
             "room",
             _outline(room.outline, unit),
-            f"floor {length(room.floor_level, unit)}, "
-            f"ceiling {length(room.ceiling_level, unit)}"
-            + (
-                f", slab above {length(room.slab_above, unit)}"
-                if room.slab_above
-                else ""
-            ),
-            room.note,
+            _room_levels(room, unit),
+            "\n".join(t for t in (room.note, _from(layout, room, "outline")) if t),
         )
         for room in layout.rooms
     ]
@@ -103,14 +133,34 @@ def places(layout: Layout, width: float) -> list[Flowable]:
                 if e.front_clearance
                 else ""
             ),
-            e.note,
+            "\n".join(t for t in (e.note, _from(layout, e, "footprint")) if t),
         )
         for e in layout.enclosures
     ]
     if not rows:
         return [paragraph("No room and no enclosure was entered.")]
-    heads = ("Place", "Kind", f"Outline x, y [{unit}]", f"Levels z [{unit}]", "Note")
-    return [table(heads, rows, (20, 14, 30, 20, 16), width)]
+    heads = (
+        "Place", "Kind", f"Outline x, y [{unit}]", f"Levels z [{unit}]", "Note, origin",
+    )  # fmt: skip
+    return [table(heads, rows, (17, 13, 26, 22, 22), width)]
+
+
+def _room_levels(room: Room, unit: str) -> str:
+    """Floor, finished ceiling, structural soffit and slab."""
+    soffit = room.soffit_level
+    lines = [
+        f"floor {length(room.floor_level, unit)}",
+        f"finished ceiling {length(room.ceiling_level, unit)}",
+        "structural soffit "
+        + ("not stated" if soffit is None else length(soffit, unit)),
+    ]
+    slab = room.slab_above
+    lines.append("slab above " + ("not stated" if slab is None else length(slab, unit)))
+    return "\n".join(lines)
+
+
+def _from(layout: Layout, item: Item, field: str) -> str:
+    return f"{field.replace('_', ' ')}: {origin_text(layout, item, field)}"
 
 
 def _outline(outline: tuple[tuple[float, float], ...], unit: str) -> str:
@@ -130,20 +180,55 @@ def zones(layout: Layout, unit: str, width: float) -> list[Flowable]:
             zone.category or "not chosen",
             zone_heights(zone, layout, measure),
             zone.rule,
+            _reasons(layout, zone),
             "\n".join(
                 part for part in (zone.use, zone.hours, zone.part_of_body) if part
             ),
             ", ".join(names.get(level, level) for level in zone.levels) or "none",
-            length(zone.clearance, measure),
-            uncertainty_text(zone.uncertainty or layout.settings.uncertainty, unit),
+            f"{length(zone.clearance, measure)}\nU: "
+            + uncertainty_text(zone.uncertainty or layout.settings.uncertainty, unit),
         )
         for zone in layout.zones
     ]
     heads = (
-        "Zone", "Category", f"Heights [{measure}]", "Rule", "Use", "Reference levels",
-        f"Clearance [{measure}]", "U",
+        "Zone", "Category", f"Heights [{measure}]", "Rule", "Why so", "Use",
+        "Reference levels", f"Clearance [{measure}], U",
     )  # fmt: skip
-    return [table(heads, rows, (14, 12, 16, 12, 14, 13, 11, 14), width)]
+    return [table(heads, rows, (13, 11, 14, 11, 17, 11, 11, 12), width)]
+
+
+def _reasons(layout: Layout, zone: Zone) -> str:
+    """Why these heights and this rule: the note, and where they come from."""
+    lines = [zone.note] if zone.note else []
+    lines += [_from(layout, zone, field) for field in ("heights", "rule")]
+    return "\n".join(lines)
+
+
+def receptors(layout: Layout, width: float) -> list[Flowable]:
+    """Receptors as entered: the mark on the drawings, where, why, for whom."""
+    if not layout.receptors:
+        return [paragraph("No receptor was entered.")]
+    unit = layout.settings.length_unit
+    marks = receptor_marks(layout)
+    names = {level.id: level.title for level in layout.levels}
+    rows = [
+        (
+            marks[r.id],
+            r.title,
+            place(r.at, unit),
+            r.reason or "not stated",
+            r.use or "not stated",
+            r.category or "not chosen",
+            ", ".join(names.get(level, level) for level in r.levels) or "none",
+            origin_text(layout, r, "at"),
+        )
+        for r in layout.receptors
+    ]
+    heads = (
+        "Mark", "Receptor", f"x, y, z [{unit}]", "Why there", "Use", "Category",
+        "Reference levels", "Origin of the place",
+    )  # fmt: skip
+    return [table(heads, rows, (6, 14, 14, 18, 12, 12, 11, 13), width)]
 
 
 def zone_heights(zone: Zone, layout: Layout, unit: str) -> str:
@@ -182,17 +267,39 @@ def assumption_list(layout: Layout, width: float) -> list[Flowable]:
     count = len(found)
     sentence = (
         f"Entered values without an origin: {count}. Each is an assumption until a "
-        "document, a measurement or a named person confirms it."
+        "document, a measurement or a named person confirms it; its effect may go "
+        "either way. What the method itself assumes stands with the method."
     )
     rows = [
         (
-            str(k),
+            f"A{k}",
             names.get(a.item, a.item),
-            a.field.replace("_", " "),
+            a.field.replace("_", " ").replace(".", " "),
             a.value,
-            a.reason,
+            a.reason or "none given",
         )
         for k, a in enumerate(found, start=1)
     ]
     heads = ("No.", "Item", "Value of", "As assumed", "Reason given")
     return [paragraph(sentence), table(heads, rows, (6, 22, 16, 38, 18), width)]
+
+
+def origins(layout: Layout, width: float) -> list[Flowable]:
+    """Where values come from that are no assumptions, grouped by their origin."""
+    groups: dict[str, dict[str, list[str]]] = {}
+    for item in layout.items():
+        for origin in item.origins:
+            if origin.kind != "assumed":
+                items = groups.setdefault(told_origin(layout, origin), {})
+                name = origin.field.replace("_", " ").replace(".", " ")
+                items.setdefault(item.title, []).append(name)
+    if not groups:
+        return [paragraph("No value has an origin.")]
+    rows = [
+        (
+            text,
+            "; ".join(f"{item}: {', '.join(f)}" for item, f in items.items()),
+        )
+        for text, items in groups.items()
+    ]
+    return [table(("Origin", "Values of"), rows, (34, 66), width)]

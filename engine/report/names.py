@@ -24,6 +24,10 @@ class Wording:
         """A flux density without its unit, three figures."""
         return "–" if tesla is None else significant(in_unit(tesla, self.unit))
 
+    def limit(self, tesla: float) -> str:
+        """A level as it was typed: up to six figures, no zeros behind the point."""
+        return f"{float(f'{in_unit(tesla, self.unit):.6g}'):.10g}"
+
     def beside(self, tesla: float | None, limit: float | None) -> str:
         """A value with the figures that show its side of a limit."""
         if tesla is None or limit is None:

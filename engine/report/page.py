@@ -1,13 +1,13 @@
-"""The page: paper, margins, fonts, and the title block with sheet x of y."""
+"""The page: paper, orientations, fonts, and the building of the document."""
 
 from __future__ import annotations
 
 import io
-from dataclasses import dataclass
-from functools import partial
-from typing import Any
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, replace
+from typing import Any, Literal
 
-from reportlab.lib.pagesizes import A3, A4, LETTER, TABLOID, landscape
+from reportlab.lib.pagesizes import A3, A4, LETTER, TABLOID
 from reportlab.lib.units import mm
 from reportlab.pdfbase import pdfmetrics
 from reportlab.pdfbase.ttfonts import TTFont
@@ -15,9 +15,11 @@ from reportlab.pdfgen.canvas import Canvas
 from reportlab.platypus import BaseDocTemplate, Flowable, Frame, PageTemplate
 
 import engine
-from engine.items import TitleData
+from engine.errors import Cancelled, Progress, stop_if
 from engine.layout import Layout
-from engine.printed_text import BOLD, REGULAR, fitted, one_line
+from engine.printed_text import BOLD, REGULAR, one_line
+from engine.report.attachments import Attachment, attach
+from engine.report.title_block import TITLE_BLOCK, draw_title_block
 
 FONT = "Lodestead Sans"
 BOLD_FONT = "Lodestead Sans Bold"
@@ -25,17 +27,30 @@ BOLD_FONT = "Lodestead Sans Bold"
 #: White edge around everything that is printed. [mm]
 MARGIN = 15.0
 
-#: Height of the title block at the foot of each page. [mm]
-TITLE_BLOCK = 20.0
+Orientation = Literal["portrait", "landscape"]
 
+#: Short and long side. [pt]
 PAPERS: dict[str, tuple[float, float]] = {
     "A4": A4,
-    "A3": landscape(A3),
+    "A3": A3,
     "Letter": LETTER,
-    "Tabloid": landscape(TABLOID),
+    "Tabloid": TABLOID,
 }
 
-Cell = tuple[str, str, float]
+#: How text pages lie: on large paper lines would become too long upright.
+ORIENTATIONS: dict[str, Orientation] = {
+    "A4": "portrait",
+    "A3": "landscape",
+    "Letter": "portrait",
+    "Tabloid": "landscape",
+}
+
+#: Times the document is laid out until page references agree with the pages.
+_MOST_PASSES = 4
+
+#: Pages by the name of what begins on them.
+Pages = Mapping[str, int]
+MakeStory = Callable[[Pages], list[Flowable]]
 
 
 @dataclass(frozen=True)
@@ -44,6 +59,16 @@ class Paper:
 
     width: float
     height: float
+
+    @property
+    def orientation(self) -> Orientation:
+        """How the sheet lies."""
+        return "portrait" if self.width < self.height else "landscape"
+
+    @property
+    def turned(self) -> Paper:
+        """The same sheet, lying the other way."""
+        return Paper(self.height, self.width)
 
     @property
     def text_width(self) -> float:
@@ -57,9 +82,10 @@ class Paper:
 
 
 def paper(layout: Layout) -> Paper:
-    """The paper that the layout's settings ask for."""
-    width, height = PAPERS[layout.settings.paper]
-    return Paper(width / mm, height / mm)
+    """The paper that the layout's settings ask for, as text pages lie."""
+    short, long = (side / mm for side in PAPERS[layout.settings.paper])
+    upright = ORIENTATIONS[layout.settings.paper] == "portrait"
+    return Paper(short, long) if upright else Paper(long, short)
 
 
 def register_fonts() -> None:
@@ -73,13 +99,110 @@ def register_fonts() -> None:
     )
 
 
-def pdf(layout: Layout, story: list[Flowable]) -> bytes:
+@dataclass(frozen=True)
+class Watch:
+    """What a long document asks and tells while it is laid out."""
+
+    cancelled: Cancelled | None = None
+    progress: Progress | None = None
+
+
+#: Nobody asks and nobody is told.
+UNWATCHED = Watch()
+
+
+@dataclass(frozen=True)
+class Laid:
+    """One laying out: the bytes, on which page what begins, and how many pages."""
+
+    content: bytes
+    pages: dict[str, int]
+    count: int
+
+
+def pdf(
+    layout: Layout,
+    make_story: MakeStory,
+    *,
+    subject: str,
+    attachments: Sequence[Attachment] = (),
+    watch: Watch = UNWATCHED,
+) -> bytes:
     """The PDF of a story, with the title block on each page.
 
-    The bytes depend on the layout and the story only: no clock, no random id.
+    Parameters
+    ----------
+    make_story : callable
+        Gives the flowables anew, from the pages on which things begin; these are not
+        known (empty) the first time.
+    subject : str
+        What the document is, for its metadata.
+
+    Notes
+    -----
+    The bytes depend on the arguments only: no clock, no random id. The story is laid
+    out again until the pages it names are those on which things stand.
     """
-    sheet = paper(layout)
+    laid = Laid(b"", {}, 0)
+    for k in range(_MOST_PASSES):
+        part = replace(watch, progress=_share(watch.progress, k))
+        new = _laid_out(layout, make_story, laid, subject, attachments, part)
+        if (new.pages, new.count) == (laid.pages, laid.count):
+            return new.content
+        laid = new
+    return laid.content
+
+
+def _share(progress: Progress | None, attempt: int) -> Progress | None:
+    if progress is None:
+        return None
+    tell = progress
+    start = min(attempt, 2) / 3
+
+    def told(share: float, text: str) -> None:
+        tell(start + share / 3, text)
+
+    return told
+
+
+def _laid_out(
+    layout: Layout,
+    make_story: MakeStory,
+    before: Laid,
+    subject: str,
+    attachments: Sequence[Attachment],
+    watch: Watch,
+) -> Laid:
     file = io.BytesIO()
+    title = layout.title
+    sheet = paper(layout)
+    document = _Document(
+        file,
+        watch,
+        pagesize=(sheet.width * mm, sheet.height * mm),
+        title=one_line(title.project or title.name or "Magnetic field")[:300],
+        author=one_line(title.prepared_by)[:300],
+        subject=subject,
+        keywords=one_line(f"{title.document_number} {title.revision}")[:300],
+        creator=f"Lodestead {engine.__version__}",
+        producer=f"Lodestead {engine.__version__}",
+        lang="en",
+        invariant=1,
+        pageCompression=1,
+        initialFontName=FONT,
+    )
+    count = before.count
+    document.addPageTemplates(
+        [_template(each, layout, count) for each in (sheet, sheet.turned)]
+    )
+    document.attached = attachments
+    story = make_story(before.pages)
+    document.expected = max(1, len(story))
+    document.build(story)
+    return Laid(file.getvalue(), document.begun, document.page)
+
+
+def _template(sheet: Paper, layout: Layout, count: int) -> PageTemplate:
     frame = Frame(
         MARGIN * mm,
         (MARGIN + TITLE_BLOCK + 4.0) * mm,
@@ -90,92 +213,42 @@ def pdf(layout: Layout, story: list[Flowable]) -> bytes:
         topPadding=0,
         bottomPadding=0,
     )
-    title = layout.title
-    document = BaseDocTemplate(
-        file,
+
+    def draw(canvas: Canvas, document: BaseDocTemplate) -> None:
+        area = (MARGIN, MARGIN, sheet.text_width)
+        sheet_text = f"{document.page} of {count}"
+        draw_title_block(canvas, layout.title, area, sheet_text, (FONT, BOLD_FONT))
+
+    return PageTemplate(
+        id=sheet.orientation,
+        frames=[frame],
+        onPage=draw,
         pagesize=(sheet.width * mm, sheet.height * mm),
-        title=one_line(title.project or "Magnetic field assessment")[:300],
-        author=one_line(title.prepared_by)[:300],
-        subject="Power-frequency magnetic flux density, calculated",
-        creator=f"Lodestead {engine.__version__}",
-        lang="en",
-        invariant=1,
-        pageCompression=1,
-        initialFontName=FONT,
     )
-    document.addPageTemplates([PageTemplate(id="sheet", frames=[frame])])
-    document.build(
-        story, canvasmaker=partial(_NumberedCanvas, title=title, paper=sheet)
-    )
-    return file.getvalue()
 
 
-class _NumberedCanvas(Canvas):  # type: ignore[misc]
-    """Keeps the pages until their number is known, then adds the title block."""
+class _Document(BaseDocTemplate):  # type: ignore[misc]
+    """Notes on which page things begin, and can be cancelled between flowables."""
 
-    def __init__(
-        self, *arguments: Any, title: TitleData, paper: Paper, **options: Any
-    ) -> None:
-        super().__init__(*arguments, **options)
-        self._title = title
-        self._paper = paper
-        self._kept: list[dict[str, Any]] = []
+    def __init__(self, file: io.BytesIO, watch: Watch, **options: Any) -> None:
+        super().__init__(file, **options)
+        self.begun: dict[str, int] = {}
+        self.attached: Sequence[Attachment] = ()
+        self.expected = 1
+        self._watch = watch
+        self._done = 0
 
-    def showPage(self) -> None:  # noqa: N802
-        self._kept.append(dict(self.__dict__))
-        self._startPage()
+    def beforeDocument(self) -> None:  # noqa: N802
+        self.canv.setViewerPreference("DisplayDocTitle", "true")
+        self.canv.showOutline()
+        attach(self.canv, self.attached)
 
-    def save(self) -> None:
-        kept = self._kept
-        for number, page in enumerate(kept, start=1):
-            self.__dict__.update(page)
-            _draw_title_block(self, self._title, self._paper, number, len(kept))
-            super().showPage()
-        super().save()
-
-
-def _draw_title_block(
-    canvas: Canvas, title: TitleData, sheet: Paper, number: int, count: int
-) -> None:
-    """Two rows of cells at the foot, each a small heading over its value."""
-    rows: tuple[tuple[Cell, ...], ...] = (
-        (
-            ("Project", title.project, 0.5),
-            ("Client", title.client, 0.3),
-            ("Calculated with", f"Lodestead {engine.__version__}", 0.2),
-        ),
-        (
-            ("Document", title.document_number, 0.18),
-            ("Revision", title.revision, 0.09),
-            ("Status", title.status, 0.14),
-            ("Date", title.date, 0.12),
-            ("Prepared", title.prepared_by, 0.12),
-            ("Checked", title.checked_by, 0.12),
-            ("Approved", title.approved_by, 0.12),
-            ("Sheet", f"{number} of {count}", 0.11),
-        ),
-    )
-    tall = 0.5 * TITLE_BLOCK
-    for row, cells in enumerate(rows):
-        left = MARGIN
-        bottom = MARGIN + TITLE_BLOCK - (row + 1) * tall
-        for heading, value, share in cells:
-            width = share * sheet.text_width
-            _draw_cell(canvas, (left, bottom, width, tall), heading, value)
-            left += width
-
-
-def _draw_cell(
-    canvas: Canvas, box: tuple[float, float, float, float], heading: str, value: str
-) -> None:
-    left, bottom, width, height = box
-    canvas.setLineWidth(0.4)
-    canvas.setStrokeColorRGB(0.35, 0.38, 0.41)
-    canvas.rect(left * mm, bottom * mm, width * mm, height * mm)
-    canvas.setFillColorRGB(0.35, 0.38, 0.41)
-    canvas.setFont(FONT, 5.5)
-    canvas.drawString((left + 1.2) * mm, (bottom + height - 3.0) * mm, heading)
-    canvas.setFillColorRGB(0.08, 0.09, 0.11)
-    canvas.setFont(FONT, 7.5)
-    shown = fitted(value or "–", 7.5, (width - 2.4) * mm)
-    canvas.drawString((left + 1.2) * mm, (bottom + 2.4) * mm, shown)
+    def afterFlowable(self, flowable: Flowable) -> None:  # noqa: N802
+        stop_if(self._watch.cancelled)
+        key = getattr(flowable, "begins", "")
+        if key:
+            self.begun.setdefault(key, self.page)
+        self._done += 1
+        if self._watch.progress is not None and self._done % 20 == 0:
+            done = min(1.0, self._done / self.expected)
+            self._watch.progress(done, "Laying out the report")

@@ -7,7 +7,6 @@ from reportlab.platypus import Flowable
 
 from engine.report.names import Wording
 from engine.report.text import paragraph, table
-from engine.report.words import place
 from engine.report.zone_tables import comparison_rows, comparison_table
 from engine.results import Assessment, ReceptorField, ReceptorResult
 from engine.units import flux_density_text, significant
@@ -16,36 +15,54 @@ from engine.units import flux_density_text, significant
 def receptor_section(
     assessment: Assessment, words: Wording, width: float
 ) -> list[Flowable]:
-    """Receptors: why they are there, the field by axis and frequency, comparisons."""
+    """The field at receptors by axis and frequency, and their comparisons."""
     if not assessment.receptors:
-        return [paragraph("No receptor was entered.")]
-    about = [
-        (
-            r.receptor.title,
-            place(r.receptor.at, words.length_unit),
-            r.receptor.category or "not chosen",
-            r.receptor.reason,
-            r.receptor.use,
-            _measured(r, words),
-        )
-        for r in assessment.receptors
-    ]
-    heads = (
-        "Receptor", f"x, y, z [{words.length_unit}]", "Category", "Reason", "Use",
-        "Measured",
-    )  # fmt: skip
-    story: list[Flowable] = [table(heads, about, (18, 15, 15, 20, 14, 18), width)]
+        return [paragraph("Omitted: no receptor was entered.")]
     fields = [_field_row(r, f, words) for r in assessment.receptors for f in r.fields]
     unit = words.unit
     field_heads = (
         "Receptor", "Load case", "Frequency", f"Bx By Bz, RMS [{unit}]",
         f"Resultant [{unit}]", f"Semi-axes, RMS [{unit}]", "Notes",
     )  # fmt: skip
-    story.append(table(field_heads, fields, (15, 16, 11, 19, 11, 15, 13), width))
+    shares = (15, 16, 11, 19, 11, 15, 13)
+    story: list[Flowable] = [table(field_heads, fields, shares, width)]
     rows = [row for r in assessment.receptors for row in comparison_rows(r, words)]
     if rows:
         story.append(comparison_table("Receptor", rows, words, width))
     return story
+
+
+def measured_section(
+    assessment: Assessment, words: Wording, width: float
+) -> list[Flowable]:
+    """Measured values beside the calculated ones; empty without any."""
+    rows = []
+    for result in assessment.receptors:
+        measured = result.receptor.measured
+        if measured is None:
+            continue
+        for found in result.fields:
+            ratio = found.measured_ratio
+            rows.append(
+                (
+                    result.receptor.title,
+                    _measured(result, words),
+                    words.name(found.case),
+                    found.reason or words.value(found.ac),
+                    "–" if ratio is None else significant(ratio),
+                )
+            )
+    if not rows:
+        return []
+    heads = (
+        "Receptor", "Measured, RMS resultant", "Load case",
+        f"Calculated [{words.unit}]", "Measured / calculated",
+    )  # fmt: skip
+    text = (
+        "Measured values are as entered and were not scaled to another load. Only a "
+        "load case with the currents of the measurement can be held against them."
+    )
+    return [paragraph(text), table(heads, rows, (20, 32, 22, 14, 12), width)]
 
 
 def _measured(result: ReceptorResult, words: Wording) -> str:

@@ -8,16 +8,30 @@ from collections.abc import Iterator, Sequence
 
 from reportlab.platypus import Flowable
 
-from engine.circuits import Circuit, EnteredNetCurrent, LoadCase
+from engine.circuits import STRAY, Circuit, EnteredNetCurrent, LoadCase
 from engine.currents import AngleNote, CasePhasors, case_phasors
 from engine.equipment import Board, ConductorLoop, Equipment, Transformer
 from engine.errors import UserError
 from engine.items import Item, Point3
 from engine.layout import Layout
-from engine.report.text import bullets, paragraph, table
+from engine.report.origin_words import origin_text
+from engine.report.section_figures import SECTION_UNITS, section_numbers
+from engine.report.text import NOTE, bullets, paragraph, table
 from engine.report.words import demand_text, length, place, section_text, shape_text
 from engine.runs import Connection, Run
+from engine.section_words import direction_text, order_text
 from engine.units import significant
+
+OTHER_STATES = (
+    "No other operating state was calculated. The outage of one of several supplies, "
+    "growth and future circuits count only where they are one of these load cases."
+)
+
+NET_CURRENT = (
+    "Net: magnitude of the phasor sum of the circuit's own conductors, the stray part "
+    "left out. It is what a clamp around the whole cable would show; “stray” is the "
+    "path that brings it back. Where nothing was entered for it, it is 0 by assumption."
+)
 
 #: Conductors side by side in the table of currents.
 MOST_LABELS = 6
@@ -31,9 +45,11 @@ def circuits(layout: Layout, width: float) -> list[Flowable]:
         (
             _titled(circuit),
             _supply(circuit),
-            demand_text(circuit.demand),
+            f"{demand_text(circuit.demand)}\n"
+            f"({origin_text(layout, circuit, 'demand')})",
             _spectrum(circuit),
-            f"{circuit.neutral}; net current: {_net_current(circuit)}",
+            f"{circuit.neutral}; net current: {_net_current(circuit)}\n"
+            f"({origin_text(layout, circuit, 'net_current')})",
             circuit.phase_relation,
         )
         for circuit in layout.circuits
@@ -108,7 +124,10 @@ def load_cases(layout: Layout, width: float) -> list[Flowable]:
             )
         )
     heads = ("Load case", "Counts", "Currents", "Open for work", "Stands for")
-    return [table(heads, rows, (20, 11, 40, 15, 14), width)]
+    return [
+        table(heads, rows, (20, 11, 40, 15, 14), width),
+        paragraph(OTHER_STATES, NOTE),
+    ]
 
 
 def currents(layout: Layout, case: LoadCase, width: float) -> list[Flowable]:
@@ -124,15 +143,20 @@ def currents(layout: Layout, case: LoadCase, width: float) -> list[Flowable]:
         part = labels[first : first + MOST_LABELS]
         rows = list(_current_rows(phasors, part, names))
         if rows:
-            heads = ("Circuit", "Frequency", *(f"{label} [A]" for label in part))
-            shares = (20, 16, *([64 / len(part)] * len(part)))
-            made.append(table(heads, rows, shares, width))
+            last = first + MOST_LABELS >= len(labels)
+            heads = (
+                "Circuit", "At", *(f"{label} [A] ∠ [°]" for label in part),
+                *(("Net [A]",) if last else ()),
+            )  # fmt: skip
+            shares = (20, 12, *([60 / len(part)] * len(part)), *((8,) if last else ()))
+            shown = [row if last else row[:-1] for row in rows]
+            made.append(table(heads, shown, shares, width))
     if not made:
         return [paragraph("No current flows in this case.")]
     notes = sorted(
         {f"{names.get(n.circuit, n.circuit)}: {_angle_note(n)}" for n in phasors.notes}
     )
-    return made + bullets(notes)
+    return made + bullets(notes) + [paragraph(NET_CURRENT, NOTE)]
 
 
 def _current_rows(
@@ -148,13 +172,25 @@ def _current_rows(
             if component.group:
                 at += ", not added as a phasor"
             cells = ["–" if v == 0 else _phasor(complex(v)) for v in values]
-            yield (names.get(circuit, circuit), at, *cells)
+            yield (names.get(circuit, circuit), at, *cells, _net(phasors, circuit, k))
+
+
+def _net(phasors: CasePhasors, circuit: str, component: int) -> str:
+    """Magnitude of the sum of what the circuit's own conductors carry."""
+    parts = [
+        (label, complex(values[component]))
+        for (owner, label), values in phasors.values.items()
+        if owner == circuit and label != STRAY
+    ]
+    size = sum(abs(value) for _, value in parts)
+    net = abs(sum(value for _, value in parts))
+    return "0" if net < 1e-9 * size else significant(net, 4)
 
 
 def _phasor(value: complex) -> str:
     angle = f"{math.degrees(cmath.phase(value)):.1f}"
     shown = "0.0" if angle == "-0.0" else angle.replace("-", "−")
-    return f"{significant(abs(value), 4)} ∠ {shown}°"
+    return f"{significant(abs(value), 4)}\n∠ {shown}"
 
 
 def _angle_note(note: AngleNote) -> str:
@@ -163,25 +199,51 @@ def _angle_note(note: AngleNote) -> str:
 
 
 def runs(layout: Layout, width: float) -> list[Flowable]:
-    """Runs with their routes and sections."""
+    """Runs with their routes, sections and ends."""
     unit = layout.settings.length_unit
     names = {item.id: item.title for item in layout.items()}
+    numbers = section_numbers(layout)
+    small = SECTION_UNITS[unit]
     if not layout.runs:
         return [paragraph("No run was entered.")]
     rows = [
         (
             _titled(run),
-            run.kind,
-            _route(run.route, unit),
-            section_text(run.section, names, unit),
+            _kind(run),
+            _route(run.route, unit) + f"\nroute: {origin_text(layout, run, 'route')}",
+            f"{numbers[run.id]}: {_section(layout, run, names, small)}",
             _ends(run, names),
         )
         for run in layout.runs
     ]
     heads = (
-        "Run", "Kind", f"Route x, y, z [{unit}]", f"Section [{unit}]", "Ends",
+        "Run", "Kind", f"Route x, y, z [{unit}]", f"Section [{small}]", "Ends",
     )  # fmt: skip
     return [table(heads, rows, (20, 10, 18, 32, 20), width)]
+
+
+def _kind(run: Run) -> str:
+    parts: list[str] = [run.kind]
+    if run.rated_current is not None:
+        parts.append(f"rated {run.rated_current:g} A")
+    if run.containment != "not stated":
+        parts.append(f"containment {run.containment}")
+    return "\n".join(parts)
+
+
+def _section(layout: Layout, run: Run, names: dict[str, str], unit: str) -> str:
+    """A section in words, its order as seen, and from where it is looked at."""
+    try:
+        order = order_text(run.section)
+    except UserError as error:
+        order = str(error)
+    turned = [f"{turn:g}°" for turn in run.turns]
+    text = section_text(run.section, names, unit)
+    seen = f"{direction_text(layout, run)}, {order}"
+    lines = [text, seen, f"section: {origin_text(layout, run, 'section')}"]
+    if any(run.turns):
+        lines.append("turned about its legs by " + ", ".join(turned))
+    return "\n".join(lines)
 
 
 def _route(route: tuple[Point3, ...], unit: str) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from typing import Any
 from xml.sax.saxutils import escape
 
 from reportlab.lib.colors import Color
@@ -18,7 +19,7 @@ from reportlab.platypus import (
     TableStyle,
 )
 
-from engine.printed_text import printable, wrapped
+from engine.printed_text import fitted, one_line, printable, text_width, wrapped
 from engine.report.page import BOLD_FONT, FONT
 
 INK = Color(0.08, 0.09, 0.11)
@@ -28,7 +29,13 @@ HEAD = Color(0.93, 0.94, 0.95)
 #: Text of tables. [pt]
 CELL_SIZE = 7.0
 LEADING = 9.0
-PADDING = 2.5
+PADDING = 3.0
+
+#: Characters of a heading, which may hold names of users.
+MOST_IN_HEADING = 240
+
+#: A table that is no taller stays in one piece. [mm]
+WHOLE = 55.0
 
 #: Lines of a cell before it goes on in a further row.
 MOST_LINES = 24
@@ -60,14 +67,45 @@ def paragraphs(text: str) -> list[Flowable]:
     return [paragraph(line) for line in printable(text).split("\n") if line.strip()]
 
 
-def heading(text: str, style: ParagraphStyle = HEADING) -> list[Flowable]:
-    """A heading that does not stand alone at the foot of a page."""
-    return [CondPageBreak(32 * mm), paragraph(text, style)]
+class Heading(Flowable):  # type: ignore[misc]
+    """A heading that is a bookmark; `begins` names it for page references."""
+
+    def __init__(self, text: str, style: ParagraphStyle, level: int, key: str) -> None:
+        super().__init__()
+        line = one_line(text)
+        self._text = (
+            line if len(line) <= MOST_IN_HEADING else line[: MOST_IN_HEADING - 1] + "…"
+        )
+        self._inner = paragraph(self._text, style)
+        self.begins, self._level = key, level
+
+    def getSpaceBefore(self) -> float:  # noqa: N802
+        return float(self._inner.getSpaceBefore())
+
+    def getSpaceAfter(self) -> float:  # noqa: N802
+        return float(self._inner.getSpaceAfter())
+
+    def wrap(self, width: float, height: float) -> tuple[float, float]:
+        self.width, self.height = self._inner.wrap(width, height)
+        return self.width, self.height
+
+    def draw(self) -> None:
+        canvas: Any = self.canv
+        canvas.bookmarkHorizontal(self.begins, 0, self.height)
+        canvas.addOutlineEntry(self._text, self.begins, self._level, False)
+        self._inner.drawOn(canvas, 0, 0)
 
 
-def subheading(text: str) -> list[Flowable]:
-    """A heading within a section."""
-    return heading(text, SUBHEADING)
+def heading(text: str, key: str, *, room: float = 32.0) -> list[Flowable]:
+    """A heading of a section, with `room` below it. [mm]"""
+    return [CondPageBreak(room * mm), Heading(text, HEADING, 0, key)]
+
+
+def subheading(text: str, key: str = "", *, room: float = 32.0) -> list[Flowable]:
+    """A heading within a section; with a key it is a bookmark too."""
+    if key:
+        return [CondPageBreak(room * mm), Heading(text, SUBHEADING, 1, key)]
+    return [CondPageBreak(room * mm), paragraph(text[:MOST_IN_HEADING], SUBHEADING)]
 
 
 def bullets(texts: Sequence[str]) -> list[Flowable]:
@@ -75,6 +113,71 @@ def bullets(texts: Sequence[str]) -> list[Flowable]:
     return [
         Paragraph(escape(printable(text)), BULLET, bulletText="–") for text in texts
     ]
+
+
+class ContentsLine(Flowable):  # type: ignore[misc]
+    """A line of the table of contents: a title, dots, the page; a click goes there."""
+
+    def __init__(self, text: str, key: str, page: int | None) -> None:
+        super().__init__()
+        self._text, self._key = text, key
+        self._page = "" if page is None else str(page)
+        self.height = 13.5
+
+    def wrap(self, width: float, _height: float) -> tuple[float, float]:
+        self.width = width
+        return width, self.height
+
+    def draw(self) -> None:
+        canvas: Any = self.canv
+        size = BODY.fontSize
+        canvas.setFillColor(INK)
+        canvas.setFont(FONT, size)
+        room = self.width - 16 * mm
+        text = fitted(self._text, size, room)
+        canvas.drawString(0, 3, text)
+        canvas.drawRightString(self.width, 3, self._page)
+        start = text_width(text, size) + 4
+        end = self.width - text_width(self._page, size) - 4
+        dots = max(0, int((end - start) / 4))
+        canvas.setFillColor(HAIR)
+        for k in range(dots):
+            canvas.circle(end - 4 * k, 5, 0.35, stroke=0, fill=1)
+        if self._page:
+            area = (0, 0, self.width, self.height)
+            canvas.linkRect("", self._key, area, relative=1, thickness=0)
+
+
+class Lines(Flowable):  # type: ignore[misc]
+    """Lines of text as they are, as many as there are; each is kept on one line.
+
+    Lines wider than the page must be broken before.
+    """
+
+    SIZE, LEADING = 6.0, 7.6
+
+    def __init__(self, lines: Sequence[str]) -> None:
+        super().__init__()
+        self._lines = lines
+
+    def wrap(self, width: float, _height: float) -> tuple[float, float]:
+        self.width, self.height = width, self.LEADING * len(self._lines)
+        return self.width, self.height
+
+    def split(self, _width: float, height: float) -> list[Flowable]:
+        fit = int(height / self.LEADING)
+        if fit < 1:
+            return []
+        return [Lines(self._lines[:fit]), Lines(self._lines[fit:])]
+
+    def draw(self) -> None:
+        canvas: Any = self.canv
+        canvas.setFillColor(INK)
+        canvas.setFont(FONT, self.SIZE)
+        y = self.height - self.SIZE
+        for line in self._lines:
+            canvas.drawString(0, y, line)
+            y -= self.LEADING
 
 
 def gap(height: float = 2.0) -> Spacer:
@@ -120,6 +223,7 @@ def table(
         colWidths=columns,
         rowHeights=heights,
         repeatRows=1,
+        splitByRow=int(sum(heights) > WHOLE * mm),
         hAlign="LEFT",
         spaceBefore=2,
         spaceAfter=6,
@@ -143,6 +247,13 @@ def table(
         )
     )
     return made
+
+
+def least_height(made: Table) -> float:
+    """What of a table must stand together: all of a small one, or head and row. [mm]"""
+    heights = made._rowHeights
+    whole = sum(heights) / mm
+    return float(whole if whole <= WHOLE else sum(heights[:2]) / mm)
 
 
 def _with_room(

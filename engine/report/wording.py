@@ -23,6 +23,69 @@ STATE_RULES: tuple[tuple[str, str], ...] = (
     ("not evaluable", "a source, a value or a category is missing, or a fault blocks"),
 )
 
+INDIVIDUAL = (
+    "Individual assessment is required for persons at particular risk, with their "
+    "employer, their physician and the maker of any device; no state is given."
+)
+
+#: What the method assumes, and which way it acts.
+METHOD_ASSUMPTIONS: tuple[tuple[str, str], ...] = (
+    (
+        "Current is even over the section of every conductor.",
+        "Either way close to a conductor; small at more than two bar widths.",
+    ),
+    (
+        "Conductors that share a circuit's label share its current equally unless "
+        "entered otherwise.",
+        "Either way; unequal sharing often raises the field.",
+    ),
+    (
+        "Cores of multicore cables are straight, or the cable is its net current only, "
+        "as entered.",
+        "Straight cores: real twist lowers the field. Net current only: the field of "
+        "the cores themselves is missing.",
+    ),
+    (
+        "No factor of a shield, tray, enclosure or wall was applied to any value.",
+        "Either way: metal lowers the field in some places and raises it in others.",
+    ),
+    (
+        "No steel, reinforcement or transformer core; air everywhere.",
+        "Either way near steel; the stray field of transformers is missing.",
+    ),
+    (
+        "A free end of a run is closed by a straight link across its section.",
+        "Either way near that end.",
+    ),
+    (
+        "Where angles between circuits are unknown the worst over the unknown, or a "
+        "named upper bound, stands for the value.",
+        "Upwards: the true value is not larger.",
+    ),
+)
+
+#: What reviewers usually ask, and the parts of the report that answer it.
+QUESTIONS: tuple[tuple[str, tuple[str, ...]], ...] = (
+    ("Which revision of which drawing?", ("documents",)),
+    ("Where is the phase order from?", ("runs", "sections")),
+    ("Are neutral and harmonic currents included?", ("sources", "currents")),
+    ("What is the net current, and how is it known?", ("currents",)),
+    ("Which operation: rated, highest, outage of one supply?", ("load cases",)),
+    ("Is the ceiling height finished or structural?", ("site",)),
+    ("Why these heights and this averaging?", ("zones as entered",)),
+    ("Where does the level come from, which edition, for whom?", ("levels",)),
+    ("Is the colour scale the same in all maps?", ("maps",)),
+    ("What is the uncertainty near the level?", ("uncertainty",)),
+    ("Who is competent, and who signs?", ("signatures",)),
+    ("What happens if loads grow?", ("contributions",)),
+    ("Which version of the program, and was it validated?", ("method", "validation")),
+    ("What was left out?", ("scope",)),
+    ("Where are the numbers behind the picture?", ("attachments",)),
+    ("Are wearers of implants addressed?", ("summary", "cautions")),
+    ("Were factors of shields guaranteed?", ("method",)),
+    ("Is the maximum not between grid points?", ("results", "method")),
+)
+
 METHOD: tuple[str, ...] = (
     "Every conductor is a chain of straight segments in space. The flux density of a "
     "segment follows from the law of Biot and Savart in closed form, B = µ0 I / 4π · "
@@ -90,6 +153,9 @@ CAUTIONS: tuple[str, ...] = (
     "qualified persons only. Do not remove protective bonding to reduce a field.",
     "The report is valid only for the stated revision, loads and layout.",
 )
+
+#: What even the shortest document says.
+NOTE_CAUTIONS: tuple[str, ...] = (CAUTIONS[0], CAUTIONS[1], CAUTIONS[2], CAUTIONS[3])
 
 NO_LEVELS = (
     "No reference level was entered, so nothing is compared. The program ships none."

@@ -27,8 +27,12 @@ def length(metres: float, unit: str) -> str:
 
 
 def place(point: Iterable[float], unit: str) -> str:
-    """A point as "x, y, z"."""
-    return ", ".join(length(value, unit) for value in point)
+    """A point as "x, y, z", every coordinate with the same digits."""
+    values = list(point)
+    texts = [length(value, unit) for value in values]
+    if unit == "m" and any(text[-4:-3] == "." for text in texts):
+        texts = [f"{value + 0.0:.3f}".replace("-", "−") for value in values]
+    return ", ".join(texts)
 
 
 def demand_text(demand: Demand | None) -> str:

@@ -8,8 +8,8 @@ from reportlab.platypus import Flowable
 
 from engine.proof_words import proof_of_comparison, proof_of_maximum
 from engine.report.names import Wording
+from engine.report.summary import state_text
 from engine.report.text import bullets, paragraph, table
-from engine.report.wording import STATE_SENTENCES
 from engine.report.words import length, place
 from engine.results import (
     Assessment,
@@ -42,15 +42,19 @@ def zone_section(
     reasons = [f"{z.zone.title}: {z.reason}" for z in assessment.zones if z.reason]
     story += bullets(reasons)
     story += _maxima_table(assessment, words, width)
+    return story
+
+
+def contribution_tables(
+    assessment: Assessment, words: Wording, width: float
+) -> list[Flowable]:
+    """Circuits that matter at the largest value of each zone."""
     details = [
         (z.zone.title, words.name(m.case), m.details)
         for z in assessment.zones
         for m in z.maxima
     ]
-    story += _contribution_table(details, words, width)
-    searched = [f"{z.zone.title}: {z.searched}" for z in assessment.zones if z.searched]
-    story += bullets(searched)
-    return story
+    return _contribution_table(details, words, width)
 
 
 def comparison_table(
@@ -77,18 +81,14 @@ def _comparison_row(comparison: Comparison, words: Wording) -> tuple[str, ...]:
     case = words.name(comparison.case)
     if not comparison.counted:
         case += " (for information)"
-    state = f"{comparison.state}: " + (
-        comparison.reason
-        if comparison.state == "not evaluable"
-        else STATE_SENTENCES[comparison.state]
-    )
+    state = state_text(comparison)
     kind = f" ({comparison.kind})" if comparison.kind else ""
     ratio = "–" if comparison.ratio is None else text_beside(comparison.ratio, 1.0)
     several = "per frequency" if comparison.ratio is not None else ""
     return (
         f"{words.name(comparison.place)}\n{words.name(comparison.level)}\n{case}",
         words.beside(comparison.value, limit) + kind,
-        words.value(limit) if limit is not None else several,
+        words.limit(limit) if limit is not None else several,
         ratio,
         words.value(comparison.uncertainty),
         state,
@@ -107,7 +107,7 @@ def _place(details: PlaceDetails | None, words: Wording) -> str:
 
 
 def _marks(comparison: Comparison, words: Wording) -> str:
-    lines = [f"masked {100 * comparison.masked_share:.0f} %"]
+    lines = [_masked(comparison.masked_share)]
     if comparison.area_above is not None:
         lines.append(f"above 1 on {significant(comparison.area_above)} m²")
     proof = proof_of_comparison(comparison, words.unit)
@@ -129,11 +129,18 @@ def _marks(comparison: Comparison, words: Wording) -> str:
     return "\n".join(lines)
 
 
+def _masked(share: float) -> str:
+    if 0 < share < 0.005:
+        return "masked under 1 %"
+    return f"masked {100 * share:.0f} %"
+
+
 def _at_frequency(part: AtFrequency, words: Wording) -> str:
     text = f"{part.frequency:g} Hz: {words.value(part.value)}"
     if part.level is None:
         return text
-    return f"{text}, level {words.value(part.level)}"
+    text += f", level {words.limit(part.level)}"
+    return text if part.ratio is None else f"{text}, ratio {significant(part.ratio)}"
 
 
 def _maxima_table(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 import hashlib
 import io
 import subprocess
@@ -17,13 +18,13 @@ from pypdf import PdfReader
 from engine.circuits import BalancedCurrent, Circuit, LoadCase, SpectrumLine
 from engine.conductors import conductors
 from engine.criteria import LevelRange, LevelRanges, ReferenceLevel
-from engine.drawing import plan
 from engine.faults import Remark
 from engine.items import ConfirmedRemark, SourceDocument, TitleData, ValueOrigin
 from engine.layout import Layout, Settings
 from engine.picture import MapSubject, ReferenceLine
 from engine.places import Enclosure, MeasuredValue, Receptor, Room, Zone
 from engine.report.document import report_pdf
+from engine.report.matter import HeightMap, Matter
 from engine.report.page import MARGIN, PAPERS
 from engine.report.wording import CAUTIONS, NOT_MODELLED, STATE_SENTENCES
 from engine.results import (
@@ -259,15 +260,24 @@ def subject(text="", unit="µT"):
     )
 
 
-def made_pdf(text="", unit="µT", paper="A4"):
+def matter(text="", unit="µT", paper="A4"):
     drawn = layout(text, unit, paper)
-    return report_pdf(
+    return Matter(
         assessment(drawn, text),
         remarks=(remark(text),),
-        maps=(subject(text, unit),),
-        plan=plan(drawn, conductors(drawn)),
+        confirmed=((replace_code(remark(text)), drawn.confirmed_remarks[0]),),
+        maps=(HeightMap(1.0, drawn.cases[0], ("Office",), (subject(text, unit),)),),
+        conductors=conductors(drawn),
         unit=unit,
     )
+
+
+def replace_code(said):
+    return dataclasses.replace(said, code="W08")
+
+
+def made_pdf(text="", unit="µT", paper="A4", kind="report"):
+    return report_pdf(matter(text, unit, paper), kind=kind)
 
 
 @cache
@@ -335,11 +345,11 @@ def test_inputs_are_printed_so_that_they_can_be_retraced():
     for wanted in (
         "575.0 A, cos φ 0.9 lagging",
         "150 Hz: 12 %, offset 180°",
-        "575.0 ∠ −25.8°",
-        "69.00 ∠ 102.5°",
+        "575.0 ∠ −25.8",
+        "69.00 ∠ 102.5",
         "0.50, 2.00, 2.50",
-        "flat, L1 L2 L3 N, pitch 0.10",
-        "bar 0.10 × 0.01 turned 90°",
+        "flat, L1 L2 L3 N, pitch 100",
+        "bar 100 × 10 turned 90°",
         "Not surveyed",
         "Entered values without an origin",
         "Free ends closed across the section by an assumed link: Main bars",
@@ -391,7 +401,11 @@ def test_hostile_text_loads_nothing_and_links_nowhere():
     reader = PdfReader(io.BytesIO(made_pdf(HOSTILE)))
     pictures = [image for page in reader.pages for image in page.images]
     assert len(pictures) == 2  # the map and its colour bar
-    assert all("/Annots" not in page for page in reader.pages)
+    links = [
+        link.get_object() for page in reader.pages for link in page.get("/Annots", ())
+    ]
+    assert links  # of the table of contents
+    assert all("/A" not in link and "/Dest" in link for link in links)
 
 
 @pytest.mark.parametrize(
@@ -438,7 +452,7 @@ def test_bytes_do_not_depend_on_the_process():
 def test_a_layout_without_anything_has_a_report():
     empty = Layout()
     result = Assessment(empty, (CaseResult(empty.cases[0], (), (), ()),), (), ())
-    content = report_pdf(result, remarks=(), maps=(), plan=plan(empty, ()), unit="µT")
+    content = report_pdf(Matter(result, (), "µT"))
     reader = PdfReader(io.BytesIO(content))
     text = " ".join(" ".join(page.extract_text().split()) for page in reader.pages)
     assert "No reference level was entered" in text
@@ -447,17 +461,13 @@ def test_a_layout_without_anything_has_a_report():
 
 def test_an_unknown_unit_is_refused():
     with pytest.raises(ValueError, match="unknown unit"):
-        report_pdf(
-            assessment(layout()), remarks=(), maps=(), plan=plan(Layout(), ()), unit="T"
-        )
+        report_pdf(Matter(assessment(layout()), (), "T"))
 
 
 def test_a_level_without_a_source_says_so():
     drawn = layout()
     drawn = replace(drawn, levels=(replace(drawn.levels[0], source=""),))
-    content = report_pdf(
-        assessment(drawn), remarks=(), maps=(), plan=plan(drawn, ()), unit="µT"
-    )
+    content = report_pdf(Matter(assessment(drawn), (), "µT"))
     reader = PdfReader(io.BytesIO(content))
     text = " ".join(" ".join(page.extract_text().split()) for page in reader.pages)
     assert "no source entered: no comparison" in text

@@ -1,0 +1,67 @@
+"""Everything that the report prints, computed before any page is laid out."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+from engine.circuits import LoadCase
+from engine.conductor import Conductor
+from engine.faults import Remark
+from engine.items import ConfirmedRemark
+from engine.layout import Layout
+from engine.picture import MapSubject
+from engine.program_identity import ProgramIdentity
+from engine.results import Assessment
+from engine.validation import Outcome
+
+
+@dataclass(frozen=True, eq=False)
+class HeightMap:
+    """A map of the report: one height, one load case, the zones it is for.
+
+    `subjects` are the AC resultant, the direct field, or both, on one grid.
+    """
+
+    z: float
+    case: LoadCase
+    zones: tuple[str, ...]
+    subjects: tuple[MapSubject, ...]
+
+
+@dataclass(frozen=True, eq=False)
+class Matter:
+    """Everything that the report prints.
+
+    Attributes
+    ----------
+    assessment : Assessment
+        Of the whole layout.
+    remarks : tuple of Remark
+        Those that are not cleared.
+    unit : str
+        Display unit of flux density, for every value.
+    conductors : tuple of Conductor
+        Empty where they cannot be built.
+    maps : tuple of HeightMap
+    left_out : int
+        Maps that were not computed for want of room.
+    confirmed : pairs of Remark and ConfirmedRemark
+        Those that a named person lets stand.
+    outcomes : tuple of Outcome or None
+        Of the outside checks, run now; None when they were not asked for.
+    """
+
+    assessment: Assessment
+    remarks: tuple[Remark, ...]
+    unit: str
+    conductors: tuple[Conductor, ...] = ()
+    maps: tuple[HeightMap, ...] = ()
+    left_out: int = 0
+    confirmed: tuple[tuple[Remark, ConfirmedRemark], ...] = ()
+    outcomes: tuple[Outcome, ...] | None = None
+    identity: ProgramIdentity = field(default_factory=ProgramIdentity)
+
+    @property
+    def layout(self) -> Layout:
+        """The layout that was assessed."""
+        return self.assessment.layout

@@ -1,0 +1,183 @@
+"""The note: one to two pages with question, picture, table, assumptions, cautions."""
+
+from __future__ import annotations
+
+from reportlab.platypus import Flowable
+
+from engine.decisions import worst_comparisons
+from engine.drawing import plan
+from engine.origins import assumptions
+from engine.picture import Picture, map_picture
+from engine.picture.room_drawing import room_drawing
+from engine.report.drawings import room_views
+from engine.report.figures import Figure
+from engine.report.front import HEADLINE, letterhead
+from engine.report.maps import plan_of_map
+from engine.report.matter import HeightMap, Matter
+from engine.report.names import Wording
+from engine.report.page import Paper
+from engine.report.summary import at_risk, state_text
+from engine.report.text import (
+    STRONG,
+    TITLE,
+    bullets,
+    fact_table,
+    gap,
+    paragraph,
+    paragraphs,
+    subheading,
+    table,
+)
+from engine.report.wording import NO_LEVELS, NOTE_CAUTIONS
+from engine.report.words import place
+from engine.results import STATES, Comparison
+from engine.units import text_beside
+
+#: Rows, assumptions and remarks that a note has room for.
+MOST_ROWS, MOST_ASSUMED, MOST_REMARKS = 12, 8, 5
+
+#: Part of the page that the picture may take.
+_PICTURE = 0.46
+
+
+def note_story(matter: Matter, words: Wording, sheet: Paper) -> list[Flowable]:
+    """All that the note prints, title block aside."""
+    title, width = matter.layout.title, sheet.text_width
+    cases = [case.title for case in matter.layout.cases if case.counted]
+    facts = [
+        ("Question", title.question[:700] or "not stated"),
+        ("Load cases that count", ", ".join(cases)[:300]),
+        ("Scope", title.scope[:400] or "not stated"),
+    ]
+    made = letterhead(matter)
+    made += [paragraph(HEADLINE, TITLE), fact_table(facts, width)]
+    made += _answer(matter, words, width)
+    picture = _picture(matter, sheet)
+    if picture is not None:
+        made += [gap(1.0), Figure(picture), gap(1.0)]
+    made += subheading("Assumptions", room=20.0)
+    made += bullets(_assumed(matter, words))
+    made += _open_remarks(matter)
+    made += subheading("Cautions", room=20.0)
+    made += bullets(NOTE_CAUTIONS)
+    if title.conclusions:
+        made += subheading("Conclusions of the author", room=20.0)
+        made += paragraphs(title.conclusions[:1500])
+    made.append(
+        paragraph(matter.identity.sentence() + ". The full report has the rest.")
+    )
+    return made
+
+
+def _answer(matter: Matter, words: Wording, width: float) -> list[Flowable]:
+    assessment = matter.assessment
+    blocking = [r for r in matter.remarks if r.severity == "blocking"]
+    made: list[Flowable] = []
+    if blocking:
+        text = f"Not evaluable: {len(blocking)} remarks block. {blocking[0].sentence}"
+        made.append(paragraph(text[:600], STRONG))
+    found = sorted(worst_comparisons(assessment), key=_concern, reverse=True)
+    if found:
+        heads = (
+            "Place, reference level", "Load case", f"B [{words.unit}]",
+            f"L [{words.unit}]", "B/L", f"U [{words.unit}]", "State in words",
+        )  # fmt: skip
+        rows = [_row(c, words) for c in found[:MOST_ROWS]]
+        made.append(table(heads, rows, (25, 16, 10, 10, 8, 8, 23), width))
+        if len(found) > MOST_ROWS:
+            text = f"{len(found) - MOST_ROWS} more comparisons stand in the report."
+            made.append(paragraph(text))
+        return made
+    if not assessment.layout.levels:
+        made.append(paragraph(NO_LEVELS, STRONG))
+    rows = [
+        (
+            zone.zone.title,
+            words.name(m.case),
+            f"{words.value(m.value)} ({m.kind})",
+            place(m.details.at, words.length_unit),
+        )
+        for zone in assessment.zones
+        for m in zone.maxima
+    ]
+    if rows:
+        heads_of_values = (
+            "Zone", "Load case", f"Largest B [{words.unit}]",
+            f"At x, y, z [{words.length_unit}]",
+        )  # fmt: skip
+        values = table(heads_of_values, rows[:MOST_ROWS], (34, 26, 18, 22), width)
+        made.append(values)
+    return made
+
+
+def _concern(c: Comparison) -> tuple[int, float]:
+    return STATES.index(c.state), c.ratio or -1.0
+
+
+def _row(c: Comparison, words: Wording) -> tuple[str, ...]:
+    several = "per frequency" if c.ratio is not None else "–"
+    state = state_text(c)
+    if c.state == "not evaluable" and not at_risk(c):
+        state = state[:160]
+    return (
+        f"{words.name(c.place)}\n{words.name(c.level)}",
+        words.name(c.case),
+        words.beside(c.value, c.level_value),
+        words.limit(c.level_value) if c.level_value is not None else several,
+        "–" if c.ratio is None else text_beside(c.ratio, 1.0),
+        words.value(c.uncertainty),
+        state,
+    )
+
+
+def _leading_map(matter: Matter) -> HeightMap | None:
+    """The map on which the value of most concern was found, else the first."""
+    ordered = sorted(worst_comparisons(matter.assessment), key=_concern, reverse=True)
+    names = {zone.id: zone.title for zone in matter.layout.zones}
+    for c in ordered:
+        if c.details is None:
+            continue
+        for each in matter.maps:
+            near = abs(each.z - c.details.at[2]) < 1e-3
+            if near and each.case.id == c.case and names.get(c.place) in each.zones:
+                return each
+    return matter.maps[0] if matter.maps else None
+
+
+def _picture(matter: Matter, sheet: Paper) -> Picture | None:
+    width, height = sheet.text_width, _PICTURE * sheet.text_height
+    leading = _leading_map(matter)
+    if leading is not None:
+        whole = plan(matter.layout, matter.conductors)
+        shown = plan_of_map(whole, leading)
+        return map_picture(leading.subjects[0], shown, width=width, height=height)
+    views = room_views(matter)
+    if not views:
+        return None
+    return room_drawing(views[0], width=width, height=height)
+
+
+def _assumed(matter: Matter, words: Wording) -> list[str]:
+    found = assumptions(matter.layout)
+    if not found:
+        return ["Every entered value has an origin."]
+    texts = [
+        f"{words.name(a.item)}, {a.field.replace('_', ' ')}: {a.value}"
+        + (f" ({a.reason})" if a.reason else "")
+        for a in found[:MOST_ASSUMED]
+    ]
+    texts = [text[:300] for text in texts]
+    if len(found) > MOST_ASSUMED:
+        texts.append(f"and {len(found) - MOST_ASSUMED} more, listed in the report")
+    return texts
+
+
+def _open_remarks(matter: Matter) -> list[Flowable]:
+    if not matter.remarks:
+        return []
+    shown = [f"{r.code} {r.severity}: {r.sentence}"[:400] for r in matter.remarks]
+    more = len(shown) - MOST_REMARKS
+    texts = shown[:MOST_REMARKS]
+    if more > 0:
+        texts.append(f"and {more} more, listed in the report")
+    return [*subheading("Remarks not cleared", room=20.0), *bullets(texts)]
