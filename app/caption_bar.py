@@ -77,7 +77,7 @@ class CaptionBar(QWidget):
         self._layers.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
         self._layers.setAutoRaise(True)
         self._layers.setMenu(self._layer_menu())
-        row = QHBoxLayout(self)
+        self._row = row = QHBoxLayout(self)
         row.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
         row.setSpacing(STEP)
         row.addWidget(QLabel(QUANTITY))
@@ -109,12 +109,16 @@ class CaptionBar(QWidget):
         super().changeEvent(event)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        # A storey is chosen on the rail too: it gives way first.
         self._show_storey()
         super().resizeEvent(event)
 
     def _show_storey(self) -> None:
-        self._show(self._storey, self.width() > 760 and self._storey.count() > 1)
+        # The storey gives way first, so that the others are not cut.
+        others = self._row.sizeHint().width()
+        if self._storey.isVisibleTo(self):
+            others -= self._storey.sizeHint().width() + 4 * STEP
+        fits = others + self._storey.sizeHint().width() + 4 * STEP <= self.width()
+        self._show(self._storey, fits and self._storey.count() > 1)
 
     def _show(self, choice: QComboBox, shown: bool) -> None:
         """A choice with the dot before it."""

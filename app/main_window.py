@@ -91,7 +91,8 @@ class MainWindow(QMainWindow):
         self.set_theme(theme)
         self.setAcceptDrops(True)
         self.setMinimumSize(980, 560)
-        self.resize(1360, 860)
+        room = self.screen().availableGeometry().size() - QSize(40, 60)
+        self.resize(QSize(1360, 860).boundedTo(room))
         self._show_title()
 
     # -- building ---------------------------------------------------------------
@@ -249,10 +250,9 @@ class MainWindow(QMainWindow):
                 "Click a conductor, Shift adds; drag it or press an arrow key to move "
                 "it. Esc goes back to the drawing."
             )
-        elif page is self.drawings and tool is not None:
-            self.hint.say(tool.hint)
         else:
-            self.hint.say("Esc goes back to the drawing.")
+            is_drawn = page is self.drawings and tool is not None
+            self.hint.say(tool.hint if is_drawn else "Esc goes back to the drawing.")
 
     def show_drawing(self) -> None:
         """Show the drawing again."""
@@ -358,9 +358,6 @@ class MainWindow(QMainWindow):
         self.set_theme(DARK if dark else LIGHT)
 
     # -- window -----------------------------------------------------------------
-
-    def sizeHint(self) -> QSize:
-        return QSize(1360, 860)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         self.tool_row.set_wide(self.width() >= 1500)

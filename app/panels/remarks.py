@@ -263,7 +263,8 @@ class RemarksPanel(Panel):
         text = f"{remark.code}  {remark.sentence}"
         if remark.case:
             case = self._document.layout.by_id().get(remark.case)
-            text += f" [{case.title if case is not None else remark.case}]"
+            title = case.title if case is not None else remark.case
+            text += "" if f"“{title}”" in remark.sentence else f" [{title}]"
         if confirmed is not None:
             by = ", ".join(x for x in (confirmed.by, confirmed.date) if x)
             text += f" — let stand by {by}" if by else " — let stand"

@@ -86,7 +86,7 @@ class DrawingView(ZoomableView):
         self._document = document
         self._view_state = view_state
         self._sight = sight
-        self._inks = Inks(theme)
+        self._inks = Inks(theme, 1.0, self.devicePixelRatioF())
         self._scene = DrawingScene(sight, self._inks, self)
         self.setScene(self._scene)
         self._picture = PicturePainter(self._scene, sight, self._inks)
@@ -109,8 +109,8 @@ class DrawingView(ZoomableView):
     def _prepare_widget(self) -> None:
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMinimumSize(280, 180)
-        name = "Plan" if self._sight is PLAN else f"Elevation {self._sight.name}"
-        self.setAccessibleName(name)
+        is_plan = self._sight is PLAN
+        self.setAccessibleName("Plan" if is_plan else f"Elevation {self._sight.name}")
         self.setAccessibleDescription(
             "The drawing. Arrow keys move the selection by the grid, Home shows all."
         )
@@ -150,7 +150,7 @@ class DrawingView(ZoomableView):
 
     def set_theme(self, theme: Theme, text_factor: float = 1.0) -> None:
         """Draw in another theme, or with larger text."""
-        self._inks = Inks(theme, text_factor)
+        self._inks = Inks(theme, text_factor, self.devicePixelRatioF())
         self._picture.inks = self._inks
         self._legend.set_inks(self._inks)
         self._place_legend()
@@ -230,17 +230,15 @@ class DrawingView(ZoomableView):
 
     def paintEvent(self, event: QPaintEvent) -> None:
         ratio = self.viewport().devicePixelRatioF()
-        size = self.viewport().size()
+        size, held = self.viewport().size(), self._pixels
         camera = self.camera()
-        if (
-            self._pixels is None
-            or self._pixels.deviceIndependentSize() != size.toSizeF()
-        ):
+        if held is None or held.deviceIndependentSize() != size.toSizeF():
             legend = QRectF(self._legend.geometry()) if self._legend_shows else QRectF()
             self._pixels = QPixmap(size * ratio)
             self._pixels.setDevicePixelRatio(ratio)
             self._picture.paint(self._pixels, camera, self._document.layout, legend)
         painter = QPainter(self.viewport())
+        assert self._pixels is not None
         painter.drawPixmap(0, 0, self._pixels)
         self._paint_cut(painter, camera)
         if self._tool is not None:
@@ -355,6 +353,8 @@ class DrawingView(ZoomableView):
         ):
             self.entry_wanted.emit("")
             return True
+        if event.type() == QEvent.Type.DevicePixelRatioChange:
+            self.set_theme(self._inks.theme, self._inks.text_factor)
         return super().event(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:

@@ -46,7 +46,7 @@ def conductor_colour(letters: str, theme: Theme) -> str:
 def pen(
     colour: str, width: float, dashes: tuple[float, ...] = (), alpha: float = 1.0
 ) -> QPen:
-    """A pen of a constant width in pixels, whatever the zoom."""
+    """A pen of a constant width in pixels of the screen, whatever the zoom."""
     made = QPen(shade(colour, alpha), width)
     made.setCosmetic(True)
     made.setJoinStyle(Qt.PenJoinStyle.MiterJoin)
@@ -82,31 +82,36 @@ class Inks:
     theme : Theme
     text_factor : float
         All text of the drawing is larger by this.
+    ratio : float
+        Pixels of the screen to a logical one: pens of a constant width count those.
     over_map : bool
         A map shows: nothing may tint its colours.
     """
 
-    def __init__(self, theme: Theme, text_factor: float = 1.0) -> None:
+    def __init__(
+        self, theme: Theme, text_factor: float = 1.0, ratio: float = 1.0
+    ) -> None:
         self.theme = theme
         self.text_factor = text_factor
+        self.ratio = ratio
         self.over_map = False
-        self.room = pen(theme.text, 2.0)
-        self.other_storey = pen(theme.line, 1.0)
-        self.zone = pen(theme.text, 1.4, (6.0, 3.0, 1.0, 3.0))
-        self.enclosure = pen(theme.line, 1.2)
-        self.equipment = pen(theme.text, 1.2)
-        self.route = pen(theme.text, 2.0)
-        self.route_without_current = pen(theme.text, 2.0, (4.0, 3.0))
-        self.band = pen(theme.text, 1.0)
-        self.band_without_current = pen(theme.text, 1.2, (5.0, 4.0))
-        self.strand = pen(theme.line if theme.is_dark else theme.muted, 0.8)
-        self.link = pen(theme.line, 1.0)
-        self.assumed_link = pen(theme.line, 1.0, (2.0, 3.0))
-        self.selected = pen(theme.accent, 2.5)
-        self.selected_halo = pen(theme.accent, 7.0, alpha=0.28)
-        self.overlay = pen(theme.accent, 1.8)
-        self.suggestion = pen(theme.accent, 1.2, (4.0, 4.0))
-        self.catch_mark = pen(theme.above, 1.8)
+        self.room = self.pen(theme.text, 2.0)
+        self.other_storey = self.pen(theme.line, 1.0)
+        self.zone = self.pen(theme.text, 1.4, (6.0, 3.0, 1.0, 3.0))
+        self.enclosure = self.pen(theme.line, 1.2)
+        self.equipment = self.pen(theme.text, 1.2)
+        self.route = self.pen(theme.text, 2.0)
+        self.route_without_current = self.pen(theme.text, 2.0, (4.0, 3.0))
+        self.band = self.pen(theme.text, 1.0)
+        self.band_without_current = self.pen(theme.text, 1.2, (5.0, 4.0))
+        self.strand = self.pen(theme.line if theme.is_dark else theme.muted, 0.8)
+        self.link = self.pen(theme.line, 1.0)
+        self.assumed_link = self.pen(theme.line, 1.0, (2.0, 3.0))
+        self.selected = self.pen(theme.accent, 2.5)
+        self.selected_halo = self.pen(theme.accent, 7.0, alpha=0.28)
+        self.overlay = self.pen(theme.accent, 1.8)
+        self.suggestion = self.pen(theme.accent, 1.2, (4.0, 4.0))
+        self.catch_mark = self.pen(theme.above, 1.8)
         self.coarse_grid = _mixed(theme.hairline, theme.paper, 0.75)
         self.fine_grid = _mixed(theme.hairline, theme.paper, 0.35)
         self.band_fill = QBrush(shade(theme.text, 0.10))
@@ -120,6 +125,16 @@ class Inks:
         self.bold_metrics = QFontMetricsF(self.bold)
         self._strands: dict[str, QBrush] = {}
         self._widths: dict[tuple[str, bool], float] = {}
+
+    def pen(
+        self,
+        colour: str,
+        width: float,
+        dashes: tuple[float, ...] = (),
+        alpha: float = 1.0,
+    ) -> QPen:
+        """A pen of a constant width in logical pixels, whatever the zoom."""
+        return pen(colour, width * self.ratio, dashes, alpha)
 
     def strand_brush(self, letters: str) -> QBrush:
         """The fill of a conductor."""

@@ -9,7 +9,7 @@ from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
 from app.map_picture import DrawnIsoLine, MapPicture
 from app.views.camera import Camera
-from app.views.inks import Inks, pen, shade
+from app.views.inks import Inks, shade
 from app.views.labels import Importance, Label
 from engine.colour_ramp import OPACITY
 
@@ -93,11 +93,11 @@ class MapLayer(QGraphicsItem):
         dashes = (5.0, 3.0) if self._picture.is_coarse else ()
         if bold:
             return [
-                pen(theme.paper, 4.6, alpha=0.75 * fade),
-                pen(theme.text, 2.4, dashes, alpha=fade),
+                self.inks.pen(theme.paper, 4.6, alpha=0.75 * fade),
+                self.inks.pen(theme.text, 2.4, dashes, alpha=fade),
             ]
         return [
-            pen(theme.text, 1.1, dashes, alpha=0.85 * fade),
+            self.inks.pen(theme.text, 1.1, dashes, alpha=0.85 * fade),
         ]
 
     def _hatch(self, painter: QPainter) -> None:
@@ -109,7 +109,7 @@ class MapLayer(QGraphicsItem):
         painter.save()
         painter.resetTransform()
         theme = self.inks.theme
-        painter.setPen(pen(theme.line, 1.0))
+        painter.setPen(self.inks.pen(theme.line, 1.0))
         for area in self._picture.masked:
             path = QPainterPath()
             path.addPolygon(

@@ -22,6 +22,7 @@ from app.messages import Messages
 from app.panels.item_forms import heading
 from app.theme import DARK, LIGHT
 from app.views.cut_mark import cut_place
+from app.views.inks import Inks
 from engine import layout_file
 from engine.circuits import LoadCase
 from engine.edits import added, replaced
@@ -320,3 +321,13 @@ def test_a_narrow_view_keeps_the_legend_narrow(window):
     assert window.recompute.wait_until_idle(60)
     plan = window.drawings.plan
     assert plan._legend.width() < 0.35 * plan.viewport().width()
+
+
+def test_lines_are_as_wide_on_a_fine_screen_as_on_a_coarse_one():
+    assert Inks(LIGHT, 1.0, 2.0).room.widthF() == 2 * Inks(LIGHT).room.widthF()
+
+
+def test_the_first_window_fits_the_screen(window):
+    room = window.screen().availableGeometry()
+    assert window.width() <= max(room.width(), window.minimumWidth())
+    assert window.height() <= max(room.height(), window.minimumHeight())
