@@ -50,6 +50,8 @@ class Displacements:
         self.moves = tuple(_moves(layout, fields, self._tolerances.pitch > 0))
         #: By point: (moves, 2, cases' components, 3) changes. [T]
         self._known: dict[Point3, list[Complexes]] = {}
+        #: By what moves together: its field where it is, at the points at hand. [T]
+        self._before: dict[bytes, Complexes] = {}
         self._starts = np.cumsum([0, *(len(c.components) for c in fields.cases)])
 
     def look_at(self, points: Floats) -> None:
@@ -60,10 +62,12 @@ class Displacements:
         at = np.array(new, np.float64)
         currents = np.concatenate([case.currents for case in self._fields.cases])
         changes = []
+        self._before.clear()
         for move in self.moves:
             stop_if(self._fields.cancelled)
             pair = [self._change(move, sign, at, currents) for sign in (1.0, -1.0)]
             changes.append(np.array(pair))
+        self._before.clear()
         for k, place in enumerate(new):
             self._known[place] = [change[:, :, k] for change in changes]
 
@@ -95,13 +99,16 @@ class Displacements:
         return self._of_moved(moved, points, currents)
 
     def _of_moved(self, moved: Moved, points: Floats, currents: Complexes) -> Complexes:
-        old = [self._fields.conductors[k] for k in moved.indices]
         left = [k for k, c in enumerate(moved.conductors) if c is not None]
         new = [c for c in moved.conductors if c is not None]
         own = currents[:, moved.indices]
         after = np.einsum("cm,mnx->cnx", own[:, left], field.responses(new, points))
-        before = np.einsum("cm,mnx->cnx", own, field.responses(old, points))
-        change: Complexes = after - before
+        key = moved.indices.tobytes()
+        if key not in self._before:
+            old = [self._fields.conductors[k] for k in moved.indices]
+            now = field.responses(old, points)
+            self._before[key] = np.einsum("cm,mnx->cnx", own, now)
+        change: Complexes = after - self._before[key]
         return change
 
 

@@ -6,18 +6,20 @@ closed still close. Directions across the conductors are kept: moves are small.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.conductor import Conductor
+from engine.run_conductors import Same
 
 Floats = NDArray[np.float64]
 
-#: Ends that are this near meet. [m]
-_SAME_PLACE = 1e-7
+#: Ends whose coordinates are alike to so many decimals meet.
+_DECIMALS = 7
 #: Shorter pieces are none. [m]
 _SHORTEST = 1e-9
 
@@ -39,12 +41,12 @@ class Moved:
     conductors: tuple[Conductor | None, ...]
 
 
-def shifted(conductors: Sequence[Conductor], item: str, by: Floats) -> Moved:
+def shifted(conductors: tuple[Conductor, ...], item: str, by: Floats) -> Moved:
     """All conductors of an item moved by a vector (3,). [m]"""
     return _moved(conductors, item, lambda path, _of: path + by)
 
 
-def respaced(conductors: Sequence[Conductor], item: str, factor: float) -> Moved:
+def respaced(conductors: tuple[Conductor, ...], item: str, factor: float) -> Moved:
     """The slots of a run `factor` times as far from their middle, at every vertex.
 
     Raises
@@ -52,7 +54,8 @@ def respaced(conductors: Sequence[Conductor], item: str, factor: float) -> Moved
     ValueError
         When the conductors of the item have no common middle line.
     """
-    paths = [c.path for c in conductors if c.item == item and c.role == "run"]
+    own = (conductors[k] for k in _ties(Same(conductors)).items.get(item, ()))
+    paths = [c.path for c in own if c.role == "run"]
     if not has_middle_line(conductors, item):
         raise ValueError(f"the conductors of {item} have no common middle line")
     middle: Floats = np.mean(paths, axis=0)
@@ -70,48 +73,69 @@ def respaced(conductors: Sequence[Conductor], item: str, factor: float) -> Moved
     return _moved(conductors, item, spread)
 
 
-def has_middle_line(conductors: Sequence[Conductor], item: str) -> bool:
+def has_middle_line(conductors: tuple[Conductor, ...], item: str) -> bool:
     """Whether an item is a run of several conductors with the same vertices."""
-    own = [c for c in conductors if c.item == item and c.role == "run"]
-    return len(own) > 1 and len({len(c.path) for c in own}) == 1
+    own = (conductors[k] for k in _ties(Same(conductors)).items.get(item, ()))
+    counts = [len(c.path) for c in own if c.role == "run"]
+    return len(counts) > 1 and len(set(counts)) == 1
+
+
+@dataclass(frozen=True, eq=False)
+class _Ties:
+    """Where conductors meet, and which switch discretisation together.
+
+    Attributes
+    ----------
+    ends : dict
+        By place, the conductors that end there: pairs of index and 0 or −1.
+    groups, items : dict
+        Indices by group and by item.
+    """
+
+    ends: dict[tuple[float, ...], list[tuple[int, int]]]
+    groups: dict[str, list[int]]
+    items: dict[str, list[int]]
+
+
+@lru_cache(maxsize=4)
+def _ties(same: Same[tuple[Conductor, ...]]) -> _Ties:
+    ends: dict[tuple[float, ...], list[tuple[int, int]]] = {}
+    groups: dict[str, list[int]] = {}
+    items: dict[str, list[int]] = {}
+    for k, conductor in enumerate(same.value):
+        groups.setdefault(conductor.group, []).append(k)
+        items.setdefault(conductor.item, []).append(k)
+        for end in (0, -1):
+            ends.setdefault(_place(conductor.path[end]), []).append((k, end))
+    return _Ties(ends, groups, items)
+
+
+def _place(point: Floats) -> tuple[float, ...]:
+    # Zero added, so that minus zero is the same place.
+    return tuple(round(x, _DECIMALS) + 0.0 for x in point.tolist())
 
 
 def _moved(
-    conductors: Sequence[Conductor],
+    conductors: tuple[Conductor, ...],
     item: str,
     new_path: Callable[[Floats, Conductor], Floats],
 ) -> Moved:
-    paths: dict[int, Floats] = {}
-    ends: list[Floats] = []
-    by: list[Floats] = []
-    for k, conductor in enumerate(conductors):
-        if conductor.item == item and conductor.role != "joint link":
-            path = new_path(conductor.path, conductor)
-            paths[k] = path
-            for end in (0, -1):
-                ends.append(conductor.path[end])
-                by.append(path[end] - conductor.path[end])
-    if ends:
-        _follow(conductors, np.array(ends), np.array(by), paths)
-    groups = {conductors[k].group for k in paths}
-    indices = [k for k, c in enumerate(conductors) if c.group in groups]
+    ties = _ties(Same(conductors))
+    own = [k for k in ties.items.get(item, ()) if conductors[k].role != "joint link"]
+    moving = frozenset(own)
+    paths = {k: new_path(conductors[k].path, conductors[k]) for k in own}
+    for k in own:
+        for end in (0, -1):
+            before = conductors[k].path[end]
+            for other, its_end in ties.ends[_place(before)]:
+                if other not in moving:
+                    path = paths.setdefault(other, conductors[other].path.copy())
+                    path[its_end] = conductors[other].path[its_end] + (
+                        paths[k][end] - before
+                    )
+    indices = sorted({j for k in paths for j in ties.groups[conductors[k].group]})
     made = [_with_path(conductors[k], paths.get(k)) for k in indices]
     return Moved(np.array(indices, np.int64), tuple(made))
-
-
-def _follow(
-    conductors: Sequence[Conductor], ends: Floats, by: Floats, paths: dict[int, Floats]
-) -> None:
-    """Add the paths of other conductors whose ends meet those that moved."""
-    for k, conductor in enumerate(conductors):
-        if k in paths:
-            continue
-        for end in (0, -1):
-            away = np.abs(ends - conductor.path[end]).max(axis=1)
-            nearest = int(away.argmin())
-            if away[nearest] <= _SAME_PLACE:
-                path = paths.setdefault(k, conductor.path.copy())
-                path[end] = conductor.path[end] + by[nearest]
 
 
 def _with_path(conductor: Conductor, path: Floats | None) -> Conductor | None:
