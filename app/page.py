@@ -17,6 +17,7 @@ from PySide6.QtWidgets import (
     QFrame,
     QHBoxLayout,
     QPushButton,
+    QSizePolicy,
     QTextBrowser,
     QVBoxLayout,
     QWidget,
@@ -50,13 +51,27 @@ class Page(QWidget):
         self.back.setToolTip("Back to the drawing (Esc)")
         self.back.setAutoDefault(False)
         self.back.clicked.connect(self.closed)
-        head = QHBoxLayout()
-        head.addWidget(Words(title, "title"), 1)
+        self._title = Words(title, "title")
+        self._head = head = QHBoxLayout()
+        head.addWidget(self._title, 1)
         head.addWidget(self.back)
         self.column = QVBoxLayout(self)
         self.column.setContentsMargins(6 * STEP, 4 * STEP, 6 * STEP, 4 * STEP)
         self.column.setSpacing(3 * STEP)
         self.column.addLayout(head)
+
+    def put_beside_title(self, controls: QWidget, state: QWidget) -> None:
+        """Let controls stand in the line of the title, what they show getting all."""
+        self._title.setWordWrap(False)
+        self._title.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Fixed)
+        self._head.setSpacing(3 * STEP)
+        self._head.insertWidget(1, controls, 1)
+        self._head.insertWidget(2, state)
+        top = Qt.AlignmentFlag.AlignTop
+        for widget in (self._title, state, self.back):
+            self._head.setAlignment(widget, top)
+        self.column.setContentsMargins(3 * STEP, 2 * STEP, 3 * STEP, STEP)
+        self.column.setSpacing(STEP)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:

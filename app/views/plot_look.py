@@ -1,0 +1,59 @@
+"""The program's look of plots: axes with words, ticks at 1, 2 and 5, plain labels."""
+
+from __future__ import annotations
+
+import math
+
+import pyqtgraph as pg
+from PySide6.QtGui import QFont, QPen
+
+from app.theme import SMALL, Theme
+
+#: Load cases by colour, apart in lightness too; heights by dashes.
+_COLOURS = {
+    "light": ("#0b6a6a", "#8a3a8f", "#1f4fa0", "#8a5a00", "#4a4f55"),
+    "dark": ("#56b8b2", "#d79be0", "#9dbcf5", "#e3b45c", "#c3c9cf"),
+}
+_DASHES: tuple[tuple[float, ...], ...] = (
+    (), (3.5, 2.0), (1.0, 2.0), (4.0, 1.5, 1.0, 1.5), (6.0, 1.5), (2.0, 4.0),
+)  # fmt: skip
+
+
+def curve_pen(colour: int, dash: int, theme: Theme) -> QPen:
+    """A pen of its own for each colour and dash."""
+    colours = _COLOURS[theme.name]
+    made = pg.mkPen(colours[colour % len(colours)], width=2)
+    dashes = _DASHES[dash % len(_DASHES)]
+    if dashes:
+        made.setDashPattern(list(dashes))
+    return made
+
+
+def dress_axis(axis: pg.AxisItem, words: str, theme: Theme) -> None:
+    """Give an axis its words and the theme's colours."""
+    font = QFont()
+    font.setPixelSize(SMALL)
+    axis.setPen(pg.mkPen(theme.line, width=1))
+    axis.setTextPen(theme.muted)
+    axis.setTickFont(font)
+    axis.enableAutoSIPrefix(False)
+    axis.setLabel(words, color=theme.muted, **{"font-size": f"{SMALL}px"})
+    axis.setTicks(None)
+
+
+def plain_label(text: str) -> str:
+    """A label of a legend is markup: users' text must not be."""
+    return text.replace("&", "&amp;").replace("<", "&lt;")
+
+
+def log_ticks(low: float, high: float) -> list[list[tuple[float, str]]]:
+    """Ticks at 1, 2 and 5 of every decade, named; the other digits unnamed."""
+    major, minor = [], []
+    named = (1, 2, 5) if high - low < 3 else (1,)
+    for decade in range(math.floor(low), math.ceil(high) + 1):
+        for digit in range(1, 10):
+            y = decade + math.log10(digit)
+            if low <= y <= high:
+                text = f"{digit * 10.0**decade:.12g}"
+                (major if digit in named else minor).append((y, text))
+    return [major, [(y, "") for y, _ in minor]]
