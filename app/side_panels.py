@@ -5,8 +5,10 @@ from __future__ import annotations
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QStackedWidget, QTabBar, QVBoxLayout, QWidget
 
+from app.theme import BODY
+
 #: Width at which the panel starts, and the least. [logical pixels]
-WIDTH, LEAST = 380, 300
+WIDTH, LEAST = 198 + 14 * BODY, 300
 
 
 class SidePanels(QWidget):

@@ -47,7 +47,8 @@ _REACH = 7.0
 #: Steps of the arrow keys and of a drag. [m]
 _KEY_STEP, _DRAG_STEP = 0.05, 0.01
 
-_WIDTH = 172
+#: As much as its words need. [px]
+_WIDTH = round(15.6 * SMALL)
 _PAD = 10.0
 
 

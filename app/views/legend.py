@@ -7,7 +7,7 @@ from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QWidget
 
 from app.map_picture import MapPicture
-from app.theme import STEP
+from app.theme import SMALL, STEP
 from app.views.inks import Inks, shade
 from engine.colour_ramp import OPACITY, position, rgb_ramp
 from engine.iso_lines import round_values
@@ -19,7 +19,7 @@ _BAR_WIDTH, _BAR_HEIGHT = 14, 128
 _APART = 14.0
 
 #: Room for the name of a reference level; the lines carry it in full. [px]
-_NAME_WIDTH = 120.0
+_NAME_WIDTH = 11.0 * SMALL
 
 #: In narrower views a level is told by its value alone. [px]
 _NARROW = 600
