@@ -16,11 +16,11 @@ from pytestqt.qtbot import QtBot
 
 from app.document import Document
 from app.messages import Messages
+from app.pages.profile_page import NONE_DRAWN, ProfilePage
 from app.profile_values import Profiled, ProfileRequest, profiled, value_at
 from app.profile_words import crossing_texts, marked_text, profile_csv
 from app.readout_values import ReadoutRequest, readout
 from app.view_state import Look, ViewState
-from app.views.profile_page import NONE_DRAWN, ProfilePage
 from engine.edits import removed, replaced
 from engine.errors import UserError
 from engine.layout import Layout

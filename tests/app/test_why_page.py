@@ -15,9 +15,9 @@ from pytestqt.qtbot import QtBot
 
 from app.document import Document
 from app.messages import Messages
+from app.pages.why_page import WhyPage
 from app.readout_values import ReadoutRequest, readout
 from app.view_state import Look, ViewState
-from app.views.why_page import WhyPage
 from app.why_values import (
     Why,
     WhyPlace,

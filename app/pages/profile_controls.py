@@ -7,12 +7,12 @@ from PySide6.QtWidgets import QCheckBox, QComboBox, QLineEdit, QPushButton, QWid
 
 from app.document import Document
 from app.map_request import case_of, height_figures
+from app.pages.check_menu import CheckMenu
 from app.panels.panel import decimal_sign
 from app.profile_values import Profiled, level_heights, profile_of
 from app.profile_words import first_measured_from
 from app.theme import STEP
 from app.view_state import ViewState
-from app.views.check_menu import CheckMenu
 from app.wrapping import WrappingRow
 from engine.errors import UserError
 from engine.levels import Kind

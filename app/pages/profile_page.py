@@ -18,6 +18,9 @@ from app.document import Document
 from app.figures import FIGURE_KINDS, ask_figure, write_figure
 from app.messages import Messages
 from app.page import Page
+from app.pages.plain_table import PlainTable
+from app.pages.profile_controls import ProfileControls
+from app.pages.profile_plot import ProfilePlot
 from app.panels.panel import Words, column, scrolled
 from app.profile_values import (
     Profiled,
@@ -39,9 +42,6 @@ from app.profile_words import (
 )
 from app.theme import LIGHT, STEP, theme_for
 from app.view_state import ViewState
-from app.views.plain_table import PlainTable
-from app.views.profile_controls import ProfileControls
-from app.views.profile_plot import ProfilePlot
 from engine.levels import Kind
 from engine.profile_sampling import Line
 

@@ -19,12 +19,12 @@ from app.document import Document
 from app.figures import FIGURE_KINDS, ask_figure, write_figure
 from app.messages import Messages
 from app.page import Page
+from app.pages.plain_table import PlainTable
+from app.pages.profile_controls import choice
+from app.pages.share_tree import ShareTree
 from app.panels.panel import Words, button
 from app.theme import LIGHT, STEP, qt_palette
 from app.view_state import ViewState
-from app.views.plain_table import PlainTable
-from app.views.profile_controls import choice
-from app.views.share_tree import ShareTree
 from app.why_values import (
     Why,
     WhyPlace,

@@ -18,11 +18,11 @@ from PySide6.QtGui import (
     QResizeEvent,
 )
 
+from app.pages.plot_look import curve_pen, dress_axis, log_ticks, plain_label
 from app.profile_values import LevelLine, Profiled, value_at
 from app.profile_words import distance_text, short_curve_text
 from app.theme import LIGHT, SMALL, Theme
 from app.views.inks import shade
-from app.views.plot_look import curve_pen, dress_axis, log_ticks, plain_label
 from engine.levels import Kind
 from engine.profiles import ProfileCurve
 from engine.units import FLUX_DENSITY_UNITS, LENGTH_UNITS

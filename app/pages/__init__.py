@@ -1,0 +1,1 @@
+"""Pages that stand in the drawing's place or at its foot and say why."""
