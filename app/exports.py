@@ -51,8 +51,8 @@ class Exports(QObject):
             self.map(path if path.suffix else path.with_suffix(".png"))
 
     def report(self, path: Path) -> None:
-        """Write the report of the committed layout."""
-        layout = self._document.committed
+        """Write the report of the base; its variants are the options of the report."""
+        layout = self._document.whole
 
         def work(cancelled: Cancelled, progress: Progress) -> None:
             write_report(layout, path, cancelled=cancelled, progress=progress)

@@ -152,7 +152,7 @@ class Files(QObject):
     def _write(self, path: Path) -> bool:
         with self._messages.shown():
             self._watch(None)
-            layout_file.write(path, self._document.committed)
+            layout_file.write(path, self._document.whole)
             self._document.set_path(path)
             self._document.undo_stack.setClean()
             self._watch(path)

@@ -122,7 +122,7 @@ class Autosave(QObject):
 
     def keep(self) -> None:
         """Write the copy now, if there is unsaved work that it does not hold yet."""
-        layout = self._document.committed
+        layout = self._document.whole
         if not self._document.is_modified:
             self.forget()
             return
