@@ -229,22 +229,21 @@ def test_the_first_sample_cannot_be_saved_over(qtbot, settings):
 
 
 def test_work_brought_back_is_kept_before_its_copy_goes(qtbot, settings, tmp_path):
-    lost = Document()
     layout = added(Layout(), Storey(id="ground", floor_level=0.0))
-    lost.edit("Add a storey", layout)
-    autosave = recovery.Autosave(lost)
-    autosave.keep()
-    note = autosave.copy.with_suffix(".note")
+    copy = tmp_path / "unsaved" / "work-1.json"
+    copy.parent.mkdir()
+    layout_file.write(copy, layout)
     ended = subprocess.Popen([sys.executable, "-c", ""])
     ended.wait()
-    note.write_bytes(msgspec.json.encode({"path": "", "process": ended.pid}))
+    note = {"path": "", "process": ended.pid}
+    copy.with_suffix(".note").write_bytes(msgspec.json.encode(note))
     window = start.started(None)
     qtbot.addWidget(
         window, before_close_func=lambda w: w.document.undo_stack.setClean()
     )
     assert window.document.committed == layout
     assert window.autosave.copy.exists()
-    assert not autosave.copy.exists()
+    assert not copy.exists()
 
 
 def test_what_was_told_of_another_layout_goes_with_it(window):
