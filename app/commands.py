@@ -53,6 +53,33 @@ def selected(document: Document) -> tuple[Item, ...]:
     return found
 
 
+def drawn(layout: Layout) -> tuple[Item, ...]:
+    """The items that can be selected on the drawing, in the order of the layout."""
+    return (
+        *layout.rooms, *layout.enclosures, *layout.equipment, *layout.runs,
+        *layout.zones, *layout.receptors, *layout.profiles, *layout.backing_drawings,
+    )  # fmt: skip
+
+
+def select_next(document: Document, step: int = 1) -> None:
+    """Select the item after the selected one, or before it, without a pointer.
+
+    Raises
+    ------
+    UserError
+        When nothing is drawn.
+    """
+    ids = [item.id for item in drawn(document.committed)]
+    if not ids:
+        raise UserError("Nothing is drawn yet that could be selected.")
+    held = [k for k, id in enumerate(ids) if id in document.selection]
+    if held:
+        at = (held[-1] if step > 0 else held[0]) + step
+    else:
+        at = 0 if step > 0 else -1
+    document.select((ids[at % len(ids)],))
+
+
 def delete_selection(document: Document) -> None:
     """Delete the selected items, and what only held on to them."""
     items = selected(document)

@@ -108,6 +108,11 @@ class WindowMenus(QObject):
                         "Delete what is selected (Del on the drawing)"),
                 Command("Select everything", self._select_all, Standard.SelectAll,
                         "All items that are drawn"),
+                Command("Select the next item", lambda: commands.select_next(document),
+                        "F4", "One item after the other, without a pointer"),
+                Command("Select the previous item",
+                        lambda: commands.select_next(document, -1), "Shift+F4",
+                        "One item before the other, without a pointer"),
                 LINE,
                 Command("Move by …", arrange.move, "", "By typed lengths"),
                 Command("Turn by …", arrange.rotate, "", "About the middle"),
@@ -351,15 +356,8 @@ class WindowMenus(QObject):
         document.edit("Fit the map's range", replaced(document.committed, settings))
 
     def _select_all(self) -> None:
-        layout = self._window.document.layout
-        self._window.document.select(
-            item.id
-            for items in (
-                layout.rooms, layout.enclosures, layout.equipment, layout.runs,
-                layout.zones, layout.receptors,
-            )
-            for item in items
-        )  # fmt: skip
+        document = self._window.document
+        document.select(item.id for item in commands.drawn(document.layout))
 
     def _open_section(self) -> None:
         document = self._window.document

@@ -105,6 +105,8 @@ class HeightRail(QWidget):
     def _show(self, look: Look) -> None:
         self.largest.setChecked(look.height is None)
         self.largest.setEnabled(look.height is not None)
+        # Without a zone there is one height, and nothing is the largest over several.
+        self.largest.setVisible(bool(self._document.layout.zones))
         self.entry.setToolTip(f"{self._tip} [{self._unit}]")
         self.entry.setStyleSheet("")
         if not (self.entry.hasFocus() and self.entry.isModified()):

@@ -330,3 +330,26 @@ def test_the_first_window_fits_the_screen(window):
     room = window.screen().availableGeometry()
     assert window.width() <= max(room.width(), window.minimumWidth())
     assert window.height() <= max(room.height(), window.minimumHeight())
+
+
+def test_items_are_selected_one_after_the_other_by_key(window):
+    document = window.document
+    with pytest.raises(UserError, match="Nothing is drawn"):
+        commands.select_next(document)
+    document.open(layout_file.read(SMALL), None)
+    ids = [item.id for item in commands.drawn(document.layout)]
+    seen = []
+    for _ in ids:
+        commands.select_next(document)
+        seen += list(document.selection)
+    assert seen == ids
+    commands.select_next(document)
+    assert document.selection == {ids[0]}
+    commands.select_next(document, -1)
+    assert document.selection == {ids[-1]}
+
+
+def test_largest_over_heights_is_offered_only_with_a_zone(window):
+    assert not window.rail.largest.isVisible()
+    window.document.open(layout_file.read(SMALL), None)
+    assert window.rail.largest.isVisible()
