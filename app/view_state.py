@@ -20,6 +20,7 @@ LAYERS = (
     "enclosures",
     "equipment",
     "runs",
+    "profiles",
     "receptors",
     "labels",
 )

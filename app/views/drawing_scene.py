@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from operator import is_
 
 from PySide6.QtCore import QObject, QRectF, Signal
@@ -15,6 +15,7 @@ from app.views.flowing import carries, flowing, shown_case
 from app.views.inks import Inks
 from app.views.map_layer import MapLayer
 from app.views.place_items import LooseStrandsItem, PlaceItem, ReceptorItem
+from app.views.profile_item import ProfileItem
 from app.views.projection import PLAN, Sight
 from app.views.run_item import RunItem
 from app.views.shape_item import ShapeItem
@@ -31,7 +32,7 @@ EXTENT = 1.1e5
 #: Layers from below; what is selected is raised within "selection".
 _ORDER = (
     "backing drawing", "map", "rooms", "zones", "enclosures", "equipment", "runs",
-    "receptors",
+    "profiles", "receptors",
 )  # fmt: skip
 _SELECTED = 50.0
 
@@ -69,6 +70,7 @@ class DrawingScene(QGraphicsScene):
         self.items_by_id: dict[str, ShapeItem] = {}
         self.backings: dict[str, BackingItem] = {}
         self.problem = ""
+        self._notes: dict[str, str] = {}
         self.shows_labels = True
         self.plan = plan(Layout(), ())
         self.map_layer = MapLayer(inks)
@@ -94,6 +96,7 @@ class DrawingScene(QGraphicsScene):
         self._show_places(layout, kept)
         self._show_runs(live, kept)
         self._show_receptors(kept)
+        self._show_profiles(layout, kept)
         self._show_backings(layout)
         for gone in self.items_by_id.keys() - kept:
             self.removeItem(self.items_by_id.pop(gone))
@@ -119,6 +122,19 @@ class DrawingScene(QGraphicsScene):
                 backing.set_selected(item_id in selection)
         self._selection = selection
         self.touched.emit()
+
+    def set_notes(self, notes: Mapping[str, str]) -> None:
+        """Write something beside the names of receptors, by their ids."""
+        if notes != self._notes:
+            self._notes = dict(notes)
+            for item_id in self.items_by_id:
+                self._annotate(item_id)
+            self.touched.emit()
+
+    def _annotate(self, item_id: str) -> None:
+        item = self.items_by_id.get(item_id)
+        if isinstance(item, ReceptorItem):
+            item.note = self._notes.get(item_id, "")
 
     def set_inks(self, inks: Inks) -> None:
         """Draw everything in another theme."""
@@ -233,7 +249,17 @@ class DrawingScene(QGraphicsScene):
                 self._add(ReceptorItem(mark, self._inks))
             elif item.mark != mark:
                 item.show_shape(mark)
+            self._annotate(mark.item)
             kept.add(mark.item)
+
+    def _show_profiles(self, layout: Layout, kept: set[str]) -> None:
+        for profile in layout.profiles:
+            item = self.items_by_id.get(profile.id)
+            if not isinstance(item, ProfileItem):
+                self._add(ProfileItem(profile, self._sight, self._inks))
+            elif item.profile is not profile:
+                item.show_shape(profile)
+            kept.add(profile.id)
 
     def _show_backings(self, layout: Layout) -> None:
         wanted = {

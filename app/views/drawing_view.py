@@ -21,10 +21,11 @@ from app.document import Document
 from app.map_picture import MapPicture
 from app.theme import LIGHT, Theme
 from app.tools.catch import NO_TARGETS, Catch, catch, held
-from app.tools.tool import Pointer, Tool
+from app.tools.tool import Overlay, Pointer, Tool
 from app.view_state import Look, ViewState
 from app.views.camera import Camera
 from app.views.cut_mark import draw_cut
+from app.views.drawing_keys import ARROWS, COMMANDS
 from app.views.drawing_scene import DrawingScene
 from app.views.inks import Inks
 from app.views.legend import Legend
@@ -42,20 +43,6 @@ _MOST_BESIDE = 0.35
 #: How near is near enough. [px]
 PICK_REACH = 5.0
 CATCH_REACH = 8.0
-
-_ARROWS = {
-    Qt.Key.Key_Left: (-1.0, 0.0),
-    Qt.Key.Key_Right: (1.0, 0.0),
-    Qt.Key.Key_Down: (0.0, -1.0),
-    Qt.Key.Key_Up: (0.0, 1.0),
-}
-
-
-_COMMANDS = (
-    Qt.KeyboardModifier.ControlModifier
-    | Qt.KeyboardModifier.AltModifier
-    | Qt.KeyboardModifier.MetaModifier
-)
 
 
 class DrawingView(ZoomableView):
@@ -94,6 +81,7 @@ class DrawingView(ZoomableView):
         self._tool: Tool | None = None
         self._pointer: Pointer | None = None
         self._cut = ("", False)
+        self.marks: dict[str, Overlay] = {}
         self.catches_places = True
         self.holds_directions = False
         self._legend = Legend(self._inks, self.viewport())
@@ -171,6 +159,13 @@ class DrawingView(ZoomableView):
         self._cut = (run, from_end)
         self.viewport().update()
 
+    def set_mark(self, name: str, mark: Overlay | None) -> None:
+        """Show a mark of a result over the drawing, or none; the tools' lie above."""
+        self.marks.pop(name, None)
+        if mark is not None:
+            self.marks[name] = mark
+        self.viewport().update()
+
     def refresh(self) -> None:
         """Draw the picture anew."""
         self._pixels = None
@@ -241,8 +236,10 @@ class DrawingView(ZoomableView):
         assert self._pixels is not None
         painter.drawPixmap(0, 0, self._pixels)
         self._paint_cut(painter, camera)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        for mark in self.marks.values():
+            draw_overlay(painter, mark, camera, self._inks)
         if self._tool is not None:
-            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             draw_overlay(painter, self._tool.overlay(), camera, self._inks)
             if self._pointer is not None and self._tool.catches():
                 draw_catch(painter, self._pointer, camera, self._inks)
@@ -365,8 +362,8 @@ class DrawingView(ZoomableView):
             self.zoom_step(1.0 if key == Qt.Key.Key_Plus else -1.0)
         elif tool is None:
             event.ignore()
-        elif key in _ARROWS:
-            dx, dy = _ARROWS[key]
+        elif key in ARROWS:
+            dx, dy = ARROWS[key]
             tool.nudge(dx * self.grid, dy * self.grid)
         elif key in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
             tool.enter()
@@ -374,7 +371,7 @@ class DrawingView(ZoomableView):
             tool.backspace()
         elif key == Qt.Key.Key_Delete:
             tool.delete()
-        elif event.text().isalpha() and not event.modifiers() & _COMMANDS:
+        elif event.text().isalpha() and not event.modifiers() & COMMANDS:
             self.entry_wanted.emit(event.text())
         elif key != Qt.Key.Key_Escape or not tool.back():
             event.ignore()

@@ -12,7 +12,9 @@ from app.views.shape_item import ShapeItem
 from engine.drawing import Point
 
 #: What lies within reach is taken in this order, the nearest first.
-_ORDER = ("receptors", "runs", "equipment", "enclosures", "zones", "rooms")
+_ORDER = (
+    "receptors", "runs", "profiles", "equipment", "enclosures", "zones", "rooms",
+)  # fmt: skip
 
 
 def picked(

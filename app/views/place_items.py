@@ -217,6 +217,7 @@ class ReceptorItem(ShapeItem):
 
     def __init__(self, mark: Mark, inks: Inks) -> None:
         super().__init__(mark.item, inks)
+        self.note = ""
         self.show_shape(mark)
 
     def show_shape(self, mark: Mark) -> None:
@@ -255,6 +256,8 @@ class ReceptorItem(ShapeItem):
         at = camera.pixel(self.mark.seen)
         z = self.mark.at[2]
         text = f"{shortened(self.mark.title)}  {range_text((z, z), unit)}"
+        if self.note:
+            text += f" · {self.note}"
         half = 0.5 * self.inks.width(text) + 4.0
         importance = Importance.SELECTED if self.is_selected else Importance.RECEPTOR
         places = around(at.x(), at.y(), half, _MARK + 4.0)
