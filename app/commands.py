@@ -73,10 +73,8 @@ def select_next(document: Document, step: int = 1) -> None:
     if not ids:
         raise UserError("Nothing is drawn yet that could be selected.")
     held = [k for k, id in enumerate(ids) if id in document.selection]
-    if held:
-        at = (held[-1] if step > 0 else held[0]) + step
-    else:
-        at = 0 if step > 0 else -1
+    held = held or ([-1] if step > 0 else [0])
+    at = (held[-1] if step > 0 else held[0]) + step
     document.select((ids[at % len(ids)],))
 
 

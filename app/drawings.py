@@ -2,20 +2,28 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Mapping
+
 from PySide6.QtCore import QPointF, Qt, Signal
 from PySide6.QtWidgets import QSplitter, QVBoxLayout, QWidget
 
 from app.document import Document
 from app.map_picture import MapPicture
 from app.theme import Theme
-from app.tools.tool import Tool
+from app.tools.tool import Overlay, Tool
 from app.view_state import ViewState
 from app.views.drawing_view import DrawingView
-from app.views.projection import LOOKING_X, LOOKING_Y, PLAN, to_layout, to_view
+from app.views.projection import LOOKING_X, LOOKING_Y, PLAN, Sight, to_layout, to_view
+from engine.exchange.backing import View
 from engine.items import Point3
 
 #: Names of the views as the View menu says them.
 VIEWS = {"Plan": PLAN, "Looking +y": LOOKING_Y, "Looking +x": LOOKING_X}
+
+
+PLANES: dict[str, View] = {
+    "Plan": "plan", "Looking +y": "looking +y", "Looking +x": "looking +x",
+}  # fmt: skip
 
 
 class Drawings(QWidget):
@@ -65,6 +73,11 @@ class Drawings(QWidget):
         """Name of the view in front."""
         return self._shown
 
+    @property
+    def plane(self) -> View:
+        """The plane of the view in front, as backing drawings name it."""
+        return PLANES[self._shown]
+
     def show_view(self, name: str) -> None:
         """Bring a view to the front."""
         self._shown = name
@@ -94,6 +107,16 @@ class Drawings(QWidget):
 
     def set_map(self, picture: MapPicture) -> None:
         self.plan.set_map(picture)
+
+    def set_marks(self, name: str, mark: Callable[[Sight], Overlay | None]) -> None:
+        """Show a mark of a result on every view, as it is seen there."""
+        for view in self.views.values():
+            view.set_mark(name, mark(view.sight))
+
+    def set_notes(self, notes: Mapping[str, str]) -> None:
+        """Write something beside the names of receptors, by their ids."""
+        for view in self.views.values():
+            view.drawing.set_notes(notes)
 
     def set_cut(self, run: str, from_end: bool) -> None:
         """Mark on the plan where that run is cut."""

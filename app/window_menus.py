@@ -172,6 +172,8 @@ class WindowMenus(QObject):
                             else f"Elevation, {name.lower()}")
                     for name in VIEWS
                 ),
+                Command("Space", w.view_pages.open_space, "F9",
+                        "The layout in space, with its maps"),
                 LINE,
                 Command("Fit", w.drawings.fit, "", "Show everything (Home)"),
                 LINE,
@@ -298,7 +300,7 @@ class WindowMenus(QObject):
                 self._window.files.open(path)
             else:
                 with self._window.messages.shown():
-                    place_backing_file(self._window.document, path)
+                    self._place(path)
 
     def _open_recent(self, name: str) -> None:
         if Path(name).exists():
@@ -371,7 +373,12 @@ class WindowMenus(QObject):
             self._window, "Place backing drawing", "", PICTURES
         )
         if name:
-            place_backing_file(self._window.document, Path(name))
+            self._place(Path(name))
+
+    def _place(self, path: Path) -> None:
+        """Under the view in front; to be calibrated at once."""
+        w = self._window
+        w.calibrate(place_backing_file(w.document, path, view=w.drawings.plane))
 
     def _calibrate(self) -> None:
         document = self._window.document
@@ -385,4 +392,5 @@ class WindowMenus(QObject):
         image = QApplication.clipboard().image()
         if image.isNull():
             raise UserError("There is no picture on the clipboard: copy one first.")
-        place_backing_picture(self._window.document, image)
+        w = self._window
+        w.calibrate(place_backing_picture(w.document, image, w.drawings.plane))

@@ -9,7 +9,7 @@ from pathlib import Path
 import msgspec
 import pytest
 from PySide6.QtCore import QMimeData, QPointF, Qt, QUrl
-from PySide6.QtGui import QDropEvent
+from PySide6.QtGui import QDropEvent, QImage
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
 
@@ -353,3 +353,18 @@ def test_largest_over_heights_is_offered_only_with_a_zone(window):
     assert not window.rail.largest.isVisible()
     window.document.open(layout_file.read(SMALL), None)
     assert window.rail.largest.isVisible()
+
+
+def test_a_drawing_placed_is_calibrated_at_once_under_the_view_in_front(
+    window, tmp_path
+):
+    picture = QImage(40, 30, QImage.Format.Format_RGB32)
+    picture.fill(0xFFFFFF)
+    path = tmp_path / "plan.png"
+    assert picture.save(str(path))
+    window.drawings.show_view("Looking +x")
+    window.menus.open_dropped([str(path)])
+    (drawing,) = window.document.committed.backing_drawings
+    assert drawing.view == "looking +x"
+    assert window.toolbox.active is window.toolbox.calibrate
+    assert "first of two points" in window.hint.sentence
