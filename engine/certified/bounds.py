@@ -17,7 +17,7 @@ TOLERANCE = 0.01
 
 #: Work that one region may take, in segments; a core does some 20 million a second,
 #: and a box counts as 2000 besides.
-MOST_WORK = 400_000_000
+MOST_WORK = 200_000_000
 
 AREA_MEAN = (
     "A mean over an area has no largest place between its samples; the error of its "

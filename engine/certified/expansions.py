@@ -229,10 +229,14 @@ def _choose(
     """Rules for all legs so that the residues together count below 1, if they can."""
     # Most legs are far away and leave nearly nothing.
     share = 0.25
+    errors[:] = np.inf
     for _ in range(_TRIES):
         total = 0.0
         for j in range(legs.shape[0]):
             need = needs[owner[j]]
+            if need * errors[j] <= share:
+                total += need * errors[j]
+                continue
             allowed = share / need if need > 0.0 else np.inf
             errors[j] = _rule_of(legs[j], gaps[j], allowed, rules[j])
             total += need * errors[j]
