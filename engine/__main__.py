@@ -12,6 +12,7 @@ import json
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import Any
 
 from engine import units
 from engine.circuits import LoadCase
@@ -79,6 +80,12 @@ def _parser() -> argparse.ArgumentParser:
     )
     _add_unit(assess)
     assess.add_argument("--json", action="store_true", help="print JSON, in tesla")
+    assess.add_argument(
+        "--tables",
+        type=Path,
+        metavar="OUT.xlsx|FOLDER",
+        help="write the report's tables as a workbook, or as CSV files",
+    )
     assess.set_defaults(run=_assess)
 
     compare = commands.add_parser(
@@ -89,12 +96,7 @@ def _parser() -> argparse.ArgumentParser:
     compare.add_argument("--json", action="store_true", help="print JSON, in tesla")
     compare.set_defaults(run=_compare)
 
-    report = commands.add_parser("report", help="write the report as PDF")
-    report.add_argument("layout", metavar="LAYOUT")
-    report.add_argument("out", metavar="OUT.pdf", type=Path)
-    _add_unit(report)
-    report.add_argument("--json", action="store_true", help="print what was written")
-    report.set_defaults(run=_report)
+    _add_documents(commands)
 
     plane = commands.add_parser("map", help="write the field on a horizontal plane")
     plane.add_argument("layout", metavar="LAYOUT")
@@ -123,6 +125,44 @@ def _parser() -> argparse.ArgumentParser:
     schedule.add_argument("--json", action="store_true", help="print what was written")
     schedule.set_defaults(run=_schedule)
     return parser
+
+
+def _add_documents(commands: Any) -> None:
+    report = commands.add_parser("report", help="write the report as PDF")
+    report.add_argument("layout", metavar="LAYOUT")
+    report.add_argument("out", metavar="OUT.pdf", type=Path)
+    report.add_argument(
+        "--note", action="store_true", help="a note of one to two pages instead"
+    )
+    report.add_argument(
+        "--without-checks",
+        action="store_true",
+        help="do not run the outside checks of the program; their section says so",
+    )
+    _add_unit(report)
+    report.add_argument("--json", action="store_true", help="print what was written")
+    report.set_defaults(run=_report)
+
+    issue = commands.add_parser(
+        "issue", help="freeze layout and report under a revision"
+    )
+    issue.add_argument("layout", metavar="LAYOUT", type=Path)
+    issue.add_argument("--revision", required=True, metavar="NAME")
+    issue.add_argument("--date", required=True, help="as it is to be printed")
+    issue.add_argument("--note", default="", help="what the revision is for")
+    issue.add_argument("--folder", type=Path, help="of the frozen files")
+    _add_unit(issue)
+    issue.add_argument("--json", action="store_true", help="print what was written")
+    issue.set_defaults(run=_issue)
+
+    changes = commands.add_parser(
+        "changes", help="say what was edited and moved between two layouts"
+    )
+    changes.add_argument("old", metavar="OLD")
+    changes.add_argument("new", metavar="NEW")
+    _add_unit(changes)
+    changes.add_argument("--json", action="store_true", help="print JSON, in tesla")
+    changes.set_defaults(run=_changes)
 
 
 def _add_unit(parser: argparse.ArgumentParser) -> None:
@@ -171,6 +211,10 @@ def _assess(asked: argparse.Namespace) -> int:
     )
     unit = asked.unit or "µT"
     found = remarks(layout, assessment, unit=unit)
+    if asked.tables is not None:
+        from engine.commands.tables import write_tables
+
+        write_tables(assessment, found, unit, asked.tables)
     if asked.json:
         _print_json(assessed.as_json(assessment, found))
     else:
@@ -197,8 +241,48 @@ def _report(asked: argparse.Namespace) -> int:
     from engine.report import write_report
 
     layout = read(asked.layout)
-    write_report(layout, asked.out, unit=asked.unit, progress=progress_line())
+    write_report(
+        layout,
+        asked.out,
+        kind="note" if asked.note else "report",
+        validate=not asked.without_checks,
+        unit=asked.unit,
+        progress=progress_line(),
+    )
     return _written(asked.out, asked.json)
+
+
+def _issue(asked: argparse.Namespace) -> int:
+    from engine.commands.revisions import issue_revision
+
+    frozen, printed = issue_revision(
+        asked.layout,
+        asked.revision,
+        asked.date,
+        folder=asked.folder,
+        note=asked.note,
+        unit=asked.unit,
+        progress=progress_line(),
+    )
+    if asked.json:
+        _print_json({"layout": str(frozen), "report": str(printed)})
+        return DONE
+    sys.stdout.write(f"Issued: {frozen}\n        {printed}\n")
+    return DONE
+
+
+def _changes(asked: argparse.Namespace) -> int:
+    from engine.commands import revisions
+
+    old, new = read(asked.old), read(asked.new)
+    found, again = revisions.changes_between(old, new, progress=progress_line())
+    if asked.json:
+        _print_json(revisions.as_json(found, again))
+        return DONE
+    unit = asked.unit or new.settings.flux_density_unit
+    names = revisions.names_of(old, new)
+    sys.stdout.write(revisions.as_text(found, again, names, unit))
+    return DONE
 
 
 def _map(asked: argparse.Namespace) -> int:

@@ -7,13 +7,19 @@ from itertools import pairwise
 
 from engine.picture.marks import BLACK, GREY, Picture, Stroke, Words
 from engine.picture.sheet import Sheet
-from engine.printed_text import fitted, text_width
+from engine.printed_text import text_width, wrapped
 from engine.units import LENGTH_UNITS
 
 SIZE = 2.0
 
 #: Of the chain, and of the dimension over all, from the frame.
 _NEAR, _FAR = 4.5, 10.5
+
+#: Widest text of a level. [mm]
+_MOST_LEVELS = 75.0
+
+#: A level, what it is, and of which place. [m]
+Level = tuple[float, str, str]
 
 #: Places nearer than this on paper are one in a chain.
 _SAME = 1.2
@@ -67,24 +73,45 @@ def draw_chain_beside(
 def draw_levels(
     picture: Picture,
     sheet: Sheet,
-    levels: Iterable[tuple[float, str]],
+    levels: Iterable[Level],
     unit: str,
     width: float,
 ) -> None:
-    """Levels beside an elevation, each with its name, none over another. [m]"""
-    by_level: dict[float, list[str]] = {}
-    for level, name in levels:
-        by_level.setdefault(round(level, 3), []).append(name)
+    """Levels beside an elevation, with what they are, none over another. [m]"""
     right = sheet.left + sheet.width
-    inside = sorted(z for z in by_level if sheet.world[1] <= z <= sheet.world[3])
-    places = _spread([sheet.paper(0.0, z)[1] for z in inside], SIZE + 0.9)
-    for z, y in zip(inside, places, strict=True):
-        true = sheet.paper(0.0, z)[1]
-        line = ((right, true), (right + 2.0, true), (right + 5.0, y), (right + 6.5, y))
-        picture.add(Stroke(line, 0.15, BLACK))
-        names = ", ".join(dict.fromkeys(by_level[z]))
-        text = f"z {dimension_text(z, unit)}  {names}"
-        picture.add(Words((right + 7.0, y), fitted(text, SIZE, width - 7.0), SIZE))
+    found = _by_level(levels)
+    lines: list[tuple[float, str, bool]] = []
+    for z in sorted(z for z in found if sheet.world[1] <= z <= sheet.world[3]):
+        broken = wrapped(_level_text(z, found[z], unit), SIZE, width - 7.5)
+        texts = [(z, text, k == 0) for k, text in enumerate(broken)]
+        lines += reversed(texts)
+    true = [sheet.paper(0.0, z)[1] for z, _, _ in lines]
+    places = _spread(true, SIZE + 0.9)
+    for y0, y, (_, text, is_first) in zip(true, places, lines, strict=True):
+        if is_first:
+            line = ((right, y0), (right + 2.0, y0), (right + 5.0, y), (right + 6.5, y))
+            picture.add(Stroke(line, 0.15, BLACK))
+        picture.add(Words((right + 7.0, y), text, SIZE))
+
+
+def levels_width(levels: Iterable[Level], unit: str) -> float:
+    """Room that level marks take beside an elevation, up to a limit. [mm]"""
+    texts = [_level_text(z, names, unit) for z, names in _by_level(levels).items()]
+    return 8.0 + min(_MOST_LEVELS, max(text_width(text, SIZE) for text in texts))
+
+
+def _by_level(levels: Iterable[Level]) -> dict[float, dict[str, list[str]]]:
+    """By level: what kind of level it is, and of which places."""
+    found: dict[float, dict[str, list[str]]] = {}
+    for level, kind, name in levels:
+        kinds = found.setdefault(round(level, 3), {})
+        kinds.setdefault(kind, []).append(name)
+    return found
+
+
+def _level_text(z: float, kinds: dict[str, list[str]], unit: str) -> str:
+    told = [f"{kind} {', '.join(dict.fromkeys(n))}" for kind, n in kinds.items()]
+    return f"z {dimension_text(z, unit)}  {'; '.join(told)}"
 
 
 def dimension_text(metres: float, unit: str) -> str:

@@ -33,9 +33,16 @@ CAUTION = (
 )
 
 
-#: Width and height that the legend takes beside a map, and under it. [mm]
-BESIDE = (40.0, 96.0)
+#: Width that the legend takes beside a map, and width and height under it. [mm]
+BESIDE = 40.0
 UNDER = (120.0, 64.0)
+
+
+def height_beside(subject: MapSubject) -> float:
+    """Height that the legend takes beside a map. [mm]"""
+    measured = Picture(BESIDE, 0.0)
+    y = _draw_scale(measured, subject, 0.0, 0.0)
+    return -_draw_entries(measured, subject, 0.0, y - 1.0, BESIDE - 2.0)
 
 
 def draw_legend_beside(
@@ -43,7 +50,7 @@ def draw_legend_beside(
 ) -> None:
     """Draw the colour bar, and what the marks on the map mean, one over the other."""
     y = _draw_scale(picture, subject, left, top)
-    _draw_entries(picture, subject, left, y - 1.0, BESIDE[0] - 2.0)
+    _draw_entries(picture, subject, left, y - 1.0, BESIDE - 2.0)
 
 
 def draw_legend_under(
@@ -67,19 +74,21 @@ def _draw_scale(
     low = value_text(subject.low, subject.unit)
     high = value_text(subject.high, subject.unit)
     for text in (f"under {low} not coloured", f"over {high} as {high}"):
-        y = _paragraph(picture, text, left, y, BESIDE[0] - 2.0)
+        y = _paragraph(picture, text, left, y, BESIDE - 2.0)
     return y
 
 
 def _draw_entries(
     picture: Picture, subject: MapSubject, left: float, top: float, width: float
-) -> None:
+) -> float:
+    """What the marks on the map mean; the height where it stops. [mm]"""
     y = top
     for strokes, text in _entries(subject):
         for line, stroke in strokes:
             moved: Points = tuple((left + px, y + py) for px, py in line)
             picture.add(Stroke(moved, stroke.width, stroke.colour, stroke.dash))
         y = _paragraph(picture, text, left + 8.0, y, width - 8.0)
+    return y
 
 
 def _draw_bar(

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from typing import Literal
 
 import numpy as np
 from shapely.geometry import box
@@ -23,6 +24,7 @@ from engine.picture.legend import (
     draw_caption,
     draw_legend_beside,
     draw_legend_under,
+    height_beside,
 )
 from engine.picture.lettering import (
     keep_clear,
@@ -54,6 +56,9 @@ RIGHT = 4.0
 LEAST_WIDTH = 120.0
 
 
+_Legend = Literal["beside", "beside all", "under"]
+
+
 @dataclass(frozen=True)
 class _Arrangement:
     """Where things go: the legend beside the map or under it, and the scale. [mm]"""
@@ -63,6 +68,7 @@ class _Arrangement:
     sheet: Sheet
     scale: int
     legend_under: bool
+    caption_width: float
 
 
 def map_picture(
@@ -80,9 +86,7 @@ def map_picture(
     shape = (len(subject.ys), len(subject.xs))
     if subject.values.shape != shape or subject.mask.shape != shape:
         raise ValueError(f"values {subject.values.shape} on a grid of {shape}")
-    beside = _arranged(subject, width, height, False)
-    under = _arranged(subject, width, height, True)
-    arranged = under if under.scale < beside.scale else beside
+    arranged = _best(subject, width, height)
     picture, sheet = Picture(arranged.width, arranged.height), arranged.sheet
     _draw_field(picture, sheet, subject)
     draw_plan(picture, sheet, plan)
@@ -112,8 +116,16 @@ def map_picture(
     else:
         left = sheet.left + sheet.width + RIGHT
         draw_legend_beside(picture, subject, left, arranged.height - TOP)
-    draw_caption(picture, subject, picture.width)
+    draw_caption(picture, subject, arranged.caption_width)
     return picture
+
+
+def _best(subject: MapSubject, width: float, height: float) -> _Arrangement:
+    """The legend beside the map, beside map and caption, or under the map."""
+    kinds: tuple[_Legend, ...] = ("beside", "beside all", "under")
+    tried = [_arranged(subject, width, height, kind) for kind in kinds]
+    fitting = [each for each in tried if each.height <= height + 0.01]
+    return min(fitting or tried[-1:], key=lambda each: each.scale)
 
 
 def _mark_largest(picture: Picture, sheet: Sheet, at: tuple[float, float]) -> None:
@@ -134,22 +146,28 @@ def _mark_largest(picture: Picture, sheet: Sheet, at: tuple[float, float]) -> No
 
 
 def _arranged(
-    subject: MapSubject, width: float, height: float, legend_under: bool
+    subject: MapSubject, width: float, height: float, legend: _Legend
 ) -> _Arrangement:
     """The largest drawing scale that leaves room for legend and caption."""
     world = subject.world()
-    aside = RIGHT if legend_under else RIGHT + BESIDE[0]
-    under = UNDER[1] if legend_under else 0.0
-    below = BOTTOM + under + caption_height(subject, LEAST_WIDTH)
+    aside = RIGHT if legend == "under" else RIGHT + BESIDE
+    less = BESIDE if legend == "beside all" else 0.0
+    under = UNDER[1] if legend == "under" else 0.0
+    below = BOTTOM + under + caption_height(subject, LEAST_WIDTH - less)
     scale = drawing_scale(world, width - LEFT - aside, height - below - TOP)
     wide = 1000.0 * (world[2] - world[0]) / scale
     tall = 1000.0 * (world[3] - world[1]) / scale
-    least = LEFT + UNDER[0] if legend_under else LEAST_WIDTH
+    least = LEFT + UNDER[0] if legend == "under" else LEAST_WIDTH
     across = min(max(LEFT + wide + aside, least), width)
-    below = BOTTOM + under + caption_height(subject, across)
-    room = tall if legend_under else max(tall, min(height - below - TOP, BESIDE[1]))
+    below = BOTTOM + under + caption_height(subject, across - less)
+    # Beside, the legend may go down to the caption, or past it.
+    spare = {"under": 0.0, "beside": BOTTOM - 2.0, "beside all": below - 2.0}[legend]
+    needed = 0.0 if legend == "under" else height_beside(subject) - spare
+    room = max(tall, needed)
     sheet = Sheet(world, scale, (LEFT, below + room - tall))
-    return _Arrangement(across, below + room + TOP, sheet, scale, legend_under)
+    return _Arrangement(
+        across, below + room + TOP, sheet, scale, legend == "under", across - less
+    )
 
 
 def _draw_field(picture: Picture, sheet: Sheet, subject: MapSubject) -> None:

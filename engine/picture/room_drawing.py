@@ -11,7 +11,13 @@ from dataclasses import dataclass, replace
 
 from engine.drawing import Plan, RunShape
 from engine.picture.axes import draw_axes
-from engine.picture.dimensions import draw_chain_above, draw_chain_beside, draw_levels
+from engine.picture.dimensions import (
+    Level,
+    draw_chain_above,
+    draw_chain_beside,
+    draw_levels,
+    levels_width,
+)
 from engine.picture.lettering import keep_clear, letter_places, letter_sources
 from engine.picture.marks import BLACK, Box, Picture, Stroke, Words
 from engine.picture.plan_marks import draw_plan
@@ -21,8 +27,8 @@ from engine.printed_text import wrapped
 LEFT = 14.0
 BOTTOM = 16.0
 TOP = 15.0
-#: Room for dimensions beside a plan, and for levels beside an elevation.
-BESIDE, LEVELS = 15.0, 54.0
+#: Room for dimensions beside a plan.
+BESIDE = 15.0
 SIZE, STEP = 2.2, 3.1
 
 #: Around what is drawn. [m]
@@ -45,7 +51,7 @@ class RoomView:
         [degrees]
     across, up : tuple of float
         Places that the dimensions lead to, along both axes. [m]
-    levels : pairs of level and its name
+    levels : tuple of level, its kind, its place
         Beside an elevation, instead of dimensions up. [m]
     lines : tuple of str
         Notes under the drawing.
@@ -58,7 +64,7 @@ class RoomView:
     north: float | None = None
     across: tuple[float, ...] = ()
     up: tuple[float, ...] = ()
-    levels: tuple[tuple[float, str], ...] = ()
+    levels: tuple[Level, ...] = ()
     lines: tuple[str, ...] = ()
 
     def world(self) -> Box:
@@ -70,7 +76,7 @@ class RoomView:
 
 def room_scale(view: RoomView, *, width: float, height: float) -> int:
     """The scale 1 : n at which `room_drawing` draws in a space. [mm]"""
-    aside = LEVELS if view.levels else BESIDE
+    aside = levels_width(view.levels, view.length_unit) if view.levels else BESIDE
     below = BOTTOM + _notes_height(view, width)
     return drawing_scale(view.world(), width - LEFT - aside, height - below - TOP)
 
@@ -99,7 +105,8 @@ def room_drawing(view: RoomView, *, width: float, height: float) -> Picture:
     )
     draw_chain_above(picture, sheet, view.across, view.length_unit)
     if view.levels:
-        draw_levels(picture, sheet, view.levels, view.length_unit, LEVELS - 3.0)
+        room = levels_width(view.levels, view.length_unit)
+        draw_levels(picture, sheet, view.levels, view.length_unit, room)
     else:
         draw_chain_beside(picture, sheet, view.up, view.length_unit)
     _write_notes(picture, view, width)

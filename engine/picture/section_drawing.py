@@ -147,7 +147,8 @@ def _draw_letters(
         wide, high = (u1 - u0) * sheet.factor, (v1 - v0) * sheet.factor
         room = text_width(text, SIZE, bold=True)
         if wide > room + 0.8 and high > SIZE + 0.6:
-            picture.add(Words((x, y), text, SIZE, bold=True, anchor="middle"))
+            words = Words((x, y), text, SIZE, bold=True, anchor="middle", patch=True)
+            picture.add(words)
             continue
         half = 0.5 * wide + 0.5 * room + 1.2
         tall = 0.5 * high + 2.0

@@ -3,16 +3,27 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from functools import partial
 from typing import Literal
+
+from reportlab.platypus import Flowable
 
 from engine.errors import UserError
 from engine.report.attachments import Attachment
 from engine.report.contents import drawn, story
 from engine.report.files import attached_files
 from engine.report.matter import Matter
-from engine.report.names import wording
-from engine.report.note import note_story
-from engine.report.page import UNWATCHED, Watch, paper, pdf, register_fonts
+from engine.report.names import Wording, wording
+from engine.report.note import MOST_PAGES, ROOMS, Room, note_story
+from engine.report.page import (
+    UNWATCHED,
+    Pages,
+    Paper,
+    Watch,
+    paper,
+    pdf,
+    register_fonts,
+)
 from engine.units import flux_density_unit
 
 DocumentKind = Literal["report", "note"]
@@ -43,13 +54,7 @@ def report_pdf(
     words = wording(layout, flux_density_unit(matter.unit))
     attachments: Sequence[Attachment] = attached_files(matter)
     if kind == "note":
-        return pdf(
-            layout,
-            lambda pages: note_story(matter, words, sheet),
-            subject=f"{SUBJECT}: note",
-            attachments=attachments[:1],
-            watch=watch,
-        )
+        return _note(matter, words, sheet, attachments[:1], watch)
     pictures = drawn(matter, sheet)
     return pdf(
         layout,
@@ -57,7 +62,34 @@ def report_pdf(
         subject=f"{SUBJECT}: report",
         attachments=attachments,
         watch=watch,
-    )
+    ).content
+
+
+def _note(
+    matter: Matter,
+    words: Wording,
+    sheet: Paper,
+    attachments: Sequence[Attachment],
+    watch: Watch,
+) -> bytes:
+    """The note with as much as two pages hold."""
+    for room in ROOMS:
+        laid = pdf(
+            matter.layout,
+            partial(_note_pages, matter, words, sheet, room),
+            subject=f"{SUBJECT}: note",
+            attachments=attachments,
+            watch=watch,
+        )
+        if laid.count <= MOST_PAGES:
+            break
+    return laid.content
+
+
+def _note_pages(
+    matter: Matter, words: Wording, sheet: Paper, room: Room, _pages: Pages
+) -> list[Flowable]:
+    return note_story(matter, words, sheet, room)
 
 
 def _refuse_partial(matter: Matter) -> None:

@@ -9,6 +9,7 @@ from engine.drawing import Plan, plan
 from engine.elevation import elevation
 from engine.layout import Layout
 from engine.picture import Picture
+from engine.picture.dimensions import Level
 from engine.picture.room_drawing import RoomView, room_drawing, room_scale
 from engine.report.drawn_parts import between
 from engine.report.matter import Matter
@@ -149,15 +150,15 @@ def _elevation_view(matter: Matter, sight: Sight) -> RoomView:
     )
 
 
-def _levels(layout: Layout, shown: Plan) -> Sequence[tuple[float, str]]:
-    found: list[tuple[float, str]] = []
+def _levels(layout: Layout, shown: Plan) -> Sequence[Level]:
+    found: list[Level] = []
     for room in layout.rooms:
-        found.append((room.floor_level, f"floor {room.title}"))
-        found.append((room.ceiling_level, f"ceiling {room.title}"))
+        found.append((room.floor_level, "floor", room.title))
+        found.append((room.ceiling_level, "ceiling", room.title))
         if room.soffit_level is not None and room.soffit_level != room.ceiling_level:
-            found.append((room.soffit_level, f"soffit {room.title}"))
+            found.append((room.soffit_level, "soffit", room.title))
     for zone in shown.zones:
         if zone.levels is not None:
-            found.append((zone.levels[0], f"zone {zone.title}, lowest"))
-            found.append((zone.levels[1], f"zone {zone.title}, highest"))
+            found.append((zone.levels[0], "lowest height of zone", zone.title))
+            found.append((zone.levels[1], "greatest height of zone", zone.title))
     return found

@@ -97,7 +97,7 @@ def overview(told: Story) -> list[Flowable]:
     made.append(gap(4.0))
     made.append(Heading("Questions often asked", HEADING, 0, "questions"))
     rows = [
-        (question, ", ".join(told.page(key) for key in keys))
+        (question, ", ".join(dict.fromkeys(told.page(key) for key in keys)))
         for question, keys in QUESTIONS
     ]
     heads = ("A reviewer asks", "Answered on")

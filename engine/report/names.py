@@ -24,6 +24,10 @@ class Wording:
         """A flux density without its unit, three figures."""
         return "–" if tesla is None else significant(in_unit(tesla, self.unit))
 
+    def small(self, tesla: float, whole: float) -> str:
+        """A part of a whole, three figures; 0 where it is nothing beside the whole."""
+        return "≈ 0" if 0 < tesla < 1e-5 * whole else self.value(tesla)
+
     def limit(self, tesla: float) -> str:
         """A level as it was typed: up to six figures, no zeros behind the point."""
         return f"{float(f'{in_unit(tesla, self.unit):.6g}'):.10g}"

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
 from reportlab.platypus import Flowable
 
 from engine.decisions import worst_comparisons
@@ -18,6 +20,7 @@ from engine.report.names import Wording
 from engine.report.page import Paper
 from engine.report.summary import at_risk, state_text
 from engine.report.text import (
+    SMALL_BULLET,
     STRONG,
     TITLE,
     bullets,
@@ -33,43 +36,66 @@ from engine.report.words import place
 from engine.results import STATES, Comparison
 from engine.units import text_beside
 
-#: Rows, assumptions and remarks that a note has room for.
-MOST_ROWS, MOST_ASSUMED, MOST_REMARKS = 12, 8, 5
-
-#: Part of the page that the picture may take.
-_PICTURE = 0.46
+#: A note has no more pages.
+MOST_PAGES = 2
 
 
-def note_story(matter: Matter, words: Wording, sheet: Paper) -> list[Flowable]:
+@dataclass(frozen=True)
+class Room:
+    """How much of everything a note holds: its length follows from it.
+
+    `picture` is the part of a page that the picture may take; `text` the most
+    characters of a text of the author.
+    """
+
+    rows: int
+    assumed: int
+    remarks: int
+    picture: float
+    text: int
+
+
+#: Tried one after the other until the note is short enough.
+ROOMS = (
+    Room(12, 8, 5, 0.6, 1500),
+    Room(8, 6, 4, 0.52, 700),
+    Room(5, 4, 3, 0.5, 400),
+    Room(3, 3, 2, 0.45, 200),
+)
+
+
+def note_story(
+    matter: Matter, words: Wording, sheet: Paper, room: Room
+) -> list[Flowable]:
     """All that the note prints, title block aside."""
     title, width = matter.layout.title, sheet.text_width
     cases = [case.title for case in matter.layout.cases if case.counted]
     facts = [
-        ("Question", title.question[:700] or "not stated"),
+        ("Question", title.question[: room.text] or "not stated"),
         ("Load cases that count", ", ".join(cases)[:300]),
-        ("Scope", title.scope[:400] or "not stated"),
+        ("Scope", title.scope[: room.text] or "not stated"),
     ]
     made = letterhead(matter)
     made += [paragraph(HEADLINE, TITLE), fact_table(facts, width)]
-    made += _answer(matter, words, width)
-    picture = _picture(matter, sheet)
+    made += _answer(matter, words, width, room)
+    picture = _picture(matter, sheet, room)
     if picture is not None:
         made += [gap(1.0), Figure(picture), gap(1.0)]
     made += subheading("Assumptions", room=20.0)
-    made += bullets(_assumed(matter, words))
-    made += _open_remarks(matter)
+    made += bullets(_assumed(matter, words, room), SMALL_BULLET)
+    made += _open_remarks(matter, room)
     made += subheading("Cautions", room=20.0)
-    made += bullets(NOTE_CAUTIONS)
+    made += bullets(NOTE_CAUTIONS, SMALL_BULLET)
     if title.conclusions:
         made += subheading("Conclusions of the author", room=20.0)
-        made += paragraphs(title.conclusions[:1500])
+        made += paragraphs(title.conclusions[: room.text])
     made.append(
         paragraph(matter.identity.sentence() + ". The full report has the rest.")
     )
     return made
 
 
-def _answer(matter: Matter, words: Wording, width: float) -> list[Flowable]:
+def _answer(matter: Matter, words: Wording, width: float, room: Room) -> list[Flowable]:
     assessment = matter.assessment
     blocking = [r for r in matter.remarks if r.severity == "blocking"]
     made: list[Flowable] = []
@@ -82,10 +108,10 @@ def _answer(matter: Matter, words: Wording, width: float) -> list[Flowable]:
             "Place, reference level", "Load case", f"B [{words.unit}]",
             f"L [{words.unit}]", "B/L", f"U [{words.unit}]", "State in words",
         )  # fmt: skip
-        rows = [_row(c, words) for c in found[:MOST_ROWS]]
+        rows = [_row(c, words) for c in found[: room.rows]]
         made.append(table(heads, rows, (25, 16, 10, 10, 8, 8, 23), width))
-        if len(found) > MOST_ROWS:
-            text = f"{len(found) - MOST_ROWS} more comparisons stand in the report."
+        if len(found) > room.rows:
+            text = f"{len(found) - room.rows} more comparisons stand in the report."
             made.append(paragraph(text))
         return made
     if not assessment.layout.levels:
@@ -105,7 +131,7 @@ def _answer(matter: Matter, words: Wording, width: float) -> list[Flowable]:
             "Zone", "Load case", f"Largest B [{words.unit}]",
             f"At x, y, z [{words.length_unit}]",
         )  # fmt: skip
-        values = table(heads_of_values, rows[:MOST_ROWS], (34, 26, 18, 22), width)
+        values = table(heads_of_values, rows[: room.rows], (34, 26, 18, 22), width)
         made.append(values)
     return made
 
@@ -144,8 +170,8 @@ def _leading_map(matter: Matter) -> HeightMap | None:
     return matter.maps[0] if matter.maps else None
 
 
-def _picture(matter: Matter, sheet: Paper) -> Picture | None:
-    width, height = sheet.text_width, _PICTURE * sheet.text_height
+def _picture(matter: Matter, sheet: Paper, room: Room) -> Picture | None:
+    width, height = sheet.text_width, room.picture * sheet.text_height
     leading = _leading_map(matter)
     if leading is not None:
         whole = plan(matter.layout, matter.conductors)
@@ -157,27 +183,31 @@ def _picture(matter: Matter, sheet: Paper) -> Picture | None:
     return room_drawing(views[0], width=width, height=height)
 
 
-def _assumed(matter: Matter, words: Wording) -> list[str]:
-    found = assumptions(matter.layout)
+def _assumed(matter: Matter, words: Wording, room: Room) -> list[str]:
+    # Those about which the author says something first.
+    found = sorted(assumptions(matter.layout), key=lambda a: not a.reason)
     if not found:
         return ["Every entered value has an origin."]
     texts = [
         f"{words.name(a.item)}, {a.field.replace('_', ' ')}: {a.value}"
         + (f" ({a.reason})" if a.reason else "")
-        for a in found[:MOST_ASSUMED]
+        for a in found[: room.assumed]
     ]
     texts = [text[:300] for text in texts]
-    if len(found) > MOST_ASSUMED:
-        texts.append(f"and {len(found) - MOST_ASSUMED} more, listed in the report")
+    if len(found) > room.assumed:
+        texts.append(f"and {len(found) - room.assumed} more, listed in the report")
     return texts
 
 
-def _open_remarks(matter: Matter) -> list[Flowable]:
+def _open_remarks(matter: Matter, room: Room) -> list[Flowable]:
     if not matter.remarks:
         return []
     shown = [f"{r.code} {r.severity}: {r.sentence}"[:400] for r in matter.remarks]
-    more = len(shown) - MOST_REMARKS
-    texts = shown[:MOST_REMARKS]
+    more = len(shown) - room.remarks
+    texts = shown[: room.remarks]
     if more > 0:
         texts.append(f"and {more} more, listed in the report")
-    return [*subheading("Remarks not cleared", room=20.0), *bullets(texts)]
+    return [
+        *subheading("Remarks not cleared", room=20.0),
+        *bullets(texts, SMALL_BULLET),
+    ]

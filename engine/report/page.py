@@ -127,7 +127,7 @@ def pdf(
     subject: str,
     attachments: Sequence[Attachment] = (),
     watch: Watch = UNWATCHED,
-) -> bytes:
+) -> Laid:
     """The PDF of a story, with the title block on each page.
 
     Parameters
@@ -148,9 +148,9 @@ def pdf(
         part = replace(watch, progress=_share(watch.progress, k))
         new = _laid_out(layout, make_story, laid, subject, attachments, part)
         if (new.pages, new.count) == (laid.pages, laid.count):
-            return new.content
+            return new
         laid = new
-    return laid.content
+    return laid
 
 
 def _share(progress: Progress | None, attempt: int) -> Progress | None:

@@ -3,11 +3,17 @@
 from __future__ import annotations
 
 import numpy as np
+from numpy.typing import NDArray
 from reportlab.platypus import Flowable
 
 from engine.report.names import Wording
 from engine.report.text import paragraph, table
-from engine.report.zone_tables import comparison_rows, comparison_table
+from engine.report.words import frequency_text
+from engine.report.zone_tables import (
+    comparison_rows,
+    comparison_table,
+    frequency_tables,
+)
 from engine.results import Assessment, ReceptorField, ReceptorResult
 from engine.units import flux_density_text, significant
 
@@ -21,14 +27,21 @@ def receptor_section(
     fields = [_field_row(r, f, words) for r in assessment.receptors for f in r.fields]
     unit = words.unit
     field_heads = (
-        "Receptor", "Load case", "Frequency", f"Bx By Bz, RMS [{unit}]",
-        f"Resultant [{unit}]", f"Semi-axes, RMS [{unit}]", "Notes",
+        "Receptor, load case", "Frequency", f"Bx [{unit}]", f"By [{unit}]",
+        f"Bz [{unit}]", f"B [{unit}]", f"Major axis [{unit}]", f"Minor axis [{unit}]",
     )  # fmt: skip
-    shares = (15, 16, 11, 19, 11, 15, 13)
-    story: list[Flowable] = [table(field_heads, fields, shares, width)]
+    shares = (28, 11, 10, 10, 10, 10, 10.5, 10.5)
+    text = (
+        "RMS values of the three axes, their resultant B, and the semi-axes of the "
+        "ellipse that the field runs through at each frequency."
+    )
+    made = table(field_heads, fields, shares, width)
+    story: list[Flowable] = [paragraph(text), made]
     rows = [row for r in assessment.receptors for row in comparison_rows(r, words)]
     if rows:
         story.append(comparison_table("Receptor", rows, words, width))
+        compared = [c for r in assessment.receptors for c in r.comparisons]
+        story += frequency_tables("Receptor", compared, words, width)
     return story
 
 
@@ -80,23 +93,28 @@ def _field_row(
     result: ReceptorResult, found: ReceptorField, words: Wording
 ) -> tuple[str, ...]:
     """One load case: a line for each frequency, and one for the AC total."""
-    title, case = result.receptor.title, words.name(found.case)
+    notes = [result.receptor.title, words.name(found.case)]
     if found.reason:
-        return (title, case, "–", "–", "–", "–", found.reason)
-    parts = [np.abs(b) for b in found.components]
-    at = ["DC" if f == 0 else f"{f:g} Hz" for f in found.frequencies]
-    axes = [", ".join(words.value(float(b)) for b in part) for part in parts]
-    whole = [words.value(float(np.linalg.norm(part))) for part in parts]
-    ellipses = [
-        " × ".join(words.value(float(b)) for b in pair) for pair in found.semi_axes
-    ]
-    if found.ac is not None:
-        at.append("AC total")
-        whole.append(words.value(found.ac))
-    notes = ["near field, even current assumed"] if found.near_field else []
+        return ("\n".join([*notes, found.reason]), *["–"] * 7)
+    if found.near_field:
+        notes.append("near field, even current assumed")
     if found.is_bound:
         notes.append(f"upper bound: {found.bound_reason}")
     if found.measured_ratio is not None:
         notes.append(f"measured / calculated {significant(found.measured_ratio)}")
-    columns = (at, axes, whole, ellipses, notes)
-    return (title, case, *("\n".join(lines) for lines in columns))
+    parts = np.abs(found.components)
+    whole = np.linalg.norm(parts, axis=1)
+    largest = float(max(whole, default=0.0))
+    at = [frequency_text(float(f)) for f in found.frequencies]
+    lines = [_column(parts[:, k], largest, words) for k in range(3)]
+    sizes = _column(whole, largest, words)
+    axes = [_column(found.semi_axes[:, k], largest, words) for k in range(2)]
+    if found.ac is not None:
+        at.append("AC total")
+        sizes.append(words.value(found.ac))
+    columns = ("\n".join(column) for column in (at, *lines, sizes, *axes))
+    return ("\n".join(notes), *columns)
+
+
+def _column(values: NDArray[np.float64], whole: float, words: Wording) -> list[str]:
+    return [words.small(float(value), whole) for value in values]

@@ -55,6 +55,9 @@ SUBHEADING = ParagraphStyle(
 TITLE = ParagraphStyle("title", parent=HEADING, fontSize=17, leading=21, spaceBefore=0)
 NOTE = ParagraphStyle("note", parent=BODY, fontSize=7.5, leading=10)
 BULLET = ParagraphStyle("bullet", parent=BODY, leftIndent=10, bulletIndent=0)
+SMALL_BULLET = ParagraphStyle(
+    "small bullet", parent=BULLET, fontSize=7.5, leading=10, spaceAfter=2.5
+)
 
 
 def paragraph(text: str, style: ParagraphStyle = BODY) -> Paragraph:
@@ -108,11 +111,9 @@ def subheading(text: str, key: str = "", *, room: float = 32.0) -> list[Flowable
     return [CondPageBreak(room * mm), paragraph(text[:MOST_IN_HEADING], SUBHEADING)]
 
 
-def bullets(texts: Sequence[str]) -> list[Flowable]:
+def bullets(texts: Sequence[str], style: ParagraphStyle = BULLET) -> list[Flowable]:
     """Texts as a list."""
-    return [
-        Paragraph(escape(printable(text)), BULLET, bulletText="–") for text in texts
-    ]
+    return [Paragraph(escape(printable(text)), style, bulletText="–") for text in texts]
 
 
 class ContentsLine(Flowable):  # type: ignore[misc]

@@ -26,6 +26,11 @@ def length(metres: float, unit: str) -> str:
     return text.replace("-", "−")
 
 
+def frequency_text(hertz: float) -> str:
+    """A frequency as tables have it: "DC" or "150 Hz"."""
+    return "DC" if hertz == 0 else f"{hertz:g} Hz"
+
+
 def place(point: Iterable[float], unit: str) -> str:
     """A point as "x, y, z", every coordinate with the same digits."""
     values = list(point)

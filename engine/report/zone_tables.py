@@ -10,7 +10,7 @@ from engine.proof_words import proof_of_comparison, proof_of_maximum
 from engine.report.names import Wording
 from engine.report.summary import state_text
 from engine.report.text import bullets, paragraph, table
-from engine.report.words import length, place
+from engine.report.words import frequency_text, length, place
 from engine.results import (
     Assessment,
     AtFrequency,
@@ -37,6 +37,8 @@ def zone_section(
     rows = [row for z in assessment.zones for row in comparison_rows(z, words)]
     if rows:
         story.append(comparison_table("Zone", rows, words, width))
+        compared = [c for z in assessment.zones for c in z.comparisons]
+        story += frequency_tables("Zone", compared, words, width)
     else:
         story.append(paragraph("No zone names a reference level."))
     reasons = [f"{z.zone.title}: {z.reason}" for z in assessment.zones if z.reason]
@@ -118,8 +120,6 @@ def _marks(comparison: Comparison, words: Wording) -> str:
         lines.append("near field, even current assumed")
     if details is not None and details.is_bound:
         lines.append(f"upper bound: {details.bound_reason}")
-    if details is not None and len(details.by_frequency) > 1:
-        lines += [_at_frequency(part, words) for part in details.by_frequency]
     if comparison.other_kind_ratio is not None:
         other = "DC" if comparison.kind == "AC" else "AC"
         lines.append(f"{other} ratio {significant(comparison.other_kind_ratio)}")
@@ -135,12 +135,42 @@ def _masked(share: float) -> str:
     return f"masked {100 * share:.0f} %"
 
 
-def _at_frequency(part: AtFrequency, words: Wording) -> str:
-    text = f"{part.frequency:g} Hz: {words.value(part.value)}"
-    if part.level is None:
-        return text
-    text += f", level {words.limit(part.level)}"
-    return text if part.ratio is None else f"{text}, ratio {significant(part.ratio)}"
+def frequency_tables(
+    what: str, comparisons: Sequence[Comparison], words: Wording, width: float
+) -> list[Flowable]:
+    """Comparisons over several frequencies, taken apart; empty without any."""
+    rows = [
+        row
+        for c in comparisons
+        if c.details is not None and len(c.details.by_frequency) > 1
+        for row in _frequency_rows(c, c.details.by_frequency, words)
+    ]
+    if not rows:
+        return []
+    heads = (
+        f"{what}, reference level, load case", "Frequency", f"B [{words.unit}]",
+        f"L [{words.unit}]", "B/L",
+    )  # fmt: skip
+    text = "By frequency, at the place of the comparison, in the level's own basis:"
+    return [paragraph(text), table(heads, rows, (48, 13, 13, 13, 13), width)]
+
+
+def _frequency_rows(
+    c: Comparison, parts: Sequence[AtFrequency], words: Wording
+) -> Iterable[tuple[str, ...]]:
+    """One row whose cells have a line for each frequency."""
+    largest = max(part.value for part in parts)
+    yield (
+        f"{words.name(c.place)}\n{words.name(c.level)}\n{words.name(c.case)}",
+        "\n".join(frequency_text(part.frequency) for part in parts),
+        "\n".join(words.small(part.value, largest) for part in parts),
+        "\n".join(
+            "–" if part.level is None else words.limit(part.level) for part in parts
+        ),
+        "\n".join(
+            "–" if part.ratio is None else significant(part.ratio) for part in parts
+        ),
+    )
 
 
 def _maxima_table(
@@ -155,7 +185,7 @@ def _maxima_table(
                 for h, b in details.by_height
             )
             spectrum = "\n".join(
-                f"{part.frequency:g} Hz: {words.value(part.value)}"
+                f"{frequency_text(part.frequency)}: {words.small(part.value, m.value)}"
                 for part in details.by_frequency
             )
             notes = [m.reason] if m.reason else []
