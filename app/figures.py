@@ -5,12 +5,12 @@ from __future__ import annotations
 from pathlib import Path
 
 from PySide6.QtCore import QBuffer, QIODevice, QPoint, QRect, QSize, Qt
-from PySide6.QtGui import QColor, QFontMetrics, QImage, QPainter
+from PySide6.QtGui import QColor, QFontMetrics, QGuiApplication, QImage, QPainter
 from PySide6.QtSvg import QSvgGenerator
 from PySide6.QtWidgets import QFileDialog, QWidget
 
 from app.copying import captioned
-from app.theme import BODY, LIGHT, STEP
+from app.theme import BODY, LIGHT, STEP, Theme
 from engine.written_file import write_file
 
 #: Kinds of files for figures that have numbers behind them.
@@ -28,6 +28,31 @@ def png(image: QImage) -> bytes:
 def widget_png(widget: QWidget, caption: str) -> bytes:
     """The picture of a widget with its caption beneath it."""
     return png(captioned(widget, caption))
+
+
+def with_caption(image: QImage, caption: str, theme: Theme) -> QImage:
+    """A picture with a line of text beneath it."""
+    ratio = image.devicePixelRatio()
+    width, height = round(image.width() / ratio), round(image.height() / ratio)
+    font = QGuiApplication.font()
+    font.setPixelSize(BODY)
+    flags = int(Qt.TextFlag.TextWordWrap | Qt.AlignmentFlag.AlignLeft)
+    box = QRect(2 * STEP, height + STEP, width - 4 * STEP, 100 * STEP)
+    needed = QFontMetrics(font).boundingRect(box, flags, caption).height()
+    whole = QImage(
+        image.width(),
+        image.height() + round(ratio * (needed + 2 * STEP)),
+        QImage.Format.Format_RGB32,
+    )
+    whole.setDevicePixelRatio(ratio)
+    whole.fill(QColor(theme.paper))
+    painter = QPainter(whole)
+    painter.drawImage(QPoint(0, 0), image)
+    painter.setFont(font)
+    painter.setPen(QColor(theme.text))
+    painter.drawText(box, flags, caption)
+    painter.end()
+    return whole
 
 
 def widget_svg(widget: QWidget, caption: str) -> bytes:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 
+from PySide6.QtCore import QSize
 from PySide6.QtWidgets import QGridLayout, QLabel, QVBoxLayout, QWidget
 
 from app.cycle_values import component_text, ellipse_text, own_ellipse, wave_text
@@ -13,6 +14,9 @@ from app.views.cycle_plots import CurvesPlot, EllipsePlot
 from app.views.turning_phasors import TurningPhasors
 from engine.cycle_view import CycleView, FieldEllipse, Wave
 from engine.layout import Layout
+
+#: Smaller, its plots could not be read. [logical pixels]
+_LEAST = QSize(140 * STEP, 110 * STEP)
 
 
 class CycleBoard(QWidget):
@@ -29,6 +33,7 @@ class CycleBoard(QWidget):
         self._heads = {name: QLabel() for name in ("ellipse", "phasors", "wave")}
         self._shape = Words()
         self.setAutoFillBackground(True)
+        self.setMinimumSize(_LEAST)
         left, right = QVBoxLayout(), QVBoxLayout()
         for box in (left, right):
             box.setSpacing(STEP)

@@ -26,7 +26,7 @@ from app.field_store import load_kernels
 from app.figures import FIGURE_KINDS, ask_figure, write_figure
 from app.messages import Messages
 from app.page import Page
-from app.panels.panel import Words, button
+from app.panels.panel import Words, button, scrolled
 from app.theme import LIGHT, STEP, qt_palette, theme_for
 from app.view_state import ViewState
 from app.views.cycle_board import CycleBoard, first_component
@@ -124,7 +124,9 @@ class CyclePage(Page):
         self.column.addLayout(head)
         for widget in (self.reason, self.summary):
             self.column.addWidget(widget)
-        self.column.addWidget(self.board, 1)
+        # In a low window the board keeps its size and is scrolled.
+        self._area = scrolled(self.board)
+        self.column.addWidget(self._area, 1)
         self._controls = QWidget()
         self._controls.setLayout(foot)
         foot.setContentsMargins(0, 0, 0, 0)
@@ -236,7 +238,7 @@ class CyclePage(Page):
         """Say why there is nothing to see; nothing else shows then."""
         self.reason.setText(sentence)
         self.reason.setVisible(bool(sentence))
-        for widget in (self.summary, self.board, self._controls, self.now):
+        for widget in (self.summary, self._area, self._controls, self.now):
             widget.setVisible(not sentence)
         self.frequencies.setVisible(not sentence)
 

@@ -33,6 +33,8 @@ _TURN = 0.35
 NEAREST, FARTHEST = 0.05, 2000.0
 #: An axis this close to the line of sight is seen end-on. [sine of the angle]
 END_ON = 0.08
+#: What is fitted leaves this much air about it.
+_AIR = 1.08
 
 
 @dataclass(frozen=True)
@@ -176,17 +178,38 @@ class SpaceCamera:
         target = np.asarray(self.target) + change * self.metres_per_pixel * way
         return replace(self, distance=distance, target=_point(target))
 
-    def fitted(self, low: Point3, high: Point3) -> SpaceCamera:
-        """Holding a box, whatever the direction. [m]"""
-        corners = _corners(low, high)
-        middle = 0.5 * (np.asarray(low) + np.asarray(high))
-        camera = replace(self, target=_point(middle), distance=1.0)
-        seen = (corners - middle) @ camera.axes.T
-        aspect = self.width / self.height
-        needed = np.maximum(np.abs(seen[:, 0]) / aspect, np.abs(seen[:, 1])) / _slope()
-        distance = needed if self.parallel else needed + seen[:, 2]
-        best = 1.08 * float(np.max(distance))
-        return replace(camera, distance=min(FARTHEST, max(NEAREST, best)))
+    def fitted(self, points: npt.ArrayLike) -> SpaceCamera:
+        """Holding all points (n, 3), in the same direction. [m]"""
+        places = np.asarray(points, float).reshape(-1, 3)
+        right, up, back = self.axes
+        seen = places @ self.axes.T
+        slopes = np.array([_slope() * self.width / self.height, _slope()])
+        if self.parallel:
+            low, high = seen.min(axis=0), seen.max(axis=0)
+            middle = 0.5 * (low + high)
+            distance = float(np.max((high - low)[:2] / (2.0 * slopes)))
+        else:
+            middle, distance = _held(seen, slopes)
+        target = middle[0] * right + middle[1] * up + middle[2] * back
+        distance = min(FARTHEST, max(NEAREST, _AIR * distance))
+        return replace(self, target=_point(target), distance=distance)
+
+
+def _held(seen: Floats, slopes: Floats) -> tuple[Floats, float]:
+    """Target and distance at which an eye sees points (n, 3) along its axes.
+
+    An eye further back by z sees z times the slope more to every side: the planes
+    that bound its sight touch the points, across and upwards each on its own.
+    """
+    depth = 0.5 * (seen[:, 2].min() + seen[:, 2].max())
+    behind = seen[:, 2] - depth
+    middle, distance = [], 0.0
+    for side, slope in zip(seen[:, :2].T, slopes, strict=True):
+        high = float(np.max(side + slope * behind))
+        low = float(np.min(side - slope * behind))
+        middle.append(0.5 * (low + high))
+        distance = max(distance, (high - low) / (2.0 * slope))
+    return np.array([*middle, depth]), distance
 
 
 def along_axis(
@@ -218,13 +241,6 @@ def along_axis(
 
 def _slope() -> float:
     return math.tan(math.radians(0.5 * ANGLE))
-
-
-def _corners(low: Point3, high: Point3) -> Floats:
-    return np.array(
-        [(x, y, z) for x in (low[0], high[0]) for y in (low[1], high[1])
-         for z in (low[2], high[2])]
-    )  # fmt: skip
 
 
 def _point(at: Floats) -> Point3:

@@ -15,7 +15,7 @@ from PySide6.QtWidgets import QWidget
 from app.space_maps import SpaceMap
 from app.theme import Theme
 from app.views.space_camera import SpaceCamera
-from app.views.space_drawn import Drawn, Faces, Lines
+from app.views.space_drawn import Drawn, Faces, Lines, outline, rgba
 
 #: Depth is tested and written.
 _OPAQUE: dict[Any, Any] = {
@@ -37,8 +37,8 @@ _CLEAR: dict[Any, Any] = {
 }  # fmt: skip
 _ON_TOP: dict[Any, Any] = {**_CLEAR, GL.GL_DEPTH_TEST: False}
 
-#: Order of drawing: solids, lines, maps from the farthest, clear faces, on top.
-_ORDER = {"opaque": 0, "lines": 1, "maps": 10, "clear": 50, "on top": 90}
+#: Order of drawing: solids, maps from the farthest, clear faces, lines, on top.
+_ORDER = {"opaque": 0, "maps": 10, "clear": 50, "lines": 60, "on top": 90}
 
 
 class SpaceCanvas(gl.GLViewWidget):
@@ -58,7 +58,7 @@ class SpaceCanvas(gl.GLViewWidget):
         self._solid = _mesh(_OPAQUE, _ORDER["opaque"])
         self._clear = _mesh(_CLEAR, _ORDER["clear"])
         self._lines: list[gl.GLLinePlotItem] = []
-        self._more: list[gl.GLLinePlotItem] = []
+        self._outlines: list[gl.GLLinePlotItem] = []
         self._maps: list[tuple[np.ndarray, gl.GLImageItem]] = []
         for item in (self._solid, self._clear):
             self.addItem(item)
@@ -74,13 +74,8 @@ class SpaceCanvas(gl.GLViewWidget):
         self._lines = self._with_lines(self._lines, drawn.lines)
         self.update()
 
-    def show_marks(self, lines: Sequence[Lines]) -> None:
-        """Draw other marks beside the scene, such as handles and axes."""
-        self._more = self._with_lines(self._more, lines)
-        self.update()
-
-    def show_maps(self, maps: Sequence[SpaceMap]) -> None:
-        """Draw other maps."""
+    def show_maps(self, maps: Sequence[SpaceMap], theme: Theme) -> None:
+        """Draw other maps, each with its outline."""
         for _, item in self._maps:
             self.removeItem(item)
         self._maps = []
@@ -101,6 +96,11 @@ class SpaceCanvas(gl.GLViewWidget):
             )
             self._maps.append((middle, item))
             self.addItem(item)
+        outlines = [outline(one.place.plane) for one in maps]
+        ink = rgba(theme.line)
+        self._outlines = self._with_lines(
+            self._outlines, [Lines(ends, ink) for ends in outlines]
+        )
         self._sort_maps()
         self.update()
 
@@ -111,7 +111,7 @@ class SpaceCanvas(gl.GLViewWidget):
         self.update()
 
     def image(self) -> QImage:
-        """What is seen, as a picture."""
+        """What is seen, as a picture; letters too, which a widget's grab loses."""
         return self.grabFramebuffer()
 
     # -- what the base class asks -------------------------------------------------
@@ -146,10 +146,10 @@ class SpaceCanvas(gl.GLViewWidget):
             if not len(line.ends):
                 continue
             item = gl.GLLinePlotItem(
-                pos=line.ends, color=line.colour, width=line.width, mode="lines",
-                antialias=True, glOptions="opaque",
+                pos=np.ascontiguousarray(line.ends), color=line.colour,
+                width=line.width, mode="lines", antialias=True, glOptions="opaque",
             )  # fmt: skip
-            item.setGLOptions(dict(_ON_TOP if line.on_top else _OPAQUE))
+            item.setGLOptions(dict(_ON_TOP if line.on_top else _CLEAR))
             item.setDepthValue(_ORDER["on top" if line.on_top else "lines"])
             self.addItem(item)
             made.append(item)
@@ -166,7 +166,8 @@ class SpaceCanvas(gl.GLViewWidget):
 def _mesh(options: dict[Any, Any], order: int) -> gl.GLMeshItem:
     # An empty mesh cannot be drawn: a point stands for it until there is one.
     item = gl.GLMeshItem(
-        vertexes=np.zeros((1, 3, 3), np.float32), faceColors=np.zeros((1, 4)),
+        vertexes=np.zeros((1, 3, 3), np.float32),
+        faceColors=np.zeros((1, 3, 4), np.float32),
         smooth=False, computeNormals=False, shader=None,
     )  # fmt: skip
     item.setGLOptions(dict(options))
@@ -177,7 +178,9 @@ def _mesh(options: dict[Any, Any], order: int) -> gl.GLMeshItem:
 def _fill(item: gl.GLMeshItem, faces: Faces) -> None:
     item.setVisible(len(faces.corners) > 0)
     if len(faces.corners):
+        # Without a list of vertices a colour is wanted for every corner.
         item.setMeshData(
-            vertexes=faces.corners, faceColors=faces.colours,
+            vertexes=faces.corners,
+            faceColors=np.repeat(faces.colours[:, None], 3, axis=1),
             smooth=False, computeNormals=False,
         )  # fmt: skip

@@ -5,7 +5,14 @@ from __future__ import annotations
 from collections.abc import Callable
 
 from PySide6.QtCore import QSignalBlocker, Signal
-from PySide6.QtWidgets import QComboBox, QLabel, QLineEdit, QPushButton, QWidget
+from PySide6.QtWidgets import (
+    QComboBox,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QPushButton,
+    QWidget,
+)
 
 from app.panels.panel import button
 from app.theme import STEP
@@ -83,15 +90,13 @@ class SpaceControls(QWidget):
                                  40, self.place_typed.emit)  # fmt: skip
         self._row.addWidget(button("Export picture …", "As PNG, with its caption",
                                    self.export_asked.emit))  # fmt: skip
-        self.way.parentWidget()
         self.show_axis("")
 
     def show_axis(self, axis: str) -> None:
         """Show along which axis the selection moves; empty for none."""
         for name, made in self.axes.items():
             made.setChecked(name == axis)
-        for widget in (self.way, self._labels[self.way]):
-            widget.setVisible(bool(axis))
+        self._around(self.way).setVisible(bool(axis))
         self._row.invalidate()
 
     def show_planes(self, heights: str, upright: str, place: str) -> None:
@@ -103,19 +108,23 @@ class SpaceControls(QWidget):
                 field.setCursorPosition(0)
         with QSignalBlocker(self.upright):
             self.upright.setCurrentIndex(UPRIGHT.index(upright))
-        self.place.setVisible(upright != UPRIGHT[0])
+        self._around(self.place).setVisible(upright != UPRIGHT[0])
         self._row.invalidate()
+
+    @staticmethod
+    def _around(field: QLineEdit) -> QWidget:
+        """The field together with its label."""
+        both = field.parentWidget()
+        assert both is not None
+        return both
 
     def _on_axis(self, axis: str) -> None:
         self.axis_chosen.emit(axis if self.axes[axis].isChecked() else "")
 
-    _labels: dict[QLineEdit, QLabel]
-
     def _field(
         self, label: str, tip: str, width: int, entered: Callable[[str], object]
     ) -> QLineEdit:
-        if not hasattr(self, "_labels"):
-            self._labels = {}
+        """A field with its label, which stay together."""
         field = QLineEdit()
         field.setToolTip(tip)
         field.setAccessibleName(label or "Place of the upright map")
@@ -126,10 +135,14 @@ class SpaceControls(QWidget):
             entered(field.text())
 
         field.returnPressed.connect(on_return)
+        both = QWidget()
+        box = QHBoxLayout(both)
+        box.setContentsMargins(0, 0, 0, 0)
+        box.setSpacing(STEP)
         if label:
             words = QLabel(label)
             words.setBuddy(field)
-            self._labels[field] = words
-            self._row.addWidget(words)
-        self._row.addWidget(field)
+            box.addWidget(words)
+        box.addWidget(field)
+        self._row.addWidget(both)
         return field

@@ -7,6 +7,8 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
+from engine.sampling import Plane
+
 Floats = npt.NDArray[np.float64]
 Singles = npt.NDArray[np.float32]
 
@@ -64,6 +66,8 @@ class Letters:
         [m]
     rank : int
         Where texts would overlap, the lower rank is drawn.
+    lift : float
+        Above its place. [px]
     """
 
     at: tuple[float, float, float]
@@ -71,6 +75,7 @@ class Letters:
     colour: str
     room: float = 0.0
     rank: int = 0
+    lift: float = 0.0
     bold: bool = False
 
 
@@ -109,7 +114,11 @@ def lit(corners: Floats, colours: Floats) -> Faces:
     shades = _SHADE + (1.0 - _SHADE) * cosine
     shaded = colours.copy()
     shaded[:, :3] *= shades[:, None]
-    return Faces(corners.astype(np.float32), shaded.astype(np.float32))
+    # Indexing leaves arrays in any order; what goes to the screen is read in rows.
+    return Faces(
+        np.ascontiguousarray(corners, np.float32),
+        np.ascontiguousarray(shaded, np.float32),
+    )
 
 
 def joined(parts: list[Faces]) -> Faces:
@@ -120,6 +129,13 @@ def joined(parts: list[Faces]) -> Faces:
         np.concatenate([part.corners for part in parts]),
         np.concatenate([part.colours for part in parts]),
     )
+
+
+def outline(plane: Plane) -> Singles:
+    """(8, 3) the edges of a plane as pairs of ends. [m]"""
+    a, u, v = (np.array(x) for x in (plane.origin, plane.first, plane.second))
+    corners = [a, a + u, a + u, a + u + v, a + u + v, a + v, a + v, a]
+    return np.array(corners, np.float32)
 
 
 def rgba(colour: str, opacity: float = 1.0) -> tuple[float, float, float, float]:

@@ -17,6 +17,7 @@ from app.views.space_drawn import Letters
 #: A text shows where what it belongs to is this long in the picture. [px]
 _LEAST = 9.0
 _HANDLE = 6.0
+_ARM = 34.0
 
 
 @dataclass(frozen=True)
@@ -55,6 +56,7 @@ def paint_letters(
             continue
         metrics = inks.bold_metrics if text.bold else inks.small_metrics
         width = inks.width(text.text, bold=text.bold)
+        y -= text.lift
         box = QRectF(x - width / 2 - 2, y - metrics.height() / 2, width + 4,
                      metrics.height())  # fmt: skip
         if any(box.intersects(other) for other in taken):
@@ -102,6 +104,23 @@ def paint_dimension(
     )
 
 
+def paint_way(
+    painter: QPainter, camera: SpaceCamera, at: Point3, axis: Point3, inks: Inks
+) -> None:
+    """Paint the line along which something can be moved, dashed."""
+    reach = 0.4 * camera.distance
+    ends = [
+        np.array(at) - reach * np.array(axis),
+        np.array(at) + reach * np.array(axis),
+    ]
+    flat, _ = camera.pixels(ends)
+    if np.isfinite(flat).all():
+        pen = QPen(QColor(inks.theme.accent), 1.4)
+        pen.setDashPattern([5.0, 4.0])
+        painter.setPen(pen)
+        painter.drawLine(QPointF(*flat[0]), QPointF(*flat[1]))
+
+
 def paint_handles(
     painter: QPainter,
     camera: SpaceCamera,
@@ -118,6 +137,22 @@ def paint_handles(
         fill = inks.theme.accent if handle.name == held else inks.theme.paper
         painter.setBrush(QColor(fill))
         painter.drawEllipse(QPointF(x, y), _HANDLE, _HANDLE)
+
+
+def paint_axes(painter: QPainter, camera: SpaceCamera, inks: Inks) -> None:
+    """Paint the directions of x, y and z into the lower left corner."""
+    middle = QPointF(11 * _HANDLE, camera.height - 11 * _HANDLE)
+    right, up, _ = camera.axes
+    painter.setFont(inks.small)
+    for k, letter in enumerate("xyz"):
+        way = QPointF(float(right[k]), -float(up[k]))
+        if math.hypot(way.x(), way.y()) < 0.15:
+            continue
+        painter.setPen(QPen(QColor(inks.theme.line), 1.4))
+        painter.drawLine(middle, middle + _ARM * way)
+        at = middle + (_ARM + 9) * way
+        painter.setPen(QColor(inks.theme.text))
+        painter.drawText(at + QPointF(-3, 4), letter)
 
 
 def handle_at(
