@@ -1,4 +1,4 @@
-"""Pages that show the layout otherwise than drawn: the field over one period."""
+"""Pages that show the layout otherwise than drawn: in space, and over one period."""
 
 from __future__ import annotations
 
@@ -9,6 +9,7 @@ from PySide6.QtCore import QObject
 from app.cycle_values import CyclePlace
 from app.readout_values import Readout
 from app.views.cycle_page import CyclePage
+from app.views.space_view import SpaceView
 from engine.errors import UserError
 
 if TYPE_CHECKING:
@@ -22,12 +23,16 @@ class ViewPages(QObject):
         super().__init__(window)
         self._window = window
         parts = (window.document, window.view_state, window.messages)
-        self.cycle = CyclePage(*parts)
-        for page in (self.cycle,):
+        self.cycle, self.space = CyclePage(*parts), SpaceView(*parts)
+        for page in (self.cycle, self.space):
             window.pages.addWidget(page)
             page.closed.connect(window.show_drawing)
         self._pointed: CyclePlace | None = None
         window.readout.shown.connect(self._on_read)
+
+    def open_space(self) -> None:
+        """Show the layout in space."""
+        self._window.show_page(self.space)
 
     def open_cycle(self) -> None:
         """Show the field over one period: at the selected receptor, or the pointer.
@@ -60,6 +65,7 @@ class ViewPages(QObject):
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self.cycle.close_worker()
+        self.space.close_worker()
 
     def _on_read(self, found: Readout | None) -> None:
         # The menu takes the pointer off the drawing: the last place is meant then.
