@@ -22,6 +22,7 @@ from PySide6.QtWidgets import (
 from app.document import Document
 from app.map_request import height_text, heights_of
 from app.theme import STEP, theme_for
+from app.variant_acts import with_shown
 from app.view_state import LAYERS, ViewState
 from engine.assessment import zone_floor
 from engine.layout import Layout
@@ -29,11 +30,12 @@ from engine.layout import Layout
 QUANTITY = "RMS flux density"
 
 
-def caption(layout: Layout, view_state: ViewState) -> str:
+def caption(document: Document, view_state: ViewState) -> str:
     """The caption in one line, as exports print it."""
-    look = view_state.look
+    layout, look = document.layout, view_state.look
     _, heights = heights_of(layout, look)
-    return f"{QUANTITY} · {heights} · {case_text(layout, look.case)}"
+    text = f"{QUANTITY} · {heights} · {case_text(layout, look.case)}"
+    return with_shown(document, text)
 
 
 def case_title(layout: Layout, case: str) -> str:
@@ -70,6 +72,7 @@ class CaptionBar(QWidget):
         self._height = _choice("Height of the map above the datum [m]")
         self._case = _choice("Load case of the map")
         self._storey = _choice("Storey that is drawn upon")
+        self._variant = _choice("Base or variant that is shown and edited")
         self._state = QLabel()
         self._layers = QToolButton()
         self._layers.setText("Layers")
@@ -82,7 +85,9 @@ class CaptionBar(QWidget):
         row.setSpacing(STEP)
         row.addWidget(QLabel(QUANTITY))
         self._dots: dict[QComboBox, QLabel] = {}
-        for widget in (self._zone, self._height, self._case, self._storey):
+        for widget in (
+            self._zone, self._height, self._case, self._variant, self._storey,
+        ):  # fmt: skip
             self._dots[widget] = QLabel("·")
             row.addWidget(self._dots[widget])
             row.addWidget(widget)
@@ -93,7 +98,9 @@ class CaptionBar(QWidget):
         self._height.activated.connect(self._on_height)
         self._case.activated.connect(self._on_case)
         self._storey.activated.connect(self._on_storey)
+        self._variant.activated.connect(self._on_variant)
         document.changed.connect(self._fill)
+        document.whole_changed.connect(self._fill)
         view_state.changed.connect(self._fill)
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
         self._fill()
@@ -145,6 +152,11 @@ class CaptionBar(QWidget):
         _refill(self._height, self._heights(layout), look.height)
         cases = [(_with_case(case.title), case.id) for case in layout.cases]
         _refill(self._case, cases, look.case)
+        variants: list[tuple[str, object]] = [("base", None)]
+        variants += [(v.title, v.id) for v in self._document.whole.variants]
+        chosen = self._document.variant
+        _refill(self._variant, variants, None if chosen is None else chosen.id)
+        self._show(self._variant, len(variants) > 1)
         storeys = [(storey.title, storey.id) for storey in layout.storeys]
         _refill(self._storey, storeys, look.storey)
         self._show_storey()
@@ -176,6 +188,9 @@ class CaptionBar(QWidget):
 
     def _on_case(self, index: int) -> None:
         self._view_state.set(case=self._case.itemData(index))
+
+    def _on_variant(self, index: int) -> None:
+        self._document.choose(self._variant.itemData(index))
 
     def _on_storey(self, index: int) -> None:
         self._view_state.set(storey=self._storey.itemData(index))

@@ -3,9 +3,9 @@
 Every change comes in through `edit`. A drag shows `preview` after `preview` and ends
 with one `edit` or with `revert`. Views and panels listen and never refresh by hand.
 
-The truth is `whole`: the base with its variants, as files hold it. What views and panels
-read is the layout that is shown: the base, or one variant applied to it. What is edited
-while a variant is chosen becomes part of the variant.
+The truth is `whole`: the base with its variants, as files hold it. What views and
+panels read is the layout that is shown: the base, or one variant applied to it. What
+is edited while a variant is chosen becomes part of the variant.
 """
 
 from __future__ import annotations

@@ -51,6 +51,7 @@ from app.side_panels import WIDTH, SidePanels
 from app.theme import DARK, LIGHT, STEP, Theme, apply
 from app.tool_row import ToolRow
 from app.toolbox import Toolbox
+from app.variant_band import VariantBand
 from app.view_pages import ViewPages
 from app.view_state import ViewState
 from app.views.height_rail import HeightRail
@@ -104,6 +105,7 @@ class MainWindow(QMainWindow):
         self.message_bar, self.ask_bar = MessageBar(self.messages), AskBar()
         self.arrange = Arrange(document, self.ask_bar)
         self.caption, self.strip = CaptionBar(document, state), EntryStrip()
+        self.band = VariantBand(document, self.messages)
         self.drawings = Drawings(document, state, self.theme)
         self.rail = HeightRail(document, state)
         self.margins = MarginsPanel(document)
@@ -113,7 +115,8 @@ class MainWindow(QMainWindow):
         box = QVBoxLayout(column)
         box.setContentsMargins(0, 0, 0, 0)
         box.setSpacing(0)
-        for widget in (self.caption, self.strip, self.message_bar, self.ask_bar):
+        bars = (self.caption, self.band, self.strip, self.message_bar, self.ask_bar)
+        for widget in bars:
             box.addWidget(widget)
         drawing = QHBoxLayout()
         drawing.setSpacing(0)
@@ -216,7 +219,7 @@ class MainWindow(QMainWindow):
         self.section.closed.connect(self.show_drawing)
         for page in (self.new_page, self.guide, self.cautions, self.about):
             page.closed.connect(self.show_drawing)
-        self.new_page.chosen.connect(self._start_with)
+        self.new_page.chosen.connect(self.files.new)
         self.remarks.go_to.connect(self._go_to_place)
         self.remarks.counted.connect(
             lambda count: self.panels.rename(
@@ -272,7 +275,7 @@ class MainWindow(QMainWindow):
 
     def caption_text(self) -> str:
         """The caption of the drawing in one line, as exports print it."""
-        return caption(self.document.layout, self.view_state)
+        return caption(self.document, self.view_state)
 
     def go_to(self, at: object, height: object, case: str) -> None:
         """Show a place: the drawing there, the map at that height, in that case."""
@@ -285,9 +288,6 @@ class MainWindow(QMainWindow):
         if isinstance(at, tuple):
             self.show_drawing()
             self.drawings.look_at(at)
-
-    def _start_with(self, layout: object) -> None:
-        self.files.new(layout)
 
     def _take_margins(self, margins: object) -> None:
         self.margins.set_margins(margins)

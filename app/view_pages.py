@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QObject
 
 from app.cycle_values import CyclePlace
+from app.pages.variants_page import VariantsPage
 from app.readout_values import Readout
 from app.views.cycle_page import CyclePage
 from app.views.space_view import SpaceView
@@ -27,12 +28,20 @@ class ViewPages(QObject):
         for page in (self.cycle, self.space):
             window.pages.addWidget(page)
             page.closed.connect(window.show_drawing)
+        self.variants = VariantsPage(*parts)
+        window.pages.addWidget(self.variants)
+        self.variants.closed.connect(window.show_drawing)
+        window.band.opened.connect(self.open_variants)
         self._pointed: CyclePlace | None = None
         window.readout.shown.connect(self._on_read)
 
     def open_space(self) -> None:
         """Show the layout in space."""
         self._window.show_page(self.space)
+
+    def open_variants(self) -> None:
+        """Show base and variants side by side."""
+        self._window.show_page(self.variants)
 
     def open_cycle(self) -> None:
         """Show the field over one period: at the selected receptor, or the pointer.
@@ -65,6 +74,7 @@ class ViewPages(QObject):
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self.cycle.close_worker()
+        self.variants.close_worker()
         self.space.close_worker()
 
     def _on_read(self, found: Readout | None) -> None:

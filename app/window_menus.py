@@ -202,6 +202,8 @@ class WindowMenus(QObject):
                         "Let the map's range hold the values that it shows"),
                 Command("Field over one period", w.view_pages.open_cycle, "F8",
                         "At the selected receptor, or at the pointer"),
+                Command("Variants", w.view_pages.open_variants, "Ctrl+Shift+V",
+                        "List, table and maps of base and variants"),
                 LINE,
                 Command("Hold as before", self._hold, "F7",
                         "Keep the present margins beside the coming ones"),
