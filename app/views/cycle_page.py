@@ -113,8 +113,8 @@ class CyclePage(Page):
         self.slider.valueChanged.connect(self._on_instant)
         export = button("Export …", "As PNG, SVG or CSV, with its caption", self.export)
         head = QHBoxLayout()
-        for widget in (self.places, self.frequencies):
-            head.addWidget(widget)
+        for choice in (self.places, self.frequencies):
+            head.addWidget(choice)
         head.addStretch(1)
         head.addWidget(export)
         foot = QHBoxLayout()

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 
 from PySide6.QtCore import QSignalBlocker, Signal
 from PySide6.QtWidgets import (
@@ -55,14 +56,14 @@ class SpaceControls(QWidget):
         for sight in SIGHTS:
             self._row.addWidget(
                 button(sight, f"See the layout {sight[0].lower()}{sight[1:]}",
-                       lambda s=sight: self.sight_chosen.emit(s))
+                       partial(self.sight_chosen.emit, sight))
             )  # fmt: skip
         self._row.addWidget(button("Fit", "Show everything (Home)",
                                    self.fit_asked.emit))  # fmt: skip
         self.axes: dict[str, QPushButton] = {}
         for axis in AXES:
             words = "Move vertically" if axis == "vertical" else f"Move along {axis}"
-            made = button(words, _AXIS_TIPS[axis], lambda a=axis: self._on_axis(a))
+            made = button(words, _AXIS_TIPS[axis], partial(self._on_axis, axis))
             made.setCheckable(True)
             self.axes[axis] = made
             self._row.addWidget(made)

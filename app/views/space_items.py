@@ -202,8 +202,7 @@ class SpaceItems:
             if chosen.any():
                 marked.append(ends[chosen[owners]].reshape(-1, 3))
         if marked:
-            ends = np.concatenate(marked).astype(np.float32)
-            found.append(Lines(ends, rgba(theme.accent), 2.0, on_top=True))
+            found.append(Lines(_singles(marked), rgba(theme.accent), 2.0, on_top=True))
         found += self._thin(selection, theme)
         for ids, ink, width in (
             ([i for i, _ in self._points if i not in selection], theme.above, 1.6),
@@ -211,8 +210,7 @@ class SpaceItems:
         ):
             crosses = [_cross(at) for i, at in self._points if i in ids]
             if crosses:
-                ends = np.concatenate(crosses).astype(np.float32)
-                found.append(Lines(ends, rgba(ink), width, on_top=True))
+                found.append(Lines(_singles(crosses), rgba(ink), width, on_top=True))
         return found
 
     def _thin(self, selection: frozenset[str], theme: Theme) -> list[Lines]:
@@ -225,7 +223,7 @@ class SpaceItems:
                 colour = theme.accent if chosen else space_colour(label, theme)
                 by_colour.setdefault(colour, []).append(ends)
         return [
-            Lines(np.concatenate(ends).astype(np.float32), rgba(colour), 1.4)
+            Lines(_singles(ends), rgba(colour), 1.4)
             for colour, ends in by_colour.items()
         ]
 
@@ -376,6 +374,11 @@ def _spacings(labels: Sequence[Label]) -> dict[int, float]:
         # All letters of a run or none: one alone would seem to be the only one.
         found.update(dict.fromkeys(members, float(away.min())))
     return found
+
+
+def _singles(parts: list[Floats]) -> npt.NDArray[np.float32]:
+    """Points of several parts as the screen takes them. [m]"""
+    return np.concatenate(parts).astype(np.float32)
 
 
 def _distance(legs: Floats, x: float, y: float) -> float:

@@ -88,12 +88,12 @@ def paint_dimension(
         for tip, back in ((a, way), (b, -way)):
             corners = [
                 tip,
-                tip + 9 * back + 3.5 * across,
-                tip + 9 * back - 3.5 * across,
+                tip + back * 9 + across * 3.5,
+                tip + back * 9 - across * 3.5,
             ]
             painter.drawPolygon(QPolygonF(corners))
     width, metrics = inks.width(dimension.text, bold=True), inks.bold_metrics
-    middle = 0.5 * (a + b) + QPointF(0, -metrics.height())
+    middle = (a + b) * 0.5 + QPointF(0, -metrics.height())
     box = QRectF(middle.x() - width / 2 - 4, middle.y() - metrics.height() / 2,
                  width + 8, metrics.height())  # fmt: skip
     painter.fillRect(box, shade(inks.theme.paper, 0.9))
@@ -149,8 +149,8 @@ def paint_axes(painter: QPainter, camera: SpaceCamera, inks: Inks) -> None:
         if math.hypot(way.x(), way.y()) < 0.15:
             continue
         painter.setPen(QPen(QColor(inks.theme.line), 1.4))
-        painter.drawLine(middle, middle + _ARM * way)
-        at = middle + (_ARM + 9) * way
+        painter.drawLine(middle, middle + way * _ARM)
+        at = middle + way * (_ARM + 9)
         painter.setPen(QColor(inks.theme.text))
         painter.drawText(at + QPointF(-3, 4), letter)
 

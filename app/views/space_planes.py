@@ -108,9 +108,11 @@ class SpacePlanes:
         """What stands in the field of the upright map's place."""
         unit = layout.settings.length_unit
         if self.upright == "along a line":
-            (a, b), (c, d) = self.ends(layout)
-            a, b, c, d = (length_figures(v, unit, decimal) for v in (a, b, c, d))
-            return f"{a} {b} to {c} {d}"
+            first, second = (
+                " ".join(length_figures(v, unit, decimal) for v in end)
+                for end in self.ends(layout)
+            )
+            return f"{first} to {second}"
         return f"{length_figures(self.position(layout), unit, decimal)} {unit}"
 
     def handles(

@@ -87,7 +87,7 @@ class SpaceView(Page):
         self.canvas: Any = None
         self.camera = SpaceCamera()
         self.items = SpaceItems()
-        self.move = AxisMove(document)
+        self.mover = AxisMove(document)
         self.desk: SpaceDesk | None = None
         self._is_fitted = self._is_exporting = False
         self.inks = Inks(LIGHT)
@@ -279,13 +279,13 @@ class SpaceView(Page):
         if "labels" not in look.hidden:
             paint_letters(painter, camera, self.items.drawn.letters, self.inks)
         paint_axes(painter, camera, self.inks)
-        middle = self.move.middle
-        if self.move.axis and middle is not None and not self._is_exporting:
-            paint_way(painter, camera, middle, AXES[self.move.axis], self.inks)
+        middle = self.mover.middle
+        if self.mover.axis and middle is not None and not self._is_exporting:
+            paint_way(painter, camera, middle, AXES[self.mover.axis], self.inks)
         desk = self.desk
         if desk is not None and not self._is_exporting:
             paint_handles(painter, camera, desk.handles(), desk.held, self.inks)
-            for dimension in (self.move.dimension(), desk.dimension()):
+            for dimension in (self.mover.dimension(), desk.dimension()):
                 if dimension is not None:
                     paint_dimension(painter, camera, dimension, self.inks)
 
@@ -293,14 +293,14 @@ class SpaceView(Page):
 
     def choose_axis(self, axis: str) -> None:
         """Let drags of the selection move it along an axis; empty: turn the view."""
-        self.move.axis = axis
+        self.mover.axis = axis
         self.controls.show_axis(axis)
         self._later()
 
     def _grip(self, x: float, y: float) -> Grip | None:
         if self.desk is not None and self.desk.grip(self.camera, x, y):
             return self.desk
-        if not self.move.axis:
+        if not self.mover.axis:
             return None
         found = self.items.pick(self.camera, x, y)
         if found is None:
@@ -308,11 +308,11 @@ class SpaceView(Page):
         if found not in self._document.selection:
             self._document.select({found})
         try:
-            self.move.begin(self.camera, x, y)
+            self.mover.begin(self.camera, x, y)
         except UserError as error:
             self._messages.warn(str(error))
             return None
-        return self.move
+        return self.mover
 
     def _on_click(self, x: float, y: float, adds: bool) -> None:
         found = self.items.pick(self.camera, x, y)
@@ -324,15 +324,15 @@ class SpaceView(Page):
     def _on_way(self, text: str) -> None:
         unit = self._document.layout.settings.length_unit
         with self._messages.shown():
-            self.move.by(typed_length(text, unit, decimal_sign()))
+            self.mover.by(typed_length(text, unit, decimal_sign()))
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         axis = {Qt.Key.Key_X: "x", Qt.Key.Key_Y: "y", Qt.Key.Key_Z: "vertical"}.get(
             Qt.Key(event.key())
         )
         if axis is not None and not event.modifiers():
-            self.choose_axis("" if axis == self.move.axis else axis)
-        elif event.key() == Qt.Key.Key_Escape and self.move.axis:
+            self.choose_axis("" if axis == self.mover.axis else axis)
+        elif event.key() == Qt.Key.Key_Escape and self.mover.axis:
             self.choose_axis("")
         else:
             super().keyPressEvent(event)

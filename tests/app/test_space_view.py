@@ -238,7 +238,7 @@ def test_drag_on_an_axis_previews_with_a_dimension_and_is_one_step(
     QTest.mousePress(view.canvas, Qt.MouseButton.LeftButton, pos=start)
     QTest.mouseMove(view.canvas, start + way)
     assert document.is_previewing
-    dimension = view.move.dimension()
+    dimension = view.mover.dimension()
     assert dimension is not None
     assert dimension.text.endswith("m along x")
     QTest.mouseRelease(view.canvas, Qt.MouseButton.LeftButton, pos=start + way)

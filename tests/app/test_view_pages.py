@@ -52,3 +52,10 @@ def test_period_opens_at_the_place_pointed_at(qtbot: QtBot, window: MainWindow) 
     page = window.view_pages.cycle
     assert page.place == CyclePlace((2.0, 3.0, 4.5))
     assert "Pointed at" in page.places.currentText()
+
+
+def test_space_opens_and_says_what_is_missing_here(window: MainWindow) -> None:
+    window.view_pages.open_space()
+    page = window.view_pages.space
+    assert window.pages.currentWidget() is page
+    assert "OpenGL" in page.reason.text()
