@@ -59,7 +59,7 @@ class CyclePage(Page):
         self._component: Component | None = None
         self.board = CycleBoard()
         self.summary, self.now = Words(style="plain"), Words(style="plain")
-        self.reason = Words(style="warning")
+        self.reason = Words(style="plain")
         self._build()
         self._found.connect(self._show, Qt.ConnectionType.QueuedConnection)
         self._worker: Worker[CycleRequest] = Worker(
@@ -132,6 +132,8 @@ class CyclePage(Page):
         foot.setContentsMargins(0, 0, 0, 0)
         self.column.addWidget(self._controls)
         self.column.addWidget(self.now)
+        # Alone, a sentence stands at the top.
+        self.column.addStretch(0)
         self.reason.hide()
 
     # -- events -----------------------------------------------------------------

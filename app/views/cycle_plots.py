@@ -7,11 +7,11 @@ import math
 import numpy as np
 import numpy.typing as npt
 import pyqtgraph as pg
-from PySide6.QtCore import Qt
+from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QColor, QFont
 
 from app.cycle_values import ellipse_curve, flux_text, plane_axes
-from app.theme import SMALL, Theme
+from app.theme import SMALL, STEP, Theme
 from app.views.inks import shade
 from engine.cycle_view import FieldEllipse, Wave
 from engine.units import in_unit
@@ -40,6 +40,10 @@ class _Plot(pg.PlotWidget):
         self.setMenuEnabled(False)
         self.hideButtons()
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+
+    def sizeHint(self) -> QSize:
+        # The base asks for a window of its own.
+        return QSize(60 * STEP, 34 * STEP)
 
     def _dress(self, theme: Theme, bottom: str, left: str) -> None:
         """Empty the plot and give it axes with words."""

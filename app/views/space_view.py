@@ -9,6 +9,7 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
+import numpy as np
 from PySide6.QtCore import QEvent, Qt, QTimer
 from PySide6.QtGui import QImage, QKeyEvent, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QVBoxLayout, QWidget
@@ -28,6 +29,7 @@ from app.views.opengl import opengl_obstacle
 from app.views.space_camera import SpaceCamera
 from app.views.space_controls import SpaceControls
 from app.views.space_desk import SpaceDesk
+from app.views.space_drawn import outline
 from app.views.space_hand import Grip, SpaceHand
 from app.views.space_items import SpaceItems
 from app.views.space_letters import (
@@ -271,7 +273,10 @@ class SpaceView(Page):
         """Show everything."""
         if self.canvas is not None:
             size = (self.canvas.width(), self.canvas.height())
-            self.set_camera(self.camera.sized(*size).fitted(self.items.outline))
+            shown = self.desk.shown if self.desk is not None else ()
+            maps = [outline(one.place.plane) for one in shown]
+            points = np.concatenate([self.items.outline, *maps])
+            self.set_camera(self.camera.sized(*size).fitted(points))
 
     def _paint_over(self, painter: QPainter) -> None:
         camera = self.camera.sized(self.canvas.width(), self.canvas.height())
