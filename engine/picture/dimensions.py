@@ -7,7 +7,7 @@ from itertools import pairwise
 
 from engine.picture.marks import BLACK, GREY, Picture, Stroke, Words
 from engine.picture.sheet import Sheet
-from engine.printed_text import text_width, wrapped
+from engine.printed_text import fitted, one_line, text_width, wrapped
 from engine.units import LENGTH_UNITS
 
 SIZE = 2.0
@@ -79,12 +79,16 @@ def draw_levels(
 ) -> None:
     """Levels beside an elevation, with what they are, none over another. [m]"""
     right = sheet.left + sheet.width
+    most = int((sheet.height + 6.0) / (SIZE + 0.9))
     found = _by_level(levels)
+    inside = [z for z in found if sheet.world[1] <= z <= sheet.world[3]]
+    # Of too many, those named first: floors and ceilings.
+    inside = inside[:most]
+    per_level = max(1, min(3, most // max(1, len(inside))))
     lines: list[tuple[float, str, bool]] = []
-    for z in sorted(z for z in found if sheet.world[1] <= z <= sheet.world[3]):
-        broken = wrapped(_level_text(z, found[z], unit), SIZE, width - 7.5)
-        texts = [(z, text, k == 0) for k, text in enumerate(broken)]
-        lines += reversed(texts)
+    for z in sorted(inside):
+        texts = _broken(_level_text(z, found[z], unit), width - 7.5, per_level)
+        lines += [(z, text, k == 0) for k, text in reversed([*enumerate(texts)])]
     true = [sheet.paper(0.0, z)[1] for z, _, _ in lines]
     places = _spread(true, SIZE + 0.9)
     for y0, y, (_, text, is_first) in zip(true, places, lines, strict=True):
@@ -92,6 +96,15 @@ def draw_levels(
             line = ((right, y0), (right + 2.0, y0), (right + 5.0, y), (right + 6.5, y))
             picture.add(Stroke(line, 0.15, BLACK))
         picture.add(Words((right + 7.0, y), text, SIZE))
+
+
+def _broken(text: str, width: float, most: int) -> list[str]:
+    """A text in lines, the last one cut where there are more than `most`."""
+    lines = wrapped(text, SIZE, width)
+    if len(lines) <= most:
+        return [*lines]
+    rest = " ".join(lines[most - 1 :])
+    return [*lines[: most - 1], fitted(rest, SIZE, width)]
 
 
 def levels_width(levels: Iterable[Level], unit: str) -> float:
@@ -111,7 +124,7 @@ def _by_level(levels: Iterable[Level]) -> dict[float, dict[str, list[str]]]:
 
 def _level_text(z: float, kinds: dict[str, list[str]], unit: str) -> str:
     told = [f"{kind} {', '.join(dict.fromkeys(n))}" for kind, n in kinds.items()]
-    return f"z {dimension_text(z, unit)}  {'; '.join(told)}"
+    return one_line(f"z {dimension_text(z, unit)} {'; '.join(told)}")
 
 
 def dimension_text(metres: float, unit: str) -> str:

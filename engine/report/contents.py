@@ -20,13 +20,16 @@ from engine.report import (
     sources,
 )
 from engine.report.attachments import Attachment
+from engine.report.budgets import budget_section
 from engine.report.drawings import HEADING_ROOM, Sheeted, room_views, sheeted
 from engine.report.figures import FigureRow
 from engine.report.front import front_page, overview
 from engine.report.maps import plan_of_map
 from engine.report.matter import Matter
 from engine.report.names import Wording
+from engine.report.options import options
 from engine.report.page import Orientation, Pages, Paper, paper
+from engine.report.profile_section import profile_section
 from engine.report.receptor_tables import measured_section, receptor_section
 from engine.report.section_figures import (
     MOST_SECTIONS,
@@ -209,10 +212,7 @@ def _results(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> No
             "One map for each height of a zone, in the load case that leads there. All "
             "have one colour scale; iso-lines carry their values."
         )
-        first = pictures.maps[0]
-        beside = first[2] == told.sheet.orientation
-        room = first[1].height + 40.0 if beside else 0.0
-        told.section("maps", "Results: maps", [paragraph(text)], room=room)
+        told.section("maps", "Results: maps", [paragraph(text)])
         if matter.left_out:
             left = f"Heights of zones without a map here: {matter.left_out}."
             told.add([paragraph(left)])
@@ -227,7 +227,17 @@ def _results(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> No
     else:
         reason = "no value was determined, so nothing can be apportioned."
         told.omitted("contributions", "Contributions and sensitivity", reason)
-    told.omitted("options", "Options considered", "no variant is in the layout.")
+    profiles = profile_section(matter, words, width)
+    if profiles:
+        told.section("profiles", "Results: profiles", profiles)
+    else:
+        reason = "no profile was drawn, or no current flows along it."
+        told.omitted("profiles", "Results: profiles", reason)
+    considered = options(matter, words, width)
+    if considered:
+        told.section("options", "Options considered", considered)
+    else:
+        told.omitted("options", "Options considered", "the layout has no variant.")
     measured = measured_section(assessment, words, width)
     if measured:
         told.section("measurements", "Measurements", measured)
@@ -248,6 +258,7 @@ def _last(told: Story, matter: Matter, words: Wording) -> None:
         "uncertainty",
         "Uncertainty and decision rule",
         risk.uncertainty(matter.assessment, words, width),
+        budget_section(matter.budgets, words, width),
     )
     told.section(
         "remarks", "Remarks not cleared", closing.remarks(matter, words, width)

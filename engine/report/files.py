@@ -12,8 +12,11 @@ from engine.errors import UserError
 from engine.exchange.map_export import grid_csv
 from engine.layout_file import encode
 from engine.picture import MapSubject
+from engine.printed_text import printable
+from engine.profile_table import csv_text as profile_csv
+from engine.profile_table import profile_table
 from engine.report.attachments import Attachment
-from engine.report.matter import HeightMap, Matter
+from engine.report.matter import HeightMap, Matter, ProfileResult
 from engine.report.words import length
 from engine.result_tables import csv_text, result_tables
 
@@ -35,7 +38,20 @@ def attached_files(matter: Matter) -> tuple[Attachment, ...]:
         files.append(Attachment(name, "text/csv", table.about, text))
     for k, each in enumerate(matter.maps, start=1):
         files.append(_grid(matter, each, k))
+    for k, result in enumerate(matter.profiles, start=1):
+        files.append(_profile(matter, result, k))
     return tuple(files)
+
+
+def _profile(matter: Matter, result: ProfileResult, number: int) -> Attachment:
+    layout = matter.layout
+    names = {item.id: item.title for item in layout.items()}
+    names.update({case.id: case.title for case in layout.cases})
+    unit = layout.settings.length_unit
+    table = profile_table(result.found, names, unit=matter.unit, length_unit=unit)
+    text = printable(profile_csv(table)).encode("utf-8")
+    about = f"Values along the profile {result.profile.title}"
+    return Attachment(f"profile-{number:02d}.csv", "text/csv", about[:300], text)
 
 
 def _grid(matter: Matter, each: HeightMap, number: int) -> Attachment:

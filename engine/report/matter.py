@@ -4,15 +4,19 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
+from engine.budget import Budget
 from engine.circuits import LoadCase
 from engine.conductor import Conductor
 from engine.faults import Remark
 from engine.items import ConfirmedRemark
 from engine.layout import Layout
 from engine.picture import MapSubject
+from engine.places import Profile
+from engine.profiles import FieldProfile
 from engine.program_identity import ProgramIdentity
 from engine.results import Assessment
 from engine.validation import Outcome
+from engine.variant_comparison import VariantComparison
 
 
 @dataclass(frozen=True, eq=False)
@@ -26,6 +30,14 @@ class HeightMap:
     case: LoadCase
     zones: tuple[str, ...]
     subjects: tuple[MapSubject, ...]
+
+
+@dataclass(frozen=True, eq=False)
+class ProfileResult:
+    """The field along a profile of the layout."""
+
+    profile: Profile
+    found: FieldProfile
 
 
 @dataclass(frozen=True, eq=False)
@@ -49,6 +61,11 @@ class Matter:
         Those that a named person lets stand.
     outcomes : tuple of Outcome or None
         Of the outside checks, run now; None when they were not asked for.
+    profiles : tuple of ProfileResult
+    comparison : VariantComparison or None
+        The base beside its variants; None without any.
+    budgets : tuple of Budget
+        Of the places, as far as they were computed.
     """
 
     assessment: Assessment
@@ -59,6 +76,9 @@ class Matter:
     left_out: int = 0
     confirmed: tuple[tuple[Remark, ConfirmedRemark], ...] = ()
     outcomes: tuple[Outcome, ...] | None = None
+    profiles: tuple[ProfileResult, ...] = ()
+    comparison: VariantComparison | None = None
+    budgets: tuple[Budget, ...] = ()
     identity: ProgramIdentity = field(default_factory=ProgramIdentity)
 
     @property

@@ -111,7 +111,7 @@ def _answer(matter: Matter, words: Wording, width: float, room: Room) -> list[Fl
         rows = [_row(c, words) for c in found[: room.rows]]
         made.append(table(heads, rows, (25, 16, 10, 10, 8, 8, 23), width))
         if len(found) > room.rows:
-            text = f"{len(found) - room.rows} more comparisons stand in the report."
+            text = f"More comparisons, in the report: {len(found) - room.rows}."
             made.append(paragraph(text))
         return made
     if not assessment.layout.levels:

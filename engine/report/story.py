@@ -30,6 +30,8 @@ from engine.report.text import (
 def needed(parts: Sequence[Sequence[Flowable]]) -> float:
     """What must be free below a heading for what follows to begin there. [mm]"""
     first = next((part for group in parts for part in group), None)
+    if isinstance(first, CondPageBreak):
+        return float(first.height / mm)
     if isinstance(first, Table):
         return least_height(first)
     if isinstance(first, Figure | FigureRow):

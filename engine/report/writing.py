@@ -13,6 +13,7 @@ from engine.field import ResponseCache
 from engine.layout import Layout
 from engine.program_identity import program_identity
 from engine.remarks import confirmed_remarks, remarks
+from engine.report.computed import NOTHING_FURTHER, further_results
 from engine.report.document import DocumentKind, report_pdf
 from engine.report.maps import MOST_MAPS, computed_maps, wanted_maps
 from engine.report.matter import Matter
@@ -22,8 +23,8 @@ from engine.units import flux_density_unit
 from engine.validation import Outcome, checks, outcome
 from engine.written_file import write_file
 
-#: Part of the work done when the assessment is there, the checks, and the maps.
-_ASSESSED, _CHECKED, _MAPPED = 0.45, 0.6, 0.85
+#: Part of the work done when assessment, checks, maps and everything is there.
+_ASSESSED, _CHECKED, _DRAWN, _MAPPED = 0.4, 0.5, 0.7, 0.85
 
 
 def write_report(
@@ -68,6 +69,7 @@ def write_report(
     matter = computed_matter(
         layout,
         with_checks=validate and kind == "report",
+        with_further=kind == "report",
         assessment=assessment,
         unit=unit,
         cache=cache,
@@ -87,14 +89,19 @@ def computed_matter(
     layout: Layout,
     *,
     with_checks: bool = True,
+    with_further: bool = True,
     assessment: Assessment | None = None,
     unit: str | None = None,
     cache: ResponseCache | None = None,
     cancelled: Cancelled | None = None,
     progress: Progress | None = None,
 ) -> Matter:
-    """Everything that the report prints, computed; parameters as `write_report`."""
+    """Everything that the report prints, computed; parameters as `write_report`.
+
+    `with_further`: profiles, options and budgets too, which a note has not.
+    """
     shown = flux_density_unit(unit or layout.settings.flux_density_unit)
+    cache = ResponseCache() if cache is None else cache
     if assessment is None:
         told = _part(progress, 0.0, _ASSESSED)
         assessment = assess(
@@ -115,8 +122,12 @@ def computed_matter(
         unit=shown,
         cache=cache,
         cancelled=cancelled,
-        progress=_part(progress, _CHECKED, 1.0),
+        progress=_part(progress, _CHECKED, _DRAWN),
     )
+    told = _part(progress, _DRAWN, 1.0)
+    further = NOTHING_FURTHER
+    if with_further:
+        further = further_results(layout, assessment, cache, cancelled, told)
     return Matter(
         assessment=assessment,
         remarks=remarks(layout, assessment, unit=shown),
@@ -127,6 +138,9 @@ def computed_matter(
         confirmed=confirmed_remarks(layout, assessment, unit=shown),
         outcomes=outcomes,
         identity=program_identity(),
+        profiles=further.profiles,
+        comparison=further.comparison,
+        budgets=further.budgets,
     )
 
 

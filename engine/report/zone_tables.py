@@ -109,8 +109,9 @@ def _place(details: PlaceDetails | None, words: Wording) -> str:
 
 
 def _marks(comparison: Comparison, words: Wording) -> str:
-    lines = [_masked(comparison.masked_share)]
+    lines = []
     if comparison.area_above is not None:
+        lines.append(_masked(comparison.masked_share))
         lines.append(f"above 1 on {significant(comparison.area_above)} m²")
     proof = proof_of_comparison(comparison, words.unit)
     if proof:
@@ -250,7 +251,8 @@ def _contribution_row(
 ) -> tuple[str, ...]:
     ordered = sorted(contributions, key=lambda c: -abs(c.share))
     lines = [
-        f"{words.name(c.circuit)}: {_signed(c.share, words)} ({words.value(c.without)})"
+        f"{words.name(c.circuit)}: {_signed(c.share, words)} "
+        f"({words.small(c.without, c.alone)})"
         for c in ordered[:MOST_CIRCUITS]
     ]
     if len(ordered) > MOST_CIRCUITS:

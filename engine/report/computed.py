@@ -1,0 +1,111 @@
+"""Further results of the report: profiles, variants, budgets of uncertainty."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from engine.assessment import assess
+from engine.budget import Budget
+from engine.errors import Cancelled, Progress, UserError, stop_if
+from engine.field import ResponseCache
+from engine.layout import Layout
+from engine.loaded_layout import loaded_layout
+from engine.place_budgets import place_budgets
+from engine.profiles import profile
+from engine.report.matter import ProfileResult
+from engine.results import Assessment
+from engine.variant_comparison import VariantComparison, column_of, comparison_table
+from engine.variants import layout_of
+
+#: Places that get a budget of their own; more are too long to read.
+MOST_BUDGETS = 40
+
+#: Profiles that are printed.
+MOST_PROFILES = 30
+
+
+@dataclass(frozen=True, eq=False)
+class Further:
+    """Profiles, the comparison of variants, and budgets."""
+
+    profiles: tuple[ProfileResult, ...]
+    comparison: VariantComparison | None
+    budgets: tuple[Budget, ...]
+
+
+#: A note has none of them.
+NOTHING_FURTHER = Further((), None, ())
+
+
+def further_results(
+    layout: Layout,
+    assessment: Assessment,
+    cache: ResponseCache | None,
+    cancelled: Cancelled | None,
+    progress: Progress | None,
+) -> Further:
+    """What a report has besides the assessment and the maps."""
+    stop_if(cancelled)
+    if progress is not None:
+        progress(0.0, "Computing profiles, options and budgets")
+    profiles = _profiles(layout, cache, cancelled)
+    comparison = _comparison(layout, assessment, cache, cancelled)
+    if progress is not None:
+        progress(0.6, "Computing budgets of uncertainty")
+    return Further(profiles, comparison, _budgets(assessment, cache, cancelled))
+
+
+def _profiles(
+    layout: Layout, cache: ResponseCache | None, cancelled: Cancelled | None
+) -> tuple[ProfileResult, ...]:
+    if not layout.profiles:
+        return ()
+    loaded = loaded_layout(layout, layout.cases, cache, cancelled)
+    if not loaded.fields.cases:
+        return ()
+    made = []
+    for line in layout.profiles[:MOST_PROFILES]:
+        stop_if(cancelled)
+        try:
+            found = profile(loaded.fields, line.path, levels=layout.levels)
+        except ValueError:
+            continue  # A line without length has no profile.
+        made.append(ProfileResult(line, found))
+    return tuple(made)
+
+
+def _comparison(
+    layout: Layout,
+    assessment: Assessment,
+    cache: ResponseCache | None,
+    cancelled: Cancelled | None,
+) -> VariantComparison | None:
+    """The base as it was assessed, beside its variants, assessed in the same way."""
+    if not layout.variants:
+        return None
+    columns = [column_of(layout, None, assessment)]
+    for variant in layout.variants:
+        stop_if(cancelled)
+        try:
+            changed = layout_of(layout, variant.id)
+        except UserError:
+            continue  # A variant that does not fit its base any more; remarks say so.
+        found = assess(changed, certify=True, cache=cache, cancelled=cancelled)
+        columns.append(column_of(layout, variant.id, found))
+    return comparison_table(columns)
+
+
+def _budgets(
+    assessment: Assessment, cache: ResponseCache | None, cancelled: Cancelled | None
+) -> tuple[Budget, ...]:
+    layout = assessment.layout
+    places = [place.id for place in (*layout.zones, *layout.receptors)]
+    try:
+        return place_budgets(
+            assessment,
+            places=places[:MOST_BUDGETS],
+            cache=cache,
+            cancelled=cancelled,
+        )
+    except UserError:
+        return ()  # What keeps the field from being determined stands in the remarks.
