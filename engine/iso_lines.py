@@ -133,12 +133,55 @@ def iso_lines(
     logs = np.ma.masked_array(
         np.log10(np.where(hidden, 1.0, grid)), mask=hidden, dtype=float
     )
+    return _drawn(x, y, logs, [(value, math.log10(value)) for value in wanted])
+
+
+def signed_lines(
+    xs: npt.ArrayLike,
+    ys: npt.ArrayLike,
+    values: npt.ArrayLike,
+    mask: npt.ArrayLike | None,
+    wanted: Sequence[float],
+    small: float,
+) -> tuple[IsoLine, ...]:
+    """Lines of equal change on a grid, of either sign or none.
+
+    As `iso_lines`, interpolated in asinh(value / small): in the logarithm where a
+    change is large against `small`, in the change itself where it is not.
+
+    Raises
+    ------
+    ValueError
+        When `small` is not positive.
+    """
+    if not small > 0:
+        raise ValueError(f"no scale of small changes in {small!r}")
+    x, y = np.asarray(xs, dtype=float), np.asarray(ys, dtype=float)
+    grid = np.asarray(values, dtype=float)
+    hidden = ~np.isfinite(grid)
+    if mask is not None:
+        hidden |= np.asarray(mask, dtype=bool)
+    if min(grid.shape) < 2 or hidden.all():
+        return ()
+    bent = np.ma.masked_array(
+        np.arcsinh(np.where(hidden, 0.0, grid) / small), mask=hidden, dtype=float
+    )
+    return _drawn(x, y, bent, [(v, math.asinh(v / small)) for v in wanted])
+
+
+def _drawn(
+    x: Floats,
+    y: Floats,
+    grid: np.ma.MaskedArray[tuple[int, int], np.dtype[np.float64]],
+    wanted: Sequence[tuple[float, float]],
+) -> tuple[IsoLine, ...]:
+    """Lines of values, each with what stands for it on the grid."""
     generator = contour_generator(
-        x, y, logs, line_type=LineType.Separate, corner_mask=False
+        x, y, grid, line_type=LineType.Separate, corner_mask=False
     )
     found: list[IsoLine] = []
-    for value in wanted:
-        for line in generator.lines(math.log10(value)):
+    for value, level in wanted:
+        for line in generator.lines(level):
             points = np.asarray(line, dtype=float)
             if len(points) > 1:
                 found.append(IsoLine(value, points))

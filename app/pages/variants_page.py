@@ -14,6 +14,7 @@ from app.figures import FIGURE_KINDS, ask_figure, write_figure
 from app.messages import Messages
 from app.page import Page
 from app.pages.variant_list import VariantList
+from app.pages.variant_map_tab import VariantMapTab
 from app.pages.variant_table import VariantTable
 from app.panels.panel import Words, button
 from app.theme import LIGHT, STEP, qt_palette
@@ -59,7 +60,8 @@ class VariantsPage(Page):
     @property
     def is_idle(self) -> bool:
         """Nothing is being computed or waits to be asked."""
-        return self._answers.is_idle and not self._soon.isActive()
+        idle = self._answers.is_idle and not self._soon.isActive()
+        return idle and self.maps.is_idle
 
     def close_worker(self) -> None:
         """Stop the threads, before the window goes."""
@@ -67,6 +69,7 @@ class VariantsPage(Page):
         self._document.changed.disconnect(self._on_opened)
         self._soon.stop()
         self._answers.close()
+        self.maps.close_worker()
 
     def hold(self, on: bool) -> None:
         """Let the present values stand beside the coming ones."""
@@ -103,6 +106,8 @@ class VariantsPage(Page):
         self.tabs = QTabWidget()
         self.tabs.setDocumentMode(True)
         self.tabs.addTab(self.compared, "Table of places")
+        self.maps = VariantMapTab(self._document, self._view_state)
+        self.tabs.addTab(self.maps, "Maps")
         split = QSplitter(Qt.Orientation.Horizontal)
         split.setChildrenCollapsible(False)
         split.addWidget(self.list)
@@ -178,6 +183,10 @@ class VariantsPage(Page):
 
     # -- handing on ---------------------------------------------------------------
 
+    @property
+    def _shows_maps(self) -> bool:
+        return self.tabs.currentWidget() is self.maps
+
     def caption(self) -> str:
         """What the table shows, in one line."""
         layout = self._document.whole
@@ -195,7 +204,8 @@ class VariantsPage(Page):
 
     def export(self) -> None:
         """Ask where to, and write what is in front."""
-        if self.answer is None:
+        shown = self.maps.change if self._shows_maps else self.answer
+        if shown is None:
             self._messages.warn("There is nothing to export yet.")
             return
         path = ask_figure(self, "Export", "variants.png", FIGURE_KINDS)
@@ -205,13 +215,16 @@ class VariantsPage(Page):
                 self._messages.inform(f"{path} was written.")
 
     def write(self, path: Path) -> None:
-        """Write the table: a picture, light as on paper, or its numbers.
+        """Write what is in front: a picture, light as on paper, or its numbers.
 
         Raises
         ------
         UserError
             When the file cannot be written.
         """
+        if self._shows_maps:
+            self.maps.write(path)
+            return
         answer = self.answer
         if answer is None:
             raise ValueError("nothing is shown")

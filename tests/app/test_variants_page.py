@@ -166,7 +166,9 @@ def test_nothing_selected_has_no_change_to_move(document):
 def test_captions_name_what_is_shown(document):
     assert with_shown(document, "Map") == "Map · base"
     document.choose("both")
-    assert with_shown(document, "Map") == "Map · variant Bond removed and neutral returned"
+    assert (
+        with_shown(document, "Map") == "Map · variant Bond removed and neutral returned"
+    )
     document.open(structs.replace(document.whole, variants=()), None)
     assert with_shown(document, "Map") == "Map"
 

@@ -14,6 +14,7 @@ from engine.colour_ramp import (
     signed_position,
     two_sided_colours,
 )
+from engine.iso_lines import signed_lines
 
 
 def test_both_arms_are_equally_dark_at_the_same_distance_from_the_middle():
@@ -66,3 +67,13 @@ def test_what_has_no_place_is_clear():
     assert rgba[1].tolist() == [*rgb[N_ARM - 1], 255]
     assert rgba[2].tolist() == [*rgb[-1], 255]
     assert rgba[3].tolist() == [0, 0, 0, 0]
+
+
+def test_signed_lines_lie_where_the_change_is():
+    xs, ys = np.linspace(-2.0, 2.0, 41), np.linspace(0.0, 1.0, 5)
+    values = np.sinh(np.broadcast_to(xs, (5, 41)))
+    lines = signed_lines(xs, ys, values, None, (-1.0, 0.0, 2.0), 1.0)
+    found = {line.value: float(line.points[:, 0].mean()) for line in lines}
+    assert found == pytest.approx(
+        {-1.0: -np.arcsinh(1.0), 0.0: 0.0, 2.0: np.arcsinh(2)}
+    )
