@@ -33,13 +33,16 @@ from engine.report.wording import QUESTIONS
 #: Largest logo. [mm]
 LOGO = (60.0, 18.0)
 
+#: Lines of an address.
+_ADDRESS = 6
+
 #: Longer conclusions stand in their own section only.
 _SHORT = 700
 
 HEADLINE = "Magnetic flux density at power frequency, calculated"
 
 
-def letterhead(matter: Matter) -> list[Flowable]:
+def letterhead(matter: Matter, most: int = 800) -> list[Flowable]:
     """The house's logo and address, or what keeps the logo from being printed."""
     title = matter.layout.title
     made: list[Flowable] = []
@@ -56,7 +59,8 @@ def letterhead(matter: Matter) -> list[Flowable]:
             picture._img = ImageReader(io.BytesIO(data))
             made += [picture, gap(2.0)]
     if title.letterhead:
-        made += [*paragraphs(title.letterhead[:1200]), gap(2.0)]
+        lines = title.letterhead[:most].split("\n")[:_ADDRESS]
+        made += [*paragraphs("\n".join(lines)), gap(2.0)]
     return made
 
 

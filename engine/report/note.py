@@ -11,6 +11,7 @@ from engine.drawing import plan
 from engine.origins import assumptions
 from engine.picture import Picture, map_picture
 from engine.picture.room_drawing import room_drawing
+from engine.printed_text import one_line
 from engine.report.drawings import room_views
 from engine.report.figures import Figure
 from engine.report.front import HEADLINE, letterhead
@@ -27,7 +28,6 @@ from engine.report.text import (
     fact_table,
     gap,
     paragraph,
-    paragraphs,
     subheading,
     table,
 )
@@ -35,6 +35,9 @@ from engine.report.wording import NO_LEVELS, NOTE_CAUTIONS
 from engine.report.words import place
 from engine.results import STATES, Comparison
 from engine.units import text_beside
+
+#: Characters of a name.
+_NAME = 60
 
 #: A note has no more pages.
 MOST_PAGES = 2
@@ -71,11 +74,11 @@ def note_story(
     title, width = matter.layout.title, sheet.text_width
     cases = [case.title for case in matter.layout.cases if case.counted]
     facts = [
-        ("Question", title.question[: room.text] or "not stated"),
-        ("Load cases that count", ", ".join(cases)[:300]),
-        ("Scope", title.scope[: room.text] or "not stated"),
+        ("Question", brief(title.question, room.text) or "not stated"),
+        ("Load cases that count", brief(", ".join(cases), 300)),
+        ("Scope", brief(title.scope, room.text) or "not stated"),
     ]
-    made = letterhead(matter)
+    made = letterhead(matter, most=120)
     made += [paragraph(HEADLINE, TITLE), fact_table(facts, width)]
     made += _answer(matter, words, width, room)
     picture = _picture(matter, sheet, room)
@@ -88,11 +91,17 @@ def note_story(
     made += bullets(NOTE_CAUTIONS, SMALL_BULLET)
     if title.conclusions:
         made += subheading("Conclusions of the author", room=20.0)
-        made += paragraphs(title.conclusions[: room.text])
+        made += [paragraph(brief(title.conclusions, room.text))]
     made.append(
         paragraph(matter.identity.sentence() + ". The full report has the rest.")
     )
     return made
+
+
+def brief(text: str, most: int) -> str:
+    """A text on one line, cut where it is longer than a note has room for."""
+    line = one_line(text)
+    return line if len(line) <= most else line[: most - 1].rstrip() + "…"
 
 
 def _answer(matter: Matter, words: Wording, width: float, room: Room) -> list[Flowable]:
@@ -101,7 +110,7 @@ def _answer(matter: Matter, words: Wording, width: float, room: Room) -> list[Fl
     made: list[Flowable] = []
     if blocking:
         text = f"Not evaluable: {len(blocking)} remarks block. {blocking[0].sentence}"
-        made.append(paragraph(text[:600], STRONG))
+        made.append(paragraph(brief(text, 400), STRONG))
     found = sorted(worst_comparisons(assessment), key=_concern, reverse=True)
     if found:
         heads = (
@@ -118,8 +127,8 @@ def _answer(matter: Matter, words: Wording, width: float, room: Room) -> list[Fl
         made.append(paragraph(NO_LEVELS, STRONG))
     rows = [
         (
-            zone.zone.title,
-            words.name(m.case),
+            brief(zone.zone.title, _NAME),
+            brief(words.name(m.case), _NAME),
             f"{words.value(m.value)} ({m.kind})",
             place(m.details.at, words.length_unit),
         )
@@ -144,10 +153,10 @@ def _row(c: Comparison, words: Wording) -> tuple[str, ...]:
     several = "per frequency" if c.ratio is not None else "–"
     state = state_text(c)
     if c.state == "not evaluable" and not at_risk(c):
-        state = state[:160]
+        state = brief(state, 160)
     return (
-        f"{words.name(c.place)}\n{words.name(c.level)}",
-        words.name(c.case),
+        f"{brief(words.name(c.place), _NAME)}\n{brief(words.name(c.level), _NAME)}",
+        brief(words.name(c.case), _NAME),
         words.beside(c.value, c.level_value),
         words.limit(c.level_value) if c.level_value is not None else several,
         "–" if c.ratio is None else text_beside(c.ratio, 1.0),
@@ -193,7 +202,7 @@ def _assumed(matter: Matter, words: Wording, room: Room) -> list[str]:
         + (f" ({a.reason})" if a.reason else "")
         for a in found[: room.assumed]
     ]
-    texts = [text[:300] for text in texts]
+    texts = [brief(text, 200) for text in texts]
     if len(found) > room.assumed:
         texts.append(f"and {len(found) - room.assumed} more, listed in the report")
     return texts
@@ -202,7 +211,8 @@ def _assumed(matter: Matter, words: Wording, room: Room) -> list[str]:
 def _open_remarks(matter: Matter, room: Room) -> list[Flowable]:
     if not matter.remarks:
         return []
-    shown = [f"{r.code} {r.severity}: {r.sentence}"[:400] for r in matter.remarks]
+    shown = [f"{r.code} {r.severity}: {r.sentence}" for r in matter.remarks]
+    shown = [brief(text, 300) for text in shown]
     more = len(shown) - room.remarks
     texts = shown[: room.remarks]
     if more > 0:

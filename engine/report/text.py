@@ -41,7 +41,7 @@ WHOLE = 55.0
 MOST_LINES = 24
 
 BODY = ParagraphStyle(
-    "body", fontName=FONT, fontSize=8.5, leading=11.5, textColor=INK, alignment=TA_LEFT,
+    "body", fontName=FONT, bulletFontName=FONT, fontSize=8.5, leading=11.5, textColor=INK, alignment=TA_LEFT,
     spaceAfter=4, splitLongWords=1, allowWidows=0, allowOrphans=0,
 )  # fmt: skip
 STRONG = ParagraphStyle("strong", parent=BODY, fontName=BOLD_FONT)
