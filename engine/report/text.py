@@ -41,8 +41,9 @@ WHOLE = 55.0
 MOST_LINES = 24
 
 BODY = ParagraphStyle(
-    "body", fontName=FONT, bulletFontName=FONT, fontSize=8.5, leading=11.5, textColor=INK, alignment=TA_LEFT,
-    spaceAfter=4, splitLongWords=1, allowWidows=0, allowOrphans=0,
+    "body", fontName=FONT, bulletFontName=FONT, fontSize=8.5, leading=11.5,
+    textColor=INK, alignment=TA_LEFT, spaceAfter=4, splitLongWords=1,
+    allowWidows=0, allowOrphans=0,
 )  # fmt: skip
 STRONG = ParagraphStyle("strong", parent=BODY, fontName=BOLD_FONT)
 HEADING = ParagraphStyle(
