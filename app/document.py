@@ -11,6 +11,7 @@ is edited while a variant is chosen becomes part of the variant.
 from __future__ import annotations
 
 from collections.abc import Iterable
+from functools import partial
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -86,6 +87,8 @@ class Document(QObject):
         self._selection: frozenset[str] = frozenset()
         self.path = path
         self.undo_stack = QUndoStack(self)
+        # A history that goes would tell of it to parts that are gone.
+        self.destroyed.connect(partial(self.undo_stack.blockSignals, True))
         #: The layout last handed in, and what was made of it.
         self._given, self._taken = self._state.shown, self._state
 
