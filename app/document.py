@@ -11,8 +11,8 @@ is edited while a variant is chosen becomes part of the variant.
 from __future__ import annotations
 
 from collections.abc import Iterable
-from functools import partial
 from dataclasses import dataclass
+from functools import partial
 from pathlib import Path
 
 from PySide6.QtCore import QObject, Signal
