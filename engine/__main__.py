@@ -1,7 +1,8 @@
 """Commands without a screen: `python -m engine COMMAND …`, or `lodestead-batch`.
 
 Exit codes: 0 done (for `assess`: every comparison of the counted load cases is
-`below`); 1 a comparison is above; 3 otherwise; 2 it could not be done.
+`below`; for `validate`: every check agrees); 1 a comparison is above, or a check does
+not agree; 3 otherwise; 2 it could not be done.
 """
 
 from __future__ import annotations
@@ -25,7 +26,7 @@ from engine.layout import Layout
 from engine.layout_file import read, write
 from engine.variants import layout_of
 
-DONE, COULD_NOT = 0, 2
+DONE, DISAGREES, COULD_NOT = 0, 1, 2
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -124,6 +125,12 @@ def _parser() -> argparse.ArgumentParser:
     schedule.add_argument("out", metavar="OUT.json", type=Path)
     schedule.add_argument("--json", action="store_true", help="print what was written")
     schedule.set_defaults(run=_schedule)
+
+    validate = commands.add_parser(
+        "validate", help="run the outside checks of the program"
+    )
+    validate.add_argument("--json", action="store_true", help="print JSON")
+    validate.set_defaults(run=_validate)
     return parser
 
 
@@ -322,6 +329,17 @@ def _field(asked: argparse.Namespace) -> int:
 def _schedule(asked: argparse.Namespace) -> int:
     write(asked.out, read_schedule(asked.csv))
     return _written(asked.out, asked.json)
+
+
+def _validate(asked: argparse.Namespace) -> int:
+    from engine.commands import validated
+
+    found = validated.run(progress=progress_line())
+    if asked.json:
+        _print_json(validated.as_json(found))
+    else:
+        sys.stdout.write(validated.as_text(found))
+    return DONE if all(outcome.agrees for outcome in found) else DISAGREES
 
 
 def _case(layout: Layout, name: str | None) -> LoadCase:

@@ -11,7 +11,7 @@ from engine.report.names import Wording
 from engine.report.text import NOTE, bullets, paragraph, subheading, table
 from engine.report.wording import METHOD, METHOD_ASSUMPTIONS
 from engine.units import significant
-from engine.validation import Outcome
+from engine.validation import NEAR_FIELD, Outcome, near_field_rows
 
 
 def method(matter: Matter, words: Wording, width: float) -> list[Flowable]:
@@ -74,7 +74,19 @@ def validation(outcomes: Sequence[Outcome], width: float) -> list[Flowable]:
     heads = (
         "No.", "Case", "Published", "Computed", "Deviation", "Tolerance", "Source",
     )  # fmt: skip
-    return [paragraph(text), table(heads, rows, (9, 27, 13, 13, 11, 12, 25), width)]
+    checked = table(heads, rows, (9, 27, 13, 13, 11, 12, 25), width)
+    return [paragraph(text), checked, *_near_field(width)]
+
+
+def _near_field(width: float) -> list[Flowable]:
+    """The error near bars and cables, by distance from the surface."""
+    heads, *rows = near_field_rows()
+    columns = (18.0, *(82.0 / (len(heads) - 1) for _ in heads[1:]))
+    return [
+        *subheading("Error near conductors, by distance from the surface"),
+        paragraph(NEAR_FIELD),
+        table(heads, rows, columns, width),
+    ]
 
 
 _RAISED = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")

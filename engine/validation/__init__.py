@@ -6,18 +6,28 @@ prints them. Those that need an independent numerical reference stand with the t
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from engine.units import significant
 from engine.validation.bars import bar_checks
 from engine.validation.check import Check, Outcome, outcome
 from engine.validation.lines import line_checks
+from engine.validation.near_field import (
+    NEAR_FIELD,
+    near_field_checks,
+    near_field_rows,
+)
 from engine.validation.textbooks import textbook_checks
 
-__all__ = ["Check", "Outcome", "checks", "outcome", "outcomes", "table"]
+__all__ = [
+    "NEAR_FIELD", "Check", "Outcome", "checks", "in_columns", "near_field_rows",
+    "outcome", "outcomes", "table",
+]  # fmt: skip
 
 
 def checks() -> tuple[Check, ...]:
     """Every check, in the order of its id's letter."""
-    return (*textbook_checks(), *line_checks(), *bar_checks())
+    return (*textbook_checks(), *line_checks(), *bar_checks(), *near_field_checks())
 
 
 def outcomes() -> tuple[Outcome, ...]:
@@ -25,10 +35,16 @@ def outcomes() -> tuple[Outcome, ...]:
     return tuple(outcome(check) for check in checks())
 
 
-def table() -> str:
-    """All outcomes as lines of text: id, published, computed, deviation, source."""
+def table(found: Sequence[Outcome] | None = None) -> str:
+    """Outcomes as lines of text: id, published, computed, deviation, source.
+
+    Parameters
+    ----------
+    found : sequence of Outcome, optional
+        All, computed now, where left out.
+    """
     rows = [("check", "published", "computed", "deviation", "agrees", "case", "source")]
-    for result in outcomes():
+    for result in outcomes() if found is None else found:
         check = result.check
         relative = result.relative_deviation
         deviation = (
@@ -47,6 +63,11 @@ def table() -> str:
                 check.source + (" (from memory)" if check.from_memory else ""),
             )
         )
+    return in_columns(rows)
+
+
+def in_columns(rows: Sequence[Sequence[str]]) -> str:
+    """Rows of cells as lines of text with aligned columns."""
     widths = [max(len(row[i]) for row in rows) for i in range(len(rows[0]))]
     return "\n".join(
         "  ".join(cell.ljust(w) for cell, w in zip(row, widths, strict=True)).rstrip()
