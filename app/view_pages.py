@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QObject
 
 from app.cycle_values import CyclePlace
+from app.menus import Command
+from app.pages.uncertainty_page import UncertaintyPage
 from app.pages.variants_page import VariantsPage
 from app.readout_values import Readout
 from app.views.cycle_page import CyclePage
@@ -28,9 +30,10 @@ class ViewPages(QObject):
         for page in (self.cycle, self.space):
             window.pages.addWidget(page)
             page.closed.connect(window.show_drawing)
-        self.variants = VariantsPage(*parts)
-        window.pages.addWidget(self.variants)
-        self.variants.closed.connect(window.show_drawing)
+        self.variants, self.uncertainty = VariantsPage(*parts), UncertaintyPage(*parts)
+        for result in (self.variants, self.uncertainty):
+            window.pages.addWidget(result)
+            result.closed.connect(window.show_drawing)
         window.band.opened.connect(self.open_variants)
         self._pointed: CyclePlace | None = None
         window.readout.shown.connect(self._on_read)
@@ -39,9 +42,22 @@ class ViewPages(QObject):
         """Show the layout in space."""
         self._window.show_page(self.space)
 
+    def commands(self) -> tuple[Command, ...]:
+        """Entries of the menu Field: what stands beside the value itself."""
+        return (
+            Command("Variants", self.open_variants, "Ctrl+Shift+V",
+                    "List, table and maps of base and variants"),
+            Command("Uncertainty", self.open_uncertainty, "Ctrl+Shift+U",
+                    "What matters for the value of a place, and tolerances"),
+        )  # fmt: skip
+
     def open_variants(self) -> None:
         """Show base and variants side by side."""
         self._window.show_page(self.variants)
+
+    def open_uncertainty(self) -> None:
+        """Show what the uncertainty of a place is made of."""
+        self._window.show_page(self.uncertainty)
 
     def open_cycle(self) -> None:
         """Show the field over one period: at the selected receptor, or the pointer.
@@ -75,6 +91,7 @@ class ViewPages(QObject):
         """Stop the threads, before the window goes."""
         self.cycle.close_worker()
         self.variants.close_worker()
+        self.uncertainty.close_worker()
         self.space.close_worker()
 
     def _on_read(self, found: Readout | None) -> None:

@@ -1,0 +1,295 @@
+"""The page of uncertainty: the budget of a place, and the tolerances behind it."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from PySide6.QtCore import Qt, QTimer
+from PySide6.QtGui import QGuiApplication, QResizeEvent, QShowEvent
+from PySide6.QtWidgets import QSplitter, QVBoxLayout, QWidget
+
+from app.answers import Answers
+from app.document import EVERYTHING, Document
+from app.figures import FIGURE_KINDS, ask_figure, write_figure
+from app.messages import Messages
+from app.page import Page
+from app.pages.budget_chart import BudgetChart
+from app.pages.profile_controls import choice
+from app.pages.tolerance_form import tolerance_groups
+from app.panels.form import Form
+from app.panels.panel import Words, button, scrolled
+from app.theme import LIGHT, STEP, qt_palette
+from app.uncertainty_values import (
+    Budgeted,
+    BudgetMaker,
+    BudgetRequest,
+    budget_csv,
+    head_text,
+    matters_text,
+    place_name,
+    places_of,
+    sampled_text,
+    used_text,
+)
+from app.variant_acts import with_shown
+from app.wrapping import WrappingRow
+from engine.budget import Budget
+
+#: Under this width the tolerances stand instead of the budget. [logical pixels]
+NARROW = 180 * STEP
+
+NO_PLACES = (
+    "Draw a zone where people are, or place a receptor, to see what matters there"
+)
+
+
+class UncertaintyPage(Page):
+    """Follows document and selection while it shows; computes in a thread."""
+
+    def __init__(
+        self, document: Document, _view_state: object, messages: Messages
+    ) -> None:
+        super().__init__("Uncertainty")
+        self._document, self._messages = document, messages
+        self.answer: Budgeted | None = None
+        self.place = ""
+        self._build()
+        self._answers = Answers("budgets", BudgetMaker().budgets, self)
+        self._answers.ready.connect(self._show)
+        self._soon = QTimer(self, singleShot=True, interval=0)
+        self._soon.timeout.connect(self._ask)
+        document.changed.connect(self._on_changed)
+        document.settled.connect(self._on_settled)
+        document.selection_changed.connect(self._on_selection)
+        self.setFocusProxy(self.places)
+
+    @property
+    def is_idle(self) -> bool:
+        """Nothing is being computed or waits to be asked."""
+        return self._answers.is_idle and not self._soon.isActive()
+
+    @property
+    def budget(self) -> Budget | None:
+        """The one that is shown."""
+        if self.answer is None:
+            return None
+        found = self.answer.of(self.place)
+        kind = self.kinds.currentText()
+        return next((b for b in found if b.kind == kind), found[0] if found else None)
+
+    def close_worker(self) -> None:
+        """Stop the thread, before the window goes."""
+        self._document.changed.disconnect(self._on_changed)
+        self._document.settled.disconnect(self._on_settled)
+        self._document.selection_changed.disconnect(self._on_selection)
+        self._soon.stop()
+        self._answers.close()
+
+    def show_place(self, place: str) -> None:
+        """Show the budget of a zone or receptor by its id."""
+        self.place = place
+        self._fill_places()
+        self._paint()
+
+    # -- building -----------------------------------------------------------------
+
+    def _build(self) -> None:
+        controls = QWidget()
+        row = WrappingRow(controls, 2 * STEP, 0)
+        self.places = choice("Zone or receptor whose budget is shown", 60)
+        self.places.activated.connect(
+            lambda k: self.show_place(str(self.places.itemData(k)))
+        )
+        self.kinds = choice("AC: all frequencies above 0 Hz; DC: 0 Hz", 16)
+        self.kinds.activated.connect(lambda _k: self._paint())
+        self.tolerances = button(
+            "Tolerances", "Show or hide what the budgets are made of", self._arrange
+        )
+        self.tolerances.setCheckable(True)
+        self.tolerances.setChecked(False)
+        for widget in (
+            self.places,
+            self.kinds,
+            self.tolerances,
+            button("Copy as sentence", "Value, U and what matters most, in words",
+                   self.copy_sentence),
+            button("Export …", "As PNG, SVG or CSV, with its caption", self.export),
+        ):  # fmt: skip
+            row.addWidget(widget)
+        self.state = Words("", "warning")
+        self.state.setWordWrap(False)
+        self.put_beside_title(controls, self.state)
+        self.head, self.matters = Words("", "plain"), Words("", "plain")
+        self.sampled, self.used = Words(""), Words("")
+        font = self.head.font()
+        font.setBold(True)
+        self.head.setFont(font)
+        self.chart = BudgetChart()
+        self.chart.chosen.connect(lambda item: self._document.select([item]))
+        self._shown = QWidget()
+        box = QVBoxLayout(self._shown)
+        box.setContentsMargins(0, 0, 0, 0)
+        box.setSpacing(STEP)
+        for part in (self.head, self.matters, self.sampled, self.used):
+            box.addWidget(part)
+        ranked = scrolled(self.chart)
+        ranked.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        ranked.setAccessibleName("What the uncertainty is made of")
+        box.addWidget(ranked, 1)
+        self.form = Form(self._document)
+        self.form.setContentsMargins(0, 0, STEP, 0)
+        split = QSplitter(Qt.Orientation.Horizontal)
+        split.setChildrenCollapsible(False)
+        split.addWidget(self._shown)
+        self._entered = scrolled(self.form)
+        self._entered.setMinimumWidth(80 * STEP)
+        split.addWidget(self._entered)
+        split.setStretchFactor(0, 1)
+        split.setSizes([160 * STEP, 82 * STEP])
+        self.column.addWidget(split, 1)
+
+    # -- events -------------------------------------------------------------------
+
+    def showEvent(self, event: QShowEvent) -> None:
+        self._soon.start()
+        super().showEvent(event)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        if (event.size().width() < NARROW) != (event.oldSize().width() < NARROW):
+            self.tolerances.setChecked(event.size().width() >= NARROW)
+        self._arrange()
+        super().resizeEvent(event)
+
+    def _arrange(self) -> None:
+        """With little room, either the budget or the tolerances show."""
+        on = self.tolerances.isChecked()
+        self._entered.setVisible(on)
+        self._shown.setVisible(not on or self.width() >= NARROW)
+
+    def _on_changed(self, _layout: object, ids: object) -> None:
+        if ids == EVERYTHING:
+            self.answer, self.place = None, ""
+
+    def _on_settled(self, _layout: object) -> None:
+        if self.isVisible():
+            self._soon.start()
+
+    def _on_selection(self, ids: frozenset[str]) -> None:
+        found = [p.id for p in places_of(self._document.layout) if p.id in ids]
+        if len(found) == 1 and len(ids) == 1:
+            self.place = found[0]
+            if self.isVisible():
+                self.show_place(found[0])
+
+    # -- computing ----------------------------------------------------------------
+
+    def _ask(self) -> None:
+        layout = self._document.committed
+        self.form.show_groups(tolerance_groups(layout))
+        self._fill_places()
+        if not places_of(layout):
+            self._answers.forget()
+            self.answer = None
+            self._paint()
+            self.head.setText(NO_PLACES)
+            return
+        if self._answers.ask(BudgetRequest(layout)):
+            text = "out of date" if self.answer is not None else "being computed …"
+            self.state.setText(text)
+
+    def _fill_places(self) -> None:
+        found = places_of(self._document.committed)
+        if self.place not in [place.id for place in found]:
+            self.place = found[0].id if found else ""
+        self.places.clear()
+        for place in found:
+            self.places.addItem(place_name(place), place.id)
+        self.places.setCurrentIndex(self.places.findData(self.place))
+
+    def _show(self, request: BudgetRequest, answer: object) -> None:
+        if request.layout is not self._document.committed:
+            return
+        self.state.setText("")
+        self.answer = answer if isinstance(answer, Budgeted) else None
+        self._paint()
+        if not isinstance(answer, Budgeted):
+            self.head.setText(str(answer))
+
+    def _paint(self) -> None:
+        budget = self.budget
+        kinds = (
+            [] if self.answer is None else [b.kind for b in self.answer.of(self.place)]
+        )
+        chosen = self.kinds.currentText()
+        self.kinds.clear()
+        self.kinds.addItems(kinds)
+        if chosen in kinds:
+            self.kinds.setCurrentText(chosen)
+        self.kinds.setVisible(len(kinds) > 1)
+        texts = ["", "", "", ""]
+        layout = self._document.committed
+        if self.answer is not None:
+            layout = self.answer.request.layout
+            place = layout.by_id().get(self.place)
+            if budget is not None and place is not None:
+                texts = [
+                    head_text(budget, layout), matters_text(budget, layout),
+                    sampled_text(budget, layout), used_text(layout, place),
+                ]  # fmt: skip
+            elif place is not None:
+                texts[0] = f"{place.title} has no value to make a budget for."
+        parts = (self.head, self.matters, self.sampled, self.used)
+        for part, text in zip(parts, texts, strict=True):
+            part.setText(text)
+            part.setVisible(bool(text))
+        self.chart.show_budget(budget, layout)
+
+    # -- handing on ---------------------------------------------------------------
+
+    def sentence(self) -> str:
+        """The budget in words; empty without one."""
+        budget = self.budget
+        if budget is None or self.answer is None:
+            return ""
+        layout = self.answer.request.layout
+        head = with_shown(self._document, head_text(budget, layout))
+        return f"{head}. {matters_text(budget, layout)} {sampled_text(budget, layout)}"
+
+    def copy_sentence(self) -> None:
+        """Put the budget on the clipboard, in words."""
+        text = self.sentence()
+        if not text:
+            self._messages.warn("There is no budget to copy yet.")
+            return
+        QGuiApplication.clipboard().setText(text)
+        self._messages.inform("The sentence is on the clipboard.")
+
+    def export(self) -> None:
+        """Ask where to, and write the budget."""
+        if self.budget is None:
+            self._messages.warn("There is nothing to export yet.")
+            return
+        path = ask_figure(self, "Export", "uncertainty.png", FIGURE_KINDS)
+        if path is not None:
+            with self._messages.shown():
+                self.write(path)
+                self._messages.inform(f"{path} was written.")
+
+    def write(self, path: Path) -> None:
+        """Write the chart: a picture, light as on paper, or all lines as numbers.
+
+        Raises
+        ------
+        UserError
+            When the file cannot be written.
+        """
+        budget = self.budget
+        if budget is None or self.answer is None:
+            raise ValueError("nothing is shown")
+        before = self.chart.palette()
+        self.chart.setPalette(qt_palette(LIGHT))
+        try:
+            table = budget_csv(budget, self.answer.request.layout)
+            write_figure(path, self.chart, self.sentence(), table)
+        finally:
+            self.chart.setPalette(before)
