@@ -57,7 +57,10 @@ def _font(bold: bool) -> ImageFont.FreeTypeFont:
 @cache
 def _advance(character: str, bold: bool) -> float:
     """Width of one character at a size of 1; no pair is set closer."""
-    return float(_font(bold).getlength(character)) / _MEASURED_AT
+    own = float(_font(bold).getlength(character)) / _MEASURED_AT
+    # Wide characters of other scripts come from another font, as wide as high.
+    wide = unicodedata.east_asian_width(character) in ("W", "F")
+    return max(own, 1.0) if wide else own
 
 
 def text_width(text: str, size: float, *, bold: bool = False) -> float:

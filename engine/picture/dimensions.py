@@ -16,7 +16,7 @@ SIZE = 2.0
 _NEAR, _FAR = 4.5, 10.5
 
 #: Widest text of a level. [mm]
-_MOST_LEVELS = 75.0
+_MOST_LEVELS = 46.0
 
 #: A level, what it is, and of which place. [m]
 Level = tuple[float, str, str]

@@ -13,6 +13,7 @@ from engine.layout_file import encode
 from engine.printed_text import printable, wrapped
 from engine.report.attachments import Attachment
 from engine.report.matter import Matter
+from engine.report.scripts import remarks_on
 from engine.report.story import Story
 from engine.report.text import Lines, paragraph, table
 
@@ -47,7 +48,8 @@ def appendix(told: Story, matter: Matter, attachments: Sequence[Attachment]) -> 
         text = "Omitted: the document was made without attachments."
         told.section("attachments", "Attached files", [paragraph(text)], number="A")
     lines = input_lines(matter.layout, round(72 / 25.4 * width))
-    told.section("input", "Full input", [paragraph(PRINTED)], number="B")
+    said = [PRINTED, *remarks_on("".join(lines))]
+    told.section("input", "Full input", [paragraph(t) for t in said], number="B")
     told.add([Lines(lines[:MOST_LINES])])
     if len(lines) > MOST_LINES:
         left = len(lines) - MOST_LINES

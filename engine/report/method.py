@@ -80,8 +80,9 @@ def validation(outcomes: Sequence[Outcome], width: float) -> list[Flowable]:
 
 def _near_field(width: float) -> list[Flowable]:
     """The error near bars and cables, by distance from the surface."""
-    heads, *rows = near_field_rows()
-    columns = (18.0, *(82.0 / (len(heads) - 1) for _ in heads[1:]))
+    # A row for each distance: there are more of them than formations.
+    heads, *rows = zip(*near_field_rows(), strict=True)
+    columns = (14.0, *(86.0 / (len(heads) - 1) for _ in heads[1:]))
     return [
         *subheading("Error near conductors, by distance from the surface"),
         paragraph(NEAR_FIELD),

@@ -19,6 +19,7 @@ from engine.errors import Cancelled, Progress, stop_if
 from engine.layout import Layout
 from engine.printed_text import BOLD, REGULAR, one_line
 from engine.report.attachments import Attachment, attach
+from engine.report.scripts import ScriptCanvas
 from engine.report.title_block import TITLE_BLOCK, draw_title_block
 
 FONT = "Lodestead Sans"
@@ -198,7 +199,7 @@ def _laid_out(
     document.attached = attachments
     story = make_story(before.pages)
     document.expected = max(1, len(story))
-    document.build(story)
+    document.build(story, canvasmaker=ScriptCanvas)
     return Laid(file.getvalue(), document.begun, document.page)
 
 

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from typing import Any
-from xml.sax.saxutils import escape
 
 from reportlab.lib.colors import Color
 from reportlab.lib.enums import TA_LEFT
@@ -21,6 +20,7 @@ from reportlab.platypus import (
 
 from engine.printed_text import fitted, one_line, printable, text_width, wrapped
 from engine.report.page import BOLD_FONT, FONT
+from engine.report.scripts import markup
 
 INK = Color(0.08, 0.09, 0.11)
 HAIR = Color(0.62, 0.65, 0.68)
@@ -63,7 +63,7 @@ SMALL_BULLET = ParagraphStyle(
 
 def paragraph(text: str, style: ParagraphStyle = BODY) -> Paragraph:
     """Text as a paragraph; what looks like markup in it is printed as it stands."""
-    return Paragraph(escape(printable(text)).replace("\n", "<br/>"), style)
+    return Paragraph(markup(printable(text)).replace("\n", "<br/>"), style)
 
 
 def paragraphs(text: str) -> list[Flowable]:
@@ -114,7 +114,7 @@ def subheading(text: str, key: str = "", *, room: float = 32.0) -> list[Flowable
 
 def bullets(texts: Sequence[str], style: ParagraphStyle = BULLET) -> list[Flowable]:
     """Texts as a list."""
-    return [Paragraph(escape(printable(text)), style, bulletText="–") for text in texts]
+    return [Paragraph(markup(printable(text)), style, bulletText="–") for text in texts]
 
 
 class ContentsLine(Flowable):  # type: ignore[misc]

@@ -8,6 +8,8 @@ import io
 
 import msgspec
 import pytest
+from fontTools.fontBuilder import FontBuilder
+from fontTools.pens.ttGlyphPen import TTGlyphPen
 from msgspec.structs import replace
 from PIL import Image
 from pypdf import PdfReader
@@ -19,7 +21,7 @@ from engine.conductors import conductors
 from engine.errors import ComputationCancelled, UserError
 from engine.items import IssuedRevision, Item
 from engine.layout import Layout
-from engine.report import Matter, report_pdf
+from engine.report import Matter, report_pdf, scripts
 from engine.report.page import Watch
 from engine.report.wording import INDIVIDUAL
 from engine.results import Assessment, CaseResult, ReceptorResult, ZoneResult
@@ -279,3 +281,48 @@ def test_zones_without_results_keep_their_reason():
     results = dataclasses.replace(found.assessment, zones=(none,))
     text = text_of(report_pdf(dataclasses.replace(found, assessment=results)))
     assert "Office: It states no floor level." in text
+
+
+def made_up_font(path):
+    """A font with one outline for two Chinese characters."""
+    pen = TTGlyphPen(None)
+    pen.moveTo((0, 0))
+    pen.lineTo((0, 800))
+    pen.lineTo((800, 800))
+    pen.lineTo((800, 0))
+    pen.closePath()
+    builder = FontBuilder(1000)
+    names = [".notdef", "one", "two"]
+    builder.setupGlyphOrder(names)
+    builder.setupCharacterMap({ord("数"): "one", ord("据"): "two"})
+    builder.setupGlyf({name: pen.glyph() for name in names})
+    builder.setupHorizontalMetrics({name: (1000, 0) for name in names})
+    builder.setupHorizontalHeader(ascent=800, descent=-200)
+    builder.setupNameTable({"familyName": "Made Up", "styleName": "Regular"})
+    builder.setupOS2()
+    builder.setupPost()
+    builder.save(path)
+
+
+def test_other_scripts_are_printed_in_a_font_of_the_machine(tmp_path, monkeypatch):
+    made_up_font(tmp_path / "made-up.ttf")
+    covered = scripts.registered(tmp_path / "made-up.ttf")
+    assert covered >= {ord("数"), ord("据")}
+    monkeypatch.setattr(scripts, "fallback", lambda: covered)
+    data = report_pdf(filled_matter("Raum 数据 end"))
+    assert_within_margins(data)
+    text = text_of(data)
+    assert "Raum 数据 end" in text
+    assert "Characters without a picture" not in text
+
+
+def test_characters_without_a_font_are_noted(monkeypatch):
+    monkeypatch.setattr(scripts, "fallback", frozenset)
+    text = text_of(report_pdf(filled_matter("Raum 数据 שלום")))
+    assert "Characters without a picture in the fonts at hand: 2" in text
+    assert "written from right to left is printed in the order" in text
+
+
+def test_a_font_that_cannot_be_embedded_is_passed_over(tmp_path):
+    (tmp_path / "no.ttf").write_bytes(b"no font")
+    assert scripts.registered(tmp_path / "no.ttf") == frozenset()
