@@ -166,7 +166,7 @@ class MainWindow(QMainWindow):
             ("Item", self.item, "The values of what is selected"),
             ("Circuits", self.circuits, "Currents, neutrals, harmonics"),
             ("Cases", self.load_cases, "Load cases: which currents flow together"),
-            ("Ref. levels", self.levels, "Levels that the field is compared with"),
+            ("Ref. levels", self.levels, "What the field is compared with"),
             ("Remarks", self.remarks, "What to bear in mind, and what is assumed"),
         ):
             self.panels.add(name, panel, tip)

@@ -35,13 +35,17 @@ class MessageBar(QWidget):
         self._text.setTextFormat(Qt.TextFormat.PlainText)
         self._text.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
         self._copy = QPushButton("Copy details")
+        self._copy.setToolTip("Copy what went wrong, for a report of it")
         self._copy.clicked.connect(self._copy_details)
         self._close = QToolButton()
         self._close.setText("Close")
+        self._close.setToolTip("Put the message aside")
         self._close.setAutoRaise(True)
         self._close.clicked.connect(self.hide)
         self._details = ""
         self._offer = QPushButton()
+        self._offer.setAccessibleName("Do what is offered")
+        self._offer.setToolTip("Does at once what the message offers")
         self._offer.clicked.connect(self._take_offer)
         self._offered: Callable[[], object] | None = None
         row = QHBoxLayout(self)
@@ -72,6 +76,7 @@ class MessageBar(QWidget):
         """Show a warning with something that can be done about it at once."""
         self._show("warning", sentence, "")
         self._offer.setText(button)
+        self._offer.setAccessibleName(button)
         self._offer.show()
         self._offered = act
 
@@ -117,6 +122,7 @@ class JobBar(QWidget):
         self._bar.setTextVisible(False)
         self._bar.setFixedWidth(160)
         cancel = QPushButton("Cancel")
+        cancel.setToolTip("Stop it; nothing that it wrote stays")
         cancel.clicked.connect(jobs.cancel)
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)

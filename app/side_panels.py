@@ -25,6 +25,7 @@ class SidePanels(QWidget):
     def __init__(self) -> None:
         super().__init__()
         self._tabs = QTabBar()
+        self._tabs.setAccessibleName("Side panels")
         self._tabs.setExpanding(False)
         self._tabs.setDrawBase(False)
         self._tabs.setUsesScrollButtons(True)

@@ -117,7 +117,7 @@ BEGINNINGS: tuple[Beginning, ...] = (
         (
             _current(800.0),
             Asked(
-                "link", "Link", "Length of the link's level part", True, 5.0, 2.0, 100.0
+                "link", "Link", "Length of its horizontal part", True, 5.0, 2.0, 100.0
             ),
         ),
         transformer_link_board,

@@ -66,6 +66,7 @@ class PlainTable(QTableView):
         self.contents = PlainModel()
         self.setModel(self.contents)
         self.setAccessibleName(name)
+        self.setToolTip(f"{name}; copying takes the chosen rows, or all of them")
         self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.setSelectionMode(QAbstractItemView.SelectionMode.ExtendedSelection)
         self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)

@@ -146,6 +146,7 @@ class VariantTable(QTableView):
         self.setModel(self.contents)
         self.setItemDelegate(_CellPainter(self))
         self.setAccessibleName("Base and variants, place by place")
+        self.setToolTip("Value, ratio and state of every place, base and variants")
         self.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
         self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.setTabKeyNavigation(False)

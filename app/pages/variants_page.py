@@ -20,7 +20,6 @@ from app.panels.panel import Words, button
 from app.theme import LIGHT, STEP, qt_palette
 from app.variant_values import TableAnswer, TableRequest, VariantTables
 from app.variant_words import (
-    Held,
     differing_texts,
     held_of,
     raised_texts,
@@ -29,6 +28,7 @@ from app.variant_words import (
 )
 from app.view_state import ViewState
 from app.wrapping import WrappingRow
+from engine.layout import Layout
 
 NO_PLACES = "Draw a zone where people are, or place a receptor, to compare variants"
 
@@ -45,7 +45,7 @@ class VariantsPage(Page):
         self._document, self._view_state = document, view_state
         self._messages = messages
         self.answer: TableAnswer | None = None
-        self._held: Held = {}
+        self._held: Layout | None = None
         self._build()
         self._told.connect(self._tell_progress, Qt.ConnectionType.QueuedConnection)
         tables = VariantTables(self._told.emit)
@@ -72,9 +72,9 @@ class VariantsPage(Page):
         self.maps.close_worker()
 
     def hold(self, on: bool) -> None:
-        """Let the present values stand beside the coming ones."""
-        self._held = held_of(self.answer) if on and self.answer is not None else {}
-        self.table.show_answer(self.answer, self._held)
+        """Let the values of base and variants as they are stand beside the coming."""
+        self._held = self._document.whole if on else None
+        self._on_changed()
 
     # -- building -----------------------------------------------------------------
 
@@ -104,10 +104,13 @@ class VariantsPage(Page):
             box.addWidget(part)
         box.addWidget(self.table, 1)
         self.tabs = QTabWidget()
+        self.tabs.setAccessibleName("Base and variants")
         self.tabs.setDocumentMode(True)
         self.tabs.addTab(self.compared, "Table of places")
         self.maps = VariantMapTab(self._document, self._view_state)
         self.tabs.addTab(self.maps, "Maps")
+        self.tabs.setTabToolTip(0, "Every place in the base and in the variants")
+        self.tabs.setTabToolTip(1, "The maps of base and variant, and their change")
         split = QSplitter(Qt.Orientation.Horizontal)
         split.setChildrenCollapsible(False)
         split.addWidget(self.list)
@@ -134,7 +137,7 @@ class VariantsPage(Page):
 
     def _on_opened(self, _layout: object, ids: object) -> None:
         if ids == EVERYTHING:
-            self.answer, self._held = None, {}
+            self.answer = self._held = None
             self.table.show_answer(None, {})
 
     # -- computing ----------------------------------------------------------------
@@ -145,7 +148,7 @@ class VariantsPage(Page):
             self._answers.forget()
             self._tell(NO_PLACES)
             return
-        if self._answers.ask(TableRequest(whole)):
+        if self._answers.ask(TableRequest(whole, self._held)):
             if self.answer is None:
                 self._tell("The comparison is being computed …")
             else:
@@ -171,7 +174,7 @@ class VariantsPage(Page):
         differing = "\n".join(differing_texts(answer))
         self.differing.setText(differing)
         self.differing.setVisible(bool(differing))
-        self.table.show_answer(answer, self._held)
+        self.table.show_answer(answer, held_of(answer))
 
     def _tell(self, text: str) -> None:
         """Say why there is no table."""
@@ -230,7 +233,7 @@ class VariantsPage(Page):
             raise ValueError("nothing is shown")
         table = VariantTable()
         table.setPalette(qt_palette(LIGHT))
-        table.show_answer(answer, self._held)
+        table.show_answer(answer, held_of(answer))
         table.show_whole()
         caption = "\n".join([self.caption(), *raised_texts(answer)])
         write_figure(path, table, caption, table_csv(answer))

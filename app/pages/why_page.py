@@ -137,9 +137,12 @@ class WhyPage(Page):
         below.setContentsMargins(0, 0, 0, 0)
         below.addWidget(self.table)
         self.tabs = QTabWidget()
+        self.tabs.setAccessibleName("Why this value")
         self.tabs.setDocumentMode(True)
         self.tabs.addTab(shares, "Shares of circuits")
         self.tabs.addTab(retraced, "Retrace this value")
+        self.tabs.setTabToolTip(0, "What each circuit adds to the value or cancels")
+        self.tabs.setTabToolTip(1, "From the currents to the value, step by step")
         self.column.addWidget(self.tabs, 1)
 
     # -- events -------------------------------------------------------------------

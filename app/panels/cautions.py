@@ -41,4 +41,4 @@ class CautionsPanel(QWidget):
         box = QVBoxLayout(self)
         box.setContentsMargins(2 * STEP, STEP, 2 * STEP, STEP)
         box.addLayout(head)
-        box.addWidget(scrolled(self.text), 1)
+        box.addWidget(scrolled(self.text, "Cautions"), 1)

@@ -48,10 +48,10 @@ class LevelPlot(pg.PlotWidget):
         self.setMouseEnabled(False, False)
         self.setMenuEnabled(False)
         self.hideButtons()
-        self.setAccessibleName("Level against frequency")
+        self.setAccessibleName("Reference level against frequency")
         self.setToolTip(
-            "Level against frequency on logarithmic axes; dashed lines: frequencies of "
-            "the circuits"
+            "Reference level against frequency on logarithmic axes; dashed lines: "
+            "frequencies of the circuits"
         )
 
     def show_level(

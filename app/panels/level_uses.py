@@ -24,10 +24,10 @@ class LevelUses(QWidget):
         self.list = QListWidget()
         self.list.setAccessibleName("Compared places")
         self.list.setToolTip(
-            "Checked: the zone or receptor is compared with this level"
+            "Checked: the zone or receptor is compared with this reference level"
         )
         self.list.itemChanged.connect(self._on_changed)
-        self.none = Words("Draw a zone where people are, then assign the level to it.")
+        self.none = Words("Draw a zone where people are, then assign it here.")
         box = column(self)
         box.addWidget(Words("Compared places", "plain"))
         box.addWidget(self.none)

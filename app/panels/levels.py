@@ -52,6 +52,7 @@ COMPONENTS: tuple[tuple[str, str], ...] = (
 SUM_RULES: tuple[tuple[str, str], ...] = (
     ("ratio sum", "sum of the ratios"),
     ("root sum of squares", "root sum of squares of the ratios"),
+    ("weighted peak", "weighted peak of the waveform"),
 )
 
 
@@ -165,9 +166,13 @@ class LevelsPanel(Panel):
         row = QHBoxLayout()
         row.setSpacing(STEP)
         for title, tip, slot in (
-            ("Add", "Add a level that says nothing yet", self.add),
-            ("Duplicate", "Add the chosen level once more", self.duplicate),
-            ("Remove", "Remove the chosen level, also from its places", self.remove),
+            ("Add", "Add a reference level that says nothing yet", self.add),
+            ("Duplicate", "Add the chosen reference level once more", self.duplicate),
+            (
+                "Remove",
+                "Remove the chosen reference level, also from its places",
+                self.remove,
+            ),
         ):
             row.addWidget(button(title, tip, slot))
         row.addWidget(self.library)
@@ -179,16 +184,16 @@ class LevelsPanel(Panel):
         form.setSpacing(STEP)
         form.setFieldGrowthPolicy(QFormLayout.FieldGrowthPolicy.AllNonFixedFieldsGrow)
         self.source_mark = OriginMark(self._document)
-        self.name = self._words("Name", "name", "Name of the level")
+        self.name = self._words("Name", "name", "Name of the reference level")
         self.source = self._words(
-            "Source", "source", "Where the level comes from: the document and its "
-            "clause", self.source_mark, 2000,
+            "Source", "source", "Where the reference level comes from: the document "
+            "and its clause", self.source_mark, 2000,
         )  # fmt: skip
         self.edition = self._words(
             "Edition", "edition", "Edition or year of the source"
         )
         self.category = self._choice(
-            "For", "category", CATEGORIES, "For whom or what the level is"
+            "For", "category", CATEGORIES, "For whom or what it holds"
         )
         self.entered_by = self._words("Entered by", "entered_by", "Who entered it")
         self.basis = self._choice(
@@ -323,8 +328,8 @@ def _state(level: ReferenceLevel) -> str:
 def _columns() -> tuple[Column, ...]:
     return (
         Column(
-            "Name", lambda v: v.name or v.id, _with_name, tip="Name of the level",
-            width=30,
+            "Name", lambda v: v.name or v.id, _with_name,
+            tip="Name of the reference level", width=30,
         ),
         Column(
             "For", lambda v: dict(CATEGORIES)[v.category], _with_category,

@@ -28,7 +28,7 @@ class LevelLibraryButton(QPushButton):
         self._library, self._messages, self._take = library, messages, take
         self._level: ReferenceLevel | None = None
         self.setText("Library")
-        self.setToolTip("Your own levels, kept for the next project")
+        self.setToolTip("Your own reference levels, kept for the next project")
         self.library_menu = QMenu(self)
         self.library_menu.aboutToShow.connect(self.fill)
         self.setMenu(self.library_menu)

@@ -208,6 +208,7 @@ class LoadCasesPanel(Panel):
 
     def _pages(self) -> QTabWidget:
         tabs = QTabWidget()
+        tabs.setAccessibleName("The load case")
         tabs.setDocumentMode(True)
         first = QWidget()
         box = column(first)

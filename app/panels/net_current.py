@@ -53,7 +53,7 @@ class NetCurrent(QWidget):
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(3 * STEP)
         row.addWidget(self.phasors)
-        area = scrolled(told)
+        area = scrolled(told, "Net current of the section")
         area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         area.setMinimumWidth(34 * STEP)
         row.addWidget(area, 1)

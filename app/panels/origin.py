@@ -245,6 +245,8 @@ class OriginMark(QToolButton):
         self.form: OriginForm | None = None
         self.setFixedSize(6 * STEP, 6 * STEP)
         self.setAutoRaise(True)
+        self.setAccessibleName("Origin of the value")
+        self.setToolTip("Where the value comes from")
         self.clicked.connect(self.open_form)
 
     @property

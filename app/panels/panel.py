@@ -127,9 +127,16 @@ def button(title: str, tip: str, press: Callable[[], None]) -> QPushButton:
     return made
 
 
-def scrolled(content: QWidget) -> QScrollArea:
-    """A frameless scroll area around `content` that follows its width."""
+def scrolled(content: QWidget, name: str = "") -> QScrollArea:
+    """A frameless scroll area around `content` that follows its width.
+
+    Without a name the keyboard goes by it, to the fields within; a text alone needs
+    one, to be scrolled by keys.
+    """
     area = QScrollArea()
+    area.setFocusPolicy(Qt.FocusPolicy.StrongFocus if name else Qt.FocusPolicy.NoFocus)
+    area.setAccessibleName(name)
+    area.setAccessibleDescription("Up and Down scroll the text." if name else "")
     area.setWidgetResizable(True)
     area.setFrameShape(QFrame.Shape.NoFrame)
     area.setWidget(content)

@@ -98,9 +98,11 @@ class RemarksPanel(Panel):
         box.addWidget(self._foot)
         self.assumed = AssumptionsPage(document)
         self.tabs = QTabWidget()
+        self.tabs.setAccessibleName("Remarks and assumed values")
         self.tabs.setDocumentMode(True)
         self.tabs.addTab(page, "Remarks")
         self.tabs.addTab(self.assumed, "Assumed")
+        self.tabs.setTabToolTip(0, "What to bear in mind, what blocks a comparison")
         self.tabs.setTabToolTip(
             1, "Values that no document, measurement or person backs"
         )

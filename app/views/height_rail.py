@@ -156,6 +156,7 @@ class RailScale(QWidget):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMouseTracking(True)
         self.setAccessibleName("Height rail")
+        self.setToolTip("Height of the map above the datum; click a tick or drag")
         self.setAccessibleDescription(
             "Up and Down move the height of the map, Page Up and Page Down go to the "
             "next tick, Home shows the largest over heights."

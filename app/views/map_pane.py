@@ -53,6 +53,7 @@ class MapPane(QWidget):
 
     def __init__(self) -> None:
         super().__init__()
+        self.setAccessibleName("Map")
         self._map: PaneMap | None = None
         self._image = QImage()
         self._sight: Sight | None = None

@@ -71,7 +71,7 @@ class SpaceControls(QWidget):
                                "the axis, such as 0.35 m; Enter moves it",
                                20, self.way_typed.emit)  # fmt: skip
         self.heights = self._field(
-            "Maps at z", "Heights of level maps above the datum, parted by blanks, "
+            "Maps at z", "Heights of the maps above the datum, parted by blanks, "
             "such as 0.5 1 1.5 m; empty: as the plan shows",
             36, self.heights_typed.emit,
         )  # fmt: skip
