@@ -25,6 +25,7 @@ from engine.masks import keepouts
 from engine.places import Receptor, Zone
 from engine.readings import reading
 from engine.units import LENGTH_UNITS
+from engine.weighted_peak import weighted_peak
 from engine.zone_assessment import zone_floor
 
 Floats = npt.NDArray[np.float64]
@@ -319,7 +320,10 @@ def ratios_at(
         if key not in read:
             read[key] = reading(b, ready.currents.components, *key).by_frequency
         compared = ratios(level, read[key])
-        known = [r for r in (compared.ac, compared.dc) if r is not None]
+        alternating = compared.ac
+        if alternating is not None and level.sum_rule == "weighted peak":
+            alternating = weighted_peak(b, ready.currents.components, level).values
+        known = [r for r in (alternating, compared.dc) if r is not None]
         if known and not compared.missing:
             found.append((level, np.max(known, axis=0)))
     return found

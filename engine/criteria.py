@@ -61,5 +61,6 @@ class ReferenceLevel(Item, frozen=True, kw_only=True):
     basis: Literal["RMS", "peak"] = "RMS"
     component: Literal["resultant", "axis"] = "resultant"
     #: How several frequencies count together; 0 Hz is always compared on its own.
-    sum_rule: Literal["ratio sum", "root sum of squares"] = "ratio sum"
+    #: The weighted peak takes angles into account (`engine/weighted_peak.py`).
+    sum_rule: Literal["ratio sum", "root sum of squares", "weighted peak"] = "ratio sum"
     uncertainty_rule: Text = ""

@@ -120,7 +120,7 @@ def load_factor(ratio: float) -> LoadFactor | None:
     """The factor on a load case from the ratio to the level; None without a field.
 
     Ratios are proportional to the currents when all of them are scaled together, at
-    all frequencies: both sum rules are, and so are bounds over unknown angles.
+    all frequencies: all sum rules are, and so are bounds over unknown angles.
 
     Examples
     --------

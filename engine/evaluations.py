@@ -14,6 +14,7 @@ from engine.criteria import ReferenceLevel
 from engine.levels import Kind, is_kind, ratios
 from engine.readings import reading
 from engine.regions import Region
+from engine.weighted_peak import weighted_peak
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
@@ -28,6 +29,16 @@ class Quantity:
     kind: Kind
     level: ReferenceLevel | None = None
 
+    @property
+    def is_weighted(self) -> bool:
+        """Whether it is a weighted peak, which values by frequency do not give."""
+        level = self.level
+        return (
+            level is not None
+            and self.kind == "AC"
+            and level.sum_rule == "weighted peak"
+        )
+
     def same_place_as(self, frequencies: Sequence[float]) -> tuple[object, ...]:
         """Quantities of equal key are proportional, so largest at the same place."""
         own = [f for f in frequencies if is_kind(f, self.kind)]
@@ -35,7 +46,9 @@ class Quantity:
             return (self.case, self.kind, None if self.level is None else self.level.id)
         if self.level is None:
             return (self.case, self.kind, "RMS", "resultant")
-        return (self.case, self.kind, self.level.basis, self.level.component)
+        # The weighted peak of one frequency is its peak over the cycle.
+        basis = "peak" if self.is_weighted else self.level.basis
+        return (self.case, self.kind, basis, self.level.component)
 
 
 class Evaluation:
@@ -57,6 +70,7 @@ class Evaluation:
         self._readings: dict[
             tuple[str, str], tuple[dict[float, Floats], bool, str]
         ] = {}
+        self._peaks: dict[ReferenceLevel, tuple[Floats, bool, str]] = {}
 
     @property
     def masked(self) -> Bools:
@@ -93,10 +107,28 @@ class Evaluation:
             return np.zeros(self._counts.shape[1]), False, ""
         return self._mean(values), whole.is_bound, whole.reason
 
+    def _weighted(self, level: ReferenceLevel) -> tuple[Floats, bool, str]:
+        """(p,) weighted peaks; whether they are a bound."""
+        if level not in self._peaks:
+            peak = weighted_peak(self._b, self._case.components, level)
+            means = self._mean(peak.values)
+            self._peaks[level] = (means, peak.is_bound, peak.reason)
+        return self._peaks[level]
+
+    def bound(self, quantity: Quantity) -> tuple[bool, str]:
+        """Whether a quantity is an upper bound for unknown angles, and why."""
+        if quantity.level is None:
+            return self.total(quantity.kind)[1:]
+        if quantity.is_weighted:
+            return self._weighted(quantity.level)[1:]
+        return self.by_frequency(quantity.level)[1:]
+
     def unmasked_score(self, quantity: Quantity) -> Floats:
         """(p,) ratio or resultant, masks left aside."""
         if quantity.level is None:
             return self.total(quantity.kind)[0]
+        if quantity.is_weighted:
+            return self._weighted(quantity.level)[0]
         compared = ratios(quantity.level, self.by_frequency(quantity.level)[0])
         values = compared.dc if quantity.kind == "DC" else compared.ac
         assert values is not None, "asked for a comparison that cannot be made"

@@ -12,6 +12,7 @@ from engine.criteria import ReferenceLevel
 from engine.currents import Component
 from engine.levels import Kind, is_kind, ratios, what_is_missing
 from engine.readings import reading
+from engine.weighted_peak import weighted_peak
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
@@ -63,6 +64,9 @@ def level_use(
     )
     compared = ratios(level, values.by_frequency)
     found = compared.ac if kind == "AC" else compared.dc
+    if found is not None and kind == "AC" and level.sum_rule == "weighted peak":
+        peak = weighted_peak(b[rows], [components[k] for k in rows], level)
+        return LevelUse(peak.values, "", peak.is_bound, peak.reason)
     if found is None:
         lacked = sorted({*compared.missing, *compared.not_covered})
         listed = ", ".join(f"{f:g}" for f in lacked)

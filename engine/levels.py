@@ -194,7 +194,9 @@ def ratios(level: ReferenceLevel, by_frequency: Mapping[float, Floats]) -> Ratio
     -------
     Ratios
         ``Σ B_f / L_f`` for the ratio sum (ICNIRP 2010, Health Physics 99(6):818,
-        eq. 5) or ``sqrt(Σ (B_f / L_f)²)``, over the frequencies above 0 Hz.
+        eq. 5) or ``sqrt(Σ (B_f / L_f)²)``, over the frequencies above 0 Hz. Values by
+        frequency know no angles: for the weighted peak it is the ratio sum, which is
+        never below it (`engine/weighted_peak.py` has the peak itself).
     """
     at = {f: level_at(level, f) for f in by_frequency}
     not_covered = tuple(
@@ -208,9 +210,9 @@ def ratios(level: ReferenceLevel, by_frequency: Mapping[float, Floats]) -> Ratio
     parts = [by_frequency[f] / value for f, value in compared.items() if f > 0]
     if not parts or missing:
         ac = None
-    elif level.sum_rule == "ratio sum":
-        ac = np.sum(parts, axis=0)
-    else:
+    elif level.sum_rule == "root sum of squares":
         ac = np.sqrt(np.sum(np.square(parts), axis=0))
+    else:
+        ac = np.sum(parts, axis=0)
     dc = by_frequency[0.0] / compared[0.0] if 0.0 in compared else None
     return Ratios(ac, dc, missing, not_covered)

@@ -193,9 +193,8 @@ def found_at(
     area_above: float = 0.0,
 ) -> Found:
     """What an evaluation of one position says of a quantity there."""
-    values, is_bound, reason = evaluation.by_frequency(quantity.level)
-    if quantity.level is None:
-        _, is_bound, reason = evaluation.total(quantity.kind)
+    values = evaluation.by_frequency(quantity.level)[0]
+    is_bound, reason = evaluation.bound(quantity)
     score = float(evaluation.unmasked_score(quantity)[0])
     by_frequency = {
         f: float(v[0]) for f, v in values.items() if is_kind(f, quantity.kind)
@@ -233,15 +232,15 @@ def _area_mean(
     step: float,
 ) -> Found:
     """One quantity's mean over one level area."""
-    values, is_bound, reason = evaluation.by_frequency(quantity.level)
+    values = evaluation.by_frequency(quantity.level)[0]
+    is_bound, reason = evaluation.bound(quantity)
     means = {
         f: np.array([np.average(v, weights=weights)])
         for f, v in values.items()
         if is_kind(f, quantity.kind)
     }
     local = evaluation.unmasked_score(quantity)
-    if quantity.level is None:
-        _, is_bound, reason = evaluation.total(quantity.kind)
+    if quantity.level is None or quantity.is_weighted:
         score = float(np.average(local, weights=weights))
     else:
         score = _ratio_of_means(quantity.level, means, quantity.kind)

@@ -10,7 +10,7 @@ range, which halves what they leave.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -20,6 +20,7 @@ from engine.certified.boxes import Boxes
 from engine.certified.expansions import Expansion
 from engine.certified.masking import MASKED, PART, Masked
 from engine.evaluations import Evaluation, Quantity
+from engine.weighted_peak import SAMPLING_SLACK, as_ratio_sum
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
@@ -28,6 +29,9 @@ Bools = NDArray[np.bool_]
 #: By how much the search for the worst time shift may exceed the true worst: its
 #: samples are raised by ½ (π/128)² Σ |x_k| with 2 Σ |x_k| below the square. Relative.
 _SHIFT_SLACK = 2e-4
+
+#: By how much the sampled weighted peak of a cycle may miss the true one.
+_PEAK_SLACK = SAMPLING_SLACK
 
 #: Of the largest mean: to a ten-thousandth of the largest value.
 _HALVINGS = 14
@@ -88,6 +92,17 @@ def _aligned(sizes: Floats) -> Complexes:
     return b
 
 
+def _at_any_angle(quantity: Quantity) -> Quantity:
+    """What bounds the quantity of a rest whose angles are not known.
+
+    The angles of a weighted peak decide whether crests meet; the sum of ratios is
+    what they come to at most.
+    """
+    if quantity.level is None or not quantity.is_weighted:
+        return quantity
+    return replace(quantity, level=as_ratio_sum(quantity.level))
+
+
 def unit_scores(case: CaseCurrents, quantity: Quantity) -> Floats:
     """(c,) score of one tesla in one component alone. [1/T] or [-]"""
     c = len(case.components)
@@ -143,13 +158,15 @@ def upper_scores(
     uppers = []
     for quantity in quantities:
         highest = whole.unmasked_score(quantity).reshape(n, k).max(axis=1)
-        upper = highest + rest.unmasked_score(quantity)
+        upper = highest + rest.unmasked_score(_at_any_angle(quantity))
         if np.any(torn):
             corners = enclosed.corners[:, :, torn]
             at_heights = _by_height(case, quantity, corners, rests[:, :, torn])
             upper[torn] = _largest_mean(at_heights, masks[torn])
         if quantity.level is None and whole.total(quantity.kind)[1]:
             upper *= 1.0 + _SHIFT_SLACK
+        if quantity.is_weighted:
+            upper *= 1.0 + _PEAK_SLACK
         uppers.append(np.where(bounded, upper, np.inf))
     return np.array(uppers)
 
@@ -163,7 +180,8 @@ def _by_height(
     whole = Evaluation(case, corners.reshape(c, -1, 3), open_everywhere, 1)
     rest = Evaluation(case, _aligned(rests.reshape(c, -1)), open_everywhere[: q * n], 1)
     highest = whole.unmasked_score(quantity).reshape(q, n, k).max(axis=2)
-    upper: Floats = highest + rest.unmasked_score(quantity).reshape(q, n)
+    of_rest = rest.unmasked_score(_at_any_angle(quantity))
+    upper: Floats = highest + of_rest.reshape(q, n)
     return upper
 
 
