@@ -35,7 +35,7 @@ class ReadoutRequest:
     """What is asked: the field over a place on plan, as the look shows it.
 
     `z` is None for the height or heights of the look, where the largest is taken; an
-    elevation states it. [m]
+    elevation states it. `held` is the layout whose value stands beside. [m]
     """
 
     layout: Layout
@@ -43,6 +43,7 @@ class ReadoutRequest:
     x: float
     y: float
     z: float | None = None
+    held: Layout | None = None
 
 
 @dataclass(frozen=True)
@@ -65,6 +66,8 @@ class Readout:
     ratio : float or None
         The highest of the comparisons that can be made there.
     level_title : str
+    was : float or None
+        What `resultant` is in the layout that is held as before. [T]
     """
 
     at: Point3
@@ -78,6 +81,7 @@ class Readout:
     near_field: bool = False
     ratio: float | None = None
     level_title: str = ""
+    was: float | None = None
 
 
 def readout(request: ReadoutRequest, *, cancelled: Cancelled | None = None) -> Readout:

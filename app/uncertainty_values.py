@@ -130,8 +130,8 @@ def share_text(part: float) -> str:
     return "under 1 %" if part < 0.01 else f"{100 * part:.0f} %"
 
 
-def head_text(budget: Budget, layout: Layout) -> str:
-    """Value, U and what the value is, in one line."""
+def head_text(budget: Budget, layout: Layout, held: Budget | None = None) -> str:
+    """Value, U, what they were where they are held, and what the value is."""
     place = layout.by_id()[budget.place]
     k = layout.settings.uncertainty.coverage
     expanded = budget.expanded(k)
@@ -139,6 +139,9 @@ def head_text(budget: Budget, layout: Layout) -> str:
     text += f" ± {value_text(expanded, layout)} (U, k = {k:g}"
     if budget.value > 0:
         text += f"; {significant(100 * expanded / budget.value, 2)} %"
+    if held is not None:
+        before = value_text(held.value, layout)
+        text += f"; was {before} ± {value_text(held.expanded(k), layout)}"
     case = next((c.title for c in layout.cases if c.id == budget.case), budget.case)
     level = next((x.title for x in layout.levels if x.id == budget.level), "")
     what = f"{budget.kind}, as compared with {level}" if level else budget.kind

@@ -19,17 +19,19 @@ _REMEMBERED = 24
 
 @dataclass(frozen=True)
 class TableRequest:
-    """What is asked: all columns of a layout with its variants."""
+    """All columns of a layout with its variants, and of one that is held as before."""
 
     whole: Layout
+    held: Layout | None = None
 
 
 @dataclass(frozen=True, eq=False)
 class TableAnswer:
-    """The table and what it was asked for."""
+    """The table and what it was asked for; `before` is that of the held layout."""
 
     request: TableRequest
     table: VariantComparison
+    before: VariantComparison | None = None
 
 
 class VariantTables:
@@ -56,7 +58,12 @@ class VariantTables:
         ComputationCancelled
             When `cancelled` says so.
         """
-        whole = request.whole
+        before = None
+        if request.held is not None:
+            before = self._table(request.held, cancelled)
+        return TableAnswer(request, self._table(request.whole, cancelled), before)
+
+    def _table(self, whole: Layout, cancelled: Cancelled) -> VariantComparison:
         columns: list[tuple[str | None, str]] = [(None, "Base")]
         columns += [(v.id, v.title) for v in whole.variants]
         made = []
@@ -65,7 +72,7 @@ class VariantTables:
             layout = layout_of(whole, variant)
             assessment = self._assessed(layout, cancelled, told)
             made.append(column_of(whole, variant, assessment))
-        return TableAnswer(request, comparison_table(made))
+        return comparison_table(made)
 
     def _part(self, k: int, n: int, title: str) -> Callable[[float, str], None]:
         return lambda part, text: self._tell((k + part) / n, f"{title}: {text}")

@@ -82,12 +82,15 @@ def was_text(held: Cell | None, layout: Layout) -> str:
     return f"was {value_text(held, layout)}"
 
 
-def held_of(answer: TableAnswer) -> Held:
-    """All cells of a table, to stand beside those to come."""
+def held_of(answer: TableAnswer | None) -> Held:
+    """All cells of the table that is held, to stand beside those of now."""
+    table = None if answer is None else answer.before
+    if table is None:
+        return {}
     return {
         (row.place, row.level, row.kind, column.variant): cell
-        for row in answer.table.rows
-        for column, cell in zip(answer.table.columns, row.cells, strict=True)
+        for row in table.rows
+        for column, cell in zip(table.columns, row.cells, strict=True)
     }
 
 

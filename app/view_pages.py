@@ -87,6 +87,11 @@ class ViewPages(QObject):
         self.cycle.show_place(place)
         self._window.show_page(self.cycle)
 
+    def hold(self, on: bool) -> None:
+        """Let present values stand beside the coming ones, wherever values stand."""
+        for part in (self._window.readout, self.variants, self.uncertainty):
+            part.hold(on)
+
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self.cycle.close_worker()

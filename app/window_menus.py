@@ -275,6 +275,7 @@ class WindowMenus(QObject):
         """Another layout is shown: nothing is as before."""
         self._held.setChecked(False)
         self._window.margins.hold(False)
+        self._window.view_pages.hold(False)
 
     def _on_undo_text(self, text: str) -> None:
         self._undo.setText(f"Undo: {text}" if text else "Undo")
@@ -335,6 +336,7 @@ class WindowMenus(QObject):
                 "There is no margin to hold yet: it takes a zone, a reference level "
                 "and a current."
             )
+        self._window.view_pages.hold(self._held.isChecked())
 
     def _copy_picture(self) -> None:
         w = self._window

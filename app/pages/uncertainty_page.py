@@ -53,6 +53,7 @@ class UncertaintyPage(Page):
         self._document, self._messages = document, messages
         self.answer: Budgeted | None = None
         self.place = ""
+        self._held: Budgeted | None = None
         self._build()
         self._answers = Answers("budgets", BudgetMaker().budgets, self)
         self._answers.ready.connect(self._show)
@@ -84,6 +85,11 @@ class UncertaintyPage(Page):
         self._document.selection_changed.disconnect(self._on_selection)
         self._soon.stop()
         self._answers.close()
+
+    def hold(self, on: bool) -> None:
+        """Let the present budgets stand beside the coming ones."""
+        self._held = self.answer if on else None
+        self._paint()
 
     def show_place(self, place: str) -> None:
         """Show the budget of a zone or receptor by its id."""
@@ -168,7 +174,7 @@ class UncertaintyPage(Page):
 
     def _on_changed(self, _layout: object, ids: object) -> None:
         if ids == EVERYTHING:
-            self.answer, self.place = None, ""
+            self.answer, self._held, self.place = None, None, ""
 
     def _on_settled(self, _layout: object) -> None:
         if self.isVisible():
@@ -215,6 +221,11 @@ class UncertaintyPage(Page):
         if not isinstance(answer, Budgeted):
             self.head.setText(str(answer))
 
+    def _was(self, budget: Budget) -> Budget | None:
+        """The held budget of the same value."""
+        held = () if self._held is None else self._held.of(budget.place)
+        return next((b for b in held if b.kind == budget.kind), None)
+
     def _paint(self) -> None:
         budget = self.budget
         kinds = (
@@ -233,7 +244,8 @@ class UncertaintyPage(Page):
             place = layout.by_id().get(self.place)
             if budget is not None and place is not None:
                 texts = [
-                    head_text(budget, layout), matters_text(budget, layout),
+                    head_text(budget, layout, self._was(budget)),
+                    matters_text(budget, layout),
                     sampled_text(budget, layout), used_text(layout, place),
                 ]  # fmt: skip
             elif place is not None:

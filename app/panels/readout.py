@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import logging
+from dataclasses import replace
 
 from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtWidgets import QLabel, QSizePolicy, QWidget
@@ -40,12 +41,26 @@ def _value(found: Readout, unit: str) -> str:
         text = f"DC {text}"
     if found.is_bound:
         text = f"at most {text}"
+    if found.was is not None:
+        text += f", was {significant(in_unit(found.was, unit))}"
     if found.components is not None:
         x, y, z = (significant(in_unit(c, unit)) for c in found.components)
         text += f" (x {x} y {y} z {z})"
     if found.near_field:
         text += ", near field, even current assumed"
     return text
+
+
+def _with_held(request: ReadoutRequest) -> Readout:
+    """The field, and what it is at the same place in the layout that is held."""
+    found = readout(request)
+    if request.held is None or request.held is request.layout:
+        return found
+    try:
+        before = readout(replace(request, layout=request.held, held=None))
+    except UserError:
+        return found
+    return replace(found, was=before.resultant)
 
 
 class ReadoutLine(QLabel):
@@ -71,6 +86,7 @@ class ReadoutLine(QLabel):
         super().__init__(parent)
         self._document, self._view_state = document, view_state
         self._at: tuple[float, float, float | None] | None = None
+        self._held: Layout | None = None
         self._asked: ReadoutRequest | None = None
         self.setTextFormat(Qt.TextFormat.PlainText)
         self.setAccessibleName("Field at the pointer")
@@ -103,6 +119,11 @@ class ReadoutLine(QLabel):
         self.clear()
         self.shown.emit(None)
 
+    def hold(self, on: bool) -> None:
+        """Let the values of the layout as it is stand beside the coming ones."""
+        self._held = self._document.committed if on else None
+        self._on_changed()
+
     @property
     def is_idle(self) -> bool:
         """Nothing is being computed or waits to be asked."""
@@ -123,7 +144,7 @@ class ReadoutLine(QLabel):
         if self._at is None:
             return
         request = ReadoutRequest(
-            self._document.layout, self._view_state.look, *self._at
+            self._document.layout, self._view_state.look, *self._at, self._held
         )
         if request != self._asked:
             self._asked = request
@@ -132,7 +153,7 @@ class ReadoutLine(QLabel):
     def _compute(self, request: ReadoutRequest, outdated: Outdated) -> None:
         """In the thread. Not stopped by the next place: the line must keep up."""
         try:
-            self._found.emit(request, readout(request))
+            self._found.emit(request, _with_held(request))
         except ComputationCancelled:
             return
         except UserError as error:

@@ -136,3 +136,13 @@ def test_it_says_which_uncertainty_is_used(document):
     bed = layout.by_id()["stress-test-bed"]
     assert place_name(bed) == "Stress-test bed (receptor)"
     assert used_text(layout, bed).startswith("Comparisons here use the layout's")
+
+
+def test_a_held_budget_stands_beside_the_new_one(qtbot, page, document):
+    wait(qtbot, page)
+    page.hold(True)
+    document.choose("bond-removed")
+    wait(qtbot, page)
+    assert "; was 14.1 mG ± 2.31 mG)" in page.head.text()
+    page.hold(False)
+    assert "was" not in page.head.text()

@@ -11,12 +11,13 @@ from PySide6.QtCore import Qt
 from app.document import Document
 from app.messages import Messages
 from app.pages.variants_page import VariantsPage
+from app.panels.readout import ReadoutLine
 from app.variant_acts import move_to_base, rename, with_shown
 from app.variant_band import VariantBand
 from app.variant_words import is_raised, percent, table_cells
 from app.view_state import ViewState
 from engine import layout_file
-from engine.edits import replaced
+from engine.edits import removed, replaced
 from engine.errors import UserError
 from engine.variants import layout_of
 
@@ -43,6 +44,7 @@ def wait(qtbot, page):
         assert page.is_idle
         assert page.answer is not None
         assert page.answer.request.whole is page._document.whole
+        assert page.answer.request.held is page._held
 
     qtbot.waitUntil(answered, timeout=60_000)
 
@@ -87,10 +89,21 @@ def test_an_edit_of_a_variant_computes_its_column_anew_and_no_other(qtbot, page)
 
 def test_held_values_stand_beside_the_new_ones(qtbot, page):
     wait(qtbot, page)
+    document = page._document
     page.hold(True)
-    text = page.table.contents.data(page.table.contents.index(0, 1))
-    assert text.splitlines()[0] == "694 mG, was 694 mG"
+    document.choose("bond-removed")
+    circuit = next(c for c in document.layout.circuits if c.id == "R3")
+    document.edit("Rest R3", removed(document.layout, circuit.id))
+    wait(qtbot, page)
+    values = [
+        page.table.contents.data(page.table.contents.index(0, k)).splitlines()[0]
+        for k in (1, 2)
+    ]
+    assert values[0] == "694 mG, was 694 mG"
+    assert values[1].endswith(", was 636 mG")
+    assert not values[1].startswith("636")
     page.hold(False)
+    wait(qtbot, page)
     text = page.table.contents.data(page.table.contents.index(0, 1))
     assert text.splitlines()[0] == "694 mG"
 
@@ -179,3 +192,22 @@ def test_captions_name_what_is_shown(document):
 )
 def test_changes_have_two_figures(part, text):
     assert percent(part) == text
+
+
+def test_the_field_at_the_pointer_keeps_what_it_was(qtbot, document):
+    line = ReadoutLine(document, ViewState())
+    qtbot.addWidget(line)
+    found = []
+    line.shown.connect(found.append)
+    line.hold(True)
+    line.show_at(4.0, 4.4, 0.8)
+    qtbot.waitUntil(lambda: len(found) == 1, timeout=60_000)
+    assert found[0].was is None
+    document.choose("bond-removed")
+    qtbot.waitUntil(lambda: len(found) == 2, timeout=60_000)
+    assert found[1].was == found[0].resultant
+    assert f", was {line.text().split(', was ')[1][:4]}" == ", was 14.1"
+    line.hold(False)
+    qtbot.waitUntil(lambda: len(found) == 3, timeout=60_000)
+    assert found[2].was is None
+    line.close_worker()
