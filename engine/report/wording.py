@@ -103,6 +103,12 @@ METHOD: tuple[str, ...] = (
     "B is the RMS resultant, √(Σ |B_axis,f|²) over the three axes and all frequencies "
     "above 0 Hz; it is not the semi-major axis of the field's ellipse. DC is compared "
     "on its own and is in no AC total.",
+    "Several frequencies count together by the rule of each level: the sum of B/L, the "
+    "root of the sum of (B/L)², or the weighted peak (ICNIRP 2010, eq. 7): the largest "
+    "value over the cycle of all frequencies, each over its level as amplitudes and "
+    "turned by 90° times the exponent with which the level falls. For a single "
+    "frequency whose field turns, it is below B/L. Where angles are unknown, it is the "
+    "sum of the weighted peaks that are known, an upper bound.",
     "The largest value of a zone is searched between grid points too; how, and down to "
     "which distance, stands under the table of zones. Points inside conductors, in "
     "closed enclosures and within the zone's clearance are masked, not assessed, and "
