@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine import field
+from engine.adaptive_maps import FEWEST, Layer, adaptive_layer, direct_layer
 from engine.case_fields import CaseFields, case_currents
 from engine.circuits import LoadCase
 from engine.conductors import Conductor, conductors
@@ -25,8 +26,6 @@ Bools = NDArray[np.bool_]
 _PIECES = 200
 #: Left around what is drawn. [m]
 _MARGIN = 1.0
-#: Field values (components times points) held at once.
-_VALUES_AT_ONCE = 4_000_000
 
 #: x from, y from, x to, y to. [m]
 Extent = tuple[float, float, float, float]
@@ -57,6 +56,11 @@ class MapResult:
         Where current flows. [Hz]
     is_bound, bound_reason
         Whether the values are upper bounds because angles are unknown, and why.
+    evaluations : int
+        Points at which the field was summed.
+    checked_error : float
+        Largest deviation found between nodes of the map, of the local value; 0 where
+        every point was evaluated. See `adaptive_maps`.
     """
 
     case: str
@@ -70,6 +74,8 @@ class MapResult:
     frequencies: tuple[float, ...]
     is_bound: bool
     bound_reason: str
+    evaluations: int = 0
+    checked_error: float = 0.0
 
 
 def extent(layout: Layout) -> Extent:
@@ -174,6 +180,8 @@ def _map(
         frequencies=currents.frequencies,
         is_bound=bool(reasons),
         bound_reason="; ".join(reasons),
+        evaluations=sum(layer.evaluations for layer in layers),
+        checked_error=max(layer.checked_error for layer in layers),
     )
 
 
@@ -189,30 +197,8 @@ def _told(
         progress(1.0, "Map computed")
 
 
-@dataclass(frozen=True, eq=False)
-class _Layer:
-    """Values (n,) on one plane, 0 where masked. [T]"""
-
-    ac: Floats
-    dc: Floats
-    mask: Bools
-    reason: str
-
-
-def _layer(fields: CaseFields, sample: PlaneSample) -> _Layer:
-    """One plane of a map, a block of points at a time."""
-    case, n = fields.cases[0], len(sample.points)
-    ac, dc, mask, reasons = np.zeros(n), np.zeros(n), np.zeros(n, bool), set()
-    block = max(1000, _VALUES_AT_ONCE // max(1, len(case.components)))
-    for start in range(0, n, block):
-        part = slice(start, start + block)
-        points = sample.points[part]
-        b = fields.flux_densities(points, keep=True)[0]
-        mask[part] = fields.masked(points, 0.0)[0]
-        whole = field.combined(b, case.components)
-        if whole.total_ac is not None:
-            ac[part] = np.where(mask[part], 0.0, whole.total_ac)
-        if whole.dc is not None:
-            dc[part] = np.where(mask[part], 0.0, whole.dc)
-        reasons.add(whole.reason)
-    return _Layer(ac, dc, mask, "; ".join(sorted(reasons - {""})))
+def _layer(fields: CaseFields, sample: PlaneSample) -> Layer:
+    """One plane: large ones by interpolation where the field is smooth."""
+    if len(sample.points) < FEWEST:
+        return direct_layer(fields, sample)
+    return adaptive_layer(fields, sample)
