@@ -8,9 +8,10 @@ from PySide6.QtCore import QObject
 from PySide6.QtWidgets import QFileDialog, QWidget
 
 from app.document import Document
-from app.jobs import Jobs
+from app.jobs import Jobs, Work
 from app.map_request import heights_of
 from app.messages import Messages
+from app.variant_acts import shown_text
 from app.view_state import ViewState
 from engine.commands.horizontal_map import write_map
 from engine.errors import Cancelled, Progress
@@ -57,7 +58,10 @@ class Exports(QObject):
         def work(cancelled: Cancelled, progress: Progress) -> None:
             write_report(layout, path, cancelled=cancelled, progress=progress)
 
-        self._start("Writing the report", work, path)
+        told = f"{path} was written."
+        if self._document.variant is not None:
+            told = f"{path} was written, of the base with its variants as options."
+        self._start("Writing the report", work, told)
 
     def map(self, path: Path) -> None:
         """Write the map as the view shows it: its load case, its heights."""
@@ -65,18 +69,18 @@ class Exports(QObject):
         heights, _ = heights_of(layout, look)
         case = next((c for c in layout.cases if c.id == look.case), layout.cases[0])
 
+        shown = shown_text(self._document)
+
         def work(cancelled: Cancelled, progress: Progress) -> None:
             write_map(
-                layout, case, heights, path, cancelled=cancelled, progress=progress
-            )
+                layout, case, heights, path, shown=shown, cancelled=cancelled,
+                progress=progress,
+            )  # fmt: skip
 
-        self._start("Exporting the map", work, path)
+        self._start("Exporting the map", work, f"{path} was written.")
 
-    def _start(self, title: str, work: object, path: Path) -> None:
-        assert callable(work)
-        self._jobs.start(
-            title, work, lambda _: self._messages.inform(f"{path} was written.")
-        )
+    def _start(self, title: str, work: Work, told: str) -> None:
+        self._jobs.start(title, work, lambda _: self._messages.inform(told))
 
     def _suggested(self, ending: str) -> str:
         path = self._document.path

@@ -24,6 +24,7 @@ from app.pages.profile_controls import choice
 from app.pages.share_tree import ShareTree
 from app.panels.panel import Words, button
 from app.theme import LIGHT, STEP, qt_palette
+from app.variant_acts import with_shown
 from app.view_state import ViewState
 from app.why_values import (
     Why,
@@ -291,7 +292,8 @@ class WhyPage(Page):
         before = shown.palette()
         shown.setPalette(qt_palette(LIGHT))
         try:
-            caption = f"{caption_text(why)}\n{head_text(why)}"
+            caption = with_shown(self._document, caption_text(why))
+            caption = f"{caption}\n{head_text(why)}"
             write_figure(path, shown, caption, table)
         finally:
             shown.setPalette(before)

@@ -28,6 +28,7 @@ from app.messages import Messages
 from app.page import Page
 from app.panels.panel import Words, button, scrolled
 from app.theme import LIGHT, STEP, qt_palette, theme_for
+from app.variant_acts import with_shown
 from app.view_state import ViewState
 from app.views.cycle_board import CycleBoard, first_component
 from app.worker import Outdated, Worker
@@ -331,6 +332,7 @@ class CyclePage(Page):
             raise ValueError("nothing is shown")
         layout, request = self._shown.layout, self._shown
         caption = caption_text(layout, request.case, request.place)
+        caption = with_shown(self._document, caption)
         text = f"{caption} · {summary_text(layout, self.view)}"
         index = max(self.frequencies.currentIndex(), 0)
         before = self.board.palette()

@@ -22,6 +22,7 @@ from app.messages import Messages
 from app.page import Page
 from app.panels.panel import Words, decimal_sign
 from app.theme import LIGHT, STEP, Theme, theme_for
+from app.variant_acts import with_shown
 from app.view_state import ViewState
 from app.views.inks import Inks
 from app.views.legend import Legend
@@ -349,7 +350,7 @@ class SpaceView(Page):
         where = self.desk.words() if self.desk is not None else ""
         case = case_title(self._document.layout, self._view_state.look.case)
         parts = [f"{QUANTITY} · {where}" if where else "Layout in space"]
-        return " · ".join([*parts, f"case {case}"])
+        return with_shown(self._document, " · ".join([*parts, f"case {case}"]))
 
     def export(self) -> None:
         """Ask where to, and write the picture."""

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -29,12 +30,14 @@ def write_map(
     out: Path,
     *,
     unit: str | None = None,
+    shown: str = "",
     progress: Progress | None = None,
     cancelled: Cancelled | None = None,
 ) -> None:
     """Write the map at a height above the datum, or the largest over several.
 
-    The ending of `out` says its kind. Numbers are written for one height only.
+    The ending of `out` says its kind. Numbers are written for one height only. `shown`
+    is said first under the title of a picture: "variant Bond removed".
 
     Raises
     ------
@@ -61,9 +64,13 @@ def write_map(
         write_csv(out, subjects, np.full(result.values.size, heights[0]))
         return
     # AC, or the direct field where no other flows; the caption says which.
+    subject = subjects[0]
+    if shown:
+        said = f"{shown[:1].upper()}{shown[1:]}."
+        subject = replace(subject, lines=(said, *subject.lines))
     drawn = plan(layout, conductors(layout))
     if kind == ".png":
-        write_png(out, subjects[0], drawn)
+        write_png(out, subject, drawn)
     else:
-        picture = map_picture(subjects[0], drawn, width=277.0, height=190.0)
+        picture = map_picture(subject, drawn, width=277.0, height=190.0)
         write_file(out, svg(picture).encode("utf-8"))
