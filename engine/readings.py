@@ -73,9 +73,10 @@ def reading(
 def _summed(
     b: NDArray[np.complex128], components: Sequence[Component], basis: Basis, axis: Axis
 ) -> Reading:
-    """Per frequency the sum over the components, which no angle can exceed."""
+    """Per frequency the worst of two components, or the sum, which no angle exceeds."""
     frequencies = sorted({c.frequency for c in components})
-    by_frequency, several = {}, []
+    by_frequency: dict[float, Floats] = {}
+    several, pairs = [], []
     for f in frequencies:
         rows = [k for k, c in enumerate(components) if c.frequency == f]
         if f == 0:
@@ -83,6 +84,10 @@ def _summed(
             rows_of_f = np.sum(b[rows], axis=0, keepdims=True)
         else:
             rows_of_f = b[rows]
+            if len(rows) == 2 and axis == "resultant" and basis == "peak":
+                by_frequency[f] = np.sqrt(2.0) * field.worst_semi_major(*rows_of_f)
+                pairs.append(f)
+                continue
             if len(rows) > 1:
                 several.append(f)
         by_frequency[f] = sum(
@@ -91,8 +96,9 @@ def _summed(
     # On one axis some angle lines the parts up, but not at every frequency at once.
     is_bound = len(several) > 1 or (bool(several) and axis == "resultant")
     listed = ", ".join(f"{f:g}" for f in several)
-    reason = f"sum of currents of unknown angle at {listed} Hz" if is_bound else ""
-    return Reading(by_frequency, is_bound, reason)
+    reasons = [f"sum of currents of unknown angle at {listed} Hz"] if is_bound else []
+    reasons += [field.WORST_OF_TWO] if pairs else []
+    return Reading(by_frequency, bool(reasons), "; ".join(reasons))
 
 
 def _one(

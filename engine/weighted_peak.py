@@ -87,6 +87,9 @@ def weighted_peak(
     weighted = b[rows] * gains[:, None, None]
     phases = [_exponents(level, c.frequency) for c in alternating]
     if len({c.frequency for c in alternating}) == 1:
+        if len(rows) == 2 and level.component == "resultant":
+            worst = field.worst_semi_major(*weighted)
+            return field.Peak(worst, True, field.WORST_OF_TWO)
         # All turn alike, which changes no length.
         return _of_sources(weighted, alternating, level, [np.ones(len(rows), complex)])
     if not all(phases):

@@ -1,7 +1,7 @@
 """Magnetic field of conductors in space: arrays in, arrays out, no layout."""
 
 from engine.field.cache import ResponseCache
-from engine.field.combined import Combined, combined
+from engine.field.combined import WORST_OF_TWO, Combined, combined, worst_semi_major
 from engine.field.masks import inside, near_field, surface_distance
 from engine.field.quantities import (
     Cycle,
@@ -16,6 +16,7 @@ from engine.field.quantities import (
 from engine.field.sums import flux_density, responses, vector_potential
 
 __all__ = [
+    "WORST_OF_TWO",
     "Combined",
     "Cycle",
     "Ellipse",
@@ -33,4 +34,5 @@ __all__ = [
     "resultant",
     "surface_distance",
     "vector_potential",
+    "worst_semi_major",
 ]

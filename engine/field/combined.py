@@ -16,7 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.currents import Component
-from engine.field.quantities import common_frequency, resultant
+from engine.field.quantities import common_frequency, ellipse, resultant
 
 Floats = NDArray[np.float64]
 Phasors = NDArray[np.complex128]
@@ -131,6 +131,38 @@ def _worst_of_two(first: Phasors, second: Phasors) -> Floats:
     shared = np.abs((first * second.conj()).sum(axis=-1))
     squares = resultant(first) ** 2 + resultant(second) ** 2
     worst: Floats = np.sqrt(squares + 2.0 * shared)
+    return worst
+
+
+def worst_semi_major(first: Phasors, second: Phasors) -> Floats:
+    """Largest semi-major axis of two sources over the unknown angle between them.
+
+    Parameters
+    ----------
+    first, second : (n, 3) complex
+        RMS phasors of one frequency. [T]
+
+    Returns
+    -------
+    (n,) float
+        RMS; never below the largest of ``ellipse(first + exp(jθ) second).semi_major``
+        and above it by 0.03 % of the second source's at most. [T]
+
+    Notes
+    -----
+    The best of 128 angles. At an instant and in a direction the sum is a constant and
+    a cosine of θ with the second source's semi-major axis at most, so that what lies
+    between two samples is below ½ (π/128)² of that axis.
+    """
+    largest = np.zeros(first.shape[0])
+    step = max(1, _MOST_SAMPLES // _SHIFTS)
+    turns = np.exp(2j * np.pi * np.arange(_SHIFTS) / _SHIFTS)[:, None, None]
+    for start in range(0, len(largest), step):
+        part = slice(start, start + step)
+        sampled = ellipse(first[part] + turns * second[part]).semi_major
+        largest[part] = sampled.max(axis=0)
+    missed = 0.5 * (np.pi / _SHIFTS) ** 2 * ellipse(second).semi_major
+    worst: Floats = largest + missed
     return worst
 
 

@@ -16,6 +16,7 @@ from engine.field import (
     ellipse,
     peak,
     resultant,
+    worst_semi_major,
 )
 
 ROOT2 = np.sqrt(2)
@@ -298,3 +299,25 @@ class TestCombined:
             peak(self.b, ac(50))
         with pytest.raises(ValueError, match="must be"):
             cycle(self.b[0], ac(50), 4)
+
+
+@few
+@given(seeds)
+def test_two_sources_peak_together_at_the_worst_angle(seed: int) -> None:
+    first, second = phasors(np.random.default_rng(seed), 2, 8)
+    found = worst_semi_major(first, second)
+    angles = np.linspace(0, 2 * np.pi, 2001)[:, None, None]
+    trials = ellipse(first + np.exp(1j * angles) * second).semi_major.max(axis=0)
+    assert (found >= trials * (1 - 1e-12)).all()
+    # What 128 angles may miss is added: half of (π/128)² of the second source.
+    apart = 3.1e-4 * ellipse(second).semi_major
+    assert (found <= trials * (1 + 2e-6) + apart).all()
+    both = ellipse(first).semi_major + ellipse(second).semi_major
+    assert (found <= both + apart).all()
+
+
+def test_two_fields_along_lines_at_right_angles_peak_at_their_hypotenuse() -> None:
+    # In phase the sum is a line of length √(3² + 4²); no angle gives more.
+    first, second = np.array([[3.0, 0, 0]], complex), np.array([[0, 4.0, 0]], complex)
+    assert worst_semi_major(first, second) == pytest.approx([5.0], rel=3e-4)
+    assert worst_semi_major(first, 1j * second)[0] >= 5.0
