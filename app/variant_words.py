@@ -40,9 +40,12 @@ def value_text(cell: Cell, layout: Layout) -> str:
 
 
 def change_text(cell: Cell) -> str:
-    """ "higher, +14 %", "same within 1 %"; empty in the base."""
+    """ "higher, +14 %", "ratio higher, B −3 %"; empty in the base."""
     if cell.change is None:
         return ""
+    if cell.change != "higher" and cell.ratio_change == "higher":
+        part = "" if cell.relative is None else f", B {percent(cell.relative)}"
+        return f"ratio higher{part}"
     if cell.change in ("higher", "lower") and cell.relative is not None:
         return f"{cell.change}, {percent(cell.relative)}"
     if cell.change == "not comparable" and cell.value is not None:
@@ -75,11 +78,14 @@ def has_cases(layout: Layout) -> bool:
     return sum(case.counted for case in layout.cases) > 1
 
 
-def was_text(held: Cell | None, layout: Layout) -> str:
-    """ "was 61.2 µT" where a value is held as before."""
+def was_text(cell: Cell, held: Cell | None, layout: Layout) -> str:
+    """ "was 61.2", in the unit of the value, where another one is held as before."""
     if held is None or held.value is None:
         return ""
-    return f"was {value_text(held, layout)}"
+    if value_text(held, layout) == value_text(cell, layout):
+        return ""
+    unit = layout.settings.flux_density_unit
+    return f"was {significant(in_unit(held.value, unit))}"
 
 
 def held_of(answer: TableAnswer | None) -> Held:
@@ -106,7 +112,10 @@ def cell_sentence(answer: TableAnswer, row: Row, index: int) -> str:
     if cell.case:
         parts.append(f"worst counted load case {case_name(layout, cell.case)}")
     if cell.ratio_change and cell.ratio_change != cell.change:
-        parts.append(f"its ratio to the level is {cell.ratio_change}")
+        parts.append(
+            f"its ratio to the level is {cell.ratio_change}, as frequencies count "
+            "differently there"
+        )
     if cell.place_differs:
         parts.append("the place itself is another one than in the base")
     text = "; ".join(parts) + "."

@@ -71,6 +71,17 @@ class VariantModel(QAbstractTableModel):
             return None
         return self.row_at(index.row()).cells[index.column() - 1]
 
+    def was(self, index: _Index) -> str:
+        """What a value was, where it is held as before."""
+        assert self.answer is not None
+        cell = self.cell(index)
+        if cell is None:
+            return ""
+        row = self.row_at(index.row())
+        column = self.answer.table.columns[index.column() - 1]
+        held = self.held.get((row.place, row.level, row.kind, column.variant))
+        return was_text(cell, held, column.assessment.layout)
+
     def lines(self, index: _Index) -> tuple[str, str, str]:
         """What stands in a cell: large, then two small lines."""
         assert self.answer is not None
@@ -81,10 +92,7 @@ class VariantModel(QAbstractTableModel):
             return row.title, against_text(row, base), kind
         k = index.column() - 1
         cell, layout = row.cells[k], columns[k].assessment.layout
-        held = self.held.get((row.place, row.level, row.kind, columns[k].variant))
-        value = ", ".join(
-            text for text in (value_text(cell, layout), was_text(held, layout)) if text
-        )
+        value = value_text(cell, layout)
         state = state_text(cell, layout, with_case=has_cases(layout))
         if k == 0:
             return value, state, ""
@@ -122,19 +130,26 @@ class VariantModel(QAbstractTableModel):
         if self.answer is None:
             return None
         if role == Qt.ItemDataRole.DisplayRole:
-            return "\n".join(line for line in self.lines(index) if line)
+            return self._text(index)
         if role in (
             Qt.ItemDataRole.ToolTipRole,
             Qt.ItemDataRole.AccessibleTextRole,
         ):
-            text = "\n".join(line for line in self.lines(index) if line)
+            text = self._text(index)
             if index.column():
                 row = self.row_at(index.row())
                 text = cell_sentence(self.answer, row, index.column() - 1)
+                was = self.was(index)
+                text += f" It {was}." if was else ""
             if role == Qt.ItemDataRole.ToolTipRole:
                 return plain_tip(text)
             return text
         return None
+
+    def _text(self, index: _Index) -> str:
+        first, *others = self.lines(index)
+        was = self.was(index)
+        return "\n".join(t for t in (f"{first}, {was}" if was else first, *others) if t)
 
 
 class VariantTable(QTableView):
@@ -214,8 +229,8 @@ class _CellPainter(QStyledItemDelegate):
             colour = theme.accent if table.hasFocus() else theme.line
             painter.setPen(QPen(QColor(colour), 1.5))
             painter.drawRect(box.adjusted(1.5, 1.5, -1.5, -2.5))
-        lines = table.contents.lines(index)
-        self._write(painter, box, lines, cell, theme, table)
+        lines, was = table.contents.lines(index), table.contents.was(index)
+        self._write(painter, box, lines, was, cell, theme, table)
         painter.restore()
 
     def _write(
@@ -223,6 +238,7 @@ class _CellPainter(QStyledItemDelegate):
         painter: QPainter,
         box: QRectF,
         lines: tuple[str, str, str],
+        was: str,
         cell: Cell | None,
         theme: Theme,
         widget: QWidget,
@@ -230,6 +246,8 @@ class _CellPainter(QStyledItemDelegate):
         x, y = box.left() + 2 * STEP, box.top() + 1.5 * STEP
         width = box.width() - 3 * STEP
         change = None if cell is None else cell.change
+        if cell is not None and is_raised(cell):
+            change = "higher"
         for k, text in enumerate(lines):
             font = QFont(widget.font())
             font.setPixelSize(BODY if k == 0 else SMALL)
@@ -253,7 +271,20 @@ class _CellPainter(QStyledItemDelegate):
             painter.drawText(
                 QRectF(left, y, room, height), Qt.AlignmentFlag.AlignLeft, shown
             )
+            if k == 0 and was:
+                taken = painter.fontMetrics().horizontalAdvance(shown) + 1.5 * STEP
+                beside = QRectF(left + taken, y, room - taken, height)
+                _write_was(painter, beside, was, theme)
             y += height + 1
+
+
+def _write_was(painter: QPainter, box: QRectF, was: str, theme: Theme) -> None:
+    font = QFont(painter.font())
+    font.setPixelSize(SMALL)
+    font.setBold(False)
+    painter.setFont(font)
+    painter.setPen(QColor(theme.muted))
+    painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, was)
 
 
 _TONES = ("higher", "lower", "same within 1 %")

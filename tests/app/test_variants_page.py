@@ -14,11 +14,12 @@ from app.pages.variants_page import VariantsPage
 from app.panels.readout import ReadoutLine
 from app.variant_acts import move_to_base, rename, with_shown
 from app.variant_band import VariantBand
-from app.variant_words import is_raised, percent, table_cells
+from app.variant_words import change_text, is_raised, percent, table_cells
 from app.view_state import ViewState
 from engine import layout_file
 from engine.edits import removed, replaced
 from engine.errors import UserError
+from engine.variant_comparison import Cell
 from engine.variants import layout_of
 
 SAMPLE = Path(__file__).parents[2] / "sample_layouts" / "imaging-corridor.json"
@@ -99,8 +100,8 @@ def test_held_values_stand_beside_the_new_ones(qtbot, page):
         page.table.contents.data(page.table.contents.index(0, k)).splitlines()[0]
         for k in (1, 2)
     ]
-    assert values[0] == "694 mG, was 694 mG"
-    assert values[1].endswith(", was 636 mG")
+    assert values[0] == "694 mG"
+    assert values[1].endswith(" mG, was 636")
     assert not values[1].startswith("636")
     page.hold(False)
     wait(qtbot, page)
@@ -184,6 +185,12 @@ def test_captions_name_what_is_shown(document):
     )
     document.open(structs.replace(document.whole, variants=()), None)
     assert with_shown(document, "Map") == "Map"
+
+
+def test_a_higher_ratio_is_told_where_the_value_falls():
+    cell = Cell(value=1e-6, change="lower", relative=-0.027, ratio_change="higher")
+    assert is_raised(cell)
+    assert change_text(cell) == "ratio higher, B −2.7 %"
 
 
 @pytest.mark.parametrize(
