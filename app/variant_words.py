@@ -40,12 +40,11 @@ def value_text(cell: Cell, layout: Layout) -> str:
 
 
 def change_text(cell: Cell) -> str:
-    """ "higher, +14 %", "ratio higher, B −3 %"; empty in the base."""
+    """ "higher, +14 %", "ratio higher"; empty in the base."""
     if cell.change is None:
         return ""
     if cell.change != "higher" and cell.ratio_change == "higher":
-        part = "" if cell.relative is None else f", B {percent(cell.relative)}"
-        return f"ratio higher{part}"
+        return "ratio higher"
     if cell.change in ("higher", "lower") and cell.relative is not None:
         return f"{cell.change}, {percent(cell.relative)}"
     if cell.change == "not comparable" and cell.value is not None:
@@ -106,7 +105,8 @@ def cell_sentence(answer: TableAnswer, row: Row, index: int) -> str:
     layout = column.assessment.layout
     parts = [f"{row.title} in {column.title}: {value_text(cell, layout)}"]
     if cell.change is not None:
-        parts.append(f"{change_text(cell) or 'not comparable'} against the base")
+        part = "" if cell.relative is None else f", {percent(cell.relative)}"
+        parts.append(f"{cell.change}{part} against the base")
     if cell.state is not None:
         parts.append(f"{cell.state} ({against_text(row, layout)})")
     if cell.case:

@@ -44,7 +44,7 @@ _Index = QModelIndex | QPersistentModelIndex
 _SIGN = 11
 
 #: Of a column of values. [logical pixels]
-_WIDTH = 31 * STEP
+_WIDTH = 34 * STEP
 
 
 class VariantModel(QAbstractTableModel):
