@@ -81,16 +81,16 @@ class Story:
         self._turn(self.sheet.orientation)
         text = f"{number}  {title}"
         self.titles.append((key, text))
-        least = min(room or needed(parts), self.sheet.text_height - 4.0)
-        self.flowables += heading(text, key, room=least + 10.0)
+        least = min(room or needed(parts), self.sheet.text_height - 20.0)
+        self.flowables += heading(text, key, room=least + 13.0)
         for part in parts:
             self.add(part)
 
     def subsection(self, title: str, *parts: Sequence[Flowable], key: str = "") -> None:
         """Add a heading within a section, and what stands under it."""
         self._turn(self.sheet.orientation)
-        least = min(needed(parts), self.sheet.text_height - 14.0)
-        self.flowables += subheading(title, key, room=least + 10.0)
+        least = min(needed(parts), self.sheet.text_height - 20.0)
+        self.flowables += subheading(title, key, room=least + 13.0)
         for part in parts:
             self.add(part)
 
