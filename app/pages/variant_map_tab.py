@@ -16,6 +16,7 @@ from app.map_request import case_of, heights_of
 from app.pages.profile_controls import choice
 from app.panels.panel import Words
 from app.theme import LIGHT, STEP, qt_palette
+from app.variant_map_words import at_text, change_csv, summary_text
 from app.variant_maps import (
     DIFFERENCE,
     RATIO,
@@ -23,10 +24,7 @@ from app.variant_maps import (
     Change,
     ChangeMaps,
     ChangeRequest,
-    at_text,
-    change_csv,
     panes,
-    summary_text,
     title_of,
 )
 from app.view_state import ViewState

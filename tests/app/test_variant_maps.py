@@ -13,15 +13,14 @@ from PySide6.QtGui import QWheelEvent
 from app.document import Document
 from app.messages import Messages
 from app.pages.variants_page import VariantsPage
+from app.variant_map_words import at_text, summary_text
 from app.variant_maps import (
     DIFFERENCE,
     RATIO,
     SIDES,
     ChangeMaps,
     ChangeRequest,
-    at_text,
     panes,
-    summary_text,
 )
 from app.view_state import ViewState
 from engine import layout_file
