@@ -27,7 +27,7 @@ References
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 from itertools import pairwise
 
@@ -76,7 +76,7 @@ class Filaments:
     weights : (p,) float64
         Share of the conductor's current.
     owners : (p,) int64
-        Position of the conductor among those asked for.
+        Position of the conductor among those asked for; equal ones in a row.
     """
 
     vertices: Floats
@@ -88,6 +88,31 @@ class Filaments:
     def segments(self) -> int:
         """Number of straight segments."""
         return len(self.vertices) - len(self.weights)
+
+    def only(self, which: Integers) -> Filaments:
+        """Some of the filaments, by their positions, rising."""
+        if len(which) == len(self.weights):
+            return self
+        sizes = np.diff(self.offsets)
+        kept = np.zeros(len(sizes), bool)
+        kept[which] = True
+        return Filaments(
+            vertices=self.vertices[np.repeat(kept, sizes)],
+            offsets=np.concatenate([[0], np.cumsum(sizes[which])]),
+            weights=self.weights[which],
+            owners=self.owners[which],
+        )
+
+
+def axes_of(conductors: Sequence[Conductor]) -> Filaments:
+    """Conductors as their axes: one filament each."""
+    sizes = [len(conductor.path) for conductor in conductors]
+    return Filaments(
+        vertices=np.concatenate([conductor.path for conductor in conductors]),
+        offsets=np.concatenate([[0], np.cumsum(sizes)]),
+        weights=np.ones(len(sizes)),
+        owners=np.arange(len(sizes)),
+    )
 
 
 def orders_of(conductors: Sequence[Conductor], legs: Legs, points: Floats) -> Orders:
@@ -154,16 +179,22 @@ def _short_loop(conductor: Conductor) -> bool:
 
 
 def _group_orders(group: _Group) -> Orders:
-    own = _own_orders(group)
     if not group.alike or group.short_loop:
-        return own
+        return _own_orders(group)
     same = _round_alike(group) if group.round[0] else _bars_alike(group)
+    orders = np.repeat(same[:, None, :], len(group.sides), axis=1)
+    # Nothing is cheaper than one filament for each leg.
+    open_tiles = np.flatnonzero((same != 1).any(axis=1))
+    if not len(open_tiles):
+        return orders
+    there = replace(group, near=group.near[open_tiles], end=group.end[open_tiles])
+    own, same = _own_orders(there), same[open_tiles]
     cost_own = own.astype(np.int64).prod(axis=2).sum(axis=1)
     cost_same = same.astype(np.int64).prod(axis=1) * len(group.sides)
     # 0 says that the same number for all is not enough.
-    take = (cost_same > 0) & (cost_same <= cost_own)
-    own[take] = same[take][:, None, :]
-    return own
+    dearer = (cost_same == 0) | (cost_same > cost_own)
+    orders[open_tiles[dearer]] = own[dearer]
+    return orders
 
 
 def _bars_alike(group: _Group) -> Orders:

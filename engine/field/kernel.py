@@ -156,7 +156,7 @@ def tile_responses(
     weights : (p,) float64
         Share of its conductor's current that filament i carries.
     owners : (p,) int64
-        Row of `out` of the conductor of filament i, ascending.
+        Row of `out` of the conductor of filament i, equal ones in a row.
     out : (m, n, 3) float64
         Overwritten. [T/A]
     on_wire : (n,) bool

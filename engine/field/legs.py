@@ -26,6 +26,10 @@ _COLUMNS = 20
 
 _BLOCK = 16  # points that share one sphere
 
+#: Times the distance within which legs are measured exactly: from there on tiles are
+#: measured as a whole. At 48 sides one filament is enough for any equal sections.
+_FAR = 12.0
+
 
 @dataclass(frozen=True, eq=False)
 class Legs:
@@ -154,6 +158,19 @@ def _spheres(points: Floats) -> Floats:
 
 
 @njit(nogil=True, cache=True, error_model="numpy")
+def _around(points: Floats) -> tuple[float, float, float, float]:
+    """Centre and radius of a sphere around all the points."""
+    middle = np.empty(3)
+    squares = 0.0
+    for axis in range(3):
+        low = points[:, axis].min()
+        high = points[:, axis].max()
+        middle[axis] = (low + high) / 2
+        squares += (high - low) ** 2
+    return middle[0], middle[1], middle[2], np.sqrt(squares) / 2
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
 def _skew(leg: Floats) -> float:
     """By how much more than its place moves a leg's distance may change. [m]
 
@@ -245,9 +262,22 @@ def tile_distances(
     spheres = _spheres(points)
     blocks = tile // _BLOCK
     out = np.full((tiles, table.shape[0], 2), np.inf)
+    far = np.zeros((tiles, table.shape[0]), np.bool_)
+    for j in range(tiles):
+        x, y, z, radius = _around(points[j * tile : (j + 1) * tile])
+        for k in range(table.shape[0]):
+            near = leg_distance(table[k], x, y, z) - radius
+            if near < _FAR * exact_within[k] or near < 2 * radius:
+                continue
+            # So far that how far no longer matters: one bound for the whole tile.
+            far[j, k] = True
+            out[j, k, 0] = near
+            out[j, k, 1] = _end_distance(table[k], x, y, z) - radius
     for j in range(spheres.shape[0]):
         x, y, z, radius = spheres[j, 0], spheres[j, 1], spheres[j, 2], spheres[j, 3]
         for k in range(table.shape[0]):
+            if far[j // blocks, k]:
+                continue
             nearest = out[j // blocks, k]
             near = leg_distance(table[k], x, y, z) - radius
             end = _end_distance(table[k], x, y, z) - radius

@@ -17,7 +17,14 @@ from numpy.typing import NDArray
 
 from engine.conductor import Conductor
 from engine.errors import Cancelled, Progress, stop_if
-from engine.field.filaments import Filaments, Orders, filaments_of, joined, orders_of
+from engine.field.filaments import (
+    Filaments,
+    Orders,
+    axes_of,
+    filaments_of,
+    joined,
+    orders_of,
+)
 from engine.field.kernel import TILE, Floats, Integers
 from engine.field.legs import Legs, legs_of
 from engine.field.points import as_points, compact_order
@@ -132,6 +139,9 @@ class _SharedFilaments:
         self._lock = Lock()
         mine = np.isin(tiling.legs.conductor, np.array(which))
         self._orders = tiling.orders[:, mine]
+        # Of each leg, where its conductor stands among `which`.
+        self._owner = np.searchsorted(which, tiling.legs.conductor[mine])
+        self._axes = axes_of([tiling.conductors[i] for i in which])
         self._last: tuple[bytes, Filaments] | None = None
 
     def of(self, tile: int) -> Filaments:
@@ -141,9 +151,30 @@ class _SharedFilaments:
         last = self._last
         if last is not None and last[0] == key:
             return last[1]
-        made = joined([self._of_one(tile, i) for i in self._which])
+        made = self._joined(tile)
         self._last = (key, made)
         return made
+
+    def _joined(self, tile: int) -> Filaments:
+        """Conductors that are their axes all at once, then the others one by one."""
+        refined = self._orders[tile].max(axis=1, initial=1) > 1
+        several = np.zeros(len(self._which), bool)
+        several[self._owner[refined]] = True
+        rest = np.flatnonzero(several)
+        if len(rest) == len(several):
+            return joined([self._of_one(tile, i) for i in self._which])
+        plain = self._axes.only(np.flatnonzero(~several))
+        if not len(rest):
+            return plain
+        other = joined([self._of_one(tile, self._which[k]) for k in rest.tolist()])
+        return Filaments(
+            vertices=np.concatenate([plain.vertices, other.vertices]),
+            offsets=np.concatenate(
+                [plain.offsets, plain.offsets[-1] + other.offsets[1:]]
+            ),
+            weights=np.concatenate([plain.weights, other.weights]),
+            owners=np.concatenate([plain.owners, rest[other.owners]]),
+        )
 
     def _of_one(self, tile: int, conductor: int) -> Filaments:
         numbers = self._tiling.numbers(tile, conductor)
