@@ -61,7 +61,7 @@ class VariantList(QWidget):
             row.addWidget(widget)
         of_change = QWidget()
         below = WrappingRow(of_change, STEP, 0)
-        self.move = button(
+        self.move_one = button(
             "Move to base", "Make this change in the base", self._move_one
         )
         self.move_all = button(
@@ -76,7 +76,7 @@ class VariantList(QWidget):
             "Keep", "The change stands although the base has changed under it",
             self._keep_one,
         )  # fmt: skip
-        for widget in (self.move, self.move_all, self.drop, self.keep):
+        for widget in (self.move_one, self.move_all, self.drop, self.keep):
             below.addWidget(widget)
         box = QVBoxLayout(self)
         box.setContentsMargins(0, 0, 0, 0)
@@ -126,7 +126,7 @@ class VariantList(QWidget):
         kept = None if before is None else before.data(_ID)
         self.changes.clear()
         has = variant is not None
-        for part in (self.changes, self.move, self.move_all, self.drop, self.keep):
+        for part in (self.changes, self.move_one, self.move_all, self.drop, self.keep):
             part.setVisible(has)
         if variant is None:
             self.told.setText(
@@ -157,7 +157,7 @@ class VariantList(QWidget):
         for act in (self.copy, self.name, self.gone):
             act.setEnabled(variant is not None)
         self.move_all.setEnabled(self.changes.count() > 0)
-        for act in (self.move, self.drop):
+        for act in (self.move_one, self.drop):
             act.setEnabled(change is not None)
         self.keep.setVisible(change is not None and change in self._stale)
 
