@@ -30,7 +30,7 @@ from app.theme import DARK, LIGHT
 from engine import layout_file
 
 ACTS = 2000
-SEEDS = (1,)
+SEEDS = (11,)
 
 #: More items than this are deleted, and the walk goes on.
 MOST = 40
