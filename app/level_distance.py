@@ -3,14 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 from shapely.geometry import Polygon
 from shapely.geometry.base import BaseGeometry
 
-from app.map_request import case_of, height_figures
-from app.tools.tool import Dimension, Overlay, Point
+from app.map_request import case_of
+from app.tools.tool import Point
 from engine.case_fields import CaseCurrents, CaseFields
 from engine.criteria import ReferenceLevel
 from engine.distance_to_level import (
@@ -21,18 +21,20 @@ from engine.distance_to_level import (
     largest_distance,
     lines_on_plan,
     lines_on_plane,
+    load_factor,
     run_line,
     side_of,
 )
 from engine.equipment import Board
 from engine.errors import Cancelled, UserError
-from engine.items import Outline
+from engine.items import Outline, Point3
 from engine.layout import Layout
 from engine.levels import Kind, is_kind, what_is_missing
 from engine.loaded_layout import loaded_layout
+from engine.results import Assessment
 from engine.sampling import Plane
-from engine.sight import LOOKING_X, LOOKING_Y, PLAN, Sight
-from engine.typed_lengths import length_text
+from engine.sight import LOOKING_X, LOOKING_Y, Sight
+from engine.units import significant
 
 #: Around everything drawn at first; doubled while a line runs out of the area. [m]
 _AROUND = 3.0
@@ -83,6 +85,8 @@ class Reached:
         None where no line counts for the target, or without one.
     elevations : pairs of sight and lines
         On the upright planes through `through`, where the distance ends.
+    measured_from : points
+        The target on plan. [m]
     """
 
     request: DistanceRequest
@@ -91,6 +95,7 @@ class Reached:
     distance: LevelDistance | None
     elevations: tuple[tuple[Sight, LevelLines], ...]
     through: Point
+    measured_from: tuple[Point, ...] = ()
 
 
 def targets(layout: Layout) -> tuple[Target, ...]:
@@ -99,12 +104,35 @@ def targets(layout: Layout) -> tuple[Target, ...]:
     found += [Target(z.id, None, f"edge of {z.title}") for z in layout.zones]
     for room in layout.rooms:
         for k in range(len(room.outline)):
-            found.append(Target(room.id, k, f"wall {k + 1} of {room.title}"))
+            way = _facing(room.outline, k)
+            found.append(Target(room.id, k, f"{way} wall of {room.title}"))
     for unit in layout.equipment:
         if isinstance(unit, Board) and len(unit.footprint) > 2:
             for k in range(len(unit.footprint)):
-                found.append(Target(unit.id, k, f"side {k + 1} of {unit.title}"))
+                way = _facing(unit.footprint, k)
+                found.append(Target(unit.id, k, f"{way} front of {unit.title}"))
     return tuple(found)
+
+
+def _facing(outline: Outline, side: int) -> str:
+    """Which way a side faces: "+x", "+x (2)" for a second one, or its number."""
+    ways = [_way(outline, k) for k in range(len(outline))]
+    way = ways[side]
+    if not way:
+        return f"slanted ({side + 1})"
+    count = ways[: side + 1].count(way)
+    return way if count == 1 else f"{way} ({count})"
+
+
+def _way(outline: Outline, side: int) -> str:
+    """The axis that a side's outer face looks along; empty for slanted sides."""
+    (x0, y0), (x1, y1) = outline[side], outline[(side + 1) % len(outline)]
+    turn = 1.0 if Polygon(outline).exterior.is_ccw else -1.0
+    out = (turn * (y1 - y0), -turn * (x1 - x0))
+    for k, axis in enumerate("xy"):
+        if abs(out[1 - k]) <= 1e-3 * abs(out[k]):
+            return ("+" if out[k] > 0 else "−") + axis
+    return ""
 
 
 def levels_of(layout: Layout) -> tuple[ReferenceLevel, ...]:
@@ -137,18 +165,19 @@ def reached(request: DistanceRequest, cancelled: Cancelled | None = None) -> Rea
     case = fields.cases[loaded.index[chosen.id]]
     kind: Kind = "AC" if any(is_kind(f, "AC") for f in case.frequencies) else "DC"
     found = _lines(fields, case, level, request.heights, _extent(fields), kind)
-    distance = None
+    distance, source = None, ()
     if request.target is not None:
         shape, beyond = _shape(layout, request.target)
         distance = largest_distance(
             fields, case, level, found, shape, request.target.title, beyond=beyond
         )
+        source = tuple((float(x), float(y)) for x, y in shape.coords)
     through = _through(found) if distance is None else distance.end
     elevations = tuple(
         (sight, lines_on_plane(fields, case, level, plane, kind=kind))
         for sight, plane in _upright(found, fields, through)
     )
-    return Reached(request, level, found, distance, elevations, through)
+    return Reached(request, level, found, distance, elevations, through, source)
 
 
 def _extent(fields: CaseFields) -> Extent:
@@ -237,80 +266,40 @@ def _upright(
     ]
 
 
-# -- as marks and words -------------------------------------------------------------
+@dataclass(frozen=True)
+class PlaceFactor:
+    """All currents times `factor` make the value at a place equal a level. [m]"""
+
+    title: str
+    at: Point3 | None
+    factor: float
+    case: str
+
+    @property
+    def times(self) -> str:
+        """The factor in figures."""
+        return significant(self.factor)
+
+    @property
+    def text(self) -> str:
+        """ "Corridor: 0.95 × this case"."""
+        return f"{self.title}: {self.times} × this case"
 
 
-def overlay_of(answer: Reached, sight: Sight) -> Overlay | None:
-    """The lines and the dimension as a view shows them; None for other views."""
-    unit = answer.request.layout.settings.length_unit
-    title = answer.level.title
-    if sight is PLAN:
-        lines = _seen(answer.plan.lines, (0.0, 0.0))
-        text = f"{title} · {answer.request.heights_name}"
-        found = Overlay(lines=lines, labels=_names(lines, text))
-        distance = answer.distance
-        if distance is None:
-            return found
-        told = distance_text(distance, unit)
-        return replace(
-            found,
-            points=(distance.start, distance.end),
-            dimensions=(Dimension(distance.start, distance.end, told),),
-        )
-    for own, level_lines in answer.elevations:
-        if own is sight:
-            origin = np.array(level_lines.plane.origin)
-            x, z = sight.seen(origin).tolist()
-            lines = _seen(level_lines.lines, (x, z))
-            k, axis = (1, "y") if sight is LOOKING_Y else (0, "x")
-            at = f"{axis} {height_figures(answer.through[k], unit)} {unit}"
-            return Overlay(lines=lines, labels=_names(lines, f"{title} · at {at}"))
-    return None
-
-
-def _seen(lines: Sequence[np.ndarray], origin: Point) -> tuple[tuple[Point, ...], ...]:
-    return tuple(
-        tuple((float(u) + origin[0], float(v) + origin[1]) for u, v in line)
-        for line in lines
-    )
-
-
-def _names(
-    lines: tuple[tuple[Point, ...], ...], text: str
-) -> tuple[tuple[Point, str], ...]:
-    """The name at the top of the longest line."""
-    if not lines:
-        return ()
-    longest = max(lines, key=len)
-    return ((max(longest, key=lambda p: p[1]), text),)
-
-
-def distance_text(distance: LevelDistance, unit: str) -> str:
-    """The distance and what it is measured from, in the display unit."""
-    most = "at least " if distance.is_cut else ""
-    rounded = round(distance.distance, 3)
-    return f"{most}{length_text(rounded, unit)} from {distance.measured_from}"
-
-
-def told(answer: Reached) -> str:
-    """The result in one or two sentences."""
-    title, where = answer.level.title, answer.request.heights_name
-    unit = answer.request.layout.settings.length_unit
-    if answer.plan.everywhere:
-        side = answer.plan.everywhere
-        return f"All of the area looked at is {side} {title} ({where}): no line."
-    if not answer.plan.lines:
-        return f"No place equals {title} ({where})."
-    parts = []
-    if answer.distance is not None:
-        largest = distance_text(answer.distance, unit)
-        parts.append(f"{title} reaches {largest} ({where})")
-    elif answer.request.target is not None:
-        parts.append(f"{title} does not reach beyond {answer.request.target.title}")
-    if answer.plan.is_cut:
-        parts.append("a line runs out of the area looked at")
-    if answer.plan.is_bound:
-        parts.append(f"upper bound, because {answer.plan.bound_reason}")
-    step = length_text(round(answer.plan.step, 3), unit)
-    parts.append(f"closed lines smaller than {step} may be missed")
-    return " · ".join(parts)
+def factors(assessment: Assessment, case: str, level: str) -> tuple[PlaceFactor, ...]:
+    """Of zones and receptors that name a level, in one case; the smallest first."""
+    titles = {item.id: item.title for item in assessment.layout.items()}
+    found: dict[str, PlaceFactor] = {}
+    results = (*assessment.zones, *assessment.receptors)
+    for comparison in (c for result in results for c in result.comparisons):
+        if (comparison.case, comparison.level) != (case, level):
+            continue
+        factor = None if comparison.ratio is None else load_factor(comparison.ratio)
+        if factor is None:
+            continue
+        before = found.get(comparison.place)
+        if before is None or factor.factor < before.factor:
+            at = None if comparison.details is None else comparison.details.at
+            title = titles.get(comparison.place, comparison.place)
+            found[comparison.place] = PlaceFactor(title, at, factor.factor, case)
+    return tuple(sorted(found.values(), key=lambda f: f.factor))

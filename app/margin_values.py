@@ -56,6 +56,9 @@ class MarginRow:
         To show the map at. [m above the datum]
     net_current : NetCurrentEffect or None
         What 1 A of net current alone would give there.
+    measured, measured_ratio : float or None
+        Of a receptor: the value measured on site [T], and measured over calculated in
+        the row's load case.
     """
 
     place: str
@@ -73,6 +76,8 @@ class MarginRow:
     at: Point3 | None = None
     height: float | None = None
     net_current: NetCurrentEffect | None = None
+    measured: float | None = None
+    measured_ratio: float | None = None
 
 
 @dataclass(frozen=True, eq=False)
@@ -128,8 +133,28 @@ def margins_of(assessment: Assessment) -> Margins:
     """The worst counted comparison of every place and level."""
     layout = assessment.layout
     titles = _titles(layout)
-    rows = tuple(_row(c, titles) for c in worst_comparisons(assessment))
-    return Margins(layout, rows, False, assessment)
+    rows = [_row(c, titles) for c in worst_comparisons(assessment)]
+    return Margins(layout, tuple(_with_measured(rows, assessment)), False, assessment)
+
+
+def _with_measured(
+    rows: Sequence[MarginRow], assessment: Assessment
+) -> list[MarginRow]:
+    """Rows of receptors with what was measured there."""
+    measured = {
+        (result.receptor.id, found.case): (
+            result.receptor.measured.flux_density,
+            found.measured_ratio,
+        )
+        for result in assessment.receptors
+        if result.receptor.measured is not None
+        for found in result.fields
+    }
+    made = []
+    for row in rows:
+        value, ratio = measured.get((row.place, row.case), (None, None))
+        made.append(replace(row, measured=value, measured_ratio=ratio))
+    return made
 
 
 def _titles(layout: Layout) -> Mapping[str, str]:

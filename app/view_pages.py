@@ -13,6 +13,7 @@ from app.pages.variants_page import VariantsPage
 from app.readout_values import Readout
 from app.views.cycle_page import CyclePage
 from app.views.space_view import SpaceView
+from app.why_pages import WhyPages
 from engine.errors import UserError
 
 if TYPE_CHECKING:
@@ -35,6 +36,7 @@ class ViewPages(QObject):
             window.pages.addWidget(result)
             result.closed.connect(window.show_drawing)
         window.band.opened.connect(self.open_variants)
+        self.why = WhyPages(window)
         self._pointed: CyclePlace | None = None
         window.readout.shown.connect(self._on_read)
 
@@ -94,6 +96,7 @@ class ViewPages(QObject):
 
     def close(self) -> None:
         """Stop the threads, before the window goes."""
+        self.why.close()
         self.cycle.close_worker()
         self.variants.close_worker()
         self.uncertainty.close_worker()

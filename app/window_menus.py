@@ -200,6 +200,7 @@ class WindowMenus(QObject):
                         "The largest value over the zone's heights"),
                 Command("Fit range", self._fit_range, "",
                         "Let the map's range hold the values that it shows"),
+                *w.view_pages.why.commands(),
                 Command("Field over one period", w.view_pages.open_cycle, "F8",
                         "At the selected receptor, or at the pointer"),
                 *w.view_pages.commands(),

@@ -56,6 +56,7 @@ class ProfileControls(QWidget):
         self.typed = QLineEdit()
         self.typed.setPlaceholderText("as drawn")
         self.typed.setAccessibleName("Heights, typed")
+        self.typed.setToolTip("Heights above the datum, blanks between")
         self.typed.setMaximumWidth(26 * STEP)
         self.typed.editingFinished.connect(self._on_typed)
         self.kinds = choice("AC: all frequencies above 0 Hz; DC: 0 Hz", 16)
@@ -73,7 +74,7 @@ class ProfileControls(QWidget):
         row = WrappingRow(self, 2 * STEP, 0)
         for widget in (
             self.profiles, self.cases, self.heights, self.typed, self.kinds, self.log,
-            self.measured_from, self.export,
+            self.export,
         ):  # fmt: skip
             row.addWidget(widget)
 

@@ -41,6 +41,7 @@ from app.profile_words import (
     table_texts,
 )
 from app.theme import LIGHT, STEP, theme_for
+from app.variant_acts import with_shown
 from app.view_state import ViewState
 from engine.levels import Kind
 from engine.profile_sampling import Line
@@ -121,11 +122,15 @@ class ProfilePage(Page):
         told = QWidget()
         box = column(told, STEP)
         box.addWidget(self.findings)
+        box.addWidget(self.controls.measured_from)
         box.addStretch(1)
         self.tabs = QTabWidget()
+        self.tabs.setAccessibleName("The profile in words and figures")
         self.tabs.setDocumentMode(True)
-        self.tabs.addTab(scrolled(told), "Findings")
+        self.tabs.addTab(scrolled(told, "Findings"), "Findings")
         self.tabs.addTab(self.table, "Table")
+        self.tabs.setTabToolTip(0, "What the profile shows, in words")
+        self.tabs.setTabToolTip(1, "The values along the line")
         self.body = QSplitter(Qt.Orientation.Horizontal)
         self.body.setChildrenCollapsible(False)
         self.body.addWidget(self.plot)
@@ -308,7 +313,7 @@ class ProfilePage(Page):
         done, kind = self.done, self.kind
         if done is None:
             raise ValueError("nothing is shown")
-        caption = caption_text(done, kind)
+        caption = with_shown(self._document, caption_text(done, kind))
         at, self.plot.at = self.plot.at, None
         self.plot.show_profile(done, kind, LIGHT)
         try:

@@ -10,7 +10,7 @@ from PySide6.QtCore import (
     QSize,
     Qt,
 )
-from PySide6.QtGui import QBrush, QColor, QKeyEvent, QPainter, QPen
+from PySide6.QtGui import QBrush, QColor, QKeyEvent, QPainter, QPen, QResizeEvent
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QHeaderView,
@@ -33,7 +33,9 @@ _HEADS = (
     ("Alone", "RMS value of this circuit alone"),
     ("Per ampere", "Field alone per ampere of its largest conductor current"),
 )
-_BAR = 1
+_BAR, _ALONE = 1, 5
+#: [logical pixels]
+_NARROW = 720
 _PART = Qt.ItemDataRole.UserRole
 _THIN = Qt.ItemDataRole.UserRole + 1
 
@@ -119,7 +121,7 @@ class ShareTree(QTreeWidget):
         self.setUniformRowHeights(True)
         header = self.header()
         header.setStretchLastSection(False)
-        for column, width in enumerate((210, 200, 92, 64, 92, 92, 110)):
+        for column, width in enumerate((180, 200, 88, 60, 88, 88, 104)):
             header.resizeSection(column, width)
         header.setSectionResizeMode(_BAR, QHeaderView.ResizeMode.Stretch)
         header.setMinimumSectionSize(12 * STEP)
@@ -211,6 +213,11 @@ class ShareTree(QTreeWidget):
             line.setTextAlignment(
                 column, Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
             )
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        # Bars need some width: where there is little, this column can be done without.
+        self.setColumnHidden(_ALONE, self.width() < _NARROW)
+        super().resizeEvent(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:

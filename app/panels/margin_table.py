@@ -27,6 +27,7 @@ from app.margin_values import MarginRow, Margins, concern
 from app.panels.margin_marks import draw_sign, state_colour
 from app.panels.margin_words import (
     level_text,
+    measured_text,
     ratio_text,
     sentence,
     state_text,
@@ -40,16 +41,22 @@ from engine.units import flux_density_text
 _Index = QModelIndex | QPersistentModelIndex
 
 _HEADINGS = (
-    ("", "The state as a sign: the line is the level, hatched is what U reaches"),
+    (
+        "",
+        "The state as a sign: the line is the reference level, hatched is what U reaches",
+    ),
     ("Place", "Zone or receptor"),
     ("Reference level", "As entered by the user, with its value at one frequency"),
     ("Value", "Largest RMS value by the place's spatial rule"),
-    ("Ratio", "Value over reference level, over all frequencies by the level's rule"),
+    ("Ratio", "Value over reference level, over all frequencies by its rule"),
     ("U", "Expanded uncertainty of the value"),
-    ("State", "Where value and uncertainty stand to the level"),
+    ("State", "Where value and uncertainty stand to the reference level"),
     ("Load case", "The worst of the counted load cases"),
+    ("Measured", "Of a receptor: the value measured on site over the calculated one"),
 )
 _NUMBERS = (3, 4, 5)
+#: Shown only where something was measured.
+MEASURED = 8
 
 
 class MarginModel(QAbstractTableModel):
@@ -127,6 +134,7 @@ class MarginModel(QAbstractTableModel):
             "–" if spread is None else flux_density_text(spread, unit),
             "" if sampled else state_text(row),
             row.case_title,
+            measured_text(row),
         )
 
 
@@ -179,7 +187,7 @@ class MarginTable(QTableView):
         header = self.horizontalHeader()
         header.setStretchLastSection(False)
         header.setSectionResizeMode(QHeaderView.ResizeMode.Interactive)
-        for column, width in enumerate((28, 170, 200, 84, 64, 84, 190, 190)):
+        for column, width in enumerate((28, 170, 200, 84, 64, 84, 190, 190, 190)):
             header.resizeSection(column, width)
         header.setSectionResizeMode(6, QHeaderView.ResizeMode.Stretch)
         self.clicked.connect(self._on_chosen)
@@ -188,6 +196,8 @@ class MarginTable(QTableView):
     def set_margins(self, margins: Margins, held: Margins | None = None) -> None:
         self._model._theme = theme_shown()
         self._model.set_margins(margins, held)
+        has_measured = any(row.measured_ratio is not None for row in margins.rows)
+        self.setColumnHidden(MEASURED, not has_measured)
         width = 84 if held is None else 190
         self.horizontalHeader().resizeSection(3, width)
 

@@ -79,6 +79,13 @@ def was_text(row: MarginRow, held: Margins | None) -> str:
     return "" if row.value is None else ", had no value before"
 
 
+def measured_text(row: MarginRow) -> str:
+    """ "measured / calculated = 1.3" of a receptor; empty without a measured value."""
+    if row.measured_ratio is None:
+        return ""
+    return f"measured / calculated = {significant(row.measured_ratio, 2)}"
+
+
 def level_text(row: MarginRow, layout: Layout) -> str:
     """The level's name, with its value where one frequency is compared."""
     if row.level_value is None:
@@ -116,7 +123,11 @@ def sentence(row: MarginRow, layout: Layout, sampled: bool) -> str:
     unit = layout.settings.flux_density_unit
     if row.uncertainty is not None:
         text += f", U {flux_density_text(row.uncertainty, unit)}"
-    return f"{text}; {STATE_SENTENCES[row.state]}; load case {row.case_title}"
+    text += f"; {STATE_SENTENCES[row.state]}; load case {row.case_title}"
+    if row.measured is not None and row.measured_ratio is not None:
+        measured = flux_density_text(row.measured, unit)
+        text += f"; measured {measured}, {measured_text(row)}"
+    return text
 
 
 def counts_text(rows: Sequence[MarginRow]) -> str:

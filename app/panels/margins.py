@@ -74,6 +74,8 @@ class MarginTile(QAbstractButton):
     def __init__(self) -> None:
         super().__init__()
         self.row: MarginRow | None = None
+        self.setAccessibleName("The worst comparison")
+        self.setToolTip("The worst comparison; none yet")
         self.setCursor(Qt.CursorShape.PointingHandCursor)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.sign, self.bar = StateSign(), RatioBar()
@@ -140,12 +142,15 @@ class MarginsPanel(QWidget):
     -------
     go_to(at, height, case)
         Show this place: (x, y, z), the height of the map, the id of the load case. [m]
+    why(MarginRow)
+        Say where the value of this row comes from.
     opened(bool)
         The full table or the cautions need more room, or no longer.
     """
 
     go_to = Signal(object, object, str)
     opened = Signal(bool)
+    why = Signal(object)
 
     def __init__(self, document: Document, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -159,7 +164,11 @@ class MarginsPanel(QWidget):
         self.empty = Words("", "muted")
         self.table, self.cautions = MarginTable(), CautionsPanel()
         self.counts = _link("Open the table of all zones and reference levels")
+        self.counts.setAccessibleName("Counts of comparisons")
         self.counts.clicked.connect(lambda: self._open(self.table))
+        self.ask_why = _link("Where this value comes from: the shares of the circuits")
+        self.ask_why.setText("Why ▸")
+        self.ask_why.clicked.connect(self._on_why)
         self.net_current = Words("", "muted")
         self.open_board = Words(words.OPEN_BOARD, "warning")
         self.caution = _link("Open the full text of the cautions")
@@ -183,6 +192,7 @@ class MarginsPanel(QWidget):
         row.addWidget(name)
         row.addWidget(self.tile, 1)
         row.addWidget(self.empty, 1)
+        row.addWidget(self.ask_why)
         row.addWidget(self.counts)
         box = QVBoxLayout(self)
         box.setContentsMargins(2 * STEP, STEP, 2 * STEP, STEP)
@@ -212,6 +222,7 @@ class MarginsPanel(QWidget):
         self.tile.show()
         self.tile.show_row(row, margins.layout, is_sampled, self._held)
         self.counts.show()
+        self.ask_why.show()
         counted = "" if is_sampled else words.counts_text(margins.rows)
         self.counts.setText(f"{counted or 'counts once settled'} ▸")
         self.counts.setAccessibleName(counted or "Counts once settled")
@@ -272,6 +283,7 @@ class MarginsPanel(QWidget):
     def _show_empty(self) -> None:
         self.tile.hide()
         self.counts.hide()
+        self.ask_why.hide()
         self.net_current.hide()
         self.open_board.setVisible(words.is_at_open_board(self._document.layout))
         self.empty.setText(words.empty_text(self._document.layout, self._margins))
@@ -293,6 +305,13 @@ class MarginsPanel(QWidget):
     def _go_to_worst(self) -> None:
         if self.tile.row is not None:
             self._go_to_row(self.tile.row)
+
+    def _on_why(self) -> None:
+        """Of the row chosen in the table, else of the worst."""
+        row = self.table.current if self.is_open else None
+        row = row or self.tile.row
+        if row is not None and row.at is not None:
+            self.why.emit(row)
 
     def _go_to_row(self, row: MarginRow) -> None:
         if row.at is not None:

@@ -164,10 +164,11 @@ def draw_text(
     painter.drawText(box, Qt.AlignmentFlag.AlignCenter, text)
 
 
-def text_box(text: str, inks: Inks, middle: QPointF) -> QRectF:
+def text_box(text: str, inks: Inks, middle: QPointF, *, bold: bool = False) -> QRectF:
     """The box that a text fills around its middle. [px]"""
-    width = inks.small_metrics.horizontalAdvance(text) + 2 * _PAD_X
-    height = inks.small_metrics.height() + 2 * _PAD_Y
+    metrics = inks.bold_metrics if bold else inks.small_metrics
+    width = metrics.horizontalAdvance(text) + 2 * _PAD_X
+    height = metrics.height() + 2 * _PAD_Y
     return QRectF(middle.x() - width / 2, middle.y() - height / 2, width, height)
 
 

@@ -91,7 +91,7 @@ def _draw_dimension(
     painter.drawLine(start, end)
     for at in (start, end):
         painter.drawLine(at - across, at + across)
-    box = text_box(dimension.text, inks, (start + end) / 2)
+    box = text_box(dimension.text, inks, (start + end) / 2, bold=True)
     draw_text(painter, box, dimension.text, inks, bold=True)
 
 

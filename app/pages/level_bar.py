@@ -1,0 +1,235 @@
+"""The bar above the drawing that asks for the distance to a level, and tells it."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt, QTimer, Signal
+from PySide6.QtGui import QHideEvent, QKeyEvent
+from PySide6.QtWidgets import (
+    QHBoxLayout,
+    QLabel,
+    QPushButton,
+    QSizePolicy,
+    QVBoxLayout,
+    QWidget,
+)
+
+from app.answers import Answers
+from app.document import Document
+from app.level_distance import (
+    DistanceRequest,
+    PlaceFactor,
+    Reached,
+    Target,
+    factors,
+    levels_of,
+    reached,
+    targets,
+)
+from app.level_marks import told
+from app.map_request import case_of, heights_of
+from app.margin_values import Margins
+from app.pages.profile_controls import choice
+from app.panels.panel import Words
+from app.theme import STEP
+from app.view_state import ViewState
+
+NO_LEVEL = "Enter a reference level with its source under Ref. levels first."
+NOWHERE = "nothing: lines only"
+
+
+class LevelBar(QWidget):
+    """Level and target; the answer in words, and as marks for the drawings.
+
+    Signals
+    -------
+    found(Reached or None, PlaceFactor or None)
+        What the drawings should show now.
+    closed()
+    """
+
+    found = Signal(object, object)
+    closed = Signal()
+
+    def __init__(self, document: Document, view_state: ViewState) -> None:
+        super().__init__()
+        self._document, self._view_state = document, view_state
+        self._target: Target | None = None
+        self._margins: Margins | None = None
+        self.answer: Reached | None = None
+        self.setAccessibleName("Distance to a reference level")
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Maximum)
+        self.levels = choice("Reference level whose distance is sought", 60)
+        self.levels.activated.connect(lambda _k: self._soon.start())
+        self.targets = choice("What the largest distance is measured from", 75)
+        self.targets.activated.connect(self._on_target)
+        self.state, self.words = Words("", "warning"), Words("", "plain")
+        self.state.setWordWrap(False)
+        close = QPushButton("Close")
+        close.setToolTip("Take the lines off the drawing (Esc)")
+        close.clicked.connect(self.leave)
+        row = QHBoxLayout()
+        row.setSpacing(2 * STEP)
+        for widget in (QLabel("Distance to"), self.levels, QLabel("from"),
+                       self.targets, self.state):  # fmt: skip
+            row.addWidget(widget)
+        row.addStretch(1)
+        row.addWidget(close)
+        box = QVBoxLayout(self)
+        box.setContentsMargins(3 * STEP, STEP, 2 * STEP, STEP)
+        box.setSpacing(STEP)
+        box.addLayout(row)
+        box.addWidget(self.words)
+        self._answers = Answers("distance to the level", reached, self)
+        self._answers.ready.connect(self._show)
+        self._soon = QTimer(self, singleShot=True, interval=0)
+        self._soon.timeout.connect(self._ask)
+        document.changed.connect(self._on_changed)
+        document.selection_changed.connect(self._on_selection)
+        view_state.changed.connect(self._on_changed)
+        self.setFocusProxy(self.levels)
+        self.hide()
+
+    # -- what is asked ------------------------------------------------------------
+
+    def open(self) -> None:
+        """Show the bar and look for the distance."""
+        self.show()
+        self._on_selection(self._document.selection)
+        self._soon.start()
+        self.setFocus(Qt.FocusReason.ShortcutFocusReason)
+
+    def leave(self) -> None:
+        """Take bar and lines away."""
+        self.hide()
+        self.closed.emit()
+
+    def set_margins(self, margins: Margins) -> None:
+        """Take the ratios at zones and receptors."""
+        if margins.assessment is not None:
+            self._margins = margins
+            self._tell()
+
+    @property
+    def is_idle(self) -> bool:
+        """Nothing is being computed or waits to be asked."""
+        return self._answers.is_idle and not self._soon.isActive()
+
+    def close_worker(self) -> None:
+        """Stop the thread, before the window goes."""
+        self._document.changed.disconnect(self._on_changed)
+        self._document.selection_changed.disconnect(self._on_selection)
+        self._view_state.changed.disconnect(self._on_changed)
+        self._soon.stop()
+        self._answers.close()
+
+    # -- events -------------------------------------------------------------------
+
+    def hideEvent(self, event: QHideEvent) -> None:
+        if not self.isVisibleTo(self.parentWidget()):
+            self._answers.forget()
+            self.answer = None
+            self.found.emit(None, None)
+        super().hideEvent(event)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.leave()
+        else:
+            super().keyPressEvent(event)
+
+    def _on_changed(self, *_: object) -> None:
+        if not self.isHidden():
+            self._soon.start()
+
+    def _on_selection(self, ids: frozenset[str]) -> None:
+        """What is selected alone is measured from."""
+        if self.isHidden() or len(ids) != 1:
+            return
+        own = [t for t in targets(self._document.layout) if t.item in ids]
+        if own and (self._target is None or self._target.item not in ids):
+            self._target = own[0]
+            self._soon.start()
+
+    def _on_target(self, index: int) -> None:
+        self._target = self.targets.itemData(index)
+        self._soon.start()
+
+    # -- computing ----------------------------------------------------------------
+
+    def _ask(self) -> None:
+        layout = self._document.layout
+        level = self._fill(layout.levels and self.levels.currentData())
+        if not level:
+            self._answers.forget()
+            self.answer = None
+            self.words.setText(NO_LEVEL)
+            self.state.setText("")
+            self.found.emit(None, None)
+            return
+        look = self._view_state.look
+        heights, name = heights_of(layout, look)
+        request = DistanceRequest(
+            layout, case_of(layout, look.case).id, level, self._target, heights, name
+        )
+        if self._answers.ask(request):
+            self.state.setText("out of date" if self.answer else "being computed …")
+
+    def _fill(self, chosen: object) -> str:
+        """Fill the choices; the id of the level to look for."""
+        layout = self._document.layout
+        levels = levels_of(layout)
+        named = {
+            id for place in (*layout.zones, *layout.receptors) for id in place.levels
+        }
+        self.levels.clear()
+        for level in sorted(levels, key=lambda v: v.id not in named):
+            self.levels.addItem(level.title, level.id)
+        self.levels.setCurrentIndex(max(0, self.levels.findData(chosen)))
+        known = targets(layout)
+        before = self._target
+        same = [
+            target
+            for target in known
+            if before and (target.item, target.side) == (before.item, before.side)
+        ]
+        self._target = same[0] if same else None
+        self.targets.clear()
+        self.targets.addItem(NOWHERE, None)
+        for target in known:
+            self.targets.addItem(target.title, target)
+        row = 0 if self._target is None else 1 + known.index(self._target)
+        self.targets.setCurrentIndex(row)
+        return str(self.levels.currentData() or "")
+
+    def _show(self, request: DistanceRequest, answer: object) -> None:
+        if request != self._answers.asked or self.isHidden():
+            return
+        self.state.setText("")
+        self.answer = answer if isinstance(answer, Reached) else None
+        if self.answer is None:
+            self.words.setText(str(answer))
+            self.found.emit(None, None)
+            return
+        self._tell()
+
+    def _tell(self) -> None:
+        if self.answer is None:
+            return
+        parts = [told(self.answer)]
+        found = self._factors(self.answer)
+        if found:
+            parts.append(
+                "The calculated value equals the level at "
+                + ", ".join(f"{f.times} × this case ({f.title})" for f in found[:4])
+                + ", all its currents together"
+            )
+        self.words.setText(". ".join(parts) + ".")
+        self.found.emit(self.answer, found[0] if found else None)
+
+    def _factors(self, answer: Reached) -> tuple[PlaceFactor, ...]:
+        """Where margins of the same layout are known."""
+        margins = self._margins
+        if margins is None or margins.layout is not answer.request.layout:
+            return ()
+        assert margins.assessment is not None
+        return factors(margins.assessment, answer.request.case, answer.request.level)

@@ -1,0 +1,203 @@
+"""Where values come from and how far they reach: pages and marks, in the window."""
+
+from __future__ import annotations
+
+from math import dist
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QEvent, QObject, QPointF, Qt
+from PySide6.QtGui import QMouseEvent
+from PySide6.QtWidgets import QVBoxLayout
+
+from app.level_distance import PlaceFactor, Reached
+from app.level_marks import overlay_of
+from app.map_request import heights_of
+from app.margin_values import MarginRow, Margins
+from app.menus import Command
+from app.pages.foot import Foot
+from app.pages.level_bar import LevelBar
+from app.pages.profile_page import ProfilePage
+from app.pages.why_page import WhyPage
+from app.panels.margin_words import measured_text
+from app.readout_values import Readout
+from app.tools.profile import ProfileTool
+from app.tools.select import SelectTool
+from app.tools.tool import Overlay
+from app.views.projection import Sight, to_view
+from app.why_values import WhyPlace
+from engine.items import Point3
+
+if TYPE_CHECKING:
+    from app.main_window import MainWindow
+
+#: A click that moves less is no drag. [px]
+_STILL = 4.0
+
+
+class WhyPages(QObject):
+    """Builds the pages into the window, and opens them on what is meant."""
+
+    def __init__(self, window: MainWindow) -> None:
+        super().__init__(window)
+        self._window = window
+        parts = (window.document, window.view_state, window.messages)
+        self.profile, self.why = ProfilePage(*parts), WhyPage(*parts)
+        self.distance = LevelBar(window.document, window.view_state)
+        self.foot = Foot(window, window.pages, window.show_page, window.show_drawing)
+        column = window.pages.parentWidget()
+        assert column is not None
+        box = column.layout()
+        assert isinstance(box, QVBoxLayout)
+        box.insertWidget(box.indexOf(window.ask_bar) + 1, self.distance)
+        box.addWidget(self.foot)
+        for page in (self.profile, self.why):
+            page.setParent(window)
+            page.hide()
+            page.closed.connect(self.foot.leave)
+        self._pointed: Point3 | None = None
+        self._pressed: QPointF | None = None
+        self.profile.pointed.connect(self._mark_profile)
+        self.distance.found.connect(self._mark_distance)
+        self.distance.closed.connect(window.drawings.take_keyboard)
+        window.readout.shown.connect(self._on_read)
+        window.margins.why.connect(self._on_why)
+        window.margins.opened.connect(self._on_margins_opened)
+        window.recompute.margins_ready.connect(self._on_margins)
+        window.document.selection_changed.connect(self._on_selection)
+        window.drawings.plan.viewport().installEventFilter(self)
+
+    # -- commands -----------------------------------------------------------------
+
+    def commands(self) -> tuple[Command, ...]:
+        """Entries of the menu Field."""
+        return (
+            Command("Profile", self.open_profile, "F5",
+                    "The field along a drawn line against distance"),
+            Command("Why this value", self.open_why, "F3",
+                    "Shares of circuits at the receptor or the pointer"),
+            Command("Distance to a reference level", self.open_distance, "",
+                    "Where a value equals it, and how far that is"),
+        )  # fmt: skip
+
+    def open_profile(self) -> None:
+        """Plot the field along the selected profile, else the first."""
+        layout = self._window.document.layout
+        chosen = [p for p in layout.profiles if p.id in self._window.document.selection]
+        if len(chosen) == 1:
+            self.profile.show_profile(chosen[0].id)
+        self._open(self.profile)
+
+    def open_why(self) -> None:
+        """Take the value at the selected receptor, or at the pointer, apart."""
+        layout = self._window.document.layout
+        chosen = [
+            r for r in layout.receptors if r.id in self._window.document.selection
+        ]
+        if len(chosen) == 1:
+            self.why.show_place(WhyPlace(chosen[0].at, chosen[0].id))
+        elif self._pointed is not None:
+            self.why.show_place(self._place_pointed(self._pointed))
+        self._open(self.why)
+
+    def open_distance(self) -> None:
+        """Ask how far a level reaches."""
+        self._window.show_drawing()
+        self.distance.open()
+
+    def close(self) -> None:
+        """Stop the threads, before the window goes."""
+        self._window.drawings.plan.viewport().removeEventFilter(self)
+        for part in (self.profile, self.why, self.distance):
+            part.close_worker()
+
+    # -- following ----------------------------------------------------------------
+
+    def _open(self, page: ProfilePage | WhyPage) -> None:
+        self._window.margins.close_opened()
+        self.foot.open(page)
+
+    def _on_read(self, found: Readout | None) -> None:
+        # The menu takes the pointer off the drawing: the last place is meant then.
+        if found is not None:
+            self._pointed = found.at
+
+    def _on_why(self, row: MarginRow) -> None:
+        if row.at is None:
+            return
+        if row.case:
+            self._window.view_state.set(case=row.case)
+        receptors = {r.id for r in self._window.document.layout.receptors}
+        place = WhyPlace(row.at, "", f"{row.place_title}, largest value", (row.level,))
+        if row.place in receptors:
+            place = WhyPlace(row.at, row.place)
+        self.why.show_place(place)
+        self._open(self.why)
+
+    def _on_margins_opened(self, opened: bool) -> None:
+        if opened:
+            self.foot.close_page()
+
+    def _on_margins(self, margins: Margins) -> None:
+        self.distance.set_margins(margins)
+        if margins.assessment is not None:
+            notes = {row.place: measured_text(row) for row in margins.rows}
+            self._window.drawings.set_notes({k: v for k, v in notes.items() if v})
+
+    def _on_selection(self, ids: frozenset[str]) -> None:
+        """A profile that was just drawn is plotted."""
+        if not isinstance(self._window.toolbox.active, ProfileTool) or len(ids) != 1:
+            return
+        found = [p.id for p in self._window.document.layout.profiles if p.id in ids]
+        if found:
+            self.profile.show_profile(found[0])
+            self._open(self.profile)
+
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:
+        if (
+            isinstance(event, QMouseEvent)
+            and event.button() == Qt.MouseButton.LeftButton
+        ):
+            if event.type() == QEvent.Type.MouseButtonPress:
+                self._pressed = event.position()
+            elif event.type() == QEvent.Type.MouseButtonRelease:
+                self._on_click(event)
+        return super().eventFilter(watched, event)
+
+    def _on_click(self, event: QMouseEvent) -> None:
+        """A click on an empty place while the page shows means that place."""
+        pressed, self._pressed = self._pressed, None
+        if pressed is None or not self.why.isVisible():
+            return
+        if (event.position() - pressed).manhattanLength() > _STILL:
+            return
+        pointer = self._window.drawings.plan.pointer_at(
+            event.position(), event.modifiers()
+        )
+        is_select = isinstance(self._window.toolbox.active, SelectTool)
+        if not is_select or pointer.pick is not None or event.modifiers().value:
+            return
+        x, y = pointer.at
+        look = self._window.view_state.look
+        heights, _ = heights_of(self._window.document.layout, look)
+        at = (x, y, heights[len(heights) // 2])
+        if self._pointed is not None and dist(self._pointed[:2], (x, y)) < 1e-6:
+            at = self._pointed
+        self.why.show_place(self._place_pointed(at))
+
+    def _place_pointed(self, at: Point3) -> WhyPlace:
+        levels = tuple(level.id for level in self._window.document.layout.levels)
+        return WhyPlace(at, "", "Pointed at", levels)
+
+    # -- marks --------------------------------------------------------------------
+
+    def _mark_profile(self, at: Point3 | None) -> None:
+        def mark(sight: Sight) -> Overlay | None:
+            return None if at is None else Overlay(points=(to_view(sight, at),))
+
+        self._window.drawings.set_marks("profile", mark)
+
+    def _mark_distance(self, found: Reached | None, load: PlaceFactor | None) -> None:
+        self._window.drawings.set_marks(
+            "distance to a level",
+            lambda sight: None if found is None else overlay_of(found, sight, load),
+        )
