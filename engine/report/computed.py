@@ -6,14 +6,17 @@ from dataclasses import dataclass
 
 from engine.assessment import assess
 from engine.budget import Budget
+from engine.decisions import worst_comparisons
 from engine.errors import Cancelled, Progress, UserError, stop_if
 from engine.field import ResponseCache
 from engine.layout import Layout
-from engine.loaded_layout import loaded_layout
+from engine.loaded_layout import LoadedLayout, loaded_layout
 from engine.place_budgets import place_budgets
+from engine.places import Receptor, Zone
 from engine.profiles import profile
-from engine.report.matter import ProfileResult
-from engine.results import Assessment
+from engine.report.matter import ProfileResult, TracedPlace
+from engine.results import Assessment, Comparison
+from engine.retrace import retrace
 from engine.variant_comparison import VariantComparison, column_of, comparison_table
 from engine.variants import layout_of
 
@@ -31,10 +34,11 @@ class Further:
     profiles: tuple[ProfileResult, ...]
     comparison: VariantComparison | None
     budgets: tuple[Budget, ...]
+    traced: tuple[TracedPlace, ...]
 
 
 #: A note has none of them.
-NOTHING_FURTHER = Further((), None, ())
+NOTHING_FURTHER = Further((), None, (), ())
 
 
 def further_results(
@@ -48,20 +52,43 @@ def further_results(
     stop_if(cancelled)
     if progress is not None:
         progress(0.0, "Computing profiles, options and budgets")
-    profiles = _profiles(layout, cache, cancelled)
+    loaded = loaded_layout(layout, layout.cases, cache, cancelled)
+    profiles = _profiles(loaded, cancelled)
+    traced = _traced(loaded, assessment)
     comparison = _comparison(layout, assessment, cache, cancelled)
     if progress is not None:
         progress(0.6, "Computing budgets of uncertainty")
-    return Further(profiles, comparison, _budgets(assessment, cache, cancelled))
+    budgets = _budgets(assessment, cache, cancelled)
+    return Further(profiles, comparison, budgets, traced)
+
+
+def _traced(loaded: LoadedLayout, assessment: Assessment) -> tuple[TracedPlace, ...]:
+    """The place of most concern of each category, taken apart."""
+    layout = loaded.layout
+    places: tuple[Zone | Receptor, ...] = (*layout.zones, *layout.receptors)
+    titles = {place.id: place for place in places}
+    chosen: dict[str, Comparison] = {}
+    for c in worst_comparisons(assessment):
+        category = titles[c.place].category
+        if c.details is None or c.kind is None or c.case not in loaded.index:
+            continue
+        if category not in chosen or (c.ratio or 0) > (chosen[category].ratio or 0):
+            chosen[category] = c
+    made = []
+    for c in chosen.values():
+        assert c.details is not None
+        assert c.kind is not None
+        case = loaded.fields.cases[loaded.index[c.case]]
+        found = retrace(loaded.fields, case, c.details.at, c.kind)
+        made.append(TracedPlace(titles[c.place].title, found))
+    return tuple(made)
 
 
 def _profiles(
-    layout: Layout, cache: ResponseCache | None, cancelled: Cancelled | None
+    loaded: LoadedLayout, cancelled: Cancelled | None
 ) -> tuple[ProfileResult, ...]:
-    if not layout.profiles:
-        return ()
-    loaded = loaded_layout(layout, layout.cases, cache, cancelled)
-    if not loaded.fields.cases:
+    layout = loaded.layout
+    if not layout.profiles or not loaded.fields.cases:
         return ()
     made = []
     for line in layout.profiles[:MOST_PROFILES]:

@@ -31,6 +31,7 @@ from engine.report.options import options
 from engine.report.page import Orientation, Pages, Paper, paper
 from engine.report.profile_section import profile_section
 from engine.report.receptor_tables import measured_section, receptor_section
+from engine.report.retraced import retraced
 from engine.report.section_figures import (
     MOST_SECTIONS,
     numbered_sections,
@@ -221,6 +222,7 @@ def _results(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> No
     for k, (title, picture, lying) in enumerate(pictures.maps):
         told.figure(title, f"map {k}", picture, lying)
     tables = contribution_tables(assessment, words, width)
+    tables += retraced(matter, words, width)
     grown = sensitivity.load_growth(assessment, words, width)
     if tables or grown:
         told.section("contributions", "Contributions and sensitivity", tables, grown)

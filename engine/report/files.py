@@ -19,6 +19,7 @@ from engine.report.attachments import Attachment
 from engine.report.matter import HeightMap, Matter, ProfileResult
 from engine.report.words import length
 from engine.result_tables import csv_text, result_tables
+from engine.retrace import csv_text as retrace_csv
 
 
 def attached_files(matter: Matter) -> tuple[Attachment, ...]:
@@ -38,6 +39,13 @@ def attached_files(matter: Matter) -> tuple[Attachment, ...]:
         files.append(Attachment(name, "text/csv", table.about, text))
     for k, each in enumerate(matter.maps, start=1):
         files.append(_grid(matter, each, k))
+    for k, traced in enumerate(matter.traced, start=1):
+        unit = matter.layout.settings.length_unit
+        shares = retrace_csv(traced.found, unit=matter.unit, length_unit=unit)
+        about = f"{traced.title} taken apart by conductor"
+        name = f"retraced-{k:02d}.csv"
+        data = printable(shares).encode("utf-8")
+        files.append(Attachment(name, "text/csv", about[:300], data))
     for k, result in enumerate(matter.profiles, start=1):
         files.append(_profile(matter, result, k))
     return tuple(files)

@@ -15,6 +15,7 @@ from engine.places import Profile
 from engine.profiles import FieldProfile
 from engine.program_identity import ProgramIdentity
 from engine.results import Assessment
+from engine.retrace import Retrace
 from engine.validation import Outcome
 from engine.variant_comparison import VariantComparison
 
@@ -38,6 +39,14 @@ class ProfileResult:
 
     profile: Profile
     found: FieldProfile
+
+
+@dataclass(frozen=True, eq=False)
+class TracedPlace:
+    """A value taken apart, and what its place is called."""
+
+    title: str
+    found: Retrace
 
 
 @dataclass(frozen=True, eq=False)
@@ -66,6 +75,8 @@ class Matter:
         The base beside its variants; None without any.
     budgets : tuple of Budget
         Of the places, as far as they were computed.
+    traced : tuple of TracedPlace
+        The place of most concern of each category.
     """
 
     assessment: Assessment
@@ -79,6 +90,7 @@ class Matter:
     profiles: tuple[ProfileResult, ...] = ()
     comparison: VariantComparison | None = None
     budgets: tuple[Budget, ...] = ()
+    traced: tuple[TracedPlace, ...] = ()
     identity: ProgramIdentity = field(default_factory=ProgramIdentity)
 
     @property

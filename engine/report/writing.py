@@ -141,6 +141,7 @@ def computed_matter(
         profiles=further.profiles,
         comparison=further.comparison,
         budgets=further.budgets,
+        traced=further.traced,
     )
 
 
