@@ -165,7 +165,8 @@ def reached(request: DistanceRequest, cancelled: Cancelled | None = None) -> Rea
     case = fields.cases[loaded.index[chosen.id]]
     kind: Kind = "AC" if any(is_kind(f, "AC") for f in case.frequencies) else "DC"
     found = _lines(fields, case, level, request.heights, _extent(fields), kind)
-    distance, source = None, ()
+    distance: LevelDistance | None = None
+    source: tuple[Point, ...] = ()
     if request.target is not None:
         shape, beyond = _shape(layout, request.target)
         distance = largest_distance(
@@ -290,8 +291,9 @@ def factors(assessment: Assessment, case: str, level: str) -> tuple[PlaceFactor,
     """Of zones and receptors that name a level, in one case; the smallest first."""
     titles = {item.id: item.title for item in assessment.layout.items()}
     found: dict[str, PlaceFactor] = {}
-    results = (*assessment.zones, *assessment.receptors)
-    for comparison in (c for result in results for c in result.comparisons):
+    comparisons = [c for zone in assessment.zones for c in zone.comparisons]
+    comparisons += [c for place in assessment.receptors for c in place.comparisons]
+    for comparison in comparisons:
         if (comparison.case, comparison.level) != (case, level):
             continue
         factor = None if comparison.ratio is None else load_factor(comparison.ratio)

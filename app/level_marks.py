@@ -60,6 +60,15 @@ def overlay_of(
     return None
 
 
+def stale_overlay(answer: Reached, sight: Sight) -> Overlay | None:
+    """Lines that no longer belong to the layout: dashed, and saying so."""
+    found = overlay_of(answer, sight)
+    if found is None:
+        return None
+    text = f"{answer.level.title} · out of date"
+    return Overlay(dashed=found.lines, labels=_names(found.lines, text))
+
+
 def _is_on_map(answer: Reached) -> bool:
     """Whether the map has a named line of the level already."""
     request = answer.request

@@ -10,8 +10,8 @@ from PySide6.QtGui import QMouseEvent
 from PySide6.QtWidgets import QVBoxLayout
 
 from app.level_distance import PlaceFactor, Reached
-from app.level_marks import overlay_of
-from app.map_request import heights_of
+from app.level_marks import overlay_of, stale_overlay
+from app.map_request import case_of, heights_of
 from app.margin_values import MarginRow, Margins
 from app.menus import Command
 from app.pages.foot import Foot
@@ -26,6 +26,7 @@ from app.tools.tool import Overlay
 from app.views.projection import Sight, to_view
 from app.why_values import WhyPlace
 from engine.items import Point3
+from engine.results import Assessment
 
 if TYPE_CHECKING:
     from app.main_window import MainWindow
@@ -56,13 +57,16 @@ class WhyPages(QObject):
             page.closed.connect(self.foot.leave)
         self._pointed: Point3 | None = None
         self._pressed: QPointF | None = None
+        self._assessment: Assessment | None = None
         self.profile.pointed.connect(self._mark_profile)
         self.distance.found.connect(self._mark_distance)
+        self.distance.outdated.connect(self._mark_outdated)
         self.distance.closed.connect(window.drawings.take_keyboard)
         window.readout.shown.connect(self._on_read)
         window.margins.why.connect(self._on_why)
         window.margins.opened.connect(self._on_margins_opened)
         window.recompute.margins_ready.connect(self._on_margins)
+        window.view_state.changed.connect(self._note_measured)
         window.document.selection_changed.connect(self._on_selection)
         window.drawings.plan.viewport().installEventFilter(self)
 
@@ -140,8 +144,22 @@ class WhyPages(QObject):
     def _on_margins(self, margins: Margins) -> None:
         self.distance.set_margins(margins)
         if margins.assessment is not None:
-            notes = {row.place: measured_text(row) for row in margins.rows}
-            self._window.drawings.set_notes({k: v for k, v in notes.items() if v})
+            self._assessment = margins.assessment
+            self._note_measured()
+
+    def _note_measured(self, *_: object) -> None:
+        """Measured over calculated beside receptors, in the load case shown."""
+        if self._assessment is None:
+            return
+        shown = self._window.view_state.look.case
+        case = case_of(self._assessment.layout, shown).id
+        notes = {
+            result.receptor.id: measured_text(found.measured_ratio)
+            for result in self._assessment.receptors
+            for found in result.fields
+            if found.case == case and found.measured_ratio is not None
+        }
+        self._window.drawings.set_notes(notes)
 
     def _on_selection(self, ids: frozenset[str]) -> None:
         """A profile that was just drawn is plotted."""
@@ -200,4 +218,9 @@ class WhyPages(QObject):
         self._window.drawings.set_marks(
             "distance to a level",
             lambda sight: None if found is None else overlay_of(found, sight, load),
+        )
+
+    def _mark_outdated(self, found: Reached) -> None:
+        self._window.drawings.set_marks(
+            "distance to a level", lambda sight: stale_overlay(found, sight)
         )

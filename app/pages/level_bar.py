@@ -44,10 +44,13 @@ class LevelBar(QWidget):
     -------
     found(Reached or None, PlaceFactor or None)
         What the drawings should show now.
+    outdated(Reached)
+        What they show no longer belongs to the layout.
     closed()
     """
 
     found = Signal(object, object)
+    outdated = Signal(object)
     closed = Signal()
 
     def __init__(self, document: Document, view_state: ViewState) -> None:
@@ -56,6 +59,8 @@ class LevelBar(QWidget):
         self._target: Target | None = None
         self._margins: Margins | None = None
         self.answer: Reached | None = None
+        self._soon = QTimer(self, singleShot=True, interval=0)
+        self._soon.timeout.connect(self._ask)
         self.setAccessibleName("Distance to a reference level")
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Maximum)
         self.levels = choice("Reference level whose distance is sought", 60)
@@ -81,8 +86,6 @@ class LevelBar(QWidget):
         box.addWidget(self.words)
         self._answers = Answers("distance to the level", reached, self)
         self._answers.ready.connect(self._show)
-        self._soon = QTimer(self, singleShot=True, interval=0)
-        self._soon.timeout.connect(self._ask)
         document.changed.connect(self._on_changed)
         document.selection_changed.connect(self._on_selection)
         view_state.changed.connect(self._on_changed)
@@ -125,7 +128,7 @@ class LevelBar(QWidget):
     # -- events -------------------------------------------------------------------
 
     def hideEvent(self, event: QHideEvent) -> None:
-        if not self.isVisibleTo(self.parentWidget()):
+        if self.isHidden():
             self._answers.forget()
             self.answer = None
             self.found.emit(None, None)
@@ -173,14 +176,15 @@ class LevelBar(QWidget):
         )
         if self._answers.ask(request):
             self.state.setText("out of date" if self.answer else "being computed …")
+            if self.answer is not None:
+                self.outdated.emit(self.answer)
 
     def _fill(self, chosen: object) -> str:
         """Fill the choices; the id of the level to look for."""
         layout = self._document.layout
         levels = levels_of(layout)
-        named = {
-            id for place in (*layout.zones, *layout.receptors) for id in place.levels
-        }
+        named = {id for zone in layout.zones for id in zone.levels}
+        named |= {id for receptor in layout.receptors for id in receptor.levels}
         self.levels.clear()
         for level in sorted(levels, key=lambda v: v.id not in named):
             self.levels.addItem(level.title, level.id)

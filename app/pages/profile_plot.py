@@ -225,7 +225,9 @@ class ProfilePlot(pg.PlotWidget):
 
     def _draw_curve(self, curve: ProfileCurve) -> None:
         assert self.done is not None
-        values = np.where(curve.mask, np.nan, curve.values(self._kind))
+        found = curve.values(self._kind)
+        assert found is not None, "curves without values are not drawn"
+        values = np.where(curve.mask, np.nan, found)
         x = self.done.found.along / self._metres
         item = self.plot(x, self._ys(values), pen=self._pen(curve), connect="finite")
         item.setZValue(10)

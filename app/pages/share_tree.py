@@ -53,8 +53,8 @@ class _Bars(QStyledItemDelegate):
         part = index.data(_PART)
         if part is None:
             return
-        theme = theme_for(option.palette)  # type: ignore[attr-defined]
-        rect = QRectF(option.rect).adjusted(STEP, 0, -STEP, 0)  # type: ignore[attr-defined]
+        theme = theme_for(option.palette)
+        rect = QRectF(option.rect).adjusted(STEP, 0, -STEP, 0)
         middle = rect.left() + rect.width() * _zero(self.parent())
         scale = rect.width() * (1.0 - _zero(self.parent())) / _reach(self.parent())
         length = min(max(part * scale, rect.left() - middle), rect.right() - middle)

@@ -43,7 +43,7 @@ _Index = QModelIndex | QPersistentModelIndex
 _HEADINGS = (
     (
         "",
-        "The state as a sign: the line is the reference level, hatched is what U reaches",
+        "The state: the line is the reference level, hatched is what U reaches",
     ),
     ("Place", "Zone or receptor"),
     ("Reference level", "As entered by the user, with its value at one frequency"),
@@ -134,7 +134,7 @@ class MarginModel(QAbstractTableModel):
             "–" if spread is None else flux_density_text(spread, unit),
             "" if sampled else state_text(row),
             row.case_title,
-            measured_text(row),
+            measured_text(row.measured_ratio),
         )
 
 

@@ -79,11 +79,11 @@ def was_text(row: MarginRow, held: Margins | None) -> str:
     return "" if row.value is None else ", had no value before"
 
 
-def measured_text(row: MarginRow) -> str:
-    """ "measured / calculated = 1.3" of a receptor; empty without a measured value."""
-    if row.measured_ratio is None:
+def measured_text(ratio: float | None) -> str:
+    """ "measured / calculated = 1.3"; empty without a measured value."""
+    if ratio is None:
         return ""
-    return f"measured / calculated = {significant(row.measured_ratio, 2)}"
+    return f"measured / calculated = {significant(ratio, 2)}"
 
 
 def level_text(row: MarginRow, layout: Layout) -> str:
@@ -126,7 +126,7 @@ def sentence(row: MarginRow, layout: Layout, sampled: bool) -> str:
     text += f"; {STATE_SENTENCES[row.state]}; load case {row.case_title}"
     if row.measured is not None and row.measured_ratio is not None:
         measured = flux_density_text(row.measured, unit)
-        text += f"; measured {measured}, {measured_text(row)}"
+        text += f"; measured {measured}, {measured_text(row.measured_ratio)}"
     return text
 
 

@@ -28,6 +28,7 @@ from engine.errors import UserError
 from engine.layout import Layout
 from engine.layout_file import read
 from engine.places import MeasuredValue
+from engine.shaping import moved
 from engine.sight import LOOKING_X, LOOKING_Y, PLAN
 
 SAMPLES = Path(__file__).parents[2] / "sample_layouts"
@@ -158,9 +159,19 @@ def test_bar_tells_distance_and_factor_and_draws_them(
     mark = window.drawings.plan.marks["distance to a level"]
     assert mark.dimensions
     assert any("× this case" in text for _, text in mark.labels)
+    _moves(window, layout.runs[0].id)
+    bar._ask()
+    mark = window.drawings.plan.marks["distance to a level"]
+    assert not mark.dimensions
+    assert mark.labels[0][1].endswith("out of date")
     qtbot.keyClick(bar, Qt.Key.Key_Escape)
     assert bar.isHidden()
     assert not window.drawings.plan.marks
+
+
+def _moves(window: MainWindow, item: str) -> None:
+    document = window.document
+    document.edit("Move", moved(document.committed, [item], 0.5, 0.0))
 
 
 # -- pages ----------------------------------------------------------------------------
