@@ -63,31 +63,7 @@ def _parser() -> argparse.ArgumentParser:
     )
     commands = parser.add_subparsers(required=True, metavar="COMMAND")
 
-    assess = commands.add_parser(
-        "assess", help="compare zones and receptors with their reference levels"
-    )
-    assess.add_argument("layout", metavar="LAYOUT")
-    assess.add_argument("--case", metavar="NAME", help="only this load case")
-    assess.add_argument("--variant", metavar="NAME", help="instead of the base")
-    assess.add_argument(
-        "--certify", action="store_true", help="prove upper bounds of zones' maxima"
-    )
-    assess.add_argument(
-        "--tolerance",
-        type=_share,
-        default=_share("1%"),
-        metavar="1%",
-        help="by how much a proven bound may exceed the value found",
-    )
-    _add_unit(assess)
-    assess.add_argument("--json", action="store_true", help="print JSON, in tesla")
-    assess.add_argument(
-        "--tables",
-        type=Path,
-        metavar="OUT.xlsx|FOLDER",
-        help="write the report's tables as a workbook, or as CSV files",
-    )
-    assess.set_defaults(run=_assess)
+    _add_assess(commands)
 
     compare = commands.add_parser(
         "compare", help="set the base and its variants side by side"
@@ -132,6 +108,34 @@ def _parser() -> argparse.ArgumentParser:
     validate.add_argument("--json", action="store_true", help="print JSON")
     validate.set_defaults(run=_validate)
     return parser
+
+
+def _add_assess(commands: Any) -> None:
+    assess = commands.add_parser(
+        "assess", help="compare zones and receptors with their reference levels"
+    )
+    assess.add_argument("layout", metavar="LAYOUT")
+    assess.add_argument("--case", metavar="NAME", help="only this load case")
+    assess.add_argument("--variant", metavar="NAME", help="instead of the base")
+    assess.add_argument(
+        "--certify", action="store_true", help="prove upper bounds of zones' maxima"
+    )
+    assess.add_argument(
+        "--tolerance",
+        type=_share,
+        default=_share("1%"),
+        metavar="1%",
+        help="by how much a proven bound may exceed the value found",
+    )
+    _add_unit(assess)
+    assess.add_argument("--json", action="store_true", help="print JSON, in tesla")
+    assess.add_argument(
+        "--tables",
+        type=Path,
+        metavar="OUT.xlsx|FOLDER",
+        help="write the report's tables as a workbook, or as CSV files",
+    )
+    assess.set_defaults(run=_assess)
 
 
 def _add_documents(commands: Any) -> None:

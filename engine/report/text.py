@@ -230,25 +230,28 @@ def table(
         spaceBefore=2,
         spaceAfter=6,
     )
-    rules = [("LINEBELOW", (0, end), (-1, end), 0.25, HAIR) for end in ends[1:]]
-    made.setStyle(
-        TableStyle(
-            [
-                ("FONT", (0, 0), (-1, 0), BOLD_FONT, CELL_SIZE, LEADING),
-                ("FONT", (0, 1), (-1, -1), FONT, CELL_SIZE, LEADING),
-                ("TEXTCOLOR", (0, 0), (-1, -1), INK),
-                ("VALIGN", (0, 0), (-1, -1), "TOP"),
-                ("BACKGROUND", (0, 0), (-1, 0), HEAD),
-                ("LINEBELOW", (0, 0), (-1, 0), 0.6, INK),
-                ("LEFTPADDING", (0, 0), (-1, -1), PADDING),
-                ("RIGHTPADDING", (0, 0), (-1, -1), PADDING),
-                ("TOPPADDING", (0, 0), (-1, -1), PADDING - 0.8),
-                ("BOTTOMPADDING", (0, 0), (-1, -1), PADDING),
-                *rules,
-            ]
-        )
-    )
+    made.setStyle(TableStyle([*_CELLS, *_rules(ends)]))
     return made
+
+
+#: How cells look; the first row is the head.
+_CELLS = (
+    ("FONT", (0, 0), (-1, 0), BOLD_FONT, CELL_SIZE, LEADING),
+    ("FONT", (0, 1), (-1, -1), FONT, CELL_SIZE, LEADING),
+    ("TEXTCOLOR", (0, 0), (-1, -1), INK),
+    ("VALIGN", (0, 0), (-1, -1), "TOP"),
+    ("BACKGROUND", (0, 0), (-1, 0), HEAD),
+    ("LINEBELOW", (0, 0), (-1, 0), 0.6, INK),
+    ("LEFTPADDING", (0, 0), (-1, -1), PADDING),
+    ("RIGHTPADDING", (0, 0), (-1, -1), PADDING),
+    ("TOPPADDING", (0, 0), (-1, -1), PADDING - 0.8),
+    ("BOTTOMPADDING", (0, 0), (-1, -1), PADDING),
+)
+
+
+def _rules(ends: Sequence[int]) -> list[tuple[object, ...]]:
+    """A hairline under each row, however many rows of cells it takes."""
+    return [("LINEBELOW", (0, end), (-1, end), 0.25, HAIR) for end in ends[1:]]
 
 
 def least_height(made: Table) -> float:
