@@ -2,11 +2,33 @@
 
 from __future__ import annotations
 
+import gc
 import os
+from collections.abc import Iterator
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 
+import pytest
 from PySide6.QtCore import QCoreApplication, Qt
+
+from app.collection import due
 
 # A second OpenGL view draws nothing unless contexts are shared from the start.
 QCoreApplication.setAttribute(Qt.ApplicationAttribute.AA_ShareOpenGLContexts)
+
+
+@pytest.fixture(scope="session", autouse=True)
+def _no_collection_in_workers() -> Iterator[None]:
+    """As in the program: see `app.collection`."""
+    gc.disable()
+    yield
+    gc.enable()
+
+
+@pytest.fixture(autouse=True)
+def _collected(_no_collection_in_workers: None) -> Iterator[None]:
+    """What a test leaves is collected after it, on this thread."""
+    yield
+    generation = due()
+    if generation is not None:
+        gc.collect(generation)
