@@ -17,18 +17,12 @@ from app.collection import due
 QCoreApplication.setAttribute(Qt.ApplicationAttribute.AA_ShareOpenGLContexts)
 
 
-@pytest.fixture(scope="session", autouse=True)
-def _no_collection_in_workers() -> Iterator[None]:
-    """As in the program: see `app.collection`."""
-    gc.disable()
-    yield
-    gc.enable()
-
-
 @pytest.fixture(autouse=True)
-def _collected(_no_collection_in_workers: None) -> Iterator[None]:
-    """What a test leaves is collected after it, on this thread."""
+def _collected_on_this_thread() -> Iterator[None]:
+    """As in the program, see `app.collection`: what a test leaves goes after it."""
+    gc.disable()
     yield
     generation = due()
     if generation is not None:
         gc.collect(generation)
+    gc.enable()
