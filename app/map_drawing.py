@@ -56,8 +56,17 @@ def map_picture(values: MapValues) -> MapPicture:
         high=in_unit(settings.map_high, unit),
         scale=settings.map_scale,
         marks=_marks(values, unit),
+        extent=None if request.fineness == "coarse" else _extent(logs),
         is_coarse=request.fineness == "coarse",
     )
+
+
+def _extent(logs: Floats) -> tuple[float, float] | None:
+    """Smallest and largest value of what is neither masked nor without field. [T]"""
+    shown = logs[logs > math.log10(_NOTHING)]
+    if not shown.size:
+        return None
+    return 10.0 ** float(shown.min()), 10.0 ** float(shown.max())
 
 
 def caption(values: MapValues) -> str:

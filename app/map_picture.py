@@ -74,6 +74,8 @@ class MapPicture:
         "logarithmic" or "linear".
     marks : tuple of (value, name)
         Reference levels that the legend marks. [`unit`]
+    extent : (2,) float or None
+        Smallest and largest value that shows; None for a coarse map. [T]
     is_coarse : bool
         A preview with few points.
     is_stale : bool
@@ -90,5 +92,6 @@ class MapPicture:
     high: float = 1000.0
     scale: Scale = "logarithmic"
     marks: tuple[tuple[float, str], ...] = ()
+    extent: tuple[float, float] | None = None
     is_coarse: bool = False
     is_stale: bool = False

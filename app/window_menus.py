@@ -352,12 +352,12 @@ class WindowMenus(QObject):
     def _fit_range(self) -> None:
         document = self._window.document
         picture = self._window.drawings.plan.drawing.map_layer.picture
-        if picture is None or picture.largest <= 0:
-            raise UserError("There is no map yet whose range could be fitted.")
+        if picture is None or picture.extent is None:
+            raise UserError("There is no settled map yet whose range could be fitted.")
+        smallest, largest = picture.extent
+        low = min(max(smallest, 1e-4 * largest), 0.5 * largest)
         settings = msgspec.structs.replace(
-            document.committed.settings,
-            map_low=max(picture.smallest, 1e-4 * picture.largest),
-            map_high=picture.largest,
+            document.committed.settings, map_low=low, map_high=largest
         )
         document.edit("Fit the map's range", replaced(document.committed, settings))
 

@@ -14,6 +14,7 @@ from app.main_window import MainWindow
 from app.messages import Messages
 from app.theme import DARK, LIGHT
 from engine import layout_file
+from engine.errors import UserError
 
 SAMPLES = Path(__file__).parents[2] / "sample_layouts"
 
@@ -102,3 +103,19 @@ def test_the_drawing_keeps_its_room(window, size):
     if size[0] >= 1280:
         assert window.drawings.plan.width() >= 560
     assert window.drawings.plan.height() >= 280
+
+
+def test_fit_range_takes_what_the_map_shows(window):
+    open_sample(window, "small-switch-room")
+    picture = window.drawings.plan.drawing.map_layer.picture
+    window.menus._fit_range()
+    settings = window.document.layout.settings
+    assert settings.map_high == picture.extent[1]
+    assert 0 < settings.map_low < settings.map_high
+    assert window.menus._undo.text() == "Undo: Fit the map's range"
+
+
+def test_fit_range_without_a_map_says_so(window):
+    window.drawings.plan.drawing.map_layer.set_picture(None)
+    with pytest.raises(UserError, match="no settled map"):
+        window.menus._fit_range()
