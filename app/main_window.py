@@ -384,7 +384,7 @@ class MainWindow(QMainWindow):
 
     def dropEvent(self, event: QDropEvent) -> None:
         paths = [url.toLocalFile() for url in event.mimeData().urls()]
-        self.menus.open_dropped([path for path in paths if path])
+        self.menus.acts.open_dropped([path for path in paths if path])
 
     def closeEvent(self, event: QCloseEvent) -> None:
         if not self.files.may_leave():

@@ -1,32 +1,27 @@
-"""What the menus of the window hold, and the few commands that need the window."""
+"""What the menus of the window hold, and what in them follows the layout."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
-import msgspec
 from PySide6.QtCore import QObject
 from PySide6.QtGui import QAction, QActionGroup, QKeySequence
-from PySide6.QtWidgets import QApplication, QFileDialog, QMenu
+from PySide6.QtWidgets import QMenu
 
 from app import clipboard, commands, preferences
-from app.backing import place_backing_file, place_backing_picture
-from app.copying import copy_picture, copy_sentence
+from app.copying import copy_sentence
 from app.drawings import VIEWS
 from app.files import SAMPLES
 from app.icons import icon
 from app.menus import LINE, Command, add_menu
-from app.tools.run import RunTool
-from engine.edits import replaced
+from app.window_acts import WindowActs
 from engine.errors import UserError
 from engine.units import FLUX_DENSITY_UNITS
 
 if TYPE_CHECKING:
     from app.main_window import MainWindow
 
-PICTURES = "Drawings and pictures (*.pdf *.png *.jpg *.jpeg)"
 #: Sizes of text beside the system's. [%]
 TEXT_SIZES = (90, 100, 110, 125, 150)
 Standard = QKeySequence.StandardKey
@@ -39,6 +34,7 @@ class WindowMenus(QObject):
         # A child of the window: its connections end with the window's actions.
         super().__init__(window)
         self._window = window
+        self.acts = WindowActs(window)
         self._file()
         self._edit()
         self._draw()
@@ -106,7 +102,7 @@ class WindowMenus(QObject):
                         "Items, or a picture as backing drawing"),
                 Command("Delete", lambda: commands.delete_selection(document), "",
                         "Delete what is selected (Del on the drawing)"),
-                Command("Select everything", self._select_all, Standard.SelectAll,
+                Command("Select everything", self.acts.select_all, Standard.SelectAll,
                         "All items that are drawn"),
                 Command("Select the next item", lambda: commands.select_next(document),
                         "F4", "One item after the other, without a pointer"),
@@ -133,9 +129,11 @@ class WindowMenus(QObject):
         self._add(
             "&Draw",
             [
-                Command("Riser to the next floor", lambda: self._rise(down=False), "",
+                Command("Riser to the next floor",
+                        lambda: self.acts.rise(down=False), "",
                         "From the last vertex, or from the selected run's end"),
-                Command("Riser to the floor below", lambda: self._rise(down=True), "",
+                Command("Riser to the floor below",
+                        lambda: self.acts.rise(down=True), "",
                         "From the last vertex, or from the selected run's end"),
                 LINE,
                 Command("Fill room with a zone", lambda: commands.fill_room(document),
@@ -145,14 +143,14 @@ class WindowMenus(QObject):
                 Command("Add room below …", arrange.room_below, "",
                         "The same outline under the floor"),
                 LINE,
-                Command("Open the section", self._open_section, "F6",
+                Command("Open the section", self.acts.open_section, "F6",
                         "The selected run cut across at true scale"),
                 LINE,
-                Command("Place backing drawing …", self._place_file, "",
+                Command("Place backing drawing …", self.acts.place_file, "",
                         "A page of a PDF, a PNG or a JPEG under the drawing"),
-                Command("Place picture from the clipboard", self._place_picture, "",
+                Command("Place picture from the clipboard", self.acts.place_picture, "",
                         "The copied picture under the drawing"),
-                Command("Calibrate backing drawing", self._calibrate, "",
+                Command("Calibrate backing drawing", self.acts.calibrate, "",
                         "Two points and their distance; then where one point lies"),
             ],
         )  # fmt: skip
@@ -198,7 +196,7 @@ class WindowMenus(QObject):
                 Command("Largest over heights",
                         lambda: w.view_state.set(height=None), "",
                         "The largest value over the zone's heights"),
-                Command("Fit range", self._fit_range, "",
+                Command("Fit range", self.acts.fit_range, "",
                         "Let the map's range hold the values that it shows"),
                 *w.view_pages.why.commands(),
                 Command("Field over one period", w.view_pages.open_cycle, "F8",
@@ -210,7 +208,7 @@ class WindowMenus(QObject):
                 Command("Copy as sentence",
                         lambda: copy_sentence(w.margins.sentence), "Ctrl+Shift+C",
                         "The worst comparison, or the one chosen in the table"),
-                Command("Copy picture", self._copy_picture, "",
+                Command("Copy picture", self.acts.put_picture, "",
                         "The drawing as it shows, with its caption"),
                 LINE,
             ],
@@ -221,7 +219,7 @@ class WindowMenus(QObject):
         group = QActionGroup(units)
         for unit in FLUX_DENSITY_UNITS:
             action = QAction(unit, units, checkable=True)
-            action.triggered.connect(lambda _on, u=unit: self._set_unit(u))
+            action.triggered.connect(lambda _on, u=unit: self._show_unit(u))
             group.addAction(action)
             units.addAction(action)
         self._units = group
@@ -260,7 +258,7 @@ class WindowMenus(QObject):
         for value in values:
             text = f"{value}{unit}"
             action = QAction(text, menu, checkable=True, checked=value == chosen)
-            action.triggered.connect(lambda _on, v=value: self._prefer(field, v))
+            action.triggered.connect(lambda _on, v=value: self.acts.prefer(field, v))
             group.addAction(action)
             menu.addAction(action)
 
@@ -278,6 +276,10 @@ class WindowMenus(QObject):
         self._window.margins.hold(False)
         self._window.view_pages.hold(False)
 
+    def _show_unit(self, unit: str) -> None:
+        self.acts.set_unit(unit)
+        self.refresh()
+
     def _on_undo_text(self, text: str) -> None:
         self._undo.setText(f"Undo: {text}" if text else "Undo")
         self._undo.setEnabled(bool(text))
@@ -290,45 +292,8 @@ class WindowMenus(QObject):
         self._recent.clear()
         for name in preferences.load().recent:
             action = self._recent.addAction(name)
-            action.triggered.connect(lambda _on, n=name: self._open_recent(n))
+            action.triggered.connect(lambda _on, n=name: self.acts.open_recent(n))
         self._recent.setEnabled(not self._recent.isEmpty())
-
-    # -- doing ------------------------------------------------------------------
-
-    def open_dropped(self, names: list[str]) -> None:
-        """Open a dropped layout or schedule; place a dropped drawing."""
-        for name in names[:1]:
-            path = Path(name)
-            if path.suffix.lower() in (".json", ".csv"):
-                self._window.files.open(path)
-            else:
-                with self._window.messages.shown():
-                    self._place(path)
-
-    def _open_recent(self, name: str) -> None:
-        if Path(name).exists():
-            self._window.files.open(Path(name))
-            return
-        self._window.files.forget(name)
-        self._window.messages.warn(
-            f"{name} is not there any more and was taken out of the recent files."
-        )
-
-    def _prefer(self, field: str, value: Any) -> None:
-        preferences.save(msgspec.structs.replace(preferences.load(), **{field: value}))
-        if field == "text_size":
-            self._window.messages.inform(
-                f"Texts are shown at {value} % from the next start on."
-            )
-        self._window.follow_preferences()
-
-    def _set_unit(self, unit: str) -> None:
-        document = self._window.document
-        settings = msgspec.structs.replace(
-            document.committed.settings, flux_density_unit=unit
-        )
-        document.edit(f"Show {unit}", replaced(document.committed, settings))
-        self.refresh()
 
     def _hold(self) -> None:
         if not self._window.margins.hold(self._held.isChecked()):
@@ -338,63 +303,3 @@ class WindowMenus(QObject):
                 "and a current."
             )
         self._window.view_pages.hold(self._held.isChecked())
-
-    def _copy_picture(self) -> None:
-        w = self._window
-        copy_picture(w.drawings, w.caption_text())
-        w.messages.inform("The picture is on the clipboard, with its caption.")
-
-    def _rise(self, *, down: bool) -> None:
-        tool = self._window.toolbox.active
-        if not (isinstance(tool, RunTool) and tool.rise(down=down)):
-            commands.raise_selected_run(self._window.document, down=down)
-
-    def _fit_range(self) -> None:
-        document = self._window.document
-        picture = self._window.drawings.plan.drawing.map_layer.picture
-        if picture is None or picture.extent is None:
-            raise UserError("There is no settled map yet whose range could be fitted.")
-        smallest, largest = picture.extent
-        low = min(max(smallest, 1e-4 * largest), 0.5 * largest)
-        settings = msgspec.structs.replace(
-            document.committed.settings, map_low=low, map_high=largest
-        )
-        document.edit("Fit the map's range", replaced(document.committed, settings))
-
-    def _select_all(self) -> None:
-        document = self._window.document
-        document.select(item.id for item in commands.drawn(document.layout))
-
-    def _open_section(self) -> None:
-        document = self._window.document
-        runs = [run.id for run in document.layout.runs if run.id in document.selection]
-        if len(runs) != 1:
-            raise UserError("Select one run to see its section.")
-        self._window.open_section(runs[0])
-
-    def _place_file(self) -> None:
-        name, _ = QFileDialog.getOpenFileName(
-            self._window, "Place backing drawing", "", PICTURES
-        )
-        if name:
-            self._place(Path(name))
-
-    def _place(self, path: Path) -> None:
-        """Under the view in front; to be calibrated at once."""
-        w = self._window
-        w.calibrate(place_backing_file(w.document, path, view=w.drawings.plane))
-
-    def _calibrate(self) -> None:
-        document = self._window.document
-        drawings = document.layout.backing_drawings
-        chosen = [d for d in drawings if d.id in document.selection] or drawings[-1:]
-        if not chosen:
-            raise UserError("There is no backing drawing to calibrate: place one.")
-        self._window.calibrate(chosen[0].id)
-
-    def _place_picture(self) -> None:
-        image = QApplication.clipboard().image()
-        if image.isNull():
-            raise UserError("There is no picture on the clipboard: copy one first.")
-        w = self._window
-        w.calibrate(place_backing_picture(w.document, image, w.drawings.plane))

@@ -161,7 +161,7 @@ def test_the_run_tool_rises_from_its_last_vertex(window):
     tool = run_tool(window)
     assert not tool.rise()
     tool._add((1.0, 1.0, 2.0))
-    window.menus._rise(down=False)
+    window.menus.acts.rise(down=False)
     assert tool._points[-1] == (1.0, 1.0, 5.5)
 
 
@@ -270,7 +270,7 @@ def test_a_layout_opened_from_a_page_shows_its_drawing(window):
 
 
 def test_a_recent_file_that_is_gone_says_so(window, tmp_path):
-    window.menus._open_recent(str(tmp_path / "gone.json"))
+    window.menus.acts.open_recent(str(tmp_path / "gone.json"))
     assert "not there any more" in window.message_bar.sentence
 
 
@@ -363,7 +363,7 @@ def test_a_drawing_placed_is_calibrated_at_once_under_the_view_in_front(
     path = tmp_path / "plan.png"
     assert picture.save(str(path))
     window.drawings.show_view("Looking +x")
-    window.menus.open_dropped([str(path)])
+    window.menus.acts.open_dropped([str(path)])
     (drawing,) = window.document.committed.backing_drawings
     assert drawing.view == "looking +x"
     assert window.toolbox.active is window.toolbox.calibrate

@@ -89,7 +89,7 @@ def test_both_themes_show(window, qtbot):
 def test_undo_says_what_it_takes_back(window):
     open_sample(window, "small-switch-room")
     window.document.select(["reception"])
-    window.menus._set_unit("mG")
+    window.menus._show_unit("mG")
     assert window.menus._undo.text() == "Undo: Show mG"
     window.document.undo_stack.undo()
     assert window.menus._undo.text() == "Undo"
@@ -108,7 +108,7 @@ def test_the_drawing_keeps_its_room(window, size):
 def test_fit_range_takes_what_the_map_shows(window):
     open_sample(window, "small-switch-room")
     picture = window.drawings.plan.drawing.map_layer.picture
-    window.menus._fit_range()
+    window.menus.acts.fit_range()
     settings = window.document.layout.settings
     assert settings.map_high == picture.extent[1]
     assert 0 < settings.map_low < settings.map_high
@@ -118,4 +118,4 @@ def test_fit_range_takes_what_the_map_shows(window):
 def test_fit_range_without_a_map_says_so(window):
     window.drawings.plan.drawing.map_layer.set_picture(None)
     with pytest.raises(UserError, match="no settled map"):
-        window.menus._fit_range()
+        window.menus.acts.fit_range()
