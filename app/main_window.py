@@ -1,4 +1,4 @@
-"""The window: builds the parts, connects them, and holds no state of its own."""
+"""The window: builds and arranges the parts, and holds no state of its own."""
 
 from __future__ import annotations
 
@@ -26,7 +26,7 @@ from app import preferences, window_geometry
 from app.arrange import Arrange
 from app.ask_bar import AskBar
 from app.caption_bar import CaptionBar, caption
-from app.document import EVERYTHING, Document
+from app.document import Document
 from app.drawings import Drawings
 from app.entry_strip import EntryStrip
 from app.exports import Exports
@@ -55,6 +55,7 @@ from app.variant_band import VariantBand
 from app.view_pages import ViewPages
 from app.view_state import ViewState
 from app.views.height_rail import HeightRail
+from app.window_links import WindowLinks
 from app.window_menus import WindowMenus
 
 #: Under this height the foot panels open in the drawing's place. [logical pixels]
@@ -88,13 +89,12 @@ class MainWindow(QMainWindow):
         self._build()
         self.view_pages = ViewPages(self)
         self.menus = WindowMenus(self)
-        self._connect()
+        self.links = WindowLinks(self)
         self.set_theme(theme)
         self.setAcceptDrops(True)
         self.setMinimumSize(980, 560)
         room = self.screen().availableGeometry().size() - QSize(40, 60)
         self.resize(QSize(1360, 860).boundedTo(room))
-        self._show_title()
 
     # -- building ---------------------------------------------------------------
 
@@ -187,53 +187,6 @@ class MainWindow(QMainWindow):
         bar.addPermanentWidget(JobBar(self.jobs))
         bar.addPermanentWidget(self.readout)
 
-    # -- connecting -------------------------------------------------------------
-
-    def _connect(self) -> None:
-        document, recompute = self.document, self.recompute
-        self.toolbox.activated.connect(self.drawings.set_tool)
-        self.toolbox.activated.connect(self.strip.set_tool)
-        self.toolbox.hint_changed.connect(self._tell_hint)
-        self.toolbox.activated.connect(lambda _tool: self.show_drawing())
-        self.strip.hold_toggled.connect(self.drawings.set_holds)
-        self.strip.catch_toggled.connect(self.drawings.set_catches)
-        self.strip.left.connect(self.drawings.take_keyboard)
-        self.drawings.entry_wanted.connect(self.strip.take_focus)
-        self.section.turned.connect(self.drawings.set_cut)
-        self.drawings.area_changed.connect(recompute.set_view)
-        self.drawings.pointed.connect(self.readout.show_at)
-        self.drawings.pointer_left.connect(self.readout.clear_place)
-        recompute.map_ready.connect(self.drawings.set_map)
-        recompute.map_ready.connect(self._tell_map_state)
-        recompute.margins_ready.connect(self._take_margins)
-        recompute.curve_ready.connect(self.rail.set_curve)
-        recompute.problem.connect(self.caption.tell)
-        recompute.progress.connect(
-            lambda share, text: self.working.setText(text if share < 1 else "")
-        )
-        self.rail.refused.connect(self.messages.warn)
-        self.margins.go_to.connect(self.go_to)
-        self.margins.opened.connect(self._make_room)
-        self.item.section_requested.connect(self.open_section)
-        self.item.calibrate_requested.connect(self.calibrate)
-        self.section.closed.connect(self.show_drawing)
-        for page in (self.new_page, self.guide, self.cautions, self.about):
-            page.closed.connect(self.show_drawing)
-        self.new_page.chosen.connect(self.files.new)
-        self.remarks.go_to.connect(self._go_to_place)
-        self.remarks.counted.connect(
-            lambda count: self.panels.rename(
-                "Remarks", f"Remarks {count}" if count else "Remarks"
-            )
-        )
-        self.jobs.refused.connect(self.messages.error)
-        self.files.changed_outside.connect(self._on_changed_outside)
-        document.path_changed.connect(self._show_title)
-        document.undo_stack.cleanChanged.connect(self._show_title)
-        document.changed.connect(self._on_changed)
-        self.toolbox.activate(self.toolbox.tools[0])
-        self._on_changed(document.layout, frozenset())
-
     # -- pages ------------------------------------------------------------------
 
     def show_page(self, page: QWidget) -> None:
@@ -241,12 +194,12 @@ class MainWindow(QMainWindow):
         self.pages.setCurrentWidget(page)
         self.rail.setVisible(page is self.drawings)
         self.strip.setVisible(page is self.drawings)
-        self._tell_hint()
+        self.tell_hint()
         # The page itself shows no mark of the keyboard: what it hands on to does.
         (page.focusProxy() or page).setFocus(Qt.FocusReason.TabFocusReason)
 
-    def _tell_hint(self, *_: object) -> None:
-        """What can be done in the drawing's place now."""
+    def tell_hint(self, *_: object) -> None:
+        """Say at the foot what can be done in the drawing's place now."""
         page, tool = self.pages.currentWidget(), self.toolbox.active
         if page is self.section:
             self.hint.say(
@@ -284,52 +237,12 @@ class MainWindow(QMainWindow):
         if isinstance(at, tuple):
             self.drawings.look_at(at)
 
-    def _go_to_place(self, at: object) -> None:
-        if isinstance(at, tuple):
-            self.show_drawing()
-            self.drawings.look_at(at)
-
-    def _take_margins(self, margins: object) -> None:
-        self.margins.set_margins(margins)
-        assessment = margins.assessment
-        if assessment is not None:
-            self.remarks.set_assessment(assessment)
-
-    def _tell_map_state(self, picture: object) -> None:
-        text = "out of date" if picture.is_stale else ""
-        self.caption.tell("coarse" if picture.is_coarse and not text else text)
-
-    def _make_room(self, opened: bool) -> None:
+    def make_room(self, opened: bool) -> None:
         """Foot panels take at most 40 % of the height, or the drawing's place."""
         low = self.height() < LOW
         self.splitter.setVisible(not (opened and low))
         limit = 16777215 if low and opened else int(0.4 * self.height())
         self.margins.setMaximumHeight(limit)
-
-    def _on_changed(self, layout: object, ids: object) -> None:
-        self.strip.set_unit(self.document.layout.settings.length_unit)
-        if ids == EVERYTHING:
-            self._show_title()
-            self.menus.release_held()
-            # What was told of the layout before is not true of this one.
-            self.message_bar.hide()
-            self.show_drawing()
-
-    def _on_changed_outside(self, path: object) -> None:
-        self.message_bar.offer(
-            f"{path} was changed by another program. Read it again to see the change, "
-            "or save to replace it with what is shown here.",
-            "Read it again",
-            lambda: self.files.open(path),
-        )
-
-    def _show_title(self, *_: object) -> None:
-        path = self.document.path
-        project = self.document.layout.title.project
-        unsaved = f"{project} · not saved yet" if project else "not saved yet"
-        name = path.name if path else unsaved
-        self.setWindowTitle(f"{name}[*] — Lodestead")
-        self.setWindowModified(self.document.is_modified)
 
     def show_first_strip(self, strip: QWidget) -> None:
         """Put the strip of the first start above everything."""
@@ -362,7 +275,7 @@ class MainWindow(QMainWindow):
     def resizeEvent(self, event: QResizeEvent) -> None:
         self.tool_row.set_wide(self.width() >= 1500)
         self.drawings.set_wide(self.width() >= 1900)
-        self._make_room(self.margins.is_open)
+        self.make_room(self.margins.is_open)
         super().resizeEvent(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:

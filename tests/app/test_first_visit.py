@@ -258,7 +258,7 @@ def test_a_file_changed_outside_is_read_again_by_one_button(window, tmp_path):
     layout_file.write(path, empty_layout(preferences.Preferences()))
     assert window.files.open(path)
     path.write_bytes(SMALL.read_bytes())
-    window._on_changed_outside(path)
+    window.files.changed_outside.emit(path)
     window.message_bar._offer.click()
     assert window.document.committed == layout_file.read(SMALL)
 
