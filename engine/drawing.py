@@ -23,7 +23,7 @@ from engine.layout import Layout
 from engine.outlines import Area, Line, Point, band, bar_footprint
 from engine.places import Enclosure, Receptor, Room, Zone
 from engine.runs import Run
-from engine.sight import PLAN, Sight
+from engine.sight import PLAN, SIGHTS, Sight
 
 __all__ = [
     "Area",
@@ -83,7 +83,8 @@ class Place:
 class Rise:
     """A leg seen end-on: on plan a vertical one, going up or down along the current.
 
-    On an elevation `z_from` and `z_to` are coordinates along its `axis`.
+    On an elevation `z_from` and `z_to` are coordinates along its `axis`; along a drawn
+    line that is the "depth" behind it.
     """
 
     at: Point
@@ -225,7 +226,7 @@ def parted(conductors: Sequence[Conductor], sight: Sight) -> Parted:
     runs: dict[str, list[Conductor]] = {}
     equipment: list[Strand] = []
     links: list[Strand] = []
-    of_sight = _STRANDS.setdefault(sight.name, {})
+    of_sight = _strands_of(sight)
     for conductor in conductors:
         if conductor.role == "run":
             runs.setdefault(conductor.item, []).append(conductor)
@@ -315,22 +316,34 @@ def _run_shape(run: Run, own: Sequence[Conductor], sight: Sight) -> RunShape:
 
 def _rises(run: Run, sight: Sight) -> Iterable[Rise]:
     along = sight.axis
-    index = "xyz".index(along)
+    if along == "depth":
+        levels = sight.depth(run.route).tolist()
+    else:
+        levels = [vertex["xyz".index(along)] for vertex in run.route]
     seen = _line(sight.seen(run.route))
-    for (a, b), (p, q) in zip(pairwise(run.route), pairwise(seen), strict=True):
-        if math.dist(p, q) < _END_ON and abs(b[index] - a[index]) > _END_ON:
-            yield Rise(p, a[index], b[index], along)
+    for (a, b), (p, q) in zip(pairwise(levels), pairwise(seen), strict=True):
+        if math.dist(p, q) < _END_ON and abs(b - a) > _END_ON:
+            yield Rise(p, a, b, along)
 
 
 def strand(conductor: Conductor, sight: Sight = PLAN) -> Strand:
     """A conductor as seen; the identical shape again for the same conductor."""
-    of_sight = _STRANDS.setdefault(sight.name, {})
+    of_sight = _strands_of(sight)
     kept = of_sight.get(id(conductor))
     if kept is not None and kept[0] is conductor:
         return kept[1]
     made = _strand(conductor, sight)
     _keep(of_sight, id(conductor), (conductor, made))
     return made
+
+
+def _strands_of(sight: Sight) -> dict[int, tuple[Conductor, Strand]]:
+    if sight.is_along_line and sight.name not in _STRANDS:
+        # A line that is dragged is another sight at every step: the last one counts.
+        for name in list(_STRANDS):
+            if name not in SIGHTS:
+                _STRANDS.pop(name, None)
+    return _STRANDS.setdefault(sight.name, {})
 
 
 def _strand(conductor: Conductor, sight: Sight) -> Strand:

@@ -1,4 +1,4 @@
-"""From places in the layout to places in a view and back: plan and two elevations."""
+"""From places in the layout to places in a view and back: plan and elevations."""
 
 from __future__ import annotations
 
@@ -39,15 +39,14 @@ def to_layout(sight: Sight, seen: Point, kept: Point3) -> Point3:
     >>> to_layout(LOOKING_X, (-2.0, 3.0), (1.0, 9.0, 9.0))
     (1.0, 2.0, 3.0)
     """
-    x, y, z = (
-        r * seen[0] + u * seen[1] + abs(i) * k
-        for r, u, i, k in zip(sight.right, sight.up, sight.into, kept, strict=True)
-    )
+    x, y, z = sight.places(seen, float(sight.depth(kept))).tolist()
     return (x, y, z)
 
 
 def across_text(sight: Sight) -> tuple[str, str]:
     """Names of the axes that run to the right and upwards: ("−y", "z")."""
+    if sight.is_along_line:
+        return "along the line", "z"
     return _named(sight.right), _named(sight.up)
 
 

@@ -77,7 +77,8 @@ def draw_scale_bar(
     wide = length * camera.scale
     name = "m" if unit == "mm" else unit
     right, up = across_text(sight)
-    view = "Plan" if sight is PLAN else sight.name.capitalize()
+    # A line's name is told above the view.
+    view = "Line" if sight.is_along_line else sight.name.capitalize()
     text = f"{length / metres:g} {name}"
     words = f"{view}:  {right} →  {up} ↑"
     metrics = inks.small_metrics
