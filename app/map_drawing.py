@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 from functools import lru_cache
+from typing import Protocol
 
 import numpy as np
 import numpy.typing as npt
@@ -34,15 +35,34 @@ _NOTHING = 1e-15
 _LABELLED = 0.06
 
 
-def map_picture(values: MapValues) -> MapPicture:
-    """Draw a map: interpolated in the logarithm between nodes, masks pixel by pixel."""
+class Masks(Protocol):
+    """Where nobody is, and what is left of values there."""
+
+    def areas(self) -> tuple[MaskedArea, ...]:
+        """What is hatched."""
+
+    def largest(
+        self, logs: Floats, xs: Floats, ys: Floats, *, with_conductors: bool = True
+    ) -> Floats:
+        """(rows, columns) largest over the layers (h, ny, nx); −inf where masked."""
+
+
+def map_picture(values: MapValues, masks: Masks | None = None) -> MapPicture:
+    """Draw a map: interpolated in the logarithm between nodes, masks pixel by pixel.
+
+    Parameters
+    ----------
+    values : MapValues
+    masks : Masks or None
+        Those of an upright plane; None: those of the heights on plan.
+    """
     request = values.request
     settings = request.layout.settings
     columns, rows = _image_size(values)
     x0, y0, x1, y1 = request.rect
     xs = x0 + (np.arange(columns) + 0.5) * (x1 - x0) / columns
     ys = y0 + (np.arange(rows) + 0.5) * (y1 - y0) / rows
-    masks = _Masks(values)
+    masks = masks or _Masks(values)
     logs = masks.largest(_logs(values.values), xs, ys)
     unit = settings.flux_density_unit
     return MapPicture(
@@ -226,7 +246,8 @@ class _Masks:
         return mask
 
 
-def _half_size(conductor: Conductor) -> float:
+def half_size(conductor: Conductor) -> float:
+    """The farthest that a conductor reaches from its middle. [m]"""
     shape = conductor.shape
     if isinstance(shape, Bar):
         return math.hypot(shape.width, shape.thickness) / 2
@@ -241,7 +262,7 @@ def _crosses(conductor: Conductor, z: float) -> bool:
 @lru_cache(maxsize=8192)
 def _levels(conductor: Conductor) -> tuple[float, float]:
     """Lowest and highest level that a conductor can reach. [m]"""
-    levels, reach = conductor.path[:, 2], _half_size(conductor)
+    levels, reach = conductor.path[:, 2], half_size(conductor)
     return float(levels.min()) - reach, float(levels.max()) + reach
 
 
@@ -254,7 +275,7 @@ def _add_conductors(
     around = np.zeros_like(mask)
     for conductor in crossing:
         # At a mitre a corner reaches further than the section.
-        reach = 2.5 * _half_size(conductor)
+        reach = 2.5 * half_size(conductor)
         low = np.minimum(conductor.path[:-1], conductor.path[1:]) - reach
         high = np.maximum(conductor.path[:-1], conductor.path[1:]) + reach
         for k in np.flatnonzero((low[:, 2] < z) & (z < high[:, 2])):
@@ -288,7 +309,7 @@ def _add(
     part |= test(points).reshape(part.shape)
 
 
-def _lines(values: MapValues, masks: _Masks, unit: str) -> tuple[DrawnIsoLine, ...]:
+def _lines(values: MapValues, masks: Masks, unit: str) -> tuple[DrawnIsoLine, ...]:
     """Thin lines at round values and bold ones at reference levels."""
     xs = np.linspace(values.xs[0], values.xs[-1], 2 * len(values.xs) - 1)
     ys = np.linspace(values.ys[0], values.ys[-1], 2 * len(values.ys) - 1)
@@ -335,7 +356,9 @@ def _level_text(values: MapValues, level: str, unit: str) -> str:
     found = next(x for x in values.request.layout.levels if x.id == level)
     heights = values.request.heights
     where = "largest over heights"
-    if len(heights) == 1:
+    if values.request.upright is not None:
+        where = "on this plane"
+    elif len(heights) == 1:
         kind = values.request.layout.settings.length_unit
         where = f"at z {height_figures(heights[0], kind)} {kind}"
     frequencies = values.loaded.currents.frequencies

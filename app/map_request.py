@@ -18,6 +18,7 @@ from engine.conductor import Conductor
 from engine.conductors import conductors
 from engine.criteria import ReferenceLevel
 from engine.currents import case_phasors
+from engine.elevation import Upright
 from engine.errors import Cancelled
 from engine.layout import Layout
 from engine.levels import ratios, what_is_missing
@@ -46,7 +47,7 @@ DEFAULT_HEIGHT = 1.0
 
 @dataclass(frozen=True)
 class MapRequest:
-    """A map of a rectangle on plan.
+    """A map of a rectangle on plan, or on an upright plane.
 
     Attributes
     ----------
@@ -54,15 +55,18 @@ class MapRequest:
     case : str
         Id of the load case.
     heights : tuple of float
-        The values are the largest over them; rising, at least one. [m above the datum]
+        The values are the largest over them; rising, at least one. On an upright plane
+        they only tell which reference levels count. [m above the datum]
     rect : (x0, y0, x1, y1)
-        [m]
+        In the picture. [m]
     pixels : (across, up)
         Of the view that shows it.
     fineness
         "coarse" while something is being dragged.
     heights_name : str
-        The heights in words, for the caption.
+        The heights, or the upright plane, in words, for the caption.
+    upright : Upright or None
+        Where the map stands; None: on plan, at the heights.
     """
 
     layout: Layout
@@ -72,6 +76,12 @@ class MapRequest:
     pixels: tuple[int, int]
     fineness: Fineness
     heights_name: str = ""
+    upright: Upright | None = None
+
+    @property
+    def n_layers(self) -> int:
+        """How many values each place of the picture has."""
+        return 1 if self.upright is not None else len(self.heights)
 
 
 @dataclass(frozen=True, eq=False)
@@ -85,7 +95,7 @@ class Loaded:
 
 @dataclass(frozen=True, eq=False)
 class MapValues:
-    """Values at the nodes of a map, height by height, masks left aside.
+    """Values at the nodes of a map, layer by layer, masks left aside.
 
     Attributes
     ----------
@@ -212,13 +222,15 @@ def nodes(request: MapRequest) -> tuple[Floats, Floats, Sample]:
         _FEWEST_NODES,
         min(
             _NODES[request.fineness],
-            _POINTS[request.fineness] // len(request.heights),
+            _POINTS[request.fineness] // request.n_layers,
         ),
     )
     nx = int(min(max(8, round(math.sqrt(count * across / up))), count // 8))
     ny = max(8, count // nx)
     xs, ys = np.linspace(x0, x1, nx), np.linspace(y0, y1, ny)
     plan = np.stack(np.meshgrid(xs, ys), axis=-1).reshape(-1, 2)
+    if request.upright is not None:
+        return xs, ys, sample_of(request.upright.places(plan))
     points = np.concatenate(
         [np.column_stack([plan, np.full(len(plan), z)]) for z in request.heights]
     )
@@ -253,7 +265,7 @@ def map_values(
         sample,
         cancelled=cancelled,
     )
-    shape = (len(request.heights), len(ys), len(xs))
+    shape = (request.n_layers, len(ys), len(xs))
     whole = field.combined(b, ready.currents.components)
     values = whole.total_ac if whole.total_ac is not None else whole.dc
     is_direct = whole.total_ac is None and whole.dc is not None
