@@ -69,7 +69,8 @@ def crossing_texts(done: Profiled, kind: Kind) -> tuple[str, ...]:
 def fall_off_text(done: Profiled, measured_from: str, kind: Kind) -> str:
     """The fall-off of the first curve, in one sentence."""
     found = done.fall_offs.get(measured_from, {}).get((0, kind))
-    return "" if found is None else found.sentence
+    unit = done.request.layout.settings.length_unit
+    return "" if found is None else found.sentence(unit)
 
 
 def first_measured_from(done: Profiled, kind: Kind) -> str:

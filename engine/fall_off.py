@@ -18,7 +18,7 @@ from engine.conductor import Conductor
 from engine.levels import Kind
 from engine.profiles import ProfileCurve
 from engine.runs import Run
-from engine.units import significant
+from engine.units import LENGTH_UNITS, significant
 
 Floats = NDArray[np.float64]
 Integers = NDArray[np.int64]
@@ -63,21 +63,46 @@ class FallOff:
     r_to: float
     measured_from: str
 
-    @property
-    def sentence(self) -> str:
-        """In words, with the range."""
+    def sentence(self, length_unit: str = "m") -> str:
+        """In words, with the range in a unit of length."""
         return (
             f"Falls as {self.name} (exponent {self.slope:.2f}) from "
-            f"{significant(self.r_from)} to {significant(self.r_to)} m from "
+            f"{_range_text(self.r_from, self.r_to, length_unit)} from "
             f"{self.measured_from}."
         )
 
 
 @dataclass(frozen=True)
 class NoFallOff:
-    """Why a curve has no fall-off, as a sentence."""
+    """Why a curve has no fall-off.
 
-    sentence: str
+    Attributes
+    ----------
+    reason : str
+        In words, up to the range of distances.
+    r_from, r_to : float
+        That range; both 0 where the reason needs none. [m]
+    measured_from : str
+        What r is measured from, in words; empty without a range.
+    """
+
+    reason: str
+    r_from: float = 0.0
+    r_to: float = 0.0
+    measured_from: str = ""
+
+    def sentence(self, length_unit: str = "m") -> str:
+        """In words, with the range in a unit of length."""
+        if not self.measured_from:
+            return f"{self.reason}."
+        span = _range_text(self.r_from, self.r_to, length_unit)
+        return f"{self.reason} from {span} from {self.measured_from}."
+
+
+def _range_text(low: float, high: float, length_unit: str) -> str:
+    """ "1.00 to 4.00 m", to three significant figures."""
+    one = LENGTH_UNITS[length_unit]
+    return f"{significant(low / one)} to {significant(high / one)} {length_unit}"
 
 
 def distances_from_run(run: Run, points: Floats) -> Floats:
@@ -132,7 +157,7 @@ def fall_off(
     """
     values = curve.values(kind)
     if values is None:
-        return NoFallOff(f"No {kind} current flows in this load case.")
+        return NoFallOff(f"No {kind} current flows in this load case")
     branch = _leading_away(distances, curve.mask)
     r, b = distances[branch], values[branch]
     if r_range is None and len(r):
@@ -142,13 +167,15 @@ def fall_off(
     if not len(r) or not low > 0 or high < _LEAST_RANGE * low:
         return NoFallOff(
             f"No fall-off is given: the line does not lead far enough away from "
-            f"{measured_from}; the distance must grow at least {_LEAST_RANGE:g} times."
+            f"{measured_from}; the distance must grow at least {_LEAST_RANGE:g} times"
         )
     within = (r >= low) & (r <= high)
     if np.any(b <= 0) or _rises(b[within]):
         return NoFallOff(
-            f"No fall-off is given: the field does not fall all the way from "
-            f"{significant(low)} to {significant(high)} m from {measured_from}."
+            "No fall-off is given: the field does not fall all the way",
+            low,
+            high,
+            measured_from,
         )
     slope, near, far = _slopes(r, b, low, high)
     return FallOff(slope, near, far, _name(slope, near, far), low, high, measured_from)

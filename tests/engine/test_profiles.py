@@ -182,7 +182,8 @@ def test_fall_off_refuses_a_rising_field_and_a_short_way():
     r = np.abs(curve.points[:, 1])
     refused = fall_off(curve, "AC", r, "wire")
     assert isinstance(refused, NoFallOff)
-    assert "does not fall all the way" in refused.sentence
+    assert "does not fall all the way" in refused.sentence()
+    assert refused.sentence("ft").endswith(" ft from wire.")
     short = profile(fields, ((0.0, 1.0, 0.0), (0.0, 1.2, 0.0)))
     r = distances_from_nearest(fields.conductors, short.curves[0].points)
     assert r == pytest.approx(short.along + 1.0)
@@ -205,7 +206,7 @@ def test_fall_off_of_an_unclear_power_lies_between():
     assert not isinstance(law, NoFallOff)
     assert law.name == "between 1/r and 1/r²"
     assert (law.r_from, law.r_to) == pytest.approx((5.0, 20.0))
-    assert "from 5.00 to 20.0 m from run" in law.sentence
+    assert "from 5.00 to 20.0 m from run" in law.sentence()
 
 
 def test_hand_formula_says_why_none_holds():
