@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from pathlib import Path
 
 from PySide6.QtCore import QObject
@@ -16,6 +17,7 @@ from app.view_state import ViewState
 from engine.commands.horizontal_map import write_map
 from engine.errors import Cancelled, Progress
 from engine.layout import Layout
+from engine.picture import OffsetLines
 from engine.report import write_report
 
 MAP_KINDS = "Picture (*.png);;Vectors (*.svg);;Numbers (*.csv)"
@@ -38,6 +40,10 @@ class Exports(QObject):
         self._jobs = jobs
         self._messages = messages
         self._window = window
+        #: Lines that the drawing shows over this layout's map at these heights.
+        self.offsets: Callable[[Layout, tuple[float, ...]], OffsetLines | None] = (
+            lambda _layout, _heights: None
+        )
 
     def choose_report(self) -> None:
         """Ask where to, and write the report."""
@@ -70,11 +76,12 @@ class Exports(QObject):
         case = next((c for c in layout.cases if c.id == look.case), layout.cases[0])
 
         shown = shown_text(self._document)
+        offsets = self.offsets(layout, heights)
 
         def work(cancelled: Cancelled, progress: Progress) -> None:
             write_map(
-                layout, case, heights, path, shown=shown, cancelled=cancelled,
-                progress=progress,
+                layout, case, heights, path, shown=shown, offsets=offsets,
+                cancelled=cancelled, progress=progress,
             )  # fmt: skip
 
         self._start("Exporting the map", work, f"{path} was written.")

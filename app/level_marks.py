@@ -12,6 +12,7 @@ from app.level_distance import PlaceFactor, Reached
 from app.map_request import comparable_levels, height_figures
 from app.tools.tool import Dimension, Overlay, Point
 from engine.distance_to_level import LevelDistance
+from engine.picture import OffsetLines
 from engine.sight import LOOKING_Y, PLAN, Sight
 from engine.typed_lengths import length_text
 
@@ -67,6 +68,24 @@ def stale_overlay(answer: Reached, sight: Sight) -> Overlay | None:
         return None
     text = f"{answer.level.title} · out of date"
     return Overlay(dashed=found.lines, labels=_names(found.lines, text))
+
+
+def offset_lines(answer: Reached) -> OffsetLines:
+    """The lines and the dimension on plan, as maps in files show them."""
+    unit = answer.request.layout.settings.length_unit
+    distance = answer.distance
+    dimension = None
+    if distance is not None:
+        dimension = (
+            distance.start, distance.end, distance_text(distance, unit),
+        )  # fmt: skip
+    return OffsetLines(
+        name=f"{answer.level.title} · {answer.request.heights_name}",
+        sentence=f"{told(answer)}.",
+        lines=answer.plan.lines,
+        measured_from=np.array(answer.measured_from, np.float64).reshape(-1, 2),
+        dimension=dimension,
+    )
 
 
 def _is_on_map(answer: Reached) -> bool:

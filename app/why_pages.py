@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from math import dist
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QEvent, QObject, QPointF, Qt
 from PySide6.QtGui import QMouseEvent
 from PySide6.QtWidgets import QVBoxLayout
 
+from app.figures import FIGURE_KINDS, ask_figure
 from app.level_distance import PlaceFactor, Reached
 from app.level_marks import overlay_of, stale_overlay
 from app.map_request import case_of, heights_of
@@ -25,8 +27,11 @@ from app.tools.select import SelectTool
 from app.tools.tool import Overlay
 from app.views.projection import Sight, to_view
 from app.why_values import WhyPlace
+from engine.errors import UserError
+from engine.exchange.map_export import offsets_csv
 from engine.items import Point3
 from engine.results import Assessment
+from engine.written_file import write_file
 
 if TYPE_CHECKING:
     from app.main_window import MainWindow
@@ -62,6 +67,8 @@ class WhyPages(QObject):
         self.distance.found.connect(self._mark_distance)
         self.distance.outdated.connect(self._mark_outdated)
         self.distance.closed.connect(window.drawings.take_keyboard)
+        self.distance.export_wanted.connect(self.export_distance)
+        window.exports.offsets = self.distance.offsets
         window.readout.shown.connect(self._on_read)
         window.margins.why.connect(self._on_why)
         window.margins.opened.connect(self._on_margins_opened)
@@ -107,6 +114,38 @@ class WhyPages(QObject):
         """Ask how far a level reaches."""
         self._window.show_drawing()
         self.distance.open()
+
+    def export_distance(self) -> None:
+        """Ask where to, and write the map with the lines, or the lines."""
+        window = self._window
+        if self.distance.answer is None:
+            window.messages.warn("There are no lines to export yet.")
+            return
+        path = ask_figure(window, "Export the distance", "distance.png", FIGURE_KINDS)
+        if path is not None:
+            with window.messages.shown():
+                self.write_distance(path)
+
+    def write_distance(self, path: Path) -> None:
+        """Write the map with lines and distance, or the lines as numbers.
+
+        Raises
+        ------
+        UserError
+            When the lines are out of date, or the file cannot be written.
+        """
+        window, layout = self._window, self._window.document.committed
+        heights, _ = heights_of(layout, window.view_state.look)
+        offsets = self.distance.offsets(layout, heights)
+        if offsets is None:
+            raise UserError("The lines are out of date: wait until they are computed.")
+        if path.suffix.lower() != ".csv":
+            window.exports.map(path if path.suffix else path.with_suffix(".png"))
+            return
+        unit = layout.settings.length_unit
+        text = offsets_csv(offsets, window.caption_text(), unit)
+        write_file(path, text.encode("utf-8"))
+        window.messages.inform(f"{path} was written.")
 
     def close(self) -> None:
         """Stop the threads, before the window goes."""

@@ -25,13 +25,15 @@ from app.level_distance import (
     reached,
     targets,
 )
-from app.level_marks import told
+from app.level_marks import offset_lines, told
 from app.map_request import case_of, heights_of
 from app.margin_values import Margins
 from app.pages.profile_controls import choice
 from app.panels.panel import Words
 from app.theme import STEP
 from app.view_state import ViewState
+from engine.layout import Layout
+from engine.picture import OffsetLines
 
 NO_LEVEL = "Enter a reference level with its source under Ref. levels first."
 NOWHERE = "nothing: lines only"
@@ -46,11 +48,14 @@ class LevelBar(QWidget):
         What the drawings should show now.
     outdated(Reached)
         What they show no longer belongs to the layout.
+    export_wanted()
+        A file was asked for.
     closed()
     """
 
     found = Signal(object, object)
     outdated = Signal(object)
+    export_wanted = Signal()
     closed = Signal()
 
     def __init__(self, document: Document, view_state: ViewState) -> None:
@@ -69,6 +74,12 @@ class LevelBar(QWidget):
         self.targets.activated.connect(self._on_target)
         self.state, self.words = Words("", "warning"), Words("", "plain")
         self.state.setWordWrap(False)
+        self.export = QPushButton("Export …")
+        self.export.setToolTip(
+            "The map with these lines and the distance as PNG or SVG, or the lines "
+            "as CSV"
+        )
+        self.export.clicked.connect(lambda _on=False: self.export_wanted.emit())
         close = QPushButton("Close")
         close.setToolTip("Take the lines off the drawing (Esc)")
         close.clicked.connect(self.leave)
@@ -78,6 +89,7 @@ class LevelBar(QWidget):
                        self.targets, self.state):  # fmt: skip
             row.addWidget(widget)
         row.addStretch(1)
+        row.addWidget(self.export)
         row.addWidget(close)
         box = QVBoxLayout(self)
         box.setContentsMargins(3 * STEP, STEP, 2 * STEP, STEP)
@@ -111,6 +123,16 @@ class LevelBar(QWidget):
         if margins.assessment is not None:
             self._margins = margins
             self._tell()
+
+    def offsets(self, layout: Layout, heights: tuple[float, ...]) -> OffsetLines | None:
+        """The lines as a map of that layout in a file shows them; None of others."""
+        answer = self.answer
+        if answer is None or self.isHidden():
+            return None
+        request = answer.request
+        if request.layout is not layout or request.heights != heights:
+            return None
+        return offset_lines(answer)
 
     @property
     def is_idle(self) -> bool:

@@ -15,12 +15,15 @@ from engine.errors import Cancelled, Progress, UserError
 from engine.exchange.map_export import write_csv, write_png
 from engine.exchange.svg import svg
 from engine.layout import Layout
-from engine.maps import field_map
-from engine.picture import map_picture, map_subjects
+from engine.maps import Extent, extent, field_map
+from engine.picture import OffsetLines, map_picture, map_subjects
 from engine.written_file import write_file
 
 #: Endings of a file name that say what a map is written as.
 KINDS = (".png", ".svg", ".csv")
+
+#: Left around lines that reach beyond what is drawn. [m]
+_AROUND = 0.5
 
 
 def write_map(
@@ -31,13 +34,15 @@ def write_map(
     *,
     unit: str | None = None,
     shown: str = "",
+    offsets: OffsetLines | None = None,
     progress: Progress | None = None,
     cancelled: Cancelled | None = None,
 ) -> None:
     """Write the map at a height above the datum, or the largest over several.
 
     The ending of `out` says its kind. Numbers are written for one height only. `shown`
-    is said first under the title of a picture: "variant Bond removed".
+    is said first under the title of a picture: "variant Bond removed". `offsets` are
+    drawn on a picture, which then reaches as far as they do.
 
     Raises
     ------
@@ -56,9 +61,11 @@ def write_map(
     step = layout.settings.grid_step if kind == ".csv" else None
     if kind == ".csv" and len(heights) > 1:
         raise UserError("Numbers are written for one height: choose one for the map.")
+    area = None if offsets is None or kind == ".csv" else _reaching(layout, offsets)
     result = field_map(
-        layout, case, heights, step=step, progress=progress, cancelled=cancelled
-    )
+        layout, case, heights, area=area, step=step, progress=progress,
+        cancelled=cancelled,
+    )  # fmt: skip
     subjects = map_subjects(layout, case, result, unit=unit)
     if kind == ".csv":
         write_csv(out, subjects, np.full(result.values.size, heights[0]))
@@ -68,9 +75,28 @@ def write_map(
     if shown:
         said = f"{shown[:1].upper()}{shown[1:]}."
         subject = replace(subject, lines=(said, *subject.lines))
+    if offsets is not None:
+        lines = (offsets.sentence, *subject.lines)
+        subject = replace(subject, offsets=offsets, lines=lines)
     drawn = plan(layout, conductors(layout))
     if kind == ".png":
         write_png(out, subject, drawn)
     else:
         picture = map_picture(subject, drawn, width=277.0, height=190.0)
         write_file(out, svg(picture).encode("utf-8"))
+
+
+def _reaching(layout: Layout, offsets: OffsetLines) -> Extent:
+    """The area of a map that shows lines and dimension whole. [m]"""
+    x0, y0, x1, y1 = extent(layout)
+    points = [*offsets.lines, offsets.measured_from]
+    if offsets.dimension is not None:
+        points.append(np.array(offsets.dimension[:2]))
+    places = np.concatenate([p.reshape(-1, 2) for p in points])
+    if not len(places):
+        return (x0, y0, x1, y1)
+    low, high = places.min(axis=0) - _AROUND, places.max(axis=0) + _AROUND
+    return (
+        min(x0, float(low[0])), min(y0, float(low[1])),
+        max(x1, float(high[0])), max(y1, float(high[1])),
+    )  # fmt: skip

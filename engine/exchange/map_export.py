@@ -16,6 +16,7 @@ from PIL.PngImagePlugin import PngInfo
 from engine.drawing import Plan
 from engine.picture import (
     MapSubject,
+    OffsetLines,
     Picture,
     Raster,
     Stroke,
@@ -23,7 +24,7 @@ from engine.picture import (
     map_picture,
 )
 from engine.picture.marks import WHITE, Points
-from engine.printed_text import BOLD, REGULAR
+from engine.printed_text import BOLD, REGULAR, one_line
 from engine.units import FLUX_DENSITY_UNITS, LENGTH_UNITS
 from engine.written_file import write_file
 
@@ -91,6 +92,23 @@ def grid_csv(subjects: Sequence[MapSubject], heights: Iterable[float]) -> str:
             place = [f"{v / metres + 0.0:.9g}" for v in (x, y, next(z))]
             values = [_cell(subject, row, column) for subject in subjects]
             writer.writerow([*place, *values])
+    return file.getvalue()
+
+
+def offsets_csv(offsets: OffsetLines, caption: str, length_unit: str) -> str:
+    """Lines of a reference level as CSV text: the caption, then a vertex a row.
+
+    The header names the unit. A closed line ends where it begins.
+    """
+    metres = LENGTH_UNITS[length_unit]
+    file = io.StringIO()
+    writer = csv.writer(file, lineterminator="\n")
+    writer.writerow([one_line(caption)])
+    writer.writerow([one_line(offsets.sentence)])
+    writer.writerow(["line", *(f"{axis} [{length_unit}]" for axis in "xy")])
+    for number, line in enumerate(offsets.lines, start=1):
+        for place in line:
+            writer.writerow([number, *(f"{v / metres + 0.0:.9g}" for v in place)])
     return file.getvalue()
 
 

@@ -4,10 +4,11 @@ from engine.picture.map_picture import map_picture
 from engine.picture.marks import Picture, Raster, Stroke, Words
 from engine.picture.of_result import map_subjects
 from engine.picture.references import reference_lines
-from engine.picture.subject import MapSubject, ReferenceLine
+from engine.picture.subject import MapSubject, OffsetLines, ReferenceLine
 
 __all__ = [
     "MapSubject",
+    "OffsetLines",
     "Picture",
     "Raster",
     "ReferenceLine",

@@ -17,6 +17,7 @@ from engine.picture.marks import (
     Stroke,
     Words,
 )
+from engine.picture.offset_lines import DASH, WIDTH
 from engine.picture.subject import MapSubject, value_text
 from engine.printed_text import wrapped
 from engine.units import FLUX_DENSITY_UNITS, significant
@@ -143,6 +144,9 @@ def _entries(
     if subject.reference_note:
         samples = [(flat, bar(0.55))] if subject.references else []
         entries.append((samples, subject.reference_note))
+    if subject.offsets is not None:
+        text = "reference level met, every frequency counted by its rule"
+        entries.append(([(flat, bar(WIDTH, DASH))], text))
     entries.append(([(flat, bar(0.3, (2.0, 1.2)))], "edge of a zone"))
     entries.append(([(flat, bar(0.5))], "edge of a room"))
     cross: list[tuple[Points, Stroke]] = [

@@ -43,6 +43,7 @@ from engine.picture.marks import (
     Stroke,
     Words,
 )
+from engine.picture.offset_lines import draw_offsets, letter_offsets
 from engine.picture.plan_marks import draw_plan
 from engine.picture.sheet import Sheet, drawing_scale
 from engine.picture.subject import MapSubject, value_text
@@ -98,6 +99,9 @@ def map_picture(
     keep_clear(sheet, plan)
     if subject.largest is not None:
         _mark_largest(picture, sheet, subject.largest)
+    if subject.offsets is not None:
+        draw_offsets(picture, sheet, subject.offsets)
+        letter_offsets(picture, sheet, subject.offsets)
     letter_references(picture, sheet, [line[:2] for line in lines if line[2]])
     letter_places(picture, sheet, plan)
     for line, text, bold in lines:

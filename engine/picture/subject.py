@@ -24,6 +24,33 @@ class ReferenceLine:
 
 
 @dataclass(frozen=True, eq=False)
+class OffsetLines:
+    """Where a value equals a reference level, searched for on all of a plane.
+
+    Unlike a `ReferenceLine` it counts every frequency by the level's own rule.
+
+    Attributes
+    ----------
+    name : str
+        The level and where it holds, for its label.
+    sentence : str
+        The result in words, for the caption.
+    lines : tuple of (n, 2) float
+        Closed where first and last agree. [m]
+    measured_from : (m, 2) float
+        What the dimension starts from; empty without one. [m]
+    dimension : tuple or None
+        Start and end on plan, and its text. [m]
+    """
+
+    name: str
+    sentence: str
+    lines: tuple[Floats, ...]
+    measured_from: Floats
+    dimension: tuple[tuple[float, float], tuple[float, float], str] | None = None
+
+
+@dataclass(frozen=True, eq=False)
 class MapSubject:
     """What a picture shows: the values, and the words that say what they are.
 
@@ -55,6 +82,8 @@ class MapSubject:
         Direction of north from +x, counter-clockwise. [degrees]
     largest : pair of float or None
         Where on plan the largest value of a zone was found; drawn as a ring. [m]
+    offsets : OffsetLines or None
+        Drawn over everything, with their dimension.
     """
 
     xs: Floats
@@ -73,6 +102,7 @@ class MapSubject:
     length_unit: str = "m"
     north: float | None = None
     largest: tuple[float, float] | None = None
+    offsets: OffsetLines | None = None
 
     def world(self) -> Box:
         """Left, bottom, right, top of the grid with half a step around it. [m]"""

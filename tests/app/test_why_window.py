@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import csv
 from pathlib import Path
 
 import pytest
@@ -14,7 +15,7 @@ from shapely.geometry import LineString, Point
 from app import preferences, recovery
 from app.document import Document
 from app.level_distance import DistanceRequest, factors, reached, targets
-from app.level_marks import overlay_of
+from app.level_marks import distance_text, overlay_of
 from app.main_window import MainWindow
 from app.map_request import heights_of
 from app.messages import Messages
@@ -172,6 +173,34 @@ def test_bar_tells_distance_and_factor_and_draws_them(
 def _moves(window: MainWindow, item: str) -> None:
     document = window.document
     document.edit("Move", moved(document.committed, [item], 0.5, 0.0))
+
+
+def test_exported_maps_show_the_lines_and_the_distance(
+    qtbot: QtBot, window: MainWindow, layout: Layout, tmp_path: Path
+) -> None:
+    pages, bar = _pages(window), _pages(window).distance
+    window.document.select([layout.runs[0].id])
+    pages.open_distance()
+    qtbot.waitUntil(lambda: bar.is_idle and bar.answer is not None, timeout=60_000)
+    assert bar.answer is not None
+    assert bar.answer.distance is not None
+    picture, table = tmp_path / "far.svg", tmp_path / "far.csv"
+    pages.write_distance(picture)
+    qtbot.waitUntil(picture.exists, timeout=60_000)
+    drawn = picture.read_text(encoding="utf-8")
+    assert f">{distance_text(bar.answer.distance, 'm')}</text>" in drawn
+    assert "reference level met" in drawn
+    pages.write_distance(table)
+    rows = list(csv.reader(table.read_text(encoding="utf-8").splitlines()))
+    assert rows[2] == ["line", "x [m]", "y [m]"]
+    assert len(rows) == 3 + sum(len(line) for line in bar.answer.plan.lines)
+    # Without the bar the map has no such lines.
+    bar.leave()
+    plain = tmp_path / "plain.svg"
+    qtbot.waitUntil(lambda: not window.jobs.is_running, timeout=60_000)
+    window.exports.map(plain)
+    qtbot.waitUntil(plain.exists, timeout=60_000)
+    assert "reference level met" not in plain.read_text(encoding="utf-8")
 
 
 # -- pages ----------------------------------------------------------------------------

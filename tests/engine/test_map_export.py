@@ -12,9 +12,22 @@ from PIL import Image
 
 from engine.drawing import plan
 from engine.errors import UserError
-from engine.exchange.map_export import grid_csv, png, write_csv, write_png
+from engine.exchange.map_export import (
+    grid_csv,
+    offsets_csv,
+    png,
+    write_csv,
+    write_png,
+)
 from engine.layout import Layout
-from engine.picture import MapSubject, ReferenceLine, Stroke, Words, map_picture
+from engine.picture import (
+    MapSubject,
+    OffsetLines,
+    ReferenceLine,
+    Stroke,
+    Words,
+    map_picture,
+)
 from engine.picture.legend import BAR_HEIGHT
 from engine.places import Receptor, Room, Zone
 
@@ -202,3 +215,32 @@ def test_alternating_and_direct_fields_stand_side_by_side():
     )
     assert rows[0][3:] == ["B RMS resultant [µT]", "B resultant at 0 Hz [µT]"]
     assert float(rows[1][4]) == pytest.approx(2.0 * float(rows[1][3]))
+
+
+def test_offset_lines_carry_their_dimension_and_stay_in_the_frame():
+    turns = np.linspace(0.0, 2.0 * np.pi, 91)
+    ring = np.column_stack([3.0 + 2.0 * np.cos(turns), 1.5 + 2.0 * np.sin(turns)])
+    far = np.array([(20.0, 0.0), (30.0, 0.0)])
+    offsets = OffsetLines(
+        "Target · at 1.00 m", "Target reaches 2.00 m.", (ring, far),
+        np.array([(3.0, 0.0), (3.0, 3.0)]), ((3.0, 1.5), (5.0, 1.5), "2.00 m from R"),
+    )  # fmt: skip
+    plain, drawn = picture(), picture(offsets=offsets)
+    for wanted in ("2.00 m from R", "Target · at 1.00 m"):
+        assert wanted in texts(drawn)
+        assert wanted not in texts(plain)
+    dashed = [p for p in drawn.parts if isinstance(p, Stroke) and p.width == 0.8]
+    places = np.concatenate([np.array(p.points) for p in dashed])
+    assert places[:, 0].max() < drawn.width
+    # Its own shape: as wide as high, twice the radius.
+    ring_on_paper = max(dashed, key=lambda p: len(p.points))
+    span = np.ptp(np.array(ring_on_paper.points), axis=0)
+    assert span[0] == pytest.approx(span[1], rel=1e-3)
+
+
+def test_offset_lines_as_numbers_name_their_unit():
+    line = np.array([(0.3048, 0.0), (0.6096, 0.3048)])
+    offsets = OffsetLines("Target", "Target reaches.", (line,), np.zeros((0, 2)))
+    rows = list(csv.reader(io.StringIO(offsets_csv(offsets, "Case A", "ft"))))
+    assert rows[:3] == [["Case A"], ["Target reaches."], ["line", "x [ft]", "y [ft]"]]
+    assert rows[3:] == [["1", "1", "0"], ["1", "2", "1"]]
