@@ -8,6 +8,7 @@ from dataclasses import dataclass
 
 from engine.assessment import assess
 from engine.budget import Budget, BudgetLine
+from engine.conductors import conductors
 from engine.errors import Cancelled, UserError
 from engine.field import ResponseCache
 from engine.items import Item
@@ -16,6 +17,7 @@ from engine.place_budgets import place_budgets
 from engine.places import Receptor, Uncertainty, Zone
 from engine.typed_lengths import length_text
 from engine.units import flux_density_text, in_unit, significant
+from engine.varied_sharing import parallel_sets
 
 #: Bars of their own; what is left is one bar.
 MOST_LINES = 14
@@ -27,6 +29,7 @@ _NAMES = {
     "current angle": "Angle of {}",
     "unbalance": "Unbalance of {}",
     "net current": "Net current of {}",
+    "sharing": "Sharing in {}",
     "section pitch": "Spacings of {}",
     "position": "Position of {}",
     "place": "Place of {}",
@@ -158,6 +161,25 @@ def sampled_text(budget: Budget, layout: Layout) -> str:
         f"{value_text(drawn.standard, layout)} beside "
         f"{value_text(budget.currents_standard, layout)} by propagation of the "
         "currents alone (k = 1)."
+    )
+
+
+def left_out_text(layout: Layout) -> str:
+    """That parallel conductors are taken to share as entered; empty without any."""
+    if layout.settings.tolerances.sharing:
+        return ""
+    try:
+        shared = parallel_sets(conductors(layout))
+    except UserError:
+        return ""
+    items = layout.by_id()
+    titles = list(dict.fromkeys(items[one.item].title for one in shared))
+    if not titles:
+        return ""
+    more = f" and {len(titles) - 2} more runs" if len(titles) > 2 else ""
+    return (
+        f"Not counted: that parallel conductors in {' and '.join(titles[:2])}{more} "
+        "may share unequally. Enter a tolerance of sharing."
     )
 
 

@@ -10,7 +10,7 @@ from engine.levels import Kind
 
 InputKind = Literal[
     "current magnitude", "current angle", "unbalance", "net current",
-    "section pitch", "position", "place", "model",
+    "sharing", "section pitch", "position", "place", "model",
 ]  # fmt: skip
 OriginKind = Literal["assumed", "document", "measured", "confirmed"]
 
@@ -33,7 +33,7 @@ class BudgetLine:
         Standard uncertainty of the value because of it. [T]
     effect : float
         What one standard tolerance more does to the value, with its sign; 0 for an
-        unbalance, which has several directions. [T]
+        unbalance or a sharing, which have several directions. [T]
     share : float
         Of the combined variance.
     """

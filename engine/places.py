@@ -93,7 +93,8 @@ class Tolerances(Value, frozen=True, kw_only=True):
     """Standard uncertainties (k = 1) of what a budget is made of.
 
     The defaults are assumed: 5 % of the current, 7 mm on 150 mm of spacing, 50 mm of
-    distance (35 mm each of the run and of the place), 10 % of sharing.
+    distance (35 mm each of the run and of the place). Sharing of parallel conductors
+    is not counted unless entered.
     """
 
     #: Of every circuit's current, as a part of it.
@@ -104,6 +105,8 @@ class Tolerances(Value, frozen=True, kw_only=True):
     unbalance: Tolerance = 0.03
     #: Of an entered net current, as a part of it.
     net_current: Tolerance = 0.1
+    #: Of what each of several parallel conductors carries, as a part of its share.
+    sharing: Tolerance = 0.0
     #: Of the spacings in a section, as a part of them.
     pitch: Tolerance = 0.05
     #: Of a run or an equipment along each axis. [m]

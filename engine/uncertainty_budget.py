@@ -32,6 +32,7 @@ from engine.place_details import root_sum_of_squares
 from engine.places import Receptor, Zone
 from engine.results import PlaceDetails
 from engine.varied_currents import CircuitAtPlace, PerLabel, Spread, spread_of
+from engine.varied_sharing import ParallelSet, SharingAtPlace, parallel_sets
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
@@ -47,6 +48,7 @@ _FIELDS: dict[str, tuple[str, ...]] = {
     "unbalance": ("demand",),
     "net current": ("net_current",),
     "section pitch": ("section",),
+    "sharing": ("section",),
     "position": ("route", "path", "origin", "terminals"),
     "place": ("at", "outline"),
 }
@@ -58,11 +60,14 @@ _TOLERANCES: dict[str, str] = {
     "unbalance": "unbalance",
     "net current": "net_current",
     "section pitch": "pitch",
+    "sharing": "sharing",
     "position": "position",
     "place": "place",
 }
 
-_OF_CURRENTS = ("current magnitude", "current angle", "unbalance", "net current")
+_OF_CURRENTS = (
+    "current magnitude", "current angle", "unbalance", "net current", "sharing",
+)  # fmt: skip
 
 #: What a tolerance is counted in.
 _UNITS: dict[str, str] = {
@@ -87,6 +92,10 @@ class Budgets:
         self.layout, self.fields = layout, fields
         self.tolerances = layout.settings.tolerances
         self._displacements = Displacements(layout, fields)
+        self._parallel: dict[str, list[ParallelSet]] = {}
+        if self.tolerances.sharing > 0:
+            for found in parallel_sets(fields.conductors):
+                self._parallel.setdefault(found.item, []).append(found)
 
     def look_at(self, points: Floats) -> None:
         """Compute all moves of conductors for (n, 3) points at once. [m]"""
@@ -114,12 +123,13 @@ class Budgets:
         """
         case = self.fields.cases[quantity.case]
         self.look_at(points)
-        self.look_at(points)
         b = self.fields.flux_density_at(case, points)
         here = _Here(case, quantity, b)
         circuits = [*self._circuits(case, points)]
+        sharing = self._sharing(case, points)
         parts = [*self._parts(here, place, points, circuits)]
-        sampled = self._sampled(here, circuits, n_samples, seed)
+        parts += self._sharing_parts(here, sharing)
+        sampled = self._sampled(here, circuits, sharing, n_samples, seed)
         now, scale = here.value, 1.0
         if value is not None and now > 0:
             now, scale = value, value / now
@@ -193,10 +203,41 @@ class Budgets:
             tolerance = self._tolerance(move.input, origin)
             yield here.part(move.input, item, move.axis, tolerance, origin, changes)
 
+    def _sharing(self, case: CaseCurrents, points: Floats) -> dict[str, Complexes]:
+        """By run, (v, c, q, 3) changes when a parallel conductor carries more. [T]"""
+        if not self._parallel:
+            return {}
+        at = [self.fields.at((float(x), float(y), float(z))) for x, y, z in points]
+        responses = np.stack([place.responses for place in at], axis=1)
+        here = SharingAtPlace(self.fields.conductors, responses, points)
+        items = self.layout.by_id()
+        found = {}
+        for item, sets in self._parallel.items():
+            tolerance = self._tolerance(
+                "sharing", self._origin(items[item], "sharing", case)
+            )
+            changes = [here.changes(one, case, tolerance) for one in sets]
+            whole = np.concatenate(changes)
+            if np.any(whole):
+                found[item] = whole
+        return found
+
+    def _sharing_parts(
+        self, here: _Here, sharing: dict[str, Complexes]
+    ) -> Iterator[tuple[BudgetLine, float]]:
+        """As `_parts`, of runs whose parallel conductors share unequally."""
+        items = self.layout.by_id()
+        for item, changes in sharing.items():
+            origin = self._origin(items[item], "sharing", here.case)
+            tolerance = self._tolerance("sharing", origin)
+            steps = np.concatenate([changes, -changes])
+            yield here.part("sharing", items[item], "", tolerance, origin, steps)
+
     def _sampled(
         self,
         here: _Here,
         circuits: Sequence[tuple[CircuitAtPlace, Spread]],
+        sharing: dict[str, Complexes],
         n: int,
         seed: int,
     ) -> Sampled:
@@ -205,6 +246,9 @@ class Budgets:
         for at_place, spread in circuits:
             drawn = at_place.at_random(spread, n, random)
             b += drawn - at_place.field(at_place.phasors)
+        for changes in sharing.values():
+            size = random.standard_normal((n, len(changes)))
+            b += np.einsum("nv,vcqx->ncqx", size, changes)
         values, _ = here.evaluated(b)
         p5, p50, p95 = (float(x) for x in np.percentile(values, (5, 50, 95)))
         return Sampled(n, seed, float(values.std()), p5, p50, p95)

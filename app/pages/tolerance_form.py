@@ -38,6 +38,11 @@ _TOLERANCES = (
     _percent(
         "net_current", "Net currents", "Of an entered net current, k = 1, in per cent"
     ),
+    _percent(
+        "sharing", "Sharing",
+        "Of what each of several parallel conductors carries, k = 1, in per cent of "
+        "its share; 0: not counted",
+    ),
     _percent("pitch", "Spacings", "Of spacings in a section, k = 1, in per cent"),
     _length("position", "Positions", "Of runs and equipment along each axis, k = 1"),
     _length("place", "Places", "Of the zone or receptor along each axis, k = 1"),

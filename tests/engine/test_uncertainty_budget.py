@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 from collections.abc import Sequence
 from pathlib import Path
 
@@ -28,11 +29,21 @@ from engine.edits import replaced
 from engine.field import responses
 from engine.items import ValueOrigin
 from engine.layout import Layout, Settings
+from engine.loaded_layout import loaded_layout
 from engine.moved_conductors import respaced, shifted
 from engine.place_budgets import place_budgets
 from engine.places import Receptor, Tolerances, Uncertainty, Zone
-from engine.runs import CircuitShare, Flat, Round, Run
+from engine.runs import (
+    CircuitShare,
+    Flat,
+    FreeSection,
+    Round,
+    Run,
+    Slot,
+    SlotLoad,
+)
 from engine.varied_currents import CircuitAtPlace, Spread
+from engine.varied_sharing import SharingAtPlace, parallel_sets
 
 SAMPLES = Path(__file__).parents[2] / "sample_layouts"
 
@@ -207,6 +218,89 @@ def two_single_phases(tolerances: Tolerances, lag: float) -> Layout:
         runs=runs,
         receptors=(Receptor(id="here", at=(0.0, 0.0, 0.0)),),
     )
+
+
+def parallel_pair(tolerance: float, **changes: float) -> Layout:
+    """L+ in two conductors at y ±0.2, L− in one at y −0.6; along x, 20 km."""
+    slots = tuple(
+        Slot(
+            name=name, u=u, v=0, shape=Round(diameter=0.01),
+            loads=(SlotLoad(circuit="C0", label=label, share=share),),
+        )
+        for name, u, label, share in (
+            ("a", 0.2, "L+", 0.5), ("m", 0.6, "L-", 1.0), ("b", -0.2, "L+", 0.5),
+        )
+    )  # fmt: skip
+    run = Run(id="R0", route=((-1e4, 0, 0), (1e4, 0, 0)),
+              section=FreeSection(slots=slots))  # fmt: skip
+    return Layout(
+        settings=Settings(tolerances=replace(NONE, sharing=tolerance, **changes)),
+        circuits=(direct("C0", 100.0),),
+        runs=(run,),
+        receptors=(Receptor(id="here", at=(0.0, -AWAY, 0.0)),),
+    )
+
+
+def test_unequal_sharing_is_propagated_through_both_conductors() -> None:
+    budget = only(parallel_pair(0.1), n_samples=20_000)
+    (line,) = budget.lines
+    assert (line.input, line.item, line.tolerance) == ("sharing", "R0", 0.1)
+    # One carries 10 % of its half more; half of that is taken from each: ±2.5 A. Both
+    # may: √2 of that.
+    apart = PER_LINE * (1 / (AWAY - 0.2) - 1 / (AWAY + 0.2))
+    assert line.standard == pytest.approx(np.sqrt(2) * 2.5 * apart, rel=1e-4)
+    assert budget.sampled.standard == pytest.approx(budget.currents_standard, rel=0.02)
+
+
+def test_sharing_is_not_counted_unless_entered() -> None:
+    assert only(parallel_pair(0.0)).lines == ()
+    assert Tolerances().sharing == 0
+
+
+def test_runs_that_share_a_current_equally_are_parallel() -> None:
+    circuit = direct("C0", 100.0)
+    shared = CircuitShare(circuit="C0", share=0.5)
+    runs = tuple(
+        replace(run, section=replace(run.section, circuits=(shared,)))
+        for run in (pair("R0", "C0", 0.0), pair("R1", "C0", 1.0))
+    )
+    layout = Layout(
+        settings=Settings(tolerances=replace(NONE, sharing=0.1)),
+        circuits=(circuit,), runs=runs,
+        receptors=(Receptor(id="here", at=(0.0, -AWAY, 0.0)),),
+    )  # fmt: skip
+    (line,) = only(layout).lines
+    # L+ and L− share each by itself: 2.5 A go over from one run to the other.
+    near, far = PITCH / 2, 1.0
+    parts = [
+        PER_LINE * 2.5 * (1 / (AWAY + side) - 1 / (AWAY + far + side))
+        for side in (-near, near)
+    ]
+    assert line.standard == pytest.approx(np.sqrt(2) * np.hypot(*parts), rel=1e-3)
+
+
+def test_sharing_is_closed_at_the_ends() -> None:
+    layout = parallel_pair(0.1)
+    short = replace(layout.runs[0], route=((-1, 0, 0), (1, 0, 0)))
+    (found,) = (
+        s for s in parallel_sets(conductors(replaced(layout, short)))
+        if s.label == "L+"
+    )  # fmt: skip
+    parts = conductors(replaced(layout, short))
+    points = np.array([(0.3, 0.4, 0.5)])
+    here = SharingAtPlace(parts, responses(parts, points), points)
+    fields = loaded_layout(replaced(layout, short), layout.cases, None, None).fields
+    case = fields.cases[0]
+    change = here.changes(found, case, 0.1)[0, 0, 0]
+    # A loop of 2.5 A around both conductors, as a polyline.
+    ring = [(-1, 0, 0), (-1, 0.2, 0), (1, 0.2, 0), (1, -0.2, 0), (-1, -0.2, 0),
+            (-1, 0, 0)]  # fmt: skip
+    loop = dataclasses.replace(
+        parts[0], path=np.array(ring, np.float64), axes=np.zeros((6, 2, 3)),
+        shape=Round(diameter=1e-6),
+    )  # fmt: skip
+    expected = 2.5 * responses([loop], points)[0, 0]
+    assert np.abs(change.real) == pytest.approx(np.abs(expected), rel=1e-6)
 
 
 def test_angles_between_circuits_are_propagated() -> None:
