@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from functools import cached_property
+from typing import TYPE_CHECKING, TypeVar
+
 from PySide6.QtCore import QEvent, QSize, Qt, QTimer
 from PySide6.QtGui import (
     QCloseEvent,
@@ -37,10 +40,8 @@ from app.jobs import Jobs
 from app.message_bar import JobBar, MessageBar
 from app.messages import Messages
 from app.new_layout import NewLayoutPage
-from app.panels.circuits import CircuitsPanel
+from app.page import Page
 from app.panels.item import ItemPanel
-from app.panels.levels import LevelsPanel
-from app.panels.load_cases import LoadCasesPanel
 from app.panels.margins import MarginsPanel
 from app.panels.readout import ReadoutLine
 from app.panels.remarks import RemarksPanel
@@ -57,6 +58,13 @@ from app.view_state import ViewState
 from app.views.height_rail import HeightRail
 from app.window_links import WindowLinks
 from app.window_menus import WindowMenus
+
+if TYPE_CHECKING:
+    from app.panels.circuits import CircuitsPanel
+    from app.panels.levels import LevelsPanel
+    from app.panels.load_cases import LoadCasesPanel
+
+APage = TypeVar("APage", bound=Page)
 
 #: Under this height the foot panels open in the drawing's place. [logical pixels]
 LOW = 800
@@ -142,34 +150,34 @@ class MainWindow(QMainWindow):
     def _build_pages(self) -> None:
         """What may stand in the drawing's place."""
         self.section = SectionPanel(self.document, self.view_state)
-        self.new_page, self.guide = NewLayoutPage(), GuidePage()
-        self.cautions, self.about = CautionsPage(self.document), AboutPage()
         self.pages = QStackedWidget()
-        for page in (
-            self.drawings, self.section, self.new_page,
-            self.guide, self.cautions, self.about,
-        ):  # fmt: skip
+        for page in (self.drawings, self.section):
             self.pages.addWidget(page)
         self.pages.setSizePolicy(
             QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding
         )
 
     def _build_panels(self) -> None:
-        document, state = self.document, self.view_state
-        self.item = ItemPanel(document)
-        self.circuits = CircuitsPanel(document, state)
-        self.load_cases = LoadCasesPanel(document, state)
-        self.levels = LevelsPanel(document, self.messages)
-        self.remarks = RemarksPanel(document)
+        self.item = ItemPanel(self.document)
+        # Counts the remarks on its tab, shown or not.
+        self.remarks = RemarksPanel(self.document)
         self.panels = SidePanels()
-        for name, panel, tip in (
-            ("Item", self.item, "The values of what is selected"),
-            ("Circuits", self.circuits, "Currents, neutrals, harmonics"),
-            ("Cases", self.load_cases, "Load cases: which currents flow together"),
-            ("Ref. levels", self.levels, "What the field is compared with"),
-            ("Remarks", self.remarks, "What to bear in mind, and what is assumed"),
+        for name, build, tip in (
+            ("Item", lambda: self.item, "The values of what is selected"),
+            ("Circuits", lambda: self.circuits, "Currents, neutrals, harmonics"),
+            (
+                "Cases",
+                lambda: self.load_cases,
+                "Load cases: which currents flow together",
+            ),
+            ("Ref. levels", lambda: self.levels, "What the field is compared with"),
+            (
+                "Remarks",
+                lambda: self.remarks,
+                "What to bear in mind, and what is assumed",
+            ),
         ):
-            self.panels.add(name, panel, tip)
+            self.panels.add(name, build, tip)
 
     def _build_status(self) -> None:
         self.hint, self.working = HintLine(), QLabel()
@@ -186,6 +194,51 @@ class MainWindow(QMainWindow):
         bar.addPermanentWidget(self.working)
         bar.addPermanentWidget(JobBar(self.jobs))
         bar.addPermanentWidget(self.readout)
+
+    # -- built when first shown -------------------------------------------------
+    # The imports within: plots alone take a third of a second to load.
+
+    @cached_property
+    def circuits(self) -> CircuitsPanel:
+        from app.panels.circuits import CircuitsPanel
+
+        return CircuitsPanel(self.document, self.view_state)
+
+    @cached_property
+    def load_cases(self) -> LoadCasesPanel:
+        from app.panels.load_cases import LoadCasesPanel
+
+        return LoadCasesPanel(self.document, self.view_state)
+
+    @cached_property
+    def levels(self) -> LevelsPanel:
+        from app.panels.levels import LevelsPanel
+
+        return LevelsPanel(self.document, self.messages)
+
+    @cached_property
+    def new_page(self) -> NewLayoutPage:
+        page = NewLayoutPage()
+        page.chosen.connect(self.files.new)
+        return self.with_page(page)
+
+    @cached_property
+    def guide(self) -> GuidePage:
+        return self.with_page(GuidePage())
+
+    @cached_property
+    def cautions(self) -> CautionsPage:
+        return self.with_page(CautionsPage(self.document))
+
+    @cached_property
+    def about(self) -> AboutPage:
+        return self.with_page(AboutPage())
+
+    def with_page(self, page: APage) -> APage:
+        """Take a page that may stand in the drawing's place, and hand it back."""
+        self.pages.addWidget(page)
+        page.closed.connect(self.show_drawing)
+        return page
 
     # -- pages ------------------------------------------------------------------
 
@@ -208,7 +261,8 @@ class MainWindow(QMainWindow):
             )
         else:
             is_drawn = page is self.drawings and tool is not None
-            self.hint.say(tool.hint if is_drawn else "Esc goes back to the drawing.")
+            hint = self.drawings.hint or (tool.hint if tool is not None else "")
+            self.hint.say(hint if is_drawn else "Esc goes back to the drawing.")
 
     def show_drawing(self) -> None:
         """Show the drawing again."""
@@ -260,6 +314,7 @@ class MainWindow(QMainWindow):
         apply(theme)
         self.drawings.set_theme(theme)
         self.tool_row.set_theme(theme)
+        self.panels.set_theme(theme)
 
     def follow_preferences(self) -> None:
         """Take theme and text size from the preferences."""
@@ -305,9 +360,11 @@ class MainWindow(QMainWindow):
             return
         self.jobs.wait()
         self.recompute.close()
+        self.drawings.close_worker()
         self.readout.close_worker()
         self.view_pages.close()
         self.remarks.close_search()
         self.autosave.forget()
         window_geometry.remember(self)
+        self.panels.close_windows()
         event.accept()

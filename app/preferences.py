@@ -34,6 +34,8 @@ class Preferences(Struct, frozen=True, kw_only=True):
     geometry: str = ""
     #: How the width is shared between drawing and panel, likewise.
     sharing: str = ""
+    #: Side panels in windows of their own, by name, with the geometry of each.
+    away: dict[str, str] = msgspec.field(default_factory=dict)
     #: False until the first strip was answered.
     chosen: bool = False
 

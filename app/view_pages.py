@@ -2,22 +2,23 @@
 
 from __future__ import annotations
 
+from functools import cached_property
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject
 
 from app.cycle_values import CyclePlace
 from app.menus import Command
-from app.pages.uncertainty_page import UncertaintyPage
-from app.pages.variants_page import VariantsPage
 from app.readout_values import Readout
-from app.views.cycle_page import CyclePage
-from app.views.space_view import SpaceView
 from app.why_pages import WhyPages
 from engine.errors import UserError
 
 if TYPE_CHECKING:
     from app.main_window import MainWindow
+    from app.pages.uncertainty_page import UncertaintyPage
+    from app.pages.variants_page import VariantsPage
+    from app.views.cycle_page import CyclePage
+    from app.views.space_view import SpaceView
 
 
 class ViewPages(QObject):
@@ -26,19 +27,40 @@ class ViewPages(QObject):
     def __init__(self, window: MainWindow) -> None:
         super().__init__(window)
         self._window = window
-        parts = (window.document, window.view_state, window.messages)
-        self.cycle, self.space = CyclePage(*parts), SpaceView(*parts)
-        for page in (self.cycle, self.space):
-            window.pages.addWidget(page)
-            page.closed.connect(window.show_drawing)
-        self.variants, self.uncertainty = VariantsPage(*parts), UncertaintyPage(*parts)
-        for result in (self.variants, self.uncertainty):
-            window.pages.addWidget(result)
-            result.closed.connect(window.show_drawing)
+        self._parts = (window.document, window.view_state, window.messages)
         window.band.opened.connect(self.open_variants)
         self.why = WhyPages(window)
         self._pointed: CyclePlace | None = None
         window.readout.shown.connect(self._on_read)
+
+    # -- built when first shown -------------------------------------------------
+    # The imports within: what draws in space and plots takes long to load.
+
+    @cached_property
+    def cycle(self) -> CyclePage:
+        from app.views.cycle_page import CyclePage
+
+        return self._window.with_page(CyclePage(*self._parts))
+
+    @cached_property
+    def space(self) -> SpaceView:
+        from app.views.space_view import SpaceView
+
+        return self._window.with_page(SpaceView(*self._parts))
+
+    @cached_property
+    def variants(self) -> VariantsPage:
+        from app.pages.variants_page import VariantsPage
+
+        return self._window.with_page(VariantsPage(*self._parts))
+
+    @cached_property
+    def uncertainty(self) -> UncertaintyPage:
+        from app.pages.uncertainty_page import UncertaintyPage
+
+        return self._window.with_page(UncertaintyPage(*self._parts))
+
+    # -- commands ---------------------------------------------------------------
 
     def open_space(self) -> None:
         """Show the layout in space."""
@@ -91,16 +113,18 @@ class ViewPages(QObject):
 
     def hold(self, on: bool) -> None:
         """Let present values stand beside the coming ones, wherever values stand."""
-        for part in (self._window.readout, self.variants, self.uncertainty):
-            part.hold(on)
+        self._window.readout.hold(on)
+        for name in ("variants", "uncertainty"):
+            # What is held is what a page would show now: it has to be there for that.
+            if on or name in vars(self):
+                getattr(self, name).hold(on)
 
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self.why.close()
-        self.cycle.close_worker()
-        self.variants.close_worker()
-        self.uncertainty.close_worker()
-        self.space.close_worker()
+        for name in ("cycle", "variants", "uncertainty", "space"):
+            if name in vars(self):
+                getattr(self, name).close_worker()
 
     def _on_read(self, found: Readout | None) -> None:
         # The menu takes the pointer off the drawing: the last place is meant then.

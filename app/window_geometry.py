@@ -1,4 +1,4 @@
-"""Where the window stood and how its width was shared: kept for the next time."""
+"""Where the windows stood and how the width was shared: kept for the next time."""
 
 from __future__ import annotations
 
@@ -14,19 +14,23 @@ if TYPE_CHECKING:
 
 
 def restore(window: MainWindow) -> None:
-    """Bring back size, place and sharing of the last time."""
+    """Bring back size, place and sharing of the last time, and panels that left."""
     choices = preferences.load()
     if choices.geometry:
         window.restoreGeometry(_bytes(choices.geometry))
     if choices.sharing:
         window.splitter.restoreState(_bytes(choices.sharing))
+    window.panels.send_away(choices.away)
 
 
 def remember(window: MainWindow) -> None:
-    """Keep size, place and sharing for the next time."""
+    """Keep size, place and sharing for the next time, and panels that left."""
     geometry = _text(window.saveGeometry())
     sharing = _text(window.splitter.saveState())
-    preferences.save(replace(preferences.load(), geometry=geometry, sharing=sharing))
+    away = window.panels.away()
+    preferences.save(
+        replace(preferences.load(), geometry=geometry, sharing=sharing, away=away)
+    )
 
 
 def _bytes(text: str) -> QByteArray:

@@ -47,6 +47,7 @@ class WindowLinks(QObject):
         drawings.pointed.connect(w.readout.show_at)
         drawings.pointer_left.connect(w.readout.clear_place)
         w.section.turned.connect(drawings.set_cut)
+        drawings.hint_changed.connect(w.tell_hint)
 
     def _connect_results(self) -> None:
         """What is computed in the background, and where it shows."""
@@ -54,10 +55,11 @@ class WindowLinks(QObject):
         recompute = w.recompute
         w.drawings.area_changed.connect(recompute.set_view)
         recompute.map_ready.connect(w.drawings.set_map)
-        recompute.map_ready.connect(self._tell_map_state)
+        w.drawings.map_told.connect(self._tell_map_state)
         recompute.margins_ready.connect(self._take_margins)
         recompute.curve_ready.connect(w.rail.set_curve)
         recompute.problem.connect(w.caption.tell)
+        w.drawings.problem.connect(w.caption.tell)
         recompute.progress.connect(
             lambda share, text: w.working.setText(text if share < 1 else "")
         )
@@ -74,9 +76,6 @@ class WindowLinks(QObject):
         w.remarks.go_to.connect(self._go_to_place)
         w.remarks.counted.connect(self._count_remarks)
         w.section.closed.connect(w.show_drawing)
-        for page in (w.new_page, w.guide, w.cautions, w.about):
-            page.closed.connect(w.show_drawing)
-        w.new_page.chosen.connect(w.files.new)
 
     def _connect_document(self) -> None:
         w = self._window
@@ -98,6 +97,7 @@ class WindowLinks(QObject):
 
     def _take_margins(self, margins: Margins) -> None:
         self._window.margins.set_margins(margins)
+        self._window.drawings.set_margins(margins)
         assessment = margins.assessment
         if assessment is not None:
             self._window.remarks.set_assessment(assessment)

@@ -12,6 +12,7 @@ from PySide6.QtWidgets import QMenu
 from app import clipboard, commands, preferences
 from app.copying import copy_sentence
 from app.drawings import VIEWS
+from app.elevation_plane import ALONG
 from app.files import SAMPLES
 from app.icons import icon
 from app.menus import LINE, Command, add_menu
@@ -170,6 +171,8 @@ class WindowMenus(QObject):
                             else f"Elevation, {name.lower()}")
                     for name in VIEWS
                 ),
+                Command(ALONG, self.acts.look_along, "",
+                        "Elevation along the selected profile, or the first"),
                 Command("Space", w.view_pages.open_space, "F9",
                         "The layout in space, with its maps"),
                 LINE,
@@ -180,6 +183,8 @@ class WindowMenus(QObject):
                             f"Ctrl+{key}", f"Show the panel {name}")
                     for key, name in enumerate(w.panels.names, start=1)
                 ),
+                Command("Panel in its own window", w.panels.take_out, "",
+                        "For a second screen; the same again brings it back"),
                 LINE,
             ],
         )  # fmt: skip

@@ -68,7 +68,15 @@ def fill(window, qtbot):
         layout.zones, layout.receptors, layout.storeys, layout.circuits,
         layout.levels, layout.profiles, layout.backing_drawings,
     )  # fmt: skip
-    window.panels.findChild(QTabBar).setCurrentIndex(0)
+    for name in reversed(window.panels.names):
+        window.panels.show_panel(name)
+    pages = window.view_pages
+    assert all(
+        (
+            window.new_page, window.guide, window.cautions, window.about,
+            pages.cycle, pages.space, pages.variants, pages.uncertainty,
+        )
+    )  # fmt: skip
     for items in kinds:
         if items:
             window.document.select((items[0].id,))
