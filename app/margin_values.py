@@ -21,7 +21,7 @@ from engine.errors import Cancelled, Progress
 from engine.evaluations import Evaluation, Quantity
 from engine.items import Point3
 from engine.layout import Layout
-from engine.levels import is_kind, level_at
+from engine.levels import Kind, is_kind, level_at
 from engine.loaded_layout import LoadedLayout, loaded_layout
 from engine.masks import masked
 from engine.places import Receptor, Zone
@@ -58,7 +58,9 @@ class MarginRow:
         What 1 A of net current alone would give there.
     measured, measured_ratio : float or None
         Of a receptor: the value measured on site [T], and measured over calculated in
-        the row's load case.
+        the row's load case, where it is of the row's kind of field.
+    kind : Kind or None
+        What is compared; None where nothing is.
     """
 
     place: str
@@ -78,6 +80,7 @@ class MarginRow:
     net_current: NetCurrentEffect | None = None
     measured: float | None = None
     measured_ratio: float | None = None
+    kind: Kind | None = None
 
 
 @dataclass(frozen=True, eq=False)
@@ -142,7 +145,7 @@ def _with_measured(
 ) -> list[MarginRow]:
     """Rows of receptors with what was measured there."""
     measured = {
-        (result.receptor.id, found.case): (
+        (result.receptor.id, found.case, found.measured_kind): (
             result.receptor.measured.flux_density,
             found.measured_ratio,
         )
@@ -152,7 +155,8 @@ def _with_measured(
     }
     made = []
     for row in rows:
-        value, ratio = measured.get((row.place, row.case), (None, None))
+        found = measured.get((row.place, row.case, row.kind), (None, None))
+        value, ratio = found
         made.append(replace(row, measured=value, measured_ratio=ratio))
     return made
 
@@ -181,6 +185,7 @@ def _row(comparison: Comparison, titles: Mapping[str, str]) -> MarginRow:
         at=None if details is None else details.at,
         height=None if details is None else details.at[2],
         net_current=None if details is None else details.net_current,
+        kind=comparison.kind,
     )
 
 

@@ -21,6 +21,7 @@ from engine.levels import Kind, is_kind, what_is_missing
 from engine.loaded_layout import loaded_layout
 from engine.place_shares import PlaceShare, PlaceShares, place_shares
 from engine.printed_text import one_line
+from engine.receptor_assessment import measured_kind
 from engine.retrace import Retrace, retrace
 from engine.units import flux_density_text, in_unit, significant
 
@@ -120,7 +121,7 @@ def why_at(request: WhyRequest, cancelled: Cancelled | None = None) -> Why:
         kinds,
         tuple(factors),
         {item.id: item.title for item in (*layout.items(), *layout.cases)},
-        _measured(layout, request.place) if kind == "AC" else None,
+        _measured(layout, request.place, kind, kinds),
     )
 
 
@@ -131,10 +132,15 @@ def _levels(layout: Layout, place: WhyPlace) -> list[ReferenceLevel]:
     return [level for level in complete if level.id in named]
 
 
-def _measured(layout: Layout, place: WhyPlace) -> float | None:
+def _measured(
+    layout: Layout, place: WhyPlace, kind: Kind, kinds: tuple[Kind, ...]
+) -> float | None:
+    """What was measured there, where it is of this kind of field. [T]"""
     for receptor in layout.receptors:
-        if receptor.id == place.receptor and receptor.measured is not None:
-            return receptor.measured.flux_density
+        measured = receptor.measured
+        if receptor.id == place.receptor and measured is not None:
+            same = measured_kind(measured, kinds) == kind
+            return measured.flux_density if same else None
     return None
 
 

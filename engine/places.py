@@ -156,6 +156,8 @@ class MeasuredValue(Value, frozen=True, kw_only=True):
 
     #: RMS resultant. [T]
     flux_density: Annotated[float, Meta(ge=0, le=100)]
+    #: Of which field; empty: the alternating where any flows, else the direct.
+    kind: Literal["", "AC", "DC"] = ""
     date: Name = ""
     instrument: Name = ""
     load_note: Text = ""

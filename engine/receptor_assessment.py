@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Collection
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -13,7 +15,7 @@ from engine.field import ellipse
 from engine.levels import Kind, is_kind
 from engine.loaded_layout import LoadedLayout
 from engine.place_details import at_frequencies
-from engine.places import Receptor
+from engine.places import MeasuredValue, Receptor
 from engine.results import PlaceDetails, ReceptorField, ReceptorResult
 from engine.zone_search import Found, found_at
 
@@ -78,7 +80,11 @@ def _field(
     by_frequency = {f: float(v[0]) for f, v in evaluation.by_frequency(None)[0].items()}
     axes = ellipse(b)
     measured = receptor.measured
-    ratio = measured.flux_density / ac if measured is not None and ac else None
+    beside = None if measured is None else measured_kind(measured, flowing)
+    calculated = {"AC": ac, "DC": dc}.get(beside or "")
+    ratio = None
+    if measured is not None and calculated:
+        ratio = measured.flux_density / calculated
     kind: Kind = "AC" if ac is not None else "DC"
     return ReceptorField(
         case=case.case.id,
@@ -94,9 +100,25 @@ def _field(
         bound_reason=totals[kind][2],
         near_field=loaded.fields.at(receptor.at).near,
         measured_ratio=ratio,
+        measured_kind=None if ratio is None else beside,
         contributions=loaded.surroundings.contributions(case, receptor.at, kind),
         net_current=loaded.surroundings.net_current(receptor.at),
     )
+
+
+def measured_kind(measured: MeasuredValue, flowing: Collection[Kind]) -> Kind | None:
+    """The kind of field that a measured value stands beside; None where none flows.
+
+    Examples
+    --------
+    >>> value = MeasuredValue(flux_density=1e-6)
+    >>> measured_kind(value, ("AC", "DC")), measured_kind(value, ("DC",))
+    ('AC', 'DC')
+    """
+    stated: tuple[Kind, ...] = ("AC", "DC")
+    if measured.kind:
+        stated = (measured.kind,)
+    return next((kind for kind in stated if kind in flowing), None)
 
 
 def _no_field(case: LoadCase, reason: str) -> ReceptorField:

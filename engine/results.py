@@ -252,7 +252,9 @@ class ReceptorField:
     semi_axes : (c, 2) float
         RMS semi-major and semi-minor axes of each component's ellipse. [T]
     measured_ratio : float or None
-        Measured over calculated AC resultant.
+        Measured over the calculated resultant of the same kind of field.
+    measured_kind : Kind or None
+        Which of both that is: `ac` or `dc`; None without a ratio.
     """
 
     case: str
@@ -270,6 +272,7 @@ class ReceptorField:
     measured_ratio: float | None
     contributions: tuple[Contribution, ...]
     net_current: NetCurrentEffect | None
+    measured_kind: Kind | None = None
 
 
 @dataclass(frozen=True)

@@ -274,6 +274,14 @@ _MEASURED = (
         "RMS resultant as measured",
         "measured value",
     ),
+    Part(
+        "measured.kind",
+        "Field measured",
+        Choice(lambda _layout: (("", "AC, else DC"), ("AC", "AC"), ("DC", "DC"))),
+        "Which field was measured: AC, all frequencies above 0 Hz; DC, 0 Hz without "
+        "the earth's own",
+        "kind of field measured",
+    ),
     Part("measured.date", "Date", Words(), "When it was measured", "date measured"),
     Part("measured.instrument", "Instrument", Words(), "What it was measured with"),
     Part(

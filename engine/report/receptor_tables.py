@@ -61,7 +61,7 @@ def measured_section(
                     result.receptor.title,
                     _measured(result, words),
                     words.name(found.case),
-                    found.reason or words.value(found.ac),
+                    found.reason or _beside_measured(found, words),
                     "–" if ratio is None else significant(ratio),
                 )
             )
@@ -76,6 +76,13 @@ def measured_section(
         "load case with the currents of the measurement can be held against them."
     )
     return [paragraph(text), table(heads, rows, (20, 32, 22, 14, 12), width)]
+
+
+def _beside_measured(found: ReceptorField, words: Wording) -> str:
+    """The calculated value of the kind of field that was measured."""
+    if found.measured_kind == "DC":
+        return f"{words.value(found.dc)} (DC)"
+    return words.value(found.ac)
 
 
 def _measured(result: ReceptorResult, words: Wording) -> str:

@@ -482,6 +482,33 @@ def test_a_receptor_shows_its_components_and_the_measured_ratio():
     assert result.comparisons[0].area_above is None
 
 
+@pytest.mark.parametrize(
+    ("kind", "flows", "wanted", "against"),
+    [
+        ("", {0.0: 30.0}, "DC", 30.0),
+        ("", {0.0: 30.0, 50.0: 40.0}, "AC", 40.0),
+        ("DC", {0.0: 30.0, 50.0: 40.0}, "DC", 30.0),
+        ("AC", {0.0: 30.0, 50.0: 40.0}, "AC", 40.0),
+        ("AC", {0.0: 30.0}, None, None),
+        ("DC", {50.0: 40.0}, None, None),
+    ],
+)
+def test_a_measured_value_stands_beside_its_own_kind_of_field(
+    kind, flows, wanted, against
+):
+    measured = MeasuredValue(flux_density=1.3 * ampere(2.0, 30.0), kind=kind)
+    at = Receptor(id="r", at=(0, 2, 0), measured=measured)
+    circuits = tuple(circuit(f"c{f:g}", rms, f) for f, rms in flows.items())
+    wires = tuple(wire(f"w{c.id}", c.id) for c in circuits)
+    found = assess(Layout(circuits=circuits, equipment=wires, receptors=(at,)))
+    (shown,) = found.receptors[0].fields
+    assert shown.measured_kind == wanted
+    if against is None:
+        assert shown.measured_ratio is None
+    else:
+        assert shown.measured_ratio == pytest.approx(1.3 * 30.0 / against, rel=1e-3)
+
+
 def test_a_receptor_inside_a_conductor_has_no_value():
     at = Receptor(id="r", at=(0, 0, 0), category="workers", levels=("level",))
     assessment = assess(room(receptors=(at,), levels=(level(1e-4),)))
