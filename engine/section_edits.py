@@ -13,7 +13,6 @@ from typing import Any, Literal
 from msgspec.structs import replace
 
 from engine.edits import replaced
-from engine.entered_values import with_value
 from engine.errors import UserError
 from engine.formations import as_free, circuits_of, extent, labels_of, refuse_count
 from engine.layout import Layout
@@ -37,6 +36,7 @@ from engine.runs import (
     Trefoil,
     Vertical,
 )
+from engine.section_origins import section_origins
 from engine.sections import slots
 
 Axis = Literal["left-right", "top-bottom"]
@@ -240,8 +240,12 @@ def without(section: Section, names: Iterable[str]) -> Section:
 def with_section(
     layout: Layout, run: Run, section: Section, names: Mapping[str, str] | None = None
 ) -> Layout:
-    """The layout with another section in a run; joints follow the slots' new names."""
-    new = with_value(run, "section", section)
+    """The layout with another section in a run; joints follow the slots' new names.
+
+    Values that did not change keep their origins.
+    """
+    origins = section_origins(run, section, names)
+    new = replace(run, section=section, origins=origins)
     moved = {old: name for old, name in (names or {}).items() if old != name}
     if not moved:
         return replaced(layout, new)

@@ -110,13 +110,10 @@ def _slot_part(
         held = {i.slot.name: i for i in items if isinstance(i, SlotItem)}
         run = layout.by_id()[next(iter(held.values())).run]
         assert isinstance(run, Run)
-        made = FreeSection(
-            slots=tuple(
-                new(slot, value) if slot.name in held else slot
-                for slot in as_free(run.section).slots
-            )
-        )
-        return with_new_section(layout, run, made)
+        before = as_free(run.section).slots
+        made = tuple(new(slot, value) if slot.name in held else slot for slot in before)
+        names = {a.name: b.name for a, b in zip(before, made, strict=True)}
+        return with_new_section(layout, run, FreeSection(slots=made), names)
 
     def shown(_layout: Layout, item: Item) -> Any:
         assert isinstance(item, SlotItem)

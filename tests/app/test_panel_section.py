@@ -14,9 +14,11 @@ from app.panels.phasor_drawing import ring_value
 from app.panels.section import SectionPanel
 from app.view_state import ViewState
 from engine.circuits import CircuitFactor, LoadCase
-from engine.formations import FORMATIONS
+from engine.edits import added, replaced
+from engine.formations import FORMATIONS, as_free
+from engine.items import ValueOrigin
 from engine.layout_file import read
-from engine.runs import FreeSection, ParallelSets, Round
+from engine.runs import FreeSection, Joint, ParallelSets, Round, SlotEnd
 from engine.sections import slots
 
 SAMPLE = Path(__file__).parents[2] / "sample_layouts" / "office-over-switch-room.json"
@@ -297,3 +299,32 @@ def test_bars_are_caught_by_the_pointer_in_their_own_shape(document, panel):
     assert canvas.slot_at(tip) == slot.name
     assert canvas.slot_at(beside) == ""
     assert not isinstance(slot.shape, Round)
+
+
+def test_a_dragged_conductor_leaves_the_other_origins(document, panel):
+    run = document.layout.by_id()["riser"]
+    held = ("route", "section.circuits", "section.shape", "section.width")
+    origins = tuple(ValueOrigin(field=f, kind="confirmed", by="A. P.") for f in held)
+    layout = replaced(document.layout, replace(run, origins=origins))
+    document.edit("Confirm values", layout)
+    drag(panel, slots(run.section)[0].name, QPoint(60, 0))
+    kept = {origin.field for origin in document.layout.by_id()["riser"].origins}
+    assert "route" in kept
+    assert any(field.startswith("section.slots.0.shape") for field in kept)
+
+
+def test_a_renamed_conductor_stays_in_its_joints(document, panel):
+    run = document.layout.by_id()["riser"]
+    free = as_free(run.section)
+    one = free.slots[0].name
+    ends = tuple(SlotEnd(item="riser", slot=s.name, end="end") for s in free.slots[:2])
+    joint = Joint(id="tie", ends=ends)
+    layout = replaced(document.layout, replace(run, section=free))
+    document.edit("Join", added(layout, joint))
+    panel.canvas.choose(frozenset({one}))
+    panel.refresh()
+    line = panel.form.editor("slot.name").field.line
+    line.setText("first")
+    line.editingFinished.emit()
+    joints = {joint.id: joint for joint in document.layout.joints}
+    assert joints["tie"].ends[0].slot == "first"
