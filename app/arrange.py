@@ -7,9 +7,10 @@ from PySide6.QtCore import QLocale, QObject
 from app import commands
 from app.ask_bar import AskBar, Question
 from app.document import Document
-from app.entry_words import angle, length
+from app.entry_words import angle
 from engine.errors import UserError
 from engine.shaping import Alignment
+from engine.typed_lengths import typed_length
 
 _ALIGNMENTS: dict[str, Alignment] = {
     "left sides": "least x",
@@ -110,7 +111,7 @@ class Arrange(QObject):
         ]
 
     def _length(self, text: str) -> float:
-        return length(text, unit=self._unit, decimal=self._decimal)
+        return typed_length(text, self._unit, self._decimal)
 
     def _move(self, answers: list[str]) -> None:
         x, y, z = (self._length(text) for text in answers)

@@ -28,6 +28,7 @@ from app.tools.drawing_tool import DrawingTool
 from app.tools.tool import Entry, Tool
 from app.wrapping import WrappingRow
 from engine.errors import UserError
+from engine.typed_lengths import typed_length
 
 _EXAMPLE = "to 3.2 -0.35 z 2.6"
 
@@ -222,7 +223,7 @@ class EntryStrip(QWidget):
     def _value(self, label: str, text: str) -> float:
         if label == "toward":
             return entry_words.angle(text, decimal=_decimal_sign())
-        return entry_words.length(text, unit=self._unit, decimal=_decimal_sign())
+        return typed_length(text, self._unit, _decimal_sign())
 
     def _entry(self, way: str, values: list[float | None]) -> Entry:
         first, second, third = values
@@ -390,4 +391,4 @@ def _group() -> tuple[QWidget, QHBoxLayout]:
 
 
 def _decimal_sign() -> str:
-    return QLocale().decimalPoint()
+    return "," if QLocale().decimalPoint() == "," else "."

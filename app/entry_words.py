@@ -1,32 +1,21 @@
 """Typed places and sizes as words: `to 3.2 -0.35 z 2.6`, `go 2.4 toward 90`.
 
-Blanks separate, units are glued to their number (`320mm`, `10ft6in`). The decimal sign
-of the locale and the point both work. 0° is +x, angles run counter-clockwise.
+Lengths are those of `engine.typed_lengths`; here blanks separate, so units are glued
+to their number (`320mm`, `10ft6in`), and a comma is a decimal sign only where the
+locale has it: elsewhere it could as well part two numbers. 0° is +x, angles run
+counter-clockwise.
 """
 
 from __future__ import annotations
 
 import re
-from itertools import pairwise
-from math import cos, isfinite, radians, sin
+from math import cos, radians, sin
 
 from app.tools.tool import Entry
 from engine.errors import UserError
-from engine.units import LENGTH_UNITS
+from engine.typed_lengths import typed_length
+from engine.typed_numbers import typed_number
 
-#: What a place may be away from the origin. [m]
-FARTHEST = 1e5
-
-_UNITS = {
-    **LENGTH_UNITS,
-    "cm": 1e-2,
-    "'": 0.3048,
-    '"': 0.0254,
-    "′": 0.3048,
-    "″": 0.0254,
-}
-_NUMBER = r"\d+(?:[.,]\d*)?|[.,]\d+"
-_PART = re.compile(rf"({_NUMBER})(mm|cm|m|ft|in|['\"′″])?")
 _AXES = {"x": 0, "y": 1, "z": 2, "dx": 0, "dy": 1, "dz": 2}
 _HELP = "Begin with to, by, go or size, as in “to 3.2 -0.35 z 2.6”."
 
@@ -68,46 +57,6 @@ def entry(text: str, *, unit: str = "m", decimal: str = ".") -> Entry:
     raise UserError(f"“{words[0]}” is not understood here. {_HELP}")
 
 
-def length(text: str, *, unit: str = "m", decimal: str = ".") -> float:
-    """A length or coordinate as typed, in metres.
-
-    Raises
-    ------
-    UserError
-        When it is no number with a unit of length.
-
-    Examples
-    --------
-    >>> length("320mm"), length("-10ft6in"), length("3,2", decimal=",")
-    (0.32, -3.2004, 3.2)
-    """
-    plain = text.strip().replace("−", "-")
-    sign = -1.0 if plain.startswith("-") else 1.0
-    body = plain.lstrip("+-") if plain[:1] in "+-" else plain
-    parts = _PART.findall(body)
-    if not parts or "".join(number + mark for number, mark in parts) != body:
-        raise UserError(
-            f"“{text}” is no length: write a number, with its unit glued to it where "
-            f"it is not in {unit}, as in 320mm or 10ft6in."
-        )
-    several = len(parts) > 1
-    factors = [_UNITS[mark] if mark else LENGTH_UNITS[unit] for _, mark in parts]
-    falling = all(a > b for a, b in pairwise(factors))
-    if several and (not all(mark for _, mark in parts) or not falling):
-        raise UserError(
-            f"“{text}” mixes units unclearly: write the larger unit first and each "
-            "number with its own, as in 10ft6in."
-        )
-    total = sum(
-        _number(number, text, decimal) * factor
-        for (number, _), factor in zip(parts, factors, strict=True)
-    )
-    value = round(sign * total, 10) + 0.0
-    if not isfinite(value) or abs(value) > FARTHEST:
-        raise UserError(f"“{text}” is more than 100 km: check its unit.")
-    return value
-
-
 def angle(text: str, *, decimal: str = ".") -> float:
     """A direction as typed, in degrees counter-clockwise from +x.
 
@@ -116,15 +65,14 @@ def angle(text: str, *, decimal: str = ".") -> float:
     UserError
         When it is no number.
     """
-    plain = text.strip().replace("−", "-")
-    body = re.sub(r"(°|deg)$", "", plain)
-    if not re.fullmatch(rf"[+-]?(?:{_NUMBER})", body):
+    body = re.sub(r"\s*(°|deg)$", "", text.strip())
+    try:
+        return typed_number(body, decimal)
+    except UserError:
         raise UserError(
             f"“{text}” is no direction: write degrees counter-clockwise from +x, as in "
             "90 or 22.5."
-        )
-    sign = -1.0 if body.startswith("-") else 1.0
-    return sign * _number(body.lstrip("+-"), text, decimal)
+        ) from None
 
 
 def walked(distance: float, toward: float, up: float | None = None) -> Entry:
@@ -166,7 +114,7 @@ def _place(word: str, words: list[str], unit: str, decimal: str) -> Entry:
             raise UserError(f"“{item}” is one number too many: there are x, y and z.")
         if found[place] is not None:
             raise UserError(f"{'xyz'[place]} is entered twice: leave one of them out.")
-        found[place] = length(item, unit=unit, decimal=decimal)
+        found[place] = _length(item, unit, decimal)
         place, labelled = place + 1, False
     if labelled:
         raise UserError(f"A number is missing after “{words[-1]}”.")
@@ -188,10 +136,11 @@ def _walk(words: list[str], unit: str, decimal: str) -> Entry:
     if len(words) == 5:
         if lower[3] not in ("up", "down"):
             raise UserError(f"“{words[3]}” is not understood here: write up or down.")
-        up = length(words[4], unit=unit, decimal=decimal)
+        up = _length(words[4], unit, decimal)
         up = -up if lower[3] == "down" else up
+    _refuse_comma(words[2], decimal)
     return walked(
-        length(words[0], unit=unit, decimal=decimal),
+        _length(words[0], unit, decimal),
         angle(words[2], decimal=decimal),
         up,
     )
@@ -202,14 +151,18 @@ def _size(words: list[str], unit: str, decimal: str) -> Entry:
         raise UserError(
             "“size” takes two lengths, along x and along y, as in “size 10 6”."
         )
-    x, y = (length(word, unit=unit, decimal=decimal) for word in words)
+    x, y = (_length(word, unit, decimal) for word in words)
     return sized(x, y)
 
 
-def _number(digits: str, text: str, decimal: str) -> float:
-    if "," in digits and decimal != ",":
+def _length(word: str, unit: str, decimal: str) -> float:
+    _refuse_comma(word, decimal)
+    return typed_length(word, unit, decimal)
+
+
+def _refuse_comma(word: str, decimal: str) -> None:
+    if "," in word and decimal != ",":
         raise UserError(
-            f"“{text}” has a comma: the decimal sign here is the point, and thousands "
-            "are not separated."
+            f"“{word}” has a comma: the decimal sign here is the point, and blanks "
+            "separate numbers."
         )
-    return float(digits.replace(",", "."))

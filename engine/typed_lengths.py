@@ -6,7 +6,6 @@ A length without a unit is in the unit of its field. Import place: after
 
 from __future__ import annotations
 
-import math
 import re
 
 from engine.errors import UserError
@@ -17,6 +16,12 @@ _UNITS = {**LENGTH_UNITS, "cm": 1e-2}
 
 #: Signs for foot and inch, as keyboards and word processors give them.
 _SIGNS = {"'": "ft", "′": "ft", "’": "ft", '"': "in", "″": "in", "”": "in"}
+
+#: What a place may be away from the datum, and so the longest length. [m]
+FARTHEST = 1e5
+
+#: Sums of feet and inches are what they are meant to be to this many decimals. [m]
+_DECIMALS = 10
 
 _PIECE = re.compile(rf"({NUMBER})\s*([A-Za-z]+|['′’\"″”])?\s*")
 
@@ -40,13 +45,13 @@ def typed_length(text: str, unit: str = "m", decimal: str = ".") -> float:
     Raises
     ------
     UserError
-        When it is no length, or can be read in two ways.
+        When it is no length, can be read in two ways, or is beyond any site.
 
     Examples
     --------
     >>> typed_length("320mm"), typed_length("2.4"), typed_length("-35 cm")
     (0.32, 2.4, -0.35)
-    >>> round(typed_length("10ft6in"), 6), typed_length("2,5", "mm", ",")
+    >>> typed_length("10ft6in"), typed_length("2,5", "mm", ",")
     (3.2004, 0.0025)
     """
     plain = plain_text(text)
@@ -55,15 +60,19 @@ def typed_length(text: str, unit: str = "m", decimal: str = ".") -> float:
     sign = -1.0 if plain.startswith("-") else 1.0
     pieces = _pieces(plain.lstrip("+-").strip())
     named = [kind for _, kind in pieces]
-    if len(pieces) == 1 or named == ["ft", "in"]:
-        return sign * math.fsum(
-            typed_quantity(f"{figures} {kind}", _UNITS, unit, decimal)
-            for figures, kind in pieces
+    if len(pieces) != 1 and named != ["ft", "in"]:
+        raise UserError(
+            f"“{plain[:40]}” is not a length: enter a number with m, cm, mm, ft or in, "
+            "such as 320mm or 10ft6in."
         )
-    raise UserError(
-        f"“{plain[:40]}” is not a length: enter a number with m, cm, mm, ft or in, "
-        "such as 320mm or 10ft6in."
-    )
+    parts = [
+        typed_quantity(f"{figures} {kind}", _UNITS, unit, decimal)
+        for figures, kind in pieces
+    ]
+    length = sign * (parts[0] if len(parts) == 1 else round(sum(parts), _DECIMALS))
+    if abs(length) > FARTHEST:
+        raise UserError(f"“{plain[:40]}” is more than 100 km: check its unit.")
+    return length + 0.0
 
 
 def length_text(metres: float, unit: str = "m", decimal: str = ".") -> str:

@@ -92,7 +92,7 @@ def test_a_fault_is_told_beside_its_field_and_changes_nothing(
 ) -> None:
     with qtbot.assertNotEmitted(strip.entered):
         typed(qtbot, strip.fields[1], "wide")
-        assert "“wide” is no length" in strip.fault.text()
+        assert "“wide” is not a length" in strip.fault.text()
         assert strip.fields[1].styleSheet()
         qtbot.keyClicks(strip.fields[1], "r")
         assert strip.fault.text() == ""

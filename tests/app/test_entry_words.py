@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import pytest
 
-from app.entry_words import angle, entry, length, walked
+from app.entry_words import angle, entry, walked
 from app.tools.tool import Entry
 from engine.errors import UserError
+from engine.typed_lengths import typed_length
 
 
 def test_to_is_a_place() -> None:
@@ -38,37 +39,25 @@ def test_size_goes_along_x_and_y() -> None:
     assert entry("size 10ft6in 320mm").size == (3.2004, 0.32)
 
 
-@pytest.mark.parametrize(
-    ("text", "metres"),
-    [
-        ("320mm", 0.32),
-        ("32cm", 0.32),
-        ("10ft6in", 3.2004),
-        ("-10ft6in", -3.2004),
-        ("10'6\"", 3.2004),
-        ("4.5in", 0.1143),
-        (".5", 0.5),
-        ("−1.5m", -1.5),
-        ("+2", 2.0),
-        ("0", 0.0),
-    ],
-)
-def test_units_are_glued_to_their_number(text: str, metres: float) -> None:
-    assert length(text) == pytest.approx(metres, abs=1e-12)
+@pytest.mark.parametrize("word", ["320mm", "-10ft6in", "10'6\"", "−1.5m", "+2", "0"])
+def test_lengths_are_those_of_every_field(word: str) -> None:
+    assert entry(f"to {word} 0").x == typed_length(word)
 
 
 def test_a_number_alone_is_in_the_unit_that_is_shown() -> None:
-    assert length("320", unit="mm") == 0.32
-    assert length("10", unit="ft") == pytest.approx(3.048)
     assert entry("to 100 200", unit="mm") == Entry("point", 0.1, 0.2)
 
 
 def test_the_locale_writes_a_comma() -> None:
     assert entry("to 3,2 -0,35", decimal=",") == Entry("point", 3.2, -0.35)
-    assert length("3.2", decimal=",") == 3.2
+    assert entry("to 3.2 1", decimal=",") == Entry("point", 3.2, 1.0)
     assert angle("22,5", decimal=",") == 22.5
+
+
+@pytest.mark.parametrize("text", ["to 3,2", "to 1,200 4", "go 2 toward 22,5"])
+def test_a_comma_never_parts_numbers_nor_thousands(text: str) -> None:
     with pytest.raises(UserError, match="comma"):
-        length("1,200")
+        entry(text)
 
 
 @pytest.mark.parametrize(
@@ -78,7 +67,7 @@ def test_the_locale_writes_a_comma() -> None:
         ("3.2 1", "Begin with to, by, go or size"),
         ("put 3 4", "“put” is not understood"),
         ("to", "Numbers are missing"),
-        ("to 3 b", "“b” is no length"),
+        ("to 3 b", "“b” is not a length"),
         ("to 1 2 3 4", "one number too many"),
         ("to 1 2 x 3", "x is entered twice"),
         ("to 1 2 z", "missing after “z”"),
@@ -88,13 +77,13 @@ def test_the_locale_writes_a_comma() -> None:
         ("go 2.4 toward 90 over 2", "write up or down"),
         ("size 10", "takes two lengths"),
         ("size 10 0", "other than 0"),
-        ("to 6in10ft 0", "mixes units"),
-        ("to 10ft6 0", "mixes units"),
-        ("to 1 km", "no length"),
-        ("to 1e9 2", "no length"),
+        ("to 6in10ft 0", "not a length"),
+        ("to 10ft6 0", "not a length"),
+        ("to 1 km", "not a length"),
+        ("to 1e9 2", "more than 100 km"),
         ("to 999999999 2", "more than 100 km"),
-        ("to nan 2", "no length"),
-        ("to 1--2 2", "no length"),
+        ("to nan 2", "not a length"),
+        ("to 1--2 2", "not a length"),
     ],
 )
 def test_what_is_not_understood_is_told_in_a_sentence(text: str, told: str) -> None:

@@ -21,10 +21,25 @@ from engine.units import LENGTH_UNITS
         ("−0.35 m", -0.35),
         ("35cm", 0.35),
         ("2,4", 2.4),
+        (".5", 0.5),
+        ("+2", 2.0),
+        ("4.5in", 0.1143),
+        ("1e3mm", 1.0),
     ],
 )
 def test_typed_lengths_are_metres(text, metres):
     assert typed_length(text) == pytest.approx(metres, rel=1e-12)
+
+
+def test_feet_and_inches_are_exact_decimals():
+    assert typed_length("10ft6in") == 3.2004
+    assert typed_length("-10'6\"") == -3.2004
+
+
+def test_a_length_beyond_any_site_is_a_wrong_unit():
+    assert typed_length("100000") == 1e5
+    with pytest.raises(UserError, match="more than 100 km"):
+        typed_length("100001")
 
 
 def test_a_bare_number_is_in_the_fields_unit():
