@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import numpy.typing as npt
@@ -26,14 +26,16 @@ from engine.levels import Kind, is_kind, level_at
 from engine.loaded_layout import LoadedLayout, loaded_layout
 from engine.places import Profile
 from engine.profile_sampling import Line
-from engine.profiles import FieldProfile, ProfileCurve, profile
-from engine.units import flux_density_text, in_unit
+from engine.profiles import KINDS, FieldProfile, ProfileCurve, profile
 from engine.zone_assessment import zone_floor
 
 Floats = npt.NDArray[np.float64]
 
 #: Places along the line where hand formulas are tried.
 HAND_PLACES = 40
+
+#: Lines of a level that differ less are one on a plot.
+_ALIKE = 0.02
 
 #: A level that varies less than this along the line is drawn straight.
 _STRAIGHT = 1e-3
@@ -65,15 +67,26 @@ class ProfileRequest:
 class LevelLine:
     """A reference level against the distance along the line.
 
-    `values` are where the curve of the case and kind would cross it. [T]
+    Attributes
+    ----------
+    values : (n,) float
+        Where the curves would cross it. [T]
+    curves : tuple of int
+        Those that it holds for, by their place among all curves.
+    value : float or None
+        Where it is the same along all of the line. [T]
+    is_stated : bool
+        The value is the level's own, at the one frequency that flows.
     """
 
     level: str
     kind: Kind
     title: str
-    text: str
     along: Floats
     values: Floats
+    curves: tuple[int, ...]
+    value: float | None
+    is_stated: bool
 
 
 @dataclass(frozen=True)
@@ -156,15 +169,12 @@ def profiled(request: ProfileRequest, cancelled: Cancelled | None = None) -> Pro
     levels = comparable_levels(layout, heights)
     try:
         found = profile(fields, item.path, heights=request.heights, levels=levels)
-    except ValueError as error:
-        raise UserError(
-            f"“{item.title}” cannot be plotted: {error}. Draw it with some length on "
-            "plan, or leave its own heights."
-        ) from error
+    except UserError as error:
+        raise UserError(f"“{item.title}” is not plotted. {error}") from error
     kinds = _kinds(fields.cases)
     return Profiled(
         request, item, found, kinds, _names(layout),
-        _level_lines(found, levels, fields.cases, layout.settings.flux_density_unit),
+        _level_lines(found, levels, fields.cases),
         _fall_offs(loaded, found, kinds), _hands(loaded, found, kinds[0]), reasons,
     )  # fmt: skip
 
@@ -187,31 +197,63 @@ def _level_lines(
     found: FieldProfile,
     levels: tuple[ReferenceLevel, ...],
     cases: tuple[CaseCurrents, ...],
-    unit: str,
 ) -> tuple[LevelLine, ...]:
-    """Where the first curve would cross each level: at its own mix of frequencies."""
-    by_id = {level.id: level for level in levels}
+    """Where curves would cross each level: one line for all that share their mix."""
     frequencies = {case.case.id: case.frequencies for case in cases}
     made: list[LevelLine] = []
-    curve = found.curves[0]
-    for use in curve.levels:
-        values = curve.values(use.kind)
-        shown = ~curve.mask if use.ratios is None else ~curve.mask & (use.ratios > 0)
-        if use.ratios is None or values is None or not shown.any():
-            continue
-        along, at = found.along[shown], values[shown] / use.ratios[shown]
-        title = by_id[use.level].title
-        own = [f for f in frequencies[curve.case] if is_kind(f, use.kind)]
-        limit = level_at(by_id[use.level], own[0]) if len(own) == 1 else None
-        text = f"{title}, at this mix of frequencies"
-        if np.ptp(at) <= _STRAIGHT * at.max():
-            along = found.along[[0, -1]]
-            at = np.full(2, float(np.median(at)))
-            text = f"{title} ≈ {flux_density_text(float(at[0]), unit)}"
-        if limit is not None and abs(limit - at.mean()) <= _STRAIGHT * limit:
-            text = f"{title} {in_unit(limit, unit):.6g} {unit}"
-        made.append(LevelLine(use.level, use.kind, title, text, along, at))
+    for level in levels:
+        for kind in KINDS:
+            own: list[LevelLine] = []
+            for k, curve in enumerate(found.curves):
+                line = _level_line(found, k, level, kind, frequencies[curve.case])
+                if line is not None:
+                    _add(own, line)
+            made += own
     return tuple(made)
+
+
+def _level_line(
+    found: FieldProfile,
+    k: int,
+    level: ReferenceLevel,
+    kind: Kind,
+    frequencies: tuple[float, ...],
+) -> LevelLine | None:
+    """Where one curve would cross a level: at its own mix of frequencies."""
+    curve = found.curves[k]
+    own_uses = [u for u in curve.levels if (u.level, u.kind) == (level.id, kind)]
+    values = curve.values(kind)
+    if not own_uses or values is None or (ratios := own_uses[0].ratios) is None:
+        return None
+    shown = ~curve.mask & (ratios > 0)
+    if not shown.any():
+        return None
+    along, at = found.along[shown], values[shown] / ratios[shown]
+    own = [f for f in frequencies if is_kind(f, kind)]
+    limit = level_at(level, own[0]) if len(own) == 1 else None
+    value = None
+    if np.ptp(at) <= _STRAIGHT * at.max():
+        along = found.along[[0, -1]]
+        value = float(np.median(at))
+        at = np.full(2, value)
+    is_stated = limit is not None and abs(limit - at.mean()) <= _STRAIGHT * limit
+    if is_stated:
+        value = limit
+    return LevelLine(level.id, kind, level.title, along, at, (k,), value, is_stated)
+
+
+def _add(lines: list[LevelLine], line: LevelLine) -> None:
+    """Add a line; of those that look alike on a plot, one for all their curves."""
+    for k, other in enumerate(lines):
+        same = np.interp(line.along, other.along, other.values)
+        if np.all(np.abs(same - line.values) <= _ALIKE * line.values):
+            lines[k] = replace(
+                other, curves=(*other.curves, *line.curves),
+                value=other.value if other.value == line.value else None,
+                is_stated=other.is_stated and line.is_stated,
+            )  # fmt: skip
+            return
+    lines.append(line)
 
 
 def _fall_offs(

@@ -5,14 +5,20 @@ from __future__ import annotations
 import numpy as np
 
 from app.map_request import height_figures
-from app.profile_values import NEAREST, HandPlace, Profiled, value_at
+from app.profile_values import NEAREST, HandPlace, LevelLine, Profiled, value_at
 from engine.fall_off import FallOff
 from engine.hand_formulas import NoHandFormula
 from engine.levels import Kind
 from engine.printed_text import one_line
 from engine.profile_table import csv_text, profile_table
 from engine.profiles import ProfileCurve
-from engine.units import LENGTH_UNITS, flux_density_text, significant, text_beside
+from engine.units import (
+    LENGTH_UNITS,
+    flux_density_text,
+    in_unit,
+    significant,
+    text_beside,
+)
 
 
 def curve_text(done: Profiled, curve: ProfileCurve) -> str:
@@ -34,6 +40,31 @@ def short_curve_text(done: Profiled, curve: ProfileCurve) -> str:
     if len(heights) == 1:
         return done.names.get(curve.case, curve.case)
     return text
+
+
+def is_of_all(done: Profiled, line: LevelLine) -> bool:
+    """Whether a level's line holds for every curve of its kind of field."""
+    return all(
+        k in line.curves or curve.values(line.kind) is None
+        for k, curve in enumerate(done.found.curves)
+    )
+
+
+def level_line_text(done: Profiled, line: LevelLine) -> str:
+    """The name of a level's line: its value, or for which mix of frequencies."""
+    unit = done.request.layout.settings.flux_density_unit
+    text = line.title
+    if line.value is not None and line.is_stated:
+        text += f" {in_unit(line.value, unit):.6g} {unit}"
+    elif line.value is not None:
+        text += f" ≈ {flux_density_text(line.value, unit)}"
+    else:
+        text += ", at this mix of frequencies"
+    if is_of_all(done, line):
+        return text
+    names = [short_curve_text(done, done.found.curves[k]) for k in line.curves]
+    more = f" and {len(names) - 2} more" if len(names) > 2 else ""
+    return f"{text}, for {' and '.join(names[:2])}{more}"
 
 
 def distance_text(metres: float, unit: str) -> str:

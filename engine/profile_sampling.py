@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from engine.errors import UserError
 from engine.sampling import on_line
 
 Floats = NDArray[np.float64]
@@ -43,8 +44,10 @@ class Line:
 
     Raises
     ------
+    UserError
+        When it is no longer than a millimetre.
     ValueError
-        When it has another shape, is not finite or has no length.
+        When it has another shape or is not finite.
     """
 
     def __init__(self, path: ArrayLike) -> None:
@@ -54,8 +57,11 @@ class Line:
         if not np.all(np.isfinite(vertices)):
             raise ValueError("the vertices of a line must be finite")
         steps = np.linalg.norm(np.diff(vertices, axis=0), axis=1)
-        if not np.sum(steps) > 0:
-            raise ValueError("a line needs a length above 0")
+        if not np.sum(steps) > FINEST:
+            raise UserError(
+                "The line has no length: all its vertices lie in one place. Draw it "
+                "again, or give its vertices places that are apart."
+            )
         kept = np.concatenate([[True], steps > 0])
         self.vertices: Floats = vertices[kept]
         self.stations: Floats = np.concatenate([[0.0], np.cumsum(steps[steps > 0])])

@@ -15,6 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 from engine import field
 from engine.case_fields import CaseCurrents, CaseFields
 from engine.criteria import ReferenceLevel
+from engine.errors import UserError
 from engine.items import Point3
 from engine.level_use import level_use
 from engine.levels import Kind
@@ -164,7 +165,7 @@ def profile(
 
     Raises
     ------
-    ValueError
+    UserError
         When the line has no length, or stands upright and heights are given.
     ComputationCancelled
         When the fields' `cancelled` says so.
@@ -178,7 +179,7 @@ def profile(
     flat = drawn.copy()
     if heights and flat.ndim == 2 and flat.shape[1] == 3:
         flat[:, 2] = 0.0
-    line = Line(flat)
+    line = _line(drawn, flat)
     levels_z: tuple[float | None, ...] = tuple(sorted(set(heights))) or (None,)
     looking = _Looking(fields, line, levels_z, tuple(levels))
     along = refined(line, looking.look)
@@ -188,6 +189,19 @@ def profile(
     along = _with(along, [c.along for c in crossings])
     curves = looking.curves(along)
     return FieldProfile(drawn, along, curves, crossings, extrema)
+
+
+def _line(drawn: Floats, flat: Floats) -> Line:
+    """The line at its heights; a sentence of its own where it stands upright."""
+    own = Line(drawn)
+    if np.array_equal(flat, drawn):
+        return own
+    if np.any(flat[:, :2] != flat[:1, :2]):
+        return Line(flat)
+    raise UserError(
+        "The line stands upright and has no length at one height: plot it at its own "
+        "heights, or draw it with some length on plan."
+    )
 
 
 def _with(along: Floats, more: Sequence[float]) -> Floats:

@@ -8,6 +8,7 @@ import pyqtgraph as pg
 from PySide6.QtGui import QFont, QPen
 
 from app.theme import SMALL, Theme
+from app.views.inks import shade
 
 #: Load cases by colour, apart in lightness too; heights by dashes.
 _COLOURS = {
@@ -39,6 +40,27 @@ def dress_axis(axis: pg.AxisItem, words: str, theme: Theme) -> None:
     axis.enableAutoSIPrefix(False)
     axis.setLabel(words, color=theme.muted, **{"font-size": f"{SMALL}px"})
     axis.setTicks(None)
+
+
+def rings(xs: list[float], ys: list[float], theme: Theme) -> pg.ScatterPlotItem:
+    """Places as rings."""
+    pen = pg.mkPen(theme.muted, width=1.2)
+    return pg.ScatterPlotItem(xs, ys, size=7, brush=None, pen=pen)
+
+
+def text_item(
+    text: str, theme: Theme, anchor: tuple[float, float], *, bold: bool = False
+) -> pg.TextItem:
+    """Words on a plot, on a patch of paper."""
+    item = pg.TextItem(
+        text, color=theme.text, anchor=anchor, fill=shade(theme.paper, 0.8)
+    )
+    font = QFont()
+    font.setPixelSize(SMALL)
+    font.setBold(bold)
+    item.setFont(font)
+    item.setZValue(22 if bold else 8)
+    return item
 
 
 def plain_label(text: str) -> str:

@@ -18,9 +18,21 @@ from PySide6.QtGui import (
     QResizeEvent,
 )
 
-from app.pages.plot_look import curve_pen, dress_axis, log_ticks, plain_label
+from app.pages.plot_look import (
+    curve_pen,
+    dress_axis,
+    log_ticks,
+    plain_label,
+    rings,
+    text_item,
+)
 from app.profile_values import LevelLine, Profiled, value_at
-from app.profile_words import distance_text, short_curve_text
+from app.profile_words import (
+    distance_text,
+    is_of_all,
+    level_line_text,
+    short_curve_text,
+)
 from app.theme import LIGHT, SMALL, Theme
 from app.views.inks import shade
 from engine.levels import Kind
@@ -177,7 +189,7 @@ class ProfilePlot(pg.PlotWidget):
         return low, high
 
     def _in_sight(self, low: float, high: float) -> list[LevelLine]:
-        """Levels of the first curve that lie near any."""
+        """Levels that lie near any curve."""
         assert self.done is not None
         far = _OUT_OF_SIGHT[self.log]
         return [
@@ -233,10 +245,15 @@ class ProfilePlot(pg.PlotWidget):
         item.setZValue(10)
 
     def _draw_level(self, line: LevelLine) -> None:
-        dashed = pg.mkPen(self._theme.text, width=1.2, style=Qt.PenStyle.DashDotLine)
+        assert self.done is not None
+        colour = QColor(self._theme.text)
+        if not is_of_all(self.done, line):
+            # Of some curves only: in the colour of the first of them.
+            colour = self._pen(self._curves[line.curves[0]]).color()
+        dashed = pg.mkPen(colour, width=1.2, style=Qt.PenStyle.DashDotLine)
         ys = self._ys(line.values)
         self.plot(line.along / self._metres, ys, pen=dashed).setZValue(5)
-        item = self._words(line.text, (0.0, 1.0))
+        item = self._words(level_line_text(self.done, line), (0.0, 1.0))
         self._named.append((item, float(line.along[0]) / self._metres, float(ys[0])))
 
     def _draw_crossings(self, curves: list[ProfileCurve]) -> None:
@@ -275,15 +292,11 @@ class ProfilePlot(pg.PlotWidget):
         if self._kind != self.done.kinds[0]:
             return
         held = [(p.along, f.value) for p in self.done.hands if (f := p.best)]
-        if not held:
-            return
         xs = [s / self._metres for s, _ in held]
         ys = [self._y(value) for _, value in held]
-        rings = pg.ScatterPlotItem(
-            xs, ys, size=7, brush=None, pen=pg.mkPen(self._theme.muted, width=1.2)
-        )
-        rings.setZValue(9)
-        self.addItem(rings)
+        marks = rings(xs, ys, self._theme)
+        marks.setZValue(9)
+        self.addItem(marks)
 
     def _draw_legend(self, curves: list[ProfileCurve]) -> None:
         assert self.done is not None
@@ -303,23 +316,12 @@ class ProfilePlot(pg.PlotWidget):
             sample = pg.PlotDataItem(pen=self._pen(curve))
             box.addItem(sample, plain_label(short_curve_text(self.done, curve)))
         if held:
-            ring = pg.ScatterPlotItem(
-                size=7, brush=None, pen=pg.mkPen(self._theme.muted, width=1.2)
-            )
-            box.addItem(ring, "hand formula")
+            box.addItem(rings([], [], self._theme), "hand formula")
 
     def _words(
         self, text: str, anchor: tuple[float, float], *, bold: bool = False
     ) -> pg.TextItem:
-        item = pg.TextItem(
-            text, color=self._theme.text, anchor=anchor,
-            fill=shade(self._theme.paper, 0.8),
-        )  # fmt: skip
-        font = QFont()
-        font.setPixelSize(SMALL)
-        font.setBold(bold)
-        item.setFont(font)
-        item.setZValue(22 if bold else 8)
+        item = text_item(text, self._theme, anchor, bold=bold)
         self.addItem(item, ignoreBounds=True)
         return item
 

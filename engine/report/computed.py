@@ -42,20 +42,30 @@ NOTHING_FURTHER = Further((), None, (), ())
 
 
 def further_results(
-    layout: Layout,
+    whole: Layout,
+    variant: str | None,
     assessment: Assessment,
     cache: ResponseCache | None,
     cancelled: Cancelled | None,
     progress: Progress | None,
 ) -> Further:
-    """What a report has besides the assessment and the maps."""
+    """What a report has besides the assessment and the maps.
+
+    Parameters
+    ----------
+    whole : Layout
+        The base with its variants.
+    variant : str or None
+        Id of the variant that was assessed; None: the base.
+    """
     stop_if(cancelled)
     if progress is not None:
         progress(0.0, "Computing profiles, options and budgets")
+    layout = assessment.layout
     loaded = loaded_layout(layout, layout.cases, cache, cancelled)
     profiles = _profiles(loaded, cancelled)
     traced = _traced(loaded, assessment)
-    comparison = _comparison(layout, assessment, cache, cancelled)
+    comparison = _comparison(whole, variant, assessment, cache, cancelled)
     if progress is not None:
         progress(0.6, "Computing budgets of uncertainty")
     budgets = _budgets(assessment, cache, cancelled)
@@ -95,30 +105,30 @@ def _profiles(
         stop_if(cancelled)
         try:
             found = profile(loaded.fields, line.path, levels=layout.levels)
-        except ValueError:
+        except UserError:
             continue  # A line without length has no profile.
         made.append(ProfileResult(line, found))
     return tuple(made)
 
 
 def _comparison(
-    layout: Layout,
+    whole: Layout,
+    chosen: str | None,
     assessment: Assessment,
     cache: ResponseCache | None,
     cancelled: Cancelled | None,
 ) -> VariantComparison | None:
-    """The base as it was assessed, beside its variants, assessed in the same way."""
-    if not layout.variants:
+    """The base beside its variants; one of them is assessed already."""
+    if not whole.variants:
         return None
-    columns = [column_of(layout, None, assessment)]
-    for variant in layout.variants:
+    columns = []
+    for variant in (None, *(each.id for each in whole.variants)):
         stop_if(cancelled)
-        try:
-            changed = layout_of(layout, variant.id)
-        except UserError:
-            continue  # A variant that does not fit its base any more; remarks say so.
-        found = assess(changed, certify=True, cache=cache, cancelled=cancelled)
-        columns.append(column_of(layout, variant.id, found))
+        found = assessment
+        if variant != chosen:
+            layout = layout_of(whole, variant)
+            found = assess(layout, certify=True, cache=cache, cancelled=cancelled)
+        columns.append(column_of(whole, variant, found))
     return comparison_table(columns)
 
 

@@ -18,9 +18,15 @@ from app.document import Document
 from app.messages import Messages
 from app.pages.profile_page import NONE_DRAWN, ProfilePage
 from app.profile_values import Profiled, ProfileRequest, profiled, value_at
-from app.profile_words import crossing_texts, marked_text, profile_csv
+from app.profile_words import (
+    crossing_texts,
+    level_line_text,
+    marked_text,
+    profile_csv,
+)
 from app.readout_values import ReadoutRequest, readout
 from app.view_state import Look, ViewState
+from engine.criteria import LevelRange, LevelRanges
 from engine.edits import removed, replaced
 from engine.errors import UserError
 from engine.layout import Layout
@@ -92,6 +98,45 @@ def test_drawn_level_meets_the_first_curve_where_it_is_crossed(done: Profiled) -
         assert value_at(done, first, "AC", crossing.along) == pytest.approx(
             level, rel=2e-3
         )
+
+
+def test_curves_of_different_mix_have_lines_of_their_own(layout: Layout) -> None:
+    # A level that falls with frequency, and harmonics in one of two cases only.
+    ranges = LevelRanges(
+        ranges=(
+            LevelRange(f_from=1, f_to=100, coefficient=1e-4),
+            LevelRange(f_from=100, f_to=1e4, coefficient=2e-5),
+        )
+    )
+    level = replace(layout.levels[0], values=ranges)
+    layout = replaced(layout, level)
+    cases = tuple(case.id for case in layout.cases)
+    done = profiled(ProfileRequest(layout, layout.profiles[0].id, cases))
+    assert {len(c.by_frequency) for c in done.found.curves} != {1}
+    lines = [line for line in done.levels if line.level == level.id]
+    assert len(lines) > 1
+    assert sorted(k for line in lines for k in line.curves) == [0, 1]
+    met = [c for c in done.found.crossings if c.level == level.id]
+    assert met
+    for crossing in met:
+        k, curve = next(
+            (k, c) for k, c in enumerate(done.found.curves) if c.case == crossing.case
+        )
+        line = next(line for line in lines if k in line.curves)
+        at = float(np.interp(crossing.along, line.along, line.values))
+        assert value_at(done, curve, "AC", crossing.along) == pytest.approx(
+            at, rel=5e-3
+        )
+        name = done.names[curve.case]
+        assert level_line_text(done, line).endswith(f", for {name}")
+
+
+def test_a_line_without_length_is_told_not_plotted(layout: Layout) -> None:
+    item = layout.profiles[0]
+    place = item.path[0]
+    layout = replaced(layout, replace(item, path=(place, place)))
+    with pytest.raises(UserError, match=rf"“{item.title}” is not plotted\. The line "):
+        profiled(ProfileRequest(layout, item.id, (layout.cases[0].id,)))
 
 
 def test_crossings_are_told_with_distance_and_direction(done: Profiled) -> None:

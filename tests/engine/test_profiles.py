@@ -168,8 +168,26 @@ def test_closed_enclosure_leaves_cells_empty():
 
 def test_line_without_length_is_refused():
     fields = loaded(Layout(circuits=(circuit(),), equipment=(wire(),))).fields
-    with pytest.raises(ValueError, match="length"):
+    with pytest.raises(UserError, match=r"stands upright .* plot it at its own"):
         profile(fields, ((0, 0, 0), (0, 0, 2.0)), heights=(1.0,))
+    for path in (((1, 1, 1), (1, 1, 1)), ((1, 1, 1), (1 + 1e-9, 1, 1), (1, 1, 1))):
+        for heights in ((), (1.0,)):
+            with pytest.raises(UserError, match=r"The line has no length: .*Draw it"):
+                profile(fields, path, heights=heights)
+
+
+def test_repeated_vertices_and_rises_change_nothing():
+    fields = loaded(Layout(circuits=(circuit(),), equipment=(wire(),))).fields
+    plain = profile(fields, ((0, 1, 1), (2, 1, 1), (2, 3, 1)))
+    twice = ((0, 1, 1), (0, 1, 1), (2, 1, 1), (2, 1, 1), (2, 3, 1), (2, 3, 1))
+    again = profile(fields, twice)
+    assert np.array_equal(again.along, plain.along)
+    assert np.array_equal(again.curves[0].ac, plain.curves[0].ac)
+    # At one height an upright leg has no length of its own.
+    risen = profile(
+        fields, ((0, 1, 1), (2, 1, 1), (2, 1, 5), (2, 3, 5)), heights=(1.0,)
+    )
+    assert np.array_equal(risen.curves[0].ac, plain.curves[0].ac)
 
 
 def test_fall_off_refuses_a_rising_field_and_a_short_way():
