@@ -14,11 +14,9 @@ from app.map_request import heights_of
 from app.messages import Messages
 from app.variant_acts import shown_text
 from app.view_state import ViewState
-from engine.commands.horizontal_map import write_map
 from engine.errors import Cancelled, Progress
 from engine.layout import Layout
 from engine.picture import OffsetLines
-from engine.report import write_report
 
 MAP_KINDS = "Picture (*.png);;Vectors (*.svg);;Numbers (*.csv)"
 
@@ -62,6 +60,9 @@ class Exports(QObject):
         layout = self._document.whole
 
         def work(cancelled: Cancelled, progress: Progress) -> None:
+            # Here, as below: what draws on paper takes long to load.
+            from engine.report.writing import write_report
+
             write_report(layout, path, cancelled=cancelled, progress=progress)
 
         told = f"{path} was written."
@@ -79,6 +80,8 @@ class Exports(QObject):
         offsets = self.offsets(layout, heights)
 
         def work(cancelled: Cancelled, progress: Progress) -> None:
+            from engine.commands.horizontal_map import write_map
+
             write_map(
                 layout, case, heights, path, shown=shown, offsets=offsets,
                 cancelled=cancelled, progress=progress,

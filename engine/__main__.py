@@ -249,7 +249,7 @@ def _compare(asked: argparse.Namespace) -> int:
 
 
 def _report(asked: argparse.Namespace) -> int:
-    from engine.report import write_report
+    from engine.report.writing import write_report
 
     layout = read(asked.layout)
     write_report(

@@ -15,7 +15,7 @@ from engine.errors import Progress, UserError
 from engine.items import IssuedResult
 from engine.layout import Layout
 from engine.layout_file import read, write
-from engine.report import write_report
+from engine.report.writing import write_report
 from engine.revisions import (
     Changes,
     MovedResult,

@@ -21,7 +21,9 @@ from engine.conductors import conductors
 from engine.errors import ComputationCancelled, UserError
 from engine.items import IssuedRevision, Item
 from engine.layout import Layout
-from engine.report import Matter, report_pdf, scripts
+from engine.report import scripts
+from engine.report.document import report_pdf
+from engine.report.matter import Matter
 from engine.report.page import Watch
 from engine.report.wording import INDIVIDUAL
 from engine.results import Assessment, CaseResult, ReceptorResult, ZoneResult

@@ -16,9 +16,10 @@ from pypdf import PdfReader
 
 from engine import units
 from engine.layout_file import decode, read
-from engine.report import computed_matter, report_pdf
+from engine.report.document import report_pdf
 from engine.report.page import MARGIN
 from engine.report.wording import QUESTIONS, STATE_SENTENCES
+from engine.report.writing import computed_matter
 
 SAMPLES = sorted((Path(__file__).parents[2] / "sample_layouts").glob("*.json"))
 NAMES = [path.stem for path in SAMPLES]

@@ -13,7 +13,8 @@ from engine.circuits import BalancedCurrent, Circuit, LoadCase
 from engine.errors import ComputationCancelled, UserError
 from engine.layout import Layout, Settings
 from engine.places import Receptor, Room, Zone
-from engine.report import maps, write_report
+from engine.report import maps
+from engine.report.writing import write_report
 from engine.runs import CircuitShare, Flat, Run
 
 ROOM = ((0.0, 0.0), (4.0, 0.0), (4.0, 3.0), (0.0, 3.0))
