@@ -28,6 +28,7 @@ from engine.embedded_picture import (
     picture_size,
 )
 from engine.errors import UserError
+from engine.exchange.pdf_pages import PDF_LIBRARY
 from engine.items import Point2
 from engine.layout import Layout
 from engine.motions import neat
@@ -126,11 +127,12 @@ def page_count(path: str | Path) -> int:
     opening, data = _file(Path(path))
     if not _is_pdf(data):
         return 1
-    document = _opened(data, opening)
-    try:
-        return len(document)
-    finally:
-        document.close()
+    with PDF_LIBRARY:
+        document = _opened(data, opening)
+        try:
+            return len(document)
+        finally:
+            document.close()
 
 
 def read_picture_bytes(data: bytes, page: int = 1) -> ReadPicture:
@@ -227,7 +229,8 @@ def _read(data: bytes, name: str, opening: str, page: int) -> ReadPicture:
         raise UserError(f"{opening}: it is empty.")
     n_pages = 1
     if _is_pdf(data):
-        image, n_pages = _page(data, opening, page)
+        with PDF_LIBRARY:
+            image, n_pages = _page(data, opening, page)
         copy = _copy(image)
     else:
         if page != 1:
