@@ -1,6 +1,6 @@
 """The caption above the drawing: what the map shows, each part a choice.
 
-The same words stand on every export: quantity, heights, load case.
+The same words stand on every export: quantity, heights or upright plane, load case.
 """
 
 from __future__ import annotations
@@ -20,6 +20,14 @@ from PySide6.QtWidgets import (
 )
 
 from app.document import Document
+from app.elevation_plane import (
+    ALONG,
+    ELEVATIONS,
+    PLAN_VIEW,
+    drawn_lines,
+    line_of,
+    plane_text,
+)
 from app.map_request import height_text, heights_of
 from app.theme import STEP, theme_for
 from app.variant_acts import with_shown
@@ -33,8 +41,8 @@ QUANTITY = "RMS flux density"
 def caption(document: Document, view_state: ViewState) -> str:
     """The caption in one line, as exports print it."""
     layout, look = document.layout, view_state.look
-    _, heights = heights_of(layout, look)
-    text = f"{QUANTITY} · {heights} · {case_text(layout, look.case)}"
+    where = plane_text(layout, look, look.view) or heights_of(layout, look)[1]
+    text = f"{QUANTITY} · {where} · {case_text(layout, look.case)}"
     return with_shown(document, text)
 
 
@@ -54,7 +62,7 @@ def _with_case(title: str) -> str:
 
 
 class CaptionBar(QWidget):
-    """Quantity, zone, height, storey and load case of the drawing, and its layers.
+    """View, quantity, zone, height, load case and storey of the drawing; its layers.
 
     Signals
     -------
@@ -68,6 +76,14 @@ class CaptionBar(QWidget):
         super().__init__()
         self._document = document
         self._view_state = view_state
+        self._view = _choice("View in front: plan, elevations, along a drawn line")
+        # Names of lines may be long; the others must not be cut for them.
+        self._view.setSizeAdjustPolicy(
+            QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon
+        )
+        self._view.setMinimumContentsLength(10)
+        self._plane = QLabel()
+        self._plane.setToolTip("Where the map of the elevation stands")
         self._zone = _choice("Zone whose heights the map shows")
         self._height = _choice("Height of the map above the datum [m]")
         self._case = _choice("Load case of the map")
@@ -83,10 +99,13 @@ class CaptionBar(QWidget):
         self._row = row = QHBoxLayout(self)
         row.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
         row.setSpacing(STEP)
+        row.addWidget(self._view)
+        row.addWidget(QLabel("·"))
         row.addWidget(QLabel(QUANTITY))
-        self._dots: dict[QComboBox, QLabel] = {}
+        self._dots: dict[QWidget, QLabel] = {}
         for widget in (
-            self._zone, self._height, self._case, self._variant, self._storey,
+            self._plane, self._zone, self._height, self._case, self._variant,
+            self._storey,
         ):  # fmt: skip
             self._dots[widget] = QLabel("·")
             row.addWidget(self._dots[widget])
@@ -94,6 +113,7 @@ class CaptionBar(QWidget):
         row.addStretch(1)
         row.addWidget(self._state)
         row.addWidget(self._layers)
+        self._view.activated.connect(self._on_view)
         self._zone.activated.connect(self._on_zone)
         self._height.activated.connect(self._on_height)
         self._case.activated.connect(self._on_case)
@@ -127,8 +147,8 @@ class CaptionBar(QWidget):
         fits = others + self._storey.sizeHint().width() + 4 * STEP <= self.width()
         self._show(self._storey, fits and self._storey.count() > 1)
 
-    def _show(self, choice: QComboBox, shown: bool) -> None:
-        """A choice with the dot before it."""
+    def _show(self, choice: QWidget, shown: bool) -> None:
+        """A choice or a text with the dot before it."""
         choice.setVisible(shown)
         self._dots[choice].setVisible(shown)
 
@@ -148,7 +168,13 @@ class CaptionBar(QWidget):
         layout, look = self._document.layout, self._view_state.look
         zones = [(zone.title, zone.id) for zone in layout.zones]
         _refill(self._zone, zones, look.zone)
-        self._show(self._zone, bool(zones))
+        where = plane_text(layout, look, look.view)
+        self._plane.setText(where)
+        # The view's own name says the line already.
+        self._show(self._plane, bool(where) and look.view != ALONG)
+        self._show(self._zone, bool(zones) and not where)
+        self._show(self._height, not where)
+        self._fill_view(layout)
         _refill(self._height, self._heights(layout), look.height)
         cases = [(_with_case(case.title), case.id) for case in layout.cases]
         _refill(self._case, cases, look.case)
@@ -160,6 +186,21 @@ class CaptionBar(QWidget):
         storeys = [(storey.title, storey.id) for storey in layout.storeys]
         _refill(self._storey, storeys, look.storey)
         self._show_storey()
+
+    def _fill_view(self, layout: Layout) -> None:
+        look = self._view_state.look
+        views: list[tuple[str, object]] = [
+            (name, (name, "", 0)) for name in (PLAN_VIEW, *ELEVATIONS)
+        ]
+        views += [
+            (f"Along {line.title}", (ALONG, line.profile, line.leg))
+            for line in drawn_lines(layout)
+        ]
+        shown = line_of(layout, look) if look.view == ALONG else None
+        chosen = (look.view, "", 0)
+        if shown is not None:
+            chosen = (ALONG, shown.profile, shown.leg)
+        _refill(self._view, views, chosen)
 
     def _heights(self, layout: Layout) -> list[tuple[str, float | None]]:
         look = self._view_state.look
@@ -179,6 +220,13 @@ class CaptionBar(QWidget):
         if look.height is not None and look.height not in [z for _, z in heights]:
             heights.append((height_text(layout, look.height, zone), look.height))
         return heights
+
+    def _on_view(self, index: int) -> None:
+        view, line, leg = self._view.itemData(index)
+        if view == ALONG:
+            self._view_state.set(view=view, line=line, leg=leg)
+        else:
+            self._view_state.set(view=view)
 
     def _on_zone(self, index: int) -> None:
         self._view_state.set(zone=self._zone.itemData(index), height=None)

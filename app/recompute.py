@@ -166,8 +166,8 @@ class Recompute(QObject):
     def is_stale(self) -> bool:
         return self._is_stale
 
-    def set_view(self, rect: Rect, pixels: tuple[int, int]) -> None:
-        """Say what rectangle of the plan shows, on how many pixels. [m]"""
+    def set_view(self, rect: Rect | None, pixels: tuple[int, int]) -> None:
+        """Say what rectangle of the plan shows, on how many pixels; None: none. [m]"""
         self._rect, self._pixels = rect, pixels
         self.ask()
 
@@ -182,7 +182,9 @@ class Recompute(QObject):
         )
         if request == self._newest:
             return
-        if self._newest is None or request.layout is not self._newest.layout:
+        if self._rect is None:
+            self._stale_timer.stop()
+        elif self._newest is None or request.layout is not self._newest.layout:
             self._stale_timer.start()
         self._newest = request
         self._worker.ask(request)

@@ -1,4 +1,4 @@
-"""What is being looked at: load case, height, storey, quantity, layers.
+"""What is being looked at: load case, height, storey, view, upright planes, layers.
 
 Not part of the layout and not undone. Views listen; one value, one notice.
 """
@@ -23,6 +23,7 @@ LAYERS = (
     "profiles",
     "receptors",
     "labels",
+    "upright plane",
 )
 
 
@@ -43,6 +44,15 @@ class Look:
         Id of the storey drawn upon; empty for the lowest.
     hidden : frozenset of str
         Layers that are not drawn.
+    view : str
+        The view in front: "Plan", "Looking +y", "Looking +x", "Along a line".
+    plane_x, plane_y : float or None
+        Where the upright planes of the elevations looking +x and +y stand; None: not
+        chosen yet. [m]
+    line : str
+        Id of the profile that the view along a line shows; empty for the first.
+    leg : int
+        Which straight part of that profile, from 0.
     """
 
     case: str = ""
@@ -50,6 +60,11 @@ class Look:
     zone: str = ""
     storey: str = ""
     hidden: frozenset[str] = frozenset()
+    view: str = "Plan"
+    plane_x: float | None = None
+    plane_y: float | None = None
+    line: str = ""
+    leg: int = 0
 
 
 class ViewState(QObject):

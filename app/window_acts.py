@@ -11,6 +11,7 @@ from PySide6.QtWidgets import QApplication, QFileDialog
 from app import commands, preferences
 from app.backing import place_backing_file, place_backing_picture
 from app.copying import copy_picture
+from app.elevation_plane import ALONG, PLAN_VIEW, drawn_lines
 from app.tools.run import RunTool
 from engine.edits import replaced
 from engine.errors import UserError
@@ -79,7 +80,7 @@ class WindowActs:
     def fit_range(self) -> None:
         """Let the map's range hold the values that it shows."""
         document = self._window.document
-        picture = self._window.drawings.plan.drawing.map_layer.picture
+        picture = self._window.drawings.picture
         if picture is None or picture.extent is None:
             raise UserError("There is no settled map yet whose range could be fitted.")
         smallest, largest = picture.extent
@@ -88,6 +89,22 @@ class WindowActs:
             document.committed.settings, map_low=low, map_high=largest
         )
         document.edit("Fit the map's range", replaced(document.committed, settings))
+
+    def look_along(self) -> None:
+        """Look along the selected profile, or the first."""
+        w = self._window
+        lines = drawn_lines(w.document.layout)
+        if not lines:
+            w.drawings.show_view(PLAN_VIEW)
+            raise UserError(
+                "There is no line to look along yet: draw one on the plan with the "
+                "tool Profile, then choose “Along a line” again."
+            )
+        chosen = [line for line in lines if line.profile in w.document.selection]
+        if chosen:
+            w.drawings.look_along(chosen[0].profile, chosen[0].leg)
+        else:
+            w.drawings.show_view(ALONG)
 
     def select_all(self) -> None:
         """Select every item that is drawn."""

@@ -97,7 +97,7 @@ class WindowLinks(QObject):
 
     def _take_margins(self, margins: Margins) -> None:
         self._window.margins.set_margins(margins)
-        self._window.drawings.set_margins(margins)
+        self._window.drawings.planes.set_margins(margins)
         assessment = margins.assessment
         if assessment is not None:
             self._window.remarks.set_assessment(assessment)

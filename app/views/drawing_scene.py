@@ -104,6 +104,13 @@ class DrawingScene(QGraphicsScene):
         self._apply_look()
         self.touched.emit()
 
+    def set_sight(self, sight: Sight) -> None:
+        """Look from another side, from the next layout shown on."""
+        self._sight = sight
+        for item in self.items_by_id.values():
+            self.removeItem(item)
+        self.items_by_id.clear()
+
     def set_look(self, look: Look) -> None:
         """Hide and show layers, and mute rooms of other storeys."""
         self._look = look

@@ -41,6 +41,10 @@ class PicturePainter:
         self._sight = sight
         self._ground = Ground(scene)
 
+    def set_sight(self, sight: Sight) -> None:
+        """Name the axes of another side."""
+        self._sight = sight
+
     def paint(
         self, pixels: QPixmap, camera: Camera, layout: Layout, legend: QRectF
     ) -> None:
@@ -59,7 +63,9 @@ class PicturePainter:
         taken += self._paint_notices(painter, camera)
         for item in reversed(visible):
             taken += item.decorate(painter, camera)
-        for item in selected(self._scene):
+        # Along a line nothing can be moved exactly, so nothing offers to be gripped.
+        gripped = () if self._sight.is_along_line else selected(self._scene)
+        for item in gripped:
             for grip in item.grips():
                 taken.append(draw_handle(painter, camera.pixel(grip), self.inks))
         self._paint_labels(painter, camera, visible, unit, taken)
