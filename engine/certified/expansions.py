@@ -12,6 +12,7 @@ from numba import njit
 from numpy.typing import NDArray
 
 from engine.certified.boxes import Boxes
+from engine.certified.bundles import add_bundles, bundles_of
 from engine.certified.residues import (
     AXES,
     DISC_COUNTS,
@@ -100,6 +101,7 @@ class Source:
         self._real = np.ascontiguousarray(currents[:, flowing].real)
         self._imaginary = np.ascontiguousarray(currents[:, flowing].imag)
         self._size = np.abs(currents[:, flowing])
+        self._bundles = bundles_of(carrying, self._legs, currents[:, flowing])
 
     def expansion(self, boxes: Boxes) -> Expansion:
         """Expand around the centre of every box, in the box's own axes."""
@@ -114,6 +116,7 @@ class Source:
             _expand(
                 boxes.centres[part], boxes.frames[part], reach[part],
                 self._legs, self._frames, self._owner, self._needs,
+                self._bundles.table, self._bundles.flows, self._bundles.of_leg,
                 self._real, self._imaginary, self._size,
                 rows[:, part], sizes[part], work[part],
             )  # fmt: skip
@@ -140,6 +143,9 @@ def _expand(
     boxes: Floats,
     owner: Integers,
     needs: Floats,
+    bundles: Floats,
+    flows: Floats,
+    of_leg: Integers,
     real: Floats,
     imaginary: Floats,
     size: Floats,
@@ -151,17 +157,20 @@ def _expand(
     gaps, errors = np.empty((k, 3)), np.empty(k)
     rules = np.empty((k, 2), np.int64)
     own = np.zeros((ROWS, 3))
+    together = np.zeros(bundles.shape[0], np.bool_)
     for i in range(centres.shape[0]):
         if not _gaps(centres[i], reach[i], legs, boxes, gaps):
             sizes[i] = np.inf
             continue
         _choose(legs, owner, needs, gaps, rules, errors)
+        add_bundles(bundles, flows, centres[i], reach[i], sizes[i], together)
         third = second = error = 0.0
         for j in range(k):
-            add = _add_leg(legs[j], rules[j], centres[i], frames[i], reach[i], own)
-            third, second = third + add[0], second + add[1]
+            work[i] += _add_leg(legs[j], rules[j], centres[i], frames[i], own)
             error += errors[j]
-            work[i] += int(add[2])
+            if of_leg[j] < 0 or not together[of_leg[j]]:
+                bounds = _leg_bounds(legs[j], rules[j], centres[i], reach[i])
+                third, second = third + bounds[0], second + bounds[1]
             if j + 1 < k and owner[j + 1] == owner[j]:
                 continue
             m = owner[j]
@@ -273,35 +282,58 @@ def _rule_of(leg: Floats, gaps: Floats, allowed: float, rule: Integers) -> float
 
 
 @njit(nogil=True, cache=True, error_model="numpy")
+def _counts(leg: Floats, rule: Integers) -> tuple[int, int]:
+    """How many filaments a rule has along the two sides of a section."""
+    if leg[IS_ROUND] > 0.0:
+        return DISC_COUNTS[rule[0]], 1
+    return LINE_COUNTS[rule[0]], LINE_COUNTS[rule[1]]
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def _filament(
+    leg: Floats, rule: Integers, f: int, g: int, p0: Floats, p1: Floats
+) -> float:
+    """Write the ends of one filament; the share of the current that it has."""
+    if leg[IS_ROUND] > 0.0:
+        a = leg[HALF_A] * DISC_PLACES[rule[0], f, 0]
+        b = leg[HALF_A] * DISC_PLACES[rule[0], f, 1]
+        weight = DISC_WEIGHTS[rule[0], f]
+    else:
+        a = leg[HALF_A] * LINE_NODES[rule[0], f]
+        b = leg[HALF_B] * LINE_NODES[rule[1], g]
+        weight = LINE_WEIGHTS[rule[0], f] * LINE_WEIGHTS[rule[1], g]
+    for x in range(3):
+        p0[x] = leg[x] + a * leg[AXES + x] + b * leg[AXES + 6 + x]
+        p1[x] = leg[3 + x] + a * leg[AXES + 3 + x] + b * leg[AXES + 9 + x]
+    return float(weight)
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
 def _add_leg(
-    leg: Floats,
-    rule: Integers,
-    centre: Floats,
-    frame: Floats,
-    reach: float,
-    out: Floats,
-) -> tuple[float, float, int]:
-    """Add a leg's filaments; their bounds of third and second derivatives."""
+    leg: Floats, rule: Integers, centre: Floats, frame: Floats, out: Floats
+) -> int:
+    """Add the expansions of a leg's filaments; how many there are."""
     p0, p1 = np.empty(3), np.empty(3)
-    third = second = 0.0
-    is_round = leg[IS_ROUND] > 0.0
-    across = 1 if is_round else LINE_COUNTS[rule[1]]
-    along = DISC_COUNTS[rule[0]] if is_round else LINE_COUNTS[rule[0]]
+    along, across = _counts(leg, rule)
     for f in range(along):
         for g in range(across):
-            if is_round:
-                a = leg[HALF_A] * DISC_PLACES[rule[0], f, 0]
-                b = leg[HALF_A] * DISC_PLACES[rule[0], f, 1]
-                weight = DISC_WEIGHTS[rule[0], f]
-            else:
-                a = leg[HALF_A] * LINE_NODES[rule[0], f]
-                b = leg[HALF_B] * LINE_NODES[rule[1], g]
-                weight = LINE_WEIGHTS[rule[0], f] * LINE_WEIGHTS[rule[1], g]
-            for x in range(3):
-                p0[x] = leg[x] + a * leg[AXES + x] + b * leg[AXES + 6 + x]
-                p1[x] = leg[3 + x] + a * leg[AXES + 3 + x] + b * leg[AXES + 9 + x]
+            weight = _filament(leg, rule, f, g, p0, p1)
             add_segment(p0, p1, centre, frame, weight, out)
+    return int(along * across)
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def _leg_bounds(
+    leg: Floats, rule: Integers, centre: Floats, reach: float
+) -> tuple[float, float]:
+    """Bounds of third and second derivatives of a leg's filaments together."""
+    p0, p1 = np.empty(3), np.empty(3)
+    along, across = _counts(leg, rule)
+    third = second = 0.0
+    for f in range(along):
+        for g in range(across):
+            weight = _filament(leg, rule, f, g, p0, p1)
             bounds = derivative_bounds(p0, p1, centre, reach)
             third += weight * bounds[0]
             second += weight * bounds[1]
-    return third, second, along * across
+    return third, second

@@ -166,6 +166,26 @@ def derivative_bounds(
     third, second : float
         [T/A/m³], [T/A/m²]
     """
+    fourth, fifth, _ = power_integrals(p0, p1, centre, reach)
+    return 24.0 * MU0_OVER_4PI * fifth, 6.0 * MU0_OVER_4PI * fourth
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def power_integrals(
+    p0: Floats, p1: Floats, centre: Floats, reach: float
+) -> tuple[float, float, float]:
+    """Bounds of ∫ dl / rⁿ along the segment for all places in a ball, n = 4, 5, 6.
+
+    Parameters
+    ----------
+    reach : float
+        Radius of the ball; where it touches the segment all are infinite. [m]
+
+    Returns
+    -------
+    fourth, fifth, sixth : float
+        [1/m³], [1/m⁴], [1/m⁵]
+    """
     lx, ly, lz = p1[0] - p0[0], p1[1] - p0[1], p1[2] - p0[2]
     length = np.sqrt(lx * lx + ly * ly + lz * lz)
     ax, ay, az = centre[0] - p0[0], centre[1] - p0[1], centre[2] - p0[2]
@@ -175,13 +195,17 @@ def derivative_bounds(
     dx, dy, dz = ax - part * lx, ay - part * ly, az - part * lz
     d = np.sqrt(dx * dx + dy * dy + dz * dz) - reach
     if d <= 0.0:
-        return np.inf, np.inf
+        return np.inf, np.inf, np.inf
     # From the nearest place of the segment r² is at least d² + l², wherever in the
     # ball the point is; that place moves along the segment by the reach at most.
     before = min(length, max(0.0, along + reach))
     behind = min(length, max(0.0, length - along + reach))
     t = before / np.sqrt(d * d + before * before)
     u = behind / np.sqrt(d * d + behind * behind)
-    fifth = (t - t * t * t / 3.0 + u - u * u * u / 3.0) / (d * d * d * d)
-    fourth = min(0.5 * np.pi, (before + behind) / d) / (d * d * d)
-    return 24.0 * MU0_OVER_4PI * fifth, 6.0 * MU0_OVER_4PI * fourth
+    cube, i = d * d * d, 1.0 / d
+    over = before + behind
+    fourth = min(0.5 * np.pi, over * i) / cube
+    fifth = (t - t * t * t / 3.0 + u - u * u * u / 3.0) * i / cube
+    # ∫ dl / (d² + l²)³ over the whole line is 3π/8 d⁻⁵, and at most l / d⁶.
+    sixth = min(0.375 * np.pi, over * i, fifth * cube * d) * i * i / cube
+    return fourth, fifth, sixth
