@@ -9,11 +9,14 @@ from PySide6.QtCore import QObject
 from PySide6.QtWidgets import QFileDialog, QWidget
 
 from app.document import Document
+from app.elevation_plane import plane_text, upright_of
 from app.jobs import Jobs, Work
 from app.map_request import heights_of
 from app.messages import Messages
 from app.variant_acts import shown_text
 from app.view_state import ViewState
+from engine.circuits import LoadCase
+from engine.elevation import Upright
 from engine.errors import Cancelled, Progress
 from engine.layout import Layout
 from engine.picture import OffsetLines
@@ -71,11 +74,14 @@ class Exports(QObject):
         self._start("Writing the report", work, told)
 
     def map(self, path: Path) -> None:
-        """Write the map as the view shows it: its load case, its heights."""
+        """Write the map as the view shows it: its load case, its heights or plane."""
         layout, look = self._document.committed, self._view_state.look
         heights, _ = heights_of(layout, look)
         case = next((c for c in layout.cases if c.id == look.case), layout.cases[0])
-
+        upright = upright_of(layout, look, look.view)
+        if upright is not None:
+            self._upright_map(layout, case, upright, path)
+            return
         shown = shown_text(self._document)
         offsets = self.offsets(layout, heights)
 
@@ -85,6 +91,23 @@ class Exports(QObject):
             write_map(
                 layout, case, heights, path, shown=shown, offsets=offsets,
                 cancelled=cancelled, progress=progress,
+            )  # fmt: skip
+
+        self._start("Exporting the map", work, f"{path} was written.")
+
+    def _upright_map(
+        self, layout: Layout, case: LoadCase, upright: Upright, path: Path
+    ) -> None:
+        """Write the map on the upright plane of the elevation in front."""
+        look, shown = self._view_state.look, shown_text(self._document)
+        name = plane_text(layout, look, look.view)
+
+        def work(cancelled: Cancelled, progress: Progress) -> None:
+            from engine.commands.upright_map import write_upright_map
+
+            write_upright_map(
+                layout, case, upright, name, path, shown=shown, cancelled=cancelled,
+                progress=progress,
             )  # fmt: skip
 
         self._start("Exporting the map", work, f"{path} was written.")

@@ -10,6 +10,7 @@ from itertools import pairwise
 from pathlib import Path
 
 import numpy as np
+import numpy.typing as npt
 from PIL import Image, ImageDraw, ImageFont
 from PIL.PngImagePlugin import PngInfo
 
@@ -27,6 +28,8 @@ from engine.picture.marks import WHITE, Points
 from engine.printed_text import BOLD, REGULAR, one_line
 from engine.units import FLUX_DENSITY_UNITS, LENGTH_UNITS
 from engine.written_file import write_file
+
+Floats = npt.NDArray[np.float64]
 
 DOTS_PER_INCH = 160
 
@@ -80,18 +83,36 @@ def write_csv(
 def grid_csv(subjects: Sequence[MapSubject], heights: Iterable[float]) -> str:
     """The values of maps as CSV text, see `write_csv`."""
     first = subjects[0]
+    plan = np.stack(np.meshgrid(first.xs, first.ys), axis=-1).reshape(-1, 2)
+    levels = np.fromiter(heights, np.float64, len(plan))
+    return _places_csv(subjects, np.column_stack([plan, levels]))
+
+
+def write_plane_csv(
+    path: Path | str, subjects: Sequence[MapSubject], places: Floats
+) -> None:
+    """Write the values of maps on one plane in space, a point a row.
+
+    Parameters and errors as `write_csv`, but for the (ny · nx, 3) `places` of the
+    points, row by row. [m]
+    """
+    write_file(path, _places_csv(subjects, places).encode("utf-8"))
+
+
+def _places_csv(subjects: Sequence[MapSubject], places: Floats) -> str:
+    """The values of maps at (ny · nx, 3) places as CSV text."""
+    first = subjects[0]
     unit, length = first.unit, first.length_unit
     metres = LENGTH_UNITS[length]
     file = io.StringIO()
     writer = csv.writer(file, lineterminator="\n")
     heads = [f"{axis} [{length}]" for axis in "xyz"]
     writer.writerow([*heads, *(f"B {s.quantity} [{unit}]" for s in subjects)])
-    z = iter(heights)
-    for row, y in enumerate(first.ys):
-        for column, x in enumerate(first.xs):
-            place = [f"{v / metres + 0.0:.9g}" for v in (x, y, next(z))]
-            values = [_cell(subject, row, column) for subject in subjects]
-            writer.writerow([*place, *values])
+    n = len(first.xs)
+    for k, place in enumerate(places.tolist()):
+        figures = [f"{v / metres + 0.0:.9g}" for v in place]
+        values = [_cell(subject, k // n, k % n) for subject in subjects]
+        writer.writerow([*figures, *values])
     return file.getvalue()
 
 

@@ -114,6 +114,7 @@ def map_picture(
         arranged.scale,
         length_unit=subject.length_unit,
         north=subject.north,
+        names=subject.names,
     )
     if arranged.legend_under:
         draw_legend_under(picture, subject, LEFT, sheet.bottom - BOTTOM)

@@ -84,6 +84,8 @@ class MapSubject:
         Where on plan the largest value of a zone was found; drawn as a ring. [m]
     offsets : OffsetLines or None
         Drawn over everything, with their dimension.
+    names : pair of str
+        What the axes to the right and upwards stand for, as `draw_axes` takes them.
     """
 
     xs: Floats
@@ -103,6 +105,7 @@ class MapSubject:
     north: float | None = None
     largest: tuple[float, float] | None = None
     offsets: OffsetLines | None = None
+    names: tuple[str, str] = ("x", "y")
 
     def world(self) -> Box:
         """Left, bottom, right, top of the grid with half a step around it. [m]"""

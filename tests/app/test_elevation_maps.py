@@ -325,3 +325,12 @@ def test_the_two_elevations_keep_planes_of_their_own(window):
     assert upright_of(layout, look, "Looking +y").depth == 1.0
     assert upright_of(layout, look, "Looking +y").sight is LOOKING_Y
     assert upright_of(layout, look, "Looking +x").depth == 2.0
+
+
+def test_the_exported_map_is_that_of_the_elevation_in_front(window, qtbot, tmp_path):
+    window.drawings.show_view("Looking +x")
+    window.drawings.planes.put("Looking +x", 4.1)
+    with qtbot.waitSignal(window.jobs.ended, timeout=60_000):
+        window.exports.map(tmp_path / "map.svg")
+    text = (tmp_path / "map.svg").read_text(encoding="utf-8")
+    assert "vertical plane x 4.10 m" in text
