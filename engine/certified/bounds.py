@@ -15,7 +15,7 @@ from engine.zone_search import Found
 #: How much a bound may exceed the value found, unless somebody says otherwise.
 TOLERANCE = 0.01
 
-#: Work that one region may take, in segments; a core does some 20 million a second,
+#: Work that one region may take, in segments; a core does some 5 million a second,
 #: and a box counts as 2000 besides.
 MOST_WORK = 200_000_000
 
