@@ -33,11 +33,39 @@ class CyclePlace:
 
 @dataclass(frozen=True)
 class CycleRequest:
-    """What is asked: one place in one load case."""
+    """What is asked: one place in one load case.
+
+    `held` is the layout whose values stand beside, as before.
+    """
 
     layout: Layout
     case: str
     place: CyclePlace
+    held: Layout | None = None
+
+
+@dataclass(frozen=True, eq=False)
+class Cycle:
+    """The answer; `before` is that of the layout that is held, where it has one."""
+
+    request: CycleRequest
+    view: CycleView
+    before: CycleView | None = None
+
+
+def with_held(request: CycleRequest, _cancelled: object = None) -> Cycle:
+    """As `cycle_at`, now and in the layout that is held; errors the same.
+
+    One place is quick: a drag keeps up by finishing it.
+    """
+    view, held = cycle_at(request), request.held
+    if held is None or held is request.layout:
+        return Cycle(request, view)
+    place = at_place(held, request.place)
+    try:
+        return Cycle(request, view, cycle_at(CycleRequest(held, request.case, place)))
+    except UserError:
+        return Cycle(request, view)
 
 
 def cycle_at(request: CycleRequest) -> CycleView:
@@ -113,16 +141,25 @@ def flux_text(tesla: float, unit: str) -> str:
     return f"{significant(in_unit(tesla, unit))} {unit}"
 
 
-def summary_text(layout: Layout, view: CycleView) -> str:
-    """RMS and peak of the whole, as values or as bounds with their reasons."""
+def summary_text(
+    layout: Layout, view: CycleView, before: CycleView | None = None
+) -> str:
+    """RMS and peak of the whole, as values or as bounds with their reasons.
+
+    `before`: what they were, where they are held.
+    """
     unit = layout.settings.flux_density_unit
-    parts = []
-    for name, value, reason in (
-        ("RMS", view.rms, view.rms_reason),
-        ("peak", view.peak, view.peak_reason),
-    ):
-        text = f"{name} {'at most ' if reason else ''}{flux_text(value, unit)}"
-        parts.append(text)
+
+    def told(value: float, reason: str) -> str:
+        return f"{'at most ' if reason else ''}{flux_text(value, unit)}"
+
+    parts = [
+        f"RMS {told(view.rms, view.rms_reason)}",
+        f"peak {told(view.peak, view.peak_reason)}",
+    ]
+    if before is not None:
+        parts[0] += f", was {told(before.rms, before.rms_reason)}"
+        parts[1] += f", was {told(before.peak, before.peak_reason)}"
     reasons = sorted({r for r in (view.rms_reason, view.peak_reason) if r})
     if reasons:
         parts.append("a bound, because " + "; ".join(reasons))

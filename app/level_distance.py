@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from shapely.geometry import Polygon
@@ -64,7 +64,10 @@ class Target:
 
 @dataclass(frozen=True)
 class DistanceRequest:
-    """What is asked; `heights` above the datum. [m]"""
+    """What is asked; `heights` above the datum. [m]
+
+    `held` is the layout whose distance stands beside, as before.
+    """
 
     layout: Layout
     case: str
@@ -72,6 +75,7 @@ class DistanceRequest:
     target: Target | None
     heights: tuple[float, ...]
     heights_name: str = ""
+    held: Layout | None = None
 
 
 @dataclass(frozen=True, eq=False)
@@ -87,6 +91,8 @@ class Reached:
         On the upright planes through `through`, where the distance ends.
     measured_from : points
         The target on plan. [m]
+    before : LevelDistance or None
+        Of the layout that is held.
     """
 
     request: DistanceRequest
@@ -96,6 +102,7 @@ class Reached:
     elevations: tuple[tuple[Sight, LevelLines], ...]
     through: Point
     measured_from: tuple[Point, ...] = ()
+    before: LevelDistance | None = None
 
 
 def targets(layout: Layout) -> tuple[Target, ...]:
@@ -179,6 +186,21 @@ def reached(request: DistanceRequest, cancelled: Cancelled | None = None) -> Rea
         for sight, plane in _upright(found, fields, through)
     )
     return Reached(request, level, found, distance, elevations, through, source)
+
+
+def with_held(request: DistanceRequest, cancelled: Cancelled | None = None) -> Reached:
+    """As `reached`, with the distance in the layout that is held, where it has one.
+
+    Errors as `reached`.
+    """
+    answer = reached(request, cancelled)
+    if request.held is None or request.held is request.layout:
+        return answer
+    try:
+        before = reached(replace(request, layout=request.held, held=None), cancelled)
+    except UserError:
+        return answer
+    return replace(answer, before=before.distance)
 
 
 def _extent(fields: CaseFields) -> Extent:

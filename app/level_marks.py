@@ -131,6 +131,10 @@ def told(answer: Reached) -> str:
     parts = []
     if answer.distance is not None:
         largest = distance_text(answer.distance, unit)
+        if answer.before is not None:
+            rounded = round(answer.before.distance, 3)
+            most = "at least " if answer.before.is_cut else ""
+            largest += f", was {most}{length_text(rounded, unit)}"
         parts.append(f"{title} reaches {largest} ({where})")
     elif answer.request.target is not None:
         parts.append(f"{title} does not reach beyond {answer.request.target.title}")

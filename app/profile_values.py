@@ -55,12 +55,15 @@ class ProfileRequest:
         Ids, the one shown first.
     heights : tuple of float
         Levels above the datum; none: as the line is drawn. [m]
+    held : Layout or None
+        Whose curves stand beside, as before.
     """
 
     layout: Layout
     profile: str
     cases: tuple[str, ...]
     heights: tuple[float, ...] = ()
+    held: Layout | None = None
 
 
 @dataclass(frozen=True, eq=False)
@@ -115,6 +118,8 @@ class Profiled:
     fall_offs : by what r is measured from, a result for every curve and kind
     reasons : tuple of str
         Why load cases have no curve.
+    before : Profiled or None
+        Of the layout that is held.
     """
 
     request: ProfileRequest
@@ -126,6 +131,7 @@ class Profiled:
     fall_offs: Mapping[str, Mapping[tuple[int, Kind], FallOff | NoFallOff]]
     hands: tuple[HandPlace, ...]
     reasons: tuple[str, ...]
+    before: Profiled | None = None
 
 
 def profile_of(layout: Layout, id: str) -> Profile | None:
@@ -177,6 +183,21 @@ def profiled(request: ProfileRequest, cancelled: Cancelled | None = None) -> Pro
         _level_lines(found, levels, fields.cases),
         _fall_offs(loaded, found, kinds), _hands(loaded, found, kinds[0]), reasons,
     )  # fmt: skip
+
+
+def with_held(request: ProfileRequest, cancelled: Cancelled | None = None) -> Profiled:
+    """As `profiled`, with that of the layout that is held beside it, where it has one.
+
+    Errors as `profiled`.
+    """
+    done = profiled(request, cancelled)
+    if request.held is None or request.held is request.layout:
+        return done
+    try:
+        before = profiled(replace(request, layout=request.held, held=None), cancelled)
+    except UserError:
+        return done
+    return replace(done, before=before)
 
 
 def _kinds(cases: tuple[CaseCurrents, ...]) -> tuple[Kind, ...]:

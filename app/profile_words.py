@@ -10,8 +10,8 @@ from engine.fall_off import FallOff
 from engine.hand_formulas import NoHandFormula
 from engine.levels import Kind
 from engine.printed_text import one_line
-from engine.profile_table import csv_text, profile_table
-from engine.profiles import ProfileCurve
+from engine.profile_table import ProfileTable, csv_text, profile_table
+from engine.profiles import KINDS, ProfileCurve
 from engine.units import (
     LENGTH_UNITS,
     flux_density_text,
@@ -97,6 +97,26 @@ def crossing_texts(done: Profiled, kind: Kind) -> tuple[str, ...]:
     return tuple(made)
 
 
+def held_text(done: Profiled, kind: Kind) -> str:
+    """What the first curve and the crossings were, where they are held as before."""
+    before = done.before
+    if before is None or kind not in before.kinds:
+        return ""
+    told = [*extremum_texts(before, kind), *crossing_texts(before, kind)]
+    return "\n".join(
+        f"Was: {text}" if not text[:1].isspace() else text for text in told
+    )
+
+
+def _held_curve(done: Profiled, curve: ProfileCurve) -> ProfileCurve | None:
+    """The curve of the same load case and height in the layout that is held."""
+    if done.before is None:
+        return None
+    same = (curve.case, curve.height)
+    curves = done.before.found.curves
+    return next((c for c in curves if (c.case, c.height) == same), None)
+
+
 def fall_off_text(done: Profiled, measured_from: str, kind: Kind) -> str:
     """The fall-off of the first curve, in one sentence."""
     found = done.fall_offs.get(measured_from, {}).get((0, kind))
@@ -171,6 +191,10 @@ def marked_text(done: Profiled, kind: Kind, s: float) -> str:
     for curve in done.found.curves:
         value = value_at(done, curve, kind, s)
         text = "no value" if value is None else flux_density_text(value, unit)
+        held = _held_curve(done, curve)
+        if done.before is not None and held is not None:
+            was = value_at(done.before, held, kind, s)
+            text += "" if was is None else f", was {flux_density_text(was, unit)}"
         parts.append(f"{curve_text(done, curve)}: {text}")
     where = distance_text(s, layout.settings.length_unit)
     return f"At {where} · " + " · ".join(parts)
@@ -213,17 +237,38 @@ def level_texts(done: Profiled, kind: Kind) -> tuple[str, ...]:
     return tuple(made.values())
 
 
+def whole_table(done: Profiled) -> ProfileTable:
+    """All curves, then those of the layout that is held, at the same distances."""
+    settings = done.request.layout.settings
+    unit = settings.flux_density_unit
+    table = profile_table(
+        done.found, done.names, unit=unit, length_unit=settings.length_unit
+    )
+    heads, columns = list(table.heads), []
+    for curve in done.found.curves:
+        held = _held_curve(done, curve)
+        for kind in KINDS:
+            if done.before is None or held is None or held.values(kind) is None:
+                continue
+            before = done.before
+            values = [value_at(before, held, kind, s) for s in done.found.along]
+            columns.append([None if v is None else in_unit(v, unit) for v in values])
+            where = one_line(curve_text(done, curve))
+            heads.append(f"B {kind}, {where}, as before [{unit}]")
+    rows = tuple(
+        (*row, *(column[k] for column in columns)) for k, row in enumerate(table.rows)
+    )
+    return ProfileTable(tuple(heads), rows)
+
+
 def table_texts(done: Profiled) -> tuple[tuple[str, ...], list[list[str]]]:
     """Heads and cells of the table as shown."""
-    settings = done.request.layout.settings
-    table = profile_table(
-        done.found, done.names,
-        unit=settings.flux_density_unit, length_unit=settings.length_unit,
-    )  # fmt: skip
+    table = whole_table(done)
     places = sum(
         head.startswith(("distance", "x [", "y [", "z [")) for head in table.heads
     )
-    digits = {"m": 3, "mm": 0, "ft": 3, "in": 2}[settings.length_unit]
+    length_unit = done.request.layout.settings.length_unit
+    digits = {"m": 3, "mm": 0, "ft": 3, "in": 2}[length_unit]
     rows = [
         [
             "–" if v is None else f"{v:.{digits}f}" if k < places else significant(v)
@@ -236,10 +281,5 @@ def table_texts(done: Profiled) -> tuple[tuple[str, ...], list[list[str]]]:
 
 def profile_csv(done: Profiled, caption: str) -> str:
     """The caption, then the table with full figures."""
-    settings = done.request.layout.settings
-    table = profile_table(
-        done.found, done.names,
-        unit=settings.flux_density_unit, length_unit=settings.length_unit,
-    )  # fmt: skip
     quoted = one_line(caption).replace('"', '""')
-    return f'"{quoted}"\n' + csv_text(table)
+    return f'"{quoted}"\n' + csv_text(whole_table(done))

@@ -114,7 +114,8 @@ class ViewPages(QObject):
     def hold(self, on: bool) -> None:
         """Let present values stand beside the coming ones, wherever values stand."""
         self._window.readout.hold(on)
-        for name in ("variants", "uncertainty"):
+        self.why.hold(on)
+        for name in ("cycle", "variants", "uncertainty"):
             # What is held is what a page would show now: it has to be there for that.
             if on or name in vars(self):
                 getattr(self, name).hold(on)

@@ -147,6 +147,11 @@ class WhyPages(QObject):
         write_file(path, text.encode("utf-8"))
         window.messages.inform(f"{path} was written.")
 
+    def hold(self, on: bool) -> None:
+        """Let present values stand beside the coming ones."""
+        for part in (self.profile, self.why, self.distance):
+            part.hold(on)
+
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self._window.drawings.plan.viewport().removeEventFilter(self)

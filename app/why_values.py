@@ -5,7 +5,7 @@ from __future__ import annotations
 import csv
 import io
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -50,12 +50,16 @@ class WhyPlace:
 
 @dataclass(frozen=True)
 class WhyRequest:
-    """What is asked: one place in one load case, AC or DC (empty: what flows)."""
+    """What is asked: one place in one load case, AC or DC (empty: what flows).
+
+    `held` is the layout whose value stands beside, as before.
+    """
 
     layout: Layout
     case: str
     place: WhyPlace
     kind: str = ""
+    held: Layout | None = None
 
 
 @dataclass(frozen=True)
@@ -70,7 +74,10 @@ class LevelFactor:
 
 @dataclass(frozen=True, eq=False)
 class Why:
-    """The answer; `factors` are of the levels that count at the place."""
+    """The answer; `factors` are of the levels that count at the place.
+
+    `before` is that of the layout that is held, in the same kind of field.
+    """
 
     request: WhyRequest
     shares: PlaceShares
@@ -79,6 +86,7 @@ class Why:
     factors: tuple[LevelFactor, ...]
     names: Mapping[str, str]
     measured: float | None
+    before: Why | None = None
 
 
 def why_at(request: WhyRequest, cancelled: Cancelled | None = None) -> Why:
@@ -123,6 +131,34 @@ def why_at(request: WhyRequest, cancelled: Cancelled | None = None) -> Why:
         {item.id: item.title for item in (*layout.items(), *layout.cases)},
         _measured(layout, request.place, kind, kinds),
     )
+
+
+def with_held(request: WhyRequest, cancelled: Cancelled | None = None) -> Why:
+    """As `why_at`, with that of the layout that is held beside it, where it has one.
+
+    A receptor's value was where the receptor was. Errors as `why_at`.
+    """
+    why = why_at(request, cancelled)
+    held = request.held
+    if held is None or held is request.layout:
+        return why
+    kind = why.shares.kind
+    place = place_now(held, request.place)
+    try:
+        before = why_at(
+            replace(request, layout=held, place=place, kind=kind, held=None), cancelled
+        )
+    except UserError:
+        return why
+    return replace(why, before=before) if before.shares.kind == kind else why
+
+
+def share_before(why: Why, circuits: tuple[str, ...]) -> float | None:
+    """What the same circuits' share was, where it is held as before. [T]"""
+    if why.before is None:
+        return None
+    shares = why.before.shares.shares
+    return next((s.share for s in shares if s.circuits == circuits), None)
 
 
 def _levels(layout: Layout, place: WhyPlace) -> list[ReferenceLevel]:
@@ -206,7 +242,8 @@ def head_text(why: Why) -> str:
     """The value with what limits it: bound, near field, levels, measured."""
     shares, layout = why.shares, why.request.layout
     unit = layout.settings.flux_density_unit
-    parts = [f"{shares.kind} {value_text(why)}"]
+    was = "" if why.before is None else f", was {value_text(why.before)}"
+    parts = [f"{shares.kind} {value_text(why)}{was}"]
     if shares.is_bound:
         parts.append(
             f"a bound, because {shares.bound_reason}; shares are of the angles as "

@@ -22,8 +22,8 @@ from app.level_distance import (
     Target,
     factors,
     levels_of,
-    reached,
     targets,
+    with_held,
 )
 from app.level_marks import offset_lines, told
 from app.map_request import case_of, heights_of
@@ -63,6 +63,7 @@ class LevelBar(QWidget):
         self._document, self._view_state = document, view_state
         self._target: Target | None = None
         self._margins: Margins | None = None
+        self._held: Layout | None = None
         self.answer: Reached | None = None
         self._soon = QTimer(self, singleShot=True, interval=0)
         self._soon.timeout.connect(self._ask)
@@ -96,7 +97,7 @@ class LevelBar(QWidget):
         box.setSpacing(STEP)
         box.addLayout(row)
         box.addWidget(self.words)
-        self._answers = Answers("distance to the level", reached, self)
+        self._answers = Answers("distance to the level", with_held, self)
         self._answers.ready.connect(self._show)
         document.changed.connect(self._on_changed)
         document.selection_changed.connect(self._on_selection)
@@ -117,6 +118,11 @@ class LevelBar(QWidget):
         """Take bar and lines away."""
         self.hide()
         self.closed.emit()
+
+    def hold(self, on: bool) -> None:
+        """Let the distance in the layout as it is stand beside the coming ones."""
+        self._held = self._document.committed if on else None
+        self._on_changed()
 
     def set_margins(self, margins: Margins) -> None:
         """Take the ratios at zones and receptors."""
@@ -194,8 +200,9 @@ class LevelBar(QWidget):
         look = self._view_state.look
         heights, name = heights_of(layout, look)
         request = DistanceRequest(
-            layout, case_of(layout, look.case).id, level, self._target, heights, name
-        )
+            layout, case_of(layout, look.case).id, level, self._target, heights, name,
+            self._held,
+        )  # fmt: skip
         if self._answers.ask(request):
             self.state.setText("out of date" if self.answer else "being computed …")
             if self.answer is not None:

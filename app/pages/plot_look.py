@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
+import numpy as np
 import pyqtgraph as pg
 from PySide6.QtGui import QFont, QPen
 
 from app.theme import SMALL, Theme
 from app.views.inks import shade
+from engine.levels import Kind
+from engine.profiles import ProfileCurve
 
 #: Load cases by colour, apart in lightness too; heights by dashes.
 _COLOURS = {
@@ -28,6 +32,32 @@ def curve_pen(colour: int, dash: int, theme: Theme) -> QPen:
     if dashes:
         made.setDashPattern(list(dashes))
     return made
+
+
+def as_before(pen: QPen) -> QPen:
+    """The pen of a curve as it was: thin and pale."""
+    made = QPen(pen)
+    colour = pen.color()
+    colour.setAlphaF(0.55)
+    made.setColor(colour)
+    made.setWidthF(1.0)
+    return made
+
+
+def value_range(
+    curves: Sequence[ProfileCurve], kind: Kind, decades: float | None
+) -> tuple[float, float]:
+    """Smallest and largest value that counts; at most so many decades apart. [T]"""
+    found = [
+        v[v > 0] for c in curves if (v := np.asarray(c.values(kind))[~c.mask]).size
+    ]
+    values = np.concatenate(found) if found else np.zeros(0)
+    if not len(values):
+        return 1e-9, 1e-6
+    low, high = float(values.min()), float(values.max())
+    if decades is not None:
+        low = max(low, high * 10**-decades)
+    return low, high
 
 
 def dress_axis(axis: pg.AxisItem, words: str, theme: Theme) -> None:
@@ -70,7 +100,8 @@ def plain_label(text: str) -> str:
 
 def log_ticks(low: float, high: float) -> list[list[tuple[float, str]]]:
     """Ticks at 1, 2 and 5 of every decade, named; the other digits unnamed."""
-    major, minor = [], []
+    major: list[tuple[float, str]] = []
+    minor: list[tuple[float, str]] = []
     named = (1, 2, 5) if high - low < 3 else (1,)
     for decade in range(math.floor(low), math.ceil(high) + 1):
         for digit in range(1, 10):

@@ -116,10 +116,10 @@ class ProfileControls(QWidget):
         entries = [(case.id, case.title) for case in layout.cases]
         self.cases.set_entries(entries, self.cases_now)
         self.cases.setVisible(len(entries) > 1)
-        item = profile_of(layout, profile)
+        plotted = profile_of(layout, profile)
         heights = set(self.heights_now)
-        if item is not None:
-            heights |= set(level_heights(layout, item))
+        if plotted is not None:
+            heights |= set(level_heights(layout, plotted))
         unit = self._unit
         self.heights.set_entries(
             [(z, f"z {height_figures(z, unit)} {unit}") for z in sorted(heights)],

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 import numpy as np
-from PySide6.QtCore import QEvent, Qt, QTimer, Signal
+from PySide6.QtCore import QEvent, Qt, Signal
 from PySide6.QtGui import QHideEvent, QShowEvent
 from PySide6.QtWidgets import (
     QSplitter,
@@ -13,11 +13,10 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.answers import Answers
+from app.asking_page import AskingPage
 from app.document import Document
-from app.figures import FIGURE_KINDS, ask_figure, write_figure
+from app.figures import write_figure
 from app.messages import Messages
-from app.page import Page
 from app.pages.plain_table import PlainTable
 from app.pages.profile_controls import ProfileControls
 from app.pages.profile_plot import ProfilePlot
@@ -26,7 +25,7 @@ from app.profile_values import (
     Profiled,
     ProfileRequest,
     profile_of,
-    profiled,
+    with_held,
 )
 from app.profile_words import (
     caption_text,
@@ -35,6 +34,7 @@ from app.profile_words import (
     fall_off_text,
     hand_near,
     hand_text,
+    held_text,
     level_texts,
     marked_text,
     profile_csv,
@@ -43,6 +43,7 @@ from app.profile_words import (
 from app.theme import LIGHT, STEP, theme_for
 from app.variant_acts import with_shown
 from app.view_state import ViewState
+from engine.layout import Layout
 from engine.levels import Kind
 from engine.profile_sampling import Line
 
@@ -52,7 +53,7 @@ NONE_DRAWN = (
 )
 
 
-class ProfilePage(Page):
+class ProfilePage(AskingPage):
     """Follows document, selection and load case while it shows.
 
     Signals
@@ -66,19 +67,18 @@ class ProfilePage(Page):
     def __init__(
         self, document: Document, view_state: ViewState, messages: Messages
     ) -> None:
-        super().__init__("Profile")
-        self._document, self._view_state = document, view_state
-        self._messages = messages
+        super().__init__(
+            "Profile", document, messages,
+            computed="profile", work=with_held, file_name="profile.png",
+        )  # fmt: skip
+        self._view_state = view_state
         self.profile = ""
         self.done: Profiled | None = None
+        self._held: Layout | None = None
         self._build()
-        self._answers = Answers("profile", profiled, self)
-        self._answers.ready.connect(self._show)
-        self._soon = QTimer(self, singleShot=True, interval=0)
-        self._soon.timeout.connect(self._ask)
-        document.changed.connect(self._on_changed)
-        document.selection_changed.connect(self._on_selection)
-        view_state.changed.connect(self._on_look)
+        self._follow(document.changed)
+        self._follow(document.selection_changed, self._on_selection)
+        self._follow(view_state.changed, self._on_look)
         self.setFocusProxy(self.plot)
 
     # -- what is asked ------------------------------------------------------------
@@ -90,18 +90,14 @@ class ProfilePage(Page):
             self.plot.at = None
         self._soon.start()
 
-    @property
-    def is_idle(self) -> bool:
-        """Nothing is being computed or waits to be asked."""
-        return self._answers.is_idle and not self._soon.isActive()
+    def hold(self, on: bool) -> None:
+        """Let the curves of the layout as it is stand beside the coming ones."""
+        self._held = self._document.committed if on else None
+        self._on_changed()
 
-    def close_worker(self) -> None:
-        """Stop the thread, before the window goes."""
-        self._document.changed.disconnect(self._on_changed)
-        self._document.selection_changed.disconnect(self._on_selection)
-        self._view_state.changed.disconnect(self._on_look)
-        self._soon.stop()
-        self._answers.close()
+    @property
+    def shown(self) -> Profiled | None:
+        return self.done
 
     # -- building -----------------------------------------------------------------
 
@@ -111,8 +107,6 @@ class ProfilePage(Page):
         self.controls.restyled.connect(self._fill)
         self.controls.refused.connect(self._messages.warn)
         self.controls.export.clicked.connect(lambda _on=False: self.export())
-        self.state, self.reason = Words("", "warning"), Words("", "plain")
-        self.state.setWordWrap(False)
         self.put_beside_title(self.controls, self.state)
         self.column.addWidget(self.reason)
         self.plot = ProfilePlot()
@@ -141,12 +135,12 @@ class ProfilePage(Page):
         self.column.addWidget(self.body, 1)
         self.now = Words("")
         self.column.addWidget(self.now)
+        self._parts = (self.body, self.now)
 
     # -- events -------------------------------------------------------------------
 
     def showEvent(self, event: QShowEvent) -> None:
         self._on_selection(self._document.selection)
-        self._soon.start()
         super().showEvent(event)
 
     def hideEvent(self, event: QHideEvent) -> None:
@@ -157,10 +151,6 @@ class ProfilePage(Page):
         super().changeEvent(event)
         if event.type() == QEvent.Type.PaletteChange and hasattr(self, "now"):
             self._fill()
-
-    def _on_changed(self, *_: object) -> None:
-        if self.isVisible():
-            self._soon.start()
 
     def _on_look(self, *_: object) -> None:
         self.controls.forget_cases()
@@ -185,15 +175,12 @@ class ProfilePage(Page):
             self._tell(NONE_DRAWN)
             return
         request = ProfileRequest(
-            layout, self.profile, self.controls.cases_now, self.controls.heights_now
-        )
-        asked = self._answers.ask(request)
-        if self.done is None and asked:
-            self._tell("The field along the line is being computed …")
-        elif asked:
-            self.state.setText("out of date")
+            layout, self.profile, self.controls.cases_now,
+            self.controls.heights_now, self._held,
+        )  # fmt: skip
+        self._put(request, "The field along the line is being computed …")
 
-    def _show(self, request: ProfileRequest, answer: object) -> None:
+    def _show(self, request: object, answer: object) -> None:
         if request != self._answers.asked and self._document.is_previewing is False:
             return
         if not isinstance(answer, Profiled):
@@ -214,13 +201,8 @@ class ProfilePage(Page):
         return self.controls.kind(self.done.kinds if self.done else ("AC",))
 
     def _tell(self, sentence: str) -> None:
-        """Say why there is nothing to see."""
-        self.reason.setText(sentence)
-        self.reason.setVisible(bool(sentence))
-        self.body.setVisible(not sentence)
-        self.now.setVisible(not sentence)
+        super()._tell(sentence)
         if sentence:
-            self.state.setText("")
             self.pointed.emit(None)
 
     def _fill(self) -> None:
@@ -240,6 +222,7 @@ class ProfilePage(Page):
         parts = [
             *extremum_texts(done, kind),
             "\n".join(levels) or "No reference level counts along this line.",
+            held_text(done, kind),
             fall_off_text(done, self.controls.measured_from_now, kind),
             self._hand(done, kind),
             *(f"No curve for {reason}" for reason in done.reasons),
@@ -290,17 +273,6 @@ class ProfilePage(Page):
         return (x, y, z if height is None else height)
 
     # -- exporting ----------------------------------------------------------------
-
-    def export(self) -> None:
-        """Ask where to, and write what is shown."""
-        if self.done is None:
-            self._messages.warn("There is no profile to export yet.")
-            return
-        path = ask_figure(self, "Export the profile", "profile.png", FIGURE_KINDS)
-        if path is not None:
-            with self._messages.shown():
-                self.write(path)
-                self._messages.inform(f"{path} was written.")
 
     def write(self, path: Path) -> None:
         """Write the plot as PNG or SVG, light as on paper, or its table as CSV.

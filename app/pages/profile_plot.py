@@ -19,12 +19,14 @@ from PySide6.QtGui import (
 )
 
 from app.pages.plot_look import (
+    as_before,
     curve_pen,
     dress_axis,
     log_ticks,
     plain_label,
     rings,
     text_item,
+    value_range,
 )
 from app.profile_values import LevelLine, Profiled, value_at
 from app.profile_words import (
@@ -36,7 +38,7 @@ from app.profile_words import (
 from app.theme import LIGHT, SMALL, Theme
 from app.views.inks import shade
 from engine.levels import Kind
-from engine.profiles import ProfileCurve
+from engine.profiles import FieldProfile, ProfileCurve
 from engine.units import FLUX_DENSITY_UNITS, LENGTH_UNITS
 
 Floats = npt.NDArray[np.float64]
@@ -93,11 +95,15 @@ class ProfilePlot(pg.PlotWidget):
         self._named = []
         self._dress()
         curves = [c for c in done.found.curves if c.values(kind) is not None]
-        low, high = self._range(curves)
+        low, high = value_range(curves, kind, _DECADES if self.log else None)
         for line in self._in_sight(low, high):
             self._draw_level(line)
+        if done.before is not None:
+            for curve in done.before.found.curves:
+                if curve.values(kind) is not None:
+                    self._draw_curve(curve, done.before.found)
         for curve in curves:
-            self._draw_curve(curve)
+            self._draw_curve(curve, done.found)
         self._draw_hands()
         self._draw_crossings(curves)
         self._draw_legend(curves)
@@ -172,22 +178,6 @@ class ProfilePlot(pg.PlotWidget):
         self.getAxis("left").setWidth(64)
         self.showGrid(x=True, y=True, alpha=0.14)
 
-    def _range(self, curves: list[ProfileCurve]) -> tuple[float, float]:
-        """Smallest and largest value that counts. [T]"""
-        found = [
-            v[v > 0]
-            for c in curves
-            if (v := np.asarray(c.values(self._kind))[~c.mask]).size
-        ]
-        values = np.concatenate(found) if found else np.zeros(0)
-        if not len(values):
-            return 1e-9, 1e-6
-        high = float(values.max())
-        low = float(values.min())
-        if self.log:
-            low = max(low, high * 10**-_DECADES)
-        return low, high
-
     def _in_sight(self, low: float, high: float) -> list[LevelLine]:
         """Levels that lie near any curve."""
         assert self.done is not None
@@ -229,20 +219,24 @@ class ProfilePlot(pg.PlotWidget):
 
     def _pen(self, curve: ProfileCurve) -> QPen:
         assert self.done is not None
-        cases = list(dict.fromkeys(c.case for c in self._curves))
-        heights = list(dict.fromkeys(c.height for c in self._curves))
+        cases = list(dict.fromkeys(c.case for c in (*self._curves, curve)))
+        heights = list(dict.fromkeys(c.height for c in (*self._curves, curve)))
         return curve_pen(
             cases.index(curve.case), heights.index(curve.height), self._theme
         )
 
-    def _draw_curve(self, curve: ProfileCurve) -> None:
+    def _draw_curve(self, curve: ProfileCurve, whole: FieldProfile) -> None:
+        """A curve of the profile, or of the one that is held: thin."""
         assert self.done is not None
         found = curve.values(self._kind)
         assert found is not None, "curves without values are not drawn"
         values = np.where(curve.mask, np.nan, found)
-        x = self.done.found.along / self._metres
-        item = self.plot(x, self._ys(values), pen=self._pen(curve), connect="finite")
-        item.setZValue(10)
+        pen, z = self._pen(curve), 10
+        if whole is not self.done.found:
+            pen, z = as_before(pen), 7
+        x = whole.along / self._metres
+        item = self.plot(x, self._ys(values), pen=pen, connect="finite")
+        item.setZValue(z)
 
     def _draw_level(self, line: LevelLine) -> None:
         assert self.done is not None
@@ -305,7 +299,7 @@ class ProfilePlot(pg.PlotWidget):
             plot.legend.scene().removeItem(plot.legend)
             plot.legend = None
         held = any(p.best for p in self.done.hands) and self._kind == self.done.kinds[0]
-        if len(curves) < 2 and not held:
+        if len(curves) < 2 and not held and self.done.before is None:
             return
         box = self.addLegend(
             offset=(-8, 6), labelTextColor=self._theme.text,
@@ -315,6 +309,9 @@ class ProfilePlot(pg.PlotWidget):
         for curve in curves:
             sample = pg.PlotDataItem(pen=self._pen(curve))
             box.addItem(sample, plain_label(short_curve_text(self.done, curve)))
+        if self.done.before is not None:
+            sample = pg.PlotDataItem(pen=as_before(self._pen(curves[0])))
+            box.addItem(sample, "as before")
         if held:
             box.addItem(rings([], [], self._theme), "hand formula")
 

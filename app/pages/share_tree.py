@@ -21,7 +21,14 @@ from PySide6.QtWidgets import (
 )
 
 from app.theme import STEP, theme_for
-from app.why_values import Why, circuits_text, percent, piece_text, signed
+from app.why_values import (
+    Why,
+    circuits_text,
+    percent,
+    piece_text,
+    share_before,
+    signed,
+)
 from engine.place_shares import FrequencyShare, PlaceShare
 
 _HEADS = (
@@ -32,8 +39,9 @@ _HEADS = (
     ("Without it", "RMS value of everything else"),
     ("Alone", "RMS value of this circuit alone"),
     ("Per ampere", "Field alone per ampere of its largest conductor current"),
+    ("Was", "Share in the layout that is held as before"),
 )
-_BAR, _ALONE = 1, 5
+_BAR, _ALONE, _PER, _WAS = 1, 5, 6, 7
 #: [logical pixels]
 _NARROW = 720
 _PART = Qt.ItemDataRole.UserRole
@@ -121,10 +129,13 @@ class ShareTree(QTreeWidget):
         self.setUniformRowHeights(True)
         header = self.header()
         header.setStretchLastSection(False)
-        for column, width in enumerate((180, 200, 88, 60, 88, 88, 104)):
+        for column, width in enumerate((180, 200, 88, 60, 88, 88, 104, 88)):
             header.resizeSection(column, width)
         header.setSectionResizeMode(_BAR, QHeaderView.ResizeMode.Stretch)
         header.setMinimumSectionSize(12 * STEP)
+        # Beside the share of now.
+        header.moveSection(_WAS, _BAR + 2)
+        self.setColumnHidden(_WAS, True)
 
     def show_why(self, why: Why) -> None:
         """Show other shares; what was opened stays open."""
@@ -150,7 +161,9 @@ class ShareTree(QTreeWidget):
         for share in shares.shares:
             line = self._line(circuits_text(why, share.circuits), share, total, unit)
             per = share.per_ampere
-            line.setText(6, "" if per is None else f"{signed(per, unit)}/A")
+            line.setText(_PER, "" if per is None else f"{signed(per, unit)}/A")
+            was = share_before(why, share.circuits)
+            line.setText(_WAS, "" if was is None else signed(was, unit))
             self.addTopLevelItem(line)
             if len(shares.shares[0].by_frequency) > 1 or len(share.by_frequency) > 1:
                 for part in share.by_frequency:
@@ -161,6 +174,9 @@ class ShareTree(QTreeWidget):
             line.setExpanded(line.text(0) in opened or (first and len(parts) <= 16))
         self._unclosed(why, total, unit)
         whole_line = QTreeWidgetItem(["All together", "", signed(total, unit), "100 %"])
+        if why.before is not None:
+            whole_line.setText(_WAS, signed(why.before.shares.total, unit))
+        self.setColumnHidden(_WAS, why.before is None)
         self._align(whole_line)
         font = self.font()
         font.setBold(True)

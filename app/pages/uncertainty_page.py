@@ -3,28 +3,29 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import Any
 
-from PySide6.QtCore import Qt, QTimer
-from PySide6.QtGui import QGuiApplication, QResizeEvent, QShowEvent
+from PySide6.QtCore import Qt
+from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QSplitter, QVBoxLayout, QWidget
 
-from app.answers import Answers
+from app.asking_page import AskingPage, on_paper
 from app.document import EVERYTHING, Document
-from app.figures import FIGURE_KINDS, ask_figure, write_figure
+from app.figures import write_figure
 from app.messages import Messages
-from app.page import Page
 from app.pages.budget_chart import BudgetChart
 from app.pages.profile_controls import choice
 from app.pages.tolerance_form import tolerance_groups
 from app.panels.form import Form
 from app.panels.panel import Words, button, scrolled
-from app.theme import LIGHT, STEP, qt_palette
+from app.theme import STEP
 from app.uncertainty_values import (
     Budgeted,
     BudgetMaker,
     BudgetRequest,
     budget_csv,
     head_text,
+    left_out_text,
     matters_text,
     place_name,
     places_of,
@@ -43,31 +44,28 @@ NO_PLACES = (
 )
 
 
-class UncertaintyPage(Page):
+class UncertaintyPage(AskingPage):
     """Follows document and selection while it shows; computes in a thread."""
 
     def __init__(
         self, document: Document, _view_state: object, messages: Messages
     ) -> None:
-        super().__init__("Uncertainty")
-        self._document, self._messages = document, messages
+        super().__init__(
+            "Uncertainty", document, messages, computed="budgets",
+            work=BudgetMaker().budgets, file_name="uncertainty.png",
+        )  # fmt: skip
         self.answer: Budgeted | None = None
         self.place = ""
         self._held: Budgeted | None = None
         self._build()
-        self._answers = Answers("budgets", BudgetMaker().budgets, self)
-        self._answers.ready.connect(self._show)
-        self._soon = QTimer(self, singleShot=True, interval=0)
-        self._soon.timeout.connect(self._ask)
-        document.changed.connect(self._on_changed)
-        document.settled.connect(self._on_settled)
-        document.selection_changed.connect(self._on_selection)
+        self._follow(document.changed, self._on_opened)
+        self._follow(document.settled)
+        self._follow(document.selection_changed, self._on_selection)
         self.setFocusProxy(self.places)
 
     @property
-    def is_idle(self) -> bool:
-        """Nothing is being computed or waits to be asked."""
-        return self._answers.is_idle and not self._soon.isActive()
+    def shown(self) -> Budget | None:
+        return self.budget
 
     @property
     def budget(self) -> Budget | None:
@@ -77,14 +75,6 @@ class UncertaintyPage(Page):
         found = self.answer.of(self.place)
         kind = self.kinds.currentText()
         return next((b for b in found if b.kind == kind), found[0] if found else None)
-
-    def close_worker(self) -> None:
-        """Stop the thread, before the window goes."""
-        self._document.changed.disconnect(self._on_changed)
-        self._document.settled.disconnect(self._on_settled)
-        self._document.selection_changed.disconnect(self._on_selection)
-        self._soon.stop()
-        self._answers.close()
 
     def hold(self, on: bool) -> None:
         """Let the present budgets stand beside the coming ones."""
@@ -122,11 +112,12 @@ class UncertaintyPage(Page):
             button("Export …", "As PNG, SVG or CSV, with its caption", self.export),
         ):  # fmt: skip
             row.addWidget(widget)
-        self.state = Words("", "warning")
-        self.state.setWordWrap(False)
         self.put_beside_title(controls, self.state)
         self.head, self.matters = Words("", "plain"), Words("", "plain")
-        self.sampled, self.used = Words(""), Words("")
+        self.sampled, self.used, self.left_out = Words(""), Words(""), Words("")
+        self._told = (
+            self.head, self.matters, self.sampled, self.used, self.left_out,
+        )  # fmt: skip
         font = self.head.font()
         font.setBold(True)
         self.head.setFont(font)
@@ -136,7 +127,7 @@ class UncertaintyPage(Page):
         box = QVBoxLayout(self._shown)
         box.setContentsMargins(0, 0, 0, 0)
         box.setSpacing(STEP)
-        for part in (self.head, self.matters, self.sampled, self.used):
+        for part in self._told:
             box.addWidget(part)
         ranked = scrolled(self.chart)
         ranked.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
@@ -156,10 +147,6 @@ class UncertaintyPage(Page):
 
     # -- events -------------------------------------------------------------------
 
-    def showEvent(self, event: QShowEvent) -> None:
-        self._soon.start()
-        super().showEvent(event)
-
     def resizeEvent(self, event: QResizeEvent) -> None:
         if (event.size().width() < NARROW) != (event.oldSize().width() < NARROW):
             self.tolerances.setChecked(event.size().width() >= NARROW)
@@ -172,13 +159,9 @@ class UncertaintyPage(Page):
         self._entered.setVisible(on)
         self._shown.setVisible(not on or self.width() >= NARROW)
 
-    def _on_changed(self, _layout: object, ids: object) -> None:
+    def _on_opened(self, _layout: object, ids: object) -> None:
         if ids == EVERYTHING:
             self.answer, self._held, self.place = None, None, ""
-
-    def _on_settled(self, _layout: object) -> None:
-        if self.isVisible():
-            self._soon.start()
 
     def _on_selection(self, ids: frozenset[str]) -> None:
         found = [p.id for p in places_of(self._document.layout) if p.id in ids]
@@ -212,7 +195,7 @@ class UncertaintyPage(Page):
             self.places.addItem(place_name(place), place.id)
         self.places.setCurrentIndex(self.places.findData(self.place))
 
-    def _show(self, request: BudgetRequest, answer: object) -> None:
+    def _show(self, request: Any, answer: object) -> None:
         if request.layout is not self._document.committed:
             return
         self.state.setText("")
@@ -237,7 +220,7 @@ class UncertaintyPage(Page):
         if chosen in kinds:
             self.kinds.setCurrentText(chosen)
         self.kinds.setVisible(len(kinds) > 1)
-        texts = ["", "", "", ""]
+        texts = [""] * len(self._told)
         layout = self._document.committed
         if self.answer is not None:
             layout = self.answer.request.layout
@@ -247,11 +230,11 @@ class UncertaintyPage(Page):
                     head_text(budget, layout, self._was(budget)),
                     matters_text(budget, layout),
                     sampled_text(budget, layout), used_text(layout, place),
+                    left_out_text(layout),
                 ]  # fmt: skip
             elif place is not None:
                 texts[0] = f"{place.title} has no value to make a budget for."
-        parts = (self.head, self.matters, self.sampled, self.used)
-        for part, text in zip(parts, texts, strict=True):
+        for part, text in zip(self._told, texts, strict=True):
             part.setText(text)
             part.setVisible(bool(text))
         self.chart.show_budget(budget, layout)
@@ -269,23 +252,7 @@ class UncertaintyPage(Page):
 
     def copy_sentence(self) -> None:
         """Put the budget on the clipboard, in words."""
-        text = self.sentence()
-        if not text:
-            self._messages.warn("There is no budget to copy yet.")
-            return
-        QGuiApplication.clipboard().setText(text)
-        self._messages.inform("The sentence is on the clipboard.")
-
-    def export(self) -> None:
-        """Ask where to, and write the budget."""
-        if self.budget is None:
-            self._messages.warn("There is nothing to export yet.")
-            return
-        path = ask_figure(self, "Export", "uncertainty.png", FIGURE_KINDS)
-        if path is not None:
-            with self._messages.shown():
-                self.write(path)
-                self._messages.inform(f"{path} was written.")
+        self._copy(self.sentence(), "sentence")
 
     def write(self, path: Path) -> None:
         """Write the chart: a picture, light as on paper, or all lines as numbers.
@@ -298,10 +265,6 @@ class UncertaintyPage(Page):
         budget = self.budget
         if budget is None or self.answer is None:
             raise ValueError("nothing is shown")
-        before = self.chart.palette()
-        self.chart.setPalette(qt_palette(LIGHT))
-        try:
-            table = budget_csv(budget, self.answer.request.layout)
+        table = budget_csv(budget, self.answer.request.layout)
+        with on_paper(self.chart):
             write_figure(path, self.chart, self.sentence(), table)
-        finally:
-            self.chart.setPalette(before)

@@ -3,16 +3,15 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import Any
 
-from PySide6.QtCore import QEvent, Qt, QTimer, Signal
-from PySide6.QtGui import QGuiApplication, QShowEvent
+from PySide6.QtCore import QEvent, Qt, Signal
 from PySide6.QtWidgets import QSplitter, QTabWidget, QVBoxLayout, QWidget
 
-from app.answers import Answers
+from app.asking_page import AskingPage
 from app.document import EVERYTHING, Document
-from app.figures import FIGURE_KINDS, ask_figure, write_figure
+from app.figures import write_figure
 from app.messages import Messages
-from app.page import Page
 from app.pages.variant_list import VariantList
 from app.pages.variant_map_tab import VariantMapTab
 from app.pages.variant_table import VariantTable
@@ -33,7 +32,7 @@ from engine.layout import Layout
 NO_PLACES = "Draw a zone where people are, or place a receptor, to compare variants"
 
 
-class VariantsPage(Page):
+class VariantsPage(AskingPage):
     """Follows the document while it shows; computes in threads of its own."""
 
     _told = Signal(float, str)
@@ -41,34 +40,33 @@ class VariantsPage(Page):
     def __init__(
         self, document: Document, view_state: ViewState, messages: Messages
     ) -> None:
-        super().__init__("Variants")
-        self._document, self._view_state = document, view_state
-        self._messages = messages
+        # The signal is there only once the page is.
+        tables = VariantTables(lambda share, text: self._told.emit(share, text))
+        super().__init__(
+            "Variants", document, messages, computed="comparison of variants",
+            work=tables.table, file_name="variants.png",
+        )  # fmt: skip
+        self._view_state = view_state
         self.answer: TableAnswer | None = None
         self._held: Layout | None = None
         self._build()
         self._told.connect(self._tell_progress, Qt.ConnectionType.QueuedConnection)
-        tables = VariantTables(self._told.emit)
-        self._answers = Answers("comparison of variants", tables.table, self)
-        self._answers.ready.connect(self._show)
-        self._soon = QTimer(self, singleShot=True, interval=0)
-        self._soon.timeout.connect(self._ask)
-        document.whole_changed.connect(self._on_changed)
-        document.changed.connect(self._on_opened)
+        self._follow(document.whole_changed)
+        self._follow(document.changed, self._on_opened)
         self.setFocusProxy(self.list)
 
     @property
     def is_idle(self) -> bool:
         """Nothing is being computed or waits to be asked."""
-        idle = self._answers.is_idle and not self._soon.isActive()
-        return idle and self.maps.is_idle
+        return super().is_idle and self.maps.is_idle
+
+    @property
+    def shown(self) -> object:
+        return self.maps.change if self._shows_maps else self.answer
 
     def close_worker(self) -> None:
         """Stop the threads, before the window goes."""
-        self._document.whole_changed.disconnect(self._on_changed)
-        self._document.changed.disconnect(self._on_opened)
-        self._soon.stop()
-        self._answers.close()
+        super().close_worker()
         self.maps.close_worker()
 
     def hold(self, on: bool) -> None:
@@ -88,12 +86,9 @@ class VariantsPage(Page):
             button("Export …", "As PNG, SVG or CSV, with its caption", self.export),
         ):
             row.addWidget(widget)
-        self.state = Words("", "warning")
-        self.state.setWordWrap(False)
         self.put_beside_title(controls, self.state)
         self.list = VariantList(self._document, self._messages)
         self.raised, self.differing = Words("", "warning"), Words("")
-        self.reason = Words("", "plain")
         self.table = VariantTable()
         self.compared = QWidget()
         self.compared.setAutoFillBackground(True)
@@ -103,6 +98,7 @@ class VariantsPage(Page):
         for part in (self.raised, self.differing, self.reason):
             box.addWidget(part)
         box.addWidget(self.table, 1)
+        self._parts = (self.table,)
         self.tabs = QTabWidget()
         self.tabs.setAccessibleName("Base and variants")
         self.tabs.setDocumentMode(True)
@@ -122,18 +118,10 @@ class VariantsPage(Page):
 
     # -- events -------------------------------------------------------------------
 
-    def showEvent(self, event: QShowEvent) -> None:
-        self._soon.start()
-        super().showEvent(event)
-
     def changeEvent(self, event: QEvent) -> None:
         super().changeEvent(event)
         if event.type() == QEvent.Type.PaletteChange and hasattr(self, "table"):
             self.table.viewport().update()
-
-    def _on_changed(self) -> None:
-        if self.isVisible():
-            self._soon.start()
 
     def _on_opened(self, _layout: object, ids: object) -> None:
         if ids == EVERYTHING:
@@ -158,7 +146,7 @@ class VariantsPage(Page):
         if not self._answers.is_idle:
             self.state.setText(f"{100 * share:.0f} % · {text}"[:60])
 
-    def _show(self, request: TableRequest, answer: object) -> None:
+    def _show(self, request: Any, answer: object) -> None:
         if request.whole is not self._document.whole:
             return
         self.state.setText("")
@@ -178,9 +166,7 @@ class VariantsPage(Page):
 
     def _tell(self, text: str) -> None:
         """Say why there is no table."""
-        self.reason.setText(text)
-        self.reason.setVisible(bool(text))
-        self.table.setVisible(not text)
+        super()._tell(text)
         for widget in (self.raised, self.differing):
             widget.setVisible(not text and bool(widget.text()))
 
@@ -199,23 +185,7 @@ class VariantsPage(Page):
 
     def copy_table(self) -> None:
         """Put the table on the clipboard."""
-        if self.answer is None:
-            self._messages.warn("There is no table to copy yet.")
-            return
-        QGuiApplication.clipboard().setText(table_tabs(self.answer))
-        self._messages.inform("The table is on the clipboard.")
-
-    def export(self) -> None:
-        """Ask where to, and write what is in front."""
-        shown = self.maps.change if self._shows_maps else self.answer
-        if shown is None:
-            self._messages.warn("There is nothing to export yet.")
-            return
-        path = ask_figure(self, "Export", "variants.png", FIGURE_KINDS)
-        if path is not None:
-            with self._messages.shown():
-                self.write(path)
-                self._messages.inform(f"{path} was written.")
+        self._copy("" if self.answer is None else table_tabs(self.answer), "table")
 
     def write(self, path: Path) -> None:
         """Write what is in front: a picture, light as on paper, or its numbers.

@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import Any
 
-from PySide6.QtCore import QEvent, QTimer
-from PySide6.QtGui import QGuiApplication, QShowEvent
+from PySide6.QtCore import QEvent
 from PySide6.QtWidgets import (
     QComboBox,
     QHBoxLayout,
@@ -14,16 +14,15 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.answers import Answers
+from app.asking_page import AskingPage, on_paper
 from app.document import Document
-from app.figures import FIGURE_KINDS, ask_figure, write_figure
+from app.figures import write_figure
 from app.messages import Messages
-from app.page import Page
 from app.pages.plain_table import PlainTable
 from app.pages.profile_controls import choice
 from app.pages.share_tree import ShareTree
 from app.panels.panel import Words, button
-from app.theme import LIGHT, STEP, qt_palette
+from app.theme import STEP
 from app.variant_acts import with_shown
 from app.view_state import ViewState
 from app.why_values import (
@@ -38,9 +37,10 @@ from app.why_values import (
     sentence,
     shares_csv,
     shares_tabs,
-    why_at,
+    with_held,
 )
 from app.wrapping import WrappingRow
+from engine.layout import Layout
 from engine.retrace import csv_text
 from engine.section_currents import phasor_text
 from engine.units import LENGTH_UNITS, in_unit, significant
@@ -51,26 +51,25 @@ NO_PLACE = (
 )
 
 
-class WhyPage(Page):
+class WhyPage(AskingPage):
     """Follows document, selection and load case while it shows."""
 
     def __init__(
         self, document: Document, view_state: ViewState, messages: Messages
     ) -> None:
-        super().__init__("Why this value")
-        self._document, self._view_state = document, view_state
-        self._messages = messages
+        super().__init__(
+            "Why this value", document, messages,
+            computed="contributions", work=with_held, file_name="why.png",
+        )  # fmt: skip
+        self._view_state = view_state
         self.place: WhyPlace | None = None
         self._others: list[WhyPlace] = []
         self.why: Why | None = None
+        self._held: Layout | None = None
         self._build()
-        self._answers = Answers("contributions", why_at, self)
-        self._answers.ready.connect(self._show)
-        self._soon = QTimer(self, singleShot=True, interval=0)
-        self._soon.timeout.connect(self._ask)
-        document.changed.connect(self._on_changed)
-        document.selection_changed.connect(self._on_selection)
-        view_state.changed.connect(self._on_changed)
+        self._follow(document.changed)
+        self._follow(document.selection_changed, self._on_selection)
+        self._follow(view_state.changed)
         self.setFocusProxy(self.tree)
 
     # -- what is asked ------------------------------------------------------------
@@ -83,18 +82,14 @@ class WhyPage(Page):
             self._others.append(place)
         self._soon.start()
 
-    @property
-    def is_idle(self) -> bool:
-        """Nothing is being computed or waits to be asked."""
-        return self._answers.is_idle and not self._soon.isActive()
+    def hold(self, on: bool) -> None:
+        """Let the values of the layout as it is stand beside the coming ones."""
+        self._held = self._document.committed if on else None
+        self._on_changed()
 
-    def close_worker(self) -> None:
-        """Stop the thread, before the window goes."""
-        self._document.changed.disconnect(self._on_changed)
-        self._document.selection_changed.disconnect(self._on_selection)
-        self._view_state.changed.disconnect(self._on_changed)
-        self._soon.stop()
-        self._answers.close()
+    @property
+    def shown(self) -> Why | None:
+        return self.why
 
     # -- building -----------------------------------------------------------------
 
@@ -117,10 +112,8 @@ class WhyPage(Page):
             button("Export …", "As PNG, SVG or CSV, with its caption", self.export),
         ):  # fmt: skip
             row.addWidget(widget)
-        self.state = Words("", "warning")
-        self.state.setWordWrap(False)
         self.put_beside_title(controls, self.state)
-        self.reason, self.told = Words("", "plain"), Words("", "plain")
+        self.told = Words("", "plain")
         self.column.addWidget(self.reason)
         self.column.addWidget(self.told)
         self.tree, self.table = ShareTree(), PlainTable("Retrace of the value")
@@ -145,21 +138,14 @@ class WhyPage(Page):
         self.tabs.setTabToolTip(0, "What each circuit adds to the value or cancels")
         self.tabs.setTabToolTip(1, "From the currents to the value, step by step")
         self.column.addWidget(self.tabs, 1)
+        self._parts = (self.tabs, self.told)
 
     # -- events -------------------------------------------------------------------
-
-    def showEvent(self, event: QShowEvent) -> None:
-        self._soon.start()
-        super().showEvent(event)
 
     def changeEvent(self, event: QEvent) -> None:
         super().changeEvent(event)
         if event.type() == QEvent.Type.PaletteChange and hasattr(self, "tabs"):
             self.tree.viewport().update()
-
-    def _on_changed(self, *_: object) -> None:
-        if self.isVisible():
-            self._soon.start()
 
     def _on_selection(self, ids: frozenset[str]) -> None:
         found = [r for r in self._document.layout.receptors if r.id in ids]
@@ -180,13 +166,10 @@ class WhyPage(Page):
         self.place = place_now(layout, self.place)
         self._fill_places()
         request = WhyRequest(
-            layout, self._view_state.look.case, self.place, self.kinds.currentText()
-        )
-        asked = self._answers.ask(request)
-        if asked and self.why is None:
-            self._tell("The shares are being computed …")
-        elif asked:
-            self.state.setText("out of date")
+            layout, self._view_state.look.case, self.place,
+            self.kinds.currentText(), self._held,
+        )  # fmt: skip
+        self._put(request, "The shares are being computed …")
 
     def _fill_places(self) -> None:
         layout = self._document.layout
@@ -201,7 +184,7 @@ class WhyPage(Page):
             self.places.addItem(place_text(layout, self.place), self.place)
         self.places.setCurrentIndex(places.index(self.place))
 
-    def _show(self, request: WhyRequest, answer: object) -> None:
+    def _show(self, request: Any, answer: object) -> None:
         if self.place is None or request.place != self.place:
             return
         if not isinstance(answer, Why):
@@ -227,47 +210,19 @@ class WhyPage(Page):
         self.net.setVisible(bool(found))
         self.table.show_rows(*_retrace_rows(answer))
 
-    def _tell(self, text: str) -> None:
-        """Say why there is nothing to see."""
-        self.reason.setText(text)
-        self.reason.setVisible(bool(text))
-        for widget in (self.tabs, self.told):
-            widget.setVisible(not text)
-        if text:
-            self.state.setText("")
-
     # -- handing on ---------------------------------------------------------------
 
     def copy_sentence(self) -> None:
         """Put the value and its shares on the clipboard, in words."""
-        if self.why is None:
-            self._messages.warn("There is no value to copy yet.")
-            return
-        QGuiApplication.clipboard().setText(sentence(self.why))
-        self._messages.inform("The sentence is on the clipboard.")
+        self._copy("" if self.why is None else sentence(self.why), "sentence")
 
     def copy_table(self) -> None:
         """Put the shares or the retrace on the clipboard, as is in front."""
-        if self.why is None:
-            self._messages.warn("There is no table to copy yet.")
-            return
-        if self.tabs.currentIndex() == 0:
-            text = shares_tabs(self.why)
-        else:
-            text = self.table.text()
-        QGuiApplication.clipboard().setText(text)
-        self._messages.inform("The table is on the clipboard.")
-
-    def export(self) -> None:
-        """Ask where to, and write what is in front."""
-        if self.why is None:
-            self._messages.warn("There is nothing to export yet.")
-            return
-        path = ask_figure(self, "Export", "why.png", FIGURE_KINDS)
-        if path is not None:
-            with self._messages.shown():
-                self.write(path)
-                self._messages.inform(f"{path} was written.")
+        text = ""
+        if self.why is not None:
+            is_shares = self.tabs.currentIndex() == 0
+            text = shares_tabs(self.why) if is_shares else self.table.text()
+        self._copy(text, "table")
 
     def write(self, path: Path) -> None:
         """Write what is in front: a picture, light as on paper, or its numbers.
@@ -289,14 +244,9 @@ class WhyPage(Page):
                 length_unit=settings.length_unit,
             )  # fmt: skip
         shown = self.table if is_retrace else self.shares
-        before = shown.palette()
-        shown.setPalette(qt_palette(LIGHT))
-        try:
-            caption = with_shown(self._document, caption_text(why))
-            caption = f"{caption}\n{head_text(why)}"
-            write_figure(path, shown, caption, table)
-        finally:
-            shown.setPalette(before)
+        caption = with_shown(self._document, caption_text(why))
+        with on_paper(shown):
+            write_figure(path, shown, f"{caption}\n{head_text(why)}", table)
 
 
 def _retrace_rows(why: Why) -> tuple[list[str], list[list[str]], int]:

@@ -2,76 +2,67 @@
 
 from __future__ import annotations
 
-import logging
 from pathlib import Path
+from typing import Any
 
-from PySide6.QtCore import QEvent, Qt, QTimer, Signal
+from PySide6.QtCore import QEvent, Qt, QTimer
 from PySide6.QtGui import QHideEvent, QKeyEvent, QShowEvent
 from PySide6.QtWidgets import QComboBox, QHBoxLayout, QSlider, QWidget
 
+from app.asking_page import AskingPage, on_paper
 from app.cycle_values import (
+    Cycle,
     CyclePlace,
     CycleRequest,
     at_place,
     caption_text,
     component_text,
-    cycle_at,
     flux_text,
     place_text,
     summary_text,
     waves_csv,
+    with_held,
 )
 from app.document import Document
-from app.field_store import load_kernels
-from app.figures import FIGURE_KINDS, ask_figure, write_figure
+from app.figures import write_figure
 from app.messages import Messages
-from app.page import Page
 from app.panels.panel import Words, button, scrolled
-from app.theme import LIGHT, STEP, qt_palette, theme_for
+from app.theme import LIGHT, STEP, theme_for
 from app.variant_acts import with_shown
 from app.view_state import ViewState
 from app.views.cycle_board import CycleBoard, first_component
-from app.worker import Outdated, Worker
 from engine.currents import Component
 from engine.cycle_view import CycleView
-from engine.errors import ComputationCancelled, UserError
+from engine.layout import Layout
 from engine.units import in_unit, significant
 
 #: Between two pictures, and for one whole period, while it plays. [ms]
 _FRAME, _ROUND = 40, 4000
 
 
-class CyclePage(Page):
+class CyclePage(AskingPage):
     """Follows document and view while it shows; computes in a thread of its own."""
-
-    _found = Signal(object, object)
 
     def __init__(
         self, document: Document, view_state: ViewState, messages: Messages
     ) -> None:
-        super().__init__("Field over one period")
-        self._document, self._view_state = document, view_state
-        self._messages = messages
+        super().__init__(
+            "Field over one period", document, messages,
+            computed="field over one period", work=with_held, file_name="period.png",
+        )  # fmt: skip
+        self._view_state = view_state
         self.place: CyclePlace | None = None
         self._pointed: CyclePlace | None = None
-        self.view: CycleView | None = None
-        self._asked: CycleRequest | None = None
-        self._shown: CycleRequest | None = None
+        self.answer: Cycle | None = None
+        self._held: Layout | None = None
         self._component: Component | None = None
         self.board = CycleBoard()
         self.summary, self.now = Words(style="plain"), Words(style="plain")
-        self.reason = Words(style="plain")
         self._build()
-        self._found.connect(self._show, Qt.ConnectionType.QueuedConnection)
-        self._worker: Worker[CycleRequest] = Worker(
-            "cycle", self._compute, load_kernels
-        )
-        self._soon = QTimer(self, singleShot=True, interval=0)
-        self._soon.timeout.connect(self._ask)
         self._clock = QTimer(self, interval=_FRAME)
         self._clock.timeout.connect(self._advance)
-        document.changed.connect(self._on_changed)
-        view_state.changed.connect(self._on_changed)
+        self._follow(document.changed)
+        self._follow(view_state.changed)
 
     # -- what is asked ----------------------------------------------------------
 
@@ -83,10 +74,19 @@ class CyclePage(Page):
         self._fill_places()
         self._soon.start()
 
+    def hold(self, on: bool) -> None:
+        """Let RMS and peak in the layout as it is stand beside the coming ones."""
+        self._held = self._document.committed if on else None
+        self._on_changed()
+
     @property
-    def is_idle(self) -> bool:
-        """Nothing is being computed or waits to be asked."""
-        return self._worker.is_idle and not self._soon.isActive()
+    def view(self) -> CycleView | None:
+        """The field that is shown."""
+        return None if self.answer is None else self.answer.view
+
+    @property
+    def shown(self) -> Cycle | None:
+        return self.answer
 
     @property
     def is_playing(self) -> bool:
@@ -94,11 +94,8 @@ class CyclePage(Page):
 
     def close_worker(self) -> None:
         """Stop the thread, before the window goes."""
-        self._document.changed.disconnect(self._on_changed)
-        self._view_state.changed.disconnect(self._on_changed)
         self._clock.stop()
-        self._soon.stop()
-        self._worker.close()
+        super().close_worker()
 
     # -- building ---------------------------------------------------------------
 
@@ -116,6 +113,7 @@ class CyclePage(Page):
         head = QHBoxLayout()
         for choice in (self.places, self.frequencies):
             head.addWidget(choice)
+        head.addWidget(self.state)
         head.addStretch(1)
         head.addWidget(export)
         foot = QHBoxLayout()
@@ -136,12 +134,14 @@ class CyclePage(Page):
         # Alone, a sentence stands at the top.
         self.column.addStretch(0)
         self.reason.hide()
+        self._parts = (
+            self.summary, self._area, self._controls, self.now, self.frequencies,
+        )  # fmt: skip
 
     # -- events -----------------------------------------------------------------
 
     def showEvent(self, event: QShowEvent) -> None:
         self._fill_places()
-        self._soon.start()
         super().showEvent(event)
 
     def hideEvent(self, event: QHideEvent) -> None:
@@ -206,65 +206,43 @@ class CyclePage(Page):
             self._tell("Choose a place: a receptor, or point at one on the drawing.")
             return
         self.place = at_place(layout, self.place)
-        request = CycleRequest(layout, self._view_state.look.case, self.place)
-        if request != self._asked:
-            self._asked = request
-            if self.view is None:
-                self._tell("The field is being computed …")
-            self._worker.ask(request)
-
-    def _compute(self, request: CycleRequest, _outdated: Outdated) -> None:
-        """In the thread. One place is quick: a drag keeps up by finishing it."""
-        try:
-            self._found.emit(request, cycle_at(request))
-        except ComputationCancelled:
-            return
-        except UserError as error:
-            self._found.emit(request, str(error))
-        except Exception:
-            logging.getLogger(__name__).exception("The field over a period failed")
-            self._found.emit(request, "The field over a period could not be computed.")
+        request = CycleRequest(
+            layout, self._view_state.look.case, self.place, self._held
+        )
+        self._put(request, "The field is being computed …")
 
     # -- showing ----------------------------------------------------------------
 
-    def _show(self, request: CycleRequest, found: object) -> None:
-        if self._asked is None or request.place != self._asked.place:
+    def _show(self, request: Any, answer: object) -> None:
+        if self.place is None or request.place != self.place:
             return
-        self._shown = request
-        self.view = found if isinstance(found, CycleView) else None
-        self._tell("" if self.view is not None else str(found))
-        if self.view is not None:
-            self._fill_frequencies(self.view)
+        self.answer = answer if isinstance(answer, Cycle) else None
+        self.state.setText("")
+        self._tell("" if self.answer is not None else str(answer))
+        if self.answer is not None:
+            self._fill_frequencies(self.answer)
             self._draw()
 
-    def _tell(self, sentence: str) -> None:
-        """Say why there is nothing to see; nothing else shows then."""
-        self.reason.setText(sentence)
-        self.reason.setVisible(bool(sentence))
-        for widget in (self.summary, self._area, self._controls, self.now):
-            widget.setVisible(not sentence)
-        self.frequencies.setVisible(not sentence)
-
     def _draw(self) -> None:
-        if self.view is None or self._shown is None:
+        if self.answer is None:
             return
-        layout = self._shown.layout
+        layout, view = self.answer.request.layout, self.answer.view
         index = max(self.frequencies.currentIndex(), 0)
         theme = theme_for(self.palette())
-        self.board.show_component(layout, self.view, index, theme)
+        self.board.show_component(layout, view, index, theme)
         self._controls.setVisible(self.board.wave is not None)
         self.slider.setRange(0, max(0, self.board.instants - 1))
         self.slider.setPageStep(max(1, self.board.instants // 12))
         self.board.show_instant(self.slider.value())
-        self.summary.setText(summary_text(layout, self.view))
+        self.summary.setText(summary_text(layout, view, self.answer.before))
         self._tell_instant()
 
     def _tell_instant(self) -> None:
         wave = self.board.wave
-        if wave is None or self._shown is None:
+        if wave is None or self.answer is None:
             self.now.setText("")
             return
-        unit = self._shown.layout.settings.flux_density_unit
+        unit = self.answer.request.layout.settings.flux_density_unit
         index = min(self.slider.value(), len(wave.times) - 1)
         x, y, z = (significant(in_unit(v, unit)) for v in wave.vectors[index])
         self.now.setText(
@@ -292,12 +270,12 @@ class CyclePage(Page):
         self.places.setCurrentIndex(places.index(shown) if shown in places else -1)
         self.places.setVisible(bool(entries))
 
-    def _fill_frequencies(self, view: CycleView) -> None:
-        assert self._shown is not None
+    def _fill_frequencies(self, answer: Cycle) -> None:
+        view, layout = answer.view, answer.request.layout
         components = [e.component for e in view.ellipses]
         self.frequencies.clear()
         for component in components:
-            text = component_text(self._shown.layout, component)
+            text = component_text(layout, component)
             self.frequencies.addItem(text, component)
         chosen = self._component in components and self._component is not None
         index = (
@@ -309,17 +287,6 @@ class CyclePage(Page):
 
     # -- exporting --------------------------------------------------------------
 
-    def export(self) -> None:
-        """Ask where to, and write what is shown."""
-        if self.view is None:
-            self._messages.warn("There is nothing to export yet.")
-            return
-        path = ask_figure(self, "Export the period", "period.png", FIGURE_KINDS)
-        if path is not None:
-            with self._messages.shown():
-                self.write(path)
-                self._messages.inform(f"{path} was written.")
-
     def write(self, path: Path) -> None:
         """Write the board as PNG or SVG, light as on paper, or its numbers as CSV.
 
@@ -328,21 +295,18 @@ class CyclePage(Page):
         UserError
             When the file cannot be written.
         """
-        if self.view is None or self._shown is None:
+        answer = self.answer
+        if answer is None:
             raise ValueError("nothing is shown")
-        layout, request = self._shown.layout, self._shown
+        layout, view, request = answer.request.layout, answer.view, answer.request
         caption = caption_text(layout, request.case, request.place)
         caption = with_shown(self._document, caption)
-        text = f"{caption} · {summary_text(layout, self.view)}"
+        text = f"{caption} · {summary_text(layout, view, answer.before)}"
         index = max(self.frequencies.currentIndex(), 0)
-        before = self.board.palette()
-        self.board.setPalette(qt_palette(LIGHT))
-        self.board.show_component(layout, self.view, index, LIGHT)
-        try:
-            write_figure(path, self.board, text, waves_csv(layout, self.view, caption))
-        finally:
-            self.board.setPalette(before)
-            self._draw()
+        with on_paper(self.board):
+            self.board.show_component(layout, view, index, LIGHT)
+            write_figure(path, self.board, text, waves_csv(layout, view, caption))
+        self._draw()
 
 
 def _choice(tip: str) -> QComboBox:

@@ -13,6 +13,7 @@ from pytestqt.qtbot import QtBot
 from shapely.geometry import LineString, Point
 
 from app import preferences, recovery
+from app.cycle_values import CyclePlace
 from app.document import Document
 from app.level_distance import DistanceRequest, factors, reached, targets
 from app.level_marks import distance_text, overlay_of
@@ -20,15 +21,17 @@ from app.main_window import MainWindow
 from app.map_request import heights_of
 from app.messages import Messages
 from app.pages.profile_page import ProfilePage
+from app.profile_words import marked_text, whole_table
 from app.readout_values import ReadoutRequest, readout
 from app.tools.profile import ProfileTool
 from app.view_state import Look
 from app.why_pages import WhyPages
-from engine.edits import replaced
+from app.why_values import WhyPlace, WhyRequest, value_text, why_at
+from engine.edits import added, replaced
 from engine.errors import UserError
 from engine.layout import Layout
 from engine.layout_file import read
-from engine.places import MeasuredValue
+from engine.places import MeasuredValue, Profile
 from engine.shaping import moved
 from engine.sight import LOOKING_X, LOOKING_Y, PLAN
 
@@ -201,6 +204,43 @@ def test_exported_maps_show_the_lines_and_the_distance(
     window.exports.map(plain)
     qtbot.waitUntil(plain.exists, timeout=60_000)
     assert "reference level met" not in plain.read_text(encoding="utf-8")
+
+
+def test_held_values_stand_wherever_a_value_stands(
+    qtbot: QtBot, window: MainWindow, layout: Layout
+) -> None:
+    qtbot.waitUntil(lambda: _exact(window), timeout=60_000)
+    pages, views = _pages(window), window.view_pages
+    x, y = layout.zones[0].outline[0]
+    at = (x, y, 1.0)
+    line = Profile(id="line", path=(at, (x + 3.0, y + 1.0, 1.0)))
+    window.document.edit("Draw", added(window.document.committed, line))
+    pages.why.show_place(WhyPlace(at))
+    views.cycle.show_place(CyclePlace(at))
+    window.document.select([layout.runs[0].id])
+    pages.open_distance()
+    qtbot.waitUntil(lambda: _exact(window), timeout=60_000)
+    window.menus._held.trigger()
+    assert pages.why.place is not None
+    before = why_at(WhyRequest(window.document.committed, "", WhyPlace(at)))
+    was = f"was {value_text(before)}"
+    _moves(window, layout.runs[0].id)
+    qtbot.waitUntil(lambda: ", was " in pages.distance.words.text(), timeout=60_000)
+    pages.open_profile()
+    qtbot.waitUntil(lambda: "Was:" in pages.profile.findings.text(), timeout=60_000)
+    done = pages.profile.done
+    assert done is not None
+    assert was in marked_text(done, "AC", 0.0)
+    assert whole_table(done).heads[-1].endswith("as before [µT]")
+    pages.open_why()
+    qtbot.waitUntil(lambda: was in pages.why.told.text(), timeout=60_000)
+    assert not pages.why.tree.isColumnHidden(7)
+    window.show_page(views.cycle)
+    qtbot.waitUntil(lambda: was in views.cycle.summary.text(), timeout=60_000)
+    # Released, nothing is said to have been otherwise.
+    window.menus._held.trigger()
+    qtbot.waitUntil(lambda: "was" not in views.cycle.summary.text(), timeout=60_000)
+    qtbot.waitUntil(lambda: "was" not in pages.distance.words.text(), timeout=60_000)
 
 
 # -- pages ----------------------------------------------------------------------------
