@@ -17,7 +17,7 @@ import numpy as np
 from msgspec.structs import replace
 from PIL import Image, ImageOps
 
-from engine.calibration import is_calibrated, place_of
+from engine.calibration import is_calibrated, on_picture, place_of
 from engine.edits import checked, unused_id
 from engine.embedded_picture import (
     DAMAGE,
@@ -190,7 +190,8 @@ def with_picture(drawing: BackingDrawing, picture: ReadPicture) -> BackingDrawin
     if abs(across / down - 1.0) <= _SAME_SHEET:
         factor = max(across, down)
         first, second = (
-            (factor * x, factor * y) for x, y in (drawing.first, drawing.second)
+            on_picture((factor * x, factor * y))
+            for x, y in (drawing.first, drawing.second)
         )
         return checked(replace(new, first=first, second=second))
     fresh = BackingDrawing(id="fresh")

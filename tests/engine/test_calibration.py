@@ -74,7 +74,8 @@ def test_calibration_points_lie_their_distance_apart(
         return
     drawing = calibrated(replace(PLAN, turn=turn), first, second, distance)
     apart = math.dist(place_of(drawing, first), place_of(drawing, second))
-    assert apart == pytest.approx(distance, rel=1e-9, abs=1e-9)
+    # Distances are kept to 0.1 mm.
+    assert apart == pytest.approx(round(distance, 4), rel=1e-9, abs=1e-9)
 
 
 def test_first_calibration_leaves_its_first_point_where_it_is() -> None:
@@ -91,7 +92,8 @@ def test_new_calibration_keeps_origin_and_turn() -> None:
     slanted = replace(PLAN, turn=30.0)
     drawing = calibrated(slanted, (700.0, 900.0), (100.0, 900.0), 11.0)
     assert drawing.turn == 30.0
-    assert place_of(drawing, slanted.first) == pytest.approx(slanted.origin)
+    # The new first point is kept to 0.1 mm.
+    assert place_of(drawing, slanted.first) == pytest.approx(slanted.origin, abs=1e-4)
     apart = math.dist(
         place_of(drawing, (700.0, 900.0)), place_of(drawing, (100.0, 900.0))
     )
@@ -105,7 +107,8 @@ def test_a_located_point_lies_there_and_stays_when_scaled_anew() -> None:
     assert metres_per_pixel(drawing) == pytest.approx(metres_per_pixel(PLAN))
     assert drawing.turn == 10.0
     again = calibrated(drawing, (0.0, 0.0), (1000.0, 0.0), 31.0)
-    assert place_of(again, column) == pytest.approx((12.5, -3.0))
+    # The new first point is kept to 0.1 mm.
+    assert place_of(again, column) == pytest.approx((12.5, -3.0), abs=1e-4)
 
 
 def test_locating_does_not_count_as_calibrating() -> None:
@@ -155,3 +158,19 @@ def test_a_drawing_under_an_elevation_follows_shifts_only() -> None:
     assert carried(drawing, turn_about((3.0, 3.0), 90.0), {}) == drawing
     ahead = replace(PLAN, view="looking +y")
     assert carried(ahead, shift_by(5.0, 2.0, 0.5), {}).origin == (7.0, 1.5)
+
+
+def test_what_is_kept_has_no_more_decimals_than_a_tenth_of_a_millimetre() -> None:
+    feet = 27.0 * 0.3048 + 6.0 * 0.0254
+    drawing = calibrated(replace(PLAN, turn=7.0), (33.33, 41.07), (904.11, 38.5), feet)
+    drawing = calibrated(drawing, (1.01, 2.02), (777.77, 333.33), 1.0 / 3.0)
+    drawing = located(drawing, (10.1, 20.2), (1.0 / 3.0, -2.0 / 3.0))
+    for value in (*drawing.origin, drawing.distance):
+        assert value == round(value, 4)
+    assert drawing.distance == 0.3333
+    assert drawing.origin == (0.3333, -0.6667)
+    assert drawing.second == (round(drawing.second[0], 4), round(drawing.second[1], 4))
+
+
+def test_a_distance_too_short_to_be_kept_stays_a_distance() -> None:
+    assert calibrated(PLAN, (0.0, 0.0), (900.0, 0.0), 1e-6).distance == 1e-4
