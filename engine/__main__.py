@@ -150,6 +150,17 @@ def _add_documents(commands: Any) -> None:
         action="store_true",
         help="do not run the outside checks of the program; their section says so",
     )
+    report.add_argument("--variant", metavar="NAME", help="instead of the base")
+    report.add_argument(
+        "--paper",
+        choices=("A4", "A3", "Letter", "Tabloid"),
+        help="instead of the layout's",
+    )
+    report.add_argument(
+        "--orientation",
+        choices=("portrait", "landscape"),
+        help="of text pages; drawings and maps lie as they want it",
+    )
     _add_unit(report)
     report.add_argument("--json", action="store_true", help="print what was written")
     report.set_defaults(run=_report)
@@ -249,17 +260,18 @@ def _compare(asked: argparse.Namespace) -> int:
 
 
 def _report(asked: argparse.Namespace) -> int:
+    from engine.report.choices import Choices
     from engine.report.writing import write_report
 
-    layout = read(asked.layout)
-    write_report(
-        layout,
-        asked.out,
+    choices = Choices(
         kind="note" if asked.note else "report",
-        validate=not asked.without_checks,
+        variant=asked.variant,
         unit=asked.unit,
-        progress=progress_line(),
+        paper=asked.paper,
+        orientation=asked.orientation,
+        validate=not asked.without_checks,
     )
+    write_report(read(asked.layout), asked.out, choices, progress=progress_line())
     return _written(asked.out, asked.json)
 
 

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-import dataclasses
 import re
+from dataclasses import asdict, replace
 from pathlib import Path
 from typing import Any
 
@@ -11,11 +11,14 @@ import msgspec
 
 from engine import units
 from engine.assessment import assess
-from engine.errors import Progress, UserError
+from engine.errors import Cancelled, Progress, UserError
+from engine.field import ResponseCache
 from engine.items import IssuedResult
 from engine.layout import Layout
 from engine.layout_file import read, write
+from engine.report.choices import USUAL, Choices
 from engine.report.writing import write_report
+from engine.results import Assessment
 from engine.revisions import (
     Changes,
     MovedResult,
@@ -51,25 +54,94 @@ def issue_revision(
     Raises
     ------
     UserError
-        When the revision was issued before, or a file is there already or cannot be
-        written; the layout stays as it was then.
+        As `freeze`; the layout stays as it was then.
     """
-    layout = read(path)
+    made, frozen, printed = freeze(
+        read(path),
+        path if folder is None else folder / path.name,
+        revision,
+        date,
+        note=note,
+        choices=Choices(unit=unit),
+        progress=progress,
+    )
+    write(path, made)
+    return frozen, printed
+
+
+def freeze(
+    layout: Layout,
+    path: Path,
+    revision: str,
+    date: str,
+    *,
+    note: str = "",
+    choices: Choices = USUAL,
+    assessment: Assessment | None = None,
+    cache: ResponseCache | None = None,
+    progress: Progress | None = None,
+    cancelled: Cancelled | None = None,
+) -> tuple[Layout, Path, Path]:
+    """Write a layout and its report as a revision, beside each other.
+
+    Parameters
+    ----------
+    path : path
+        Of the layout's file, which is not written: its folder and name are those of
+        the frozen files.
+    revision, date, note : str
+        As the user writes them.
+    choices : Choices
+        Of the report; a revision is of the base.
+    assessment : Assessment, optional
+        Of this very layout; None: it is made here.
+
+    Returns
+    -------
+    The layout that lists the revision, and the paths of the frozen layout and report.
+
+    Raises
+    ------
+    UserError
+        When the revision was issued before, or a file is there already or cannot be
+        written; none is left then.
+    ComputationCancelled
+        When `cancelled` says so; nothing is written then.
+    """
     stem = f"{path.stem}-rev-{_plain(revision)}"
-    place = path.parent if folder is None else folder
-    frozen, printed = place / f"{stem}.json", place / f"{stem}.pdf"
+    frozen, printed = path.parent / f"{stem}.json", path.parent / f"{stem}.pdf"
     for target in (frozen, printed):
         if target.exists():
             raise UserError(
                 f"Revision {revision} was not issued: {target.name} is there already. "
                 "What was issued is not written over; choose another revision."
             )
-    assessment = assess(layout, certify=True, progress=progress)
+    tell = progress
+    if assessment is None:
+        assessment = assess(
+            layout,
+            certify=True,
+            cache=cache,
+            cancelled=cancelled,
+            progress=None if tell is None else lambda x, text: tell(0.4 * x, text),
+        )
     made = issued(layout, assessment, revision, date, note=note)
-    write_report(made, printed, unit=unit, progress=progress)
-    write(frozen, made)
-    write(path, made)
-    return frozen, printed
+    write_report(
+        made,
+        printed,
+        replace(choices, kind="report", variant=None),
+        # The revision is all that differs: the results are those of `made` too.
+        assessment=replace(assessment, layout=made),
+        cache=cache,
+        progress=None if tell is None else lambda x, t: tell(0.4 + 0.6 * x, t),
+        cancelled=cancelled,
+    )
+    try:
+        write(frozen, made)
+    except UserError:
+        printed.unlink(missing_ok=True)
+        raise
+    return made, frozen, printed
 
 
 def _plain(text: str) -> str:
@@ -157,7 +229,7 @@ def recomputed_text(again: Recomputed, names: dict[str, str], unit: str) -> str:
 def as_json(changes: Changes, again: Recomputed | None) -> dict[str, Any]:
     """Changes as plain values, flux densities in tesla."""
     plain: dict[str, Any] = {
-        "edits": [dataclasses.asdict(edit) for edit in changes.edits],
+        "edits": [asdict(edit) for edit in changes.edits],
         "moved": [_moved_json(m) for m in changes.moved],
         "recomputed": None,
     }

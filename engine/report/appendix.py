@@ -20,6 +20,10 @@ from engine.report.text import Lines, paragraph, table
 #: Longer input is printed in part; the attached file has all of it.
 MOST_LINES = 12_000
 
+VARIANT = (
+    "The variant “{title}” is applied to what is printed below. The attached file has "
+    "the base and every variant; choose this one there to have this report again."
+)
 ATTACHED = (
     "These files are part of the PDF; a viewer lists them as attachments. The layout "
     "file opens in the program and gives this report again."
@@ -49,6 +53,8 @@ def appendix(told: Story, matter: Matter, attachments: Sequence[Attachment]) -> 
         told.section("attachments", "Attached files", [paragraph(text)], number="A")
     lines = input_lines(matter.layout, round(72 / 25.4 * width))
     said = [PRINTED, *remarks_on("".join(lines))]
+    if matter.variant is not None:
+        said.insert(1, VARIANT.format(title=matter.variant.title))
     told.section("input", "Full input", [paragraph(t) for t in said], number="B")
     told.add([Lines(lines[:MOST_LINES])])
     if len(lines) > MOST_LINES:

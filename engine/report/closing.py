@@ -72,7 +72,7 @@ def conclusions(matter: Matter) -> list[Flowable]:
 
 def revisions(matter: Matter, width: float) -> list[Flowable]:
     """What left the house before, and whether this layout is as it was issued."""
-    layout = matter.layout
+    layout = matter.source
     if not layout.revisions:
         return [paragraph("No revision of this layout was issued yet.")]
     rows = [

@@ -21,6 +21,7 @@ from engine.report import (
 )
 from engine.report.attachments import Attachment
 from engine.report.budgets import budget_section
+from engine.report.choices import Orientation, Paper
 from engine.report.drawings import HEADING_ROOM, Sheeted, room_views, sheeted
 from engine.report.figures import FigureRow
 from engine.report.front import front_page, overview
@@ -28,7 +29,7 @@ from engine.report.maps import plan_of_map
 from engine.report.matter import Matter
 from engine.report.names import Wording
 from engine.report.options import options
-from engine.report.page import Orientation, Pages, Paper, paper
+from engine.report.page import Pages
 from engine.report.profile_section import profile_section
 from engine.report.receptor_tables import measured_section, receptor_section
 from engine.report.retraced import retraced
@@ -163,7 +164,9 @@ def _sources(told: Story, matter: Matter, pictures: Drawn) -> None:
             key="currents" if k == 0 else "",
         )
     told.subsection("Runs", sources.runs(layout, width), key="runs")
-    told.subsection("Sections of the runs", _sections(matter, pictures), key="sections")
+    told.subsection(
+        "Sections of the runs", _sections(told, matter, pictures), key="sections"
+    )
     told.subsection("Equipment", sources.equipment(layout, width))
     closed = [c.item for c in matter.conductors if c.role == "closing link"]
     names = {item.id: item.title for item in layout.items()}
@@ -171,12 +174,12 @@ def _sources(told: Story, matter: Matter, pictures: Drawn) -> None:
     told.subsection("Joints and ends", sources.joints(layout, titles, width))
 
 
-def _sections(matter: Matter, pictures: Drawn) -> list[Flowable]:
+def _sections(told: Story, matter: Matter, pictures: Drawn) -> list[Flowable]:
     if not pictures.sections:
         return [paragraph("Omitted: no run was entered.")]
     made: list[Flowable] = []
     wide = pictures.sections[0].width
-    across = max(1, int((paper_width(matter) + _GAP + 0.01) // (wide + _GAP)))
+    across = max(1, int((told.sheet.text_width + _GAP + 0.01) // (wide + _GAP)))
     for first in range(0, len(pictures.sections), across):
         row = pictures.sections[first : first + across]
         made += [FigureRow(row, _GAP), gap(2.0)]
@@ -185,11 +188,6 @@ def _sections(matter: Matter, pictures: Drawn) -> list[Flowable]:
         text = f"Sections without a drawing here: {count - MOST_SECTIONS}."
         made.append(paragraph(text))
     return made
-
-
-def paper_width(matter: Matter) -> float:
-    """Width of the text of the report's pages. [mm]"""
-    return paper(matter.layout).text_width
 
 
 def _validation(told: Story, matter: Matter) -> None:

@@ -4,12 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from functools import partial
-from typing import Literal
 
 from reportlab.platypus import Flowable
 
 from engine.errors import UserError
 from engine.report.attachments import Attachment
+from engine.report.choices import USUAL, Choices, Paper, paper
 from engine.report.contents import drawn, story
 from engine.report.files import attached_files
 from engine.report.matter import Matter
@@ -17,26 +17,24 @@ from engine.report.names import Wording, wording
 from engine.report.note import MOST_PAGES, ROOMS, Room, note_story
 from engine.report.page import (
     UNWATCHED,
+    Frontispiece,
     Pages,
-    Paper,
     Watch,
-    paper,
     pdf,
     register_fonts,
 )
 from engine.units import flux_density_unit
 
-DocumentKind = Literal["report", "note"]
-
 SUBJECT = "Power-frequency magnetic flux density, calculated"
 
 
 def report_pdf(
-    matter: Matter, *, kind: DocumentKind = "report", watch: Watch = UNWATCHED
+    matter: Matter, choices: Choices = USUAL, *, watch: Watch = UNWATCHED
 ) -> bytes:
     """The report, or the note, as the bytes of a PDF file.
 
-    Equal matter gives equal bytes.
+    Equal matter and choices give equal bytes. Of the choices the kind, the paper and
+    its orientation count here; variant and unit are those of the matter.
 
     Raises
     ------
@@ -49,24 +47,30 @@ def report_pdf(
     """
     register_fonts()
     _refuse_partial(matter)
-    layout = matter.layout
-    sheet = paper(layout)
-    words = wording(layout, flux_density_unit(matter.unit))
+    sheet = paper(matter.layout, choices)
+    words = wording(matter.layout, flux_density_unit(matter.unit))
     attachments: Sequence[Attachment] = attached_files(matter)
-    if kind == "note":
-        return _note(matter, words, sheet, attachments[:1], watch)
+    if choices.kind == "note":
+        front = _front(matter, choices)
+        return _note(matter, front, words, sheet, attachments[:1], watch)
     pictures = drawn(matter, sheet)
     return pdf(
-        layout,
+        _front(matter, choices),
+        sheet,
         lambda pages: story(matter, pictures, attachments, words, sheet, pages),
-        subject=f"{SUBJECT}: report",
         attachments=attachments,
         watch=watch,
     ).content
 
 
+def _front(matter: Matter, choices: Choices) -> Frontispiece:
+    subject = f"{SUBJECT}: {choices.kind}"
+    return Frontispiece(matter.layout.title, matter.shown, subject)
+
+
 def _note(
     matter: Matter,
+    front: Frontispiece,
     words: Wording,
     sheet: Paper,
     attachments: Sequence[Attachment],
@@ -75,9 +79,9 @@ def _note(
     """The note with as much as two pages hold."""
     for room in ROOMS:
         laid = pdf(
-            matter.layout,
+            front,
+            sheet,
             partial(_note_pages, matter, words, sheet, room),
-            subject=f"{SUBJECT}: note",
             attachments=attachments,
             watch=watch,
         )

@@ -11,9 +11,9 @@ from engine.layout import Layout
 from engine.picture import Picture
 from engine.picture.dimensions import Level
 from engine.picture.room_drawing import RoomView, room_drawing, room_scale
+from engine.report.choices import Orientation, Paper
 from engine.report.drawn_parts import between
 from engine.report.matter import Matter
-from engine.report.page import Orientation, Paper
 from engine.report.words import length
 from engine.sight import LOOKING_X, LOOKING_Y, Sight
 

@@ -26,7 +26,7 @@ def attached_files(matter: Matter) -> tuple[Attachment, ...]:
     """The layout file first, then tables of results, then the grids of the maps."""
     files = []
     try:
-        content = encode(matter.layout)
+        content = encode(matter.source)
     except UserError:
         pass  # A layout that no file can hold: the report is all there is.
     else:

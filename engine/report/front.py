@@ -11,9 +11,9 @@ from reportlab.lib.utils import ImageReader
 from reportlab.platypus import Flowable, Image
 
 from engine.embedded_picture import DAMAGE, TooManyPixels, decoded
+from engine.report.choices import Paper
 from engine.report.matter import Matter
 from engine.report.names import Wording
-from engine.report.page import Paper
 from engine.report.story import Story
 from engine.report.summary import summary
 from engine.report.text import (
@@ -73,6 +73,7 @@ def front_page(
     facts = [
         ("Project", title.project or title.name),
         ("Client", title.client),
+        ("Variant", _variant(matter)),
         ("Question", title.question[:1500]),
         ("Load cases that count", ", ".join(cases)[:600]),
         ("Scope", title.scope[:1000]),
@@ -91,6 +92,16 @@ def front_page(
             paragraph(f"Conclusions of the author: {told.page('conclusions')}.")
         )
     return made
+
+
+def _variant(matter: Matter) -> str:
+    """What is reported on: the base, or which variant of it."""
+    if matter.variant is None:
+        others = len(matter.source.variants)
+        return f"base; its variants are options: {others}" if others else "base"
+    note = matter.variant.note[:600]
+    text = f"{matter.variant.title}: the base with the changes of this variant"
+    return f"{text}. {note}" if note else text
 
 
 def overview(told: Story) -> list[Flowable]:

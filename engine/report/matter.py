@@ -17,6 +17,7 @@ from engine.program_identity import ProgramIdentity
 from engine.results import Assessment
 from engine.retrace import Retrace
 from engine.validation import Outcome
+from engine.variant import Variant
 from engine.variant_comparison import VariantComparison
 
 
@@ -77,6 +78,10 @@ class Matter:
         Of the places, as far as they were computed.
     traced : tuple of TracedPlace
         The place of most concern of each category.
+    whole : Layout or None
+        The base with its variants; None: the layout that was assessed.
+    variant : Variant or None
+        The one that was assessed; None: the base.
     """
 
     assessment: Assessment
@@ -91,9 +96,21 @@ class Matter:
     comparison: VariantComparison | None = None
     budgets: tuple[Budget, ...] = ()
     traced: tuple[TracedPlace, ...] = ()
+    whole: Layout | None = None
+    variant: Variant | None = None
     identity: ProgramIdentity = field(default_factory=ProgramIdentity)
 
     @property
     def layout(self) -> Layout:
         """The layout that was assessed."""
         return self.assessment.layout
+
+    @property
+    def source(self) -> Layout:
+        """The layout as its file has it, with every variant."""
+        return self.layout if self.whole is None else self.whole
+
+    @property
+    def shown(self) -> str:
+        """What the title block names: "base", or the variant."""
+        return "base" if self.variant is None else self.variant.title

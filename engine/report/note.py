@@ -12,13 +12,13 @@ from engine.origins import assumptions
 from engine.picture import Picture, map_picture
 from engine.picture.room_drawing import room_drawing
 from engine.printed_text import one_line
+from engine.report.choices import Paper
 from engine.report.drawings import room_views
 from engine.report.figures import Figure
 from engine.report.front import HEADLINE, letterhead
 from engine.report.maps import plan_of_map
 from engine.report.matter import HeightMap, Matter
 from engine.report.names import Wording
-from engine.report.page import Paper
 from engine.report.summary import at_risk, state_text
 from engine.report.text import (
     SMALL_BULLET,
@@ -75,6 +75,7 @@ def note_story(
     cases = [case.title for case in matter.layout.cases if case.counted]
     facts = [
         ("Question", brief(title.question, room.text) or "not stated"),
+        *([] if matter.variant is None else [("Variant", matter.variant.title)]),
         ("Load cases that count", brief(", ".join(cases), 300)),
         ("Scope", brief(title.scope, room.text) or "not stated"),
     ]

@@ -27,7 +27,7 @@ def options(matter: Matter, words: Wording, width: float) -> list[Flowable]:
         return []
     names = _names(found, words)
     made: list[Flowable] = [paragraph(EXPLAINED)]
-    notes = {v.id: v.note for v in matter.layout.variants}
+    notes = {v.id: v.note for v in matter.source.variants}
     made += bullets(
         [
             f"{c.title}: {notes.get(c.variant) or 'nothing is said about it'}"

@@ -5,9 +5,8 @@ from __future__ import annotations
 import io
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import Any, Literal
+from typing import Any
 
-from reportlab.lib.pagesizes import A3, A4, LETTER, TABLOID
 from reportlab.lib.units import mm
 from reportlab.pdfbase import pdfmetrics
 from reportlab.pdfbase.ttfonts import TTFont
@@ -16,35 +15,15 @@ from reportlab.platypus import BaseDocTemplate, Flowable, Frame, PageTemplate
 
 import engine
 from engine.errors import Cancelled, Progress, stop_if
-from engine.layout import Layout
+from engine.items import TitleData
 from engine.printed_text import BOLD, REGULAR, one_line
 from engine.report.attachments import Attachment, attach
+from engine.report.choices import MARGIN, TITLE_BLOCK, Paper
 from engine.report.scripts import ScriptCanvas
-from engine.report.title_block import TITLE_BLOCK, draw_title_block
+from engine.report.title_block import draw_title_block
 
 FONT = "Lodestead Sans"
 BOLD_FONT = "Lodestead Sans Bold"
-
-#: White edge around everything that is printed. [mm]
-MARGIN = 15.0
-
-Orientation = Literal["portrait", "landscape"]
-
-#: Short and long side. [pt]
-PAPERS: dict[str, tuple[float, float]] = {
-    "A4": A4,
-    "A3": A3,
-    "Letter": LETTER,
-    "Tabloid": TABLOID,
-}
-
-#: How text pages lie: on large paper lines would become too long upright.
-ORIENTATIONS: dict[str, Orientation] = {
-    "A4": "portrait",
-    "A3": "landscape",
-    "Letter": "portrait",
-    "Tabloid": "landscape",
-}
 
 #: Times the document is laid out until page references agree with the pages.
 _MOST_PASSES = 4
@@ -52,41 +31,6 @@ _MOST_PASSES = 4
 #: Pages by the name of what begins on them.
 Pages = Mapping[str, int]
 MakeStory = Callable[[Pages], list[Flowable]]
-
-
-@dataclass(frozen=True)
-class Paper:
-    """Size of the sheet and of the space for text. [mm]"""
-
-    width: float
-    height: float
-
-    @property
-    def orientation(self) -> Orientation:
-        """How the sheet lies."""
-        return "portrait" if self.width < self.height else "landscape"
-
-    @property
-    def turned(self) -> Paper:
-        """The same sheet, lying the other way."""
-        return Paper(self.height, self.width)
-
-    @property
-    def text_width(self) -> float:
-        """[mm]"""
-        return self.width - 2 * MARGIN
-
-    @property
-    def text_height(self) -> float:
-        """[mm]"""
-        return self.height - 2 * MARGIN - TITLE_BLOCK - 4.0
-
-
-def paper(layout: Layout) -> Paper:
-    """The paper that the layout's settings ask for, as text pages lie."""
-    short, long = (side / mm for side in PAPERS[layout.settings.paper])
-    upright = ORIENTATIONS[layout.settings.paper] == "portrait"
-    return Paper(short, long) if upright else Paper(long, short)
 
 
 def register_fonts() -> None:
@@ -121,11 +65,23 @@ class Laid:
     count: int
 
 
+@dataclass(frozen=True)
+class Frontispiece:
+    """What the document says of itself: its title data, its variant, its subject.
+
+    `shown` names the variant; `subject` is for the document's metadata.
+    """
+
+    title: TitleData
+    shown: str
+    subject: str
+
+
 def pdf(
-    layout: Layout,
+    front: Frontispiece,
+    sheet: Paper,
     make_story: MakeStory,
     *,
-    subject: str,
     attachments: Sequence[Attachment] = (),
     watch: Watch = UNWATCHED,
 ) -> Laid:
@@ -136,8 +92,6 @@ def pdf(
     make_story : callable
         Gives the flowables anew, from the pages on which things begin; these are not
         known (empty) the first time.
-    subject : str
-        What the document is, for its metadata.
 
     Notes
     -----
@@ -147,7 +101,7 @@ def pdf(
     laid = Laid(b"", {}, 0)
     for k in range(_MOST_PASSES):
         part = replace(watch, progress=_share(watch.progress, k))
-        new = _laid_out(layout, make_story, laid, subject, attachments, part)
+        new = _laid_out(front, sheet, make_story, laid, attachments, part)
         if (new.pages, new.count) == (laid.pages, laid.count):
             return new
         laid = new
@@ -167,23 +121,22 @@ def _share(progress: Progress | None, attempt: int) -> Progress | None:
 
 
 def _laid_out(
-    layout: Layout,
+    front: Frontispiece,
+    sheet: Paper,
     make_story: MakeStory,
     before: Laid,
-    subject: str,
     attachments: Sequence[Attachment],
     watch: Watch,
 ) -> Laid:
     file = io.BytesIO()
-    title = layout.title
-    sheet = paper(layout)
+    title = front.title
     document = _Document(
         file,
         watch,
         pagesize=(sheet.width * mm, sheet.height * mm),
         title=one_line(title.project or title.name or "Magnetic field")[:300],
         author=one_line(title.prepared_by)[:300],
-        subject=subject,
+        subject=front.subject,
         keywords=one_line(f"{title.document_number} {title.revision}")[:300],
         creator=f"Lodestead {engine.__version__}",
         producer=f"Lodestead {engine.__version__}",
@@ -194,7 +147,7 @@ def _laid_out(
     )
     count = before.count
     document.addPageTemplates(
-        [_template(each, layout, count) for each in (sheet, sheet.turned)]
+        [_template(each, front, count) for each in (sheet, sheet.turned)]
     )
     document.attached = attachments
     story = make_story(before.pages)
@@ -203,7 +156,7 @@ def _laid_out(
     return Laid(file.getvalue(), document.begun, document.page)
 
 
-def _template(sheet: Paper, layout: Layout, count: int) -> PageTemplate:
+def _template(sheet: Paper, front: Frontispiece, count: int) -> PageTemplate:
     frame = Frame(
         MARGIN * mm,
         (MARGIN + TITLE_BLOCK + 4.0) * mm,
@@ -217,8 +170,8 @@ def _template(sheet: Paper, layout: Layout, count: int) -> PageTemplate:
 
     def draw(canvas: Canvas, document: BaseDocTemplate) -> None:
         area = (MARGIN, MARGIN, sheet.text_width)
-        sheet_text = f"{document.page} of {count}"
-        draw_title_block(canvas, layout.title, area, sheet_text, (FONT, BOLD_FONT))
+        told = (front.shown, f"{document.page} of {count}")
+        draw_title_block(canvas, front.title, area, told, (FONT, BOLD_FONT))
 
     return PageTemplate(
         id=sheet.orientation,

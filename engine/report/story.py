@@ -14,8 +14,9 @@ from reportlab.platypus import (
 )
 
 from engine.picture import Picture
+from engine.report.choices import Orientation, Paper
 from engine.report.figures import Figure, FigureRow
-from engine.report.page import Orientation, Pages, Paper
+from engine.report.page import Pages
 from engine.report.text import (
     SUBHEADING,
     Heading,

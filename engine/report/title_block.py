@@ -8,9 +8,7 @@ from reportlab.pdfgen.canvas import Canvas
 import engine
 from engine.items import TitleData
 from engine.printed_text import fitted, one_line, text_width, wrapped
-
-#: Height of the title block. [mm]
-TITLE_BLOCK = 20.0
+from engine.report.choices import TITLE_BLOCK
 
 #: Sizes that a value may have until it fits. [pt]
 _SIZES = (7.5, 6.5, 5.5)
@@ -26,7 +24,7 @@ def draw_title_block(
     canvas: Canvas,
     title: TitleData,
     area: tuple[float, float, float],
-    sheet: str,
+    told: tuple[str, str],
     fonts: tuple[str, str],
 ) -> None:
     """Two rows of cells, each a small heading over its value.
@@ -35,15 +33,17 @@ def draw_title_block(
     ----------
     area : left, bottom and width
         [mm]
-    sheet : str
-        "3 of 18".
+    told : two strings
+        What is shown, "base" or a variant's name; and the sheet, "3 of 18".
     fonts : names of the regular and the bold font
     """
+    shown, sheet = told
     rows: tuple[tuple[Cell, ...], ...] = (
         (
-            ("Project", title.project, 0.5),
-            ("Client", title.client, 0.3),
-            ("Calculated with", f"Lodestead {engine.__version__}", 0.2),
+            ("Project", title.project, 0.42),
+            ("Client", title.client, 0.22),
+            ("Variant", shown, 0.2),
+            ("Calculated with", f"Lodestead {engine.__version__}", 0.16),
         ),
         (
             ("Document", title.document_number, 0.18),

@@ -14,6 +14,7 @@ from engine.items import ConfirmedRemark, SourceDocument, TitleData, ValueOrigin
 from engine.layout import Layout, Settings
 from engine.picture import MapSubject, ReferenceLine
 from engine.places import Enclosure, MeasuredValue, Receptor, Room, Zone
+from engine.report.choices import Choices
 from engine.report.document import report_pdf
 from engine.report.matter import HeightMap, Matter
 from engine.results import (
@@ -266,4 +267,4 @@ def replace_code(said):
 
 
 def made_pdf(text="", unit="µT", paper="A4", kind="report"):
-    return report_pdf(matter(text, unit, paper), kind=kind)
+    return report_pdf(matter(text, unit, paper), Choices(kind=kind))

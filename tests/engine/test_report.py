@@ -21,9 +21,9 @@ from reported_room import (
 )
 
 from engine.layout import Layout
+from engine.report.choices import MARGIN, PAPERS
 from engine.report.document import report_pdf
 from engine.report.matter import Matter
-from engine.report.page import MARGIN, PAPERS
 from engine.report.wording import CAUTIONS, NOT_MODELLED, STATE_SENTENCES
 from engine.results import (
     STATES,

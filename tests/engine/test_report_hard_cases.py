@@ -22,6 +22,7 @@ from engine.errors import ComputationCancelled, UserError
 from engine.items import IssuedRevision, Item
 from engine.layout import Layout
 from engine.report import scripts
+from engine.report.choices import Choices
 from engine.report.document import report_pdf
 from engine.report.matter import Matter
 from engine.report.page import Watch
@@ -83,7 +84,7 @@ def filled_matter(text):
 @pytest.mark.parametrize("kind", ["report", "note"])
 @pytest.mark.parametrize("name", TEXTS)
 def test_any_text_in_every_field_is_printed_within_the_margins(name, kind):
-    data = report_pdf(filled_matter(TEXTS[name]), kind=kind)
+    data = report_pdf(filled_matter(TEXTS[name]), Choices(kind=kind))
     assert_within_margins(data)
     reader = PdfReader(io.BytesIO(data))
     for page in reader.pages:
@@ -147,7 +148,7 @@ def test_a_great_layout_has_a_report():
 def test_nothing_entered_gives_a_document_that_says_so(kind):
     empty = Layout()
     result = Assessment(empty, (CaseResult(empty.cases[0], (), (), ()),), (), ())
-    data = report_pdf(Matter(result, (), "µT"), kind=kind)
+    data = report_pdf(Matter(result, (), "µT"), Choices(kind=kind))
     text = " ".join(
         " ".join(page.extract_text().split())
         for page in PdfReader(io.BytesIO(data)).pages
@@ -183,7 +184,7 @@ def at_risk():
 
 @pytest.mark.parametrize("kind", ["report", "note"])
 def test_persons_at_particular_risk_have_no_state(kind):
-    text = text_of(report_pdf(at_risk(), kind=kind))
+    text = text_of(report_pdf(at_risk(), Choices(kind=kind)))
     assert INDIVIDUAL in text
     assert "not evaluable: " not in text.partition("State Holds when")[0]
     assert "below the reference level, uncertainty included (below)" not in text

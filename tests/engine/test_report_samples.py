@@ -16,8 +16,8 @@ from pypdf import PdfReader
 
 from engine import units
 from engine.layout_file import decode, read
+from engine.report.choices import MARGIN, Choices
 from engine.report.document import report_pdf
-from engine.report.page import MARGIN
 from engine.report.wording import QUESTIONS, STATE_SENTENCES
 from engine.report.writing import computed_matter
 
@@ -28,12 +28,12 @@ NAMES = [path.stem for path in SAMPLES]
 @cache
 def matter(name):
     path = next(path for path in SAMPLES if path.stem == name)
-    return computed_matter(read(path), with_checks=False)
+    return computed_matter(read(path), Choices(validate=False))
 
 
 @cache
 def content(name, kind="report"):
-    return report_pdf(matter(name), kind=kind)
+    return report_pdf(matter(name), Choices(kind=kind))
 
 
 @cache
@@ -106,7 +106,7 @@ def test_open_remarks_are_printed(name):
 @pytest.mark.parametrize("kind", ["report", "note"])
 @pytest.mark.parametrize("name", NAMES)
 def test_equal_matter_gives_equal_bytes(name, kind):
-    assert report_pdf(matter(name), kind=kind) == content(name, kind)
+    assert report_pdf(matter(name), Choices(kind=kind)) == content(name, kind)
 
 
 @pytest.mark.parametrize("name", NAMES)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+import re
 
 import pytest
 from msgspec.structs import replace
@@ -12,10 +13,17 @@ from engine.assessment import assess
 from engine.circuits import BalancedCurrent, Circuit, LoadCase
 from engine.errors import ComputationCancelled, UserError
 from engine.layout import Layout, Settings
+from engine.layout_file import decode
 from engine.places import Receptor, Room, Zone
 from engine.report import maps
-from engine.report.writing import write_report
+from engine.report.choices import ORIENTATIONS, PAPERS, Choices
+from engine.report.document import report_pdf
+from engine.report.matter import Matter
+from engine.report.writing import computed_matter, report_bytes, write_report
+from engine.results import Assessment, CaseResult
 from engine.runs import CircuitShare, Flat, Run
+from engine.variant import Variant, VariantItems
+from engine.variants import layout_of
 
 ROOM = ((0.0, 0.0), (4.0, 0.0), (4.0, 3.0), (0.0, 3.0))
 
@@ -53,14 +61,14 @@ def test_a_report_is_computed_in_the_asked_unit(tmp_path):
     told = []
     path = tmp_path / "report.pdf"
     write_report(
-        layout(), path, unit="uT", progress=lambda share, _: told.append(share)
+        layout(), path, Choices(unit="uT"), progress=lambda share, _: told.append(share)
     )
     text = text_of(path)
     assert "Entered currents: RMS resultant, z 1.00 m" in text
     assert "Largest B [µT]" in text
     assert told == sorted(told)
     assert told[-1] == 1.0
-    write_report(layout(), path, unit="mG")
+    write_report(layout(), path, Choices(unit="mG"))
     assert "Largest B [mG]" in text_of(path)
 
 
@@ -97,6 +105,64 @@ def test_an_assessment_of_another_layout_is_refused(tmp_path):
     other = assess(layout(rms=100.0))
     with pytest.raises(UserError, match="another layout or of an earlier state"):
         write_report(layout(), tmp_path / "report.pdf", assessment=other)
+
+
+def with_variant():
+    moved = replace(layout().runs[0], route=((0.5, 1.5, 1.5), (3.5, 1.5, 1.5)))
+    variant = Variant(
+        id="low", name="Lower bars", replaced=VariantItems(runs=(moved,)), note="Cheap."
+    )
+    return replace(layout(), variants=(variant,))
+
+
+@pytest.mark.parametrize("kind", ["report", "note"])
+def test_a_variant_has_a_report_that_names_it_on_every_page(kind):
+    whole = with_variant()
+    content = report_bytes(whole, Choices(kind=kind, variant="Lower bars"))
+    reader = PdfReader(io.BytesIO(content))
+    for page in reader.pages:
+        assert "Variant" in page.extract_text()
+        assert "Lower bars" in page.extract_text()
+    text = " ".join(" ".join(page.extract_text().split()) for page in reader.pages)
+    largest = assess(layout_of(whole, "low"), certify=True).zones[0].maxima[0].value
+    assert f"{largest * 1e6:.3g}" in text
+    (data,) = reader.attachments["layout.json"]
+    assert decode(data, "layout.json") == whole
+    if kind == "report":
+        assert "B [µT] Base Lower bars" not in text
+        assert "Place, level Base Lower bars" in text
+
+
+def test_the_base_beside_a_variant_is_called_base():
+    found = computed_matter(with_variant(), Choices(validate=False))
+    reader = PdfReader(io.BytesIO(report_pdf(found)))
+    for page in reader.pages:
+        assert re.search(r"Variant\s+base", page.extract_text())
+    other = computed_matter(
+        with_variant(), Choices(validate=False, variant="low")
+    ).comparison
+    for mine, its in zip(found.comparison.rows, other.rows, strict=True):
+        assert mine.cells == its.cells
+
+
+def test_a_variant_that_is_not_there_is_named():
+    with pytest.raises(UserError, match="no variant “Higher bars”"):
+        report_bytes(with_variant(), Choices(variant="Higher bars"))
+
+
+@pytest.mark.parametrize("paper", ["A4", "A3", "Letter", "Tabloid"])
+@pytest.mark.parametrize("orientation", [None, "portrait", "landscape"])
+def test_text_pages_lie_as_asked(paper, orientation):
+    empty = Layout()
+    result = Assessment(empty, (CaseResult(empty.cases[0], (), (), ()),), (), ())
+    choices = Choices(kind="note", paper=paper, orientation=orientation)
+    (page, *_) = PdfReader(
+        io.BytesIO(report_pdf(Matter(result, (), "µT"), choices))
+    ).pages
+    short, long = sorted(PAPERS[paper])
+    wanted = orientation or ORIENTATIONS[paper]
+    size = (short, long) if wanted == "portrait" else (long, short)
+    assert (page.mediabox.width, page.mediabox.height) == pytest.approx(size, abs=0.01)
 
 
 def test_maps_show_the_counted_case_with_the_largest_value():
