@@ -147,7 +147,7 @@ def _why_masked(ready: Loaded, points: object) -> str:
     grid = np.asarray(points)
     for keepout in ready.currents.closed:
         if keepout.masks(grid).any():
-            return f"in the closed enclosure “{keepout.title}”"
+            return f"in {keepout.words}"
     return "inside a conductor"
 
 

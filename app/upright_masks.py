@@ -37,7 +37,9 @@ class UprightMasks:
                 continue
             for left, right in self._upright.cut(keepout.outline, self._rect):
                 corners = ((left, low), (right, low), (right, high), (left, high))
-                found.append(MaskedArea(np.array(corners), f"closed: {keepout.title}"))
+                state = "kept clear" if keepout.is_open else "closed"
+                text = f"{state}: {keepout.title}"
+                found.append(MaskedArea(np.array(corners), text))
         return tuple(found)
 
     def largest(

@@ -52,7 +52,7 @@ def at_text(change: Change, x: float, y: float) -> str:
     if one is None or other is None:
         return ""
     if _at(change, maps.mask.astype(float), x, y):
-        return f"{place} · not assessed: inside a conductor or a closed enclosure"
+        return f"{place} · not assessed: inside a conductor or an enclosure"
     texts = [significant(in_unit(v, unit)) for v in (one, other)]
     text = f"{place} · {before} {texts[0]} {unit} · {after} {texts[1]} {unit}"
     if one > 0:

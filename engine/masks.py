@@ -1,9 +1,14 @@
-"""Places where nobody is: inside conductors, too near to them, in closed enclosures."""
+"""Places where nobody is: inside conductors, too near to them, in closed enclosures.
+
+At an enclosure that is open for work nobody is within its front clearance, where one
+is typed.
+"""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 import shapely
@@ -13,8 +18,8 @@ from shapely.geometry import Polygon
 from engine import field
 from engine.circuits import LoadCase
 from engine.conductor import Conductor
-from engine.items import Outline
 from engine.layout import Layout
+from engine.motions import cos_sin
 from engine.places import Enclosure
 from engine.runs import Bar, Round
 from engine.sampling import area_of
@@ -26,16 +31,43 @@ Bools = NDArray[np.bool_]
 #: A point this near to a mask's surface lies on it, and is not masked. [m]
 _ON_SURFACE = 1e-9
 
+#: Cosine to the front's way of a side that belongs to the front: up to 45° off it.
+_FACING = 0.5**0.5
+
 
 @dataclass(frozen=True, eq=False)
 class Keepout:
-    """An upright prism that masks the points strictly inside it."""
+    """An upright prism that masks the points strictly inside it.
+
+    Attributes
+    ----------
+    outline : Polygon
+        On plan. [m]
+    z_from, z_to : float
+        [m]
+    is_open : bool
+        What is kept clear of an enclosure open for work, its footprint included; else
+        the footprint of a closed one.
+    """
 
     item: str
     title: str
     outline: Polygon
     z_from: float
     z_to: float
+    is_open: bool = False
+
+    @property
+    def key(self) -> tuple[str, bool]:
+        """Equal for equal prisms of the cases of one layout."""
+        return self.item, self.is_open
+
+    @property
+    def words(self) -> str:
+        """What a place inside lies in."""
+        if self.is_open:
+            return f"the front clearance of “{self.title}”, open for work"
+        return f"the closed enclosure “{self.title}”"
 
     def masks(self, points: Floats) -> Bools:
         """(n,) whether each point lies inside; its faces do not count."""
@@ -56,24 +88,42 @@ def open_for_work(enclosure: Enclosure, case: LoadCase | None) -> bool:
 
 
 def keepouts(layout: Layout, case: LoadCase | None = None) -> tuple[Keepout, ...]:
-    """The closed enclosures of a layout, widened by their typed clearance."""
-    return tuple(
-        _keepout(enclosure)
-        for enclosure in layout.enclosures
-        if not open_for_work(enclosure, case)
-    )
+    """Closed enclosures, and what is kept clear of those that are open for work."""
+    found = []
+    for e in layout.enclosures:
+        is_open = open_for_work(e, case)
+        if is_open and not e.front_clearance:
+            continue
+        area = area_of(e.footprint)
+        outline = _kept_clear(area, e) if is_open else area
+        shapely.prepare(outline)
+        found.append(Keepout(e.id, e.title, outline, e.z_from, e.z_to, is_open))
+    return tuple(found)
 
 
-def _keepout(e: Enclosure) -> Keepout:
-    outline = _widened(e.footprint, e.front_clearance)
-    return Keepout(e.id, e.title, outline, e.z_from, e.z_to)
+def _kept_clear(area: Polygon, enclosure: Enclosure) -> Polygon:
+    """The footprint and the band of the clearance before its front.
 
-
-def _widened(outline: Outline, by: float | None) -> Polygon:
-    area = area_of(outline)
-    widened = area if not by else area.buffer(by, quad_segs=16)
-    shapely.prepare(widened)
-    return widened
+    Before every side where no front is stated. The band stands straight before the
+    sides that face the front's way: beside them the panels stay closed.
+    """
+    by = enclosure.front_clearance or 0.0
+    if enclosure.front is None or area.is_empty:
+        return area.buffer(by, quad_segs=16)
+    corners = shapely.get_coordinates(shapely.orient_polygons(area).exterior)
+    # Outside is to the right of a side walked counter-clockwise.
+    out = np.diff(corners, axis=0)[:, ::-1] * (1.0, -1.0)
+    out /= np.linalg.norm(out, axis=1, keepdims=True)
+    facing = out @ np.array(cos_sin(enclosure.front))
+    is_front = facing >= min(_FACING, float(facing.max())) - 1e-9
+    bands = [
+        Polygon([a, b, b + by * n, a + by * n])
+        for (a, b), n, is_one in zip(pairwise(corners), out, is_front, strict=True)
+        if is_one
+    ]
+    made = shapely.union_all([area, *bands])
+    # Bands share a side with the footprint; should rounding part them, it alone masks.
+    return made if isinstance(made, Polygon) else area
 
 
 def masked(

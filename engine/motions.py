@@ -204,15 +204,20 @@ def _board(board: Board, motion: Motion) -> Board:
             shape=_shape(one.shape, motion),
         )
 
-    direction = motion.degrees + side * board.direction
     return replace(
         board,
         origin=motion.point(board.origin),
-        direction=neat(direction % 360.0),
+        direction=_turned(board.direction, motion),
         poles=tuple(pole(one) for one in board.poles),
         ways=tuple(replace(way, dropper=dropper(way.dropper)) for way in board.ways),
         footprint=tuple(motion.point(corner) for corner in board.footprint),
     )
+
+
+def _turned(direction: float, motion: Motion) -> float:
+    """A direction on plan as the motion takes it. [degrees]"""
+    side = -1.0 if motion.mirrors else 1.0
+    return neat((motion.degrees + side * direction) % 360.0)
 
 
 def _transformer(unit: Transformer, motion: Motion) -> Transformer:
@@ -237,6 +242,7 @@ def _area(
                 footprint=tuple(motion.point(corner) for corner in item.footprint),
                 z_from=lifted(item.z_from),
                 z_to=lifted(item.z_to),
+                front=None if item.front is None else _turned(item.front, motion),
             )
         case Room():
             return replace(

@@ -31,7 +31,7 @@ ENTERED_VALUES: dict[type[Item], tuple[str, ...]] = {
     Settings: ("uncertainty", "tolerances"),
     Storey: ("floor_level",),
     Room: ("outline", "floor_level", "ceiling_level"),
-    Enclosure: ("footprint", "z_from", "z_to", "state", "front_clearance"),
+    Enclosure: ("footprint", "z_from", "z_to", "state", "front_clearance", "front"),
     Circuit: (
         "supply", "base_frequency", "voltage", "demand", "spectrum", "neutral",
         "net_current", "phase_relation",
@@ -55,6 +55,7 @@ _SILENT: frozenset[tuple[type[Item], str]] = frozenset(
     {
         (Settings, "tolerances"),
         (Enclosure, "front_clearance"),
+        (Enclosure, "front"),
         (Board, "rated_current"),
         (Run, "turns"),
         (Run, "rated_current"),
@@ -76,7 +77,8 @@ _SILENT: frozenset[tuple[type[Item], str]] = frozenset(
 _UNITS = {
     "floor_level": "m", "ceiling_level": "m", "z_from": "m", "z_to": "m",
     "front_clearance": "m", "clearance": "m", "base_frequency": "Hz", "voltage": "V",
-    "direction": "°", "rated_current": "A", "at": "m", "star": "m", "heights": "m",
+    "direction": "°", "front": "°", "rated_current": "A", "at": "m", "star": "m",
+    "heights": "m",
 }  # fmt: skip
 
 #: What an empty field of a name stands for.

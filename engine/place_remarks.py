@@ -14,7 +14,7 @@ from engine.faults import Remark
 from engine.items import Point3
 from engine.layout import Layout
 from engine.levels import covers, level_at, what_is_missing
-from engine.masks import keepouts
+from engine.masks import keepouts, open_for_work
 from engine.origins import assumptions
 from engine.places import Receptor, Zone
 from engine.sampling import area_of
@@ -36,6 +36,7 @@ def place_remarks(layout: Layout) -> Iterator[Remark]:
     yield from _missing_heights(layout)
     yield from _backing_drawings(layout)
     yield from _masked_zones(layout)
+    yield from _idle_clearances(layout)
     yield from _particular_risk(layout)
     yield from _assumed_values(layout)
 
@@ -215,8 +216,8 @@ def _backing_drawings(layout: Layout) -> Iterator[Remark]:
 
 
 def _masked_zones(layout: Layout) -> Iterator[Remark]:
-    """W05: closed enclosures that take a part of a zone out of the evaluation."""
-    closed = {k.item: k for case in layout.cases for k in keepouts(layout, case)}
+    """W05: enclosures that take a part of a zone out of the evaluation."""
+    closed = {k.key: k for case in layout.cases for k in keepouts(layout, case)}
     titles = {enclosure.id: enclosure.title for enclosure in layout.enclosures}
     for zone in layout.zones:
         area = area_of(zone.outline)
@@ -232,18 +233,38 @@ def _masked_zones(layout: Layout) -> Iterator[Remark]:
         ]
         if not found:
             continue
-        names = ", ".join(f"“{titles[k.item]}”" for k in found)
+        names = ", ".join(
+            f"“{titles[item]}”" for item in dict.fromkeys(k.item for k in found)
+        )
+        is_any_open = any(k.is_open for k in found)
+        kept_clear = " or are kept clear before open ones" if is_any_open else ""
         masked = shapely.union_all([k.outline for k in found]).intersection(area)
         at = masked.representative_point()
         yield Remark(
             "W05",
             "note",
             f"Zone “{zone.title}”: {significant(masked.area)} m² of "
-            f"{significant(area.area)} m² lie in closed enclosures "
+            f"{significant(area.area)} m² lie in closed enclosures{kept_clear} "
             f"({names}) and are not evaluated at their heights.",
-            (zone.id, *(k.item for k in found)),
+            (zone.id, *dict.fromkeys(k.item for k in found)),
             (at.x, at.y, low),
         )
+
+
+def _idle_clearances(layout: Layout) -> Iterator[Remark]:
+    """W37: front clearances that count in no load case."""
+    for enclosure in layout.enclosures:
+        is_opened = any(open_for_work(enclosure, case) for case in layout.cases)
+        if enclosure.front_clearance and not is_opened:
+            yield Remark(
+                "W37",
+                "note",
+                f"The front clearance of “{enclosure.title}” counts nowhere: it is "
+                "what a worker's body keeps from the open front, and the enclosure is "
+                "closed in every load case. Open it in a load case, or leave the "
+                "clearance empty.",
+                (enclosure.id,),
+            )
 
 
 def _particular_risk(layout: Layout) -> Iterator[Remark]:

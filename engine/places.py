@@ -9,6 +9,7 @@ from msgspec import Meta
 from engine.items import (
     Amperes,
     Coordinate,
+    Degrees,
     Digest,
     Distance,
     Id,
@@ -64,8 +65,14 @@ class Room(Item, frozen=True, kw_only=True):
 class Enclosure(Item, frozen=True, kw_only=True):
     """A footprint and z range where nobody can stand.
 
-    Closed: all of it is masked, and where a front clearance is typed, so is a band of
-    that width around it. Open for work: only conductors are masked.
+    Closed: just the footprint is masked, since people walk and lean along its panels.
+    Open for work: only conductors are masked, since hands reach in.
+
+    `front_clearance` is the nearest distance that a worker's body keeps from the open
+    front: the working distance of the trade, stated by who plans the work. It counts
+    only while the enclosure is open for work; nobody's body is then nearer to the front
+    nor inside, so that both are masked. Whoever assesses hands and arms leaves it
+    empty.
     """
 
     footprint: Outline
@@ -74,6 +81,8 @@ class Enclosure(Item, frozen=True, kw_only=True):
     state: Literal["closed", "open for work"] = "closed"
     #: Typed by the user, never preset. [m]
     front_clearance: Length | None = None
+    #: Where the open front faces on plan, 0 is +x; None: every side opens. [degrees]
+    front: Degrees | None = None
 
 
 class Uncertainty(Value, frozen=True, kw_only=True):

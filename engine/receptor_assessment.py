@@ -59,7 +59,7 @@ def _masked_reason(loaded: LoadedLayout, case: CaseCurrents, receptor: Receptor)
     points = np.array([receptor.at], np.float64)
     for keepout in case.closed:
         if keepout.masks(points)[0]:
-            return f"It lies in the closed enclosure “{keepout.title}”."
+            return f"It lies in {keepout.words}."
     if loaded.fields.masked_at(case, points, 0.0)[0]:
         return "It lies inside a conductor, where no value can be given."
     return ""

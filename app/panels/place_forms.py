@@ -6,6 +6,7 @@ from typing import Any, get_args
 
 from app.panels.kinds import (
     AMPERES,
+    DEGREES,
     PERCENT,
     Amount,
     Choice,
@@ -139,7 +140,15 @@ ENCLOSURE = (
         "front_clearance",
         "Front clearance",
         Distance(is_optional=True),
-        "Band around the closed enclosure where nobody stands; empty for none",
+        "What a worker's body keeps from the open front, while open for work; may be "
+        "empty",
+    ),
+    Part(
+        "front",
+        "Front faces",
+        Amount(DEGREES, "°", is_optional=True),
+        "Where the open front faces, in degrees: 0 is +x, counter-clockwise; empty: "
+        "every side opens",
     ),
     plan_table("footprint", "Footprint", _OUTLINE_TIP),
 )

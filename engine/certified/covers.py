@@ -170,7 +170,7 @@ def _add_enclosures(
     covers: list[Cover], fields: CaseFields, outline: Polygon, z: tuple[float, float]
 ) -> None:
     """The faces of closed enclosures inside the volume."""
-    closed = {keepout.item: keepout for case in fields.cases for keepout in case.closed}
+    closed = {keepout.key: keepout for case in fields.cases for keepout in case.closed}
     for keepout in closed.values():
         low, high = max(z[0], keepout.z_from), min(z[1], keepout.z_to)
         if not low < high or keepout.outline.is_empty:

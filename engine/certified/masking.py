@@ -72,7 +72,7 @@ class Masks:
         self._slopes = slopes_of(self._legs)
         self._clearance = clearance
         self._closed = [case.closed for case in cases]
-        items = dict.fromkeys(k.item for closed in self._closed for k in closed)
+        items = dict.fromkeys(k.key for closed in self._closed for k in closed)
         # Sums of these stand for sets; two sets of one sum do not happen.
         marks = np.random.default_rng(1).integers(
             1, 2**62, len(self._legs) + len(items)
@@ -108,17 +108,17 @@ class Masks:
         shadow = _shadow(boxes) if any(self._closed) else None
         heights = boxes.corners[:, :, 2]
         low, high = heights.min(axis=1), heights.max(axis=1)
-        known: dict[str, tuple[Bools, Bools]] = {}
+        known: dict[tuple[str, bool], tuple[Bools, Bools]] = {}
         for row, tie, closed in zip(states, ties, self._closed, strict=True):
             whose = marks.copy()
             row[(marks != 0) | loose] = PART
             for keepout in closed:
-                if keepout.item not in known:
-                    known[keepout.item] = _in_prism(keepout, shadow, low, high)
-                inside, near = known[keepout.item]
+                if keepout.key not in known:
+                    known[keepout.key] = _in_prism(keepout, shadow, low, high)
+                inside, near = known[keepout.key]
                 row[near] = np.maximum(row[near], PART)
                 row[inside] = MASKED
-                whose[near] += self._marks[keepout.item]
+                whose[near] += self._marks[keepout.key]
             row[hidden] = MASKED
             tie[whose != 0] = whose[whose != 0]
         return states, ties, np.broadcast_to(loose, states.shape)

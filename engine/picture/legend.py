@@ -165,9 +165,7 @@ def _entries(
             (((x, -1.0), (x + 2.0, 1.0)), Stroke((), 0.12, GREY))
             for x in (0.0, 1.3, 2.6, 3.9)
         ]
-        entries.append(
-            (lines, "not assessed: inside a conductor or a closed enclosure")
-        )
+        entries.append((lines, "not assessed: inside a conductor or an enclosure"))
     return entries
 
 

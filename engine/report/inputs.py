@@ -9,12 +9,13 @@ from engine.criteria import LevelRanges, LevelTable, ReferenceLevel
 from engine.items import Item
 from engine.layout import Layout
 from engine.origins import assumptions
-from engine.places import Room, Zone
+from engine.places import Enclosure, Room, Zone
 from engine.report.drawings import receptor_marks
 from engine.report.origin_words import origin_text, told_origin
 from engine.report.text import fact_table, paragraph, table
 from engine.report.wording import NO_LEVELS
 from engine.report.words import length, place, uncertainty_text
+from engine.typed_numbers import number_text
 from engine.units import flux_density_text
 
 
@@ -129,7 +130,8 @@ def places(layout: Layout, width: float) -> list[Flowable]:
             _outline(e.footprint, unit),
             f"from {length(e.z_from, unit)} to {length(e.z_to, unit)}"
             + (
-                f"; clearance around it {length(e.front_clearance, unit)}"
+                f"; open for work, a body keeps {length(e.front_clearance, unit)} "
+                f"from {_front(e)}"
                 if e.front_clearance
                 else ""
             ),
@@ -161,6 +163,13 @@ def _room_levels(room: Room, unit: str) -> str:
 
 def _from(layout: Layout, item: Item, field: str) -> str:
     return f"{field.replace('_', ' ')}: {origin_text(layout, item, field)}"
+
+
+def _front(enclosure: Enclosure) -> str:
+    """What a body keeps its distance from."""
+    if enclosure.front is None:
+        return "every side"
+    return f"the front, which faces {number_text(enclosure.front)}°"
 
 
 def _outline(outline: tuple[tuple[float, float], ...], unit: str) -> str:

@@ -111,10 +111,10 @@ METHOD: tuple[str, ...] = (
     "sum of the weighted peaks that are known, an upper bound.",
     "The largest value of a zone is searched between grid points too; how, and down to "
     "which distance, stands under the table of zones. Points inside conductors, in "
-    "closed enclosures and within the zone's clearance are masked, not assessed, and "
-    "their share is stated. Nearer than two bar widths or diameters to a conductor the "
-    "value counts and is marked “near field, even current assumed”: real current "
-    "crowds to the edges.",
+    "closed enclosures, within the front clearance of open ones and within the zone's "
+    "clearance are masked, not assessed, and their share is stated. Nearer than two "
+    "bar widths or diameters to a conductor the value counts and is marked “near "
+    "field, even current assumed”: real current crowds to the edges.",
     "A free end of a run is closed across its section by an assumed link, since the "
     "field of a current that does not close has no physical meaning. Parallel "
     "conductors share their current equally unless stated otherwise: an assumption.",

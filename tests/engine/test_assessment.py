@@ -360,20 +360,56 @@ def test_a_fault_of_another_zone_does_not_block_this_one():
     assert second.state == "not evaluable"
 
 
+OPENED: dict[str, tuple[str, ...]] = {"shut": (), "work": ("cabinet",)}
+#: Wider than the zone, so that its sides count nowhere.
+CABINET = Enclosure(
+    id="cabinet", footprint=((-3, 0), (3, 0), (3, 2), (-3, 2)), z_from=0, z_to=2
+)
+
+
 def test_a_closed_enclosure_is_masked_unless_the_case_opens_it():
-    cabinet = Enclosure(
-        id="cabinet", footprint=((-2, 0), (2, 0), (2, 2), (-2, 2)), z_from=0, z_to=2,
-        front_clearance=0.5,
-    )  # fmt: skip
     cases = (LoadCase(id="shut"), LoadCase(id="work", open_enclosures=("cabinet",)))
     (result,) = assess(
-        room(zone(levels=()), enclosures=(cabinet,), load_cases=cases)
+        room(zone(levels=()), enclosures=(CABINET,), load_cases=cases)
     ).zones
     shut, work = result.maxima
-    assert shut.value == pytest.approx(ampere(math.hypot(2.5, 0.5)), rel=2e-3)
+    assert shut.value == pytest.approx(ampere(math.hypot(2, 0.5)), rel=2e-3)
     assert work.value == pytest.approx(ampere(math.hypot(1, 0.5)), rel=1e-3)
-    assert result.masked_shares["shut"] == pytest.approx(0.75, abs=0.03)
+    assert result.masked_shares["shut"] == pytest.approx(0.5, abs=0.03)
     assert result.masked_shares["work"] == 0
+
+
+def test_a_body_keeps_the_front_clearance_while_the_enclosure_is_open():
+    shut, work = (LoadCase(id=id, open_enclosures=o) for id, o in OPENED.items())
+    for front, distance in ((None, 2.5), (90.0, 2.5), (0.0, 2.0), (270.0, 2.0)):
+        cabinet = replace(CABINET, front_clearance=0.5, front=front)
+        layout = room(zone(levels=()), enclosures=(cabinet,), load_cases=(shut, work))
+        (result,) = assess(layout).zones
+        closed, opened = result.maxima
+        assert closed.value == pytest.approx(ampere(math.hypot(2, 0.5)), rel=2e-3)
+        assert opened.value == pytest.approx(
+            ampere(math.hypot(distance, 0.5)), rel=2e-3
+        )
+
+
+def test_enclosures_masked_differently_by_case_do_not_mask_each_other():
+    shut, work = (LoadCase(id=id, open_enclosures=o) for id, o in OPENED.items())
+    cabinet = replace(CABINET, front_clearance=0.5)
+    volume = zone(levels=(), rule="maximum over volume", volume=(0.9, 1.1))
+    layouts = [
+        room(volume, enclosures=(cabinet,), load_cases=cases)
+        for cases in ((shut,), (work,), (shut, work))
+    ]
+    (alone,), (opened,), both = (assess(x).zones[0].maxima for x in layouts)
+    assert [m.value for m in both] == [alone.value, opened.value]
+
+
+def test_a_receptor_within_the_front_clearance_says_so():
+    cabinet = replace(CABINET, front_clearance=0.5, state="open for work")
+    place = Receptor(id="chest", at=(2.2, 1.0, 1.0))
+    layout = room(zone(levels=()), enclosures=(cabinet,), receptors=(place,))
+    (found,) = assess(layout).receptors
+    assert "front clearance of “cabinet”, open for work" in found.fields[0].reason
 
 
 def test_load_cases_scale_and_those_for_information_do_not_decide():

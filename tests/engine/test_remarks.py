@@ -553,8 +553,23 @@ def test_enclosure_in_a_zone_is_a_note(clean: Layout) -> None:
     assert "0.500 m² of 10.1 m²" in found.sentence
     opened = replace(cupboard, state="open for work")
     assert remarks(replace(clean, enclosures=(*clean.enclosures, opened))) == ()
+    values = ("footprint", "z_from", "z_to", "state", "front_clearance")
+    kept = confirmed(replace(opened, front_clearance=0.4), *values)
+    found = only(replace(clean, enclosures=(*clean.enclosures, kept)), "W05")
+    assert "or are kept clear before open ones (“" in found.sentence
     low = replace(cupboard, z_to=0.3)
     assert remarks(replace(clean, enclosures=(*clean.enclosures, low))) == ()
+
+
+def test_a_front_clearance_of_what_is_never_open_counts_nowhere(clean: Layout) -> None:
+    values = ("footprint", "z_from", "z_to", "state", "front_clearance")
+    kept = confirmed(replace(clean.enclosures[0], front_clearance=0.4), *values)
+    layout = replace(clean, enclosures=(kept, *clean.enclosures[1:]))
+    found = only(layout, "W37")
+    assert found.items == (kept.id,)
+    case = replace(layout.cases[0], open_enclosures=(kept.id,))
+    opened = replace(layout, load_cases=(case, *layout.cases[1:]))
+    assert "W37" not in {remark.code for remark in remarks(opened)}
 
 
 def test_persons_at_particular_risk_need_an_assessment_of_their_own(
