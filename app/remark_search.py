@@ -11,7 +11,7 @@ from app.worker import Outdated, Worker
 from engine.items import ConfirmedRemark
 from engine.layout import Layout
 from engine.origins import Assumption, assumptions
-from engine.remarks import Remark, confirmed_remarks, remarks
+from engine.remarks import Remark, confirmation, confirmed_remarks, remarks
 from engine.results import Assessment
 
 
@@ -22,7 +22,7 @@ class Found:
     Attributes
     ----------
     open : tuple of Remark
-        Blocking ones first, then warnings, then notes.
+        Those on the chosen variant; then blocking ones, warnings, notes.
     confirmed : tuple of pairs
         Remarks that a person lets stand.
     assumed : tuple of Assumption
@@ -37,17 +37,32 @@ class Found:
     has_results: bool = False
 
 
-def found_in(layout: Layout, assessment: Assessment | None) -> Found:
-    """Remarks and assumptions; an assessment of another layout says nothing here."""
+def found_in(
+    layout: Layout,
+    assessment: Assessment | None,
+    of_variant: tuple[Remark, ...] = (),
+) -> Found:
+    """Remarks and assumptions; an assessment of another layout says nothing here.
+
+    `of_variant` are those on the chosen variant, whose layout knows no base.
+    """
     if assessment is not None and assessment.layout != layout:
         assessment = None
+    stood = [(r, confirmation(layout, r)) for r in of_variant]
     return Found(
         layout,
-        remarks(layout, assessment),
-        confirmed_remarks(layout, assessment),
+        (*(r for r, by in stood if by is None), *remarks(layout, assessment)),
+        (
+            *((r, by) for r, by in stood if by is not None),
+            *confirmed_remarks(layout, assessment),
+        ),
         assumptions(layout),
         assessment is not None,
     )
+
+
+#: A layout, its results, and what is said of it as a variant.
+_Task = tuple[Layout, Assessment | None, tuple[Remark, ...]]
 
 
 class RemarkSearch(QObject):
@@ -64,14 +79,19 @@ class RemarkSearch(QObject):
 
     def __init__(self) -> None:
         super().__init__()
-        self._worker: Worker[tuple[Layout, Assessment | None]] | None = None
+        self._worker: Worker[_Task] | None = None
         self._handed_over.connect(self.found, Qt.ConnectionType.QueuedConnection)
 
-    def ask(self, layout: Layout, assessment: Assessment | None) -> None:
-        """Look for the remarks of a layout."""
+    def ask(
+        self,
+        layout: Layout,
+        assessment: Assessment | None,
+        of_variant: tuple[Remark, ...] = (),
+    ) -> None:
+        """Look for the remarks of a layout; those on its variant are known."""
         if self._worker is None:
             self._worker = Worker("remarks", self._work)
-        self._worker.ask((layout, assessment))
+        self._worker.ask((layout, assessment, of_variant))
 
     def close(self) -> None:
         """End the search."""
@@ -79,7 +99,7 @@ class RemarkSearch(QObject):
             self._worker.close()
             self._worker = None
 
-    def _work(self, task: tuple[Layout, Assessment | None], outdated: Outdated) -> None:
+    def _work(self, task: _Task, outdated: Outdated) -> None:
         found = found_in(*task)
         if not outdated():
             # The window may be gone by now, and with it what would listen.

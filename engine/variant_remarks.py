@@ -22,11 +22,18 @@ def variant_remarks(layout: Layout) -> Iterator[Remark]:
         The base with its variants; a layout that `layout_of` made has none, and
         nothing to say.
     """
-    items, kinds = layout.by_id(), kinds_of(layout)
     for variant in layout.variants:
-        yield from _replaced(variant, items, kinds)
-        yield from _removed(variant, items)
-        yield from _added(variant, items, kinds)
+        yield from remarks_on(layout, variant)
+
+
+def remarks_on(layout: Layout, variant: Variant) -> tuple[Remark, ...]:
+    """The same of one of the base's variants."""
+    items, kinds = layout.by_id(), kinds_of(layout)
+    return (
+        *_replaced(variant, items, kinds),
+        *_removed(variant, items),
+        *_added(variant, items, kinds),
+    )
 
 
 def _replaced(

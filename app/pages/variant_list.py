@@ -29,7 +29,7 @@ from app.variant_acts import (
 )
 from app.wrapping import WrappingRow
 from engine.variant import Variant
-from engine.variant_remarks import variant_remarks
+from engine.variant_remarks import remarks_on
 
 _ID = int(Qt.ItemDataRole.UserRole)
 _ENTRY = QSize(0, 6 * STEP)
@@ -146,7 +146,7 @@ class VariantList(QWidget):
                 self.changes.setCurrentItem(entry)
         if self.changes.currentRow() < 0 and self.changes.count():
             self.changes.setCurrentRow(0)
-        found = [r for r in variant_remarks(whole) if r.items[0] == variant.id]
+        found = remarks_on(whole, variant)
         self._stale = frozenset(r.items[1] for r in found if r.code == "W34")
         self.remarked.setText("\n".join(r.sentence for r in found))
         self.remarked.setVisible(bool(found))

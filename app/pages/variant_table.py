@@ -12,10 +12,19 @@ from PySide6.QtCore import (
     QSize,
     Qt,
 )
-from PySide6.QtGui import QColor, QFont, QKeyEvent, QPainter, QPen, QPolygonF
+from PySide6.QtGui import (
+    QColor,
+    QFont,
+    QKeyEvent,
+    QPainter,
+    QPen,
+    QPolygonF,
+    QResizeEvent,
+)
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QFrame,
+    QHeaderView,
     QStyledItemDelegate,
     QStyleOptionViewItem,
     QTableView,
@@ -173,6 +182,31 @@ class VariantTable(QTableView):
         self.horizontalHeader().setStretchLastSection(True)
         self.horizontalHeader().setFixedHeight(2 * BODY + 4 * STEP)
         self.verticalHeader().setDefaultSectionSize(BODY + 2 * SMALL + 7 * STEP)
+        self._places = _Places(self)
+        self.horizontalHeader().sectionResized.connect(lambda *_: self._place())
+
+    def _place(self) -> None:
+        """Lay the column of places over the left edge, however far one has scrolled."""
+        places, frame = self._places, self.frameWidth()
+        places.keep_one_column(self.columnWidth(0))
+        height = self.horizontalHeader().height() + self.viewport().height()
+        places.setGeometry(frame, frame, self.columnWidth(0), height)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._place()
+
+    def scrollTo(
+        self,
+        index: _Index,
+        hint: QAbstractItemView.ScrollHint = QAbstractItemView.ScrollHint.EnsureVisible,
+    ) -> None:
+        """Bring a cell to where the column of places does not cover it."""
+        super().scrollTo(index, hint)
+        covered = self.columnWidth(0) - self.visualRect(index).left()
+        if index.column() > 0 and covered > 0:
+            bar = self.horizontalScrollBar()
+            bar.setValue(bar.value() - covered)
 
     def show_answer(self, answer: TableAnswer | None, held: Held) -> None:
         """Show another table; the chosen cell stays chosen."""
@@ -183,6 +217,7 @@ class VariantTable(QTableView):
             self.setColumnWidth(0, 41 * STEP)
             for column in range(1, self.contents.columnCount()):
                 self.setColumnWidth(column, _WIDTH)
+        self._place()
         self.setCurrentIndex(self.contents.index(chosen.row(), chosen.column()))
         self.horizontalScrollBar().setValue(across)
 
@@ -194,12 +229,54 @@ class VariantTable(QTableView):
         self.setVerticalScrollBarPolicy(off)
         self.setFrameShape(QFrame.Shape.NoFrame)
         self.setFixedSize(across.length(), across.height() + down.length())
+        self._places.hide()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:
             event.ignore()
         else:
             super().keyPressEvent(event)
+
+
+class _Places(QTableView):
+    """The first column once more, over the table: it stays when the others scroll."""
+
+    def __init__(self, table: VariantTable) -> None:
+        super().__init__(table)
+        self._table = table
+        self.setModel(table.contents)
+        self.setSelectionModel(table.selectionModel())
+        self.setItemDelegate(table.itemDelegate())
+        # The table itself is what is reached, heard and read out.
+        self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.setFocusProxy(table)
+        self.setAccessibleName("Places")
+        self.setToolTip(table.toolTip())
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        self.setShowGrid(False)
+        self.setWordWrap(False)
+        self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
+        off = Qt.ScrollBarPolicy.ScrollBarAlwaysOff
+        self.setHorizontalScrollBarPolicy(off)
+        self.setVerticalScrollBarPolicy(off)
+        self.setVerticalScrollMode(table.verticalScrollMode())
+        self.verticalHeader().hide()
+        self.verticalHeader().setDefaultSectionSize(
+            table.verticalHeader().defaultSectionSize()
+        )
+        across, theirs = self.horizontalHeader(), table.horizontalHeader()
+        across.setFixedHeight(theirs.height())
+        across.setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
+        across.setHighlightSections(False)
+        mine, other = self.verticalScrollBar(), table.verticalScrollBar()
+        other.valueChanged.connect(mine.setValue)
+        mine.valueChanged.connect(other.setValue)
+
+    def keep_one_column(self, width: int) -> None:
+        """Show the column of places alone."""
+        for column in range(self.model().columnCount()):
+            self.setColumnHidden(column, column > 0)
+        self.setColumnWidth(0, width)
 
 
 class _CellPainter(QStyledItemDelegate):

@@ -27,6 +27,7 @@ from engine.items import ConfirmedRemark
 from engine.layout import Layout
 from engine.remarks import Remark
 from engine.results import Assessment
+from engine.variant_remarks import remarks_on
 
 SEVERITIES: tuple[tuple[str, str, str], ...] = (
     ("blocking", "blocks the assessment", "block the assessment"),
@@ -191,7 +192,11 @@ class RemarksPanel(Panel):
         super().changeEvent(event)
 
     def _ask(self) -> None:
-        self._search.ask(self._document.committed, self._assessment)
+        variant = self._document.variant
+        own: tuple[Remark, ...] = ()
+        if variant is not None:
+            own = remarks_on(self._document.whole, variant)
+        self._search.ask(self._document.committed, self._assessment, own)
 
     def _on_settled(self, _layout: Layout) -> None:
         # The tab's count is wanted even while another panel is in front.

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import pytest
+from msgspec import structs
 
 from app.document import Document
 from app.panels.remarks import RemarksPanel, counts_text, is_confirmable
@@ -13,6 +14,7 @@ from engine.layout import Layout
 from engine.origins import Assumption, assumptions
 from engine.places import Zone
 from engine.runs import CircuitShare, Flat, Run
+from engine.variant import BaseState, Variant, VariantItems
 
 LAYOUT = Layout(
     circuits=(Circuit(id="F1", name="Office", demand=BalancedCurrent(rms=100.0)),),
@@ -160,3 +162,30 @@ def test_counts_are_words():
     assert counts_text(nothing) == "No remark, and no value is assumed"
     one = Found(Layout(), REMARKS[1:2], (), (Assumption("a", "b", "c"),))
     assert counts_text(one) == "1 blocks the assessment · 1 assumed value"
+
+
+def test_remarks_on_the_chosen_variant_are_listed(qtbot):
+    moved = structs.replace(LAYOUT.zones[0], floor_level=1.0)
+    variant = Variant(
+        id="one", name="Raised", replaced=VariantItems(zones=(moved,)),
+        against=(BaseState(item="Z1", digest="0" * 64),),
+    )  # fmt: skip
+    document = Document(structs.replace(LAYOUT, variants=(variant,)))
+    panel = RemarksPanel(document)
+    qtbot.addWidget(panel)
+    panel.show()
+    document.choose("one")
+    qtbot.waitUntil(
+        lambda: any(t.startswith("W34") for t in texts(panel)), timeout=9000
+    )
+    (told,) = (t for t in texts(panel) if t.startswith("W34"))
+    assert "Variant “Raised” replaces" in told
+    # A person may let it stand, as any warning.
+    panel.list.setCurrentRow(row(panel, "W34"))
+    panel.by.line.setText("A. Berg")
+    panel.confirm()
+    qtbot.waitUntil(
+        lambda: any("W34" in t and "let stand by A. Berg" in t for t in texts(panel)),
+        timeout=9000,
+    )
+    panel.close_search()

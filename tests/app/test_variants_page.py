@@ -69,6 +69,25 @@ def test_removing_the_second_bond_stands_out_where_it_raises_the_bed(qtbot, page
     assert "worst counted load case As logged" in tip
 
 
+def test_places_stay_in_sight_when_the_table_is_scrolled(qtbot, page):
+    wait(qtbot, page)
+    table, places = page.table, page.table._places
+    assert table.horizontalScrollBar().maximum() > 0
+    table.setCurrentIndex(table.model().index(7, table.model().columnCount() - 1))
+    bar = table.horizontalScrollBar()
+    bar.setValue(bar.maximum())
+    assert places.isVisible()
+    assert places.columnViewportPosition(0) == 0
+    assert places.width() == table.columnWidth(0)
+    # Row by row beside the values, whatever has been scrolled.
+    for k in range(table.model().rowCount()):
+        assert places.rowViewportPosition(k) == table.rowViewportPosition(k)
+    # A cell that is chosen does not hide behind them.
+    table.setCurrentIndex(table.model().index(0, 1))
+    left = table.visualRect(table.currentIndex()).left()
+    assert left >= table.columnWidth(0)
+
+
 def test_an_edit_of_a_variant_computes_its_column_anew_and_no_other(qtbot, page):
     wait(qtbot, page)
     before = page.answer.table.columns
