@@ -48,8 +48,14 @@ def place_backing_file(
     UserError
         When the file cannot be placed.
     """
-    picture = read_picture(path, page)
-    _known[picture.sha256] = Path(path)
+    return place_read_picture(document, read_picture(path, page), Path(path), view)
+
+
+def place_read_picture(
+    document: Document, picture: ReadPicture, path: Path, view: View = "plan"
+) -> str:
+    """Put what was read of a file under a view, select it; its id."""
+    _known[picture.sha256] = path
     return _place(document, picture, view)
 
 
@@ -82,12 +88,20 @@ def replace_backing_file(
     UserError
         When the file cannot be placed.
     """
-    drawing = _drawing(document.committed, item_id)
-    picture = read_picture(path, page)
-    _known[picture.sha256] = Path(path)
+    take_read_picture(document, item_id, read_picture(path, page), Path(path))
+
+
+def take_read_picture(
+    document: Document, item_id: str, picture: ReadPicture, path: Path
+) -> None:
+    """Give a drawing what was read of another file or page, unless it is gone."""
+    drawing = drawing_of(document.committed, item_id)
+    if drawing is None:
+        return
+    _known[picture.sha256] = path
     after = with_picture(drawing, picture)
     same_file = picture.sha256 == drawing.sha256
-    what = f"page {page}" if same_file else picture.file_name
+    what = f"page {picture.page}" if same_file else picture.file_name
     text = f"Show {what} in {drawing.title}"
     if is_calibrated(drawing) and not is_calibrated(after):
         text += ", no longer calibrated"
@@ -123,8 +137,9 @@ def _place(document: Document, picture: ReadPicture, view: View) -> str:
     return made.id
 
 
-def _drawing(layout: Layout, item_id: str) -> BackingDrawing:
+def drawing_of(layout: Layout, item_id: str) -> BackingDrawing | None:
+    """The backing drawing with that id."""
     for drawing in layout.backing_drawings:
         if drawing.id == item_id:
             return drawing
-    raise ValueError(f"no backing drawing with the id {item_id}")
+    return None

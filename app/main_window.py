@@ -28,6 +28,7 @@ from PySide6.QtWidgets import (
 from app import preferences, window_geometry
 from app.arrange import Arrange
 from app.ask_bar import AskBar
+from app.backing_reading import BackingReading
 from app.caption_bar import CaptionBar, caption
 from app.document import Document
 from app.drawings import Drawings
@@ -112,6 +113,7 @@ class MainWindow(QMainWindow):
         self.addToolBar(Qt.ToolBarArea.TopToolBarArea, self.tool_row)
         self.message_bar, self.ask_bar = MessageBar(self.messages), AskBar()
         self.arrange = Arrange(document, self.ask_bar)
+        self.backing = BackingReading(document, self.jobs, self.ask_bar, self.calibrate)
         self.caption, self.strip = CaptionBar(document, state), EntryStrip()
         self.band = VariantBand(document, self.messages)
         self.drawings = Drawings(document, state, self.theme)
@@ -158,7 +160,7 @@ class MainWindow(QMainWindow):
         )
 
     def _build_panels(self) -> None:
-        self.item = ItemPanel(self.document)
+        self.item = ItemPanel(self.document, self.jobs)
         # Counts the remarks on its tab, shown or not.
         self.remarks = RemarksPanel(self.document)
         self.panels = SidePanels()

@@ -9,7 +9,7 @@ import msgspec
 from PySide6.QtWidgets import QApplication, QFileDialog
 
 from app import commands, preferences
-from app.backing import place_backing_file, place_backing_picture
+from app.backing import place_backing_picture
 from app.copying import copy_picture
 from app.elevation_plane import ALONG, PLAN_VIEW, drawn_lines
 from app.tools.run import RunTool
@@ -130,7 +130,7 @@ class WindowActs:
     def _place(self, path: Path) -> None:
         """Under the view in front; to be calibrated at once."""
         w = self._window
-        w.calibrate(place_backing_file(w.document, path, view=w.drawings.plane))
+        w.backing.place(path, w.drawings.plane)
 
     def calibrate(self) -> None:
         """Calibrate the selected backing drawing, or the last one."""

@@ -5,6 +5,8 @@ While the opacity is dragged the drawing only previews; letting go is one undo s
 
 from __future__ import annotations
 
+from pathlib import Path
+
 from msgspec.structs import replace
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import (
@@ -20,13 +22,15 @@ from PySide6.QtWidgets import (
 
 from app import backing
 from app.document import Document
+from app.jobs import Jobs
 from app.panels.field import Choice, Quantity, ValueField
 from app.panels.panel import Words, column
 from app.theme import STEP
 from engine.calibration import is_calibrated, metres_per_pixel, turned
 from engine.edits import checked, removed, replaced
 from engine.embedded_picture import picture_size
-from engine.errors import UserError
+from engine.errors import Cancelled, Progress, UserError
+from engine.exchange.backing import ReadPicture, read_picture
 from engine.layout import Layout
 from engine.places import BackingDrawing
 from engine.typed_lengths import length_text
@@ -52,10 +56,20 @@ class BackingForm(QWidget):
     calibrate_requested = Signal(str)
 
     def __init__(
-        self, document: Document, item_id: str, parent: QWidget | None = None
+        self,
+        document: Document,
+        item_id: str,
+        parent: QWidget | None = None,
+        *,
+        jobs: Jobs | None = None,
     ) -> None:
+        """Parameters
+        ----------
+        jobs : Jobs or None
+            Reads files in the background; None: at once.
+        """
         super().__init__(parent)
-        self._document = document
+        self._document, self._jobs = document, jobs
         self._id = item_id
         self._pages: tuple[tuple[str, object], int | None] | None = None
         self.setAccessibleName("Backing drawing")
@@ -276,11 +290,26 @@ class BackingForm(QWidget):
             self._take(name, 1)
 
     def _take(self, name: str, page: int) -> None:
-        try:
-            backing.replace_backing_file(self._document, self._id, name, page)
-        except UserError as error:
-            self._fill()
-            self._tell_fault(str(error))
+        document, item_id, path = self._document, self._id, Path(name)
+        if self._jobs is None:
+            try:
+                backing.replace_backing_file(document, item_id, path, page)
+            except UserError as error:
+                self._fill()
+                self._tell_fault(str(error))
+            return
+
+        def work(cancelled: Cancelled, progress: Progress) -> ReadPicture:
+            return read_picture(path, page, cancelled=cancelled, progress=progress)
+
+        # The form may be gone by then: what is done needs none.
+        self._jobs.start(
+            f"Drawing page {page} of {path.name}",
+            work,
+            lambda found: backing.take_read_picture(document, item_id, found, path),
+        )
+        # Until it is read, the page that shows is the one before.
+        self._fill()
 
     def _on_remove(self) -> None:
         drawing = self._committed

@@ -6,6 +6,7 @@ from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QPushButton
 
 from app.document import Document
+from app.jobs import Jobs
 from app.panels.backing import BackingForm
 from app.panels.form import Form
 from app.panels.item_forms import editable, groups, heading
@@ -36,8 +37,14 @@ class ItemPanel(Panel):
     section_requested = Signal(str)
     calibrate_requested = Signal(str)
 
-    def __init__(self, document: Document) -> None:
+    def __init__(self, document: Document, jobs: Jobs | None = None) -> None:
+        """Parameters
+        ----------
+        jobs : Jobs or None
+            Reads files of backing drawings in the background; None: at once.
+        """
         super().__init__(document)
+        self._jobs = jobs
         self.setAccessibleName("Item")
         self._items: tuple[Item, ...] = ()
         self._title = Words(style="title")
@@ -89,7 +96,7 @@ class ItemPanel(Panel):
             shown.deleteLater()
             self._picture = None
         if wanted:
-            self._picture = BackingForm(self._document, wanted)
+            self._picture = BackingForm(self._document, wanted, jobs=self._jobs)
             self._picture.calibrate_requested.connect(self.calibrate_requested)
             self._picture_place.addWidget(self._picture)
 

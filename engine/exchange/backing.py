@@ -27,7 +27,7 @@ from engine.embedded_picture import (
     picture_bytes,
     picture_size,
 )
-from engine.errors import UserError
+from engine.errors import Cancelled, Progress, UserError, stop_if
 from engine.exchange.pdf_pages import PDF_LIBRARY
 from engine.items import Point2
 from engine.layout import Layout
@@ -97,7 +97,13 @@ class ReadPicture:
     n_pages: int
 
 
-def read_picture(path: str | Path, page: int = 1) -> ReadPicture:
+def read_picture(
+    path: str | Path,
+    page: int = 1,
+    *,
+    cancelled: Cancelled | None = None,
+    progress: Progress | None = None,
+) -> ReadPicture:
     """The picture in a PNG or JPEG file, or one page of a PDF.
 
     Parameters
@@ -105,6 +111,8 @@ def read_picture(path: str | Path, page: int = 1) -> ReadPicture:
     path : str or Path
     page : int
         From 1.
+    cancelled, progress
+        Asked and told between reading the file, drawing it, and keeping its copy.
 
     Raises
     ------
@@ -112,8 +120,10 @@ def read_picture(path: str | Path, page: int = 1) -> ReadPicture:
         When the file is missing, too large, damaged, encrypted or of another kind, or
         has no such page.
     """
+    tell = _Steps(cancelled, progress)
+    tell.step(0.0, f"Reading {Path(path).name}")
     opening, data = _file(Path(path))
-    return _read(data, Path(path).name, opening, page)
+    return _read(data, Path(path).name, opening, page, tell)
 
 
 def page_count(path: str | Path) -> int:
@@ -143,7 +153,7 @@ def read_picture_bytes(data: bytes, page: int = 1) -> ReadPicture:
     UserError
         As `read_picture`.
     """
-    return _read(data, "", "The picture was not placed", page)
+    return _read(data, "", "The picture was not placed", page, _Steps(None, None))
 
 
 def backing_drawing(
@@ -200,6 +210,19 @@ def with_picture(drawing: BackingDrawing, picture: ReadPicture) -> BackingDrawin
     )
 
 
+@dataclass(frozen=True)
+class _Steps:
+    """Tells where the work is, and stops it between two steps."""
+
+    cancelled: Cancelled | None
+    progress: Progress | None
+
+    def step(self, share: float, doing: str) -> None:
+        stop_if(self.cancelled)
+        if self.progress is not None:
+            self.progress(share, doing)
+
+
 def _file(path: Path) -> tuple[str, bytes]:
     """How sentences on a file begin, and its bytes."""
     opening = f"{path.name} was not placed"
@@ -219,7 +242,7 @@ def _is_pdf(data: bytes) -> bool:
     return b"%PDF-" in data[:1024]
 
 
-def _read(data: bytes, name: str, opening: str, page: int) -> ReadPicture:
+def _read(data: bytes, name: str, opening: str, page: int, tell: _Steps) -> ReadPicture:
     if len(data) > MAX_FILE:
         limit = MAX_FILE // 1_000_000
         raise UserError(
@@ -229,9 +252,11 @@ def _read(data: bytes, name: str, opening: str, page: int) -> ReadPicture:
     if not data:
         raise UserError(f"{opening}: it is empty.")
     n_pages = 1
+    tell.step(0.2, f"Drawing page {page}")
     if _is_pdf(data):
         with PDF_LIBRARY:
             image, n_pages = _page(data, opening, page)
+        tell.step(0.7, "Keeping the copy")
         copy = _copy(image)
     else:
         if page != 1:

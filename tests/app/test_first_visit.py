@@ -12,8 +12,10 @@ from PySide6.QtCore import QMimeData, QPointF, Qt, QUrl
 from PySide6.QtGui import QDropEvent, QImage
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
+from reportlab.pdfgen.canvas import Canvas
 
 from app import commands, preferences, recovery, start
+from app.backing import place_backing_file
 from app.caption_bar import case_text
 from app.document import Document
 from app.files import SAMPLES, empty_layout
@@ -356,15 +358,67 @@ def test_largest_over_heights_is_offered_only_with_a_zone(window):
 
 
 def test_a_drawing_placed_is_calibrated_at_once_under_the_view_in_front(
-    window, tmp_path
+    window, qtbot, tmp_path
 ):
     picture = QImage(40, 30, QImage.Format.Format_RGB32)
     picture.fill(0xFFFFFF)
     path = tmp_path / "plan.png"
     assert picture.save(str(path))
     window.drawings.show_view("Looking +x")
-    window.menus.acts.open_dropped([str(path)])
+    with qtbot.waitSignal(window.jobs.ended):
+        window.menus.acts.open_dropped([str(path)])
     (drawing,) = window.document.committed.backing_drawings
     assert drawing.view == "looking +x"
     assert window.toolbox.active is window.toolbox.calibrate
     assert "first of two points" in window.hint.sentence
+
+
+def test_of_a_drawing_of_several_pages_one_is_asked_for(window, qtbot, tmp_path):
+    path = tmp_path / "floors.pdf"
+    canvas = Canvas(str(path), pagesize=(300, 200))
+    for number in range(3):
+        canvas.rect(10, 10, 50 + 10 * number, 50)
+        canvas.showPage()
+    canvas.save()
+    told = []
+    window.jobs.progressed.connect(lambda _share, doing: told.append(doing))
+    with qtbot.waitSignal(window.jobs.ended):
+        window.menus.acts.open_dropped([str(path)])
+    assert window.ask_bar.isVisible()
+    (field,) = window.ask_bar.fields
+    assert field.accessibleName() == "page, 1 to 3"
+    field.setText("4")
+    QTest.keyClick(field, KEY.Key_Return)
+    assert window.ask_bar.isVisible()
+    assert not window.document.committed.backing_drawings
+    field.setText("3")
+    with qtbot.waitSignal(window.jobs.ended):
+        QTest.keyClick(field, KEY.Key_Return)
+    (drawing,) = window.document.committed.backing_drawings
+    assert drawing.page == 3
+    assert "Drawing page 3" in told
+    assert window.toolbox.active is window.toolbox.calibrate
+
+
+def test_a_page_chosen_later_is_drawn_in_the_background(window, qtbot, tmp_path):
+    path = tmp_path / "floors.pdf"
+    canvas = Canvas(str(path), pagesize=(300, 200))
+    for _ in range(2):
+        canvas.rect(10, 10, 50, 50)
+        canvas.showPage()
+    canvas.save()
+    place_backing_file(window.document, path)
+    form = window.item._picture
+    with qtbot.waitSignal(window.jobs.ended):
+        form.page.setValue(2)
+        assert window.document.committed.backing_drawings[0].page == 1
+    assert window.document.committed.backing_drawings[0].page == 2
+    assert form.page.value() == 2
+
+
+def test_a_file_that_is_no_drawing_says_so_after_the_job(window, qtbot, tmp_path):
+    path = tmp_path / "notes.png"
+    path.write_text("no picture")
+    with qtbot.waitSignal(window.jobs.ended):
+        window.menus.acts.open_dropped([str(path)])
+    assert "neither a PDF nor a PNG" in window.message_bar.sentence
