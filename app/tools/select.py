@@ -1,6 +1,7 @@
 """Select: choose items, move them or their vertices by exact amounts, delete them.
 
-A box selects what lies wholly inside it. A drag previews and ends as one step of the
+A further click at the same place takes what lies beneath. A box selects what lies
+wholly inside it. A drag previews and ends as one step of the
 history; its way is counted from the exact place of the item that was gripped.
 """
 
@@ -8,8 +9,6 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from math import dist
-
-from msgspec.structs import replace
 
 from app import commands
 from app.document import Document
@@ -26,6 +25,8 @@ from app.tools.picking import (
     seen,
     sight,
 )
+from app.tools.reshaping import first_place, sized, way, with_checked_vertex
+from app.tools.stack import Stack
 from app.tools.tool import Dimension, Entry, Overlay, Point, Pointer
 from app.view_state import ViewState
 from engine.edits import checked, replaced
@@ -33,11 +34,11 @@ from engine.errors import UserError
 from engine.items import Item, Point3
 from engine.layout import Layout
 from engine.motions import neat
-from engine.new_places import outline, rectangle
+from engine.new_places import outline
 from engine.places import Enclosure, Room, Zone
 from engine.routes import SHORTEST
 from engine.shaping import counted, moved
-from engine.vertices import extent, is_closed, vertices, with_vertex
+from engine.vertices import extent, vertices
 
 HINT = (
     "Click to select, Shift adds; a box takes what lies wholly inside it; drag to move."
@@ -54,6 +55,8 @@ class _Drag:
     at: Point
     #: Where the way begins when its end is caught.
     grip: Point
+    #: A click takes what lies beneath the selection.
+    goes_down: bool = False
     is_under_way: bool = False
 
 
@@ -72,6 +75,7 @@ class SelectTool(DrawingTool):
         super().__init__(document, view_state, messages)
         self._drag: _Drag | None = None
         self._handle: Handle | None = None
+        self._stack = Stack()
         self._view = sight("plan")
         self.set_hint(HINT)
         document.selection_changed.connect(self._on_selection)
@@ -109,19 +113,33 @@ class SelectTool(DrawingTool):
             pointer.raw,
             pointer.reach,
         )
+        again = self._stack.is_again(pointer, document.selection)
+        self._stack.stay()
         if handle is not None and not pointer.shift:
-            self._begin("vertex", pointer, handle.at, handle)
+            if not again:
+                self._stack.begin(pointer, handle.item)
+            # The vertex comes first: only when it is chosen does a click go down.
+            goes_down = again and self._is_chosen(handle)
+            self._begin("vertex", pointer, handle.at, handle, goes_down)
             return
         pick = pointer.pick
         if pick is None:
+            self._stack.forget()
             self._begin("box", pointer, pointer.raw)
             return
-        if pointer.shift:
+        again = again and not pointer.shift
+        if again:
+            pick = self._stack.taken or pick
+        elif pointer.shift:
             document.select(document.selection | {pick})
-        elif pick not in document.selection:
-            document.select({pick})
+            self._stack.forget()
+        else:
+            if pick not in document.selection:
+                document.select({pick})
+            self._stack.begin(pointer, pick)
         item = document.committed.by_id()[pick]
-        self._begin("items", pointer, grip(item, self._view, pointer))
+        gripped = grip(item, self._view, pointer)
+        self._begin("items", pointer, gripped, goes_down=again)
 
     def move(self, pointer: Pointer) -> None:
         drag = self._drag
@@ -150,6 +168,7 @@ class SelectTool(DrawingTool):
             self._drag = None
             if drag.kind == "box" and not pointer.shift:
                 self._document.select(())
+            self._take_clicked(drag, pointer)
             self.overlay_changed.emit()
             return
         drag.at = pointer.raw if drag.kind == "box" else pointer.at
@@ -166,7 +185,8 @@ class SelectTool(DrawingTool):
         self._cancel()
         self._view = sight(pointer.plane)
         layout = self._document.committed
-        wanted = {pointer.pick} if pointer.pick else self._document.selection
+        before = self._stack.taken_back() or pointer.pick
+        wanted = {before} if before else self._document.selection
         for item in layout.items():
             if item.id not in wanted:
                 continue
@@ -217,11 +237,12 @@ class SelectTool(DrawingTool):
         with self._shown():
             items = commands.selected(self._document)
             if entry.kind == "size":
-                self._resize(items, entry)
+                assert entry.size is not None
+                layout = replaced(self._document.committed, sized(items, entry.size))
+                self._document.edit(f"Give {counted(items)} another size", layout)
                 return
             at = self._reference(items)
-            to = entry.point(at)
-            self._shift(_way(at, to), "Move")
+            self._shift(way(at, entry.point(at)), "Move")
 
     def overlay(self) -> Overlay:
         drag = self._drag
@@ -239,12 +260,31 @@ class SelectTool(DrawingTool):
         return Overlay(points=points, dimensions=(Dimension(start, end, text),))
 
     def _begin(
-        self, kind: str, pointer: Pointer, at: Point, handle: Handle | None = None
-    ) -> None:
+        self, kind: str, pointer: Pointer, at: Point, handle: Handle | None = None,
+        goes_down: bool = False,
+    ) -> None:  # fmt: skip
         self._handle = handle
         start = pointer.raw if handle is None else at
-        self._drag = _Drag(kind, start, pointer.raw, start, at)
+        self._drag = _Drag(kind, start, pointer.raw, start, at, goes_down)
         self.overlay_changed.emit()
+
+    def _is_chosen(self, handle: Handle) -> bool:
+        held = self._handle
+        return held is not None and (held.item, held.index) == (
+            handle.item,
+            handle.index,
+        )
+
+    def _take_clicked(self, drag: _Drag, pointer: Pointer) -> None:
+        """End a click: take what lies beneath, and say which one it is."""
+        if drag.goes_down:
+            self._document.select({self._stack.further(pointer)})
+        words = self._stack.words(pointer)
+        if not words:
+            self.set_hint(HINT)
+            return
+        item = self._document.committed.by_id()[self._stack.taken or ""]
+        self.set_hint(f"{words}: {item.title}. Click again for the next one beneath.")
 
     def _cancel(self) -> None:
         if self._drag is not None:
@@ -280,7 +320,7 @@ class SelectTool(DrawingTool):
         item = layout.by_id()[handle.item]
         at = vertices(item)[handle.index]
         x, y, z = (neat(p + d) for p, d in zip(at, way, strict=True))
-        return replaced(layout, _with_checked_vertex(item, handle.index, (x, y, z)))
+        return replaced(layout, with_checked_vertex(item, handle.index, (x, y, z)))
 
     def _shift(self, way: Point3, word: str) -> None:
         """Commit a shift of the vertex or the selection. [m]"""
@@ -336,28 +376,7 @@ class SelectTool(DrawingTool):
         if self._handle is not None:
             item = self._document.committed.by_id()[self._handle.item]
             return vertices(item)[self._handle.index]
-        for item in items:
-            places = vertices(item) or extent(item)
-            if places:
-                return places[0]
-        raise UserError("What is selected has no place on the drawing.")
-
-    def _resize(self, items: tuple[Item, ...], entry: Entry) -> None:
-        assert entry.size is not None
-        item = items[0]
-        if len(items) != 1 or not isinstance(item, Room | Enclosure | Zone):
-            raise UserError("Select one room, enclosure or zone to give it a size.")
-        corners = [place[:2] for place in vertices(item)]
-        xs, ys = zip(*corners, strict=True)
-        box = rectangle((min(xs), min(ys)), (max(xs), max(ys)))
-        if set(corners) != set(box) or len(corners) != 4:
-            raise UserError(f"“{item.title}” is no rectangle: move its vertices.")
-        x, y = box[0]
-        new = rectangle((x, y), (x + entry.size[0], y + entry.size[1]))
-        field = "footprint" if isinstance(item, Enclosure) else "outline"
-        sized = checked(replace(item, **{field: new}))
-        layout = replaced(self._document.committed, sized)
-        self._document.edit(f"Give {counted((item,))} another size", layout)
+        return first_place(items)
 
     def _active_label(self) -> tuple[tuple[Point, str], ...]:
         self._refresh_handle()
@@ -368,32 +387,7 @@ class SelectTool(DrawingTool):
     def _on_selection(self, ids: frozenset[str]) -> None:
         if self._handle is not None and self._handle.item not in ids:
             self._handle = None
+        if self._stack.taken is not None and ids != {self._stack.taken}:
+            self._stack.forget()
+            self.set_hint(HINT)
         self.overlay_changed.emit()
-
-
-def _way(start: Point3, end: Point3) -> Point3:
-    x, y, z = (neat(b - a) for a, b in zip(start, end, strict=True))
-    return (x, y, z)
-
-
-def _with_checked_vertex(item: Item, index: int, to: Point3) -> Item:
-    """The item with a vertex elsewhere, but not on its neighbour.
-
-    Raises
-    ------
-    UserError
-        When it would lie on a neighbouring vertex.
-    """
-    made = with_vertex(item, index, to)
-    places = vertices(made)
-    n = len(places)
-    neighbours = {index - 1, index + 1}
-    if is_closed(item):
-        neighbours = {k % n for k in neighbours}
-    for k in neighbours - {index}:
-        if 0 <= k < n and dist(places[k], places[index]) < SHORTEST:
-            raise UserError(
-                f"That vertex of “{item.title}” would lie on its neighbour: delete it "
-                "instead."
-            )
-    return made

@@ -32,7 +32,9 @@ class Pointer:
     shift, control : bool
         Keys held down.
     pick : str or None
-        Id of the item under the pointer.
+        Id of the item under the pointer, the uppermost.
+    beneath : tuple of str
+        Ids of the others there, from the top down.
     reach : float
         How far 5 px are. [m]
     plane : str
@@ -47,6 +49,12 @@ class Pointer:
     pick: str | None = None
     reach: float = 0.05
     plane: str = "plan"
+    beneath: tuple[str, ...] = ()
+
+    @property
+    def under(self) -> tuple[str, ...]:
+        """Ids of all items under the pointer, from the top down."""
+        return self.beneath if self.pick is None else (self.pick, *self.beneath)
 
 
 @dataclass(frozen=True)

@@ -264,13 +264,15 @@ class DrawingView(ZoomableView):
         raw = camera.metres(pixel)
         found = self._caught(raw, camera)
         reach = PICK_REACH / camera.scale
+        under = picked(self._scene, self._picture.labels, raw, pixel, reach)
         return Pointer(
             at=found.at,
             raw=raw,
             caught=found.caught,
             shift=bool(modifiers & Qt.KeyboardModifier.ShiftModifier),
             control=bool(modifiers & Qt.KeyboardModifier.ControlModifier),
-            pick=picked(self._scene, self._picture.labels, raw, pixel, reach),
+            pick=under[0] if under else None,
+            beneath=under[1:],
             reach=reach,
             plane=self._sight.name,
         )

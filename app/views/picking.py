@@ -1,4 +1,4 @@
-"""Which item a pointer means: its label, its grips, else the uppermost near enough."""
+"""Which items a pointer means: by label, by grips, else all near enough in order."""
 
 from __future__ import annotations
 
@@ -23,25 +23,25 @@ def picked(
     at: Point,
     pixel: QPointF,
     reach: float,
-) -> str | None:
-    """Id of the item under the pointer, or None.
+) -> tuple[str, ...]:
+    """Ids of the items under the pointer, from the one it means downwards.
 
     Rooms and zones are meant by their outlines and labels only, so that a press inside
     them can begin something else.
     """
-    gripped = next((i for i in selected(scene) if _is_gripped(i, at, reach)), None)
-    if gripped is not None:
-        return gripped.item_id
-    for each in reversed(labels):
-        if each.label.item and each.box.contains(pixel):
-            return each.label.item
-    return picked_shape(scene, at, reach)
+    gripped = [i.item_id for i in selected(scene) if _is_gripped(i, at, reach)]
+    labelled = [
+        each.label.item
+        for each in reversed(labels)
+        if each.label.item and each.box.contains(pixel)
+    ]
+    found = (*gripped, *labelled, *picked_shapes(scene, at, reach))
+    return tuple(dict.fromkeys(found))
 
 
-def picked_shape(scene: DrawingScene, at: Point, reach: float) -> str | None:
-    """Id of the uppermost item within reach. [m]"""
-    best: tuple[int, float, float] | None = None
-    found = None
+def picked_shapes(scene: DrawingScene, at: Point, reach: float) -> tuple[str, ...]:
+    """Ids of the items within reach, the uppermost first. [m]"""
+    found: list[tuple[tuple[int, float, float], str]] = []
     for item in scene.shapes():
         box = item.boundingRect().adjusted(-reach, -reach, reach, reach)
         # A mark of constant size is larger than its box in metres.
@@ -49,10 +49,13 @@ def picked_shape(scene: DrawingScene, at: Point, reach: float) -> str | None:
         if not box.contains(QPointF(*at)):
             continue
         distance = item.distance(at)
-        rank = (_ORDER.index(item.layer), distance, -item.zValue())
-        if distance <= wide and (best is None or rank < best):
-            best, found = rank, item.item_id
-    return found or _picked_backing(scene, at, reach)
+        if distance <= wide:
+            rank = (_ORDER.index(item.layer), distance, -item.zValue())
+            found.append((rank, item.item_id))
+    found.sort(key=lambda each: each[0])
+    backing = _picked_backing(scene, at, reach)
+    ids = [item_id for _, item_id in found]
+    return tuple(dict.fromkeys(ids if backing is None else [*ids, backing]))
 
 
 def _picked_backing(scene: DrawingScene, at: Point, reach: float) -> str | None:

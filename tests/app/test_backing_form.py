@@ -17,7 +17,7 @@ from app.theme import DARK, LIGHT
 from app.view_state import ViewState
 from app.views.backing_item import BackingItem
 from app.views.drawing_view import DrawingView
-from app.views.picking import picked_shape
+from app.views.picking import picked_shapes
 from engine.calibration import calibrated
 from engine.edits import replaced
 from engine.errors import UserError
@@ -197,11 +197,11 @@ def test_an_unlocked_drawing_is_taken_by_its_edge(document, qtbot):
     view.show()
     scene = view.drawing
     # 1250 × 834 px at 100 px/m before it is calibrated.
-    assert picked_shape(scene, (12.5, 4.0), 0.05) == drawing_of(document).id
-    assert picked_shape(scene, (6.0, 4.0), 0.05) is None
+    assert picked_shapes(scene, (12.5, 4.0), 0.05) == (drawing_of(document).id,)
+    assert picked_shapes(scene, (6.0, 4.0), 0.05) == ()
     locked = replace(drawing_of(document), locked=True)
     document.edit("Lock", replaced(document.committed, locked))
-    assert picked_shape(scene, (12.5, 4.0), 0.05) is None
+    assert picked_shapes(scene, (12.5, 4.0), 0.05) == ()
 
 
 @pytest.mark.parametrize(("theme", "paper"), [(LIGHT, "#ffffff"), (DARK, "#000000")])

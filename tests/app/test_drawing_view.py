@@ -15,6 +15,7 @@ from PySide6.QtTest import QTest
 from app.document import Document
 from app.map_picture import DrawnIsoLine, MapPicture, MaskedArea
 from app.theme import DARK, LIGHT, contrast
+from app.tools.select import SelectTool
 from app.tools.tool import NOTHING, Entry, Overlay, Tool
 from app.view_state import ViewState
 from app.views.drawing_view import DrawingView
@@ -23,7 +24,7 @@ from app.views.labels import Importance, Label, placed
 from app.views.projection import LOOKING_X, LOOKING_Y, PLAN, SIGHTS, to_layout, to_view
 from app.views.scale_bar import grid_step
 from engine.circuits import BalancedCurrent, Circuit
-from engine.edits import removed, replaced
+from engine.edits import added, removed, replaced
 from engine.layout import Layout
 from engine.layout_file import read
 from engine.places import Receptor, Room, Zone
@@ -174,6 +175,26 @@ def test_a_run_is_meant_by_its_band_and_a_room_by_its_outline(shown):
     assert picks[1] in ("room", "zone")
     assert picks[2] is None
     assert picks[3] == "desk"
+
+
+@pytest.mark.parametrize("sight", ["plan", "looking +y"])
+def test_clicks_go_down_through_runs_over_each_other(shown, sight):
+    document, view, _ = shown
+    higher = structs.replace(bars(item="higher"), name="Higher bars")
+    document.edit("Draw", added(document.layout, higher))
+    if sight != "plan":
+        view = DrawingView(document, ViewState(), sight=SIGHTS[sight])
+    select = SelectTool(document, ViewState())
+    view.set_tool(select)
+    chosen = []
+    for _ in range(3):
+        at = view.camera().pixel((3.0, 2.0 if sight == "plan" else 2.5)).toPoint()
+        QTest.mouseClick(view.viewport(), LEFT, pos=at)
+        chosen.append(next(iter(document.selection)))
+    under = set(view.pointer_at(QPointF(at), Qt.KeyboardModifier.NoModifier).under)
+    assert {"bars", "higher"} <= under
+    assert len(set(chosen)) == min(3, len(under))
+    assert f"of {len(under)} here" in select.hint
 
 
 def test_a_label_means_its_item(shown):

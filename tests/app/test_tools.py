@@ -26,6 +26,7 @@ from engine.errors import UserError
 from engine.faults import layout_faults
 from engine.layout import Layout, Settings
 from engine.places import Storey
+from engine.runs import CircuitShare, Flat, Run
 from engine.starters import transformer_link_board
 
 
@@ -348,6 +349,85 @@ def test_a_click_selects_and_shift_adds() -> None:
     assert d.document.selection == {"switch-room", "office"}
     d.click(-5.0, -5.0)
     assert d.document.selection == frozenset()
+
+
+def hint_of(d: Desk) -> str:
+    return d.tool.hint.partition(":")[0]
+
+
+STACKED = {"pick": "a", "beneath": ("b", "c")}
+
+
+def stacked() -> Desk:
+    """Three runs that lie over each other on plan."""
+    section = Flat(circuits=(CircuitShare(circuit="f"),))
+    runs = tuple(
+        Run(id=id, route=((0.0, 0.0, z), (4.0, 0.0, z)), section=section)
+        for id, z in (("a", 3.0), ("b", 2.0), ("c", 1.0))
+    )
+    return desk(SelectTool, Layout(runs=runs))
+
+
+def test_clicks_at_one_place_go_down_through_what_lies_there() -> None:
+    d = stacked()
+    seen = []
+    for k in range(4):
+        d.click(2.0 + 0.01 * k, 0.0, **STACKED)
+        seen.append((*d.document.selection, hint_of(d)))
+    assert seen == [
+        ("a", "1 of 3 here"),
+        ("b", "2 of 3 here"),
+        ("c", "3 of 3 here"),
+        ("a", "1 of 3 here"),
+    ]
+    d.click(2.5, 0.0, **STACKED)
+    assert d.document.selection == {"a"}
+
+
+def test_a_click_elsewhere_and_another_view_begin_at_the_top() -> None:
+    d = stacked()
+    d.click(2.0, 0.0, **STACKED)
+    d.click(2.0, 0.0, plane="looking +y", **STACKED)
+    assert d.document.selection == {"a"}
+    d.document.select({"b"})
+    assert "of 3" not in d.tool.hint
+    d.click(2.0, 0.0, plane="looking +y", **STACKED)
+    assert d.document.selection == {"a"}
+
+
+def test_a_drag_moves_the_one_taken_from_beneath() -> None:
+    d = stacked()
+    d.click(2.0, 0.0, **STACKED)
+    d.click(2.0, 0.0, **STACKED)
+    d.drag((2.0, 0.0), (2.0, 0.5), (2.0, 1.0), **STACKED)
+    assert [run.route[0][1] for run in d.layout.runs] == [0.0, 1.0, 0.0]
+    assert d.document.selection == {"b"}
+
+
+def test_a_vertex_is_taken_before_what_lies_beneath_it() -> None:
+    d = stacked()
+    for chosen in ("a", "a", "b", "b", "c"):
+        d.click(4.0, 0.0, **STACKED)
+        assert d.document.selection == {chosen}
+
+
+def test_a_double_click_is_for_what_was_chosen_before_it() -> None:
+    d = stacked()
+    d.click(2.0, 0.0, **STACKED)
+    d.click(2.0, 0.0, **STACKED)
+    d.click(2.0, 0.0, **STACKED)
+    d.tool.double_click(at(2.0, 0.0, **STACKED))
+    assert [len(run.route) for run in d.layout.runs] == [2, 3, 2]
+    assert d.document.selection == {"b"}
+
+
+def test_shift_adds_the_uppermost_only() -> None:
+    d = stacked()
+    d.click(2.0, 0.0, **STACKED)
+    d.click(2.0, 0.0, shift=True, **STACKED)
+    assert d.document.selection == {"a"}
+    d.click(2.0, 0.0, **STACKED)
+    assert d.document.selection == {"a"}
 
 
 def test_a_box_takes_what_lies_wholly_inside() -> None:
