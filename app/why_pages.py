@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+from functools import cached_property
 from math import dist
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
 from PySide6.QtCore import QEvent, QObject, QPointF, Qt
 from PySide6.QtGui import QMouseEvent
@@ -16,10 +17,9 @@ from app.level_marks import overlay_of, stale_overlay
 from app.map_request import case_of, heights_of
 from app.margin_values import MarginRow, Margins
 from app.menus import Command
+from app.page import Page
 from app.pages.foot import Foot
 from app.pages.level_bar import LevelBar
-from app.pages.profile_page import ProfilePage
-from app.pages.why_page import WhyPage
 from app.panels.margin_words import measured_text
 from app.readout_values import Readout
 from app.tools.profile import ProfileTool
@@ -35,6 +35,10 @@ from engine.written_file import write_file
 
 if TYPE_CHECKING:
     from app.main_window import MainWindow
+    from app.pages.profile_page import ProfilePage
+    from app.pages.why_page import WhyPage
+
+APage = TypeVar("APage", bound=Page)
 
 #: A click that moves less is no drag. [px]
 _STILL = 4.0
@@ -46,8 +50,7 @@ class WhyPages(QObject):
     def __init__(self, window: MainWindow) -> None:
         super().__init__(window)
         self._window = window
-        parts = (window.document, window.view_state, window.messages)
-        self.profile, self.why = ProfilePage(*parts), WhyPage(*parts)
+        self._parts = (window.document, window.view_state, window.messages)
         self.distance = LevelBar(window.document, window.view_state)
         self.foot = Foot(window, window.pages, window.show_page, window.show_drawing)
         column = window.pages.parentWidget()
@@ -56,14 +59,9 @@ class WhyPages(QObject):
         assert isinstance(box, QVBoxLayout)
         box.insertWidget(box.indexOf(window.ask_bar) + 1, self.distance)
         box.addWidget(self.foot)
-        for page in (self.profile, self.why):
-            page.setParent(window)
-            page.hide()
-            page.closed.connect(self.foot.leave)
         self._pointed: Point3 | None = None
         self._pressed: QPointF | None = None
         self._assessment: Assessment | None = None
-        self.profile.pointed.connect(self._mark_profile)
         self.distance.found.connect(self._mark_distance)
         self.distance.outdated.connect(self._mark_outdated)
         self.distance.closed.connect(window.drawings.take_keyboard)
@@ -76,6 +74,29 @@ class WhyPages(QObject):
         window.view_state.changed.connect(self._note_measured)
         window.document.selection_changed.connect(self._on_selection)
         window.drawings.plan.viewport().installEventFilter(self)
+
+    # -- built when first shown ---------------------------------------------------
+    # The imports within: plots take long to load.
+
+    @cached_property
+    def profile(self) -> ProfilePage:
+        from app.pages.profile_page import ProfilePage
+
+        page = self._for_the_foot(ProfilePage(*self._parts))
+        page.pointed.connect(self._mark_profile)
+        return page
+
+    @cached_property
+    def why(self) -> WhyPage:
+        from app.pages.why_page import WhyPage
+
+        return self._for_the_foot(WhyPage(*self._parts))
+
+    def _for_the_foot(self, page: APage) -> APage:
+        page.setParent(self._window)
+        page.hide()
+        page.closed.connect(self.foot.leave)
+        return page
 
     # -- commands -----------------------------------------------------------------
 
@@ -149,14 +170,19 @@ class WhyPages(QObject):
 
     def hold(self, on: bool) -> None:
         """Let present values stand beside the coming ones."""
-        for part in (self.profile, self.why, self.distance):
-            part.hold(on)
+        self.distance.hold(on)
+        for name in ("profile", "why"):
+            # What is held is what a page would show now: it has to be there for that.
+            if on or name in vars(self):
+                getattr(self, name).hold(on)
 
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self._window.drawings.plan.viewport().removeEventFilter(self)
-        for part in (self.profile, self.why, self.distance):
-            part.close_worker()
+        self.distance.close_worker()
+        for name in ("profile", "why"):
+            if name in vars(self):
+                getattr(self, name).close_worker()
 
     # -- following ----------------------------------------------------------------
 
@@ -228,7 +254,7 @@ class WhyPages(QObject):
     def _on_click(self, event: QMouseEvent) -> None:
         """A click on an empty place while the page shows means that place."""
         pressed, self._pressed = self._pressed, None
-        if pressed is None or not self.why.isVisible():
+        if pressed is None or "why" not in vars(self) or not self.why.isVisible():
             return
         if (event.position() - pressed).manhattanLength() > _STILL:
             return
