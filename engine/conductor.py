@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from itertools import chain, groupby
 from typing import Literal
 
 import numpy as np
@@ -49,3 +51,35 @@ class Conductor:
     shape: Round | Bar
     loads: tuple[SlotLoad, ...]
     group: str
+
+
+class Bundled(tuple[Conductor, ...]):
+    """Conductors that know which of them were made together.
+
+    Attributes
+    ----------
+    bundles : tuple of tuples of Conductor
+        In the same order, none empty; of one group, item and role each. What did not
+        change in an edit comes as the identical bundle again, so that nothing need be
+        asked of each of its conductors.
+    """
+
+    bundles: tuple[tuple[Conductor, ...], ...]
+
+
+def bundled(bundles: Iterable[tuple[Conductor, ...]]) -> Bundled:
+    """All conductors of some bundles; empty ones are left out."""
+    kept = tuple(bundle for bundle in bundles if bundle)
+    made = Bundled(chain.from_iterable(kept))
+    made.bundles = kept
+    return made
+
+
+def bundles_of(conductors: Sequence[Conductor]) -> tuple[tuple[Conductor, ...], ...]:
+    """Conductors by what they were made together with, in their order."""
+    if isinstance(conductors, Bundled):
+        return conductors.bundles
+    return tuple(
+        tuple(together)
+        for _, together in groupby(conductors, lambda c: (c.group, c.item, c.role))
+    )

@@ -13,16 +13,17 @@ from typing import Literal
 
 import numpy as np
 
-from engine.conductor import Conductor
+from engine.conductor import Bundled, Conductor, bundled
 from engine.ends import End, Ends, LooseEnd
 from engine.equipment import Board, Transformer
 from engine.equipment_conductors import STAR, Point, Socket
 from engine.errors import UserError
 from engine.items import Point3
 from engine.layout import Layout
-from engine.polylines import SIDES, Role, links, straight
+from engine.polylines import SIDES, Role, Side, links, straight
 from engine.routes import Array
 from engine.run_conductors import (
+    N_KEPT,
     Same,
     closing,
     run_conductors,
@@ -68,10 +69,10 @@ class Node:
     links: bool = False
 
 
-def conductors(layout: Layout) -> tuple[Conductor, ...]:
+def conductors(layout: Layout) -> Bundled:
     """Every conductor of the layout: of runs, links and equipment.
 
-    An unchanged run gives the identical conductors again.
+    An unchanged run gives the identical bundle of conductors again.
 
     Raises
     ------
@@ -103,7 +104,7 @@ def run_problem(layout: Layout, run: Run) -> str | None:
 
 @dataclass(frozen=True, eq=False)
 class _Network:
-    conductors: tuple[Conductor, ...]
+    conductors: Bundled
     nodes: tuple[Node, ...]
     loose: tuple[LooseEnd, ...]
 
@@ -118,8 +119,25 @@ def _network(same: Same[Layout]) -> _Network:
     builder.close_boards()
     builder.close_transformers()
     return _Network(
-        tuple(builder.conductors), tuple(builder.nodes), tuple(builder.ends.loose)
+        bundled(builder.bundles), tuple(builder.nodes), tuple(builder.ends.loose)
     )
+
+
+@dataclass(frozen=True, eq=False)
+class _FreeEnd:
+    links: tuple[Conductor, ...]
+    node: Node
+
+
+@lru_cache(maxsize=2 * N_KEPT)
+def _free_end(
+    run: Same[Run], group: str, side: Side, which: tuple[int, ...]
+) -> _FreeEnd:
+    """What closes an end of a run; identical while the run is the same value."""
+    made = closing(run.value, group, side, which)
+    inflow, is_closed = total(made.inflow), len(which) > 1
+    node = Node("free end", made.middle, (run.value.id,), inflow, is_closed)
+    return _FreeEnd(made.links, node)
 
 
 class _Builder:
@@ -133,9 +151,9 @@ class _Builder:
         self.of_run = {
             run.id: run_conductors(run, self.groups[run.id]) for run in layout.runs
         }
-        self.conductors = [c for run in layout.runs for c in self.of_run[run.id]]
+        self.bundles = list(self.of_run.values())
         for equipment in layout.equipment:
-            self.conductors.extend(self.ends.parts[equipment.id].conductors)
+            self.bundles.append(self.ends.parts[equipment.id].conductors)
 
     def _group(self, run: Run) -> str:
         """Poles drawn as runs of their own switch together with what joins them."""
@@ -152,7 +170,7 @@ class _Builder:
             led = [self.of_run[fan.run.id][i] for i, _ in fan.targets]
             places = np.array([socket.at for _, socket in fan.targets])
             name = f"{fan.side} to {fan.equipment}"
-            self.conductors.extend(links(led, fan.side, places, "joint link", name))
+            self.bundles.append(links(led, fan.side, places, "joint link", name))
 
     def make_joint(self, joint: Joint) -> None:
         """Lead the joint's ends to its place, and add up their currents."""
@@ -165,7 +183,7 @@ class _Builder:
         for run_id, side in dict.fromkeys((run_id, side) for run_id, side, _ in ends):
             made = [self.of_run[r][i] for r, s, i in ends if (r, s) == (run_id, side)]
             name = f"{side} to {joint.id}"
-            self.conductors.extend(links(made, side, np.array(at), "joint link", name))
+            self.bundles.append(links(made, side, np.array(at), "joint link", name))
             for conductor in made:
                 loads = conductor.loads
                 inflow.extend(loads if side == "end" else negative(loads))
@@ -206,14 +224,10 @@ class _Builder:
         for run in self.layout.runs:
             for side in SIDES:
                 free = self.ends.free(run, side)
-                if not free:
-                    continue
-                made = closing(run, self.groups[run.id], side, free)
-                self.conductors.extend(made.links)
-                is_closed = len(free) > 1
-                self._add_node(
-                    "free end", made.middle, [run.id], made.inflow, links=is_closed
-                )
+                if free:
+                    end = _free_end(Same(run), self.groups[run.id], side, free)
+                    self.bundles.append(end.links)
+                    self.nodes.append(end.node)
 
     def close_boards(self) -> None:
         """Sum the currents at a board's ends; join what goes no further."""
@@ -269,7 +283,7 @@ class _Builder:
                 star_items.extend(attached.items)
                 if name == STAR:
                     continue
-                self.conductors.extend(
+                self.bundles.append(
                     straight(
                         f"{transformer.id}/{name}",
                         transformer.star,
@@ -300,7 +314,7 @@ class _Builder:
         supply: tuple[SlotLoad, ...],
         role: Role = "joint link",
     ) -> None:
-        self.conductors.extend(
+        self.bundles.append(
             straight(
                 f"{equipment}/{name}/{socket.name}",
                 socket.at,

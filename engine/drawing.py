@@ -17,7 +17,7 @@ import numpy as np
 import numpy.typing as npt
 from shapely.geometry import Polygon
 
-from engine.conductor import Conductor
+from engine.conductor import Conductor, bundles_of
 from engine.equipment import Board, ConductorLoop, Equipment, Transformer
 from engine.layout import Layout
 from engine.outlines import Area, Line, Point, band, bar_footprint
@@ -39,20 +39,19 @@ __all__ = [
     "parted",
     "plan",
     "run_shape",
-    "strand",
 ]
 
 #: A leg that moves less than this in the picture is drawn as a rise or a fall. [m]
 _END_ON = 1e-3
 
 # By identity, which a held value keeps from being used again. Plain dictionaries:
-# a drag asks for thousands of unchanged conductors at every step.
+# a drag asks for hundreds of unchanged runs at every step.
 _Key = tuple[int, str]
 _AnyKey = TypeVar("_AnyKey")
 _Kept = TypeVar("_Kept")
-_N_KEPT = 40_000
+_N_KEPT = 6000
 _RUNS: dict[_Key, tuple[Run, Sequence[Conductor], RunShape]] = {}
-_STRANDS: dict[str, dict[int, tuple[Conductor, Strand]]] = {}
+_STRANDS: dict[str, dict[int, tuple[Sequence[Conductor], tuple[Strand, ...]]]] = {}
 
 
 @dataclass(frozen=True)
@@ -216,26 +215,36 @@ def plan(layout: Layout, conductors: Sequence[Conductor]) -> Plan:
 class Parted:
     """Conductors by what they stand for: those of runs, and shapes of the others."""
 
-    runs: dict[str, list[Conductor]]
+    runs: dict[str, tuple[Conductor, ...]]
     equipment: tuple[Strand, ...]
     links: tuple[Strand, ...]
 
 
 def parted(conductors: Sequence[Conductor], sight: Sight) -> Parted:
     """Conductors by what they stand for."""
-    runs: dict[str, list[Conductor]] = {}
+    runs: dict[str, tuple[Conductor, ...]] = {}
     equipment: list[Strand] = []
     links: list[Strand] = []
-    of_sight = _strands_of(sight)
-    for conductor in conductors:
-        if conductor.role == "run":
-            runs.setdefault(conductor.item, []).append(conductor)
-            continue
-        kept = of_sight.get(id(conductor))
-        same = kept is not None and kept[0] is conductor
-        shape = kept[1] if kept is not None and same else strand(conductor, sight)
-        (equipment if conductor.role == "equipment" else links).append(shape)
+    for bundle in bundles_of(conductors):
+        role, item = bundle[0].role, bundle[0].item
+        if role == "run":
+            before = runs.get(item)
+            runs[item] = bundle if before is None else before + bundle
+        else:
+            shapes = _bundle_strands(bundle, sight)
+            (equipment if role == "equipment" else links).extend(shapes)
     return Parted(runs, tuple(equipment), tuple(links))
+
+
+def _bundle_strands(bundle: Sequence[Conductor], sight: Sight) -> tuple[Strand, ...]:
+    """The shapes of conductors made together; the identical ones for the same."""
+    of_sight = _strands_of(sight)
+    kept = of_sight.get(id(bundle))
+    if kept is not None and kept[0] is bundle:
+        return kept[1]
+    made = tuple([_strand(conductor, sight) for conductor in bundle])
+    _keep(of_sight, id(bundle), (bundle, made))
+    return made
 
 
 def _room(room: Room) -> Place:
@@ -308,7 +317,7 @@ def _run_shape(run: Run, own: Sequence[Conductor], sight: Sight) -> RunShape:
         kind=run.kind,
         route=_line(sight.seen(run.route)),
         areas=band(own, sight),
-        strands=tuple(strand(c, sight) for c in own),
+        strands=tuple([_strand(c, sight) for c in own]),
         rises=tuple(_rises(run, sight)),
         levels=(min(heights), max(heights)),
     )
@@ -326,18 +335,9 @@ def _rises(run: Run, sight: Sight) -> Iterable[Rise]:
             yield Rise(p, a, b, along)
 
 
-def strand(conductor: Conductor, sight: Sight = PLAN) -> Strand:
-    """A conductor as seen; the identical shape again for the same conductor."""
-    of_sight = _strands_of(sight)
-    kept = of_sight.get(id(conductor))
-    if kept is not None and kept[0] is conductor:
-        return kept[1]
-    made = _strand(conductor, sight)
-    _keep(of_sight, id(conductor), (conductor, made))
-    return made
-
-
-def _strands_of(sight: Sight) -> dict[int, tuple[Conductor, Strand]]:
+def _strands_of(
+    sight: Sight,
+) -> dict[int, tuple[Sequence[Conductor], tuple[Strand, ...]]]:
     if sight.is_along_line and sight.name not in _STRANDS:
         # A line that is dragged is another sight at every step: the last one counts.
         for name in list(_STRANDS):
@@ -362,6 +362,8 @@ def _strand(conductor: Conductor, sight: Sight) -> Strand:
 
 
 def _same(one: Sequence[object], other: Sequence[object]) -> bool:
+    if one is other:
+        return True
     return len(one) == len(other) and all(map(is_, one, other))
 
 

@@ -13,6 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 import shapely
+from msgspec.structs import replace
 from shapely.geometry import LineString, Polygon
 from shapely.geometry import Point as Place2
 
@@ -153,7 +154,8 @@ def elevation(layout: Layout, conductors: Sequence[Conductor], sight: Sight) -> 
         Places are the rectangles that they fill from the side. A zone whose floor is
         not stated, and equipment without any height, are left out.
     """
-    on_plan = plan(layout, ())
+    # Runs are drawn from the side, not on plan.
+    on_plan = plan(replace(layout, runs=()), ())
     parts = parted(conductors, sight)
     equipment = tuple(
         _with_levels(place, _equipment_levels(place, layout, parts.equipment))

@@ -91,7 +91,16 @@ def run_conductors(run: Run, group: str) -> tuple[Conductor, ...]:
 
 def closing(run: Run, group: str, side: Side, which: tuple[int, ...]) -> Closing:
     """Join the conductor ends of these indices across the section."""
-    return _closing(Same(run), group, side, which)
+    conductors = run_conductors(run, group)
+    free = [conductors[i] for i in which]
+    index = 0 if side == "start" else -1
+    middle = np.mean([conductor.path[index] for conductor in free], axis=0)
+    inflow = total(load for conductor in free for load in conductor.loads)
+    made: tuple[Conductor, ...] = ()
+    if len(free) > 1:
+        made = links(free, side, middle, "closing link", f"closing {side}")
+    x, y, z = middle.tolist()
+    return Closing(made, (x, y, z), inflow if side == "end" else negative(inflow))
 
 
 def terminal_label(slot: Slot) -> str:
@@ -120,22 +129,6 @@ def _geometry(same: Same[Run]) -> RunGeometry:
 def _conductors(same: Same[Run], group: str) -> tuple[Conductor, ...]:
     geometry = _geometry(same)
     return along_route(geometry.made, geometry.stations, same.value.id, group)
-
-
-@lru_cache(maxsize=2 * N_KEPT)
-def _closing(
-    same: Same[Run], group: str, side: Side, which: tuple[int, ...]
-) -> Closing:
-    conductors = _conductors(same, group)
-    free = [conductors[i] for i in which]
-    index = 0 if side == "start" else -1
-    middle = np.mean([conductor.path[index] for conductor in free], axis=0)
-    inflow = total(load for conductor in free for load in conductor.loads)
-    made: tuple[Conductor, ...] = ()
-    if len(free) > 1:
-        made = links(free, side, middle, "closing link", f"closing {side}")
-    x, y, z = middle.tolist()
-    return Closing(made, (x, y, z), inflow if side == "end" else negative(inflow))
 
 
 def _refuse_short_legs(made: tuple[Slot, ...], found: Stations) -> None:

@@ -55,12 +55,12 @@ class Sight:
     @property
     def is_along_line(self) -> bool:
         """Whether its plane goes through a drawn line, see `along`."""
-        return self.axis == "depth"
+        return self not in (PLAN, LOOKING_X, LOOKING_Y)
 
     @property
     def axis(self) -> str:
         """The layout's axis along which one looks: "z" on plan; "depth" for others."""
-        if self not in (PLAN, LOOKING_X, LOOKING_Y):
+        if self.is_along_line:
             return "depth"
         return "xyz"[int(np.argmax(np.abs(self.into)))]
 

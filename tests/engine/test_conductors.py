@@ -12,7 +12,9 @@ import numpy as np
 import pytest
 from msgspec.structs import replace
 
+from engine.conductor import bundles_of
 from engine.conductors import conductors, loose_ends, nodes, run_problem
+from engine.edits import replaced
 from engine.equipment import (
     Board,
     ConductorLoop,
@@ -687,3 +689,32 @@ def test_closing_links_are_identical_too():
     one = conductors(Layout(runs=(first,)))
     two = conductors(Layout(runs=(first, flat_run(id="W2"))))
     assert {id(c) for c in one} <= {id(c) for c in two}
+
+
+def test_what_did_not_move_comes_as_the_identical_bundle_again():
+    layout = room_a()
+    run = layout.runs[0]
+    route = tuple((x + 0.1, y, z) for x, y, z in run.route)
+    moved = replaced(layout, replace(run, route=route))
+    before, after = conductors(layout), conductors(moved)
+    still = {id(bundle) for bundle in before.bundles}
+    alone = [b for b in after.bundles if b[0].role == "run" and b[0].item != run.id]
+    assert alone
+    assert all(id(bundle) in still for bundle in alone)
+    own = [b for b in after.bundles if b[0].role == "run" and b[0].item == run.id]
+    assert own
+    assert not any(id(bundle) in still for bundle in own)
+
+
+def test_bundles_are_all_conductors_in_order_each_of_one_kind():
+    found = conductors(room_a())
+    assert [c for bundle in found.bundles for c in bundle] == list(found)
+    for bundle in found.bundles:
+        assert len({(c.group, c.item, c.role) for c in bundle}) == 1
+
+
+def test_bundles_of_any_sequence_are_told_by_what_they_share():
+    found = list(conductors(room_a()))
+    assert [c for bundle in bundles_of(found) for c in bundle] == found
+    assert bundles_of(found[:1]) == ((found[0],),)
+    assert bundles_of(()) == ()

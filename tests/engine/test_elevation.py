@@ -80,3 +80,13 @@ def test_an_unchanged_run_keeps_its_shape():
     before = plan(Layout(runs=(first, other)), (bar,)).runs[0]
     after = plan(Layout(runs=(first, run(((0, 9, 2), (5, 9, 2))))), (bar,)).runs[0]
     assert after is before
+
+
+def test_looking_from_the_side_leaves_the_shapes_on_plan_as_they_are():
+    layout, bar = (
+        Layout(runs=(run(((0, 1, 2), (5, 1, 2))),)),
+        on_edge((0, 1, 2), (5, 1, 2)),
+    )
+    before = plan(layout, (bar,)).runs[0]
+    elevation(layout, (bar,), LOOKING_X)
+    assert plan(layout, (bar,)).runs[0] is before
