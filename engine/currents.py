@@ -8,6 +8,8 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
+from threading import Lock
 
 import numpy as np
 from numpy.typing import NDArray
@@ -25,6 +27,7 @@ from engine.circuits import Circuit, LoadCase
 from engine.conductor import Conductor
 from engine.errors import UserError
 from engine.layout import Layout
+from engine.run_conductors import Same
 from engine.runs import SlotLoad
 from engine.spectra import frequency_key
 
@@ -39,10 +42,17 @@ __all__ = [
     "conductor_currents",
     "load_current",
     "neutral_comparison",
+    "node_currents",
 ]
 
 #: Components times circuit conductors that a load case may have (0.3 GB).
 MOST_VALUES = 20_000_000
+
+#: Load cases whose phasors are remembered, with what conductors carry in them.
+_N_KEPT = 16
+
+#: Loads known by identity before they are looked up anew.
+_MOST_KNOWN = 50_000
 
 #: Stands between circuit and frequency in the group of an unknown offset; no id has it.
 _AT = " @ "
@@ -112,6 +122,7 @@ def case_phasors(layout: Layout, case: LoadCase) -> CasePhasors:
     Circuits of one base frequency add as phasors at each frequency. Kept apart are:
     equal frequencies of different bases, circuits whose phase relation is unknown, and
     harmonics whose offset is unknown. Direct currents always add, with their signs.
+    The identical phasors again while circuits and case are the same values.
 
     Raises
     ------
@@ -119,10 +130,18 @@ def case_phasors(layout: Layout, case: LoadCase) -> CasePhasors:
         When a circuit's entries do not determine its currents; when there are two
         circuits with one id; when more currents do not add than can be held.
     """
+    return _case_phasors(Same(layout.circuits), Same(case))
+
+
+@lru_cache(maxsize=_N_KEPT)
+def _case_phasors(
+    circuits: Same[tuple[Circuit, ...]], same_case: Same[LoadCase]
+) -> CasePhasors:
+    case = same_case.value
     terms = CaseTerms(case)
     flowing: dict[str, tuple[Circuit, CircuitCurrents]] = {}
     seen: set[str] = set()
-    for circuit in layout.circuits:
+    for circuit in circuits.value:
         if circuit.id in seen:
             raise UserError(
                 f"Two circuits have the id {circuit.id}; give one of them another id."
@@ -159,7 +178,73 @@ def conductor_currents(
     (c, m) complex
         RMS phasors. [A]
     """
-    return _load_currents(phasors, [conductor.loads for conductor in conductors])
+    if isinstance(conductors, tuple):
+        return _conductor_currents(Same(phasors), Same(conductors))
+    return _carried(Same(phasors)).of([conductor.loads for conductor in conductors])
+
+
+@lru_cache(maxsize=_N_KEPT)
+def _conductor_currents(
+    phasors: Same[CasePhasors], conductors: Same[tuple[Conductor, ...]]
+) -> NDArray[np.complex128]:
+    currents = _carried(phasors).of([each.loads for each in conductors.value])
+    currents.flags.writeable = False
+    return currents
+
+
+def node_currents(
+    phasors: CasePhasors, inflows: Sequence[tuple[SlotLoad, ...]]
+) -> NDArray[np.complex128]:
+    """(c, n) complex sums of the currents into n nodes. [A]"""
+    return _carried(Same(phasors)).of(inflows)
+
+
+class _Carried:
+    """What loads come to in one load case, each computed once.
+
+    A drag asks for the currents of thousands of unchanged conductors at every step.
+    """
+
+    def __init__(self, phasors: CasePhasors) -> None:
+        self._phasors = phasors
+        self._lock = Lock()
+        self._rows: dict[tuple[SlotLoad, ...], int] = {}
+        self._values = np.zeros((0, len(phasors.components)), np.complex128)
+        # By identity, which the held loads keep from being used again.
+        self._known: dict[int, int] = {}
+        self._held: list[tuple[SlotLoad, ...]] = []
+
+    def of(self, loads: Sequence[tuple[SlotLoad, ...]]) -> NDArray[np.complex128]:
+        """(c, m) complex sums. [A]"""
+        with self._lock:
+            known = self._known
+            rows = [known.get(id(together), -1) for together in loads]
+            if -1 in rows:
+                new = [each for each, row in zip(loads, rows, strict=True) if row < 0]
+                self._learn(new)
+                rows = [
+                    self._rows[each] if row < 0 else row
+                    for each, row in zip(loads, rows, strict=True)
+                ]
+            return self._values[rows].T
+
+    def _learn(self, loads: Sequence[tuple[SlotLoad, ...]]) -> None:
+        new = [each for each in dict.fromkeys(loads) if each not in self._rows]
+        if new:
+            first = len(self._rows)
+            self._rows.update((each, first + k) for k, each in enumerate(new))
+            made = _load_currents(self._phasors, new).T
+            self._values = np.concatenate([self._values, made])
+        if len(self._held) > _MOST_KNOWN:
+            self._known.clear()
+            self._held.clear()
+        self._known.update((id(each), self._rows[each]) for each in loads)
+        self._held.extend(loads)
+
+
+@lru_cache(maxsize=_N_KEPT)
+def _carried(phasors: Same[CasePhasors]) -> _Carried:
+    return _Carried(phasors.value)
 
 
 def load_current(

@@ -7,7 +7,7 @@ open, W03 currents that do not close where they meet.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Literal
 
@@ -20,7 +20,7 @@ from engine.currents import (
     CasePhasors,
     Component,
     case_phasors,
-    load_current,
+    node_currents,
 )
 from engine.ends import equipment_parts
 from engine.equipment import Board, ConductorLoop, Equipment
@@ -118,10 +118,7 @@ def open_nodes(
         Where currents meet.
     """
     titles = {item.id: item.title for item in layout.items()}
-    for node in places:
-        remaining = _remaining(phasors, node)
-        if not remaining:
-            continue
+    for node, remaining in _remaining(phasors, places):
         where = _place_text(node.place)
         if node.kind != "free end":
             yield Remark(
@@ -151,22 +148,26 @@ def open_nodes(
         )
 
 
-def _remaining(phasors: CasePhasors, node: Node) -> str:
-    """The currents that remain at a node, as text; empty where it closes."""
-    if not node.inflow:
-        return ""
-    remaining = np.abs(load_current(phasors, node.inflow))
-    total = np.zeros(len(remaining))
-    for load in node.inflow:
-        total += abs(load.share) * np.abs(phasors.of(load.circuit, load.label))
-    too_much = remaining > np.maximum(MAY_REMAIN, MAY_REMAIN_RELATIVE * total)
-    return ", ".join(
-        f"{significant(float(amperes))} A {_component_text(component)}"
-        for component, amperes, is_open in zip(
-            phasors.components, remaining, too_much, strict=True
+def _remaining(
+    phasors: CasePhasors, places: Sequence[Node]
+) -> Iterator[tuple[Node, str]]:
+    """The nodes that do not close, and the currents that remain there, as text."""
+    sums = np.abs(node_currents(phasors, [node.inflow for node in places])).T
+    for k in np.flatnonzero((sums > MAY_REMAIN).any(axis=1)).tolist():
+        node, remaining = places[k], sums[k]
+        total = np.zeros(len(remaining))
+        for load in node.inflow:
+            total += abs(load.share) * np.abs(phasors.of(load.circuit, load.label))
+        too_much = remaining > np.maximum(MAY_REMAIN, MAY_REMAIN_RELATIVE * total)
+        text = ", ".join(
+            f"{significant(float(amperes))} A {_component_text(component)}"
+            for component, amperes, is_open in zip(
+                phasors.components, remaining, too_much, strict=True
+            )
+            if is_open
         )
-        if is_open
-    )
+        if text:
+            yield node, text
 
 
 def _component_text(component: Component) -> str:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import cmath
 import math
 
+import msgspec
 import numpy as np
 import pytest
 
@@ -37,6 +38,7 @@ from engine.currents import (
     conductor_currents,
     load_current,
     neutral_comparison,
+    node_currents,
 )
 from engine.errors import UserError
 from engine.layout import Layout
@@ -615,3 +617,36 @@ def test_a_frequency_with_known_and_unknown_offsets_says_what_it_assumes():
     assert ("line offset assumed", 250.0) in kinds
     assert ("offset unknown", 250.0) in kinds
     assert ("line offset assumed", 350.0) not in kinds
+
+
+def test_the_same_circuits_and_case_give_the_identical_phasors():
+    layout = Layout(circuits=(Circuit(id="C", demand=BalancedCurrent(rms=100.0)),))
+    renamed = msgspec.structs.replace(layout, runs=())
+    case = layout.cases[0]
+    assert case_phasors(renamed, case) is case_phasors(layout, case)
+    louder = Circuit(id="C", demand=BalancedCurrent(rms=200.0))
+    changed = msgspec.structs.replace(layout, circuits=(louder,))
+    assert abs(case_phasors(changed, case).of("C", "L1")[0]) == pytest.approx(200.0)
+
+
+def test_currents_into_nodes_are_those_of_their_loads_asked_often_or_once():
+    layout = Layout(circuits=(Circuit(id="C", demand=BalancedCurrent(rms=100.0)),))
+    phasors = case_phasors(layout, layout.cases[0])
+    inflows = [
+        (SlotLoad(circuit="C", label="L1", share=0.5),),
+        (),
+        (
+            SlotLoad(circuit="C", label="L1"),
+            SlotLoad(circuit="C", label="L2"),
+            SlotLoad(circuit="C", label="L3"),
+        ),
+        (SlotLoad(circuit="gone", label="L1"),),
+    ]
+    expected = np.stack([load_current(phasors, x) for x in inflows], axis=1)
+    first = node_currents(phasors, inflows)
+    assert np.array_equal(first, expected)
+    assert abs(first[0, 0]) == pytest.approx(50.0)
+    assert abs(first[0, 2]) < 1e-9
+    # Equal values that are other objects, and others in between.
+    again = [inflows[2], (SlotLoad(circuit="C", label="L1", share=0.5),), inflows[0]]
+    assert np.array_equal(node_currents(phasors, again), expected[:, [2, 0, 0]])
