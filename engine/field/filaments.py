@@ -168,7 +168,7 @@ class _Group:
         return bool((self.sides == self.sides[0]).all() and len(set(self.round)) == 1)
 
 
-@lru_cache(maxsize=4096)
+@lru_cache(maxsize=32_768)
 def _short_loop(conductor: Conductor) -> bool:
     path, shape = conductor.path, conductor.shape
     if not np.allclose(path[0], path[-1], rtol=0, atol=1e-6):

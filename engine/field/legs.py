@@ -85,6 +85,7 @@ def _legs_of(conductors: tuple[Conductor, ...]) -> Legs:
     )
 
 
+@lru_cache(maxsize=32_768)
 def _table(conductor: Conductor) -> Floats:
     path, axes = conductor.path, conductor.axes
     steps = np.diff(path, axis=0)

@@ -32,6 +32,9 @@ from engine.field.points import as_points, compact_order
 #: Seconds between two looks at whether to stop.
 _PATIENCE = 0.05
 
+#: Tiles times conductors that are done sooner than a thread is started.
+_FEW = 400
+
 #: Segments of the filament sets that one request keeps for its next tiles.
 _MOST_SEGMENTS = 2_000_000
 
@@ -94,6 +97,14 @@ def over_tiles(
     if count == 0 or not which:
         return
     shared = _SharedFilaments(tiling, which)
+    if count * len(which) <= _FEW:
+        for tile in range(count):
+            rows = tiling.order[tile * TILE : (tile + 1) * TILE]
+            work(shared.of(tile), tiling.points[rows], rows)
+            stop_if(cancelled)
+        if progress is not None:
+            progress(1.0, "summing the field")
+        return
     stopped = Event()
     batch = max(1, min(8, count // 32))
 
