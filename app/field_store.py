@@ -16,7 +16,7 @@ import numpy as np
 import numpy.typing as npt
 
 from engine import field
-from engine.conductor import Conductor
+from engine.conductor import Conductor, bundles_of
 from engine.errors import Cancelled, stop_if
 from engine.field.points import digest
 from engine.runs import Bar
@@ -27,7 +27,7 @@ Complexes = npt.NDArray[np.complex128]
 #: Columns of one matrix product: its result stays in the cache of the processor.
 _BLOCK = 12_288
 
-#: Samples whose last sums are remembered, and their groups that did not change.
+#: Samples whose last sums are remembered.
 _MOST_SAMPLES = 8
 
 #: A sample of a drag has no more points.
@@ -59,25 +59,49 @@ def sample_of(points: Floats) -> Sample:
     return Sample(checked, digest(checked))
 
 
-@dataclass(frozen=True)
-class _Part:
-    """A group: its conductors' places in the layout, its geometry and its currents."""
+@dataclass(frozen=True, eq=False)
+class _Bundle:
+    """Conductors made together, held so that their identity stays theirs."""
 
-    rows: tuple[int, ...]
+    conductors: tuple[Conductor, ...]
     geometry: bytes
-    currents: bytes
 
 
-_Signature = tuple[bytes, bytes]
+class _Part:
+    """A group: its conductors with their geometry, and their currents (k, c)."""
+
+    def __init__(self, members: Sequence[tuple[_Bundle, Complexes]]) -> None:
+        self._members = members
+        self.count = sum(len(bundle.conductors) for bundle, _ in members)
+        self.geometry = b"".join([bundle.geometry for bundle, _ in members])
+        self._flowing = b"".join([rows.tobytes() for _, rows in members])
+
+    def is_like(self, other: _Part | None) -> bool:
+        """Whether both give the same field."""
+        return (
+            other is not None
+            and self.geometry == other.geometry
+            and self._flowing == other._flowing
+        )
+
+    @property
+    def conductors(self) -> list[Conductor]:
+        return [each for bundle, _ in self._members for each in bundle.conductors]
+
+    @property
+    def currents(self) -> Complexes:
+        """(c, k) phasors along the conductors. [A]"""
+        return np.concatenate([rows for _, rows in self._members]).T
 
 
-@dataclass(eq=False)
+@dataclass(frozen=True, eq=False)
 class _Last:
-    """Of a sample: what was summed last, and the sum of the groups that stood still."""
+    """Of a sample: what was summed last, and the part of it that stood still."""
 
-    signatures: dict[str, _Signature]
-    still: frozenset[tuple[str, _Signature]] = frozenset()
-    still_sum: Complexes | None = None
+    parts: Mapping[str, _Part]
+    total: Complexes
+    still: frozenset[str] = frozenset()
+    rest: Complexes | None = None
 
 
 class FieldStore:
@@ -86,7 +110,8 @@ class FieldStore:
     Parameters
     ----------
     limit_bytes : int
-        Memory for the responses of groups. A sum that needs more keeps none.
+        Memory for the responses of groups. A sum that needs more than half of it
+        keeps none.
     """
 
     def __init__(self, limit_bytes: int = 256 * 2**20) -> None:
@@ -98,6 +123,7 @@ class FieldStore:
         self._few = field.ResponseCache(limit_bytes // 6)
         self._many = field.ResponseCache(limit_bytes // 2)
         self._last: OrderedDict[bytes, _Last] = OrderedDict()
+        self._known: dict[int, _Bundle] = {}
         self._lock = Lock()
 
     @property
@@ -110,6 +136,7 @@ class FieldStore:
         with self._lock:
             self._kept.clear()
             self._last.clear()
+            self._known.clear()
             self._few.clear()
             self._many.clear()
             self._bytes = 0
@@ -137,42 +164,70 @@ class FieldStore:
         (c, n, 3) complex
             RMS phasors. [T]
         """
-        out = np.zeros((len(currents), len(sample.points), 3), np.complex128)
         if not len(currents) or not len(conductors) or not len(sample.points):
-            return out
+            return np.zeros((len(currents), len(sample.points), 3), np.complex128)
         with self._lock:
-            parts = _parts(conductors, currents)
-            last = self._last.pop(sample.key, None) or _Last({})
-            moved = [
-                name
-                for name, part in parts.items()
-                if last.signatures.get(name) != (part.geometry, part.currents)
-            ]
-            still: list[str] = []
-            if last.signatures and 0 < len(moved) <= _MOST_MOVED:
-                still = [name for name in parts if name not in moved]
-            work = _Work(conductors, currents, sample, cancelled)
-            if still:
-                out += self._still_sum(work, last, {n: parts[n] for n in still})
-                for name in moved:
-                    out += self._moved_sum(work, parts[name])
-            else:
-                out += self._sum(work, parts.values())
-            last.signatures = {n: (p.geometry, p.currents) for n, p in parts.items()}
-            self._last[sample.key] = last
+            parts = self._parts(conductors, currents)
+            work = _Work(len(currents), sample, cancelled)
+            now = self._moved_from(work, self._last.get(sample.key), parts)
+            if now is None:
+                now = _Last(parts, self._sum(work, parts.values()))
+            self._last[sample.key] = now
+            self._last.move_to_end(sample.key)
             while len(self._last) > _MOST_SAMPLES:
                 self._last.popitem(last=False)
-        return out
+            return now.total.copy()
 
-    def _still_sum(
-        self, work: _Work, last: _Last, parts: Mapping[str, _Part]
-    ) -> Complexes:
-        """Sum of the groups that stand still, computed once in a drag."""
-        names = frozenset((n, (p.geometry, p.currents)) for n, p in parts.items())
-        if last.still_sum is None or last.still != names:
-            last.still_sum = self._sum(work, parts.values())
-            last.still = names
-        return last.still_sum
+    def _moved_from(
+        self, work: _Work, last: _Last | None, parts: Mapping[str, _Part]
+    ) -> _Last | None:
+        """The field after a few groups moved; None where it is better summed anew.
+
+        What stands still is what was there without the groups that moved, so that
+        the first step of a drag costs no more than the others. Taking the old field
+        of a group away leaves no more than the rounding of the sum: groups never
+        share their filaments.
+        """
+        if last is None or len(last.total) != work.components:
+            return None
+        still = frozenset(
+            n for n, part in parts.items() if part.is_like(last.parts.get(n))
+        )
+        gone = [name for name in last.parts if name not in still]
+        new = [name for name in parts if name not in still]
+        if max(len(gone), len(new)) > _MOST_MOVED or not still:
+            return None
+        if not gone and not new:
+            return _Last(parts, last.total, last.still, last.rest)
+        rest = last.rest
+        if rest is None or still != last.still:
+            rest = last.total.copy()
+            for name in gone:
+                rest -= self._moved_sum(work, last.parts[name])
+        total = rest.copy()
+        for name in new:
+            total += self._moved_sum(work, parts[name])
+        return _Last(parts, total, still, rest)
+
+    def _parts(
+        self, conductors: Sequence[Conductor], currents: Complexes
+    ) -> dict[str, _Part]:
+        """Groups by name; what was computed of a bundle stays while it is the same."""
+        bundles = bundles_of(conductors)
+        rows = np.ascontiguousarray(currents.T)
+        members: dict[str, list[tuple[_Bundle, Complexes]]] = {}
+        known, self._known = self._known, {}
+        first = 0
+        for bundle in bundles:
+            found = known.get(id(bundle))
+            if found is None:
+                found = _Bundle(bundle, b"".join(map(_geometry, bundle)))
+            self._known[id(bundle)] = found
+            last = first + len(bundle)
+            own = members.setdefault(bundle[0].group, [])
+            own.append((found, rows[first:last]))
+            first = last
+        return {name: _Part(own) for name, own in members.items()}
 
     def _moved_sum(self, work: _Work, part: _Part) -> Complexes:
         """(c, n, 3) field of a group that moved, or whose currents did.
@@ -182,8 +237,8 @@ class FieldStore:
         if (part.geometry, work.sample.key) in self._kept:
             return self._sum(work, [part])
         return field.flux_density(
-            [work.conductors[row] for row in part.rows],
-            work.currents[:, list(part.rows)],
+            part.conductors,
+            part.currents,
             work.sample.points,
             cache=self._cache(work.sample),
             cancelled=work.cancelled,
@@ -195,16 +250,16 @@ class FieldStore:
     def _sum(self, work: _Work, parts: Iterable[_Part]) -> Complexes:
         """(c, n, 3) field of some groups."""
         chosen = list(parts)
-        n, c = len(work.sample.points), len(work.currents)
-        needed = 24 * n * sum(len(part.rows) for part in chosen)
-        if needed > self._limit:
+        n, c = len(work.sample.points), work.components
+        needed = 24 * n * sum(part.count for part in chosen)
+        if needed > self._limit // 2:
             return self._direct(work, chosen)
         flat = np.zeros((2 * c, 3 * n))
         responses = [(part, self._responses(work, part)) for part in chosen]
         stop_if(work.cancelled)
         weights = [
-            np.concatenate([own.real, own.imag])
-            for own in (work.currents[:, list(part.rows)] for part, _ in responses)
+            np.concatenate([part.currents.real, part.currents.imag])
+            for part, _ in responses
         ]
         for first in range(0, 3 * n, _BLOCK):
             columns = slice(first, first + _BLOCK)
@@ -212,11 +267,10 @@ class FieldStore:
                 flat[:, columns] += weight @ response[:, columns]
         return (flat[:c] + 1j * flat[c:]).reshape(c, n, 3)
 
-    def _direct(self, work: _Work, parts: Iterable[_Part]) -> Complexes:
-        rows = sorted(row for part in parts for row in part.rows)
+    def _direct(self, work: _Work, parts: Sequence[_Part]) -> Complexes:
         return field.flux_density(
-            [work.conductors[row] for row in rows],
-            work.currents[:, rows],
+            [conductor for part in parts for conductor in part.conductors],
+            np.concatenate([part.currents for part in parts], axis=1),
             work.sample.points,
             cancelled=work.cancelled,
         )
@@ -229,11 +283,11 @@ class FieldStore:
             self._kept.move_to_end(key)
             return found
         made = field.responses(
-            [work.conductors[row] for row in part.rows],
+            part.conductors,
             work.sample.points,
             cache=self._cache(work.sample),
             cancelled=work.cancelled,
-        ).reshape(len(part.rows), -1)
+        ).reshape(part.count, -1)
         self._keep(key, made)
         return made
 
@@ -249,24 +303,9 @@ class FieldStore:
 class _Work:
     """What one call is about."""
 
-    conductors: Sequence[Conductor]
-    currents: Complexes
+    components: int
     sample: Sample
     cancelled: Cancelled | None
-
-
-def _parts(conductors: Sequence[Conductor], currents: Complexes) -> dict[str, _Part]:
-    rows: dict[str, list[int]] = {}
-    for row, conductor in enumerate(conductors):
-        rows.setdefault(conductor.group, []).append(row)
-    return {
-        name: _Part(
-            tuple(own),
-            b"".join(_geometry(conductors[row]) for row in own),
-            np.ascontiguousarray(currents[:, own]).tobytes(),
-        )
-        for name, own in rows.items()
-    }
 
 
 @lru_cache(maxsize=8192)
