@@ -222,12 +222,14 @@ def sampled_margins(
         When `cancelled` says so.
     """
     counted = [case for case in layout.cases if case.counted]
-    loaded = loaded_layout(layout, counted, None, cancelled)
     every: list[Zone | Receptor] = [*layout.zones, *layout.receptors]
     places = [place for place in every if place.levels]
+    if not places:
+        return Margins(layout, (), True)
+    loaded = loaded_layout(layout, counted, None, cancelled)
     titles = _titles(layout)
     spread = [positions(layout, p, (seeds or {}).get(p.id, ())) for p in places]
-    if not places or not loaded.fields.cases:
+    if not loaded.fields.cases:
         rows = [_unsampled(place, titles) for place in places]
         return Margins(layout, tuple(r for own in rows for r in own), True)
     points = np.concatenate([*spread, np.zeros((0, 3))])

@@ -19,7 +19,8 @@ from app.views.profile_item import ProfileItem
 from app.views.projection import PLAN, Sight
 from app.views.run_item import RunItem
 from app.views.shape_item import ShapeItem
-from engine.conductors import Conductor, conductors
+from engine.conductor import Conductor, bundles_of
+from engine.conductors import conductors
 from engine.drawing import Place, Strand, plan
 from engine.elevation import elevation
 from engine.errors import UserError
@@ -86,10 +87,11 @@ class DrawingScene(QGraphicsScene):
         else:
             self.plan = elevation(layout, shown, self._sight)
         keys = flowing(layout, shown_case(layout, look.case))
-        live: set[str] = set()
-        for each in shown:
-            if each.role == "run" and each.item not in live and carries(each, keys):
-                live.add(each.item)
+        live = {
+            bundle[0].item
+            for bundle in bundles_of(shown)
+            if bundle[0].role == "run" and any(carries(each, keys) for each in bundle)
+        }
         if not shown:
             live = {run.id for run in layout.runs}
         kept: set[str] = set()

@@ -14,10 +14,11 @@ from PySide6.QtGui import (
     QPaintEvent,
     QPixmap,
     QResizeEvent,
+    QShowEvent,
 )
 from PySide6.QtWidgets import QWidget
 
-from app.document import Document
+from app.document import EVERYTHING, Document
 from app.map_picture import MapPicture
 from app.theme import LIGHT, Theme
 from app.tools.catch import NO_TARGETS, Catch, catch, held
@@ -36,7 +37,6 @@ from app.views.projection import PLAN, Sight
 from app.views.scale_bar import grid_step
 from app.views.zoomable_view import ZoomableView
 
-_MARGIN = 56.0
 #: Most of the width that is kept free for the legend.
 _MOST_BESIDE = 0.35
 
@@ -84,11 +84,12 @@ class DrawingView(ZoomableView):
         self.marks: dict[str, Overlay] = {}
         self.catches_places = True
         self.holds_directions = False
+        self._is_behind = self._wants_all = False
         self._legend = Legend(self._inks, self.viewport())
         self._prepare_widget()
         self.camera_changed.connect(self._on_camera_changed)
         document.changed.connect(self._on_changed)
-        document.selection_changed.connect(self._on_selection_changed)
+        document.selection_changed.connect(self._scene.select)
         view_state.changed.connect(self._on_look_changed)
         self._scene.touched.connect(self.refresh)
         self._scene.show_layout(document.layout, view_state.look)
@@ -97,8 +98,8 @@ class DrawingView(ZoomableView):
     def _prepare_widget(self) -> None:
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMinimumSize(280, 180)
-        is_plan = self._sight is PLAN
-        self.setAccessibleName("Plan" if is_plan else f"Elevation {self._sight.name}")
+        name = "Plan" if self._sight is PLAN else f"Elevation {self._sight.name}"
+        self.setAccessibleName(name)
         self.setAccessibleDescription(
             "The drawing. Arrow keys move the selection by the grid, Home shows all."
         )
@@ -175,20 +176,11 @@ class DrawingView(ZoomableView):
 
     def fit(self) -> None:
         """Show everything that is drawn."""
-        box = self._everything()
-        whole = self.viewport().size()
         beside = self._legend.width() if self._legend_shows else 0
-        margin = min(_MARGIN, 0.08 * min(whole.width(), whole.height()))
-        if beside > _MOST_BESIDE * whole.width():
+        if beside > _MOST_BESIDE * self.viewport().width():
             # Better under the legend than too small to be read.
             beside = 0
-        width = max(60.0, whole.width() - 2 * margin - beside)
-        height = max(60.0, whole.height() - 2 * margin)
-        scale = min(width / max(box.width(), 0.5), height / max(box.height(), 0.5))
-        self.set_transform(scale)
-        self.centerOn(box.center() + QPointF(0.5 * beside / scale, 0.0))
-        self.is_fitted = True
-        self.camera_changed.emit()
+        self.fit_box(self._everything(), beside)
 
     def _everything(self) -> QRectF:
         bounds = self._scene.plan.bounds()
@@ -381,17 +373,29 @@ class DrawingView(ZoomableView):
     # -- listening --------------------------------------------------------------
 
     def _on_changed(self, layout: object, ids: object) -> None:
+        self._wants_all = self._wants_all or ids == EVERYTHING
+        self._is_behind = True
+        if not self.is_put_away:
+            self._follow()
+
+    def _follow(self) -> None:
+        """Show the layout and the look of now."""
         was_empty = self._scene.is_empty
         self._scene.show_layout(self._document.layout, self._view_state.look)
         self._scene.set_scale(self.camera().scale)
-        if ids == frozenset({"*"}) or (was_empty and self.is_fitted):
+        if self._wants_all or (was_empty and self.is_fitted):
             self.fit()
+        self._wants_all = self._is_behind = False
 
-    def _on_selection_changed(self, selection: frozenset[str]) -> None:
-        self._scene.select(selection)
+    def showEvent(self, event: QShowEvent) -> None:
+        super().showEvent(event)
+        if self._is_behind:
+            self._follow()
 
     def _on_look_changed(self, look: Look) -> None:
-        self._scene.show_layout(self._document.layout, look)
+        self._is_behind = True
+        if not self.is_put_away:
+            self._follow()
         self._place_legend()
 
     def _on_overlay_changed(self) -> None:

@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
 import numpy as np
-from PySide6.QtCore import QPointF, QRectF, Qt
+import numpy.typing as npt
+from PySide6.QtCore import QByteArray, QDataStream, QPointF, QRectF, Qt
 from PySide6.QtGui import QBrush, QImage, QPainter, QPainterPath, QPolygonF
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
@@ -30,6 +33,7 @@ class MapLayer(QGraphicsItem):
         self._picture: MapPicture | None = None
         self._image = QImage()
         self._lines: list[tuple[DrawnIsoLine, QPolygonF]] = []
+        self._places: list[_Along] | None = None
         self._box = QRectF()
 
     @property
@@ -40,17 +44,14 @@ class MapLayer(QGraphicsItem):
         """Show another map, or none."""
         self.prepareGeometryChange()
         self._picture = picture
-        self._lines = []
+        self._lines, self._places = [], None
         self._box = QRectF()
         if picture is None:
             return
         x0, y0, x1, y1 = picture.rect
         self._box = QRectF(x0, y0, x1 - x0, y1 - y0)
         self._image = _greyed(picture.image) if picture.is_stale else picture.image
-        self._lines = [
-            (line, QPolygonF([QPointF(x, y) for x, y in line.points.tolist()]))
-            for line in picture.iso_lines
-        ]
+        self._lines = [(line, _polygon(line.points)) for line in picture.iso_lines]
 
     @property
     def is_coloured(self) -> bool:
@@ -76,8 +77,9 @@ class MapLayer(QGraphicsItem):
             self._hatch(painter)
         if self.shows_lines:
             painter.setBrush(Qt.BrushStyle.NoBrush)
+            strokes = {bold: self._strokes(bold=bold) for bold in (False, True)}
             for line, polygon in self._lines:
-                for stroke in self._strokes(bold=line.bold):
+                for stroke in strokes[line.bold]:
                     painter.setPen(stroke)
                     painter.drawPolyline(polygon)
 
@@ -96,9 +98,8 @@ class MapLayer(QGraphicsItem):
                 self.inks.pen(theme.paper, 4.6, alpha=0.75 * fade),
                 self.inks.pen(theme.text, 2.4, dashes, alpha=fade),
             ]
-        return [
-            self.inks.pen(theme.text, 1.1, dashes, alpha=0.85 * fade),
-        ]
+        # One pixel and no more: Qt draws wider lines ten times more slowly.
+        return [self.inks.pen(theme.text, 1.0, dashes, alpha=0.85 * fade)]
 
     def _hatch(self, painter: QPainter) -> None:
         """Masked areas, hatched at a constant distance in pixels."""
@@ -128,8 +129,11 @@ class MapLayer(QGraphicsItem):
             return []
         found = []
         if self.shows_lines and not picture.is_stale:
-            for line, polygon in self._lines:
-                label = self._line_label(line, polygon, camera)
+            if self._places is None:
+                self._places = [_along(line) for line, _ in self._lines if line.text]
+            named = [line for line, _ in self._lines if line.text]
+            for line, places in zip(named, self._places, strict=True):
+                label = self._line_label(line, places, camera)
                 if label is not None:
                     found.append(label)
         if self.shows_colours:
@@ -150,19 +154,12 @@ class MapLayer(QGraphicsItem):
         return found
 
     def _line_label(
-        self, line: DrawnIsoLine, polygon: QPolygonF, camera: Camera
+        self, line: DrawnIsoLine, places: _Along, camera: Camera
     ) -> Label | None:
         assert self._picture is not None
-        points = line.points
-        steps = np.hypot(*np.diff(points, axis=0).T)
-        if steps.sum() * camera.scale < _SHORTEST:
+        if places.length * camera.scale < _SHORTEST:
             return None
-        wanted = np.array([0.5, 0.25, 0.75, 0.1, 0.9, 0.4, 0.6]) * steps.sum()
-        walked = np.concatenate([[0.0], np.cumsum(steps)])
-        xs = np.interp(wanted, walked, points[:, 0])
-        ys = np.interp(wanted, walked, points[:, 1])
-        places = [line.label_place[:2], *zip(xs.tolist(), ys.tolist(), strict=True)]
-        pixels = tuple((p.x(), p.y()) for p in map(camera.pixel, places))
+        pixels = tuple((p.x(), p.y()) for p in map(camera.pixel, places.at))
         is_coarse = self._picture.is_coarse
         return Label(
             line.text,
@@ -171,6 +168,34 @@ class MapLayer(QGraphicsItem):
             bold=line.bold,
             colour=self.inks.theme.muted if is_coarse else "",
         )
+
+
+@dataclass(frozen=True)
+class _Along:
+    """How long a line is, and places on it for its label, best first. [m]"""
+
+    length: float
+    at: tuple[tuple[float, float], ...]
+
+
+def _along(line: DrawnIsoLine) -> _Along:
+    points = line.points
+    steps = np.hypot(*np.diff(points, axis=0).T)
+    walked = np.concatenate([[0.0], np.cumsum(steps)])
+    wanted = np.array([0.5, 0.25, 0.75, 0.1, 0.9, 0.4, 0.6]) * walked[-1]
+    xs = np.interp(wanted, walked, points[:, 0])
+    ys = np.interp(wanted, walked, points[:, 1])
+    first = (float(line.label_place[0]), float(line.label_place[1]))
+    places = (first, *zip(xs.tolist(), ys.tolist(), strict=True))
+    return _Along(float(walked[-1]), places)
+
+
+def _polygon(points: npt.NDArray[np.float64]) -> QPolygonF:
+    """A line (n, 2) as Qt takes it, read at once instead of point by point."""
+    data = len(points).to_bytes(4, "big") + points.astype(">f8").tobytes()
+    found = QPolygonF()
+    QDataStream(QByteArray(data)) >> found
+    return found
 
 
 def _greyed(image: QImage) -> QImage:

@@ -2,14 +2,17 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 
 from app.height_curve import drawn_levels
 from app.map_request import height_figures
 from engine.conductors import conductors
 from engine.errors import UserError
 from engine.layout import Layout
-from engine.runs import Bar
+from engine.run_conductors import N_KEPT, Same, run_conductors
+from engine.runs import Bar, Run
 from engine.zone_assessment import zone_floor
 
 #: A leg that rises more steeply passes heights instead of lying at one. [m/m]
@@ -116,13 +119,19 @@ def _ticks(layout: Layout) -> tuple[Tick, ...]:
 
 def _run_bands(layout: Layout) -> tuple[Band, ...]:
     """Where legs of runs lie, overlapping ones together."""
-    titles = {run.id: run.title for run in layout.runs}
     try:
-        parts = [c for c in conductors(layout) if c.role == "run"]
+        conductors(layout)
     except UserError:
         return ()
+    return _merged([band for run in layout.runs for band in _own_bands(Same(run))])
+
+
+@lru_cache(maxsize=N_KEPT)
+def _own_bands(same: Same[Run]) -> tuple[Band, ...]:
+    """Where the level legs of one run lie, overlapping ones together."""
+    run = same.value
     legs: list[Band] = []
-    for part in parts:
+    for part in run_conductors(run, run.id):
         shape = part.shape
         size = (
             max(shape.width, shape.thickness)
@@ -133,21 +142,22 @@ def _run_bands(layout: Layout) -> tuple[Band, ...]:
             across = float(((a[:2] - b[:2]) ** 2).sum() ** 0.5)
             if abs(float(a[2] - b[2])) <= _LEVEL * across:
                 low, high = sorted((float(a[2]), float(b[2])))
-                name = titles.get(part.item, part.item)
-                legs.append(Band(low - size / 2, high + size / 2, name))
+                legs.append(Band(low - size / 2, high + size / 2, run.title))
     return _merged(legs)
 
 
-def _merged(bands: list[Band]) -> tuple[Band, ...]:
+def _merged(bands: Sequence[Band]) -> tuple[Band, ...]:
     merged: list[Band] = []
+    names: list[dict[str, None]] = []
     for band in sorted(bands, key=lambda b: b.low):
         last = merged[-1] if merged else None
         if last is not None and band.low <= last.high + 0.05:
-            names = last.name.split(", ")
-            if band.name not in names:
-                names.append(band.name)
-            high = max(last.high, band.high)
-            merged[-1] = Band(last.low, high, ", ".join(names))
+            merged[-1] = Band(last.low, max(last.high, band.high), "")
+            names[-1][band.name] = None
         else:
             merged.append(band)
-    return tuple(merged)
+            names.append({band.name: None})
+    return tuple(
+        Band(band.low, band.high, ", ".join(together))
+        for band, together in zip(merged, names, strict=True)
+    )

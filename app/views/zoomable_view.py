@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QEvent, QPoint, QPointF, Qt, Signal
+from PySide6.QtCore import QEvent, QPoint, QPointF, QRectF, Qt, Signal
 from PySide6.QtGui import (
     QInputDevice,
     QMouseEvent,
@@ -16,6 +16,9 @@ from app.views.camera import Camera
 
 #: [px/m]
 _FARTHEST, _NEAREST = 0.02, 5000.0
+
+#: Around what is fitted. [px]
+_MARGIN = 56.0
 
 _ZOOM_STEP = 1.25
 _PAN_BUTTONS = (Qt.MouseButton.RightButton, Qt.MouseButton.MiddleButton)
@@ -55,6 +58,17 @@ class ZoomableView(QGraphicsView):
         """Whether the plane is being dragged."""
         return self._pan_from is not None
 
+    @property
+    def is_put_away(self) -> bool:
+        """Hidden on purpose, itself or what it stands in: nobody sees it."""
+        on_purpose = Qt.WidgetAttribute.WA_WState_ExplicitShowHide
+        widget: QWidget | None = self
+        while widget is not None:
+            if widget.isHidden() and widget.testAttribute(on_purpose):
+                return True
+            widget = None if widget.isWindow() else widget.parentWidget()
+        return False
+
     def camera(self) -> Camera:
         """Where the view looks."""
         made = self.viewportTransform()
@@ -64,6 +78,18 @@ class ZoomableView(QGraphicsView):
     def set_scale(self, scale: float) -> None:
         """Zoom about the middle of the view. [px/m]"""
         self.zoom(scale / self.camera().scale, self._middle())
+
+    def fit_box(self, box: QRectF, beside: float = 0.0) -> None:
+        """Show a box [m] with a margin, keeping so many pixels free at the right."""
+        whole = self.viewport().size()
+        margin = min(_MARGIN, 0.08 * min(whole.width(), whole.height()))
+        width = max(60.0, whole.width() - 2 * margin - beside)
+        height = max(60.0, whole.height() - 2 * margin)
+        scale = min(width / max(box.width(), 0.5), height / max(box.height(), 0.5))
+        self.set_transform(scale)
+        self.centerOn(box.center() + QPointF(0.5 * beside / scale, 0.0))
+        self.is_fitted = True
+        self.camera_changed.emit()
 
     def look_at(self, x: float, y: float) -> None:
         """Bring a place into the middle. [m]"""
