@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from importlib import import_module
 from pathlib import Path
+from threading import Thread
 
 import msgspec
 
@@ -43,6 +45,17 @@ def started(path: Path | None) -> MainWindow:
     if not choices.chosen:
         _ask_first(window)
     return window
+
+
+def load_ahead(window: MainWindow) -> None:
+    """Load plots once the first margins are there, for whoever opens some next."""
+
+    def load(_margins: object) -> None:
+        window.recompute.margins_ready.disconnect(load)
+        # Aside: the window stays quick meanwhile.
+        Thread(target=import_module, args=("pyqtgraph",), daemon=True).start()
+
+    window.recompute.margins_ready.connect(load)
 
 
 def _ask_first(window: MainWindow) -> None:

@@ -9,6 +9,9 @@ import sys
 from pathlib import Path
 
 import pytest
+from pytestqt.qtbot import QtBot
+
+from app import preferences, recovery, start
 
 ROOT = Path(__file__).parents[2]
 
@@ -75,3 +78,22 @@ def test_pages_and_panels_behind_others_are_not_built(
     }  # fmt: skip
     assert not hidden & set(first_start["built"])
     assert {"item", "remarks", "drawings"} <= set(first_start["built"])
+
+
+def test_plots_are_loaded_ahead_once_margins_are_there(
+    qtbot: QtBot, monkeypatch: pytest.MonkeyPatch, tmp_path: Path
+) -> None:
+    monkeypatch.setattr(preferences, "folder", lambda: tmp_path)
+    monkeypatch.setattr(recovery, "folder", lambda: tmp_path / "unsaved")
+    monkeypatch.setattr(sys, "excepthook", sys.excepthook)
+    loaded: list[str] = []
+    monkeypatch.setattr(start, "import_module", loaded.append)
+    window = start.started(None)
+    qtbot.addWidget(window)
+    start.load_ahead(window)
+    assert not loaded
+    window.show()
+    qtbot.waitUntil(lambda: loaded == ["pyqtgraph"], timeout=30_000)
+    window.recompute.wait_until_idle()
+    assert loaded == ["pyqtgraph"], "once only"
+    window.close()
