@@ -217,6 +217,8 @@ class OriginForm(QFrame):
         changed: dict[str, Item] = {}
         present = layout.by_id()
         for item, field in self._targets:
+            if item not in present:
+                raise UserError("The value is gone since: press Esc to leave.")
             origin = ValueOrigin(field=field, kind=kind, document=source, **texts)
             before = changed.get(item, present[item])
             changed[item] = checked(with_origin(before, origin))

@@ -280,10 +280,11 @@ class SelectTool(DrawingTool):
         if drag.goes_down:
             self._document.select({self._stack.further(pointer)})
         words = self._stack.words(pointer)
-        if not words:
+        # A key may have deleted it while the button was held.
+        item = self._document.committed.by_id().get(self._stack.taken or "")
+        if not words or item is None:
             self.set_hint(HINT)
             return
-        item = self._document.committed.by_id()[self._stack.taken or ""]
         self.set_hint(f"{words}: {item.title}. Click again for the next one beneath.")
 
     def _cancel(self) -> None:

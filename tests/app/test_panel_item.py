@@ -12,7 +12,9 @@ from PySide6.QtTest import QTest
 from app.document import Document
 from app.panels.item import ItemPanel
 from app.panels.kinds import Distances, Terms
+from app.panels.origin import OriginForm
 from app.panels.source_kinds import CarriedCircuits, SolidShape
+from engine.edits import removed
 from engine.errors import UserError
 from engine.layout import Layout, Settings
 from engine.layout_file import read
@@ -287,3 +289,14 @@ def test_a_form_of_an_empty_layout_is_editable(qtbot):
     type_in(panel, "name", "Plant room")
     assert document.layout.rooms[0].name == "Plant room"
     assert not any(isinstance(i, Run) for i in document.layout.items())
+
+
+def test_an_origin_of_what_is_gone_is_refused(document, qtbot):
+    room = document.layout.rooms[0]
+    form = OriginForm(document, [(room.id, "outline")])
+    qtbot.addWidget(form)
+    document.edit("Delete", removed(document.layout, room.id))
+    form.source.setEditText("Drawing 7")
+    form.apply()
+    assert "gone" in form.reason.text()
+    assert document.undo_stack.count() == 1

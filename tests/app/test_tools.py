@@ -641,3 +641,11 @@ def test_every_tool_has_name_key_icon_and_hint() -> None:
         assert tool.name
         assert tool.icon
         assert tool.hint.endswith(".")
+
+
+def test_what_is_deleted_while_the_button_is_held_is_not_named() -> None:
+    d = stacked()
+    d.tool.press(at(2.0, 0.0, **STACKED))
+    d.document.edit("Delete", Layout())
+    d.tool.release(at(2.0, 0.0, **STACKED))
+    assert "of 3" not in d.tool.hint
