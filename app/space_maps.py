@@ -35,6 +35,8 @@ Phasors = npt.NDArray[np.complex128]
 #: more points than that.
 _PIECES = {True: 28, False: 90}
 _POINTS = {True: 1500, False: 20_000}
+#: Shortest edge of a plane. [m]
+SHORTEST = 0.01
 #: Picture elements between two nodes.
 _FINER = 4
 #: Stands for no field at all, so that logarithms exist. [T]
@@ -115,7 +117,7 @@ def upright_place(
     UserError
         When the line or the height is too short for a map.
     """
-    if math.dist(start, end) < 0.01 or levels[1] - levels[0] < 0.01:
+    if math.dist(start, end) < SHORTEST or levels[1] - levels[0] < SHORTEST:
         raise UserError(
             "An upright map needs a line of at least 0.01 m on plan: enter two "
             "different places."

@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 from shapely.geometry import box
 
+from engine.circuits import LoadCase
 from engine.conductor import Conductor
 from engine.equipment import Board, Equipment, Transformer
 from engine.items import Point3
@@ -157,7 +158,9 @@ class SpaceScene:
         return (a, b, c), (d, e, f)
 
 
-def space_scene(layout: Layout, conductors: Sequence[Conductor]) -> SpaceScene:
+def space_scene(
+    layout: Layout, conductors: Sequence[Conductor], case: LoadCase | None = None
+) -> SpaceScene:
     """The solids of a layout.
 
     Parameters
@@ -165,9 +168,11 @@ def space_scene(layout: Layout, conductors: Sequence[Conductor]) -> SpaceScene:
     layout : Layout
     conductors : sequence of Conductor
         Of that layout; without them runs and bars do not show.
+    case : LoadCase, optional
+        Whose open enclosures are open too.
     """
     found: dict[tuple[Kind, str], list[tuple[str, Solid]]] = {}
-    for kind, label, item, solid in _parts(layout, conductors):
+    for kind, label, item, solid in _parts(layout, conductors, case):
         if len(solid.faces):
             found.setdefault((kind, label), []).append((item, solid))
     meshes = [_mesh(kind, label, parts) for (kind, label), parts in found.items()]
@@ -212,7 +217,9 @@ def _mesh(kind: Kind, label: str, parts: Sequence[tuple[str, Solid]]) -> Mesh:
 _Part = tuple[Kind, str, str, Solid]
 
 
-def _parts(layout: Layout, conductors: Sequence[Conductor]) -> Iterator[_Part]:
+def _parts(
+    layout: Layout, conductors: Sequence[Conductor], case: LoadCase | None
+) -> Iterator[_Part]:
     """Every solid with its kind, label and item."""
     x0, y0, x1, y1 = extent(layout)
     for storey in layout.storeys:
@@ -221,7 +228,7 @@ def _parts(layout: Layout, conductors: Sequence[Conductor]) -> Iterator[_Part]:
         yield from _room(room)
     for enclosure in layout.enclosures:
         kind: Kind = (
-            "open enclosure" if open_for_work(enclosure, None) else "closed enclosure"
+            "open enclosure" if open_for_work(enclosure, case) else "closed enclosure"
         )
         area = area_of(enclosure.footprint)
         yield kind, "", enclosure.id, prism(area, enclosure.z_from, enclosure.z_to)

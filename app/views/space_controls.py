@@ -80,14 +80,18 @@ class SpaceControls(QWidget):
                                    self.all_heights_asked.emit))  # fmt: skip
         self.upright = QComboBox()
         self.upright.addItems(UPRIGHT)
-        self.upright.setToolTip("An upright map: at one x, at one y, or along a line")
+        self.upright.setToolTip(
+            "An upright map: at one x, at one y, along a line or along a profile that "
+            "is drawn"
+        )
         self.upright.setAccessibleName("Upright map")
         self.upright.activated.connect(
             lambda index: self.upright_chosen.emit(UPRIGHT[index])
         )
         self._row.addWidget(self.upright)
         self.place = self._field("", "Where the upright map is: x or y, such as "
-                                 "3.2 m, or a line as x y to x y",
+                                 "3.2 m, a line as x y to x y, or the name "
+                                 "of a profile",
                                  40, self.place_typed.emit)  # fmt: skip
         self._row.addWidget(button("Export picture …", "As PNG, with its caption",
                                    self.export_asked.emit))  # fmt: skip

@@ -17,8 +17,10 @@ from app.views.space_camera import SpaceCamera, along_axis
 from app.views.space_letters import SpaceDimension, SpaceHandle, handle_at
 from app.views.space_move import caught_way
 from app.views.space_planes import (
-    UPRIGHT,
+    LINE,
+    PROFILE,
     SpacePlanes,
+    profile_called,
     typed_heights,
     typed_line,
     typed_place,
@@ -67,6 +69,9 @@ class SpaceDesk(QObject):
 
     def want(self) -> None:
         """Ask for the maps on the planes as they are now."""
+        chosen = self._selected_profile()
+        if self.planes.upright == PROFILE and chosen:
+            self.planes = replace(self.planes, profile=chosen)
         try:
             places = self.planes.places(
                 self._document.layout, self._view_state.look, self._levels()
@@ -98,12 +103,22 @@ class SpaceDesk(QObject):
 
     def choose_upright(self, upright: str) -> None:
         """Show an upright map, or none."""
-        self.take(replace(self.planes, upright=upright, at=None))
+        profile = self._selected_profile() or self.planes.profile
+        self.take(replace(self.planes, upright=upright, at=None, profile=profile))
+
+    def _selected_profile(self) -> str:
+        """Id of the profile that alone is selected; empty otherwise."""
+        layout, chosen = self._document.layout, self._document.selection
+        found = [profile.id for profile in layout.profiles if profile.id in chosen]
+        return found[0] if len(found) == 1 == len(chosen) else ""
 
     def type_place(self, text: str) -> None:
         """Take the typed place of the upright map."""
         with self._messages.shown():
-            if self.planes.upright == UPRIGHT[-1]:
+            if self.planes.upright == PROFILE:
+                layout = self._document.layout
+                self._document.select({profile_called(layout, text)})
+            elif self.planes.upright == LINE:
                 line = typed_line(text, self._unit, decimal_sign())
                 self.take(replace(self.planes, line=line))
             else:
@@ -189,7 +204,8 @@ class SpaceDesk(QObject):
         if levels:
             figures = ", ".join(height_figures(z, unit) for z in levels)
             parts.append(f"z {figures} {unit}")
-        parts += [m.place.name for m in self.shown if not m.place.is_level]
+        # A profile of several legs has a map on each.
+        parts += dict.fromkeys(m.place.name for m in self.shown if not m.place.is_level)
         if any(m.is_bound for m in self.shown):
             parts.append("upper bound")
         return " · ".join(parts)

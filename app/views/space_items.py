@@ -9,11 +9,13 @@ from dataclasses import replace
 import numpy as np
 import numpy.typing as npt
 
+from app.map_request import case_of
 from app.theme import Theme, contrast
 from app.view_state import Look
 from app.views.inks import TWO_COLOURED, YELLOW, conductor_colour
 from app.views.space_camera import Point3, SpaceCamera
 from app.views.space_drawn import Drawn, Faces, Letters, Lines, joined, lit, rgba
+from engine.circuits import LoadCase
 from engine.conductor import Conductor
 from engine.conductors import conductors
 from engine.errors import UserError
@@ -88,7 +90,7 @@ class SpaceItems:
         self.scene = SpaceScene((), (), ())
         self.drawn = Drawn(joined([]), joined([]), (), ())
         self.problem = ""
-        self._layout: Layout | None = None
+        self._of: tuple[Layout, LoadCase] | None = None
         self._axes: dict[tuple[str, str], Floats] = {}
         self._seen: tuple[Mesh, ...] = ()
         self._points: tuple[tuple[str, Point3], ...] = ()
@@ -126,13 +128,14 @@ class SpaceItems:
         self, layout: Layout, look: Look, selection: frozenset[str], theme: Theme
     ) -> None:
         """Draw a layout as a look wants it."""
-        if layout is not self._layout:
-            self._layout = layout
+        case = case_of(layout, look.case)
+        if self._of is None or layout is not self._of[0] or case is not self._of[1]:
+            self._of = (layout, case)
             try:
                 parts, self.problem = conductors(layout), ""
             except UserError as error:
                 parts, self.problem = (), str(error)
-            self.scene = space_scene(layout, parts)
+            self.scene = space_scene(layout, parts, case)
             self._edges = {}
             self._axes = _axes(parts)
         self._seen = _visible(self.scene.meshes, layout, look.hidden)
@@ -394,5 +397,4 @@ def _distance(legs: Floats, x: float, y: float) -> float:
 def _cross(at: Point3) -> Floats:
     """(6, 3) ends of three short lines through a place. [m]"""
     arms = np.repeat(np.eye(3), 2, axis=0) * np.tile([[-1.0], [1.0]], (3, 1))
-    cross: Floats = np.array(at) + _CROSS * arms
-    return cross
+    return np.asarray(at + _CROSS * arms)

@@ -7,6 +7,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
+from msgspec.structs import replace
 from PySide6.QtCore import QPoint, QPointF, Qt
 from PySide6.QtGui import QWheelEvent
 from PySide6.QtTest import QTest
@@ -33,6 +34,7 @@ from engine.field import ResponseCache
 from engine.layout import Layout
 from engine.layout_file import read
 from engine.maps import extent, plane_map
+from engine.places import Profile
 from engine.sampling import vertical
 
 SAMPLE = Path(__file__).parents[2] / "sample_layouts" / "office-over-switch-room.json"
@@ -92,6 +94,48 @@ def test_upright_plane_stands_at_its_place_over_the_whole_extent(
     assert handle.axis == (1, 0, 0)
     assert planes.dragged("upright", 4.5, layout, Look()).at == 4.5
     assert planes.dragged("level 0", 2.0, layout, Look()).heights == (2.0,)
+
+
+def _with_profile(layout: Layout, *path: tuple[float, float, float]) -> Layout:
+    return replace(layout, profiles=(Profile(id="cut", name="Cut", path=path),))
+
+
+def test_upright_maps_stand_on_the_legs_of_a_profile(layout: Layout) -> None:
+    path = ((1.0, 1.0, 1.0), (4.0, 1.0, 1.0), (4.0, 1.0, 3.0), (4.0, 5.0, 3.0))
+    drawn = _with_profile(layout, *path)
+    planes = SpacePlanes(heights=(1.0,), upright="along a profile")
+    _, *upright = planes.places(drawn, Look(), (0.0, 3.0))
+    assert [place.plane for place in upright] == [
+        vertical((1.0, 1.0), (4.0, 1.0), (0.0, 3.0)),
+        vertical((4.0, 1.0), (4.0, 5.0), (0.0, 3.0)),
+    ]
+    assert {place.name for place in upright} == {"along Cut"}
+    assert planes.field_text(drawn, ".") == "Cut"
+    # Several legs have no one way to go.
+    assert [h.name for h in planes.handles(drawn, Look(), (0.0, 3.0))] == ["level 0"]
+    with pytest.raises(UserError, match="no profile to stand a map on: draw one"):
+        planes.places(replace(layout, profiles=()), Look(), (0.0, 3.0))
+    steep = _with_profile(layout, (1.0, 1.0, 0.0), (1.0, 1.0, 3.0))
+    with pytest.raises(UserError, match="“Cut” has no length on plan"):
+        planes.places(steep, Look(), (0.0, 3.0))
+
+
+def test_upright_map_is_dragged_across_its_line(layout: Layout) -> None:
+    # A line towards 3 : 4: across it is (0.8, −0.6).
+    drawn = _with_profile(layout, (0.0, 0.0, 1.0), (3.0, 4.0, 1.0))
+    planes = SpacePlanes(heights=(1.0,), upright="along a profile")
+    handle = planes.handles(drawn, Look(), (0.0, 3.0))[-1]
+    assert handle.at == (1.5, 2.0, 3.0)
+    assert handle.axis == pytest.approx((0.8, -0.6, 0.0))
+    # From 0 along the axis to 0.5.
+    moved = planes.dragged("upright", 0.5, drawn, Look())
+    assert moved.upright == "along a line"
+    assert moved.line is not None
+    assert moved.line[0] == pytest.approx((0.4, -0.3))
+    assert moved.line[1] == pytest.approx((3.4, 3.7))
+    again = moved.dragged("upright", 0.0, drawn, Look())
+    assert again.line is not None
+    assert again.line[1] == pytest.approx((3.0, 4.0))
 
 
 # -- moving along an axis -------------------------------------------------------------

@@ -25,9 +25,10 @@ from app.views.space_drawn import lit
 from app.views.space_items import SpaceItems, sharp_edges, space_colour
 from app.views.space_view import SpaceView
 from engine.conductors import conductors
-from engine.edits import replaced
+from engine.edits import added, replaced
 from engine.layout import Layout
 from engine.layout_file import read
+from engine.places import Profile
 from engine.space_scene import space_scene
 
 SAMPLE = Path(__file__).parents[2] / "sample_layouts" / "office-over-switch-room.json"
@@ -268,6 +269,28 @@ def test_typed_heights_and_places_make_maps(
     assert told
     assert view.desk is not None
     assert view.desk.planes.heights == (0.5, 1.0, 1.5)
+
+
+def test_upright_map_stands_on_the_profile_that_is_selected(
+    qtbot: QtBot, view: SpaceView, told: list[str]
+) -> None:
+    document = view._document
+    lines = tuple(
+        Profile(id=id, name=id, path=((0.0, y, 1.0), (4.0, y, 1.0)))
+        for id, y in (("one", 1.0), ("two", 2.0))
+    )
+    document.edit("Draw", added(document.layout, *lines))
+    document.select({"two"})
+    view.controls.upright_chosen.emit("along a profile")
+    qtbot.waitUntil(lambda: view.is_idle and "along two" in view.caption(),
+                    timeout=30_000)  # fmt: skip
+    assert view.controls.place.text() == "two"
+    view.controls.place_typed.emit("one")
+    qtbot.waitUntil(lambda: view.is_idle and "along one" in view.caption(),
+                    timeout=30_000)  # fmt: skip
+    assert document.selection == {"one"}
+    view.controls.place_typed.emit("nowhere")
+    assert "There is no profile “nowhere”" in told[-1]
 
 
 def test_dragged_level_map_takes_the_height_of_the_plan_along(

@@ -11,7 +11,7 @@ from msgspec.structs import replace
 from shapely.geometry import Polygon
 
 from engine import layout_file
-from engine.circuits import Circuit
+from engine.circuits import Circuit, LoadCase
 from engine.conductors import conductors
 from engine.layout import Layout
 from engine.maps import field_map, plane_map
@@ -215,6 +215,26 @@ def test_a_room_is_open_above_and_its_slab_lies_on_it() -> None:
     higher = replace(room, soffit_level=3.9)
     scene = space_scene(Layout(rooms=(higher,)), ())
     assert scene.mesh("slab").vertices[:, 2].min() == 3.9
+
+
+def test_an_enclosure_open_in_a_load_case_is_open_in_its_scene():
+    corners = ((0.0, 0.0), (1.0, 0.0), (1.0, 1.0), (0.0, 1.0))
+    cubicle, other = (
+        Enclosure(id=id, footprint=corners, z_from=0.0, z_to=2.0)
+        for id in ("cubicle", "other")
+    )
+    work = LoadCase(id="work", open_enclosures=("cubicle",))
+    layout = Layout(enclosures=(cubicle, other), load_cases=(work,))
+    plain, open_ = space_scene(layout, ()), space_scene(layout, (), work)
+    closed = plain.mesh("closed enclosure")
+    assert closed is not None
+    assert closed.items == ("cubicle", "other")
+    assert plain.mesh("open enclosure") is None
+    closed, opened = open_.mesh("closed enclosure"), open_.mesh("open enclosure")
+    assert closed is not None
+    assert opened is not None
+    assert (closed.items, opened.items) == (("other",), ("cubicle",))
+    assert opened.is_clear
 
 
 def test_zones_reach_from_their_lowest_to_their_highest_height() -> None:
