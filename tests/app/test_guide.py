@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+import re
+from pathlib import Path
+
 import pytest
 from msgspec.structs import replace
 from PySide6.QtCore import Qt
 
+import app
 import engine
 from app.document import Document
 from app.guide import AboutPage, CautionsPage, GuidePage
@@ -39,6 +43,16 @@ def test_the_guide_leads_from_an_empty_room_to_a_report(qtbot):
         assert word in text
     assert "**" not in text
     assert page.accessibleName() == "From an empty room to a report"
+
+
+def test_the_guide_names_the_keys_that_the_menus_have(qtbot):
+    page = GuidePage()
+    qtbot.addWidget(page)
+    text = page.text.toPlainText()
+    for name in ("view_pages", "why_pages", "window_menus"):
+        source = (Path(app.__file__).parent / f"{name}.py").read_text(encoding="utf-8")
+        for key in re.findall(r'"(F\d+|Ctrl\+Shift\+[UV])"', source):
+            assert re.search(rf"{re.escape(key)}\b", text), key
 
 
 @pytest.mark.parametrize("page_of", [lambda d: CautionsPage(d), lambda d: AboutPage()])
