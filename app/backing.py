@@ -21,6 +21,7 @@ from engine.exchange.backing import (
     read_picture_bytes,
     with_picture,
 )
+from engine.exchange.linked_drawings import embedded, linked, linked_path
 from engine.layout import Layout
 from engine.places import BackingDrawing
 
@@ -100,6 +101,8 @@ def take_read_picture(
         return
     _known[picture.sha256] = path
     after = with_picture(drawing, picture)
+    if drawing.linked_file:
+        after = linked(after, picture, path, folder_of(document))
     same_file = picture.sha256 == drawing.sha256
     what = f"page {picture.page}" if same_file else picture.file_name
     text = f"Show {what} in {drawing.title}"
@@ -111,12 +114,54 @@ def take_read_picture(
 def known_file(document: Document, drawing: BackingDrawing) -> Path | None:
     """The file that a drawing came from, where it is still to be found.
 
-    It is looked for where it was placed from, then beside the layout's file.
+    It is looked for where it is linked to, where it was placed from, then beside the
+    layout's file.
     """
     places = [_known.get(drawing.sha256)]
+    if drawing.linked_file:
+        places.insert(0, linked_path(drawing, folder_of(document)))
     if document.path is not None and drawing.file_name:
         places.append(document.path.parent / Path(drawing.file_name).name)
     return next((path for path in places if path is not None and path.is_file()), None)
+
+
+def folder_of(document: Document) -> Path | None:
+    """Where links count from: the folder of the layout's file; None without one."""
+    return None if document.path is None else document.path.parent
+
+
+def embed(document: Document, item_id: str) -> None:
+    """Keep a copy of a linked drawing in the layout.
+
+    Raises
+    ------
+    UserError
+        When its file has not been read.
+    """
+    drawing = drawing_of(document.committed, item_id)
+    if drawing is not None and drawing.linked_file:
+        after = replaced(document.committed, embedded(drawing))
+        document.edit(f"Embed {drawing.title}", after)
+
+
+def link(document: Document, item_id: str, picture: ReadPicture, path: Path) -> None:
+    """Keep the path of a drawing's file in the layout instead of a copy.
+
+    Raises
+    ------
+    UserError
+        When the file is not the one that was placed.
+    """
+    drawing = drawing_of(document.committed, item_id)
+    if drawing is None:
+        return
+    if picture.sha256 != drawing.sha256:
+        raise UserError(
+            f"“{drawing.title}” was not linked: {path.name} has changed since it was "
+            "placed. Choose the file again first, and check the calibration."
+        )
+    after = linked(drawing, picture, path, folder_of(document))
+    document.edit(f"Link {drawing.title}", replaced(document.committed, after))
 
 
 def pages_of(document: Document, drawing: BackingDrawing) -> int | None:

@@ -17,6 +17,7 @@ from app.elevation_plane import (
     line_of,
     upright_of,
 )
+from app.linked_pictures import LinkedPictures
 from app.map_picture import MapPicture
 from app.plane_places import PlanePlaces
 from app.theme import Theme
@@ -97,6 +98,8 @@ class Drawings(QWidget):
         self.elevation_map = ElevationMap(document, view_state)
         self.elevation_map.map_ready.connect(self._on_elevation_map)
         self.elevation_map.problem.connect(self._on_problem)
+        self.linked_pictures = LinkedPictures(document)
+        self.linked_pictures.came.connect(self._on_linked_picture)
         box = QVBoxLayout(self)
         box.setContentsMargins(0, 0, 0, 0)
         box.addWidget(self._split)
@@ -256,6 +259,7 @@ class Drawings(QWidget):
         self._document.changed.disconnect(self._on_changed)
         self._view_state.changed.disconnect(self._on_look)
         self.elevation_map.close()
+        self.linked_pictures.close()
 
     # -- following --------------------------------------------------------------
 
@@ -327,6 +331,14 @@ class Drawings(QWidget):
             self.views[name].set_map(picture)
         if name == self.shown:
             self.map_told.emit(picture)
+
+    def _on_linked_picture(self) -> None:
+        """A linked drawing that could not show yet shows now."""
+        for view in self.views.values():
+            view.drawing.show_layout(self._document.layout, self._look)
+            view.drawing.set_scale(view.camera().scale)
+            if view.is_fitted:
+                view.fit()
 
     def _on_problem(self, sentence: str) -> None:
         if self.shown != PLAN_VIEW:

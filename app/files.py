@@ -16,6 +16,7 @@ from app import preferences
 from app.document import Document
 from app.messages import Messages
 from engine import layout_file
+from engine.exchange.linked_drawings import with_links_moved
 from engine.exchange.schedule import read_schedule
 from engine.layout import Layout, Settings
 from engine.places import Storey
@@ -95,7 +96,9 @@ class Files(QObject):
         if not self.may_leave():
             return False
         with self._messages.shown():
-            self._document.open(layout_file.read(path), None)
+            layout = layout_file.read(path)
+            # The copy has no folder of its own that links could count from.
+            self._document.open(with_links_moved(layout, path.parent, None), None)
             self._watch(None)
             return True
         return False
@@ -152,6 +155,7 @@ class Files(QObject):
     def _write(self, path: Path) -> bool:
         with self._messages.shown():
             self._watch(None)
+            self._move_links(path.parent)
             layout_file.write(path, self._document.whole)
             self._document.set_path(path)
             self._document.undo_stack.setClean()
@@ -161,6 +165,14 @@ class Files(QObject):
             return True
         self._watch(self._document.path)
         return False
+
+    def _move_links(self, folder: Path) -> None:
+        """Let links to files count from the folder that is saved in."""
+        document = self._document
+        before = None if document.path is None else document.path.parent
+        moved = with_links_moved(document.committed, before, folder)
+        if moved is not document.committed:
+            document.edit(f"Link drawings from {folder.name}", moved)
 
     def _remember(self, path: Path) -> None:
         choices = preferences.load()

@@ -4,10 +4,12 @@ from __future__ import annotations
 
 import contextlib
 from dataclasses import dataclass
+from pathlib import Path
 
 from PySide6.QtCore import QObject, Qt, Signal
 
 from app.worker import Outdated, Worker
+from engine.exchange.linked_drawings import link_remarks
 from engine.items import ConfirmedRemark
 from engine.layout import Layout
 from engine.origins import Assumption, assumptions
@@ -41,14 +43,17 @@ def found_in(
     layout: Layout,
     assessment: Assessment | None,
     of_variant: tuple[Remark, ...] = (),
+    folder: Path | None = None,
 ) -> Found:
     """Remarks and assumptions; an assessment of another layout says nothing here.
 
-    `of_variant` are those on the chosen variant, whose layout knows no base.
+    `of_variant` are those on the chosen variant, whose layout knows no base. Linked
+    files are looked for from the layout's `folder`.
     """
     if assessment is not None and assessment.layout != layout:
         assessment = None
-    stood = [(r, confirmation(layout, r)) for r in of_variant]
+    beside = (*of_variant, *link_remarks(layout, folder))
+    stood = [(r, confirmation(layout, r)) for r in beside]
     return Found(
         layout,
         (*(r for r, by in stood if by is None), *remarks(layout, assessment)),
@@ -61,8 +66,8 @@ def found_in(
     )
 
 
-#: A layout, its results, and what is said of it as a variant.
-_Task = tuple[Layout, Assessment | None, tuple[Remark, ...]]
+#: A layout, its results, what is said of it as a variant, and its file's folder.
+_Task = tuple[Layout, Assessment | None, tuple[Remark, ...], Path | None]
 
 
 class RemarkSearch(QObject):
@@ -87,11 +92,12 @@ class RemarkSearch(QObject):
         layout: Layout,
         assessment: Assessment | None,
         of_variant: tuple[Remark, ...] = (),
+        folder: Path | None = None,
     ) -> None:
         """Look for the remarks of a layout; those on its variant are known."""
         if self._worker is None:
             self._worker = Worker("remarks", self._work)
-        self._worker.ask((layout, assessment, of_variant))
+        self._worker.ask((layout, assessment, of_variant, folder))
 
     def close(self) -> None:
         """End the search."""

@@ -48,6 +48,7 @@ class WindowLinks(QObject):
         drawings.pointer_left.connect(w.readout.clear_place)
         w.section.turned.connect(drawings.set_cut)
         drawings.hint_changed.connect(w.tell_hint)
+        drawings.linked_pictures.missed.connect(w.messages.warn)
 
     def _connect_results(self) -> None:
         """What is computed in the background, and where it shows."""

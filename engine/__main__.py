@@ -220,6 +220,7 @@ def _share(text: str) -> float:
 
 def _assess(asked: argparse.Namespace) -> int:
     from engine.assessment import assess, exit_code
+    from engine.exchange.linked_drawings import open_link_remarks
     from engine.remarks import remarks
 
     layout = layout_of(read(asked.layout), asked.variant)
@@ -233,6 +234,7 @@ def _assess(asked: argparse.Namespace) -> int:
     )
     unit = asked.unit or "µT"
     found = remarks(layout, assessment, unit=unit)
+    found += open_link_remarks(layout, Path(asked.layout).parent)
     if asked.tables is not None:
         from engine.commands.tables import write_tables
 

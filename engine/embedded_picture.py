@@ -1,4 +1,7 @@
-"""The embedded copy of a backing drawing: its bytes, its size, whether it is whole.
+"""The copy of a backing drawing that shows: its bytes, its size, whether it is whole.
+
+It is embedded, or was read of the linked file: such copies are kept here, by the
+SHA-256 of the file and its page, as long as the program runs.
 
 Import place: after `places`.
 """
@@ -71,15 +74,32 @@ def decoded(data: bytes) -> Image.Image:
     return picture
 
 
+#: Copies of linked files, base64, by SHA-256 of the file and page.
+_linked: dict[tuple[str, int], str] = {}
+
+
+def keep_linked(sha256: str, page: int, copy: str) -> None:
+    """Have the copy (base64) of a page of a linked file at hand."""
+    _linked[sha256, page] = copy
+
+
+def shown_picture(drawing: BackingDrawing) -> str:
+    """What shows, base64: the embedded copy, or that of the linked file; or empty."""
+    if drawing.picture or not drawing.linked_file:
+        return drawing.picture
+    return _linked.get((drawing.sha256, drawing.page), "")
+
+
 def picture_bytes(drawing: BackingDrawing) -> bytes:
-    """The embedded copy as the bytes of a PNG or JPEG file.
+    """The copy that shows as the bytes of a PNG or JPEG file.
 
     Raises
     ------
     UserError
         When there is none, or it is damaged.
     """
-    if not drawing.picture:
+    picture = shown_picture(drawing)
+    if not picture:
         raise UserError(
             f"Backing drawing “{drawing.title}” has no picture in this layout: "
             "choose its file again."
@@ -89,12 +109,12 @@ def picture_bytes(drawing: BackingDrawing) -> bytes:
             f"The picture of backing drawing “{drawing.title}” is damaged: choose "
             "its file again."
         )
-    return base64.b64decode(drawing.picture, validate=True)
+    return base64.b64decode(picture, validate=True)
 
 
 def picture_size(drawing: BackingDrawing) -> tuple[int, int] | None:
-    """Width and height of a whole embedded copy; None without one. [px]"""
-    picture = drawing.picture
+    """Width and height of a whole copy that shows; None without one. [px]"""
+    picture = shown_picture(drawing)
     # The hash of a text is kept with it, so that asking again costs nothing, and no
     # large text is held for it.
     key = (hash(picture), len(picture))

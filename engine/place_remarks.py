@@ -205,7 +205,8 @@ def _backing_drawings(layout: Layout) -> Iterator[Remark]:
                 "from it are not reliable. Give two of its points and their distance.",
                 (drawing.id,),
             )
-        if picture_size(drawing) is None:
+        # Of linked files `exchange.linked_drawings` tells: it takes looking at them.
+        if not drawing.linked_file and picture_size(drawing) is None:
             fault = "is damaged" if drawing.picture else "is missing"
             yield Remark(
                 "W24",

@@ -40,6 +40,9 @@ SpatialRule = Literal[
 Heights = Annotated[tuple[Coordinate, ...], Meta(min_length=1, max_length=50)]
 
 
+#: Path of a file, with / between its parts where it is relative.
+FilePath = Annotated[str, Meta(max_length=4000)]
+
 #: A part of a value.
 Tolerance = Annotated[float, Meta(ge=0, le=10)]
 
@@ -196,6 +199,9 @@ class BackingDrawing(Item, frozen=True, kw_only=True):
 
     `picture` is the embedded copy (base64); `first` and `second` are picture points
     in pixels whose distance is `distance`; `origin` is where `first` lies.
+
+    A linked one holds no copy, but the path of its file in `linked_file`, relative to
+    the layout's file where it can be; it shows while that file has the SHA-256.
     """
 
     file_name: Name = ""
@@ -210,3 +216,4 @@ class BackingDrawing(Item, frozen=True, kw_only=True):
     opacity: Annotated[float, Meta(ge=0, le=1)] = 0.5
     locked: bool = False
     picture: Annotated[str, Meta(max_length=50_000_000)] = ""
+    linked_file: FilePath = ""

@@ -5,6 +5,7 @@ While the opacity is dragged the drawing only previews; letting go is one undo s
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from pathlib import Path
 
 from msgspec.structs import replace
@@ -31,6 +32,7 @@ from engine.edits import checked, removed, replaced
 from engine.embedded_picture import picture_size
 from engine.errors import Cancelled, Progress, UserError
 from engine.exchange.backing import ReadPicture, read_picture
+from engine.exchange.linked_drawings import link_fault
 from engine.layout import Layout
 from engine.places import BackingDrawing
 from engine.typed_lengths import length_text
@@ -42,6 +44,9 @@ _VIEWS = (
     ("looking +x", "the elevation looking +x"),
     ("looking +y", "the elevation looking +y"),
 )
+
+
+_KEPT = (("embedded", "Embedded copy"), ("linked", "Linked file"))
 
 
 class BackingForm(QWidget):
@@ -88,6 +93,12 @@ class BackingForm(QWidget):
         )
         self.view = Choice(
             _VIEWS, self._on_view, name="Lies under", tip="The view that it lies under"
+        )
+        self.kept = Choice(
+            _KEPT,
+            self._on_kept,
+            name="Kept as",
+            tip="A copy in the layout's file, or only the path of the drawing's file",
         )
         self.page = QSpinBox()
         self.locked = QCheckBox("Lock")
@@ -143,7 +154,7 @@ class BackingForm(QWidget):
         grid.setColumnStretch(1, 1)
         rows: tuple[tuple[str, QWidget], ...] = (
             ("Opacity", self.opacity), ("Turn", self.turn),
-            ("Lies under", self.view), ("Page", self.page),
+            ("Lies under", self.view), ("Page", self.page), ("Kept as", self.kept),
         )  # fmt: skip
         for at, (text, editor) in enumerate(rows):
             label = QLabel(text)
@@ -194,12 +205,13 @@ class BackingForm(QWidget):
         self.turn.set_value(drawing.turn)
         self.view.set_value(drawing.view)
         self.locked.setChecked(drawing.locked)
+        self.kept.set_value("linked" if drawing.linked_file else "embedded")
         self._fill_page(drawing)
         for widget in widgets:
             widget.blockSignals(False)
         self.calibrate.setEnabled(not drawing.locked)
         self.about.setText(self._about(drawing))
-        self._tell_fault(_damage(drawing))
+        self._tell_fault(self._damage(drawing))
 
     def _fill_page(self, drawing: BackingDrawing) -> None:
         # Counting pages reads the file: once for each file is enough.
@@ -231,7 +243,18 @@ class BackingForm(QWidget):
                 parts.append(f"{across} × {down}")
         if not is_calibrated(drawing):
             parts.append("not calibrated")
+        if drawing.linked_file:
+            parts.append(f"linked to {drawing.linked_file}")
         return " · ".join(parts)
+
+    def _damage(self, drawing: BackingDrawing) -> str:
+        """What is wrong with the picture, as a sentence; empty for nothing."""
+        if drawing.linked_file:
+            return link_fault(drawing, backing.folder_of(self._document))
+        if picture_size(drawing) is not None:
+            return ""
+        fault = "is damaged" if drawing.picture else "is missing"
+        return f"The picture {fault}: choose its file again."
 
     def _tell_fault(self, sentence: str) -> None:
         self.fault.setText(sentence)
@@ -267,6 +290,29 @@ class BackingForm(QWidget):
             text = f"Put {drawing.title} under {dict(_VIEWS)[view]}"
             self._edit(text, replace(drawing, view=view))
 
+    def _on_kept(self, kind: str) -> None:
+        document, item_id, drawing = self._document, self._id, self._committed
+        if drawing is None:
+            return
+        path = backing.known_file(document, drawing)
+        if kind == "embedded":
+            try:
+                backing.embed(document, item_id)
+            except UserError as error:
+                self._fill()
+                self._tell_fault(str(error))
+        elif not drawing.linked_file and path is None:
+            self._fill()
+            self._tell_fault(
+                "The file that it came from is not at hand: choose it again, then "
+                "link it."
+            )
+        elif path is not None:
+            self._read(
+                path, drawing.page,
+                lambda found: backing.link(document, item_id, found, path),
+            )  # fmt: skip
+
     def _on_locked(self, is_locked: bool) -> None:
         drawing = self._committed
         if drawing is not None:
@@ -290,10 +336,18 @@ class BackingForm(QWidget):
             self._take(name, 1)
 
     def _take(self, name: str, page: int) -> None:
+        # The form may be gone by then: what is done needs none.
         document, item_id, path = self._document, self._id, Path(name)
+        self._read(
+            path, page,
+            lambda found: backing.take_read_picture(document, item_id, found, path),
+        )  # fmt: skip
+
+    def _read(self, path: Path, page: int, done: Callable[[ReadPicture], None]) -> None:
+        """Read a page of a file, in the background where there are jobs."""
         if self._jobs is None:
             try:
-                backing.replace_backing_file(document, item_id, path, page)
+                done(read_picture(path, page))
             except UserError as error:
                 self._fill()
                 self._tell_fault(str(error))
@@ -302,13 +356,8 @@ class BackingForm(QWidget):
         def work(cancelled: Cancelled, progress: Progress) -> ReadPicture:
             return read_picture(path, page, cancelled=cancelled, progress=progress)
 
-        # The form may be gone by then: what is done needs none.
-        self._jobs.start(
-            f"Drawing page {page} of {path.name}",
-            work,
-            lambda found: backing.take_read_picture(document, item_id, found, path),
-        )
-        # Until it is read, the page that shows is the one before.
+        self._jobs.start(f"Drawing page {page} of {path.name}", work, done)
+        # Until it is read, what shows is as before.
         self._fill()
 
     def _on_remove(self) -> None:
@@ -316,14 +365,6 @@ class BackingForm(QWidget):
         if drawing is not None:
             after = removed(self._document.committed, drawing.id)
             self._document.edit(f"Remove {drawing.title}", after)
-
-
-def _damage(drawing: BackingDrawing) -> str:
-    """What is wrong with the picture, as a sentence; empty for nothing."""
-    if picture_size(drawing) is not None:
-        return ""
-    fault = "is damaged" if drawing.picture else "is missing"
-    return f"The picture {fault}: choose its file again."
 
 
 def _button(text: str, tip: str) -> QPushButton:

@@ -196,7 +196,9 @@ class RemarksPanel(Panel):
         own: tuple[Remark, ...] = ()
         if variant is not None:
             own = remarks_on(self._document.whole, variant)
-        self._search.ask(self._document.committed, self._assessment, own)
+        path = self._document.path
+        folder = None if path is None else path.parent
+        self._search.ask(self._document.committed, self._assessment, own, folder)
 
     def _on_settled(self, _layout: Layout) -> None:
         # The tab's count is wanted even while another panel is in front.

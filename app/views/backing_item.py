@@ -18,6 +18,7 @@ from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 from app.theme import LIGHT, Theme
 from app.views.inks import pen
 from app.views.shape_item import distance_to_line
+from engine.embedded_picture import shown_picture
 from engine.places import BackingDrawing
 
 #: A shade of grey from here on is paper, and how many samples a side tells that.
@@ -36,6 +37,7 @@ class BackingItem(QGraphicsItem):
         self._shown: QImage | None = None
         self._drawing: BackingDrawing | None = None
         self._image = QImage()
+        self._picture = ""
         self._is_selected = False
         self.show_drawing(drawing)
 
@@ -43,14 +45,19 @@ class BackingItem(QGraphicsItem):
     def drawing(self) -> BackingDrawing | None:
         return self._drawing
 
+    @property
+    def state(self) -> tuple[object, ...]:
+        """What tells two looks of it apart."""
+        return (self._drawing, self._image.cacheKey())
+
     def show_drawing(self, drawing: BackingDrawing) -> None:
         """Take another picture or place; the same drawing is no work."""
-        before = self._drawing
-        if drawing is before:
+        picture = shown_picture(drawing)
+        if drawing is self._drawing and picture is self._picture:
             return
         self.prepareGeometryChange()
-        if before is None or drawing.picture != before.picture:
-            self._image = _decoded(drawing.picture)
+        if picture != self._picture:
+            self._image, self._picture = _decoded(picture), picture
             self._shown = None
         self._drawing = drawing
         self.setOpacity(drawing.opacity)

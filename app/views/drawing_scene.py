@@ -168,7 +168,7 @@ class DrawingScene(QGraphicsScene):
     def ground_state(self) -> tuple[object, ...]:
         """What lies below the items, to tell whether it has changed."""
         layer = self.map_layer
-        below = [b.drawing for b in self.backings.values() if b.isVisible()]
+        below = [b.state for b in self.backings.values() if b.isVisible()]
         return (layer.picture, layer.shows_colours, layer.shows_lines, *below)
 
     def shapes(self) -> list[ShapeItem]:
