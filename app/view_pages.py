@@ -10,6 +10,7 @@ from PySide6.QtCore import QObject
 from app.cycle_values import CyclePlace
 from app.menus import Command
 from app.readout_values import Readout
+from app.report_pages import ReportPages
 from app.why_pages import WhyPages
 from engine.errors import UserError
 
@@ -29,7 +30,7 @@ class ViewPages(QObject):
         self._window = window
         self._parts = (window.document, window.view_state, window.messages)
         window.band.opened.connect(self.open_variants)
-        self.why = WhyPages(window)
+        self.why, self.report = WhyPages(window), ReportPages(window)
         self._pointed: CyclePlace | None = None
         window.readout.shown.connect(self._on_read)
 
@@ -123,6 +124,7 @@ class ViewPages(QObject):
     def close(self) -> None:
         """Stop the threads, before the window goes."""
         self.why.close()
+        self.report.close()
         for name in ("cycle", "variants", "uncertainty", "space"):
             if name in vars(self):
                 getattr(self, name).close_worker()

@@ -234,6 +234,8 @@ class WindowMenus(QObject):
         self._add(
             "&Report",
             [
+                *w.view_pages.report.commands(),
+                LINE,
                 Command("Write report …", w.exports.choose_report, Standard.Print,
                         "A PDF that a reviewer can retrace"),
                 Command("Export map …", w.exports.choose_map, "",

@@ -13,34 +13,19 @@ from app.panels.kinds import (
     Column,
     Distance,
     FluxDensity,
-    Lines,
     Rows,
     Words,
     one_of,
 )
 from app.panels.parts import Group, Part
 from app.panels.place_forms import uncertainty_parts
+from app.panels.title_forms import DOCUMENT
 from engine.edits import checked, unused_id
 from engine.entered_values import with_value
 from engine.items import Item
 from engine.layout import FluxDensityUnit, Layout
 from engine.new_sources import STOREY_HEIGHT
 from engine.places import Storey
-
-_TITLE = (
-    Part("project", "Project", Words(), "Printed in the title block"),
-    Part("client", "Client", Words(), "Printed in the title block"),
-    Part("document_number", "Number", Words(), "Number of the document"),
-    Part("revision", "Revision", Words(), "Revision of the document"),
-    Part("status", "Status", Words(), "Status of the document, such as draft"),
-    Part("date", "Date", Words(), "Date of the document, as it is to be printed"),
-    Part("prepared_by", "Prepared by", Words(), "Who prepared it"),
-    Part("checked_by", "Checked by", Words(), "Who checked it"),
-    Part("approved_by", "Approved by", Words(), "Who approved it"),
-    Part("question", "Question", Lines(), "The question that the calculation answers"),
-    Part("scope", "Scope", Lines(), "What is looked at and what is not"),
-    Part("conclusions", "Conclusions", Lines(), "Conclusions in the user's words"),
-)
 
 _UNITS = (
     Part("frequency", "Frequency", Amount(HERTZ, "Hz"), "Of new circuits, in hertz"),
@@ -142,7 +127,12 @@ def layout_groups(layout: Layout) -> tuple[Group, ...]:
     """Everything about the layout as a whole."""
     title, settings = (layout.title,), (layout.settings,)
     return (
-        Group("Title block", title, _TITLE),
+        Group(
+            "Title block",
+            title,
+            DOCUMENT[:1],
+            note="All of it, the texts and the logo stand in Report · Report …",
+        ),
         Group("Units and paper", settings, _UNITS),
         Group("Building", settings, (_STOREYS,)),
         Group("Maps", settings, _MAP),
