@@ -129,6 +129,8 @@ def told(answer: Reached) -> str:
     if not answer.plan.lines:
         return f"No place equals {title} ({where})."
     parts = []
+    if answer.request.target is None:
+        parts.append(f"{title} is met along the lines drawn ({where})")
     if answer.distance is not None:
         largest = distance_text(answer.distance, unit)
         if answer.before is not None:

@@ -15,7 +15,7 @@ from app.figures import FIGURE_KINDS, ask_figure
 from app.level_distance import PlaceFactor, Reached
 from app.level_marks import overlay_of, stale_overlay
 from app.map_request import case_of, heights_of
-from app.margin_values import MarginRow, Margins
+from app.margin_values import MarginRow, Margins, concern
 from app.menus import Command
 from app.page import Page
 from app.pages.foot import Foot
@@ -62,6 +62,7 @@ class WhyPages(QObject):
         self._pointed: Point3 | None = None
         self._pressed: QPointF | None = None
         self._assessment: Assessment | None = None
+        self._margins: Margins | None = None
         self.distance.found.connect(self._mark_distance)
         self.distance.outdated.connect(self._mark_outdated)
         self.distance.closed.connect(window.drawings.take_keyboard)
@@ -120,16 +121,29 @@ class WhyPages(QObject):
         self._open(self.profile)
 
     def open_why(self) -> None:
-        """Take the value at the selected receptor, or at the pointer, apart."""
+        """Take a value apart: of the selected receptor or zone, else at the pointer."""
         layout = self._window.document.layout
         chosen = [
             r for r in layout.receptors if r.id in self._window.document.selection
         ]
+        worst = self._worst_of_selection()
         if len(chosen) == 1:
             self.why.show_place(WhyPlace(chosen[0].at, chosen[0].id))
+        elif worst is not None:
+            self._on_why(worst)
+            return
         elif self._pointed is not None:
             self.why.show_place(self._place_pointed(self._pointed))
         self._open(self.why)
+
+    def _worst_of_selection(self) -> MarginRow | None:
+        """The worst comparison of the zone that alone is selected."""
+        ids = self._window.document.selection
+        zones = {zone.id for zone in self._window.document.layout.zones}
+        if len(ids) != 1 or not ids <= zones or self._margins is None:
+            return None
+        rows = [r for r in self._margins.rows if r.place in ids and r.at is not None]
+        return max(rows, key=concern, default=None)
 
     def open_distance(self) -> None:
         """Ask how far a level reaches."""
@@ -213,6 +227,7 @@ class WhyPages(QObject):
 
     def _on_margins(self, margins: Margins) -> None:
         self.distance.set_margins(margins)
+        self._margins = margins
         if margins.assessment is not None:
             self._assessment = margins.assessment
             self._note_measured()

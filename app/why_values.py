@@ -69,7 +69,7 @@ class LevelFactor:
     level: str
     title: str
     ratio: float
-    sentence: str
+    factor: float
 
 
 @dataclass(frozen=True, eq=False)
@@ -121,7 +121,7 @@ def why_at(request: WhyRequest, cancelled: Cancelled | None = None) -> Why:
         factor = None if use.ratios is None else load_factor(float(use.ratios[0]))
         if factor is not None and use.ratios is not None:
             ratio = float(use.ratios[0])
-            factors.append(LevelFactor(level.id, level.title, ratio, factor.sentence))
+            factors.append(LevelFactor(level.id, level.title, ratio, factor.factor))
     return Why(
         request,
         place_shares(layout, fields, case, at, kind),
@@ -257,10 +257,13 @@ def head_text(why: Why) -> str:
             f"= {significant(why.measured / shares.shown, 2)}"
         )
     parts += [
-        f"{significant(f.ratio)} of {f.title}; {f.sentence.rstrip('.')}"
+        f"{significant(f.ratio)} of {f.title} ({significant(f.factor)} × this case)"
         for f in why.factors
     ]
-    return " · ".join(parts)
+    told = " · ".join(parts)
+    if why.factors:
+        told += "; × this case: all its currents together make the value the level"
+    return told
 
 
 def net_current_texts(why: Why, most: int = 5) -> tuple[str, ...]:

@@ -103,6 +103,10 @@ class Foot(QFrame):
         """How high the foot may be; None where the drawing would get too small."""
         if self._window.height() < LOW:
             return None
+        # What was just closed may not have made room yet.
+        around = self._pages.parentWidget()
+        if around is not None and (box := around.layout()) is not None:
+            box.activate()
         room = self._pages.height() + (self.height() if self.isVisible() else 0)
         height = min(int(_PART * self._window.height()), room - _DRAWING)
         return height if height >= _LEAST else None

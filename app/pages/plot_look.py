@@ -14,6 +14,9 @@ from app.views.inks import shade
 from engine.levels import Kind
 from engine.profiles import ProfileCurve
 
+#: Curves lie in this layer, what they are compared with below it.
+CURVES = 10
+
 #: Load cases by colour, apart in lightness too; heights by dashes.
 _COLOURS = {
     "light": ("#0b6a6a", "#8a3a8f", "#1f4fa0", "#8a5a00", "#4a4f55"),

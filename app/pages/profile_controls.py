@@ -41,7 +41,7 @@ class ProfileControls(QWidget):
         self._cases: tuple[str, ...] | None = None
         self.heights_now: tuple[float, ...] = ()
         self._measured_from: str | None = None
-        self.profiles = choice("Profile that is plotted", 45)
+        self.profiles = choice("Profile that is plotted", 60)
         self.profiles.activated.connect(
             lambda k: self._document.select([self.profiles.itemData(k)])
         )
@@ -66,7 +66,7 @@ class ProfileControls(QWidget):
         self.log.setToolTip("Logarithmic or linear axis of the field")
         self.log.toggled.connect(lambda _on: self.restyled.emit())
         self.measured_from = choice(
-            "What the distance r of the fall-off counts from", 45
+            "What the distance r of the fall-off counts from", 66
         )
         self.measured_from.activated.connect(self._on_measured_from)
         self.export = QPushButton("Export …")

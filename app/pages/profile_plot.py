@@ -10,15 +10,15 @@ import pyqtgraph as pg
 from PySide6.QtCore import QPointF, Qt, Signal
 from PySide6.QtGui import (
     QColor,
-    QFont,
-    QFontMetricsF,
     QKeyEvent,
     QMouseEvent,
     QPen,
     QResizeEvent,
 )
 
+from app.pages.level_names import place_names
 from app.pages.plot_look import (
+    CURVES,
     as_before,
     curve_pen,
     dress_axis,
@@ -85,7 +85,7 @@ class ProfilePlot(pg.PlotWidget):
         self._theme = LIGHT
         self._mark: pg.InfiniteLine | None = None
         self._dots: pg.ScatterPlotItem | None = None
-        self._named: list[tuple[pg.TextItem, float, float]] = []
+        self._named: list[tuple[pg.TextItem, Floats, Floats]] = []
 
     # -- drawing ----------------------------------------------------------------
 
@@ -231,7 +231,7 @@ class ProfilePlot(pg.PlotWidget):
         found = curve.values(self._kind)
         assert found is not None, "curves without values are not drawn"
         values = np.where(curve.mask, np.nan, found)
-        pen, z = self._pen(curve), 10
+        pen, z = self._pen(curve), CURVES
         if whole is not self.done.found:
             pen, z = as_before(pen), 7
         x = whole.along / self._metres
@@ -248,7 +248,7 @@ class ProfilePlot(pg.PlotWidget):
         ys = self._ys(line.values)
         self.plot(line.along / self._metres, ys, pen=dashed).setZValue(5)
         item = self._words(level_line_text(self.done, line), (0.0, 1.0))
-        self._named.append((item, float(line.along[0]) / self._metres, float(ys[0])))
+        self._named.append((item, line.along / self._metres, ys))
 
     def _draw_crossings(self, curves: list[ProfileCurve]) -> None:
         """A mark where each curve meets a level, its distance beside the first."""
@@ -323,17 +323,10 @@ class ProfilePlot(pg.PlotWidget):
         return item
 
     def _place_names(self) -> None:
-        """Put the names of levels on their lines, none over another."""
-        (x0, x1), (y0, y1) = self.viewRange()
-        height = max(1.0, self.getViewBox().height())
-        row = 1.5 * QFontMetricsF(QFont()).height() * (y1 - y0) / height
-        taken: list[tuple[float, int]] = []
-        for item, x, y in sorted(self._named, key=lambda entry: entry[2]):
-            column = 0
-            while any(c == column and abs(y - at) < row for at, c in taken):
-                column += 1
-            taken.append((y, column))
-            item.setPos(max(x, x0) + (x1 - x0) * (0.005 + 0.3 * column), y)
+        curves = [
+            (c.xData, c.yData) for c in self.listDataItems() if c.zValue() == CURVES
+        ]
+        place_names(self.getViewBox(), self._named, curves)
 
     # -- pointing -----------------------------------------------------------------
 

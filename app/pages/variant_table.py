@@ -214,7 +214,7 @@ class VariantTable(QTableView):
         columns = self.contents.columnCount()
         self.contents.show(answer, held)
         if self.contents.columnCount() != columns:
-            self.setColumnWidth(0, 41 * STEP)
+            self.setColumnWidth(0, 46 * STEP)
             for column in range(1, self.contents.columnCount()):
                 self.setColumnWidth(column, _WIDTH)
         self._place()
@@ -302,6 +302,8 @@ class _CellPainter(QStyledItemDelegate):
             painter.fillRect(box.adjusted(1, 1, -1, -1), tone)
         painter.setPen(QPen(QColor(theme.hairline), 1.0))
         painter.drawLine(box.bottomLeft(), box.bottomRight())
+        if cell is None:
+            painter.drawLine(box.topRight(), box.bottomRight())
         if table.currentIndex() == index:
             colour = theme.accent if table.hasFocus() else theme.line
             painter.setPen(QPen(QColor(colour), 1.5))

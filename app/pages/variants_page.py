@@ -98,6 +98,8 @@ class VariantsPage(AskingPage):
         for part in (self.raised, self.differing, self.reason):
             box.addWidget(part)
         box.addWidget(self.table, 1)
+        # Alone, a sentence stands at the top.
+        box.addStretch(0)
         self._parts = (self.table,)
         self.tabs = QTabWidget()
         self.tabs.setAccessibleName("Base and variants")

@@ -76,7 +76,7 @@ class TurningPhasors(QWidget):
         painter.drawText(at, f"{significant(ring)} A")
         if len(self._currents) > MOST:
             rest = len(self._currents) - MOST
-            words = f"the {MOST} largest; {rest} smaller are not drawn"
+            words = f"the {MOST} largest; smaller ones not drawn: {rest}"
             painter.drawText(QPointF(2 * STEP, self.height() - 2 * STEP), words)
         turned = cmath.exp(1j * math.radians(self._turn))
         taken: list[QRectF] = []

@@ -16,6 +16,7 @@ from pytestqt.qtbot import QtBot
 
 from app.document import Document
 from app.messages import Messages
+from app.pages.level_names import free_place
 from app.pages.profile_page import NONE_DRAWN, ProfilePage
 from app.profile_values import Profiled, ProfileRequest, profiled, value_at
 from app.profile_words import (
@@ -137,6 +138,19 @@ def test_a_line_without_length_is_told_not_plotted(layout: Layout) -> None:
     layout = replaced(layout, replace(item, path=(place, place)))
     with pytest.raises(UserError, match=rf"“{item.title}” is not plotted\. The line "):
         profiled(ProfileRequest(layout, item.id, (layout.cases[0].id,)))
+
+
+def test_names_of_levels_stand_clear_of_curves_and_names() -> None:
+    xs = np.linspace(0.0, 10.0, 101)
+    curve = (xs, 3.0 - 0.2 * xs)
+    places = np.linspace(0.0, 7.0, 8)
+    # The curve passes the row from 2 to 2.5 between x 2.5 and 5.
+    assert free_place(places, 1.2, np.full(8, 2.0), 0.5, [curve]) == 0.0
+    assert free_place(places[2:], 1.2, np.full(6, 2.0), 0.5, [curve]) == 5.0
+    other = (np.linspace(5.0, 6.2, 9), np.full(9, 2.2))
+    assert free_place(places[2:], 1.2, np.full(6, 2.0), 0.5, [curve, other]) == 7.0
+    # Where all is taken, the first has to do.
+    assert free_place(places[2:5], 1.2, np.full(3, 2.0), 0.5, [curve]) == 2.0
 
 
 def test_crossings_are_told_with_distance_and_direction(done: Profiled) -> None:

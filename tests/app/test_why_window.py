@@ -19,6 +19,7 @@ from app.level_distance import DistanceRequest, factors, reached, targets
 from app.level_marks import distance_text, overlay_of
 from app.main_window import MainWindow
 from app.map_request import heights_of
+from app.margin_values import concern
 from app.messages import Messages
 from app.pages.profile_page import ProfilePage
 from app.profile_words import marked_text, whole_table
@@ -298,6 +299,23 @@ def test_why_in_the_margins_takes_the_worst_value_apart(
     assert page.why is not None
     assert page.why.shares.shown == pytest.approx(row.value, rel=1e-6)
     assert page.why.request.place.at == row.at
+
+
+def test_why_of_a_selected_zone_is_its_worst_value(
+    qtbot: QtBot, window: MainWindow, layout: Layout
+) -> None:
+    qtbot.waitUntil(lambda: _exact(window), timeout=60_000)
+    zone = layout.zones[0]
+    window.document.select([zone.id])
+    pages = _pages(window)
+    pages.open_why()
+    margins = window.margins._margins
+    assert margins is not None
+    worst = max((r for r in margins.rows if r.place == zone.id), key=concern)
+    place = pages.why.place
+    assert place is not None
+    assert place.at == worst.at
+    assert place.title == f"{zone.title}, largest value"
 
 
 def test_a_click_on_an_empty_place_is_taken_apart(
