@@ -114,6 +114,7 @@ class Drawings(QWidget):
         view.pointer_left.connect(self.pointer_left)
         view.entry_wanted.connect(self.entry_wanted)
         view.pointer_moved.connect(lambda x, y, shown=name: self._point(shown, x, y))
+        view.has_pointer = name == PLAN_VIEW
         self.views[name] = view
         frame = QWidget()
         box = QVBoxLayout(frame)
@@ -345,6 +346,10 @@ class Drawings(QWidget):
             self.problem.emit(sentence)
 
     def _point(self, name: str, x: float, y: float) -> None:
+        for other, view in self.views.items():
+            if view.has_pointer != (other == name):
+                view.has_pointer = other == name
+                view.viewport().update()
         if name == PLAN_VIEW:
             self.pointed.emit(x, y, None)
             return

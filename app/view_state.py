@@ -66,6 +66,11 @@ class Look:
     line: str = ""
     leg: int = 0
 
+    @property
+    def drawn(self) -> tuple[object, ...]:
+        """What of it the drawing itself depends on, beside its map."""
+        return (self.case, self.storey, self.hidden)
+
 
 class ViewState(QObject):
     """Holds the current `Look`; `changed(look)` says that it is another one."""

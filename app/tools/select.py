@@ -144,6 +144,7 @@ class SelectTool(DrawingTool):
     def move(self, pointer: Pointer) -> None:
         drag = self._drag
         if drag is None:
+            self._view = sight(pointer.plane)
             return
         if not drag.is_under_way and dist(pointer.raw, drag.raw) <= pointer.reach:
             return

@@ -119,6 +119,11 @@ class DrawingScene(QGraphicsScene):
         self._apply_look()
         self.touched.emit()
 
+    @property
+    def look(self) -> Look:
+        """What is looked at in the layout that shows."""
+        return self._look
+
     def select(self, selection: frozenset[str]) -> None:
         """Show which items are selected."""
         for item_id in self._selection ^ selection:
@@ -164,6 +169,17 @@ class DrawingScene(QGraphicsScene):
     def is_empty(self) -> bool:
         """Whether nothing at all is drawn."""
         return not self.items_by_id and not self.backings
+
+    def everything(self) -> QRectF:
+        """All that is drawn, or where an empty drawing begins. [m]"""
+        bounds = self.plan.bounds()
+        box = QRectF()
+        if bounds is not None:
+            x0, y0, x1, y1 = bounds
+            box = QRectF(x0, y0, max(x1 - x0, 1e-6), max(y1 - y0, 1e-6))
+        for backing in self.backings.values():
+            box = box.united(backing.sceneBoundingRect())
+        return QRectF(-1.0, -1.0, 12.0, 8.0) if box.isNull() else box
 
     def ground_state(self) -> tuple[object, ...]:
         """What lies below the items, to tell whether it has changed."""

@@ -83,6 +83,8 @@ class DrawingView(ZoomableView):
         self._cut = ("", False)
         self.marks: dict[str, Overlay] = {}
         self.catches_places = True
+        #: Of several views the tool speaks of the plane of the one last pointed at.
+        self.has_pointer = True
         self.holds_directions = False
         self._is_behind = self._wants_all = False
         self._legend = Legend(self._inks, self.viewport())
@@ -180,17 +182,7 @@ class DrawingView(ZoomableView):
         if beside > _MOST_BESIDE * self.viewport().width():
             # Better under the legend than too small to be read.
             beside = 0
-        self.fit_box(self._everything(), beside)
-
-    def _everything(self) -> QRectF:
-        bounds = self._scene.plan.bounds()
-        box = QRectF()
-        if bounds is not None:
-            x0, y0, x1, y1 = bounds
-            box = QRectF(x0, y0, max(x1 - x0, 1e-6), max(y1 - y0, 1e-6))
-        for backing in self._scene.backings.values():
-            box = box.united(backing.sceneBoundingRect())
-        return QRectF(-1.0, -1.0, 12.0, 8.0) if box.isNull() else box
+        self.fit_box(self._scene.everything(), beside)
 
     def _on_camera_changed(self) -> None:
         self._scene.set_scale(self.camera().scale)
@@ -231,7 +223,7 @@ class DrawingView(ZoomableView):
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         for mark in self.marks.values():
             draw_overlay(painter, mark, camera, self._inks)
-        if self._tool is not None:
+        if self._tool is not None and self.has_pointer:
             draw_overlay(painter, self._tool.overlay(), camera, self._inks)
             if self._pointer is not None and self._tool.catches():
                 draw_catch(painter, self._pointer, camera, self._inks)
@@ -393,8 +385,8 @@ class DrawingView(ZoomableView):
             self._follow()
 
     def _on_look_changed(self, look: Look) -> None:
-        self._is_behind = True
-        if not self.is_put_away:
+        self._is_behind = self._is_behind or look.drawn != self._scene.look.drawn
+        if self._is_behind and not self.is_put_away:
             self._follow()
         self._place_legend()
 

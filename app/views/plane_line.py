@@ -90,8 +90,10 @@ class PlaneLine(QObject):
             self._plan.set_mark(MARK, None)
             return
         lines = tuple(line for end in ends for line in self._arrow(end))
-        aside, (x, y) = _ASIDE / self._plan.camera().scale, ends[0]
-        at = (x + aside, y if upright.sight is LOOKING_Y else y + 0.3 * aside)
+        # At the right or upper end, where the drawing is rarely in the way.
+        aside, (x, y) = _ASIDE / self._plan.camera().scale, ends[1]
+        is_level = upright.sight is LOOKING_Y
+        at = (x - aside, y) if is_level else (x + aside, y - 0.3 * aside)
         self._plan.set_mark(
             MARK,
             Overlay(lines=lines, points=ends, labels=((at, self._text),),

@@ -24,8 +24,8 @@ from engine.layout import Layout
 from engine.places import BackingDrawing
 from engine.remarks import confirmation
 
-#: A relative link goes up no more than so many folders: beyond, it means nothing
-#: elsewhere.
+#: A relative link goes up no more than so many folders, and not to the root: beyond,
+#: it means nothing elsewhere.
 _MOST_UP = 3
 
 _BLOCK = 1 << 20
@@ -50,12 +50,15 @@ def link_text(path: Path, folder: Path | None) -> str:
     whole = Path(os.path.abspath(path))
     if folder is None:
         return str(whole)
+    start = os.path.abspath(folder)
     try:
-        relative = Path(os.path.relpath(whole, os.path.abspath(folder)))
+        shared = Path(os.path.commonpath((whole, start)))
     except ValueError:
         # On another drive.
         return str(whole)
-    if relative.parts.count("..") > _MOST_UP:
+    relative = Path(os.path.relpath(whole, start))
+    is_far = relative.parts.count("..") > _MOST_UP
+    if is_far or shared == Path(shared.anchor):
         return str(whole)
     return relative.as_posix()
 

@@ -334,3 +334,23 @@ def test_the_exported_map_is_that_of_the_elevation_in_front(window, qtbot, tmp_p
         window.exports.map(tmp_path / "map.svg")
     text = (tmp_path / "map.svg").read_text(encoding="utf-8")
     assert "vertical plane x 4.10 m" in text
+
+
+def test_what_a_tool_shows_stays_in_the_view_that_is_pointed_at(window):
+    window.drawings.show_view("Looking +y")
+    settle(window)
+    views = window.drawings.views
+    QTest.mouseMove(views["Looking +y"].viewport(), QPoint(200, 200))
+    assert [v.has_pointer for v in views.values()] == [False, True, False]
+    window.document.select({"riser"})
+    window.drawings.show_view("Plan")
+    settle(window)
+    # Arrows pressed on the plan move on the plan.
+    QTest.mouseMove(views["Plan"].viewport(), QPoint(200, 200))
+    assert views["Plan"].has_pointer
+    before = window.document.committed.by_id()["far"].at
+    window.document.select({"far"})
+    QTest.keyClick(views["Plan"], Qt.Key.Key_Up)
+    x, y, z = window.document.committed.by_id()["far"].at
+    assert (x, z) == (before[0], before[2])
+    assert y > before[1]

@@ -59,6 +59,8 @@ def test_without_a_folder_or_far_away_a_link_is_whole(tmp_path, sheet):
     deep = tmp_path / "a" / "b" / "c" / "d"
     assert link_text(sheet, deep) == str(sheet)
     assert link_text(sheet, deep.parent) == "../../../plans/ground.png"
+    root = Path(sheet.anchor)
+    assert link_text(root / "a" / "p.png", root / "b") == str(root / "a" / "p.png")
 
 
 def test_what_holds_says_nothing(tmp_path, sheet):
