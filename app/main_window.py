@@ -99,6 +99,7 @@ class MainWindow(QMainWindow):
         self.view_pages = ViewPages(self)
         self.menus = WindowMenus(self)
         self.links = WindowLinks(self)
+        self._own_parts()
         self.set_theme(theme)
         self.setAcceptDrops(True)
         self.setMinimumSize(980, 560)
@@ -106,6 +107,16 @@ class MainWindow(QMainWindow):
         self.resize(QSize(1360, 860).boundedTo(room))
 
     # -- building ---------------------------------------------------------------
+
+    def _own_parts(self) -> None:
+        """Let what has no place in the window go with it all the same.
+
+        Their signals hold what they are connected to, and with it the whole window.
+        """
+        for part in (self.view_state, self.toolbox, self.recompute, self.autosave):
+            part.setParent(self)
+        # Built to count, and a child of the panels only when first shown.
+        self.destroyed.connect(self.remarks.deleteLater)
 
     def _build(self) -> None:
         document, state = self.document, self.view_state

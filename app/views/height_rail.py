@@ -90,13 +90,16 @@ class HeightRail(QWidget):
         box.addWidget(self.scale, 1)
         box.addWidget(self.largest)
         self.setFixedWidth(_WIDTH)
-        document.changed.connect(lambda layout, _ids: self._show(view_state.look))
+        document.changed.connect(self._on_changed)
         view_state.changed.connect(self._show)
         self._show(view_state.look)
 
     def set_curve(self, curve: HeightCurve | None) -> None:
         """Show another curve, or none."""
         self.scale.set_curve(curve)
+
+    def _on_changed(self, _layout: object, _ids: object) -> None:
+        self._show(self._view_state.look)
 
     @property
     def _unit(self) -> str:

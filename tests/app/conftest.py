@@ -9,7 +9,7 @@ from collections.abc import Iterator
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 
 import pytest
-from PySide6.QtCore import QCoreApplication, Qt
+from PySide6.QtCore import QCoreApplication, QEvent, Qt
 
 from app.collection import due
 
@@ -22,6 +22,8 @@ def _collected_on_this_thread() -> Iterator[None]:
     """As in the program, see `app.collection`: what a test leaves goes after it."""
     gc.disable()
     yield
+    # Outside of a running loop Qt keeps what is to be deleted later.
+    QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)
     generation = due()
     if generation is not None:
         gc.collect(generation)
