@@ -15,10 +15,12 @@ from app.elevation_plane import (
     PLAN_VIEW,
     drawn_lines,
     line_of,
+    plane_text,
     upright_of,
 )
 from app.linked_pictures import LinkedPictures
 from app.map_picture import MapPicture
+from app.map_request import heights_of
 from app.plane_places import PlanePlaces
 from app.theme import Theme
 from app.tools.look import LookTool
@@ -115,6 +117,11 @@ class Drawings(QWidget):
         view.entry_wanted.connect(self.entry_wanted)
         view.pointer_moved.connect(lambda x, y, shown=name: self._point(shown, x, y))
         view.has_pointer = name == PLAN_VIEW
+        if name == ALONG:
+            # One that is built late begins as the others are.
+            view.drawing.select(self._document.selection)
+            view.holds_directions = self.plan.holds_directions
+            view.catches_places = self.plan.catches_places
         self.views[name] = view
         frame = QWidget()
         box = QVBoxLayout(frame)
@@ -166,6 +173,16 @@ class Drawings(QWidget):
     def picture(self) -> MapPicture | None:
         """The map of the view in front."""
         return self.front.drawing.map_layer.picture
+
+    @property
+    def beside(self) -> str:
+        """Where the map of the view beside the one in front is; empty without one."""
+        layout = self._document.layout
+        if not self._is_wide:
+            return ""
+        if self.shown == PLAN_VIEW:
+            return plane_text(layout, self._look, self.elevation)
+        return f"plan, {heights_of(layout, self._look)[1]}"
 
     @property
     def hint(self) -> str:

@@ -68,7 +68,8 @@ class WindowActs:
     def put_picture(self) -> None:
         """Put the drawing as it shows on the clipboard."""
         w = self._window
-        copy_picture(w.drawings, w.caption_text())
+        caption, beside = w.caption_text(), w.drawings.beside
+        copy_picture(w.drawings, f"{caption} · beside: {beside}" if beside else caption)
         w.messages.inform("The picture is on the clipboard, with its caption.")
 
     def rise(self, *, down: bool) -> None:

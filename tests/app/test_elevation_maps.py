@@ -354,3 +354,27 @@ def test_what_a_tool_shows_stays_in_the_view_that_is_pointed_at(window):
     x, y, z = window.document.committed.by_id()["far"].at
     assert (x, z) == (before[0], before[2])
     assert y > before[1]
+
+
+def test_a_view_built_late_shows_the_selection(window):
+    window.document.select({"far"})
+    window.menus.acts.look_along()
+    assert window.drawings.front.drawing.items_by_id["far"].is_selected
+
+
+def test_the_caption_of_a_copied_picture_names_both_maps(window, monkeypatch):
+    told = []
+    monkeypatch.setattr(
+        "app.window_acts.copy_picture", lambda _drawing, caption: told.append(caption)
+    )
+    window.drawings.planes.put("Looking +y", 3.2)
+    window.menus.acts.put_picture()
+    window.drawings.set_wide(True)
+    window.menus.acts.put_picture()
+    window.drawings.show_view("Looking +y")
+    window.menus.acts.put_picture()
+    alone, plan, elevation = told
+    assert "beside" not in alone
+    assert plan.endswith("· beside: vertical plane y 3.20 m")
+    assert "vertical plane y 3.20 m" in elevation
+    assert "· beside: plan, largest over heights, Office" in elevation
