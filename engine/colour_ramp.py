@@ -1,8 +1,10 @@
-"""The colour ramps of maps: from pale water to dark wine, and two-sided for changes.
+"""The colour ramps of maps: from pale water to wine, and two-sided for changes.
 
 The ramp is a smooth curve through CIELAB, walked at constant speed, so that equal
 steps of the scale are equal steps to the eye. Lightness falls all the way: the order
-survives printing in grey and any colour vision.
+survives printing in grey and any colour vision. Its ends keep away from white and from
+near-black: what lies under the range is paper, light or dark, and must not look like
+either end.
 
 Differences have two arms from a pale grey: blue where values fall, orange where they
 rise. Both are as dark at the same distance from the middle.
@@ -23,11 +25,11 @@ Scale = Literal["logarithmic", "linear"]
 
 #: Control points (L*, a*, b*) of the curve, from low to high values.
 ANCHORS = (
-    (93.0, -12.0, -4.0),
+    (90.0, -18.0, -8.0),
     (76.0, -22.0, -34.0),
     (54.0, 16.0, -58.0),
-    (36.0, 58.0, -26.0),
-    (16.0, 22.0, 8.0),
+    (42.0, 62.0, -26.0),
+    (30.0, 48.0, 22.0),
 )
 
 #: Control points of the two arms of changes, from no change on.
