@@ -144,7 +144,8 @@ class MainWindow(QMainWindow):
         drawing.addWidget(self.rail)
         drawing.addWidget(self.pages, 1)
         box.addLayout(drawing, 1)
-        column.setMinimumWidth(560)
+        # The drawing beside its rail; a narrow window takes from the panel first.
+        column.setMinimumWidth(660)
         self.splitter = QSplitter(Qt.Orientation.Horizontal)
         self.splitter.setChildrenCollapsible(False)
         self.splitter.addWidget(column)

@@ -9,8 +9,11 @@ from PySide6.QtCore import QByteArray, Qt, Signal
 from PySide6.QtGui import QCloseEvent
 from PySide6.QtWidgets import (
     QHBoxLayout,
+    QProxyStyle,
     QPushButton,
     QStackedWidget,
+    QStyle,
+    QStyleOption,
     QTabBar,
     QToolButton,
     QVBoxLayout,
@@ -39,6 +42,9 @@ class SidePanels(QWidget):
     def __init__(self) -> None:
         super().__init__()
         self._tabs = QTabBar()
+        close = _Close("Fusion")
+        close.setParent(self)
+        self._tabs.setStyle(close)
         self._tabs.setAccessibleName("Side panels")
         self._tabs.setExpanding(False)
         self._tabs.setDrawBase(False)
@@ -155,6 +161,20 @@ class SidePanels(QWidget):
             tip = f"Bring “{stand.name}” back here"
         self._leave.setToolTip(tip)
         self._leave.setAccessibleName(tip)
+
+
+class _Close(QProxyStyle):
+    """The style with tabs closer together, so that all of them show."""
+
+    def pixelMetric(
+        self,
+        metric: QStyle.PixelMetric,
+        option: QStyleOption | None = None,
+        widget: QWidget | None = None,
+    ) -> int:
+        if metric == QStyle.PixelMetric.PM_TabBarTabHSpace:
+            return 4 * STEP
+        return super().pixelMetric(metric, option, widget)
 
 
 class _Stand(QWidget):

@@ -22,16 +22,16 @@ from app.panels.cautions import CautionsPanel
 from app.panels.margin_marks import RatioBar, StateSign, state_colour
 from app.panels.margin_table import MarginTable
 from app.panels.panel import Words
-from app.theme import SMALL, STEP, theme_shown
+from app.theme import BODY, SMALL, STEP, theme_shown
 from engine.layout import Layout
 
 
 class _Text(QLabel):
     """One line of plain text that gives way with an ellipsis."""
 
-    def __init__(self, stretch: bool = True) -> None:
+    def __init__(self, stretch: bool = True, least: int = 40) -> None:
         super().__init__()
-        self._whole = ""
+        self._whole, self._least = "", least
         self._stretches = stretch
         self.setTextFormat(Qt.TextFormat.PlainText)
         self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
@@ -57,7 +57,11 @@ class _Text(QLabel):
 
     def minimumSizeHint(self) -> QSize:
         hint = self.sizeHint()
-        return QSize(min(hint.width(), 40), hint.height()) if self._stretches else hint
+        return (
+            QSize(min(hint.width(), self._least), hint.height())
+            if self._stretches
+            else hint
+        )
 
     def resizeEvent(self, event: object) -> None:
         self._elide()
@@ -80,7 +84,8 @@ class MarginTile(QAbstractButton):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.sign, self.bar = StateSign(), RatioBar()
         self.title, self.value = _Text(), _Text(stretch=False)
-        self.state, self.case = _Text(), _Text()
+        # A state is read whole; only a long reason of none gives way.
+        self.state, self.case = _Text(least=10 * BODY), _Text()
         for mark in (self.sign, self.bar):
             mark.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
         self._box = box = QHBoxLayout(self)
