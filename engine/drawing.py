@@ -8,7 +8,8 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
+from functools import cached_property
 from itertools import pairwise
 from operator import is_
 from typing import Literal, TypeVar
@@ -112,10 +113,15 @@ class Strand:
     letters: str
     role: Literal["run", "joint link", "closing link", "equipment"]
     line: Line
-    areas: tuple[Area, ...]
     levels: tuple[float, float]
     #: Grows towards the viewer; what is nearer is drawn later. [m]
-    nearness: float = 0.0
+    nearness: float
+    seen: tuple[Conductor, Sight] = field(repr=False, compare=False)
+
+    @cached_property
+    def areas(self) -> tuple[Area, ...]:
+        """Its true outline; made when somebody is near enough to see it."""
+        return bar_footprint(*self.seen)
 
 
 @dataclass(frozen=True)
@@ -355,9 +361,9 @@ def _strand(conductor: Conductor, sight: Sight) -> Strand:
         letters=" + ".join(labels),
         role=conductor.role,
         line=_line(sight.seen(conductor.path)),
-        areas=bar_footprint(conductor, sight),
         levels=(float(z.min()), float(z.max())),
         nearness=-float(sight.depth(conductor.path).min()),
+        seen=(conductor, sight),
     )
 
 
