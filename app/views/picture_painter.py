@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFont, QPainter, QPixmap
-from PySide6.QtWidgets import QStyleOptionGraphicsItem
 
 from app.theme import TITLE
 from app.views.camera import Camera
@@ -17,6 +16,7 @@ from app.views.picking import selected
 from app.views.projection import Sight
 from app.views.scale_bar import draw_scale_bar
 from app.views.shape_item import ShapeItem
+from app.views.still_items import StillItems
 from engine.layout import Layout
 
 #: With more items in sight, only their names are written.
@@ -40,6 +40,7 @@ class PicturePainter:
         self._scene = scene
         self._sight = sight
         self._ground = Ground(scene)
+        self._items = StillItems()
 
     def set_sight(self, sight: Sight) -> None:
         """Name the axes of another side."""
@@ -55,14 +56,15 @@ class PicturePainter:
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         ratio = pixels.devicePixelRatio()
         self._ground.paint(painter, camera, self.inks, unit, ratio)
-        visible = self._paint_items(painter, camera)
+        visible = self._visible(camera)
+        self.inks.over_map = self._scene.map_layer.is_coloured
+        boxes = self._items.paint(painter, camera, self.inks, ratio, visible)
         bar = draw_scale_bar(
             painter, camera, self.inks, self._sight, unit, settings.north
         )
         taken = [legend, bar] if not legend.isEmpty() else [bar]
         taken += self._paint_notices(painter, camera)
-        for item in reversed(visible):
-            taken += item.decorate(painter, camera)
+        taken += boxes
         # Along a line nothing can be moved exactly, so nothing offers to be gripped.
         gripped = () if self._sight.is_along_line else selected(self._scene)
         for item in gripped:
@@ -71,19 +73,10 @@ class PicturePainter:
         self._paint_labels(painter, camera, visible, unit, taken)
         painter.end()
 
-    def _paint_items(self, painter: QPainter, camera: Camera) -> list[ShapeItem]:
-        """Paint what has its size in metres; returns the visible shapes, top first."""
-        option = QStyleOptionGraphicsItem()
+    def _visible(self, camera: Camera) -> list[ShapeItem]:
+        """The shapes in sight, top first."""
         window = camera.visible
-        self.inks.over_map = self._scene.map_layer.is_coloured
-        visible = [
-            i for i in self._scene.shapes() if i.boundingRect().intersects(window)
-        ]
-        painter.setTransform(camera.transform())
-        for item in reversed(visible):
-            item.paint(painter, option)
-        painter.resetTransform()
-        return visible
+        return [i for i in self._scene.shapes() if i.boundingRect().intersects(window)]
 
     def _paint_labels(
         self,

@@ -68,6 +68,9 @@ class PlaceItem(ShapeItem):
         painter.drawPath(self._path)
         self._painter.paint(painter, self.inks, self.scale_now)
 
+    def look(self) -> tuple[object, ...]:
+        return (*super().look(), self.is_on_storey)
+
     def _pen(self) -> QPen:
         if self.is_selected:
             return self.inks.selected

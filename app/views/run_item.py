@@ -114,7 +114,7 @@ class RunItem(ShapeItem):
 
     def _visible_legs(self, camera: Camera) -> list[Leg]:
         """Those of the route, found once for each picture. [px]"""
-        if self._legs is None or self._legs[0] is not camera:
+        if self._legs is None or self._legs[0] != camera:
             self._legs = (camera, camera.visible_legs(self.run.route))
         return self._legs[1]
 

@@ -52,14 +52,20 @@ class ShapeItem(QGraphicsItem):
         self.scale_now = 1.0
         self._box = QRectF()
         self._targets: Targets | None = None
+        self._revision = 0
 
     def set_box(self, points: Iterable[Point]) -> None:
-        """Take the bounding box of what is shown."""
+        """Take the bounding box of what is shown, which is another shape now."""
         self._targets = None
+        self._revision += 1
         xs, ys = zip(*points, strict=True)
         self.prepareGeometryChange()
         self._box = QRectF(min(xs), min(ys), max(xs) - min(xs), max(ys) - min(ys))
         self._box.adjust(-_MARGIN, -_MARGIN, _MARGIN, _MARGIN)
+
+    def look(self) -> tuple[object, ...]:
+        """Differs when the item looks different in the same view and inks."""
+        return (self._revision, self.is_selected)
 
     def boundingRect(self) -> QRectF:
         return self._box
