@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 import shapely
 
 from app.map_request import (
@@ -27,6 +28,7 @@ from engine.items import Point3
 from engine.layout import Layout
 from engine.masks import masked
 from engine.places import Zone
+from engine.reach import within_reach
 from engine.sampling import area_of
 
 
@@ -130,10 +132,16 @@ def readout(request: ReadoutRequest, *, cancelled: Cancelled | None = None) -> R
         components=(float(axes[0]), float(axes[1]), float(axes[2])),
         is_direct=is_direct,
         is_bound=whole.is_bound,
-        near_field=bool(field.near_field(ready.conductors, points[[best]])[0]),
+        near_field=_is_near(ready, points[[best]]),
         ratio=ratio,
         level_title="" if level is None else level.title,
     )
+
+
+def _is_near(ready: Loaded, point: npt.NDArray[np.float64]) -> bool:
+    """Whether one point (1, 3) is nearer to a conductor than two of its widths."""
+    near = within_reach(ready.conductors, point, widths=2.0)
+    return bool(near) and bool(field.near_field(near, point)[0])
 
 
 def _placed(layout: Layout, look: Look, point: object, **values: object) -> Readout:

@@ -21,6 +21,7 @@ from engine.conductor import Conductor
 from engine.layout import Layout
 from engine.motions import cos_sin
 from engine.places import Enclosure
+from engine.reach import within_reach
 from engine.runs import Bar, Round
 from engine.sampling import area_of
 from engine.surface_cells import Cells, Fineness, cells_in_outline, joined, walls
@@ -149,8 +150,8 @@ def masked(
     -------
     (n,) bool
     """
-    distances = distances_to(conductors, points)
-    return masked_at(distances, closed, points, clearance)
+    near = within_reach(conductors, points, clearance)
+    return masked_at(distances_to(near, points), closed, points, clearance)
 
 
 def distances_to(conductors: Sequence[Conductor], points: Floats) -> Floats:
