@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+import time
 from collections.abc import Callable
 from threading import Condition, Thread
 from typing import Generic, TypeVar
 
 Task = TypeVar("Task")
+
+#: [s]
+_LONGEST_REST = 0.25
 
 #: Whether something newer has been asked, or the end has come.
 Outdated = Callable[[], bool]
@@ -23,6 +27,9 @@ class Worker(Generic[Task]):
         Gets the task, and a callable that says whether a newer one waits.
     prepare : callable or None
         Done in the thread before the first task.
+    share : float
+        While tasks keep coming, at most this part of the time is spent on them; the
+        rest is the pointer's. Python does only one thing at a time.
     """
 
     def __init__(
@@ -30,9 +37,12 @@ class Worker(Generic[Task]):
         name: str,
         work: Callable[[Task, Outdated], None],
         prepare: Callable[[], None] | None = None,
+        *,
+        share: float = 1.0,
     ) -> None:
         self._work = work
         self._prepare = prepare
+        self._rest_of = 1.0 / share - 1.0
         self._condition = Condition()
         self._next: list[Task] = []
         self._is_busy = True
@@ -66,13 +76,23 @@ class Worker(Generic[Task]):
     def _run(self) -> None:
         if self._prepare is not None:
             self._prepare()
+        took = 0.0
         while True:
             with self._condition:
                 self._is_busy = False
+                self._rest(min(self._rest_of * took, _LONGEST_REST))
                 while not self._next and not self._is_closed:
                     self._condition.wait()
                 if self._is_closed:
                     return
                 task = self._next.pop()
                 self._is_busy = True
+            began = time.monotonic()
             self._work(task, self._outdated)
+            took = time.monotonic() - began
+
+    def _rest(self, seconds: float) -> None:
+        """Leave what comes for a while; the end does not wait for it."""
+        end = time.monotonic() + seconds
+        while not self._is_closed and (left := end - time.monotonic()) > 0:
+            self._condition.wait(left)

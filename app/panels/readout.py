@@ -97,7 +97,9 @@ class ReadoutLine(QLabel):
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
         self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         self._found.connect(self._show, Qt.ConnectionType.QueuedConnection)
-        self._worker: Worker[ReadoutRequest] = Worker("readout", self._compute)
+        self._worker: Worker[ReadoutRequest] = Worker(
+            "readout", self._compute, share=0.2
+        )
         # Several changes at once are one question.
         self._soon = QTimer(self)
         self._soon.setSingleShot(True)
