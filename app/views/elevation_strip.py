@@ -4,8 +4,15 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QSizePolicy, QToolButton, QWidget
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import (
+    QHBoxLayout,
+    QLabel,
+    QSizePolicy,
+    QToolButton,
+    QVBoxLayout,
+    QWidget,
+)
 
 from app.elevation_plane import ALONG, ELEVATIONS, DrawnLine
 from app.panels.field import Choice, ValueField
@@ -43,9 +50,12 @@ class ElevationStrip(QWidget):
         self._view = view
         self.setAccessibleName("Vertical plane of the map")
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
-        row = QHBoxLayout(self)
-        row.setContentsMargins(2 * STEP, STEP // 2, 2 * STEP, STEP // 2)
+        box = QVBoxLayout(self)
+        box.setContentsMargins(2 * STEP, STEP // 2, 2 * STEP, STEP // 2)
+        box.setSpacing(STEP // 2)
+        row = QHBoxLayout()
         row.setSpacing(STEP)
+        box.addLayout(row)
         self.head = QLabel(f"{view} · vertical plane")
         row.addWidget(self.head)
         self.depth = ValueField(
@@ -56,6 +66,8 @@ class ElevationStrip(QWidget):
             tip="Where the map's vertical plane stands; or drag its line on the plan",
         )
         self.depth.line.setMaximumWidth(26 * STEP)
+        # Why a text was refused needs the width of the strip, not of its field.
+        box.addWidget(self.depth.reason)
         self.less = _step("−", "One step of the grid less")
         self.more = _step("+", "One step of the grid more")
         self.less.clicked.connect(lambda: self.stepped.emit(-1))
@@ -83,7 +95,7 @@ class ElevationStrip(QWidget):
             self.head.setText(f"Vertical plane {ELEVATIONS[view].axis}")
             row.addWidget(self.depth)
             for button in (self.less, self.more, self.through):
-                row.addWidget(button, 0, Qt.AlignmentFlag.AlignTop)
+                row.addWidget(button)
         row.addStretch(1)
 
     def show_depth(self, metres: float, unit: str) -> None:
