@@ -190,6 +190,7 @@ class ReportPages(QObject):
                 "Another layout is open meanwhile, so only the frozen layout lists it."
             )
             return
+        self.page.issue.start_over()
         variant = document.variant
         with messages.shown():
             document.edit_whole(

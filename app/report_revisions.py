@@ -35,7 +35,7 @@ from engine.units import flux_density_text, significant
 if TYPE_CHECKING:
     from engine.report.choices import Choices
 
-HEADS = ("What", "Item", "Value", "Before", "After", "Change")
+HEADS = ("What", "Item", "Value", "Change", "Before", "After")
 
 #: Where frozen layouts were written, by their digest, while the program runs.
 _known: dict[str, Path] = {}
@@ -109,9 +109,9 @@ class FoundChanges:
                 e.kind,
                 e.title,
                 e.field.replace("_", " "),
+                "",
                 _one_line(e.before),
                 _one_line(e.after),
-                "",
             )
             for e in self.changes.edits
         ]
@@ -145,9 +145,9 @@ class FoundChanges:
             "result",
             name(known.place, known.place),
             ", ".join(part for part in value if part),
+            "" if change is None else f"{100 * change:+.3g} %".replace("-", "−"),
             _result_text(moved.before, self.unit),
             _result_text(moved.after, self.unit),
-            "" if change is None else f"{100 * change:+.3g} %".replace("-", "−"),
         )
 
 

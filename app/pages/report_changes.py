@@ -59,7 +59,7 @@ class ReportChangesView(QWidget):
         self.again.setText(found.again_sentence())
         self.again.setVisible(bool(self.again.text()))
         self.table.show_rows((), ())
-        self.table.show_rows(HEADS, found.rows(), len(HEADS) - 1)
+        self.table.show_rows(HEADS, found.rows(), len(HEADS))
 
     def set_stale(self) -> None:
         """The layout was edited after this was found."""

@@ -147,6 +147,13 @@ class ReportIssue(QWidget):
         self.revision.setFocus()
         self.revision.selectAll()
 
+    def start_over(self) -> None:
+        """The revision was issued, or another layout is open."""
+        for field in (self.revision, self.date, self.name, self.note):
+            field.clear()
+        self._proposed = ("", "", "")
+        self.refuse("")
+
     def tell_again(self, sentence: str) -> None:
         """Say how far this program is from the one that issued the revision."""
         self.again.setText(sentence)

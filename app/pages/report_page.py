@@ -34,7 +34,7 @@ from engine.errors import UserError
 from engine.exchange.pdf_pages import PdfPages
 
 #: Under this width the options stand instead of the pages. [logical pixels]
-NARROW = 180 * STEP
+NARROW = 200 * STEP
 
 #: The layout rests for so long before its pages are made again. [ms]
 PATIENCE = 700
@@ -284,6 +284,7 @@ class ReportPage(Page):
             self.cancel()
             self.made = None
             self.issue.tell_again("")
+            self.issue.start_over()
             self.choices.choose_variant(None)
             self.right.setCurrentIndex(0)
             self._show_made()
@@ -357,7 +358,9 @@ class ReportPage(Page):
         """Say whether the pages are those of the layout."""
         stale = self.is_stale
         self.sheets.set_note(OUT_OF_DATE if stale else "")
-        if self.maker.is_making or self._soon.isActive():
+        being_made = self.maker.is_making or self._soon.isActive()
+        self.state.set_style("muted" if being_made else "warning")
+        if being_made:
             self.state.setText("being made")
         elif stale:
             self.state.setText(OUT_OF_DATE)

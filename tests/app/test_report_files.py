@@ -162,6 +162,8 @@ def test_a_revision_is_two_files_and_one_step(
     assert (listed.revision, listed.date) == ("B", "2026-02-01")
     assert listed.note == "Louder & <b>nearer</b>"
     assert as_issued(document.whole, listed)
+    # What was said of this revision is not said of the next.
+    assert reports.page.issue.note.toPlainText() == ""
     assert "Save the layout" in window.told[-1][1]
     document.undo_stack.undo()
     assert document.whole == LAYOUT
@@ -239,7 +241,7 @@ def test_changes_since_a_revision_tell_edits_and_results(
     (moved,) = [row for row in rows if row[0] == "result"]
     assert moved[1] == "Desk <b>1</b>"
     # Twice the current is twice the field.
-    assert moved[5] == "+100 %"
+    assert moved[3] == "+100 %"
     assert "every result is the same" in page.changes.again.text()
     page.changes.table.copy()
     copied = QApplication.clipboard().text().splitlines()
