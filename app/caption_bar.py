@@ -140,6 +140,8 @@ class CaptionBar(QWidget):
         super().resizeEvent(event)
 
     def _show_storey(self) -> None:
+        # Names give way where there is no room; a height is never cut.
+        self._height.setMinimumWidth(self._height.sizeHint().width())
         # The storey gives way first, so that the others are not cut.
         others = self._row.sizeHint().width()
         if self._storey.isVisibleTo(self):

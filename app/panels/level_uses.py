@@ -4,14 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import QSize, Qt
 from PySide6.QtWidgets import QListWidget, QListWidgetItem, QWidget
 
-from app.panels.panel import Words, column
+from app.panels.panel import Words, column, plain_tip
 from app.theme import STEP
 from engine.criteria import ReferenceLevel
 from engine.layout import Layout
 from engine.places import Receptor, Zone
+
+#: Rows that show without scrolling.
+_MOST = 8
 
 
 class LevelUses(QWidget):
@@ -26,6 +29,9 @@ class LevelUses(QWidget):
         self.list.setToolTip(
             "Checked: the zone or receptor is compared with this reference level"
         )
+        # A scroll bar beneath would cover the last row.
+        self.list.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.list.setTextElideMode(Qt.TextElideMode.ElideMiddle)
         self.list.itemChanged.connect(self._on_changed)
         self.none = Words("Draw a zone where people are, then assign it here.")
         box = column(self)
@@ -36,6 +42,8 @@ class LevelUses(QWidget):
     def show_level(self, layout: Layout, level: ReferenceLevel) -> None:
         """Show which places name the level."""
         places: tuple[Zone | Receptor, ...] = (*layout.zones, *layout.receptors)
+        self.list.ensurePolished()
+        row = self.list.fontMetrics().height() + 2 * STEP
         self.list.blockSignals(True)
         self.list.clear()
         for place in places:
@@ -45,6 +53,8 @@ class LevelUses(QWidget):
             elif level.category and place.category != level.category:
                 text += f" ({place.category})"
             item = QListWidgetItem(text)
+            item.setToolTip(plain_tip(text))
+            item.setSizeHint(QSize(0, row))
             item.setData(Qt.ItemDataRole.UserRole, place.id)
             used = level.id in place.levels
             item.setCheckState(
@@ -54,7 +64,8 @@ class LevelUses(QWidget):
         self.list.blockSignals(False)
         self.list.setVisible(bool(places))
         self.none.setVisible(not places)
-        self.list.setFixedHeight(STEP * (2 + 6 * min(max(len(places), 1), 8)))
+        shown = min(max(len(places), 1), _MOST)
+        self.list.setFixedHeight(shown * row + 2 * self.list.frameWidth())
 
     def _on_changed(self, item: QListWidgetItem) -> None:
         used = item.checkState() == Qt.CheckState.Checked

@@ -7,6 +7,7 @@ without a chosen height the map shows the largest over the zone's heights.
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
 import numpy as np
 from PySide6.QtCore import QEvent, QLineF, QLocale, QPointF, QRectF, QSize, Qt, Signal
@@ -194,13 +195,13 @@ class RailScale(QWidget):
         return round(min(max(z, low), high) / _DRAG_STEP) * _DRAG_STEP
 
     def tick_at(self, pixel: float) -> Tick | None:
-        """The tick under the pointer, zones before floors."""
-        near = [
-            (abs(self.pixel_of(tick.z) - pixel), k)
-            for k, tick in enumerate(self._contents.ticks)
-        ]
+        """The tick of a zone under the pointer."""
+        return self._nearest(self._contents.ticks, pixel)
+
+    def _nearest(self, ticks: Sequence[Tick], pixel: float) -> Tick | None:
+        near = [(abs(self.pixel_of(t.z) - pixel), k) for k, t in enumerate(ticks)]
         distance, k = min(near, default=(math.inf, 0))
-        return self._contents.ticks[k] if distance <= _REACH else None
+        return ticks[k] if distance <= _REACH else None
 
     def mousePressEvent(self, event: QMouseEvent) -> None:
         if event.button() != Qt.MouseButton.LeftButton:
@@ -254,11 +255,13 @@ class RailScale(QWidget):
 
     def text_at(self, pixel: float) -> str:
         """What stands at a place on the rail, in words."""
-        tick = self.tick_at(pixel)
-        if tick is not None:
-            return tick.text
+        # In full: what is written on the rail may be shortened.
+        held = self._contents
+        near = [self._nearest(ticks, pixel) for ticks in (held.ticks, held.floors)]
+        if any(near):
+            return " · ".join(tick.text for tick in near if tick is not None)
         z, unit = self.height_at(pixel), self._document.layout.settings.length_unit
-        bands = (*self._contents.slabs, *self._contents.runs)
+        bands = (*held.slabs, *held.runs)
         names = [band.name for band in bands if band.low <= z <= band.high]
         return " · ".join([f"z {height_figures(z, unit)} {unit}", *names])
 
@@ -361,7 +364,7 @@ class RailScale(QWidget):
         """A line of text on a little paper, so that hatching does not eat it."""
         metrics = painter.fontMetrics()
         room = self.width() - 26.0
-        line = metrics.elidedText(text, Qt.TextElideMode.ElideRight, int(room))
+        line = metrics.elidedText(text, Qt.TextElideMode.ElideMiddle, int(room))
         box = QRectF(13.0, y - 0.5 * metrics.height(), room, metrics.height())
         box.setWidth(metrics.horizontalAdvance(line) + 4.0)
         paper = QColor(theme.window)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from html import escape
+
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QWidget
@@ -48,10 +50,14 @@ class Legend(QWidget):
                 f"Legend: RMS flux density from {significant(picture.low)} to "
                 f"{significant(picture.high)} {picture.unit}"
             )
-            self.setToolTip(
+            told = [
                 f"Resultant RMS flux density in {picture.unit}; the range of colours "
-                "is set in the Field menu"
-            )
+                "is set in the Field menu",
+                # Names in full: beside the bar they may be shortened.
+                *(f"{significant(v)} {picture.unit}: {n}" for v, n in picture.marks),
+            ]
+            lines = "<br>".join(escape(line) for line in told)
+            self.setToolTip(f"<qt>{lines}</qt>")
             self.fit()
 
     def sizeHint(self) -> QSize:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from html import unescape
 from pathlib import Path
 
 import numpy as np
@@ -357,6 +358,9 @@ def test_the_legend_comes_and_goes_with_the_map(shown):
     view.set_map(picture())
     assert not view._legend.isHidden()
     assert "µT" in view._legend.accessibleName()
+    name = "Level of <b>the house</b> at 50 Hz, long-term, for everybody"
+    view.set_map(picture(marks=((2.0, name),)))
+    assert name in unescape(view._legend.toolTip())
     view.set_map(None)
     assert view._legend.isHidden()
 

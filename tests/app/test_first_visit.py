@@ -16,13 +16,14 @@ from reportlab.pdfgen.canvas import Canvas
 
 from app import commands, preferences, recovery, start
 from app.backing import place_backing_file
-from app.caption_bar import case_text
+from app.caption_bar import CaptionBar, case_text
 from app.document import Document
 from app.files import SAMPLES, empty_layout
 from app.main_window import MainWindow
 from app.messages import Messages
 from app.panels.item_forms import heading
 from app.theme import DARK, LIGHT
+from app.view_state import ViewState
 from app.views.cut_mark import cut_place
 from app.views.inks import Inks
 from engine import layout_file
@@ -422,3 +423,13 @@ def test_a_file_that_is_no_drawing_says_so_after_the_job(window, qtbot, tmp_path
     with qtbot.waitSignal(window.jobs.ended):
         window.menus.acts.open_dropped([str(path)])
     assert "neither a PDF nor a PNG" in window.message_bar.sentence
+
+
+def test_a_height_is_not_cut_where_names_give_way(qtbot):
+    layout = layout_file.read(SAMPLES / "office-over-switch-room.json")
+    caption = CaptionBar(Document(layout), ViewState())
+    qtbot.addWidget(caption)
+    caption.setFixedWidth(460)
+    caption.show()
+    assert caption._height.width() >= caption._height.sizeHint().width()
+    assert caption._zone.width() < caption._zone.sizeHint().width()

@@ -335,6 +335,12 @@ def test_rail_spans_everything_and_names_slabs_and_runs(rail: HeightRail) -> Non
     assert any(band.low < 3.0 < band.high for band in contents.runs)
 
 
+def test_rail_tells_floors_in_full(rail: HeightRail) -> None:
+    scale = rail.scale
+    floor = max(scale.contents.floors, key=lambda tick: tick.z)
+    assert floor.text in scale.text_at(scale.pixel_of(floor.z))
+
+
 def test_curve_is_largest_where_the_runs_pass(rail: HeightRail, layout: Layout) -> None:
     zone = layout.zones[0]
     curve = height_curve(layout, "", zone.id, curve_heights(layout))

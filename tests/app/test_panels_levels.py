@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from html import unescape
 
 import pytest
 from PySide6.QtCore import Qt
@@ -185,6 +186,11 @@ def test_refused_values_change_nothing(panel, document):
 def test_a_level_is_assigned_and_removed_with_its_uses(panel, document):
     panel.add()
     item = panel.uses.list.item(0)
+    rows = panel.uses.list
+    height = rows.visualItemRect(item).height()
+    assert height >= rows.fontMetrics().height() + 4
+    assert rows.viewport().height() >= min(rows.count(), 8) * height
+    assert item.text() in unescape(item.toolTip())
     item.setCheckState(Qt.CheckState.Checked)
     assert document.layout.zones[0].levels == ("level-1",)
     assert "Compare Office with" in document.undo_stack.undoText()
