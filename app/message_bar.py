@@ -1,4 +1,4 @@
-"""The bar that shows what the user is told in passing, above the drawing."""
+"""The bar that shows what the user is told in passing, over the top of the drawing."""
 
 from __future__ import annotations
 
@@ -18,6 +18,7 @@ from PySide6.QtWidgets import (
 
 from app.jobs import Jobs
 from app.messages import Messages
+from app.slip import Slip
 from app.theme import STEP, theme_for
 
 #: How long an information stays; warnings and errors stay until closed. [ms]
@@ -25,7 +26,10 @@ PATIENCE = 6000
 
 
 class MessageBar(QWidget):
-    """One sentence, and a way to put it aside."""
+    """One sentence, and a way to put it aside.
+
+    It takes no height: its slip lies over what is beneath, so that nothing moves.
+    """
 
     def __init__(self, messages: Messages) -> None:
         super().__init__()
@@ -48,14 +52,15 @@ class MessageBar(QWidget):
         self._offer.setToolTip("Does at once what the message offers")
         self._offer.clicked.connect(self._take_offer)
         self._offered: Callable[[], object] | None = None
-        row = QHBoxLayout(self)
+        self.slip = Slip(self)
+        row = QHBoxLayout(self.slip)
         row.setContentsMargins(3 * STEP, STEP, 2 * STEP, STEP)
         row.addWidget(self._text, 1)
         row.addWidget(self._offer)
         row.addWidget(self._copy)
         row.addWidget(self._close)
-        self.setAutoFillBackground(True)
-        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Maximum)
+        self.setFixedHeight(0)
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
         self._timer = QTimer(self)
         self._timer.setSingleShot(True)
         self._timer.timeout.connect(self.hide)
@@ -79,6 +84,7 @@ class MessageBar(QWidget):
         self._offer.setAccessibleName(button)
         self._offer.show()
         self._offered = act
+        self.slip.come()
 
     def _take_offer(self) -> None:
         self.hide()
@@ -105,6 +111,7 @@ class MessageBar(QWidget):
         if kind == "information":
             self._timer.start(PATIENCE)
         self.show()
+        self.slip.come()
 
     def _copy_details(self) -> None:
         QApplication.clipboard().setText(self._details)
@@ -117,6 +124,8 @@ class JobBar(QWidget):
         super().__init__()
         self._title = ""
         self._text = QLabel()
+        # A title may hold what users typed.
+        self._text.setTextFormat(Qt.TextFormat.PlainText)
         self._bar = QProgressBar()
         self._bar.setRange(0, 1000)
         self._bar.setTextVisible(False)

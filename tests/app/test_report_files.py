@@ -17,6 +17,7 @@ from app import report_pages
 from app.document import Document
 from app.jobs import Jobs
 from app.logo import LARGEST, choose_logo
+from app.message_bar import JobBar
 from app.messages import Messages
 from app.pages.report_logo import ReportLogo
 from app.reopened import Reopened
@@ -341,3 +342,11 @@ def test_a_logo_that_cannot_be_is_refused_in_words(qtbot, tmp_path):
     qtbot.addWidget(row)
     row.refresh()
     assert "damaged" in row.words.text()
+
+
+def test_progress_shows_what_users_typed_as_text(qtbot, window):
+    bar = JobBar(window.jobs)
+    qtbot.addWidget(bar)
+    window.jobs.started.emit("Issuing revision <b>B</b>")
+    assert bar._text.text() == "Issuing revision <b>B</b>"
+    assert bar._text.textFormat() == Qt.TextFormat.PlainText
