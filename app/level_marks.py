@@ -80,7 +80,7 @@ def offset_lines(answer: Reached) -> OffsetLines:
             distance.start, distance.end, distance_text(distance, unit),
         )  # fmt: skip
     return OffsetLines(
-        name=f"{answer.level.title} · {answer.request.heights_name}",
+        name=f"{answer.level.title}, every frequency counted",
         sentence=f"{told(answer)}.",
         lines=answer.plan.lines,
         measured_from=np.array(answer.measured_from, np.float64).reshape(-1, 2),

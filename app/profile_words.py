@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 import numpy as np
 
 from app.map_request import height_figures
@@ -19,6 +21,9 @@ from engine.units import (
     significant,
     text_beside,
 )
+
+#: Lines of one level whose values differ less have one name.
+_NEARLY = 1.15
 
 
 def curve_text(done: Profiled, curve: ProfileCurve) -> str:
@@ -50,6 +55,20 @@ def is_of_all(done: Profiled, line: LevelLine) -> bool:
     )
 
 
+def level_line_texts(done: Profiled, lines: Sequence[LevelLine]) -> list[str]:
+    """Names of lines; lines of one level that nearly meet have one, at the first."""
+    texts = []
+    for line in lines:
+        own = [x for x in lines if (x.level, x.kind) == (line.level, line.kind)]
+        means = [float(x.values.mean()) for x in own]
+        if len(own) > 1 and max(means) < _NEARLY * min(means):
+            text = f"{line.title}, a line for each mix of frequencies"
+            texts.append(text if line is own[0] else "")
+        else:
+            texts.append(level_line_text(done, line))
+    return texts
+
+
 def level_line_text(done: Profiled, line: LevelLine) -> str:
     """The name of a level's line: its value, or for which mix of frequencies."""
     unit = done.request.layout.settings.flux_density_unit
@@ -62,9 +81,16 @@ def level_line_text(done: Profiled, line: LevelLine) -> str:
         text += ", at this mix of frequencies"
     if is_of_all(done, line):
         return text
-    names = [short_curve_text(done, done.found.curves[k]) for k in line.curves]
+    own = [done.found.curves[k] for k in line.curves]
+    names = [short_curve_text(done, curve) for curve in own]
+    cases = {curve.case for curve in own}
+    if all(
+        k in line.curves for k, c in enumerate(done.found.curves) if c.case in cases
+    ):
+        names = [done.names.get(c, c) for c in dict.fromkeys(c.case for c in own)]
     more = f" and {len(names) - 2} more" if len(names) > 2 else ""
-    return f"{text}, for {' and '.join(names[:2])}{more}"
+    text = text.removesuffix(", at this mix of frequencies")
+    return f"{text}, mix of {' and '.join(names[:2])}{more}"
 
 
 def distance_text(metres: float, unit: str) -> str:

@@ -52,7 +52,10 @@ class WhyPages(QObject):
         self._window = window
         self._parts = (window.document, window.view_state, window.messages)
         self.distance = LevelBar(window.document, window.view_state)
-        self.foot = Foot(window, window.pages, window.show_page, window.show_drawing)
+        self.foot = Foot(
+            window, window.pages, window.drawings, window.show_page,
+            window.show_drawing,
+        )  # fmt: skip
         column = window.pages.parentWidget()
         assert column is not None
         box = column.layout()

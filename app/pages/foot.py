@@ -25,7 +25,9 @@ class Foot(QFrame):
     window : QWidget
         Whose height counts.
     pages : QStackedWidget
-        What stands in the drawing's place.
+        What stands in the drawing's place; another page there closes the foot's.
+    drawing : QWidget
+        The drawing itself.
     show_page, show_drawing : callable
         The window's own ways of changing what stands there.
     """
@@ -34,11 +36,12 @@ class Foot(QFrame):
         self,
         window: QWidget,
         pages: QStackedWidget,
+        drawing: QWidget,
         show_page: Callable[[QWidget], None],
         show_drawing: Callable[[], None],
     ) -> None:
         super().__init__()
-        self._window, self._pages = window, pages
+        self._window, self._pages, self._drawing = window, pages, drawing
         self._show_page, self._show_drawing = show_page, show_drawing
         self.page: Page | None = None
         box = QVBoxLayout(self)
@@ -46,6 +49,7 @@ class Foot(QFrame):
         self.setFrameShape(QFrame.Shape.NoFrame)
         self.hide()
         window.installEventFilter(self)
+        pages.currentChanged.connect(self._on_page)
 
     def open(self, page: Page) -> None:
         """Show a page, at the foot where there is room."""
@@ -77,6 +81,10 @@ class Foot(QFrame):
             return False
         self._put_away()
         return True
+
+    def _on_page(self, _index: int) -> None:
+        if self._pages.currentWidget() is not self._drawing:
+            self.close_page()
 
     def leave(self) -> None:
         """The page wants to be closed, wherever it stands."""

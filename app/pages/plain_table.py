@@ -12,7 +12,7 @@ from PySide6.QtCore import (
     Qt,
 )
 from PySide6.QtGui import QGuiApplication, QKeyEvent, QKeySequence
-from PySide6.QtWidgets import QAbstractItemView, QTableView
+from PySide6.QtWidgets import QAbstractItemView, QFrame, QTableView
 
 from app.theme import STEP
 
@@ -88,6 +88,17 @@ class PlainTable(QTableView):
             for column in range(len(heads)):
                 width = min(self.columnWidth(column) + 2 * STEP, 65 * STEP)
                 self.setColumnWidth(column, width)
+
+    def show_whole(self) -> None:
+        """Become as large as everything in it, to be printed."""
+        self.resizeColumnsToContents()
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        off = Qt.ScrollBarPolicy.ScrollBarAlwaysOff
+        self.setHorizontalScrollBarPolicy(off)
+        self.setVerticalScrollBarPolicy(off)
+        across, down = self.horizontalHeader(), self.verticalHeader()
+        height = across.sizeHint().height() + down.length()
+        self.setFixedSize(across.length(), height)
 
     def text(self) -> str:
         """Chosen rows, or all, as cells for a spreadsheet."""

@@ -13,7 +13,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.asking_page import AskingPage
+from app.asking_page import AskingPage, on_paper
 from app.document import Document
 from app.figures import write_figure
 from app.messages import Messages
@@ -290,9 +290,10 @@ class ProfilePage(AskingPage):
         self.plot.show_profile(done, kind, LIGHT)
         try:
             told = self._findings(done, kind).replace("\n\n", "\n")
-            write_figure(
-                path, self.plot, f"{caption}\n{told}", profile_csv(done, caption)
-            )
+            with on_paper(self.plot):
+                write_figure(
+                    path, self.plot, f"{caption}\n{told}", profile_csv(done, caption)
+                )
         finally:
             self.plot.at = at
             self._fill()

@@ -32,7 +32,7 @@ from app.profile_values import LevelLine, Profiled, value_at
 from app.profile_words import (
     distance_text,
     is_of_all,
-    level_line_text,
+    level_line_texts,
     short_curve_text,
 )
 from app.theme import LIGHT, SMALL, Theme
@@ -86,18 +86,20 @@ class ProfilePlot(pg.PlotWidget):
         self._mark: pg.InfiniteLine | None = None
         self._dots: pg.ScatterPlotItem | None = None
         self._named: list[tuple[pg.TextItem, Floats, Floats]] = []
+        self._distances: list[tuple[float, float, bool]] = []
 
     # -- drawing ----------------------------------------------------------------
 
     def show_profile(self, done: Profiled, kind: Kind, theme: Theme) -> None:
         """Draw another profile, or the same in another theme or on another axis."""
         self.done, self._kind, self._theme = done, kind, theme
-        self._named = []
+        self._named, self._distances = [], []
         self._dress()
         curves = [c for c in done.found.curves if c.values(kind) is not None]
         low, high = value_range(curves, kind, _DECADES if self.log else None)
-        for line in self._in_sight(low, high):
-            self._draw_level(line)
+        lines = self._in_sight(low, high)
+        for line, text in zip(lines, level_line_texts(done, lines), strict=True):
+            self._draw_level(line, text)
         if done.before is not None:
             for curve in done.before.found.curves:
                 if curve.values(kind) is not None:
@@ -238,7 +240,7 @@ class ProfilePlot(pg.PlotWidget):
         item = self.plot(x, self._ys(values), pen=pen, connect="finite")
         item.setZValue(z)
 
-    def _draw_level(self, line: LevelLine) -> None:
+    def _draw_level(self, line: LevelLine, text: str) -> None:
         assert self.done is not None
         colour = QColor(self._theme.text)
         if not is_of_all(self.done, line):
@@ -247,8 +249,9 @@ class ProfilePlot(pg.PlotWidget):
         dashed = pg.mkPen(colour, width=1.2, style=Qt.PenStyle.DashDotLine)
         ys = self._ys(line.values)
         self.plot(line.along / self._metres, ys, pen=dashed).setZValue(5)
-        item = self._words(level_line_text(self.done, line), (0.0, 1.0))
-        self._named.append((item, line.along / self._metres, ys))
+        if text:
+            item = self._words(text, (0.0, 1.0))
+            self._named.append((item, line.along / self._metres, ys))
 
     def _draw_crossings(self, curves: list[ProfileCurve]) -> None:
         """A mark where each curve meets a level, its distance beside the first."""
@@ -274,7 +277,9 @@ class ProfilePlot(pg.PlotWidget):
         self.addItem(marks)
         end = float(self.done.found.along[-1]) / self._metres
         for x, y, along in texts:
-            anchor = (1.1, 1.2) if x > 0.75 * end else (-0.1, 1.2)
+            is_left = x > 0.75 * end
+            self._distances.append((x, y, is_left))
+            anchor = (1.1, 1.2) if is_left else (-0.1, 1.2)
             item = self._words(
                 distance_text(along, self._length_unit), anchor, bold=True
             )
@@ -326,7 +331,7 @@ class ProfilePlot(pg.PlotWidget):
         curves = [
             (c.xData, c.yData) for c in self.listDataItems() if c.zValue() == CURVES
         ]
-        place_names(self.getViewBox(), self._named, curves)
+        place_names(self.getViewBox(), self._named, curves, self._distances)
 
     # -- pointing -----------------------------------------------------------------
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import (
     QModelIndex,
     QPersistentModelIndex,
+    QPoint,
     QPointF,
     QRectF,
     QSize,
@@ -13,6 +14,7 @@ from PySide6.QtCore import (
 from PySide6.QtGui import QBrush, QColor, QKeyEvent, QPainter, QPen, QResizeEvent
 from PySide6.QtWidgets import (
     QAbstractItemView,
+    QFrame,
     QHeaderView,
     QStyledItemDelegate,
     QStyleOptionViewItem,
@@ -44,6 +46,7 @@ _HEADS = (
 _BAR, _ALONE, _PER, _WAS = 1, 5, 6, 7
 #: [logical pixels]
 _NARROW = 720
+_PRINTED = 960
 _PART = Qt.ItemDataRole.UserRole
 _THIN = Qt.ItemDataRole.UserRole + 1
 
@@ -183,6 +186,19 @@ class ShareTree(QTreeWidget):
         for column in range(len(_HEADS)):
             whole_line.setFont(column, font)
         self.addTopLevelItem(whole_line)
+
+    def show_whole(self) -> None:
+        """Become as large as everything in it, to be printed."""
+        self.expandAll()
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        off = Qt.ScrollBarPolicy.ScrollBarAlwaysOff
+        self.setHorizontalScrollBarPolicy(off)
+        self.setVerticalScrollBarPolicy(off)
+        rows, index = 0, self.indexAt(QPoint(1, 1))
+        while index.isValid():
+            rows, index = rows + 1, self.indexBelow(index)
+        height = rows * self.rowHeight(self.model().index(0, 0))
+        self.setFixedSize(_PRINTED, self.header().sizeHint().height() + height)
 
     def _unclosed(self, why: Why, total: float, unit: str) -> None:
         shares = why.shares

@@ -14,7 +14,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.asking_page import AskingPage, on_paper
+from app.asking_page import AskingPage
 from app.document import Document
 from app.figures import write_figure
 from app.messages import Messages
@@ -22,7 +22,7 @@ from app.pages.plain_table import PlainTable
 from app.pages.profile_controls import choice
 from app.pages.share_tree import ShareTree
 from app.panels.panel import Words, button
-from app.theme import STEP
+from app.theme import LIGHT, STEP, qt_palette
 from app.variant_acts import with_shown
 from app.view_state import ViewState
 from app.why_values import (
@@ -44,6 +44,9 @@ from engine.layout import Layout
 from engine.retrace import csv_text
 from engine.section_currents import phasor_text
 from engine.units import LENGTH_UNITS, in_unit, significant
+
+#: Rows of a retrace in a picture, at most.
+MOST_PRINTED = 120
 
 NO_PLACE = (
     "Choose a place: select a receptor, press Why in the margins, or click an empty "
@@ -236,17 +239,36 @@ class WhyPage(AskingPage):
         if why is None:
             raise ValueError("nothing is shown")
         settings = why.request.layout.settings
-        is_retrace = self.tabs.currentIndex() == 1
-        table = shares_csv(why)
-        if is_retrace:
-            table = csv_text(
-                why.retraced, unit=settings.flux_density_unit,
-                length_unit=settings.length_unit,
-            )  # fmt: skip
-        shown = self.table if is_retrace else self.shares
         caption = with_shown(self._document, caption_text(why))
-        with on_paper(shown):
-            write_figure(path, shown, f"{caption}\n{head_text(why)}", table)
+        told = [caption, head_text(why)]
+        if self.tabs.currentIndex() == 0:
+            told += [self.net.text()] if self.net.text() else []
+            self._write_whole(path, ShareTree(), told, shares_csv(why))
+            return
+        rows = len(why.retraced.rows)
+        if rows > MOST_PRINTED:
+            told.append(f"The first {MOST_PRINTED} of {rows} rows; CSV has them all.")
+        numbers = csv_text(
+            why.retraced, unit=settings.flux_density_unit,
+            length_unit=settings.length_unit,
+        )  # fmt: skip
+        self._write_whole(path, PlainTable("Retrace"), told, numbers)
+
+    def _write_whole(
+        self, path: Path, shown: ShareTree | PlainTable, told: list[str], numbers: str
+    ) -> None:
+        """Write a copy of a view that is large enough for all that is in it."""
+        assert self.why is not None
+        shown.setPalette(qt_palette(LIGHT))
+        if isinstance(shown, ShareTree):
+            shown.show_why(self.why)
+        else:
+            heads, rows, words = _retrace_rows(self.why)
+            # The sum stands first.
+            shown.show_rows(heads, rows[: MOST_PRINTED + 1], words)
+        shown.show_whole()
+        write_figure(path, shown, "\n".join(told), numbers)
+        shown.deleteLater()
 
 
 def _retrace_rows(why: Why) -> tuple[list[str], list[list[str]], int]:

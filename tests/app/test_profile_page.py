@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import csv
+import dataclasses
 import io
 from collections.abc import Iterator
 from pathlib import Path
@@ -22,6 +23,7 @@ from app.profile_values import Profiled, ProfileRequest, profiled, value_at
 from app.profile_words import (
     crossing_texts,
     level_line_text,
+    level_line_texts,
     marked_text,
     profile_csv,
 )
@@ -129,7 +131,16 @@ def test_curves_of_different_mix_have_lines_of_their_own(layout: Layout) -> None
             at, rel=5e-3
         )
         name = done.names[curve.case]
-        assert level_line_text(done, line).endswith(f", for {name}")
+        assert level_line_text(done, line).endswith(f", mix of {name}")
+
+
+def test_lines_that_nearly_meet_have_one_name(done: Profiled) -> None:
+    kind = [x for x in done.levels if x.level == "example-a"]
+    assert len(kind) == 2
+    texts = level_line_texts(done, kind)
+    assert texts == ["Example A (invented), a line for each mix of frequencies", ""]
+    apart = dataclasses.replace(kind[1], values=2 * kind[1].values)
+    assert all("mix of" in text for text in level_line_texts(done, [kind[0], apart]))
 
 
 def test_a_line_without_length_is_told_not_plotted(layout: Layout) -> None:
@@ -149,8 +160,7 @@ def test_names_of_levels_stand_clear_of_curves_and_names() -> None:
     assert free_place(places[2:], 1.2, np.full(6, 2.0), 0.5, [curve]) == 5.0
     other = (np.linspace(5.0, 6.2, 9), np.full(9, 2.2))
     assert free_place(places[2:], 1.2, np.full(6, 2.0), 0.5, [curve, other]) == 7.0
-    # Where all is taken, the first has to do.
-    assert free_place(places[2:5], 1.2, np.full(3, 2.0), 0.5, [curve]) == 2.0
+    assert free_place(places[2:5], 1.2, np.full(3, 2.0), 0.5, [curve]) is None
 
 
 def test_crossings_are_told_with_distance_and_direction(done: Profiled) -> None:
