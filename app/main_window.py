@@ -57,6 +57,7 @@ from app.variant_band import VariantBand
 from app.view_pages import ViewPages
 from app.view_state import ViewState
 from app.views.height_rail import HeightRail
+from app.window_hints import hint_of
 from app.window_links import WindowLinks
 from app.window_menus import WindowMenus
 
@@ -136,7 +137,7 @@ class MainWindow(QMainWindow):
         box = QVBoxLayout(column)
         box.setContentsMargins(0, 0, 0, 0)
         box.setSpacing(0)
-        bars = (self.caption, self.band, self.strip, self.message_bar, self.ask_bar)
+        bars = (self.caption, self.band, self.strip, self.ask_bar, self.message_bar)
         for widget in bars:
             box.addWidget(widget)
         drawing = QHBoxLayout()
@@ -267,16 +268,7 @@ class MainWindow(QMainWindow):
 
     def tell_hint(self, *_: object) -> None:
         """Say at the foot what can be done in the drawing's place now."""
-        page, tool = self.pages.currentWidget(), self.toolbox.active
-        if page is self.section:
-            self.hint.say(
-                "Click a conductor, Shift adds; drag it or press an arrow key to move "
-                "it. Esc goes back to the drawing."
-            )
-        else:
-            is_drawn = page is self.drawings and tool is not None
-            hint = self.drawings.hint or (tool.hint if tool is not None else "")
-            self.hint.say(hint if is_drawn else "Esc goes back to the drawing.")
+        self.hint.say(hint_of(self))
 
     def show_drawing(self) -> None:
         """Show the drawing again."""
@@ -311,6 +303,7 @@ class MainWindow(QMainWindow):
         self.splitter.setVisible(not (opened and low))
         limit = 16777215 if low and opened else int(0.4 * self.height())
         self.margins.setMaximumHeight(limit)
+        self.tell_hint()
 
     def show_first_strip(self, strip: QWidget) -> None:
         """Put the strip of the first start above everything."""

@@ -119,3 +119,15 @@ def test_fit_range_without_a_map_says_so(window):
     window.drawings.plan.drawing.map_layer.set_picture(None)
     with pytest.raises(UserError, match="no settled map"):
         window.menus.acts.fit_range()
+
+
+def test_the_hint_speaks_of_the_table_that_takes_the_drawings_place(window):
+    window.resize(1024, 576)
+    open_sample(window, "small-switch-room")
+    assert "select" in window.hint.text()
+    window.margins.counts.click()
+    assert window.hint.text().startswith("Click a row to see its place.")
+    window.margins.caution.click()
+    assert window.hint.text() == "Esc goes back to the drawing."
+    window.margins.close_opened()
+    assert "select" in window.hint.text()
