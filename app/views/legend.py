@@ -5,7 +5,7 @@ from __future__ import annotations
 from html import escape
 
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
+from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen, QPixmap
 from PySide6.QtWidgets import QWidget
 
 from app.map_picture import MapPicture
@@ -34,6 +34,7 @@ class Legend(QWidget):
         super().__init__(parent)
         self._inks = inks
         self._picture: MapPicture | None = None
+        self._painted: tuple[tuple[object, ...], QPixmap] | None = None
         self.hide()
 
     def set_inks(self, inks: Inks) -> None:
@@ -75,8 +76,30 @@ class Legend(QWidget):
     def paintEvent(self, event: QPaintEvent) -> None:
         if self._picture is None:
             return
-        inks, theme = self._inks, self._inks.theme
+        state = self._state(self._picture)
+        if self._painted is None or self._painted[0] != state:
+            # Whatever moves below it asks for it again.
+            pixels = QPixmap(self.size() * self.devicePixelRatioF())
+            pixels.setDevicePixelRatio(self.devicePixelRatioF())
+            pixels.fill(Qt.GlobalColor.transparent)
+            self._paint(pixels)
+            self._painted = (state, pixels)
         painter = QPainter(self)
+        painter.drawPixmap(0, 0, self._painted[1])
+        painter.end()
+
+    def _state(self, picture: MapPicture) -> tuple[object, ...]:
+        """All that the legend looks like depends on."""
+        parent = self.parentWidget()
+        return (
+            picture.unit, picture.low, picture.high, picture.scale, picture.marks,
+            picture.is_stale, picture.is_coarse, self._inks, self.size(),
+            self.devicePixelRatioF(), parent is not None and parent.width() < _NARROW,
+        )  # fmt: skip
+
+    def _paint(self, pixels: QPixmap) -> None:
+        inks, theme = self._inks, self._inks.theme
+        painter = QPainter(pixels)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         painter.setPen(QPen(QColor(theme.hairline), 1.0))
         painter.setBrush(shade(theme.paper, 0.93))
@@ -98,6 +121,7 @@ class Legend(QWidget):
         for text in self._foot():
             painter.drawText(QPointF(x, y + inks.small_metrics.ascent()), text)
             y += line
+        painter.end()
 
     def _draw_bar(self, painter: QPainter, x: float, y: float) -> None:
         ground = QColor(self._inks.theme.paper)
