@@ -10,7 +10,14 @@ from app.views.camera import Camera
 from app.views.drawing_scene import DrawingScene
 from app.views.ground import Ground
 from app.views.inks import Inks
-from app.views.labels import PlacedLabel, draw_labels, draw_text, placed, text_box
+from app.views.labels import (
+    Label,
+    PlacedLabel,
+    draw_labels,
+    draw_text,
+    placed,
+    text_box,
+)
 from app.views.overlay_painter import draw_handle
 from app.views.picking import selected
 from app.views.projection import Sight
@@ -41,6 +48,8 @@ class PicturePainter:
         self._sight = sight
         self._ground = Ground(scene)
         self._items = StillItems()
+        self._label_state: tuple[object, ...] = ()
+        self._item_labels: dict[ShapeItem, tuple[object, list[Label]]] = {}
 
     def set_sight(self, sight: Sight) -> None:
         """Name the axes of another side."""
@@ -91,8 +100,16 @@ class PicturePainter:
             return
         is_crowded = len(visible) > _CROWDED
         found = self._scene.map_layer.labels(camera)
+        state = (camera, unit, is_crowded, self.inks)
+        before = self._item_labels if state == self._label_state else {}
+        self._label_state, self._item_labels = state, {}
         for item in visible:
-            found += item.labels(camera, unit, is_crowded=is_crowded)
+            look = item.look()
+            kept = before.get(item)
+            if kept is None or kept[0] != look:
+                kept = (look, item.labels(camera, unit, is_crowded=is_crowded))
+            self._item_labels[item] = kept
+            found += kept[1]
         frame = camera.frame.adjusted(4, 4, -4, -4)
         self.labels = placed(found, self.inks, frame, taken)
         draw_labels(painter, self.labels, self.inks)

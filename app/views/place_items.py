@@ -228,6 +228,9 @@ class ReceptorItem(ShapeItem):
         self.mark = mark
         self.set_box([mark.seen])
 
+    def look(self) -> tuple[object, ...]:
+        return (*super().look(), self.note)
+
     def paint(
         self,
         painter: QPainter,
