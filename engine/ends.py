@@ -118,6 +118,8 @@ class Ends:
     def free(self, run: Run, side: Side) -> tuple[int, ...]:
         """Indices of a run's conductors whose end goes nowhere."""
         n = len(run_geometry(run).made)
+        if run.start is run.end is None and run.id not in self.joint_of:
+            return tuple(range(n))
         return tuple([i for i in range(n) if (run.id, side, i) not in self.led])
 
     def _claim(self, joint: Joint) -> None:
