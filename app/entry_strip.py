@@ -9,11 +9,10 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-from PySide6.QtCore import QEvent, QLocale, Qt, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtCore import QEvent, Qt, Signal
+from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QComboBox,
-    QHBoxLayout,
     QLabel,
     QLineEdit,
     QToolButton,
@@ -23,10 +22,12 @@ from PySide6.QtWidgets import (
 
 from app import entry_words
 from app.entry_fields import FIELDS, LENGTH, MEANINGS
+from app.panels.panel import decimal_sign
+from app.slip import Slip
 from app.theme import BODY, STEP, theme_for
 from app.tools.drawing_tool import DrawingTool
 from app.tools.tool import Entry, Tool
-from app.wrapping import WrappingRow
+from app.wrapping import WrappingRow, group_in_row
 from engine.errors import UserError
 from engine.typed_lengths import typed_length
 
@@ -59,26 +60,27 @@ class EntryStrip(QWidget):
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
-        parts = QWidget()
-        row = WrappingRow(parts, gap=2 * STEP, margin=2 * STEP)
+        self._parts = QWidget()
+        row = WrappingRow(self._parts, gap=2 * STEP, margin=2 * STEP)
         row.addWidget(self._field_group())
         row.addWidget(self._words_line())
         row.addWidget(self._toggle_group())
         row.addWidget(self._choice_group())
-        column.addWidget(parts)
+        column.addWidget(self._parts)
         self.fault = QLabel()
         self.fault.setWordWrap(True)
         self.fault.setTextFormat(Qt.TextFormat.PlainText)
-        self.fault.setContentsMargins(2 * STEP, 0, 2 * STEP, STEP)
-        self.fault.hide()
-        column.addWidget(self.fault)
+        self._slip = Slip(self)
+        slip = QVBoxLayout(self._slip)
+        slip.setContentsMargins(2 * STEP, STEP, 2 * STEP, STEP)
+        slip.addWidget(self.fault)
         self.way.currentTextChanged.connect(self._show_way)
         self._show_way(self.way.currentText())
         self._paint_toggles()
 
     def _field_group(self) -> QWidget:
         """The way of entering and its labelled fields."""
-        group, row = _group()
+        group, row = group_in_row()
         self.way = QComboBox()
         self.way.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
         self.way.addItems([way for way in FIELDS if way != LENGTH])
@@ -115,7 +117,7 @@ class EntryStrip(QWidget):
 
     def _choice_group(self) -> QWidget:
         """What the active tool offers, and the height at which it draws."""
-        self._offered, self._choices = _group()
+        self._offered, self._choices = group_in_row()
         self.height_shown = QLabel()
         self.height_shown.setToolTip("Height at which the tool draws")
         self.height_shown.hide()
@@ -124,7 +126,7 @@ class EntryStrip(QWidget):
         return self._offered
 
     def _toggle_group(self) -> QWidget:
-        group, row = _group()
+        group, row = group_in_row()
         self.hold = self._toggle(
             "Hold 0/45/90", "Legs run at multiples of 45°", self.hold_toggled.emit
         )
@@ -190,7 +192,7 @@ class EntryStrip(QWidget):
         if self.way.currentText() == LENGTH and not text[:1].isalpha():
             text = f"go {text} toward 0"
         try:
-            found = entry_words.entry(text, unit=self._unit, decimal=_decimal_sign())
+            found = entry_words.entry(text, unit=self._unit, decimal=decimal_sign())
         except UserError as error:
             self._show_fault(self.words, str(error))
             return
@@ -222,8 +224,8 @@ class EntryStrip(QWidget):
 
     def _value(self, label: str, text: str) -> float:
         if label == "toward":
-            return entry_words.angle(text, decimal=_decimal_sign())
-        return typed_length(text, self._unit, _decimal_sign())
+            return entry_words.angle(text, decimal=decimal_sign())
+        return typed_length(text, self._unit, decimal_sign())
 
     def _entry(self, way: str, values: list[float | None]) -> Entry:
         first, second, third = values
@@ -324,6 +326,19 @@ class EntryStrip(QWidget):
             self.height_shown.setText(text)
             self.height_shown.setVisible(bool(text))
         self._offered.setVisible(bool(text or self._combos))
+        self._keep_height()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        if event.size().width() != event.oldSize().width():
+            self._parts.setMinimumHeight(0)
+            self._keep_height()
+        super().resizeEvent(event)
+
+    def _keep_height(self) -> None:
+        """Never give back a row: the drawing would move with every change of tool."""
+        needed = self._parts.heightForWidth(self.width())
+        if needed > self._parts.minimumHeight():
+            self._parts.setMinimumHeight(needed)
 
     def _show_fault(self, field: QLineEdit, sentence: str) -> None:
         warning = theme_for(self.palette()).warning
@@ -333,7 +348,7 @@ class EntryStrip(QWidget):
         self.fault.setText(sentence)
         self.fault.setToolTip(sentence)
         self.fault.setAccessibleName(sentence)
-        self.fault.show()
+        self._slip.come()
 
     def _clear_fault(self) -> None:
         if not self.fault.text():
@@ -341,7 +356,7 @@ class EntryStrip(QWidget):
         for field in (*self.fields, self.words):
             field.setStyleSheet("")
         self.fault.clear()
-        self.fault.hide()
+        self._slip.go()
         self.fault.setToolTip("")
 
     def _clear(self) -> None:
@@ -379,16 +394,3 @@ class EntryStrip(QWidget):
         widget.setAccessibleName(name)
         widget.setAccessibleDescription(meaning)
         widget.setToolTip(f"{name}: {meaning}" if name not in meaning else meaning)
-
-
-def _group() -> tuple[QWidget, QHBoxLayout]:
-    """Widgets that stay together in a row."""
-    group = QWidget()
-    row = QHBoxLayout(group)
-    row.setContentsMargins(0, 0, 0, 0)
-    row.setSpacing(STEP)
-    return group, row
-
-
-def _decimal_sign() -> str:
-    return "," if QLocale().decimalPoint() == "," else "."

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QPoint, QRect, QSize, Qt
-from PySide6.QtWidgets import QLayout, QLayoutItem, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QLayout, QLayoutItem, QWidget
+
+from app.theme import STEP
 
 
 class WrappingRow(QLayout):
@@ -104,3 +106,12 @@ class WrappingRow(QLayout):
             top = rect.top() + (rect.height() - hint.height()) // 2
             item.setGeometry(QRect(QPoint(x, top), QSize(width, hint.height())))
             x += width + self._gap
+
+
+def group_in_row() -> tuple[QWidget, QHBoxLayout]:
+    """Widgets that stay together in a row."""
+    group = QWidget()
+    row = QHBoxLayout(group)
+    row.setContentsMargins(0, 0, 0, 0)
+    row.setSpacing(STEP)
+    return group, row

@@ -433,3 +433,30 @@ def test_a_height_is_not_cut_where_names_give_way(qtbot):
     caption.show()
     assert caption._height.width() >= caption._height.sizeHint().width()
     assert caption._zone.width() < caption._zone.sizeHint().width()
+
+
+def test_nothing_moves_when_something_is_told(window, qtbot):
+    """The drawing stays under the pointer, whatever message or fault comes."""
+    drawing = window.drawings
+    before = (drawing.mapTo(window, drawing.rect().topLeft()), drawing.size())
+    window.messages.warn("The layout has no place for what was typed. " * 6)
+    window.strip.words.setText("put 3 4")
+    window.strip.words.returnPressed.emit()
+    QTest.qWait(1)
+    assert window.message_bar.slip.isVisible()
+    assert window.strip.fault.isVisible()
+    assert (drawing.mapTo(window, drawing.rect().topLeft()), drawing.size()) == before
+    slip = window.message_bar.slip
+    assert slip.height() >= slip.heightForWidth(slip.width())
+    assert window.rect().contains(slip.geometry())
+    window.message_bar.hide()
+    assert not slip.isVisible()
+
+
+def test_a_change_of_tool_never_gives_a_row_back(window):
+    heights = []
+    for tool in (*window.toolbox.tools, *window.toolbox.tools):
+        window.toolbox.activate(tool)
+        QTest.qWait(1)
+        heights.append(window.strip.height())
+    assert heights == sorted(heights)
