@@ -334,7 +334,9 @@ def _result_text(result: IssuedResult | None, unit: str) -> str:
         return "none"
     parts = []
     if result.value is not None:
-        parts.append(flux_density_text(result.value, unit, 4))
+        # A comparison is of AC or DC, whichever is of more concern.
+        kind = f" {result.kind}" if result.level and result.kind else ""
+        parts.append(flux_density_text(result.value, unit, 4) + kind)
     if result.ratio is not None:
         parts.append(f"ratio {significant(result.ratio, 4)}")
     if result.state:

@@ -60,8 +60,13 @@ class MovedResult:
 
     @property
     def relative(self) -> float | None:
-        """Change of the value over the value before; None where it has no meaning."""
+        """Change of the value over the value before; None where it has no meaning.
+
+        It has none between AC and DC, of which a comparison names the one of concern.
+        """
         if self.before is None or self.after is None:
+            return None
+        if self.before.kind != self.after.kind:
             return None
         old, new = self.before.value, self.after.value
         if old is None or new is None or old == 0:
