@@ -24,6 +24,9 @@ VARIANT = (
     "The variant “{title}” is applied to what is printed below. The attached file has "
     "the base and every variant; choose this one there to have this report again."
 )
+#: Width of a column of the printed input, and at least between columns. [mm]
+_COLUMN, _APART = 90.0, 4.0
+
 ATTACHED = (
     "These files are part of the PDF; a viewer lists them as attachments. The layout "
     "file opens in the program and gives this report again."
@@ -51,12 +54,14 @@ def appendix(told: Story, matter: Matter, attachments: Sequence[Attachment]) -> 
     else:
         text = "Omitted: the document was made without attachments."
         told.section("attachments", "Attached files", [paragraph(text)], number="A")
-    lines = input_lines(matter.layout, round(72 / 25.4 * width))
+    columns = max(1, round(width / _COLUMN))
+    room = 72 / 25.4 * (width - (columns - 1) * _APART) / columns
+    lines = input_lines(matter.layout, round(room))
     said = [PRINTED, *remarks_on("".join(lines))]
     if matter.variant is not None:
         said.insert(1, VARIANT.format(title=matter.variant.title))
     told.section("input", "Full input", [paragraph(t) for t in said], number="B")
-    told.add([Lines(lines[:MOST_LINES])])
+    told.add([Lines(lines[:MOST_LINES], columns)])
     if len(lines) > MOST_LINES:
         left = len(lines) - MOST_LINES
         told.add([paragraph(f"{left:,} more lines: see the attached layout file.")])

@@ -8,6 +8,7 @@ from dataclasses import dataclass, replace
 from reportlab.platypus import Flowable
 
 from engine.drawing import plan
+from engine.open_boards import open_board_sentences
 from engine.picture import Picture, Raster, map_picture
 from engine.report import (
     appendix,
@@ -39,7 +40,7 @@ from engine.report.section_figures import (
     section_pictures,
 )
 from engine.report.story import Story
-from engine.report.text import bullets, gap, paragraph
+from engine.report.text import NOTE, bullets, gap, paragraph
 from engine.report.wording import CAUTIONS
 from engine.report.zone_tables import contribution_tables, zone_section
 
@@ -56,7 +57,7 @@ class Drawn:
 
     rooms: tuple[tuple[str, Sheeted], ...]
     maps: tuple[tuple[str, Picture, Orientation], ...]
-    sections: tuple[Picture, ...]
+    sections: tuple[tuple[Picture, str], ...]
 
 
 def drawn(matter: Matter, sheet: Paper) -> Drawn:
@@ -73,7 +74,7 @@ def drawn(matter: Matter, sheet: Paper) -> Drawn:
 def _map_pictures(
     matter: Matter, sheet: Paper
 ) -> Sequence[tuple[str, Picture, Orientation]]:
-    made = []
+    made: list[tuple[str, Picture, Orientation]] = []
     whole = plan(matter.layout, matter.conductors)
     for each in matter.maps:
         shown = plan_of_map(whole, each)
@@ -148,7 +149,10 @@ def _site(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> None:
     told.subsection("Settings", inputs.settings(layout, words.unit, width))
     for k, (title, sheeted_picture) in enumerate(pictures.rooms):
         key = "drawings" if k == 0 else f"drawing {k}"
-        told.figure(title, key, sheeted_picture.picture, sheeted_picture.orientation)
+        shown = f"{title}: rooms, zones, runs and equipment. Tables have their places."
+        told.figure(
+            title, key, sheeted_picture.picture, sheeted_picture.orientation, shown
+        )
     if not pictures.rooms:
         told.subsection("Drawings", [paragraph("Omitted: nothing is drawn.")])
 
@@ -163,6 +167,7 @@ def _sources(told: Story, matter: Matter, pictures: Drawn) -> None:
             sources.currents(layout, case, width),
             key="currents" if k == 0 else "",
         )
+    told.add([paragraph(sources.NET_CURRENT, NOTE)])
     told.subsection("Runs", sources.runs(layout, width), key="runs")
     told.subsection(
         "Sections of the runs", _sections(told, matter, pictures), key="sections"
@@ -178,11 +183,12 @@ def _sections(told: Story, matter: Matter, pictures: Drawn) -> list[Flowable]:
     if not pictures.sections:
         return [paragraph("Omitted: no run was entered.")]
     made: list[Flowable] = []
-    wide = pictures.sections[0].width
+    wide = pictures.sections[0][0].width
     across = max(1, int((told.sheet.text_width + _GAP + 0.01) // (wide + _GAP)))
     for first in range(0, len(pictures.sections), across):
         row = pictures.sections[first : first + across]
-        made += [FigureRow(row, _GAP), gap(2.0)]
+        shown, alternatives = zip(*row, strict=True)
+        made += [FigureRow(shown, _GAP, alternatives), gap(2.0)]
     count = len(numbered_sections(matter.layout))
     if count > MOST_SECTIONS:
         text = f"Sections without a drawing here: {count - MOST_SECTIONS}."
@@ -211,14 +217,14 @@ def _results(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> No
             "One map for each height of a zone, in the load case that leads there. All "
             "have one colour scale; iso-lines carry their values."
         )
-        told.section("maps", "Results: maps", [paragraph(text)])
         if matter.left_out:
-            left = f"Heights of zones without a map here: {matter.left_out}."
-            told.add([paragraph(left)])
+            text += f" Heights of zones without a map here: {matter.left_out}."
+        told.section("maps", "Results: maps", [paragraph(text)])
     else:
         told.omitted("maps", "Results: maps", _no_map(matter))
     for k, (title, picture, lying) in enumerate(pictures.maps):
-        told.figure(title, f"map {k}", picture, lying)
+        shown = f"Map, {title}. The attached files have the values."
+        told.figure(title, f"map {k}", picture, lying, shown)
     tables = contribution_tables(assessment, words, width)
     tables += retraced(matter, words, width)
     grown = sensitivity.load_growth(assessment, words, width)
@@ -263,7 +269,8 @@ def _last(told: Story, matter: Matter, words: Wording) -> None:
     told.section(
         "remarks", "Remarks not cleared", closing.remarks(matter, words, width)
     )
-    told.section("cautions", "Cautions and deferrals", bullets(CAUTIONS))
+    cautions = (*CAUTIONS, *open_board_sentences(matter.layout))
+    told.section("cautions", "Cautions and deferrals", bullets(cautions))
     told.section("conclusions", "Conclusions and actions", closing.conclusions(matter))
     told.section("revisions", "Revisions issued", closing.revisions(matter, width))
     told.section("signatures", "Signatures", closing.signatures(matter, width))

@@ -6,22 +6,27 @@ import io
 from collections.abc import Sequence
 
 import numpy as np
-from PIL import Image
+from PIL.Image import fromarray
 from reportlab.lib.units import mm
 from reportlab.lib.utils import ImageReader
 from reportlab.pdfgen.canvas import Canvas
-from reportlab.platypus import Flowable
+from reportlab.platypus import Flowable, Image
 
 from engine.picture import Picture, Raster, Stroke, Words
 from engine.picture.marks import Colour, Points
 from engine.report.page import BOLD_FONT, FONT
+from engine.report.structure import Element
 
 
 class Figure(Flowable):  # type: ignore[misc]
-    """A picture that keeps its size: a millimetre of it is one on paper."""
+    """A picture that keeps its size: a millimetre of it is one on paper.
 
-    def __init__(self, picture: Picture) -> None:
+    `alternative` says what it shows, for those who cannot see it.
+    """
+
+    def __init__(self, picture: Picture, alternative: str) -> None:
         super().__init__()
+        self._element = Element("Figure", alternative)
         self.picture = picture
         self.width = picture.width * mm
         self.height = picture.height * mm
@@ -30,14 +35,26 @@ class Figure(Flowable):  # type: ignore[misc]
         return self.width, self.height
 
     def draw(self) -> None:
-        _draw(self.canv, self.picture)
+        with self.canv.drawn_for(self._element):
+            _draw(self.canv, self.picture)
+
+
+class Logo(Image):  # type: ignore[misc]
+    """The picture of a house, a figure of the document."""
+
+    def draw(self) -> None:
+        with self.canv.drawn_for(Element("Figure", "Logo of the author's house")):
+            super().draw()
 
 
 class FigureRow(Flowable):  # type: ignore[misc]
     """Pictures side by side, their upper edges level, `gap` apart. [mm]"""
 
-    def __init__(self, pictures: Sequence[Picture], gap: float) -> None:
+    def __init__(
+        self, pictures: Sequence[Picture], gap: float, alternatives: Sequence[str]
+    ) -> None:
         super().__init__()
+        self._elements = [Element("Figure", text) for text in alternatives]
         self._pictures, self._gap = pictures, gap
         self.width = (sum(p.width + gap for p in pictures) - gap) * mm
         self.height = max(picture.height for picture in pictures) * mm
@@ -46,12 +63,13 @@ class FigureRow(Flowable):  # type: ignore[misc]
         return self.width, self.height
 
     def draw(self) -> None:
-        canvas: Canvas = self.canv
+        canvas = self.canv
         left = 0.0
-        for picture in self._pictures:
+        for picture, element in zip(self._pictures, self._elements, strict=True):
             canvas.saveState()
             canvas.translate(left * mm, self.height - picture.height * mm)
-            _draw(canvas, picture)
+            with canvas.drawn_for(element):
+                _draw(canvas, picture)
             canvas.restoreState()
             left += picture.width + self._gap
 
@@ -96,7 +114,7 @@ def _draw_raster(canvas: Canvas, raster: Raster) -> None:
     alpha = raster.rgba[::-1, :, 3:].astype(float) / 255.0
     over = raster.rgba[::-1, :, :3] * alpha + 255.0 * (1.0 - alpha)
     file = io.BytesIO()
-    Image.fromarray(np.round(over).astype(np.uint8)).save(file, "PNG")
+    fromarray(np.round(over).astype(np.uint8)).save(file, "PNG")
     file.seek(0)
     left, bottom, right, top = raster.box
     canvas.drawImage(

@@ -8,10 +8,11 @@ import io
 
 from reportlab.lib.units import mm
 from reportlab.lib.utils import ImageReader
-from reportlab.platypus import Flowable, Image
+from reportlab.platypus import Flowable
 
 from engine.embedded_picture import DAMAGE, TooManyPixels, decoded
 from engine.report.choices import Paper
+from engine.report.figures import Logo
 from engine.report.matter import Matter
 from engine.report.names import Wording
 from engine.report.story import Story
@@ -54,7 +55,7 @@ def letterhead(matter: Matter, most: int = 800) -> list[Flowable]:
             made.append(paragraph("The logo is damaged and not printed.", NOTE))
         else:
             scale = min(LOGO[0] * mm / wide, LOGO[1] * mm / high)
-            picture = Image(io.BytesIO(data), wide * scale, high * scale, hAlign="LEFT")
+            picture = Logo(io.BytesIO(data), wide * scale, high * scale, hAlign="LEFT")
             # Read once: the file is laid out several times.
             picture._img = ImageReader(io.BytesIO(data))
             made += [picture, gap(2.0)]

@@ -8,6 +8,7 @@ from reportlab.platypus import Flowable
 
 from engine.decisions import worst_comparisons
 from engine.drawing import plan
+from engine.open_boards import open_board_sentences
 from engine.origins import assumptions
 from engine.picture import Picture, map_picture
 from engine.picture.room_drawing import room_drawing
@@ -28,7 +29,7 @@ from engine.report.text import (
     fact_table,
     gap,
     paragraph,
-    subheading,
+    part_heading,
     table,
 )
 from engine.report.wording import NO_LEVELS, NOTE_CAUTIONS
@@ -38,6 +39,9 @@ from engine.units import text_beside
 
 #: Characters of a name.
 _NAME = 60
+
+#: Zones at open enclosures that are named.
+_MOST_BOARDS = 3
 
 #: A note has no more pages.
 MOST_PAGES = 2
@@ -75,7 +79,7 @@ def note_story(
     cases = [case.title for case in matter.layout.cases if case.counted]
     facts = [
         ("Question", brief(title.question, room.text) or "not stated"),
-        *([] if matter.variant is None else [("Variant", matter.variant.title)]),
+        *([] if matter.variant is None else [("Variant", brief(matter.shown, 120))]),
         ("Load cases that count", brief(", ".join(cases), 300)),
         ("Scope", brief(title.scope, room.text) or "not stated"),
     ]
@@ -84,14 +88,14 @@ def note_story(
     made += _answer(matter, words, width, room)
     picture = _picture(matter, sheet, room)
     if picture is not None:
-        made += [gap(1.0), Figure(picture), gap(1.0)]
-    made += subheading("Assumptions", room=20.0)
+        made += [gap(1.0), Figure(*picture), gap(1.0)]
+    made += part_heading("Assumptions")
     made += bullets(_assumed(matter, words, room), SMALL_BULLET)
     made += _open_remarks(matter, room)
-    made += subheading("Cautions", room=20.0)
-    made += bullets(NOTE_CAUTIONS, SMALL_BULLET)
+    made += part_heading("Cautions")
+    made += bullets([*NOTE_CAUTIONS, *_open_boards(matter)], SMALL_BULLET)
     if title.conclusions:
-        made += subheading("Conclusions of the author", room=20.0)
+        made += part_heading("Conclusions of the author")
         made += [paragraph(brief(title.conclusions, room.text))]
     made.append(
         paragraph(matter.identity.sentence() + ". The full report has the rest.")
@@ -180,17 +184,20 @@ def _leading_map(matter: Matter) -> HeightMap | None:
     return matter.maps[0] if matter.maps else None
 
 
-def _picture(matter: Matter, sheet: Paper, room: Room) -> Picture | None:
+def _picture(matter: Matter, sheet: Paper, room: Room) -> tuple[Picture, str] | None:
+    """The picture of the note, and what it shows."""
     width, height = sheet.text_width, room.picture * sheet.text_height
     leading = _leading_map(matter)
     if leading is not None:
         whole = plan(matter.layout, matter.conductors)
         shown = plan_of_map(whole, leading)
-        return map_picture(leading.subjects[0], shown, width=width, height=height)
+        subject = leading.subjects[0]
+        drawn = map_picture(subject, shown, width=width, height=height)
+        return drawn, f"Map, {subject.title}"
     views = room_views(matter)
     if not views:
         return None
-    return room_drawing(views[0], width=width, height=height)
+    return room_drawing(views[0], width=width, height=height), views[0].title
 
 
 def _assumed(matter: Matter, words: Wording, room: Room) -> list[str]:
@@ -209,6 +216,15 @@ def _assumed(matter: Matter, words: Wording, room: Room) -> list[str]:
     return texts
 
 
+def _open_boards(matter: Matter) -> list[str]:
+    """What the values do not say where workers stand at an open enclosure."""
+    found = open_board_sentences(matter.layout)
+    texts = [brief(text, 300) for text in found[:_MOST_BOARDS]]
+    if len(found) > _MOST_BOARDS:
+        texts.append(f"and {len(found) - _MOST_BOARDS} more such zones")
+    return texts
+
+
 def _open_remarks(matter: Matter, room: Room) -> list[Flowable]:
     if not matter.remarks:
         return []
@@ -219,6 +235,6 @@ def _open_remarks(matter: Matter, room: Room) -> list[Flowable]:
     if more > 0:
         texts.append(f"and {more} more, listed in the report")
     return [
-        *subheading("Remarks not cleared", room=20.0),
+        *part_heading("Remarks not cleared"),
         *bullets(texts, SMALL_BULLET),
     ]

@@ -39,7 +39,7 @@ def options(matter: Matter, words: Wording, width: float) -> list[Flowable]:
         chosen = [0, *range(first, min(first + _ACROSS, len(found.columns)))]
         rows = [
             (
-                f"{row.title}\n"
+                f"{_place(row.title, is_zone=row.is_zone)}\n"
                 + (names.get(row.level, row.level) or f"{row.kind}, no level"),
                 *(_cell(row.cells[k], words) for k in chosen),
             )
@@ -48,13 +48,20 @@ def options(matter: Matter, words: Wording, width: float) -> list[Flowable]:
         heads = ("Place, level", *(found.columns[k].title for k in chosen))
         shares = (20, *([80 / len(chosen)] * len(chosen)))
         made.append(table(heads, rows, shares, width))
+    zones = {row.place: row.is_zone for row in found.rows}
     raised = [
-        f"{names.get(variant, variant)} raises {words.name(place)}"
+        f"{names.get(variant, variant)} raises "
+        + _place(names.get(place, place), is_zone=zones.get(place, True))
         for variant, place in found.raised()
         if variant is not None
     ]
     made += bullets(raised or ["No option raises any place by more than 1 %."])
     return made
+
+
+def _place(title: str, *, is_zone: bool) -> str:
+    """A zone and a receptor may have one name."""
+    return title if is_zone else f"{title} (receptor)"
 
 
 def _names(found: VariantComparison, words: Wording) -> dict[str, str]:

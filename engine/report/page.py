@@ -10,7 +10,6 @@ from typing import Any
 from reportlab.lib.units import mm
 from reportlab.pdfbase import pdfmetrics
 from reportlab.pdfbase.ttfonts import TTFont
-from reportlab.pdfgen.canvas import Canvas
 from reportlab.platypus import BaseDocTemplate, Flowable, Frame, PageTemplate
 
 import engine
@@ -19,7 +18,7 @@ from engine.items import TitleData
 from engine.printed_text import BOLD, REGULAR, one_line
 from engine.report.attachments import Attachment, attach
 from engine.report.choices import MARGIN, TITLE_BLOCK, Paper
-from engine.report.scripts import ScriptCanvas
+from engine.report.structure import StructuredCanvas
 from engine.report.title_block import draw_title_block
 
 FONT = "Lodestead Sans"
@@ -152,7 +151,7 @@ def _laid_out(
     document.attached = attachments
     story = make_story(before.pages)
     document.expected = max(1, len(story))
-    document.build(story, canvasmaker=ScriptCanvas)
+    document.build(story, canvasmaker=StructuredCanvas)
     return Laid(file.getvalue(), document.begun, document.page)
 
 
@@ -168,10 +167,11 @@ def _template(sheet: Paper, front: Frontispiece, count: int) -> PageTemplate:
         bottomPadding=0,
     )
 
-    def draw(canvas: Canvas, document: BaseDocTemplate) -> None:
+    def draw(canvas: StructuredCanvas, document: BaseDocTemplate) -> None:
         area = (MARGIN, MARGIN, sheet.text_width)
         told = (front.shown, f"{document.page} of {count}")
-        draw_title_block(canvas, front.title, area, told, (FONT, BOLD_FONT))
+        with canvas.artifact("Pagination"):
+            draw_title_block(canvas, front.title, area, told, (FONT, BOLD_FONT))
 
     return PageTemplate(
         id=sheet.orientation,

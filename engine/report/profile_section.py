@@ -36,7 +36,8 @@ def profile_section(matter: Matter, words: Wording, width: float) -> list[Flowab
         if picture is None:
             made.append(paragraph("No current flows, or all of the line is masked."))
             continue
-        made += [Figure(picture), gap(1.0)]
+        shown = f"Chart of B along the profile {result.profile.title}. {listed}"
+        made += [Figure(picture, shown), gap(1.0)]
         made += _table(result, words, width)
         count = sum(c.values(k) is not None for c in result.found.curves for k in KINDS)
         if count > MOST_CURVES:

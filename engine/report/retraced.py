@@ -8,13 +8,14 @@ from engine.report.matter import Matter, TracedPlace
 from engine.report.names import Wording
 from engine.report.text import paragraph, subheading, table
 from engine.report.words import frequency_text, length, place
+from engine.retrace import RetraceRow
 from engine.section_currents import phasor_text
 
 #: Rows of one place; the attached file has all.
 _MOST_ROWS = 16
 
 EXPLAINED = (
-    "The RMS resultant at this point as the sum over conductors and frequencies: the "
+    "The RMS resultant at a point as the sum over conductors and frequencies: the "
     "share of each is the part of its field along the whole field, negative where it "
     "weakens it. A reader can compute each from current, distance and direction."
 )
@@ -26,8 +27,17 @@ def retraced(matter: Matter, words: Wording, width: float) -> list[Flowable]:
     for k, traced in enumerate(matter.traced):
         title = f"{traced.title} taken apart by conductor"
         made += subheading(title, "retraced" if k == 0 else "")
+        if k == 0:
+            made.append(paragraph(EXPLAINED))
         made += _one(traced, words, width)
     return made
+
+
+def _named(row: RetraceRow, words: Wording) -> str:
+    """A conductor by the name of its item, and its place there."""
+    return words.name(row.item) + row.conductor.removeprefix(row.item).replace(
+        "/", ", ", 1
+    )
 
 
 def _one(traced: TracedPlace, words: Wording, width: float) -> list[Flowable]:
@@ -43,7 +53,7 @@ def _one(traced: TracedPlace, words: Wording, width: float) -> list[Flowable]:
     ordered = sorted(found.rows, key=lambda row: -abs(row.share))
     rows = [
         (
-            row.conductor,
+            _named(row, words),
             row.role,
             frequency_text(row.frequency),
             phasor_text(row.current),
@@ -65,4 +75,4 @@ def _one(traced: TracedPlace, words: Wording, width: float) -> list[Flowable]:
         f"Share [{words.unit}]",
     )  # fmt: skip
     made = table(heads, rows, (19, 9, 9, 15, 10, 9, 9, 9, 11), width)
-    return [paragraph(EXPLAINED), paragraph(text + "."), made]
+    return [paragraph(text + "."), made]

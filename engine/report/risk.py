@@ -13,8 +13,9 @@ from engine.units import flux_density_text, text_beside
 
 FORMULA = (
     "U = u_rel · B + u_abs is the expanded uncertainty at coverage factor k, as "
-    "entered. B is compared with the reference level L by the states below; the rule "
-    "and who chose it decide only how a summary counts them."
+    "entered; “from the budget”: k times the standard uncertainty of the place's own "
+    "budget stands for u_rel · B. B is compared with the reference level L by the "
+    "states below; the rule and who chose it decide only how a summary counts them."
 )
 
 _RULES = {
@@ -39,7 +40,7 @@ def uncertainty(assessment: Assessment, words: Wording, width: float) -> list[Fl
         ("Decision rule", f"{rule.kind}: {_RULES[rule.kind]}"),
         ("Chosen by", rule.chosen_by or "nobody named"),
     ]
-    made += [fact_table(facts, width), state_table(width)]
+    made += [fact_table(facts, width), *state_table(width)]
     made += subheading("Levels that lie within the uncertainty")
     near = [c for c in assessment.comparisons if "U reaches" in c.state]
     near = [c for c in near if not at_risk(c)]
@@ -57,7 +58,9 @@ def _row(title: str, entered: Uncertainty, words: Wording) -> tuple[str, ...]:
     absolute = flux_density_text(entered.absolute, words.unit).rpartition(" ")[0]
     return (
         title,
-        f"{100 * entered.relative:g} %",
+        "from the budget"
+        if entered.kind == "from the budget"
+        else f"{100 * entered.relative:g} %",
         absolute,
         f"{entered.coverage:g}",
         entered.basis or "not stated",

@@ -7,7 +7,6 @@ Korean a font of the machine is used where one is found that can be embedded.
 from __future__ import annotations
 
 import sys
-import unicodedata
 from collections.abc import Iterator
 from functools import cache
 from itertools import groupby
@@ -20,6 +19,7 @@ from reportlab.pdfbase.ttfonts import TTFError, TTFont
 from reportlab.pdfgen.canvas import Canvas
 
 from engine.printed_text import REGULAR
+from engine.report.directions import displayed, is_right_to_left
 
 FALLBACK = "Lodestead Other Scripts"
 
@@ -108,20 +108,30 @@ def remarks_on(text: str) -> tuple[str, ...]:
             f"Characters without a picture in the fonts at hand: {len(lacking)}; they "
             "are printed as boxes. The attached layout file has them."
         )
-    if any(unicodedata.bidirectional(c) in ("R", "AL") for c in set(text)):
+    if is_right_to_left(text):
         said.append(
-            "Text that is written from right to left is printed in the order in which "
-            "it is stored."
+            "Text that is written from right to left stands here in its order on "
+            "paper, Arabic letters joined; a program that takes text out of the PDF "
+            "may turn it round. The attached layout file has it as entered."
         )
     return tuple(said)
 
 
 class ScriptCanvas(Canvas):  # type: ignore[misc]
-    """A canvas whose strings may hold characters of other scripts."""
+    """A canvas whose strings may hold characters of other scripts.
+
+    Strings are given in the order in which they are read.
+    """
 
     def drawString(  # noqa: N802
         self, x: float, y: float, text: str, *arguments: Any, **options: Any
     ) -> None:
+        self.draw_ordered(x, y, displayed(text), *arguments, **options)
+
+    def draw_ordered(
+        self, x: float, y: float, text: str, *arguments: Any, **options: Any
+    ) -> None:
+        """Draw a string that is in its order on paper already."""
         parts = [*runs(text)]
         if not any(is_other for is_other, _ in parts):
             super().drawString(x, y, text, *arguments, **options)

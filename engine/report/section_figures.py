@@ -58,12 +58,12 @@ def section_numbers(layout: Layout) -> dict[str, str]:
     }
 
 
-def section_pictures(layout: Layout, width: float) -> tuple[Picture, ...]:
-    """Drawings of the sections, each `width` wide. [mm]"""
+def section_pictures(layout: Layout, width: float) -> tuple[tuple[Picture, str], ...]:
+    """Drawings of the sections, each `width` wide, and what each shows. [mm]"""
     return tuple(_pictures(layout, width))
 
 
-def _pictures(layout: Layout, width: float) -> Iterator[Picture]:
+def _pictures(layout: Layout, width: float) -> Iterator[tuple[Picture, str]]:
     unit = SECTION_UNITS.get(layout.settings.length_unit, "mm")
     names = {item.id: item.title for item in layout.items()}
     for each in numbered_sections(layout)[:MOST_SECTIONS]:
@@ -81,4 +81,5 @@ def _pictures(layout: Layout, width: float) -> Iterator[Picture]:
             f"{text[:400]}; {overall_text(placed, unit)}. Dimensions in {unit}.",
         )
         view = SectionView(f"{each.number}", placed, unit, lines)
-        yield section_drawing(view, width=width, height=TALLEST)
+        shown = f"Section {each.number}. {' '.join(lines)}"
+        yield section_drawing(view, width=width, height=TALLEST), shown

@@ -156,7 +156,7 @@ def currents(layout: Layout, case: LoadCase, width: float) -> list[Flowable]:
     notes = sorted(
         {f"{names.get(n.circuit, n.circuit)}: {_angle_note(n)}" for n in phasors.notes}
     )
-    return made + bullets(notes) + [paragraph(NET_CURRENT, NOTE)]
+    return made + bullets(notes)
 
 
 def _current_rows(

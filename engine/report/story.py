@@ -96,16 +96,24 @@ class Story:
             self.add(part)
 
     def figure(
-        self, title: str, key: str, picture: Picture, lying: Orientation
+        self,
+        title: str,
+        key: str,
+        picture: Picture,
+        lying: Orientation,
+        alternative: str,
     ) -> None:
-        """Add a picture under a heading, on a page that lies as told."""
+        """Add a picture under a heading, on a page that lies as told.
+
+        `alternative` says what it shows, for those who cannot see it.
+        """
         if lying != self._lying:
             self._turn(lying)
         else:
             room = picture.height + 10.5
             self.flowables.append(CondPageBreak(room * mm))
         self.flowables.append(Heading(title, SUBHEADING, 1, key))
-        self.flowables += [Figure(picture), gap(3.0)]
+        self.flowables += [Figure(picture, alternative), gap(3.0)]
 
     def page(self, key: str) -> str:
         """ "page 7", where `key` begins."""

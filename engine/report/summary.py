@@ -13,13 +13,14 @@ from engine.places import Receptor, Zone
 from engine.report.matter import Matter
 from engine.report.names import Wording
 from engine.report.story import Story
-from engine.report.text import STRONG, bullets, paragraph, table
+from engine.report.text import NOTE, STRONG, bullets, paragraph, table
 from engine.report.wording import (
     CAUTIONS,
     INDIVIDUAL,
     NO_LEVELS,
     STATE_RULES,
     STATE_SENTENCES,
+    STATE_VALUE,
 )
 from engine.report.words import place
 from engine.results import STATES, Assessment, Comparison
@@ -213,7 +214,8 @@ def largest_sentences(assessment: Assessment, words: Wording) -> list[str]:
     ]
 
 
-def state_table(width: float) -> Flowable:
-    """The five states and their rules."""
+def state_table(width: float) -> list[Flowable]:
+    """The five states, their rules, and to which value these are applied."""
     rows = [(s, rule, STATE_SENTENCES[s]) for s, rule in STATE_RULES]
-    return table(("State", "Holds when", "In words"), rows, (20, 35, 45), width)
+    heads = ("State", "Holds when", "In words")
+    return [table(heads, rows, (20, 35, 45), width), paragraph(STATE_VALUE, NOTE)]

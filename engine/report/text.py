@@ -12,15 +12,15 @@ from reportlab.lib.units import mm
 from reportlab.platypus import (
     CondPageBreak,
     Flowable,
-    Paragraph,
     Spacer,
     Table,
     TableStyle,
 )
 
 from engine.printed_text import fitted, one_line, printable, text_width, wrapped
+from engine.report.flowing_text import flowing_text
 from engine.report.page import BOLD_FONT, FONT
-from engine.report.scripts import markup
+from engine.report.structure import Element, TableMarks
 
 INK = Color(0.08, 0.09, 0.11)
 HAIR = Color(0.62, 0.65, 0.68)
@@ -53,6 +53,8 @@ HEADING = ParagraphStyle(
 SUBHEADING = ParagraphStyle(
     "subheading", parent=HEADING, fontSize=9.5, leading=12, spaceBefore=7, spaceAfter=3
 )
+#: A note has no sections: its parts are what sections are elsewhere.
+PART = ParagraphStyle("part", parent=SUBHEADING)
 TITLE = ParagraphStyle("title", parent=HEADING, fontSize=17, leading=21, spaceBefore=0)
 NOTE = ParagraphStyle("note", parent=BODY, fontSize=7.5, leading=10)
 BULLET = ParagraphStyle("bullet", parent=BODY, leftIndent=10, bulletIndent=0)
@@ -61,9 +63,18 @@ SMALL_BULLET = ParagraphStyle(
 )
 
 
-def paragraph(text: str, style: ParagraphStyle = BODY) -> Paragraph:
+#: Kinds of elements, by the name of the style.
+_KINDS = {"title": "H1", "heading": "H2", "part": "H2", "subheading": "H3"}
+
+
+def paragraph(text: str, style: ParagraphStyle = BODY) -> Flowable:
     """Text as a paragraph; what looks like markup in it is printed as it stands."""
-    return Paragraph(markup(printable(text)).replace("\n", "<br/>"), style)
+    return flowing_text(text, style, _KINDS.get(style.name, "P"))
+
+
+def introduced(text: str, made: Table) -> list[Flowable]:
+    """A table with a sentence before it, which never stands alone below a page."""
+    return [CondPageBreak((least_height(made) + 12.0) * mm), paragraph(text), made]
 
 
 def paragraphs(text: str) -> list[Flowable]:
@@ -112,9 +123,14 @@ def subheading(text: str, key: str = "", *, room: float = 32.0) -> list[Flowable
     return [CondPageBreak(room * mm), paragraph(text[:MOST_IN_HEADING], SUBHEADING)]
 
 
+def part_heading(text: str) -> list[Flowable]:
+    """A heading of a part of a note."""
+    return [CondPageBreak(20.0 * mm), paragraph(text, PART)]
+
+
 def bullets(texts: Sequence[str], style: ParagraphStyle = BULLET) -> list[Flowable]:
     """Texts as a list."""
-    return [Paragraph(markup(printable(text)), style, bulletText="–") for text in texts]
+    return [flowing_text(text, style, "LI", "–") for text in texts]
 
 
 class ContentsLine(Flowable):  # type: ignore[misc]
@@ -124,6 +140,7 @@ class ContentsLine(Flowable):  # type: ignore[misc]
         super().__init__()
         self._text, self._key = text, key
         self._page = "" if page is None else str(page)
+        self._element = Element("TOCI")
         self.height = 13.5
 
     def wrap(self, width: float, _height: float) -> tuple[float, float]:
@@ -131,7 +148,10 @@ class ContentsLine(Flowable):  # type: ignore[misc]
         return width, self.height
 
     def draw(self) -> None:
-        canvas: Any = self.canv
+        with self.canv.drawn_for(self._element):
+            self._draw(self.canv)
+
+    def _draw(self, canvas: Any) -> None:
         size = BODY.fontSize
         canvas.setFillColor(INK)
         canvas.setFont(FONT, size)
@@ -151,35 +171,47 @@ class ContentsLine(Flowable):  # type: ignore[misc]
 
 
 class Lines(Flowable):  # type: ignore[misc]
-    """Lines of text as they are, as many as there are; each is kept on one line.
+    """Lines of text as they are, in columns; each is kept on one line.
 
-    Lines wider than the page must be broken before.
+    Lines wider than a column must be broken before. The columns of a page are read
+    one after the other.
     """
 
     SIZE, LEADING = 6.0, 7.6
 
-    def __init__(self, lines: Sequence[str]) -> None:
+    def __init__(
+        self, lines: Sequence[str], columns: int = 1, element: Element | None = None
+    ) -> None:
         super().__init__()
-        self._lines = lines
+        self._lines, self._columns = lines, columns
+        self._element = Element("P") if element is None else element
 
     def wrap(self, width: float, _height: float) -> tuple[float, float]:
-        self.width, self.height = width, self.LEADING * len(self._lines)
+        self.width, self.height = width, self.LEADING * self._rows()
         return self.width, self.height
 
+    def _rows(self) -> int:
+        return -(-len(self._lines) // self._columns)
+
     def split(self, _width: float, height: float) -> list[Flowable]:
-        fit = int(height / self.LEADING)
+        fit = int(height / self.LEADING) * self._columns
         if fit < 1:
             return []
-        return [Lines(self._lines[:fit]), Lines(self._lines[fit:])]
+        return [
+            Lines(part, self._columns, self._element)
+            for part in (self._lines[:fit], self._lines[fit:])
+        ]
 
     def draw(self) -> None:
         canvas: Any = self.canv
-        canvas.setFillColor(INK)
-        canvas.setFont(FONT, self.SIZE)
-        y = self.height - self.SIZE
-        for line in self._lines:
-            canvas.drawString(0, y, line)
-            y -= self.LEADING
+        rows = self._rows()
+        with canvas.drawn_for(self._element):
+            canvas.setFillColor(INK)
+            canvas.setFont(FONT, self.SIZE)
+            for k, line in enumerate(self._lines):
+                column, row = divmod(k, rows)
+                x = column * self.width / self._columns
+                canvas.drawString(x, self.height - self.SIZE - row * self.LEADING, line)
 
 
 def gap(height: float = 2.0) -> Spacer:
@@ -214,10 +246,12 @@ def table(
     cells = [
         [_lines(head, room, bold=True) for head, room in _with_room(heads, columns)]
     ]
-    ends = [0]
-    for row in rows:
+    ends, owners = [0], [0]
+    for k, row in enumerate(rows, start=1):
         wrapped_row = [_lines(text, room) for text, room in _with_room(row, columns)]
-        cells += _parts(wrapped_row)
+        parts = _parts(wrapped_row)
+        cells += parts
+        owners += [k] * len(parts)
         ends.append(len(cells) - 1)
     heights = [max(len(cell) for cell in row) * LEADING + 2 * PADDING for row in cells]
     made = Table(
@@ -229,6 +263,7 @@ def table(
         hAlign="LEFT",
         spaceBefore=2,
         spaceAfter=6,
+        renderCB=TableMarks(owners),
     )
     made.setStyle(TableStyle([*_CELLS, *_rules(ends)]))
     return made

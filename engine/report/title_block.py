@@ -40,10 +40,10 @@ def draw_title_block(
     shown, sheet = told
     rows: tuple[tuple[Cell, ...], ...] = (
         (
-            ("Project", title.project, 0.42),
-            ("Client", title.client, 0.22),
+            ("Project", title.project, 0.36),
+            ("Client", title.client, 0.29),
             ("Variant", shown, 0.2),
-            ("Calculated with", f"Lodestead {engine.__version__}", 0.16),
+            ("Calculated with", f"Lodestead {engine.__version__}", 0.15),
         ),
         (
             ("Document", title.document_number, 0.18),

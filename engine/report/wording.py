@@ -23,6 +23,16 @@ STATE_RULES: tuple[tuple[str, str], ...] = (
     ("not evaluable", "a source, a value or a category is missing, or a fault blocks"),
 )
 
+#: What B is in the rules of the states.
+STATE_VALUE = (
+    "B in these rules is the largest value that was found, or at a receptor its value. "
+    "Where a zone's largest value was found not above L and an upper bound of it is "
+    "proven, the rules are applied to that bound with its own U instead, so that no "
+    "place between the points looked at is missed; a bound that is above L by more "
+    "than its U says “above, U reaches”, since only the bound is there. Where no bound "
+    "is proven the refined maximum stands, and the notes say so: “no bound proven”."
+)
+
 INDIVIDUAL = (
     "Individual assessment is required for persons at particular risk, with their "
     "employer, their physician and the maker of any device; no state is given."
@@ -119,8 +129,9 @@ METHOD: tuple[str, ...] = (
     "field of a current that does not close has no physical meaning. Parallel "
     "conductors share their current equally unless stated otherwise: an assumption.",
     "U is the expanded uncertainty, relative part times B plus an absolute part, as "
-    "entered. B is compared with the reference level L by the five states below; the "
-    "decision rule and who chose it decide only how a summary counts them.",
+    "entered or from the budget of the place. B is compared with the reference level L "
+    "by five states; the decision rule and who chose it decide only how a summary "
+    "counts them. " + STATE_VALUE,
 )
 
 NOT_MODELLED: tuple[str, ...] = (

@@ -9,7 +9,7 @@ from reportlab.platypus import Flowable
 from engine.proof_words import proof_of_comparison, proof_of_maximum
 from engine.report.names import Wording
 from engine.report.summary import state_text
-from engine.report.text import bullets, paragraph, table
+from engine.report.text import bullets, introduced, paragraph, table
 from engine.report.words import frequency_text, length, place
 from engine.results import (
     Assessment,
@@ -52,7 +52,7 @@ def contribution_tables(
 ) -> list[Flowable]:
     """Circuits that matter at the largest value of each zone."""
     details = [
-        (z.zone.title, words.name(m.case), m.details)
+        (z.zone.title, f"{words.name(m.case)}, {m.kind}", m.details)
         for z in assessment.zones
         for m in z.maxima
     ]
@@ -153,7 +153,7 @@ def frequency_tables(
         f"L [{words.unit}]", "B/L",
     )  # fmt: skip
     text = "By frequency, at the place of the comparison, in the level's own basis:"
-    return [paragraph(text), table(heads, rows, (48, 13, 13, 13, 13), width)]
+    return introduced(text, table(heads, rows, (48, 13, 13, 13, 13), width))
 
 
 def _frequency_rows(
@@ -217,7 +217,8 @@ def _maxima_table(
         "Notes",
     )  # fmt: skip
     text = "Largest RMS resultant of each zone by its spatial rule, without any level:"
-    return [paragraph(text), table(heads, rows, (14, 14, 10, 15, 14, 13, 20), width)]
+    made = table(heads, rows, (14, 14, 10, 15, 14, 13, 20), width)
+    return introduced(text, made)
 
 
 def _contribution_table(

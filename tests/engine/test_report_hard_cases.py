@@ -323,7 +323,7 @@ def test_characters_without_a_font_are_noted(monkeypatch):
     monkeypatch.setattr(scripts, "fallback", frozenset)
     text = text_of(report_pdf(filled_matter("Raum 数据 שלום")))
     assert "Characters without a picture in the fonts at hand: 2" in text
-    assert "written from right to left is printed in the order" in text
+    assert "written from right to left stands here in its order on paper" in text
 
 
 def test_a_font_that_cannot_be_embedded_is_passed_over(tmp_path):
