@@ -23,6 +23,7 @@ from engine.revisions import (
     Changes,
     MovedResult,
     Recomputed,
+    as_issued,
     changes_since,
     issued,
     issued_results,
@@ -212,6 +213,41 @@ def _result(result: IssuedResult | None, unit: str) -> str:
     if result.state:
         parts.append(result.state)
     return ", ".join(parts) or "no value"
+
+
+def opening_sentences(
+    layout: Layout, assessment: Assessment, unit: str | None = None
+) -> tuple[str, ...]:
+    """What is to be said when a layout that may have been issued is opened.
+
+    Parameters
+    ----------
+    assessment : Assessment
+        Of this layout, by this program.
+    unit : str, optional
+        Display unit of flux density; None: the layout's.
+
+    Returns
+    -------
+    tuple of str
+        Empty where nothing was issued.
+    """
+    if not layout.revisions:
+        return ()
+    last = layout.revisions[-1]
+    again = recomputed(layout, assessment)
+    if again is not None:
+        shown = unit or layout.settings.flux_density_unit
+        return (recomputed_text(again, names_of(layout), shown),)
+    if not as_issued(layout, last):
+        return (
+            f"The layout was edited after revision {last.revision} was issued; its "
+            "results are not held against what was issued then.",
+        )
+    return (
+        f"Revision {last.revision} was issued without results, so nothing can be held "
+        "against it.",
+    )
 
 
 def recomputed_text(again: Recomputed, names: dict[str, str], unit: str) -> str:

@@ -14,14 +14,17 @@ from engine.commands.revisions import (
     as_json,
     as_text,
     changes_between,
+    freeze,
     issue_revision,
     names_of,
+    opening_sentences,
     recomputed_text,
 )
-from engine.errors import UserError
+from engine.errors import ComputationCancelled, UserError
 from engine.layout import Layout
 from engine.layout_file import read, write
 from engine.places import Receptor
+from engine.report.choices import Choices
 from engine.revisions import (
     as_issued,
     changes_since,
@@ -164,6 +167,50 @@ def test_an_edited_layout_is_not_held_against_its_revision():
     found = made()
     edited = replace(found, receptors=())
     assert recomputed(edited, assess(edited)) is None
+
+
+def test_opening_says_what_became_of_an_issued_layout():
+    found = made()
+    assert opening_sentences(layout(), assess(layout())) == ()
+    (same,) = opening_sentences(found, assess(found))
+    assert "every result is the same" in same
+    entry = found.revisions[0]
+    (result,) = entry.results
+    moved = replace(result, value=result.value / 1.02)
+    older = replace(found, revisions=(replace(entry, results=(moved,)),))
+    (text,) = opening_sentences(older, assess(older), "mG")
+    assert "1 results differ" in text
+    assert "mG" in text
+    assert "+2 %" in text
+    edited = replace(found, receptors=())
+    (text,) = opening_sentences(edited, assess(edited))
+    assert "edited after revision A" in text
+    bare = replace(found, revisions=(replace(entry, results=()),))
+    (text,) = opening_sentences(bare, assess(bare))
+    assert "without results" in text
+
+
+def test_a_revision_that_cannot_be_frozen_leaves_no_half(tmp_path: Path, monkeypatch):
+    def refuse(*_):
+        raise UserError("no room")
+
+    monkeypatch.setattr("engine.commands.revisions.write", refuse)
+    choices = Choices(validate=False)
+    with pytest.raises(UserError, match="no room"):
+        freeze(layout(), tmp_path / "room.json", "B", "2024-05-01", choices=choices)
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_freezing_can_be_cancelled(tmp_path: Path):
+    with pytest.raises(ComputationCancelled):
+        freeze(
+            layout(),
+            tmp_path / "room.json",
+            "B",
+            "2024-05-01",
+            cancelled=lambda: True,
+        )
+    assert list(tmp_path.iterdir()) == []
 
 
 def test_issue_freezes_layout_and_report(tmp_path: Path):
