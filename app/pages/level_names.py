@@ -13,8 +13,8 @@ Floats = npt.NDArray[np.float64]
 
 #: Places that are tried along a line.
 _TRIED = 7
-#: Rows over a line that are tried.
-_ROWS = 2
+#: Rows that are tried: on the line, under it, over the first.
+_ROWS = (0.0, -1.05, 1.0)
 #: Of the distance of a crossing. [px]
 _WIDE = 70
 
@@ -46,7 +46,7 @@ def place_names(
         places = np.linspace(first, last, _TRIED)
         # Of lines that lie close, names stand one over the other.
         left, y = first, float(np.interp(first, xs, ys))
-        for step in range(_ROWS):
+        for step in _ROWS:
             lows = np.interp(places, xs, ys) + step * row
             found = free_place(places, width, lows, row, taken)
             if found is not None:

@@ -16,6 +16,7 @@ from PySide6.QtWidgets import (
     QAbstractItemView,
     QFrame,
     QHeaderView,
+    QStyle,
     QStyledItemDelegate,
     QStyleOptionViewItem,
     QTreeWidget,
@@ -72,10 +73,13 @@ class _Bars(QStyledItemDelegate):
         high = rect.height() * (0.28 if index.data(_THIN) else 0.5)
         box = QRectF(middle, rect.center().y() - high / 2, length, high).normalized()
         painter.save()
-        colour = QColor(theme.accent)
+        colour, ink = QColor(theme.accent), QColor(theme.text)
+        if option.state & QStyle.StateFlag.State_Selected:
+            # On the accent of a chosen line, a bar of it would be lost.
+            colour = ink = option.palette.highlightedText().color()
         if part < 0:
-            painter.setPen(QPen(QColor(theme.text), 1.2))
-            painter.setBrush(QBrush(QColor(theme.text), Qt.BrushStyle.BDiagPattern))
+            painter.setPen(QPen(ink, 1.2))
+            painter.setBrush(QBrush(ink, Qt.BrushStyle.BDiagPattern))
         else:
             painter.setPen(Qt.PenStyle.NoPen)
             colour.setAlphaF(0.6 if index.data(_THIN) else 1.0)
