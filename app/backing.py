@@ -75,8 +75,9 @@ def place_backing_picture(
     kept = QByteArray()
     buffer = QBuffer(kept)
     buffer.open(QIODevice.OpenModeFlag.WriteOnly)
-    image.save(buffer, "PNG")
-    return _place(document, read_picture_bytes(kept.data()), view)
+    # Bytes, which the types ask for, are refused.
+    image.save(buffer, "PNG")  # type: ignore[call-overload]
+    return _place(document, read_picture_bytes(bytes(kept.data())), view)
 
 
 def replace_backing_file(

@@ -5,6 +5,7 @@ The same words stand on every export: quantity, heights or upright plane, load c
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 
 from PySide6.QtCore import QEvent, Qt, Signal
@@ -258,7 +259,9 @@ def _choice(tip: str) -> QComboBox:
     return box
 
 
-def _refill(box: QComboBox, entries: list[tuple[str, object]], chosen: object) -> None:
+def _refill(
+    box: QComboBox, entries: Sequence[tuple[str, object]], chosen: object
+) -> None:
     """Put `entries` (text, data) into `box`, with `chosen` or else the first shown."""
     shown = [(box.itemText(i), box.itemData(i)) for i in range(box.count())]
     if shown != entries:

@@ -146,9 +146,9 @@ class LayoutPreview(QWidget):
                 names.setdefault(tuple(round(c) for c in corners), []).append(
                     place.title
                 )
-            for corners, titles in names.items():
-                self._name(painter, " · ".join(titles), QRectF(*corners), taken)
-            taken += [QRectF(*corners) for corners in names]
+            for box_of, titles in names.items():
+                self._name(painter, " · ".join(titles), QRectF(*box_of), taken)
+            taken += [QRectF(*box_of) for box_of in names]
 
     def _name(
         self, painter: QPainter, text: str, box: QRectF, taken: list[QRectF]

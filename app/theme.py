@@ -155,7 +155,8 @@ def apply(theme: Theme) -> None:
     outlined = QPalette(palette)
     outlined.setColor(QPalette.ColorRole.Window, QColor(theme.line).lighter(140))
     for name in _OUTLINED:
-        QApplication.setPalette(outlined, name)
+        # Bytes, which the types ask for, are refused.
+        QApplication.setPalette(outlined, name)  # type: ignore[arg-type]
 
 
 def contrast(first: str, second: str) -> float:

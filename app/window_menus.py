@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from functools import partial
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject
@@ -166,7 +167,7 @@ class WindowMenus(QObject):
             "&View",
             [
                 *(
-                    Command(name, lambda shown=name: w.drawings.show_view(shown), "",
+                    Command(name, partial(w.drawings.show_view, name), "",
                             "Seen from above" if name == "Plan"
                             else f"Elevation, {name.lower()}")
                     for name in VIEWS
@@ -179,7 +180,7 @@ class WindowMenus(QObject):
                 Command("Fit", w.drawings.fit, "", "Show everything (Home)"),
                 LINE,
                 *(
-                    Command(name, lambda shown=name: w.panels.show_panel(shown),
+                    Command(name, partial(w.panels.show_panel, name),
                             f"Ctrl+{key}", f"Show the panel {name}")
                     for key, name in enumerate(w.panels.names, start=1)
                 ),

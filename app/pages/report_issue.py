@@ -41,6 +41,7 @@ class ReportIssue(QWidget):
         super().__init__()
         self._document = document
         self._proposed = ("", "", "")
+        self._listed: tuple[IssuedRevision, ...] | None = None
         self.revision = _line("Revision", "Name of the revision, such as B")
         self.date = _line("Date", "As it is to be printed")
         self.name = _line(
@@ -98,11 +99,11 @@ class ReportIssue(QWidget):
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(STEP)
         column.addLayout(rows)
-        for widget in (
+        for part in (
             changed, self.note, self.explained, self.reason, self.issue, heading,
             self.nothing, self.list, self.changes, self.again,
         ):  # fmt: skip
-            column.addWidget(widget)
+            column.addWidget(part)
         column.addStretch(1)
         self.list.selectionModel().selectionChanged.connect(lambda *_: self._enable())
 
@@ -126,7 +127,10 @@ class ReportIssue(QWidget):
             if field.text() == old:
                 field.setText(new)
         self._proposed = proposed
-        issued = self._document.whole.revisions[::-1]
+        if self._document.whole.revisions == self._listed:
+            return
+        self._listed = self._document.whole.revisions
+        issued = self._listed[::-1]
         rows = [
             (r.revision, r.date, r.program_version, " ".join(r.note.split()))
             for r in issued

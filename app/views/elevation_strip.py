@@ -58,16 +58,16 @@ class ElevationStrip(QWidget):
         box.addLayout(row)
         self.head = QLabel(f"{view} · vertical plane")
         row.addWidget(self.head)
-        self.depth = ValueField(
+        self.depth_field = ValueField(
             self._read,
             lambda metres: length_text(metres, self._unit, decimal_sign()),
             self.depth_typed.emit,
             name="Place of the vertical plane",
             tip="Where the map's vertical plane stands; or drag its line on the plan",
         )
-        self.depth.line.setMaximumWidth(26 * STEP)
+        self.depth_field.line.setMaximumWidth(26 * STEP)
         # Why a text was refused needs the width of the strip, not of its field.
-        box.addWidget(self.depth.reason)
+        box.addWidget(self.depth_field.reason)
         self.less = _step("−", "One step of the grid less")
         self.more = _step("+", "One step of the grid more")
         self.less.clicked.connect(lambda: self.stepped.emit(-1))
@@ -93,7 +93,7 @@ class ElevationStrip(QWidget):
             row.addWidget(self.line)
         else:
             self.head.setText(f"Vertical plane {ELEVATIONS[view].axis}")
-            row.addWidget(self.depth)
+            row.addWidget(self.depth_field)
             for button in (self.less, self.more, self.through):
                 row.addWidget(button)
         row.addStretch(1)
@@ -101,7 +101,7 @@ class ElevationStrip(QWidget):
     def show_depth(self, metres: float, unit: str) -> None:
         """Show where the plane stands. [m]"""
         self._unit = unit
-        self.depth.set_value(metres)
+        self.depth_field.set_value(metres)
 
     def show_lines(self, lines: Sequence[DrawnLine], shown: DrawnLine | None) -> None:
         """Offer the drawn lines."""

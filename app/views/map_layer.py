@@ -142,11 +142,11 @@ class MapLayer(QGraphicsItem):
                 if (high - low).min() * camera.scale < 40.0:
                     continue
                 at = camera.pixel(0.5 * (low + high))
-                places = tuple((at.x(), at.y() + dy) for dy in (18.0, -18.0, 36.0))
+                spots = tuple((at.x(), at.y() + dy) for dy in (18.0, -18.0, 36.0))
                 found.append(
                     Label(
                         area.reason,
-                        places,
+                        spots,
                         Importance.ISO_LINE,
                         colour=self.inks.theme.muted,
                     )

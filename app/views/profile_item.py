@@ -68,8 +68,8 @@ class ProfileItem(ShapeItem):
         along = end - camera.pixel(self._line[-2])
         side = _across(along)
         back = QPointF(-side.y(), side.x())
-        painter.drawLine(end, end + back + 0.6 * side)
-        painter.drawLine(end, end + back - 0.6 * side)
+        painter.drawLine(end, end + back + side * 0.6)
+        painter.drawLine(end, end + back - side * 0.6)
         return []
 
     def labels(self, camera: Camera, unit: str, *, is_crowded: bool) -> list[Label]:

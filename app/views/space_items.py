@@ -16,7 +16,7 @@ from app.views.inks import TWO_COLOURED, YELLOW, conductor_colour
 from app.views.space_camera import Point3, SpaceCamera
 from app.views.space_drawn import Drawn, Faces, Letters, Lines, joined, lit, rgba
 from engine.circuits import LoadCase
-from engine.conductor import Conductor
+from engine.conductor import Bundled, Conductor
 from engine.conductors import conductors
 from engine.errors import UserError
 from engine.layout import Layout
@@ -134,7 +134,7 @@ class SpaceItems:
             try:
                 parts, self.problem = conductors(layout), ""
             except UserError as error:
-                parts, self.problem = (), str(error)
+                parts, self.problem = Bundled(), str(error)
             self.scene = space_scene(layout, parts, case)
             self._edges = {}
             self._axes = _axes(parts)

@@ -117,7 +117,7 @@ def test_through_selection_takes_the_worst_place_of_a_zone(window):
 
 def test_a_typed_plane_is_taken_and_a_wrong_one_says_why(window):
     window.drawings.show_view("Looking +y")
-    field = window.drawings.strips["Looking +y"].depth
+    field = window.drawings.strips["Looking +y"].depth_field
     field.line.selectAll()
     QTest.keyClicks(field.line, "1.6")
     QTest.keyClick(field.line, Qt.Key.Key_Return)
