@@ -17,6 +17,7 @@ from app import report_pages
 from app.document import Document
 from app.jobs import Jobs
 from app.logo import LARGEST, choose_logo
+from app.main_window import MainWindow
 from app.message_bar import JobBar
 from app.messages import Messages
 from app.pages.report_logo import ReportLogo
@@ -157,6 +158,9 @@ def test_a_revision_is_two_files_and_one_step(
     frozen, printed = tmp_path / "hall-rev-B.json", tmp_path / "hall-rev-B.pdf"
     assert printed.read_bytes().startswith(b"%PDF")
     assert document.undo_stack.count() == steps + 1
+    # The newest stands first.
+    listed = [row[0] for row in reports.page.issue.list.contents.rows]
+    assert listed == ["B"]
     assert document.undo_stack.undoText() == "Issue revision B"
     assert layout_file.read(frozen) == document.whole
     listed = document.whole.revisions[-1]
@@ -350,3 +354,25 @@ def test_progress_shows_what_users_typed_as_text(qtbot, window):
     window.jobs.started.emit("Issuing revision <b>B</b>")
     assert bar._text.text() == "Issuing revision <b>B</b>"
     assert bar._text.textFormat() == Qt.TextFormat.PlainText
+
+
+def test_the_window_opens_the_page_by_key_and_escape_leaves_it(qtbot):
+    window = MainWindow(Document(LAYOUT), Messages())
+    qtbot.addWidget(window)
+    window.show()
+    actions = {a.text(): a for a in window.actions()}
+    assert actions["Report …"].shortcut().toString() == "Ctrl+Shift+R"
+    shortcuts = [a.shortcut().toString() for a in window.actions()]
+    assert shortcuts.count("Ctrl+Shift+R") == 1
+    actions["Report …"].trigger()
+    page = window.view_pages.report.page
+    assert window.pages.currentWidget() is page
+    assert page.maker.is_making or page._soon.isActive()
+    qtbot.keyClick(page.sheets, Qt.Key.Key_Escape)
+    assert window.pages.currentWidget() is window.drawings
+    assert not page.maker.is_making
+    actions["Issue revision …"].trigger()
+    assert page.tabs.tabText(page.tabs.currentIndex()) == "Issued"
+    assert page.issue.revision.text() == "A"
+    window.files.may_leave = lambda: True
+    window.close()
