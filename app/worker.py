@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 import time
 from collections.abc import Callable
 from threading import Condition, Thread
@@ -11,6 +12,9 @@ Task = TypeVar("Task")
 
 #: [s]
 _LONGEST_REST = 0.25
+
+#: A thread that computes lets the window's own go on after so long. [s]
+_TURN = 0.0005
 
 #: Whether something newer has been asked, or the end has come.
 Outdated = Callable[[], bool]
@@ -47,6 +51,7 @@ class Worker(Generic[Task]):
         self._next: list[Task] = []
         self._is_busy = True
         self._is_closed = False
+        sys.setswitchinterval(_TURN)
         self._thread = Thread(target=self._run, name=name, daemon=True)
         self._thread.start()
 

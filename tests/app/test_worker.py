@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 import time
 from itertools import pairwise
 from threading import Event
@@ -68,3 +69,11 @@ def test_a_rest_is_idle_and_does_not_hold_up_the_end() -> None:
     began = time.monotonic()
     worker.close()
     assert time.monotonic() - began < 0.2
+
+
+def test_the_window_s_own_thread_waits_no_more_than_a_millisecond_for_its_turn() -> (
+    None
+):
+    worker = Worker("test", lambda task, outdated: None)
+    worker.close()
+    assert sys.getswitchinterval() <= 1e-3
