@@ -62,7 +62,7 @@ def level_line_texts(done: Profiled, lines: Sequence[LevelLine]) -> list[str]:
         own = [x for x in lines if (x.level, x.kind) == (line.level, line.kind)]
         means = [float(x.values.mean()) for x in own]
         if len(own) > 1 and max(means) < _NEARLY * min(means):
-            text = f"{line.title}, a line for each mix of frequencies"
+            text = f"{line.title}, at each mix"
             texts.append(text if line is own[0] else "")
         else:
             texts.append(level_line_text(done, line))
@@ -78,7 +78,7 @@ def level_line_text(done: Profiled, line: LevelLine) -> str:
     elif line.value is not None:
         text += f" ≈ {flux_density_text(line.value, unit)}"
     else:
-        text += ", at this mix of frequencies"
+        text += ", at this mix"
     if is_of_all(done, line):
         return text
     own = [done.found.curves[k] for k in line.curves]
@@ -89,7 +89,7 @@ def level_line_text(done: Profiled, line: LevelLine) -> str:
     ):
         names = [done.names.get(c, c) for c in dict.fromkeys(c.case for c in own)]
     more = f" and {len(names) - 2} more" if len(names) > 2 else ""
-    text = text.removesuffix(", at this mix of frequencies")
+    text = text.removesuffix(", at this mix")
     return f"{text}, mix of {' and '.join(names[:2])}{more}"
 
 

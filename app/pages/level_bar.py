@@ -38,6 +38,9 @@ from engine.picture import OffsetLines
 NO_LEVEL = "Enter a reference level with its source under Ref. levels first."
 NOWHERE = "nothing: lines only"
 
+#: From this height of the window on, several places are told. [logical pixels]
+_HIGH = 700
+
 
 class LevelBar(QWidget):
     """Level and target; the answer in words, and as marks for the drawings.
@@ -251,9 +254,11 @@ class LevelBar(QWidget):
         parts = [told(self.answer)]
         found = self._factors(self.answer)
         if found:
+            # In a low window the drawing needs the room.
+            most = 4 if self.window().height() >= _HIGH else 1
             parts.append(
                 "The calculated value equals the level at "
-                + ", ".join(f"{f.times} × this case ({f.title})" for f in found[:4])
+                + ", ".join(f"{f.times} × this case ({f.title})" for f in found[:most])
                 + ", all its currents together"
             )
         self.words.setText(". ".join(parts) + ".")

@@ -70,7 +70,8 @@ class ProfilePlot(pg.PlotWidget):
         self.setToolTip(
             "RMS flux density against the distance along the line. The pointer marks "
             "the place on the plan; arrow keys step, Page Up and Page Down go from "
-            "crossing to crossing"
+            "crossing to crossing. A level “at this mix” is where a curve's own mix of "
+            "frequencies meets it"
         )
         self.setMouseEnabled(False, False)
         self.setMenuEnabled(False)

@@ -132,7 +132,8 @@ class EllipsePlot(_Plot):
         self.plot([0, major], [0, 0], pen=pen)
         self.plot([0, 0], [0, minor], pen=pen)
         text = f"semi-major {flux_text(ellipse.semi_major, unit)} RMS"
-        self._words(text, theme, (major, 0.0), (1.0, -0.7))
+        # In the middle, where a small plot has room for it.
+        self._words(text, theme, (0.0, -minor), (0.5, -0.7))
         text = f"semi-minor {flux_text(ellipse.semi_minor, unit)} RMS"
         self._words(text, theme, (0.0, minor), (0.5, 1.7))
 

@@ -138,7 +138,7 @@ def test_lines_that_nearly_meet_have_one_name(done: Profiled) -> None:
     kind = [x for x in done.levels if x.level == "example-a"]
     assert len(kind) == 2
     texts = level_line_texts(done, kind)
-    assert texts == ["Example A (invented), a line for each mix of frequencies", ""]
+    assert texts == ["Example A (invented), at each mix", ""]
     apart = dataclasses.replace(kind[1], values=2 * kind[1].values)
     assert all("mix of" in text for text in level_line_texts(done, [kind[0], apart]))
 
