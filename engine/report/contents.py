@@ -214,8 +214,8 @@ def _results(told: Story, matter: Matter, pictures: Drawn, words: Wording) -> No
     )
     if pictures.maps:
         text = (
-            "One map for each height of a zone, in the load case that leads there. All "
-            "have one colour scale; iso-lines carry their values."
+            "One map for each height of a zone, in the load case of most concern "
+            "there. All have one colour scale; iso-lines carry their values."
         )
         if matter.left_out:
             text += f" Heights of zones without a map here: {matter.left_out}."

@@ -18,6 +18,7 @@ from engine.report.note import MOST_PAGES, ROOMS, Room, note_story
 from engine.report.page import (
     UNWATCHED,
     Frontispiece,
+    Laid,
     Pages,
     Watch,
     pdf,
@@ -76,17 +77,24 @@ def _note(
     attachments: Sequence[Attachment],
     watch: Watch,
 ) -> bytes:
-    """The note with as much as two pages hold."""
-    for room in ROOMS:
-        laid = pdf(
+    """The note with as much as two pages hold, or on one where little is cut for it."""
+
+    def laid_out(room: Room) -> Laid:
+        return pdf(
             front,
             sheet,
             partial(_note_pages, matter, words, sheet, room),
             attachments=attachments,
             watch=watch,
         )
+
+    for room in ROOMS:
+        laid = laid_out(room)
         if laid.count <= MOST_PAGES:
             break
+    if room == ROOMS[0] and laid.count > 1:
+        shorter = laid_out(ROOMS[1])
+        laid = shorter if shorter.count == 1 else laid
     return laid.content
 
 

@@ -17,7 +17,7 @@ from engine.places import Zone
 from engine.report.drawn_parts import between
 from engine.report.matter import HeightMap
 from engine.report.words import length
-from engine.results import Assessment, Maximum, ZoneResult
+from engine.results import STATES, Assessment, Maximum, ZoneResult
 
 #: More maps than these are not printed; the report says how many are left out.
 MOST_MAPS = 24
@@ -45,8 +45,9 @@ class Wanted:
 def wanted_maps(assessment: Assessment) -> tuple[Wanted, ...]:
     """A map for each height of a zone, in the counted load case that leads there.
 
-    The case that leads has the zone's largest value. Zones with one height above the
-    datum and one leading case share a map.
+    The case that leads has the zone's comparison of most concern; without any, its
+    largest value. Zones with one height above the datum and one leading case share a
+    map.
     """
     layout = assessment.layout
     cases = {case.id: case for case in layout.cases}
@@ -71,6 +72,12 @@ def wanted_maps(assessment: Assessment) -> tuple[Wanted, ...]:
 
 def _leading(result: ZoneResult, cases: dict[str, LoadCase]) -> Maximum | None:
     known = [m for m in result.maxima if m.case in cases]
+    compared = [c for c in result.comparisons if c.counted and c.ratio is not None]
+    if compared:
+        worst = max(compared, key=lambda c: (STATES.index(c.state), c.ratio or 0.0))
+        for m in known:
+            if (m.case, m.kind) == (worst.case, worst.kind):
+                return m
     counted = [m for m in known if cases[m.case].counted]
     return max(counted or known, key=lambda m: m.value, default=None)
 

@@ -169,6 +169,10 @@ def test_a_note_has_two_pages_at_most(name):
     assert "not medical advice" in " ".join(pages(name, "note"))
 
 
+def test_a_note_that_nearly_fits_on_one_page_has_one():
+    assert len(pages("small-switch-room", "note")) == 1
+
+
 @pytest.mark.parametrize("kind", ["report", "note"])
 @pytest.mark.parametrize("name", NAMES)
 def test_nothing_of_a_sample_is_outside_the_margins(name, kind):

@@ -10,7 +10,15 @@ from msgspec.structs import replace
 from pypdf import PdfReader
 
 from engine.assessment import assess
-from engine.circuits import BalancedCurrent, Circuit, LoadCase
+from engine.circuits import (
+    BalancedCurrent,
+    Circuit,
+    CircuitFactor,
+    ConductorCurrent,
+    DirectCurrents,
+    LoadCase,
+)
+from engine.criteria import LevelRange, LevelRanges, ReferenceLevel
 from engine.errors import ComputationCancelled, UserError
 from engine.layout import Layout, Settings
 from engine.layout_file import decode
@@ -105,6 +113,53 @@ def test_an_assessment_of_another_layout_is_refused(tmp_path):
     other = assess(layout(rms=100.0))
     with pytest.raises(UserError, match="another layout or of an earlier state"):
         write_report(layout(), tmp_path / "report.pdf", assessment=other)
+
+
+def test_maps_show_the_case_of_most_concern():
+    """The level counts the direct field less: the case with less of it leads."""
+    drawn = layout()
+    circuit = drawn.circuits[0]
+    currents = (
+        ConductorCurrent(label="L+", rms=3000.0),
+        ConductorCurrent(label="L-", rms=3000.0, angle=180.0),
+    )
+    battery = Circuit(
+        id="battery",
+        name="Battery",
+        supply="dc",
+        base_frequency=0,
+        demand=DirectCurrents(currents=currents),
+    )
+    level = ReferenceLevel(
+        id="a",
+        name="Invented",
+        source="Invented for this test",
+        edition="first",
+        values=LevelRanges(
+            ranges=(
+                LevelRange(f_from=0, f_to=0, coefficient=1.0),
+                LevelRange(f_from=50, f_to=50, coefficient=1e-6),
+            )
+        ),
+    )
+    section = Flat(circuits=(CircuitShare(circuit="battery"),), order=("L+", "L-"))
+    line = replace(drawn.runs[0], id="line", name="Line", section=section)
+    drawn = replace(
+        drawn,
+        circuits=(circuit, battery),
+        runs=(*drawn.runs, replace(line, route=((0.5, 2.5, 2.5), (3.5, 2.5, 2.5)))),
+        zones=(replace(drawn.zones[0], category="workers", levels=("a",)),),
+        levels=(replace(level, category="workers"),),
+        load_cases=(
+            LoadCase(id="ac", factors=(CircuitFactor(circuit="battery", factor=0),)),
+            LoadCase(id="dc", factors=(CircuitFactor(circuit="feeder", factor=0.5),)),
+        ),
+    )
+    (zone,) = assess(drawn).zones
+    largest = max(zone.maxima, key=lambda m: m.value)
+    assert (largest.case, largest.kind) == ("dc", "DC")
+    (wanted,) = maps.wanted_maps(assess(drawn))
+    assert wanted.case.id == "ac"
 
 
 def with_variant():
