@@ -10,6 +10,7 @@ from pathlib import Path
 from xml.etree import ElementTree
 
 import pytest
+from pypdf import PdfReader
 
 ROOT = Path(__file__).parents[2]
 SAMPLES = ROOT / "sample_layouts"
@@ -132,6 +133,20 @@ def test_report_and_maps_are_written(tmp_path):
     head, first = (tmp_path / "m.csv").read_text(encoding="utf-8").splitlines()[:2]
     assert head.startswith("x [m],y [m],z [m],B RMS resultant [µT]")
     assert float(first.split(",")[2]) == 1
+
+
+def test_a_variant_is_reported_on_the_paper_that_is_asked_for(tmp_path):
+    layout, note = SAMPLES / "imaging-corridor.json", tmp_path / "n.pdf"
+    chosen = ("--note", "--variant", "Second bond removed")
+    lying = ("--paper", "A3", "--orientation", "portrait")
+    run("report", layout, note, *chosen, *lying)
+    page = PdfReader(note).pages[0]
+    assert "Second bond removed" in page.extract_text()
+    size = float(page.mediabox.width), float(page.mediabox.height)
+    # ISO 216: 297 mm by 420 mm.
+    assert size == pytest.approx((297 / 25.4 * 72, 420 / 25.4 * 72), abs=0.1)
+    message = run("report", layout, note, "--note", "--variant", "None", code=2)
+    assert "no variant “None”" in message
 
 
 def test_a_map_of_another_kind_is_refused(tmp_path):
