@@ -11,7 +11,7 @@ from typing import Generic, TypeVar
 Task = TypeVar("Task")
 
 #: [s]
-_LONGEST_REST = 0.25
+_LONGEST_REST = 0.1
 
 #: A thread that computes lets the window's own go on after so long. [s]
 _TURN = 0.0005
@@ -85,7 +85,8 @@ class Worker(Generic[Task]):
         while True:
             with self._condition:
                 self._is_busy = False
-                self._rest(min(self._rest_of * took, _LONGEST_REST))
+                if self._next:
+                    self._rest(min(self._rest_of * took, _LONGEST_REST))
                 while not self._next and not self._is_closed:
                     self._condition.wait()
                 if self._is_closed:
