@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt, QTimer, Signal
-from PySide6.QtGui import QHideEvent, QKeyEvent
+from PySide6.QtGui import QHideEvent, QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QHBoxLayout,
     QLabel,
@@ -165,6 +165,15 @@ class LevelBar(QWidget):
             self.found.emit(None, None)
         super().hideEvent(event)
 
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._make_room()
+
+    def _make_room(self) -> None:
+        """Let the drawing not take the last line of the words."""
+        needed = self.words.heightForWidth(self.words.width())
+        self.words.setMinimumHeight(max(0, needed))
+
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:
             self.leave()
@@ -262,6 +271,7 @@ class LevelBar(QWidget):
                 + ", all its currents together"
             )
         self.words.setText(". ".join(parts) + ".")
+        self._make_room()
         self.found.emit(self.answer, found[0] if found else None)
 
     def _factors(self, answer: Reached) -> tuple[PlaceFactor, ...]:
