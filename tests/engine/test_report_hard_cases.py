@@ -26,7 +26,7 @@ from engine.report.choices import Choices
 from engine.report.document import report_pdf
 from engine.report.matter import Matter
 from engine.report.page import Watch
-from engine.report.wording import INDIVIDUAL
+from engine.report.wording import INDIVIDUAL, STATE_VALUE
 from engine.results import Assessment, CaseResult, ReceptorResult, ZoneResult
 
 #: Each longer than any room for it, or of a kind that breaks careless printing.
@@ -188,6 +188,23 @@ def test_persons_at_particular_risk_have_no_state(kind):
     assert INDIVIDUAL in text
     assert "not evaluable: " not in text.partition("State Holds when")[0]
     assert "below the reference level, uncertainty included (below)" not in text
+
+
+@pytest.mark.parametrize("kind", ["report", "note"])
+def test_workers_at_an_open_board_are_a_caution(kind):
+    found = matter()
+    case = replace(found.layout.load_cases[0], open_enclosures=("cubicle",))
+    made = replace(found.layout, load_cases=(case,))
+    results = dataclasses.replace(found.assessment, layout=made)
+    opened = dataclasses.replace(found, assessment=results)
+    said = "its values say nothing about electric shock, arc flash"
+    assert said in text_of(report_pdf(opened, Choices(kind=kind)))
+    assert said not in text_of(report_pdf(found, Choices(kind=kind)))
+
+
+def test_the_rules_of_the_states_tell_of_proven_bounds():
+    text = text_of(report_pdf(matter()))
+    assert text.count(STATE_VALUE) == 2  # with the method, and with the states
 
 
 def test_blocking_remarks_say_not_evaluable_and_why():
