@@ -55,6 +55,7 @@ _NOTHING = 1e-15
 _BYTES_PER_LEG = 40
 _BYTES_AT_ONCE = 150_000_000
 _POINTS_AT_ONCE = 32_768
+_MANY_AT_ONCE = 262_144
 _VALUES_AT_ONCE = 1_000_000
 
 
@@ -284,9 +285,12 @@ class _Made:
 
     def _at_once(self) -> int:
         """How many points the memory allows for."""
+        values = _VALUES_AT_ONCE // max(1, len(self.fields.cases[0].components))
+        if field.pays(self.fields.conductors, min(values, _MANY_AT_ONCE)):
+            # Interpolated in boxes: the more at once, the better, and no leg counts.
+            return max(2048, min(_MANY_AT_ONCE, values))
         legs = sum(len(c.path) - 1 for c in self.fields.conductors)
         tiles = _BYTES_AT_ONCE // (_BYTES_PER_LEG * max(1, legs))
-        values = _VALUES_AT_ONCE // max(1, len(self.fields.cases[0].components))
         return max(2048, min(_POINTS_AT_ONCE, TILE * tiles, values))
 
     def _set(self, rows: NDArray[np.int64], b: Complexes, mask: Bools) -> None:

@@ -2,6 +2,7 @@
 
 from engine.field.cache import ResponseCache
 from engine.field.combined import WORST_OF_TWO, Combined, combined, worst_semi_major
+from engine.field.many import Interpolated, interpolated_flux_density, pays
 from engine.field.masks import inside, near_field, surface_distance
 from engine.field.quantities import (
     Cycle,
@@ -20,6 +21,7 @@ __all__ = [
     "Combined",
     "Cycle",
     "Ellipse",
+    "Interpolated",
     "Peak",
     "ResponseCache",
     "combined",
@@ -28,7 +30,9 @@ __all__ = [
     "ellipse",
     "flux_density",
     "inside",
+    "interpolated_flux_density",
     "near_field",
+    "pays",
     "peak",
     "responses",
     "resultant",

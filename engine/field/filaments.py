@@ -37,6 +37,7 @@ from numpy.typing import NDArray
 from engine.conductor import Conductor
 from engine.field.kernel import TILE, Floats, Integers
 from engine.field.legs import Legs, tile_distances
+from engine.field.pool import on_pool
 from engine.runs import Bar, Round
 
 Orders = NDArray[np.int16]
@@ -57,6 +58,16 @@ _LADDER = np.array(
 #: Distance over side at which 1, 2, 3 ... points leave half a thousandth of a field
 #: that falls with the fourth power of distance (Gauss-Legendre remainder).
 _SAME_SECTION = np.array((41.0, 4.4, 2.0, 1.3, 1.0, 0.82))
+
+#: Tiles times legs that are measured sooner than a thread is started.
+_FEW = 2_000
+
+#: Distance over diameter at which the axes of equal round conductors will do, whatever
+#: ends are near: from the error in `_round_alike`.
+_ROUND_AXIS = 0.5 * (2.5 / _TOLERANCE) ** 0.5
+
+#: Distance over the widest side from which one choice of filaments is to do.
+_FAR_AWAY = 8.0
 
 #: A closed loop shorter than so many sides is wider or narrower than its axis by more
 #: than the tolerance, however far away.
@@ -132,15 +143,10 @@ def orders_of(conductors: Sequence[Conductor], legs: Legs, points: Floats) -> Or
         the axis.
     """
     exact_within = 4.0 * legs.sides.max(axis=1, initial=0.0)
-    distances = tile_distances(legs.table, exact_within, points, TILE, NEAREST)
+    distances = _distances(legs.table, exact_within, points)
     orders = np.ones((len(distances), len(legs.table), 2), np.int16)
-    members_of: dict[str, list[int]] = {}
-    for i, conductor in enumerate(conductors):
-        members_of.setdefault(conductor.group, []).append(i)
-    for members in members_of.values():
-        where = np.concatenate(
-            [np.arange(legs.first[i], legs.first[i + 1]) for i in members]
-        )
+    for members in _members(conductors).values():
+        where = _legs_among(legs, members)
         group = _Group(
             distances[:, where, 0],
             distances[:, where, 1],
@@ -150,6 +156,66 @@ def orders_of(conductors: Sequence[Conductor], legs: Legs, points: Floats) -> Or
         )
         orders[:, where] = _group_orders(group)
     return orders
+
+
+def _distances(table: Floats, exact_within: Floats, points: Floats) -> Floats:
+    """`tile_distances`, by several threads where there is much to measure."""
+    count = -(-len(points) // TILE)
+    step = count if count * len(table) < _FEW else max(1, count // 16)
+    if step == count:
+        return tile_distances(table, exact_within, points, TILE, NEAREST)
+    out = np.empty((count, len(table), 2))
+
+    def run(part: int) -> None:
+        own = points[part * step * TILE : (part + 1) * step * TILE]
+        found = tile_distances(table, exact_within, own, TILE, NEAREST)
+        out[part * step : (part + 1) * step] = found
+
+    on_pool(-(-count // step), run)
+    return out
+
+
+def far_orders(conductors: Sequence[Conductor], legs: Legs) -> tuple[Orders, Floats]:
+    """Numbers of filaments that will do everywhere from a distance on.
+
+    Returns
+    -------
+    (legs, 2) int16
+        As `orders_of`, for each leg.
+    (legs,) float64
+        The distance, of the surfaces of all legs of the group. [m]
+    """
+    orders = np.ones((len(legs.table), 2), np.int16)
+    needs = np.zeros(len(legs.table))
+    for members in _members(conductors).values():
+        where = _legs_among(legs, members)
+        sides, is_round = legs.sides[where], legs.round[where]
+        short = any(_short_loop(conductors[i]) for i in members)
+        widest = float(sides.max())
+        need = _FAR_AWAY * widest
+        distances = np.repeat(need * 2.0 ** np.arange(16)[:, None], len(where), axis=1)
+        group = _Group(distances, distances, sides, is_round, short)
+        if group.alike and not short:
+            # Round to be on the safe side: rules compare rounded numbers.
+            axis = _ROUND_AXIS * widest if is_round[0] else _SAME_SECTION[0] * widest
+            needs[where] = 1.0001 * axis
+            continue
+        orders[where] = _own_orders(group).max(axis=0)
+        needs[where] = need
+    return orders, needs
+
+
+def _members(conductors: Sequence[Conductor]) -> dict[str, list[int]]:
+    found: dict[str, list[int]] = {}
+    for i, conductor in enumerate(conductors):
+        found.setdefault(conductor.group, []).append(i)
+    return found
+
+
+def _legs_among(legs: Legs, members: Sequence[int]) -> Integers:
+    return np.concatenate(
+        [np.arange(legs.first[i], legs.first[i + 1]) for i in members]
+    )
 
 
 @dataclass(frozen=True, eq=False)

@@ -35,7 +35,7 @@ TILE = 256
 MU0_OVER_4PI = 1e-7
 
 # A literal: the square of a nanometre. [m²]
-_ON_WIRE_SQUARED = 1e-18
+ON_WIRE_SQUARED = 1e-18
 
 _ROWS = 8  # of the scratch: x, y, z, |a|, three sums, flag
 
@@ -53,7 +53,7 @@ def _add_flux_density(s: Floats, vertices: Floats, weight: float) -> None:
     for k in range(1, vertices.shape[0]):
         x1, y1, z1 = vertices[k, 0], vertices[k, 1], vertices[k, 2]
         lx, ly, lz = x1 - x0, y1 - y0, z1 - z0
-        limit = _ON_WIRE_SQUARED * (lx * lx + ly * ly + lz * lz)
+        limit = ON_WIRE_SQUARED * (lx * lx + ly * ly + lz * lz)
         for i in range(TILE):
             ax = s[i] - x0
             ay = s[TILE + i] - y0
@@ -94,7 +94,7 @@ def _add_vector_potential(s: Floats, vertices: Floats, weight: float) -> None:
         ly = vertices[k, 1] - y0
         lz = vertices[k, 2] - z0
         length = np.sqrt(lx * lx + ly * ly + lz * lz)
-        limit = _ON_WIRE_SQUARED * length * length
+        limit = ON_WIRE_SQUARED * length * length
         for i in range(TILE):
             ax, ay, az = s[i] - x0, s[TILE + i] - y0, s[2 * TILE + i] - z0
             bx, by, bz = ax - lx, ay - ly, az - lz

@@ -25,6 +25,7 @@ _LENGTH, _HALF_WIDTH, _HALF_THICKNESS, _FIRST, _LAST, _ROUND = 12, 13, 14, 15, 1
 _COLUMNS = 20
 
 _BLOCK = 16  # points that share one sphere
+_MANY = 256  # points that share a larger one
 
 #: Times the distance within which legs are measured exactly: from there on tiles are
 #: measured as a whole. At 48 sides one filament is enough for any equal sections.
@@ -82,6 +83,20 @@ def _legs_of(conductors: tuple[Conductor, ...]) -> Legs:
         first=np.concatenate([[0], np.cumsum(counts, dtype=np.int64)]),
         sides=sides[owner],
         round=is_round[owner],
+    )
+
+
+def legs_among(legs: Legs, which: Integers) -> Legs:
+    """The legs of some of the conductors, by their positions."""
+    counts = legs.first[which + 1] - legs.first[which]
+    first = np.concatenate([[0], np.cumsum(counts)])
+    rows = np.repeat(legs.first[which] - first[:-1], counts) + np.arange(first[-1])
+    return Legs(
+        table=legs.table[rows],
+        conductor=np.repeat(np.arange(len(which)), counts),
+        first=first,
+        sides=legs.sides[rows],
+        round=legs.round[rows],
     )
 
 
@@ -184,31 +199,62 @@ def _skew(leg: Floats) -> float:
 
 
 @njit(nogil=True, cache=True, error_model="numpy")
-def nearest_surface(table: Floats, points: Floats) -> Floats:
-    """Distance of each point to the nearest leg's surface, 0 inside, inf of none.
+def nearest_surface(table: Floats, points: Floats, out: Floats) -> None:
+    """Write the distance of each point to the nearest leg's surface, 0 inside.
 
     Quick when points that follow each other are neighbours: then most legs are too far
-    from a sphere around some points to be the nearest.
+    from a sphere around many points to be the nearest to any, and most of the others
+    from spheres around some of them.
     """
-    n = points.shape[0]
-    out = np.full(n, np.inf)
-    spheres = _spheres(points)
-    lowest = np.empty(table.shape[0])
-    for j in range(spheres.shape[0]):
-        x, y, z, radius = spheres[j, 0], spheres[j, 1], spheres[j, 2], spheres[j, 3]
+    n, m = points.shape[0], table.shape[0]
+    kept, lowest = np.empty(m, np.int64), np.empty(m)
+    for start in range(0, n, _MANY):
+        own = points[start : start + _MANY]
+        spheres = _spheres(own)
+        x, y, z, radius = _around(own)
         highest = np.inf
-        for k in range(table.shape[0]):
+        for k in range(m):
             d = leg_distance(table[k], x, y, z)
             reach = radius + _skew(table[k])
             lowest[k] = d - reach
             highest = min(highest, d + reach)
-        for k in range(table.shape[0]):
-            if lowest[k] > highest:
-                continue
-            for i in range(j * _BLOCK, min(n, (j + 1) * _BLOCK)):
-                d = leg_distance(table[k], points[i, 0], points[i, 1], points[i, 2])
-                out[i] = min(out[i], d)
-    return out
+        count = 0
+        for k in range(m):
+            if lowest[k] <= highest:
+                kept[count] = k
+                count += 1
+        for j in range(spheres.shape[0]):
+            first = start + j * _BLOCK
+            last = min(n, first + _BLOCK)
+            _nearest_of(table, kept[:count], spheres[j], points[first:last],
+                        lowest, out[first:last])  # fmt: skip
+
+
+@njit(nogil=True, cache=True, error_model="numpy")
+def _nearest_of(
+    table: Floats,
+    kept: Integers,
+    sphere: Floats,
+    points: Floats,
+    lowest: Floats,
+    out: Floats,
+) -> None:
+    """Of the legs that are kept, at the points of one sphere; `lowest` is scratch."""
+    out[:] = np.inf
+    highest = np.inf
+    for c in range(len(kept)):
+        leg = table[kept[c]]
+        d = leg_distance(leg, sphere[0], sphere[1], sphere[2])
+        reach = sphere[3] + _skew(leg)
+        lowest[c] = d - reach
+        highest = min(highest, d + reach)
+    for c in range(len(kept)):
+        if lowest[c] > highest:
+            continue
+        leg = table[kept[c]]
+        for i in range(len(points)):
+            d = leg_distance(leg, points[i, 0], points[i, 1], points[i, 2])
+            out[i] = min(out[i], d)
 
 
 @njit(nogil=True, cache=True, error_model="numpy")

@@ -11,9 +11,14 @@ from engine.conductor import Conductor
 from engine.field.kernel import Floats
 from engine.field.legs import any_nearer, legs_of, nearest_surface
 from engine.field.points import as_points, compact_order
+from engine.field.pool import on_pool
 
 #: Nearer than so many bar widths or diameters the even current is an assumption.
 NEAR_WIDTHS = 2.0
+
+#: Points that one thread measures at a time, and legs times points that are measured
+#: sooner than a thread is started.
+_PART, _FEW = 1024, 400_000
 
 
 def surface_distance(conductors: Sequence[Conductor], points: Floats) -> Floats:
@@ -35,8 +40,18 @@ def surface_distance(conductors: Sequence[Conductor], points: Floats) -> Floats:
     """
     checked = as_points(points)
     order = compact_order(checked)
+    table, near = legs_of(conductors).table, np.empty(len(checked))
+    ordered = checked[order]
+
+    size = max(1, len(checked)) if len(table) * len(checked) < _FEW else _PART
+
+    def run(part: int) -> None:
+        rows = slice(part * size, (part + 1) * size)
+        nearest_surface(table, ordered[rows], near[rows])
+
+    on_pool(-(-len(checked) // size), run)
     distance = np.empty(len(checked))
-    distance[order] = nearest_surface(legs_of(conductors).table, checked[order])
+    distance[order] = near
     return distance
 
 

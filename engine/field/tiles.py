@@ -1,16 +1,11 @@
-"""Samples cut into tiles, and their computation on a pool of threads.
-
-The compiled kernel releases the interpreter's lock, so that threads are enough.
-"""
+"""Samples cut into tiles, and their computation on a pool of threads."""
 
 from __future__ import annotations
 
-import os
 from collections import OrderedDict
 from collections.abc import Callable, Sequence
-from concurrent.futures import FIRST_COMPLETED, ThreadPoolExecutor, wait
 from dataclasses import dataclass
-from threading import Event, Lock
+from threading import Lock
 
 import numpy as np
 from numpy.typing import NDArray
@@ -28,9 +23,7 @@ from engine.field.filaments import (
 from engine.field.kernel import TILE, Floats, Integers
 from engine.field.legs import Legs, legs_of
 from engine.field.points import as_points, compact_order
-
-#: Seconds between two looks at whether to stop.
-_PATIENCE = 0.05
+from engine.field.pool import on_pool
 
 #: Tiles times conductors that are done sooner than a thread is started.
 _FEW = 400
@@ -105,38 +98,14 @@ def over_tiles(
         if progress is not None:
             progress(1.0, "summing the field")
         return
-    stopped = Event()
     batch = max(1, min(8, count // 32))
 
-    def run(first: int) -> int:
-        last = min(count, first + batch)
-        for tile in range(first, last):
-            if stopped.is_set():
-                break
+    def run(index: int) -> None:
+        for tile in range(index * batch, min(count, (index + 1) * batch)):
             rows = tiling.order[tile * TILE : (tile + 1) * TILE]
             work(shared.of(tile), tiling.points[rows], rows)
-        return last - first
 
-    done = 0
-    with ThreadPoolExecutor(_threads(), thread_name_prefix="field") as pool:
-        pending = {pool.submit(run, first) for first in range(0, count, batch)}
-        try:
-            while pending:
-                finished, pending = wait(pending, _PATIENCE, FIRST_COMPLETED)
-                done += sum(future.result() for future in finished)
-                stop_if(cancelled)
-                if progress is not None and finished:
-                    progress(done / count, "summing the field")
-        except BaseException:
-            stopped.set()
-            pool.shutdown(wait=True, cancel_futures=True)
-            raise
-
-
-def _threads() -> int:
-    if hasattr(os, "sched_getaffinity"):
-        return len(os.sched_getaffinity(0))
-    return os.cpu_count() or 1
+    on_pool(-(-count // batch), run, cancelled, progress)
 
 
 class _SharedFilaments:
