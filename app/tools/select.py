@@ -117,7 +117,7 @@ class SelectTool(DrawingTool):
         self._stack.stay()
         if handle is not None and not pointer.shift:
             if not again:
-                self._stack.begin(pointer, handle.item)
+                self._stack.begin(pointer, handle.item, was_chosen=True)
             # The vertex comes first: only when it is chosen does a click go down.
             goes_down = again and self._is_chosen(handle)
             self._begin("vertex", pointer, handle.at, handle, goes_down)
@@ -134,9 +134,10 @@ class SelectTool(DrawingTool):
             document.select(document.selection | {pick})
             self._stack.forget()
         else:
-            if pick not in document.selection:
+            was_chosen = pick in document.selection
+            if not was_chosen:
                 document.select({pick})
-            self._stack.begin(pointer, pick)
+            self._stack.begin(pointer, pick, was_chosen=was_chosen)
         item = document.committed.by_id()[pick]
         gripped = grip(item, self._view, pointer)
         self._begin("items", pointer, gripped, goes_down=again)
@@ -169,7 +170,7 @@ class SelectTool(DrawingTool):
             self._drag = None
             if drag.kind == "box" and not pointer.shift:
                 self._document.select(())
-            self._take_clicked(drag, pointer)
+            self._take_clicked(pointer, drag.goes_down)
             self.overlay_changed.emit()
             return
         drag.at = pointer.raw if drag.kind == "box" else pointer.at
@@ -182,12 +183,15 @@ class SelectTool(DrawingTool):
         self.overlay_changed.emit()
 
     def double_click(self, pointer: Pointer) -> None:
-        """Insert a vertex where a selected item's leg was hit twice."""
+        """Insert a vertex where an item's leg was hit twice; in a stack, go down."""
         self._cancel()
         self._view = sight(pointer.plane)
+        if self._stack.goes_on(pointer):
+            self._take_clicked(pointer, goes_down=True)
+            return
         layout = self._document.committed
-        before = self._stack.taken_back() or pointer.pick
-        wanted = {before} if before else self._document.selection
+        meant = self._stack.taken or pointer.pick
+        wanted = {meant} if meant else self._document.selection
         for item in layout.items():
             if item.id not in wanted:
                 continue
@@ -276,9 +280,9 @@ class SelectTool(DrawingTool):
             handle.index,
         )
 
-    def _take_clicked(self, drag: _Drag, pointer: Pointer) -> None:
+    def _take_clicked(self, pointer: Pointer, goes_down: bool) -> None:
         """End a click: take what lies beneath, and say which one it is."""
-        if drag.goes_down:
+        if goes_down:
             self._document.select({self._stack.further(pointer)})
         words = self._stack.words(pointer)
         # A key may have deleted it while the button was held.

@@ -18,7 +18,8 @@ class Stack:
         self._at: Point = (0.0, 0.0)
         self._plane = ""
         self._taken: list[str] = []
-        self._before: str | None = None
+        self._went_down = False
+        self._was_chosen = False
 
     @property
     def taken(self) -> str | None:
@@ -33,18 +34,19 @@ class Stack:
             and dist(pointer.raw, self._at) <= pointer.reach
         )
 
-    def begin(self, pointer: Pointer, item: str) -> None:
-        """A click at a new place took `item`."""
+    def begin(self, pointer: Pointer, item: str, *, was_chosen: bool) -> None:
+        """A click at a new place took `item`, which may have been chosen before."""
         self._at, self._plane = pointer.raw, pointer.plane
-        self._taken, self._before = [item], None
+        self._taken, self._went_down = [item], False
+        self._was_chosen = was_chosen
 
     def stay(self) -> None:
         """A further click took nothing else."""
-        self._before = None
+        self._went_down = False
 
     def forget(self) -> None:
         """Clicks begin anew."""
-        self._taken, self._before = [], None
+        self._taken, self._went_down = [], False
 
     def further(self, pointer: Pointer) -> str:
         """Take the next item beneath; the same where there is no other."""
@@ -54,16 +56,18 @@ class Stack:
         if not fresh:
             self._taken = []
             fresh = [item for item in here if item != last] or [last]
-        self._before = last
+        self._went_down = True
         self._taken.append(fresh[0])
         return fresh[0]
 
-    def taken_back(self) -> str | None:
-        """Undo the last click, of a double click the first; what was taken before."""
-        before = self._before
-        if before is not None:
-            self._taken, self._before = [before], None
-        return before
+    def goes_on(self, pointer: Pointer) -> bool:
+        """Whether a quick second click is one more click on what lies here.
+
+        Only what was chosen before both of them is meant by a double click.
+        """
+        if len(pointer.under) < 2 or self.taken not in pointer.under:
+            return False
+        return self._went_down or not self._was_chosen
 
     def words(self, pointer: Pointer) -> str:
         """Which one of how many was taken; empty for a single one."""

@@ -411,14 +411,24 @@ def test_a_vertex_is_taken_before_what_lies_beneath_it() -> None:
         assert d.document.selection == {chosen}
 
 
+def test_quick_clicks_go_down_and_insert_nothing() -> None:
+    d = stacked()
+    seen = []
+    for _ in range(2):
+        d.click(2.0, 0.0, **STACKED)
+        d.tool.double_click(at(2.0, 0.0, **STACKED))
+        seen.append((*d.document.selection, hint_of(d)))
+    assert seen == [("b", "2 of 3 here"), ("a", "1 of 3 here")]
+    assert [len(run.route) for run in d.layout.runs] == [2, 2, 2]
+
+
 def test_a_double_click_is_for_what_was_chosen_before_it() -> None:
     d = stacked()
-    d.click(2.0, 0.0, **STACKED)
-    d.click(2.0, 0.0, **STACKED)
+    d.document.select({"a"})
     d.click(2.0, 0.0, **STACKED)
     d.tool.double_click(at(2.0, 0.0, **STACKED))
-    assert [len(run.route) for run in d.layout.runs] == [2, 3, 2]
-    assert d.document.selection == {"b"}
+    assert [len(run.route) for run in d.layout.runs] == [3, 2, 2]
+    assert d.document.selection == {"a"}
 
 
 def test_shift_adds_the_uppermost_only() -> None:
