@@ -224,9 +224,10 @@ class DrawingView(ZoomableView):
         for mark in self.marks.values():
             draw_overlay(painter, mark, camera, self._inks)
         if self._tool is not None and self.has_pointer:
-            draw_overlay(painter, self._tool.overlay(), camera, self._inks)
+            taken = [label.box for label in self._picture.labels]
+            draw_overlay(painter, self._tool.overlay(), camera, self._inks, taken)
             if self._pointer is not None and self._tool.catches():
-                draw_catch(painter, self._pointer, camera, self._inks)
+                draw_catch(painter, self._pointer, camera, self._inks, taken)
         painter.end()
 
     def _paint_cut(self, painter: QPainter, camera: Camera) -> None:

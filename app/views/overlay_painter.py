@@ -10,7 +10,7 @@ from PySide6.QtGui import QColor, QPainter, QPen, QPolygonF
 from app.tools.tool import Dimension, Overlay, Pointer
 from app.views.camera import Camera
 from app.views.inks import Inks, shade
-from app.views.labels import draw_text, text_box
+from app.views.labels import text_box
 
 _CATCH = 6.0
 
@@ -19,9 +19,17 @@ HANDLE = 10.0
 
 
 def draw_overlay(
-    painter: QPainter, overlay: Overlay, camera: Camera, inks: Inks
+    painter: QPainter,
+    overlay: Overlay,
+    camera: Camera,
+    inks: Inks,
+    taken: list[QRectF] | None = None,
 ) -> None:
-    """Draw a tool's overlay in pixels."""
+    """Draw a tool's overlay in pixels.
+
+    Its texts keep off the boxes that are `taken`, and theirs are added.
+    """
+    taken = [] if taken is None else taken
     painter.setBrush(Qt.BrushStyle.NoBrush)
     for lines, pen in (
         (overlay.lines, inks.overlay),
@@ -38,11 +46,11 @@ def draw_overlay(
     for point in overlay.points:
         draw_handle(painter, camera.pixel(point), inks)
     for dimension in overlay.dimensions:
-        _draw_dimension(painter, dimension, camera, inks)
+        _draw_dimension(painter, dimension, camera, inks, taken)
     for at, text in overlay.labels:
-        middle = camera.pixel(at) + QPointF(0.0, -18.0)
-        box = _inside(text_box(text, inks, middle), camera)
-        draw_text(painter, box, text, inks)
+        mark = camera.pixel(at)
+        places = [mark + QPointF(*way) for way in _ways(text, inks)]
+        _draw_note(painter, text, places, camera, inks, taken)
 
 
 def draw_handle(painter: QPainter, at: QPointF, inks: Inks) -> QRectF:
@@ -55,8 +63,14 @@ def draw_handle(painter: QPainter, at: QPointF, inks: Inks) -> QRectF:
     return box
 
 
-def draw_catch(painter: QPainter, pointer: Pointer, camera: Camera, inks: Inks) -> None:
-    """A mark of its own for each kind of catch, with its word."""
+def draw_catch(
+    painter: QPainter,
+    pointer: Pointer,
+    camera: Camera,
+    inks: Inks,
+    taken: list[QRectF] | None = None,
+) -> None:
+    """A mark of its own for each kind of catch, with its word off what is `taken`."""
     if not pointer.caught:
         return
     at = camera.pixel(pointer.at)
@@ -74,12 +88,24 @@ def draw_catch(painter: QPainter, pointer: Pointer, camera: Camera, inks: Inks) 
             painter.drawLine(at + QPointF(-4.0, 0.0), at + QPointF(4.0, 0.0))
             painter.drawLine(at + QPointF(0.0, -4.0), at + QPointF(0.0, 4.0))
     if pointer.caught != "grid":
-        middle = at + QPointF(34.0, 16.0)
-        draw_text(painter, text_box(pointer.caught, inks, middle), pointer.caught, inks)
+        across = 12.0 + text_box(pointer.caught, inks, at).width() / 2
+        places = [
+            at + QPointF(side * across, down)
+            for down in (16.0, -16.0, 32.0, -32.0, 48.0)
+            for side in (1.0, -1.0)
+        ]
+        _draw_note(
+            painter, pointer.caught, places, camera, inks,
+            [] if taken is None else taken,
+        )  # fmt: skip
 
 
 def _draw_dimension(
-    painter: QPainter, dimension: Dimension, camera: Camera, inks: Inks
+    painter: QPainter,
+    dimension: Dimension,
+    camera: Camera,
+    inks: Inks,
+    taken: list[QRectF],
 ) -> None:
     start, end = camera.pixel(dimension.start), camera.pixel(dimension.end)
     along = end - start
@@ -91,8 +117,54 @@ def _draw_dimension(
     painter.drawLine(start, end)
     for at in (start, end):
         painter.drawLine(at - across, at + across)
-    box = text_box(dimension.text, inks, (start + end) / 2, bold=True)
-    draw_text(painter, box, dimension.text, inks, bold=True)
+    box = text_box(dimension.text, inks, start, bold=True)
+    # Beside the line by as much as the text reaches that way, on either side.
+    beside = across / 5.0
+    away = abs(beside.x()) * box.width() / 2 + abs(beside.y()) * box.height() / 2 + 4.0
+    places = [
+        start + along * share + beside * away * side
+        for side in (0.0, 1.0, -1.0, 2.5, -2.5)
+        for share in (0.5, 0.35, 0.65, 0.2, 0.8)
+    ]
+    _draw_note(painter, dimension.text, places, camera, inks, taken, bold=True)
+
+
+def _ways(text: str, inks: Inks) -> list[tuple[float, float]]:
+    """From a place to the middles of a text about it: above first."""
+    aside = 12.0 + text_box(text, inks, QPointF()).width() / 2
+    return [
+        (0.0, -18.0), (0.0, 18.0), (aside, 0.0), (-aside, 0.0), (aside, -18.0),
+        (-aside, -18.0), (aside, 18.0), (-aside, 18.0), (0.0, -36.0), (0.0, 36.0),
+    ]  # fmt: skip
+
+
+def _draw_note(
+    painter: QPainter,
+    text: str,
+    places: list[QPointF],
+    camera: Camera,
+    inks: Inks,
+    taken: list[QRectF],
+    *,
+    bold: bool = False,
+) -> None:
+    """A text at the first of its places that is free, else at the best, on paper."""
+    boxes = [_inside(text_box(text, inks, at, bold=bold), camera) for at in places]
+    box = min(boxes, key=lambda each: _covered(each, taken))
+    taken.append(box)
+    # Where it has to lie over another text, that one does not shine through.
+    painter.setPen(QPen(QColor(inks.theme.accent), 1.0))
+    painter.setBrush(QColor(inks.theme.paper))
+    painter.drawRoundedRect(box, 3.0, 3.0)
+    painter.setFont(inks.bold if bold else inks.small)
+    painter.setPen(QColor(inks.theme.text))
+    painter.drawText(box, Qt.AlignmentFlag.AlignCenter, text)
+
+
+def _covered(box: QRectF, taken: list[QRectF]) -> float:
+    """How much of what is taken a box would cover. [px²]"""
+    parts = [box.intersected(other) for other in taken]
+    return sum(part.width() * part.height() for part in parts)
 
 
 def _inside(box: QRectF, camera: Camera) -> QRectF:

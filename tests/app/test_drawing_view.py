@@ -10,7 +10,7 @@ import numpy as np
 import pytest
 from msgspec import structs
 from PySide6.QtCore import QPoint, QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QImage, QWheelEvent
+from PySide6.QtGui import QColor, QImage, QPainter, QWheelEvent
 from PySide6.QtTest import QTest
 
 from app.document import Document
@@ -21,7 +21,8 @@ from app.tools.tool import NOTHING, Entry, Overlay, Tool
 from app.view_state import ViewState
 from app.views.drawing_view import DrawingView
 from app.views.inks import Inks, conductor_colour
-from app.views.labels import Importance, Label, placed
+from app.views.labels import Importance, Label, placed, text_box
+from app.views.overlay_painter import draw_overlay
 from app.views.projection import LOOKING_X, LOOKING_Y, PLAN, SIGHTS, to_layout, to_view
 from app.views.scale_bar import grid_step
 from engine.circuits import BalancedCurrent, Circuit
@@ -444,3 +445,19 @@ def test_an_entry_keeps_what_it_does_not_say():
         Entry("point", x=5.0).point(None)
     with pytest.raises(ValueError, match="no point"):
         Entry("size", size=(2.0, 3.0)).point(last)
+
+
+def test_texts_of_a_tool_keep_off_the_labels(qtbot, shown):
+    view = shown[1]
+    inks = view._inks
+    image = QImage(400, 300, QImage.Format.Format_RGB32)
+    camera = view.camera()
+    at = camera.metres(QPointF(200.0, 150.0))
+    label = text_box("Far desk", inks, QPointF(200.0, 132.0))
+    taken = [label]
+    painter = QPainter(image)
+    draw_overlay(painter, Overlay(labels=((at, "z 3.10 m"),) * 3), camera, inks, taken)
+    painter.end()
+    assert len(taken) == 4
+    for k, box in enumerate(taken):
+        assert not any(box.intersects(other) for other in taken[:k])
