@@ -39,6 +39,8 @@ class AskingPage(Page):
         Suggested for exports.
     """
 
+    followed = frozenset({"case", "variant"})
+
     def __init__(
         self,
         title: str,

@@ -29,14 +29,24 @@ from app.elevation_plane import (
     line_of,
     plane_text,
 )
+from app.elided_choice import ElidedChoice
 from app.map_request import height_text, heights_of
-from app.theme import STEP, theme_for
+from app.theme import BODY, STEP, theme_for
 from app.variant_acts import with_shown
 from app.view_state import LAYERS, ViewState
+from app.wrapping import WrappingRow, group_in_row
 from engine.assessment import zone_floor
 from engine.layout import Layout
 
 QUANTITY = "RMS flux density"
+
+#: What the drawing follows of the caption; pages in its place less, or nothing.
+OF_DRAWING = frozenset(
+    {"view", "quantity", "zone", "height", "case", "variant", "storey", "layers"}
+)
+
+#: A name is shown to this width, and shortened to the least before a row is added.
+_WIDEST, _LEAST = 24 * BODY, 9 * BODY
 
 
 def caption(document: Document, view_state: ViewState) -> str:
@@ -78,11 +88,6 @@ class CaptionBar(QWidget):
         self._document = document
         self._view_state = view_state
         self._view = _choice("View in front: plan, elevations, along a drawn line")
-        # Names of lines may be long; the others must not be cut for them.
-        self._view.setSizeAdjustPolicy(
-            QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon
-        )
-        self._view.setMinimumContentsLength(10)
         self._plane = QLabel()
         self._plane.setToolTip("Where the map of the elevation stands")
         self._zone = _choice("Zone whose heights the map shows")
@@ -97,23 +102,9 @@ class CaptionBar(QWidget):
         self._layers.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
         self._layers.setAutoRaise(True)
         self._layers.setMenu(self._layer_menu())
-        self._row = row = QHBoxLayout(self)
-        row.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
-        row.setSpacing(STEP)
-        row.addWidget(self._view)
-        row.addWidget(QLabel("·"))
-        row.addWidget(QLabel(QUANTITY))
-        self._dots: dict[QWidget, QLabel] = {}
-        for widget in (
-            self._plane, self._zone, self._height, self._case, self._variant,
-            self._storey,
-        ):  # fmt: skip
-            self._dots[widget] = QLabel("·")
-            row.addWidget(self._dots[widget])
-            row.addWidget(widget)
-        row.addStretch(1)
-        row.addWidget(self._state)
-        row.addWidget(self._layers)
+        self._quantity = QLabel(QUANTITY)
+        self._followed = OF_DRAWING
+        self._build()
         self._view.activated.connect(self._on_view)
         self._zone.activated.connect(self._on_zone)
         self._height.activated.connect(self._on_height)
@@ -123,12 +114,46 @@ class CaptionBar(QWidget):
         document.changed.connect(self._fill)
         document.whole_changed.connect(self._fill)
         view_state.changed.connect(self._fill)
-        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
         self._fill()
+
+    def _build(self) -> None:
+        """The choices in one row, or in more where they have to be; the rest beside."""
+        self._choices = QWidget()
+        row = WrappingRow(self._choices, gap=STEP, margin=0)
+        self._dots: dict[QWidget, QLabel] = {}
+        self._groups: dict[QWidget, QWidget] = {}
+        self._on: set[QWidget] = set()
+        self._names = (
+            self._case, self._variant, self._zone, self._storey, self._view,
+        )  # fmt: skip
+        for widget in (
+            self._view, self._quantity, self._plane, self._zone, self._height,
+            self._case, self._variant, self._storey,
+        ):  # fmt: skip
+            group, inner = group_in_row()
+            self._dots[widget], self._groups[widget] = QLabel("·"), group
+            inner.addWidget(self._dots[widget])
+            inner.addWidget(widget)
+            row.addWidget(group)
+        whole = QHBoxLayout(self)
+        whole.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
+        whole.setSpacing(STEP)
+        whole.addWidget(self._choices, 1)
+        for widget in (self._state, self._layers):
+            whole.addWidget(widget, 0, Qt.AlignmentFlag.AlignTop)
+        self._state.setContentsMargins(0, STEP, 0, 0)
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Minimum)
+
+    def follow(self, parts: frozenset[str]) -> None:
+        """Show only what the page in the drawing's place follows; nothing, no bar."""
+        self._followed = parts
+        self._fill()
+        self.setVisible(bool(self._on))
 
     def tell(self, text: str) -> None:
         """Say at the right end what the map's state is; empty for nothing."""
         self._state.setText(text)
+        self._fit()
         self.state_told.emit(text)
 
     def changeEvent(self, event: QEvent) -> None:
@@ -137,23 +162,55 @@ class CaptionBar(QWidget):
         super().changeEvent(event)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        self._show_storey()
+        self._fit()
         super().resizeEvent(event)
 
-    def _show_storey(self) -> None:
-        # Names give way where there is no room; a height is never cut.
-        self._height.setMinimumWidth(self._height.sizeHint().width())
-        # The storey gives way first, so that the others are not cut.
-        others = self._row.sizeHint().width()
-        if self._storey.isVisibleTo(self):
-            others -= self._storey.sizeHint().width() + 4 * STEP
-        fits = others + self._storey.sizeHint().width() + 4 * STEP <= self.width()
-        self._show(self._storey, fits and self._storey.count() > 1)
+    def _fit(self) -> None:
+        """One row while that can be: the storey goes first, then the quantity.
+
+        The legend names the quantity too. Then names are shortened, never a height;
+        where even that does not help, they go on in a further row, whole.
+        """
+        wide = {part: self._width_of(part) for part in self._groups if part in self._on}
+        gap = self._dots[self._view].sizeHint().width() + 2 * STEP
+        room = self._room() + gap
+        lacking = sum(wide.values()) + gap * len(wide) - room
+        for part in (self._storey, self._quantity):
+            if lacking > 0 and part in wide:
+                lacking -= wide.pop(part) + gap
+        names = [box for box in self._names if box in wide]
+        spare = {box: max(0, wide[box] - _LEAST) for box in names}
+        if lacking > sum(spare.values()):
+            lacking = 0
+        for box in names:
+            given = min(max(0, lacking), spare[box])
+            box.setFixedWidth(wide[box] - given)
+            lacking -= given
+        self._height.setFixedWidth(self._height.width_of_text())
+        # Whatever is shown anew lays everything out again: only what changes.
+        for part, group in self._groups.items():
+            group.setVisible(part in wide)
+            self._dots[part].setVisible(part is not next(iter(wide), None))
+        self._choices.updateGeometry()
+
+    def _room(self) -> int:
+        beside = self._layers.sizeHint().width() if self._wants("layers") else 0
+        if self._state.text():
+            beside += self._state.sizeHint().width() + STEP
+        return self.width() - beside - 8 * STEP
+
+    @staticmethod
+    def _width_of(part: QWidget) -> int:
+        if isinstance(part, ElidedChoice):
+            return min(part.width_of_text(), _WIDEST)
+        return part.sizeHint().width()
+
+    def _wants(self, part: str) -> bool:
+        return part in self._followed
 
     def _show(self, choice: QWidget, shown: bool) -> None:
-        """A choice or a text with the dot before it."""
-        choice.setVisible(shown)
-        self._dots[choice].setVisible(shown)
+        """Have a choice or a text shown, where there is room for it."""
+        (self._on.add if shown else self._on.discard)(choice)
 
     def _layer_menu(self) -> QMenu:
         menu = QMenu(self)
@@ -174,9 +231,13 @@ class CaptionBar(QWidget):
         where = plane_text(layout, look, look.view)
         self._plane.setText(where)
         # The view's own name says the line already.
-        self._show(self._plane, bool(where) and look.view != ALONG)
-        self._show(self._zone, bool(zones) and not where)
-        self._show(self._height, not where)
+        is_said = look.view == ALONG or not self._wants("view")
+        self._show(self._plane, bool(where) and not is_said)
+        self._show(self._view, self._wants("view"))
+        self._layers.setVisible(self._wants("layers"))
+        upright = bool(where) and self._wants("view")
+        self._show(self._zone, bool(zones) and not upright and self._wants("zone"))
+        self._show(self._height, not upright and self._wants("height"))
         self._fill_view(layout)
         _refill(self._height, self._heights(layout), look.height)
         cases = [(_with_case(case.title), case.id) for case in layout.cases]
@@ -185,10 +246,13 @@ class CaptionBar(QWidget):
         variants += [(v.title, v.id) for v in self._document.whole.variants]
         chosen = self._document.variant
         _refill(self._variant, variants, None if chosen is None else chosen.id)
-        self._show(self._variant, len(variants) > 1)
+        self._show(self._variant, len(variants) > 1 and self._wants("variant"))
+        self._show(self._case, self._wants("case"))
         storeys = [(storey.title, storey.id) for storey in layout.storeys]
         _refill(self._storey, storeys, look.storey)
-        self._show_storey()
+        self._show(self._storey, len(storeys) > 1 and self._wants("storey"))
+        self._show(self._quantity, self._wants("quantity"))
+        self._fit()
 
     def _fill_view(self, layout: Layout) -> None:
         look = self._view_state.look
@@ -247,13 +311,12 @@ class CaptionBar(QWidget):
         self._view_state.set(storey=self._storey.itemData(index))
 
 
-def _choice(tip: str) -> QComboBox:
-    box = QComboBox()
+def _choice(tip: str) -> ElidedChoice:
+    box = ElidedChoice()
     box.setToolTip(tip)
     box.setAccessibleName(tip)
     box.setFrame(False)
     box.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
-    box.setMinimumContentsLength(4)
     box.setFocusPolicy(Qt.FocusPolicy.TabFocus)
     box.setSizePolicy(QSizePolicy.Policy.Maximum, QSizePolicy.Policy.Fixed)
     return box
@@ -270,3 +333,5 @@ def _refill(
             box.addItem(text, data)
     index = next((i for i, (_, data) in enumerate(entries) if data == chosen), 0)
     box.setCurrentIndex(index if entries else -1)
+    # What is shortened can be read whole here.
+    box.setToolTip(f"{box.accessibleName()}: {box.currentText()}")

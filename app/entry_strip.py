@@ -10,28 +10,35 @@ from __future__ import annotations
 from collections.abc import Callable
 
 from PySide6.QtCore import QEvent, Qt, Signal
-from PySide6.QtGui import QKeyEvent, QResizeEvent
+from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import (
     QComboBox,
+    QHBoxLayout,
     QLabel,
     QLineEdit,
+    QSizePolicy,
     QToolButton,
     QVBoxLayout,
     QWidget,
 )
 
 from app import entry_words
+from app.elided_choice import ElidedChoice
 from app.entry_fields import FIELDS, LENGTH, MEANINGS
 from app.panels.panel import decimal_sign
 from app.slip import Slip
 from app.theme import BODY, STEP, theme_for
 from app.tools.drawing_tool import DrawingTool
 from app.tools.tool import Entry, Tool
-from app.wrapping import WrappingRow, group_in_row
+from app.wrapping import ReservedRow, WrappingRow, group_in_row
 from engine.errors import UserError
 from engine.typed_lengths import typed_length
 
 _EXAMPLE = "to 3.2 -0.35 z 2.6"
+
+
+#: Width of the toggles and of what tools offer. [logical pixels]
+_OFFERED = 36 * BODY
 
 
 class EntryStrip(QWidget):
@@ -55,7 +62,7 @@ class EntryStrip(QWidget):
         super().__init__(parent)
         self._tool: Tool | None = None
         self._unit = "m"
-        self._combos: dict[str, QComboBox] = {}
+        self._combos: dict[str, ElidedChoice] = {}
         self.setAccessibleName("Entry strip")
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
@@ -63,9 +70,7 @@ class EntryStrip(QWidget):
         self._parts = QWidget()
         row = WrappingRow(self._parts, gap=2 * STEP, margin=2 * STEP)
         row.addWidget(self._field_group())
-        row.addWidget(self._words_line())
-        row.addWidget(self._toggle_group())
-        row.addWidget(self._choice_group())
+        row.addWidget(self._second_group())
         column.addWidget(self._parts)
         self.fault = QLabel()
         self.fault.setWordWrap(True)
@@ -99,12 +104,16 @@ class EntryStrip(QWidget):
             row.addWidget(field)
             self.labels.append(label)
             self.fields.append(field)
+        row.addWidget(self._words_line())
+        # Without a share in what is left of the row.
+        group.setSizePolicy(QSizePolicy.Policy.Maximum, QSizePolicy.Policy.Preferred)
         return group
 
     def _words_line(self) -> QWidget:
         self.words = QLineEdit()
         self.words.setPlaceholderText(_EXAMPLE)
-        self.words.setFixedWidth(13 * BODY)
+        self.words.setMinimumWidth(6 * BODY)
+        self.words.setMaximumWidth(12 * BODY)
         self.words.returnPressed.connect(self._enter_words)
         self.words.textEdited.connect(self._clear_fault)
         self._explain(
@@ -115,18 +124,14 @@ class EntryStrip(QWidget):
         )
         return self.words
 
-    def _choice_group(self) -> QWidget:
-        """What the active tool offers, and the height at which it draws."""
-        self._offered, self._choices = group_in_row()
-        self.height_shown = QLabel()
-        self.height_shown.setToolTip("Height at which the tool draws")
-        self.height_shown.hide()
-        self._choices.addWidget(self.height_shown)
-        self._offered.hide()
-        return self._offered
+    def _second_group(self) -> QWidget:
+        """Toggles, the height of the active tool, and what it offers.
 
-    def _toggle_group(self) -> QWidget:
-        group, row = group_in_row()
+        Always as wide and high as with all that tools offer: whether it goes into a
+        further row follows from the width alone, and the drawing stays in its place.
+        """
+        group = ReservedRow(_OFFERED, self.way.sizeHint().height())
+        row = group.row
         self.hold = self._toggle(
             "Hold 0/45/90", "Legs run at multiples of 45°", self.hold_toggled.emit
         )
@@ -136,8 +141,15 @@ class EntryStrip(QWidget):
             self.catch_toggled.emit,
         )
         self.catch.setChecked(True)
-        row.addWidget(self.hold)
-        row.addWidget(self.catch)
+        self.height_shown = QLabel()
+        self.height_shown.setToolTip("Height at which the tool draws")
+        self.height_shown.hide()
+        for widget in (self.hold, self.catch, self.height_shown):
+            row.addWidget(widget)
+        self._choices = QHBoxLayout()
+        self._choices.setSpacing(STEP)
+        row.addLayout(self._choices)
+        row.addStretch(1)
         return group
 
     def set_unit(self, unit: str) -> None:
@@ -307,9 +319,10 @@ class EntryStrip(QWidget):
             combo.blockSignals(False)
         self._show_height()
 
-    def _new_combo(self, name: str) -> QComboBox:
-        combo = QComboBox()
+    def _new_combo(self, name: str) -> ElidedChoice:
+        combo = ElidedChoice()
         combo.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
+        combo.setMinimumWidth(6 * BODY)
         combo.setMaximumWidth(14 * BODY)
         self._explain(combo, name.capitalize(), "What the tool draws next")
         combo.textActivated.connect(lambda value: self._choose(name, value))
@@ -325,20 +338,6 @@ class EntryStrip(QWidget):
         if text != self.height_shown.text():
             self.height_shown.setText(text)
             self.height_shown.setVisible(bool(text))
-        self._offered.setVisible(bool(text or self._combos))
-        self._keep_height()
-
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        if event.size().width() != event.oldSize().width():
-            self._parts.setMinimumHeight(0)
-            self._keep_height()
-        super().resizeEvent(event)
-
-    def _keep_height(self) -> None:
-        """Never give back a row: the drawing would move with every change of tool."""
-        needed = self._parts.heightForWidth(self.width())
-        if needed > self._parts.minimumHeight():
-            self._parts.setMinimumHeight(needed)
 
     def _show_fault(self, field: QLineEdit, sentence: str) -> None:
         warning = theme_for(self.palette()).warning

@@ -5,7 +5,7 @@ from __future__ import annotations
 from functools import cached_property
 from typing import TYPE_CHECKING, TypeVar
 
-from PySide6.QtCore import QEvent, QSize, Qt, QTimer
+from PySide6.QtCore import QEvent, QObject, QSize, Qt, QTimer
 from PySide6.QtGui import (
     QCloseEvent,
     QDragEnterEvent,
@@ -29,7 +29,7 @@ from app import preferences, window_geometry
 from app.arrange import Arrange
 from app.ask_bar import AskBar
 from app.backing_reading import BackingReading
-from app.caption_bar import CaptionBar, caption
+from app.caption_bar import OF_DRAWING, CaptionBar, caption
 from app.document import Document
 from app.drawings import Drawings
 from app.entry_strip import EntryStrip
@@ -56,7 +56,8 @@ from app.toolbox import Toolbox
 from app.variant_band import VariantBand
 from app.view_pages import ViewPages
 from app.view_state import ViewState
-from app.views.height_rail import HeightRail
+from app.views.height_rail import NARROW, HeightRail
+from app.views.height_rail import WIDTH as RAIL_WIDTH
 from app.window_hints import hint_of
 from app.window_links import WindowLinks
 from app.window_menus import WindowMenus
@@ -67,6 +68,9 @@ if TYPE_CHECKING:
     from app.panels.load_cases import LoadCasesPanel
 
 APage = TypeVar("APage", bound=Page)
+
+#: The drawing is never narrower. [logical pixels]
+DRAWING = 570
 
 #: Under this height the foot panels open in the drawing's place. [logical pixels]
 LOW = 800
@@ -133,7 +137,8 @@ class MainWindow(QMainWindow):
         self.margins = MarginsPanel(document)
         self._build_pages()
         self._build_panels()
-        column = QWidget()
+        self.column = column = QWidget()
+        column.installEventFilter(self)
         box = QVBoxLayout(column)
         box.setContentsMargins(0, 0, 0, 0)
         box.setSpacing(0)
@@ -146,7 +151,7 @@ class MainWindow(QMainWindow):
         drawing.addWidget(self.pages, 1)
         box.addLayout(drawing, 1)
         # The drawing beside its rail; a narrow window takes from the panel first.
-        column.setMinimumWidth(660)
+        column.setMinimumWidth(NARROW + DRAWING)
         self.splitter = QSplitter(Qt.Orientation.Horizontal)
         self.splitter.setChildrenCollapsible(False)
         self.splitter.addWidget(column)
@@ -262,6 +267,7 @@ class MainWindow(QMainWindow):
         self.pages.setCurrentWidget(page)
         self.rail.setVisible(page is self.drawings)
         self.strip.setVisible(page is self.drawings)
+        self.caption.follow(getattr(page, "followed", OF_DRAWING))
         self.tell_hint()
         # The page itself shows no mark of the keyboard: what it hands on to does.
         (page.focusProxy() or page).setFocus(Qt.FocusReason.TabFocusReason)
@@ -339,6 +345,11 @@ class MainWindow(QMainWindow):
         self.drawings.set_wide(self.width() >= 1900)
         self.make_room(self.margins.is_open)
         super().resizeEvent(event)
+
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:
+        if watched is self.column and event.type() == QEvent.Type.Resize:
+            self.rail.set_narrow(self.column.width() < RAIL_WIDTH + DRAWING)
+        return super().eventFilter(watched, event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() != Qt.Key.Key_Escape:

@@ -42,6 +42,8 @@ class Page(QWidget):
     """
 
     closed = Signal()
+    #: What it follows of the caption above the drawing, see `app.caption_bar`.
+    followed: frozenset[str] = frozenset()
 
     def __init__(self, title: str, parent: QWidget | None = None) -> None:
         super().__init__(parent)

@@ -3,9 +3,17 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QPoint, QRect, QSize, Qt
-from PySide6.QtWidgets import QHBoxLayout, QLayout, QLayoutItem, QWidget
+from PySide6.QtWidgets import (
+    QHBoxLayout,
+    QLayout,
+    QLayoutItem,
+    QSizePolicy,
+    QWidget,
+)
 
 from app.theme import STEP
+
+_ACROSS = Qt.Orientation.Horizontal
 
 
 class WrappingRow(QLayout):
@@ -103,9 +111,29 @@ class WrappingRow(QLayout):
         for item in row:
             hint = item.sizeHint()
             width = min(hint.width(), rect.width())
+            if item is row[-1] and item.expandingDirections() & _ACROSS:
+                width = rect.right() + 1 - x
             top = rect.top() + (rect.height() - hint.height()) // 2
             item.setGeometry(QRect(QPoint(x, top), QSize(width, hint.height())))
             x += width + self._gap
+
+
+class ReservedRow(QWidget):
+    """Asks for the same room whatever it holds, and takes more where there is more."""
+
+    def __init__(self, width: int, height: int) -> None:
+        super().__init__()
+        self._room = QSize(width, height)
+        self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Fixed)
+        self.row = QHBoxLayout(self)
+        self.row.setContentsMargins(0, 0, 0, 0)
+        self.row.setSpacing(STEP)
+
+    def sizeHint(self) -> QSize:
+        return self._room
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(1, self._room.height())
 
 
 def group_in_row() -> tuple[QWidget, QHBoxLayout]:

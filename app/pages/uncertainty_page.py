@@ -47,6 +47,8 @@ NO_PLACES = (
 class UncertaintyPage(AskingPage):
     """Follows document and selection while it shows; computes in a thread."""
 
+    followed = frozenset({"variant"})
+
     def __init__(
         self, document: Document, _view_state: object, messages: Messages
     ) -> None:

@@ -36,6 +36,8 @@ class VariantsPage(AskingPage):
     """Follows the document while it shows; computes in threads of its own."""
 
     _told = Signal(float, str)
+    # Its maps; the variants stand in a list of its own.
+    followed = frozenset({"zone", "height", "case"})
 
     def __init__(
         self, document: Document, view_state: ViewState, messages: Messages

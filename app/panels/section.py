@@ -52,6 +52,8 @@ class SectionPanel(Panel):
 
     shows = ("settings", "circuits", "runs", "joints", "equipment", "load_cases")
 
+    #: See `app.page.Page`.
+    followed = frozenset({"case", "variant"})
     closed = Signal()
     turned = Signal(str, bool)
 

@@ -49,6 +49,11 @@ class Tick:
     text: str
     zone: str = ""
 
+    @property
+    def figures(self) -> str:
+        """What is read where there is no room for names: "z 5.10"; a slab's name."""
+        return self.text.partition(" · ")[0]
+
 
 @dataclass(frozen=True)
 class RailContents:

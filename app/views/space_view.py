@@ -74,6 +74,8 @@ class SpaceView(Page):
         Says why there can be none; empty when there can.
     """
 
+    followed = frozenset({"zone", "case", "variant", "layers"})
+
     def __init__(
         self,
         document: Document,

@@ -429,10 +429,40 @@ def test_a_height_is_not_cut_where_names_give_way(qtbot):
     layout = layout_file.read(SAMPLES / "office-over-switch-room.json")
     caption = CaptionBar(Document(layout), ViewState())
     qtbot.addWidget(caption)
-    caption.setFixedWidth(460)
+    caption.setFixedWidth(600)
     caption.show()
-    assert caption._height.width() >= caption._height.sizeHint().width()
-    assert caption._zone.width() < caption._zone.sizeHint().width()
+    assert caption._height.width() >= caption._height.width_of_text()
+    assert caption._case.width() < caption._case.width_of_text()
+
+
+@pytest.mark.parametrize("width", [420, 560, 654, 800, 1100])
+def test_every_part_of_the_caption_lies_in_it(qtbot, width):
+    layout = layout_file.read(SAMPLES / "office-over-switch-room.json")
+    caption = CaptionBar(Document(layout), ViewState())
+    qtbot.addWidget(caption)
+    caption.show()
+    caption.resize(width, caption.heightForWidth(width))
+
+    def all_lie_inside():
+        return all(
+            caption._choices.rect().contains(group.geometry())
+            and group.rect().contains(part.geometry())
+            for part, group in caption._groups.items()
+            if group.isVisible()
+        )
+
+    qtbot.waitUntil(all_lie_inside)
+    assert caption._case.isVisible()
+
+
+def test_pages_show_of_the_caption_what_they_follow(window):
+    window.show_page(window.guide)
+    assert not window.caption.isVisible()
+    window.show_page(window.section)
+    assert window.caption._case.isVisible()
+    assert not window.caption._height.isVisible()
+    window.show_drawing()
+    assert window.caption._height.isVisible()
 
 
 def test_nothing_moves_when_something_is_told(window, qtbot):
@@ -453,10 +483,22 @@ def test_nothing_moves_when_something_is_told(window, qtbot):
     assert not slip.isVisible()
 
 
-def test_a_change_of_tool_never_gives_a_row_back(window):
-    heights = []
-    for tool in (*window.toolbox.tools, *window.toolbox.tools):
+@pytest.mark.parametrize("width", [1024, 1280, 1600])
+def test_a_change_of_tool_moves_nothing(window, width):
+    window.resize(width, 700)
+    heights = set()
+    for tool in window.toolbox.tools:
         window.toolbox.activate(tool)
         QTest.qWait(1)
-        heights.append(window.strip.height())
-    assert heights == sorted(heights)
+        heights.add(window.strip.height())
+    assert len(heights) == 1
+
+
+def test_the_drawing_keeps_its_width_beside_a_narrow_rail(window):
+    window.resize(1360, 860)
+    QTest.qWait(1)
+    assert window.rail.largest.text() == "Largest over heights"
+    window.resize(1024, 576)
+    QTest.qWait(1)
+    assert window.drawings.plan.width() >= 560
+    assert window.rail.largest.text() == "Largest"
