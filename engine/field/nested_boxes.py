@@ -40,6 +40,7 @@ from engine.field.leg_bundles import (
     SPREAD,
     START,
     STOP,
+    SURFACE,
     distance_to_line,
 )
 
@@ -187,7 +188,7 @@ def interpolation_errors(
         p = distance_to_line(middle, row[START:SPREAD])
         d = p - radius - row[SPREAD]
         out[i] = np.inf
-        if not (d > 0.0 and d >= row[NEED]):
+        if not (d > 0.0 and p - radius - row[SURFACE] >= row[NEED]):
             continue
         lx, ly, lz = row[STOP:SPREAD] - row[START:STOP]
         length = np.sqrt(lx * lx + ly * ly + lz * lz)

@@ -70,13 +70,15 @@ def flux_density(
     """
     checked = complex_currents(conductors, currents)
     places = as_points(points)
-    keeps = cache is not None and len(conductors) * places.nbytes <= cache.limit
-    if not keeps and pays(conductors, len(places)):
+    needed = len(conductors) * places.nbytes
+    room = 0 if cache is None else cache.limit
+    # Where it pays, responses that would push out many others are not worth the time.
+    if needed > room // 8 and pays(conductors, len(places)):
         return interpolated_flux_density(
             conductors, checked, places, cancelled=cancelled, progress=progress
         ).b
     tiling = tiling_of(conductors, places)
-    if cache is None or not keeps:
+    if cache is None or needed > room:
         return _direct(tiling, checked, False, cancelled, progress)
     rows = _responses(tiling, cache, cancelled, progress)
     out = np.zeros((len(checked), len(tiling.points), 3), np.complex128)

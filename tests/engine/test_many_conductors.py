@@ -7,7 +7,11 @@ import pytest
 from numpy.typing import NDArray
 
 from engine import field
+from engine.adaptive_maps import adaptive_layer
+from engine.case_fields import CaseCurrents, CaseFields
+from engine.circuits import LoadCase
 from engine.conductor import Conductor
+from engine.currents import CasePhasors, Component
 from engine.errors import ComputationCancelled
 from engine.field import flux_density, interpolated_flux_density
 from engine.field.filaments import orders_of
@@ -17,6 +21,7 @@ from engine.field.legs import legs_of
 from engine.field.many import FEWEST_LEGS, PRECISION
 from engine.field.nested_boxes import Box, interpolation_errors
 from engine.runs import Bar, Round
+from engine.sampling import horizontal, on_plane
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
@@ -210,7 +215,7 @@ def test_the_bound_of_one_box_holds_and_is_no_fancy(
 def test_a_large_site_is_the_sum_of_its_parts() -> None:
     """Parts below the size from which `flux_density` interpolates."""
     rng = np.random.default_rng(8)
-    parts, currents = random_site(rng, 170)
+    parts, currents = random_site(rng, 420)
     points = plane(8, 110)
     assert field.pays(parts, len(points))
     whole = flux_density(parts, currents, points)
@@ -284,3 +289,19 @@ def test_many_tiles_are_measured_as_each_by_itself() -> None:
         for first in range(0, len(points), TILE)
     ]
     assert (whole == np.array(single)).all()
+
+
+def test_a_map_of_a_large_site_is_right_everywhere() -> None:
+    rng = np.random.default_rng(13)
+    parts, currents = random_site(rng, 420)
+    sample = on_plane(horizontal((-7.0, 7.0), (-7.0, 7.0), 0.2), 0.1)
+    assert field.pays(parts, len(sample.points))
+    component = Component(50.0, 50.0, "")
+    phasors = CasePhasors(LoadCase(id="all"), (component,), {}, ())
+    case = CaseCurrents(phasors.case, (component,), currents, phasors, ())
+    found = adaptive_layer(CaseFields(tuple(parts), (case,)), sample)
+    half = len(parts) // 2
+    true = flux_density(parts[:half], currents[:, :half], sample.points)
+    true += flux_density(parts[half:], currents[:, half:], sample.points)
+    assert found.evaluations < len(sample.points)
+    assert found.ac == pytest.approx(sizes(true)[0], rel=2e-3)
