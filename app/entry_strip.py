@@ -25,6 +25,7 @@ from PySide6.QtWidgets import (
 from app import entry_words
 from app.elided_choice import ElidedChoice
 from app.entry_fields import FIELDS, LENGTH, MEANINGS
+from app.entry_line import EntryLine, explain, toggle_style
 from app.panels.panel import decimal_sign
 from app.slip import Slip
 from app.theme import BODY, STEP, theme_for
@@ -35,7 +36,6 @@ from engine.errors import UserError
 from engine.typed_lengths import typed_length
 
 _EXAMPLE = "to 3.2 -0.35 z 2.6"
-
 
 #: Width of the toggles and of what tools offer. [logical pixels]
 _OFFERED = 36 * BODY
@@ -89,17 +89,14 @@ class EntryStrip(QWidget):
         self.way = QComboBox()
         self.way.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
         self.way.addItems([way for way in FIELDS if way != LENGTH])
-        self.way.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
-        self._explain(self.way, "Way of entering", "to a place, by a way, go, or size")
+        explain(self.way, "Way of entering", "to a place, by a way, go, or size")
         row.addWidget(self.way)
         self.labels: list[QLabel] = []
         self.fields: list[QLineEdit] = []
         for _ in range(3):
-            label, field = QLabel(), QLineEdit()
+            label, field = QLabel(), self._line(self._enter_fields)
             label.setBuddy(field)
             field.setFixedWidth(5 * BODY)
-            field.returnPressed.connect(self._enter_fields)
-            field.textEdited.connect(self._clear_fault)
             row.addWidget(label)
             row.addWidget(field)
             self.labels.append(label)
@@ -110,19 +107,25 @@ class EntryStrip(QWidget):
         return group
 
     def _words_line(self) -> QWidget:
-        self.words = QLineEdit()
+        self.words = self._line(self._enter_words)
         self.words.setPlaceholderText(_EXAMPLE)
         self.words.setMinimumWidth(6 * BODY)
         self.words.setMaximumWidth(12 * BODY)
-        self.words.returnPressed.connect(self._enter_words)
-        self.words.textEdited.connect(self._clear_fault)
-        self._explain(
+        explain(
             self.words,
             "Entry in words",
             "to x y z, by dx dy dz, go length toward degrees, size along-x along-y; "
             "units glued to their number, as in 320mm or 10ft6in",
         )
         return self.words
+
+    def _line(self, enter: Callable[[], None]) -> EntryLine:
+        """A field that `enter` is called for on Enter, unless that ends the drawing."""
+        line = EntryLine()
+        line.returnPressed.connect(lambda: self._ends() or enter())
+        line.erased_nothing.connect(self._take_back)
+        line.textEdited.connect(self._clear_fault)
+        return line
 
     def _second_group(self) -> QWidget:
         """Toggles, the height of the active tool, and what it offers.
@@ -198,6 +201,21 @@ class EntryStrip(QWidget):
             super().keyPressEvent(event)
 
     # -- entering ---------------------------------------------------------------
+
+    def _ends(self) -> bool:
+        """End what is being drawn, when nothing is entered; whether that was so."""
+        tool = self._tool
+        if tool is None or tool.anchor() is None or tool.takes_length():
+            return False
+        if any(field.text().strip() for field in (*self.fields, self.words)):
+            return False
+        self._clear_fault()
+        tool.enter()
+        return True
+
+    def _take_back(self) -> None:
+        if self._tool is not None:
+            self._tool.backspace()
 
     def _enter_words(self) -> None:
         text = self.words.text().strip()
@@ -279,7 +297,7 @@ class EntryStrip(QWidget):
             field.setPlaceholderText("°" if text == "toward" else self._unit)
             unit = "" if text == "toward" else f" [{self._unit}]"
             if text:
-                self._explain(field, f"{way} {text}", f"{MEANINGS[text]}{unit}")
+                explain(field, f"{way} {text}", f"{MEANINGS[text]}{unit}")
         self._clear_fault()
 
     def _offer_length(self) -> None:
@@ -324,7 +342,7 @@ class EntryStrip(QWidget):
         combo.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
         combo.setMinimumWidth(6 * BODY)
         combo.setMaximumWidth(14 * BODY)
-        self._explain(combo, name.capitalize(), "What the tool draws next")
+        explain(combo, name.capitalize(), "What the tool draws next")
         combo.textActivated.connect(lambda value: self._choose(name, value))
         return combo
 
@@ -364,18 +382,8 @@ class EntryStrip(QWidget):
             field.clear()
 
     def _paint_toggles(self) -> None:
-        """A toggle that is on is filled, so that it shows in every theme."""
-        theme = theme_for(self.palette())
-        style = (
-            f"QToolButton {{ border: 1px solid {theme.line}; border-radius: {STEP}px;"
-            f" padding: {STEP // 2}px {STEP}px; color: {theme.text}; }}"
-            f"QToolButton:checked {{ background: {theme.accent};"
-            f" border-color: {theme.accent}; color: {theme.on_accent}; }}"
-            f"QToolButton:focus {{ border: 2px solid {theme.accent}; }}"
-            f"QToolButton:checked:focus {{ border: 2px solid {theme.text}; }}"
-        )
         for button in (self.hold, self.catch):
-            button.setStyleSheet(style)
+            button.setStyleSheet(toggle_style(theme_for(self.palette())))
 
     def _toggle(
         self, text: str, meaning: str, heard: Callable[[bool], None]
@@ -384,12 +392,6 @@ class EntryStrip(QWidget):
         button.setText(text)
         button.setCheckable(True)
         button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
-        self._explain(button, text, meaning)
+        explain(button, text, meaning)
         button.toggled.connect(heard)
         return button
-
-    @staticmethod
-    def _explain(widget: QWidget, name: str, meaning: str) -> None:
-        widget.setAccessibleName(name)
-        widget.setAccessibleDescription(meaning)
-        widget.setToolTip(f"{name}: {meaning}" if name not in meaning else meaning)

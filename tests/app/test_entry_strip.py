@@ -51,6 +51,23 @@ def test_words_reach_the_tool(strip: EntryStrip, qtbot: QtBot) -> None:
     assert strip.height_shown.text() == "z 2.60 m"
 
 
+def test_an_empty_field_leaves_its_keys_to_the_tool(
+    strip: EntryStrip, qtbot: QtBot
+) -> None:
+    document = Document()
+    tool = RunTool(document, ViewState())
+    strip.set_tool(tool)
+    for words in ("to 0 0 z 3", "by 4 0", "by 0 2", "by 0 7"):
+        typed(qtbot, strip.words, words)
+    qtbot.keyClick(strip.words, Qt.Key.Key_Backspace)
+    qtbot.keyClick(strip.fields[0], Qt.Key.Key_Return)
+    (run,) = document.committed.runs
+    assert run.route == ((0.0, 0.0, 3.0), (4.0, 0.0, 3.0), (4.0, 2.0, 3.0))
+    assert strip.fault.text() == ""
+    qtbot.keyClick(strip.words, Qt.Key.Key_Return)
+    assert "Nothing is entered" in strip.fault.text()
+
+
 def test_tab_walks_through_the_labelled_fields(strip: EntryStrip, qtbot: QtBot) -> None:
     strip.activateWindow()
     strip.fields[0].setFocus()
