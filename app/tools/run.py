@@ -8,12 +8,16 @@ from typing import get_args
 from app.tools.drawing_tool import SAME, Choice, Points
 from app.tools.tool import Overlay, Point, Pointer
 from engine.circuits import Circuit
-from engine.new_sources import riser_to, run_height, with_new_run
+from engine.edits import added
+from engine.new_sources import new_circuit, riser_to, run_height, with_new_run
 from engine.runs import RunKind
 from engine.shaping import counted
 
 LEVEL, UP, DOWN = "level", "riser up", "riser down"
 KINDS: tuple[RunKind, ...] = get_args(RunKind)
+
+#: Choices of the circuit besides those there are.
+AS_LAST, A_NEW_ONE = "as the last run", "a new circuit"
 
 
 class RunTool(Points):
@@ -105,11 +109,17 @@ class RunTool(Points):
         layout = self._document.committed
         name = self.choices()[2].value
         circuit = next((c for c in layout.circuits if _shown_name(c) == name), None)
+        if name == A_NEW_ONE:
+            circuit = new_circuit(layout)
+            layout = added(layout, circuit)
         after, id = with_new_run(
             layout, self._points, self.kind, circuit.id if circuit else ""
         )
         run = next(run for run in after.runs if run.id == id)
         self._commit(f"Draw {counted((run,))}", after, (id,))
+        if name == A_NEW_ONE:
+            # What is drawn next most often goes on from here.
+            self._chosen["circuit"] = AS_LAST
 
     def _start_over(self) -> None:
         self._chosen["next leg"] = LEVEL
@@ -119,8 +129,9 @@ class RunTool(Points):
         self._say()
 
     def _circuit_names(self) -> tuple[str, ...]:
-        circuits = self._document.committed.circuits
-        return ("as the last run", *(_shown_name(circuit) for circuit in circuits))
+        names = [_shown_name(one) for one in self._document.committed.circuits]
+        # The first run makes the first circuit anyway.
+        return (AS_LAST, *names, *((A_NEW_ONE,) if names else ()))
 
     def _next_hint(self) -> str:
         if self.next_leg != LEVEL:

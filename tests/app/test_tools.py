@@ -194,6 +194,26 @@ def test_a_run_has_the_height_of_its_room_and_makes_its_circuit() -> None:
     assert d.layout.circuits == ()
 
 
+def test_a_further_run_may_have_a_circuit_of_its_own() -> None:
+    d = desk(RunTool)
+
+    def draw(y: float) -> str:
+        d.click(0.0, y)
+        d.click(4.0, y)
+        d.tool.enter()
+        return d.layout.runs[-1].section.circuits[0].circuit
+
+    assert "a new circuit" not in d.tool.choices()[2].values
+    assert draw(0.0) == draw(1.0) == "circuit-1"
+    d.tool.choose("circuit", "a new circuit")
+    assert draw(2.0) == "circuit-2"
+    assert d.tool.choices()[2].value == "as the last run"
+    assert draw(3.0) == "circuit-2"
+    d.document.undo_stack.undo()
+    d.document.undo_stack.undo()
+    assert [circuit.id for circuit in d.layout.circuits] == ["circuit-1"]
+
+
 def test_a_run_under_the_ceiling() -> None:
     d = desk(RoomTool, STOREYS)
     d.drag((0.0, 0.0), (5.0, 4.0))
