@@ -29,9 +29,7 @@ from engine.circuits import LoadCase
 from engine.conductor import Conductor
 from engine.currents import CasePhasors, Component
 from engine.field import flux_density, interpolated_flux_density
-from engine.field.kernel import TILE
-from engine.field.many import FEWEST_LEGS
-from engine.field.tiles import tiling_of
+from engine.field.many import FEWEST_POINTS
 from engine.runs import Round, SlotLoad
 from engine.sampling import horizontal, on_plane
 
@@ -113,19 +111,20 @@ def sum_beside(fields: CaseFields, sample: PlaneSample) -> None:
     x, y, _ = sample.points.T
     middle = (abs(x - HALL[0] / 2) < 10) & (abs(y - HALL[1] / 2) < 10)
     points, currents = sample.points[middle], fields.cases[0].currents
+    # A tenth of them, side by side, are enough to tell the rate.
+    part = (np.abs(points[:, :2] - np.array(HALL) / 2) < 3.2).all(axis=1)
+    some = points[part]
     direct, boxes = Measured(), Measured()
-    tiling = tiling_of(fields.conductors, points[:TILE])
-    legs = len(tiling.legs.table)
+    legs = sum(len(c.path) - 1 for c in fields.conductors)
     with direct.timed():
-        # A few tiles are enough to tell the rate.
-        some = points[: 16 * TILE]
         true = direct_sum(fields, some)
     with boxes.timed():
         found = interpolated_flux_density(fields.conductors, currents, points)
-    off = np.sqrt((np.abs(found.b[:, : len(some)] - true) ** 2).sum(axis=2))
+    off = np.sqrt((np.abs(found.b[:, part] - true) ** 2).sum(axis=2))
     size = np.sqrt((np.abs(true) ** 2).sum(axis=2))
-    bound = found.bound[:, : len(some)]
-    print(f"the middle of the hall, {len(points):,d} points, the same filaments")
+    bound = found.bound[:, part]
+    print(f"the middle of the hall, {len(points):,d} points, the same filaments;")
+    print(f"every segment: a tenth of them, {FEWEST_POINTS - 1} at a time")
     print(f"{'':20s} wall us/point   CPU us/point   pairs/point")
     for name, took, n, pairs in (
         ("every segment", direct, len(some), legs),
@@ -140,12 +139,14 @@ def sum_beside(fields: CaseFields, sample: PlaneSample) -> None:
 
 
 def direct_sum(fields: CaseFields, points: np.ndarray) -> np.ndarray:
-    """Parts of the site that are too small for anything but the direct sum."""
-    parts, currents = fields.conductors, fields.cases[0].currents
-    step = FEWEST_LEGS // SEGMENTS - 1
-    return sum(
-        flux_density(parts[k : k + step], currents[:, k : k + step], points)
-        for k in range(0, len(parts), step)
+    """Points that are too few at a time for anything but the direct sum."""
+    step, currents = FEWEST_POINTS - 1, fields.cases[0].currents
+    return np.concatenate(
+        [
+            flux_density(fields.conductors, currents, points[k : k + step])
+            for k in range(0, len(points), step)
+        ],
+        axis=1,
     )
 
 
