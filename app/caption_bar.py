@@ -139,8 +139,8 @@ class CaptionBar(QWidget):
         whole.setContentsMargins(2 * STEP, 0, 2 * STEP, 0)
         whole.setSpacing(STEP)
         whole.addWidget(self._choices, 1)
-        for widget in (self._state, self._layers):
-            whole.addWidget(widget, 0, Qt.AlignmentFlag.AlignTop)
+        for beside in (self._state, self._layers):
+            whole.addWidget(beside, 0, Qt.AlignmentFlag.AlignTop)
         self._state.setContentsMargins(0, STEP, 0, 0)
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Minimum)
 

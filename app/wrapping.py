@@ -22,7 +22,7 @@ class WrappingRow(QLayout):
     def __init__(self, parent: QWidget, gap: int, margin: int) -> None:
         super().__init__(parent)
         self._items: list[QLayoutItem] = []
-        self._gap = gap
+        self._gap, self._row_gap = gap, min(gap, STEP)
         self.setContentsMargins(margin, margin // 2, margin, margin // 2)
 
     def addItem(self, item: QLayoutItem) -> None:
@@ -96,11 +96,11 @@ class WrappingRow(QLayout):
             height = max(item.sizeHint().height() for item in row)
             if moves:
                 self._place(row, QRect(inner.left(), y, inner.width(), height))
-            y += height + self._gap
+            y += height + self._row_gap
         margins = self.contentsMargins()
         return (
             y
-            - (self._gap if rows else 0)
+            - (self._row_gap if rows else 0)
             - inner.top()
             + (margins.top() + margins.bottom())
         )

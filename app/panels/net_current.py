@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QComboBox, QHBoxLayout, QVBoxLayout, QWidget
 
 from app.panels.panel import Words, decimal_sign, scrolled
@@ -22,6 +23,10 @@ from engine.section_currents import (
 
 #: Terms that are listed one by one.
 _MOST = 12
+
+
+#: Width that the words need beside the phasors. [logical pixels]
+_WORDS = 17 * BODY
 
 
 class NetCurrent(QWidget):
@@ -57,6 +62,14 @@ class NetCurrent(QWidget):
         area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         area.setMinimumWidth(34 * STEP)
         row.addWidget(area, 1)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        # The words come first: they say in figures what the phasors show.
+        room = self.width() - _WORDS
+        self.phasors.setVisible(room >= self.phasors.minimumWidth())
+        side = min(self.phasors.sizeHint().width(), room)
+        self.phasors.setMaximumWidth(max(side, self.phasors.minimumWidth()))
+        super().resizeEvent(event)
 
     def show_section(self, layout: Layout, case: LoadCase, section: Section) -> None:
         """Show the currents of a section in a load case."""

@@ -5,8 +5,15 @@ from __future__ import annotations
 from collections.abc import Callable
 from html import escape
 
-from PySide6.QtCore import QLocale
-from PySide6.QtGui import QGuiApplication, QPalette, QShowEvent, Qt
+from PySide6.QtCore import QLocale, QSize
+from PySide6.QtGui import (
+    QGuiApplication,
+    QPainter,
+    QPaintEvent,
+    QPalette,
+    QShowEvent,
+    Qt,
+)
 from PySide6.QtWidgets import (
     QFrame,
     QLabel,
@@ -107,6 +114,35 @@ class Words(QLabel):
         if self._style in _SIZES:
             font.setPixelSize(_SIZES[self._style])
         self.setFont(font)
+
+
+class ElidedLine(Words):
+    """Words in one line, shortened in their middle where there is no room."""
+
+    def __init__(self, text: str = "", style: str = "muted") -> None:
+        super().__init__(text, style)
+        self.setWordWrap(False)
+
+    def setText(self, text: str) -> None:
+        super().setText(text)
+        self.setToolTip(plain_tip(text))
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(min(self.sizeHint().width(), 8 * TITLE), self.sizeHint().height())
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        metrics = self.fontMetrics()
+        if metrics.horizontalAdvance(self.text()) <= self.width():
+            super().paintEvent(event)
+            return
+        mode = Qt.TextElideMode.ElideMiddle
+        painter = QPainter(self)
+        painter.drawText(
+            self.rect(),
+            Qt.AlignmentFlag.AlignVCenter,
+            metrics.elidedText(self.text(), mode, self.width()),
+        )
+        painter.end()
 
 
 #: Colours and sizes of texts by their style; of others the window's.

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from math import atan2, cos, floor, log10, sin
 
-from PySide6.QtCore import QEvent, QPointF, QSize, Qt
+from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QSizePolicy, QWidget
 
@@ -22,6 +22,8 @@ class PhasorDrawing(QWidget):
     def __init__(self) -> None:
         super().__init__()
         self._currents: SectionCurrents | None = None
+        #: Boxes of names drawn already. [px]
+        self._taken: list[QRectF] = []
         self.setSizePolicy(QSizePolicy.Policy.Maximum, QSizePolicy.Policy.Maximum)
         self.setMinimumSize(28 * STEP, 28 * STEP)
         self.setAccessibleName("Phasors of the currents in the section")
@@ -65,7 +67,8 @@ class PhasorDrawing(QWidget):
         ring = ring_value(largest)
         scale = radius / largest
         painter.drawEllipse(middle, ring * scale, ring * scale)
-        self._ring_text(painter, theme, middle + QPointF(0, ring * scale), ring)
+        foot = middle + QPointF(0, ring * scale)
+        self._taken = [self._ring_text(painter, theme, foot, ring)]
         for label, value in values.items():
             colour = QColor(conductor_colour(label, theme))
             self._arrow(painter, theme, middle, value * scale, colour, 2.0, label)
@@ -100,21 +103,46 @@ class PhasorDrawing(QWidget):
         font.setBold(True)
         painter.setFont(font)
         metrics = QFontMetricsF(font)
-        beyond = value / abs(value) * (abs(value) + 3 * STEP)
-        at = start + QPointF(beyond.real, -beyond.imag)
-        at -= QPointF(metrics.horizontalAdvance(name) / 2, -metrics.capHeight() / 2)
+        box = self._free_box(metrics, name, start, value)
+        self._taken.append(box)
         painter.setPen(QColor(theme.text))
-        painter.drawText(at, name)
+        painter.drawText(box, Qt.AlignmentFlag.AlignCenter, name)
+
+    def _free_box(
+        self, metrics: QFontMetricsF, name: str, start: QPointF, value: complex
+    ) -> QRectF:
+        """Where a name stands about the tip of its arrow, off other names."""
+        width, height = metrics.horizontalAdvance(name), metrics.capHeight() + 4
+        away = value / abs(value)
+        boxes = []
+        for turn in (0.0, 0.9, -0.9, 1.6, -1.6, 2.3, -2.3):
+            side = complex(cos(turn), sin(turn)) * away
+            # As far as the name reaches that way, and a little.
+            reach = abs(side.real) * width / 2 + abs(side.imag) * height / 2 + 6
+            at = value + side * reach
+            middle = start + QPointF(at.real, -at.imag)
+            box = QRectF(0, 0, width, height)
+            box.moveCenter(middle)
+            boxes.append(box)
+        inside = QRectF(self.rect())
+        free = (
+            box
+            for box in boxes
+            if inside.contains(box) and not any(map(box.intersects, self._taken))
+        )
+        return next(free, boxes[0])
 
     def _ring_text(
         self, painter: QPainter, theme: Theme, at: QPointF, ring: float
-    ) -> None:
+    ) -> QRectF:
         font = QFont(painter.font())
         font.setPixelSize(SMALL)
         font.setBold(False)
         painter.setFont(font)
         painter.setPen(QColor(theme.muted))
-        painter.drawText(at + QPointF(STEP, -STEP / 2), f"{significant(ring)} A")
+        text, corner = f"{significant(ring)} A", at + QPointF(STEP, -STEP / 2)
+        painter.drawText(corner, text)
+        return QFontMetricsF(font).boundingRect(text).translated(corner)
 
 
 def ring_value(largest: float) -> float:

@@ -7,12 +7,10 @@ left when the currents are added, in the load case shown.
 from __future__ import annotations
 
 from PySide6.QtCore import QSignalBlocker, Qt, Signal
-from PySide6.QtGui import QKeyEvent, QKeySequence, QShortcut
+from PySide6.QtGui import QKeyEvent, QKeySequence, QResizeEvent, QShortcut
 from PySide6.QtWidgets import (
     QCheckBox,
-    QHBoxLayout,
     QPushButton,
-    QSizePolicy,
     QSplitter,
     QWidget,
 )
@@ -20,13 +18,14 @@ from PySide6.QtWidgets import (
 from app.document import Document
 from app.panels.form import Form
 from app.panels.net_current import NetCurrent
-from app.panels.panel import Panel, Words, column, scrolled
+from app.panels.panel import ElidedLine, Panel, Words, column, scrolled
 from app.panels.section_acts import Change, SectionActs
 from app.panels.section_canvas import SectionCanvas, neat
 from app.panels.section_forms import section_groups
 from app.panels.slot_forms import with_new_section
-from app.theme import STEP
+from app.theme import BODY, STEP
 from app.view_state import ViewState
+from app.wrapping import WrappingRow, group_in_row
 from engine.errors import UserError
 from engine.layout import Layout
 from engine.runs import Run, Section
@@ -63,9 +62,7 @@ class SectionPanel(Panel):
         self._view_state = view_state
         self._run_id = ""
         self._base: Layout | None = None
-        self._title = Words(style="title")
-        self._title.setWordWrap(False)
-        self._title.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
+        self._title = ElidedLine(style="title")
         self._direction = Words(style="plain")
         self.reason = Words(style="warning")
         self.canvas = SectionCanvas()
@@ -79,6 +76,7 @@ class SectionPanel(Panel):
         self.net_current = NetCurrent()
         self.acts = SectionActs()
         self.acts.asked.connect(self._edit)
+        self._is_shared = False
         self._build()
         view_state.changed.connect(lambda _look: self._on_look())
 
@@ -151,17 +149,18 @@ class SectionPanel(Panel):
         catch.setChecked(True)
         catch.setToolTip("Dragged conductors are caught every 5 mm; Alt lets go")
         catch.toggled.connect(lambda on: setattr(self.canvas, "catches", on))
-        head = QHBoxLayout()
-        head.setSpacing(2 * STEP)
-        head.addWidget(self._title, 1)
+        head = QWidget()
+        line = WrappingRow(head, gap=4 * STEP, margin=0)
+        line.addWidget(self._title)
+        group, controls = group_in_row()
         for widget in (catch, self._other_end, close):
-            head.addWidget(widget)
+            controls.addWidget(widget)
+        line.addWidget(group)
         left = QWidget()
         picture = column(left)
         picture.addWidget(self.canvas, 1)
         picture.addWidget(self.net_current)
         right = QWidget()
-        right.setMinimumWidth(61 * STEP)
         side = column(right)
         side.addWidget(self.acts)
         side.addWidget(scrolled(self.form), 1)
@@ -170,9 +169,9 @@ class SectionPanel(Panel):
         self._work.addWidget(right)
         self._work.setStretchFactor(0, 1)
         self._work.setChildrenCollapsible(False)
-        self._work.setSizes([700, 320])
+        self._work.splitterMoved.connect(self._on_shared)
         box = column(self, 3 * STEP)
-        box.addLayout(head)
+        box.addWidget(head)
         box.addWidget(self._direction)
         box.addWidget(self.reason)
         box.addWidget(self._work, 1)
@@ -182,6 +181,17 @@ class SectionPanel(Panel):
             self.acts.buttons["remove"].click,
             context=Qt.ShortcutContext.WidgetShortcut,
         )
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        # Until someone shares the width out otherwise, the picture has most of it.
+        if not self._is_shared:
+            side = max(self.acts.minimumSizeHint().width(), round(0.38 * self.width()))
+            side = min(side, 28 * BODY)
+            self._work.setSizes([max(1, self.width() - side), side])
+        super().resizeEvent(event)
+
+    def _on_shared(self, _at: int, _index: int) -> None:
+        self._is_shared = True
 
     def _show_form(self) -> None:
         run = self.run

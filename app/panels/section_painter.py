@@ -38,6 +38,8 @@ class SectionPainter:
         self._theme = theme
         self._scale = scale
         self._font = QFont(painter.font())
+        #: Boxes of letters that stand beside their conductors. [px]
+        self._letters: list[QRectF] = []
 
     def paper(self, area: QRectF, middle: QPointF, grid: float) -> None:
         """The paper with grid lines through the route, every tenth one stronger."""
@@ -182,10 +184,28 @@ class SectionPainter:
             at = QPointF(middle.x() - width / 2, middle.y() + metrics.capHeight() / 2)
             self._painter.drawText(at, label)
             return
-        at = QPointF(middle.x() - width / 2, box.top() - 2 * STEP)
-        if fits:
-            at = QPointF(middle.x() - width / 2, middle.y() + metrics.capHeight() / 2)
+        at = QPointF(middle.x() - width / 2, middle.y() + metrics.capHeight() / 2)
+        if not fits:
+            at = self._free_place(box, label, metrics)
         self._patch(at, label, metrics)
+
+    def _free_place(self, box: QRectF, label: str, metrics: QFontMetricsF) -> QPointF:
+        """Above or below a conductor, off the letters of its neighbours."""
+        left = box.center().x() - metrics.horizontalAdvance(label) / 2
+        line = metrics.capHeight() + STEP
+        above = box.top() - 2 * STEP
+        below = box.bottom() + 2 * STEP + metrics.capHeight()
+        baselines = (above, below, above - line, below + line, above - 2 * line)
+        places = [QPointF(left, baseline) for baseline in baselines]
+        text = metrics.tightBoundingRect(label).adjusted(-2, -1, 2, 1)
+        free = (
+            at
+            for at in places
+            if not any(text.translated(at).intersects(b) for b in self._letters)
+        )
+        at = next(free, places[0])
+        self._letters.append(text.translated(at))
+        return at
 
     def _text(self, at: QPointF, text: str, size: int) -> None:
         self._font.setPixelSize(size)

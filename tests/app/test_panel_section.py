@@ -12,6 +12,7 @@ from PySide6.QtTest import QTest
 from app.document import Document
 from app.panels.phasor_drawing import ring_value
 from app.panels.section import SectionPanel
+from app.theme import BODY
 from app.view_state import ViewState
 from engine.circuits import CircuitFactor, LoadCase
 from engine.edits import added, replaced
@@ -328,3 +329,25 @@ def test_a_renamed_conductor_stays_in_its_joints(document, panel):
     line.editingFinished.emit()
     joints = {joint.id: joint for joint in document.layout.joints}
     assert joints["tie"].ends[0].slot == "first"
+
+
+def test_names_of_phasors_stand_apart(panel, document, qtbot):
+    # One conductor alone: its phasor is the net current too.
+    document.select(["link-L1"])
+    qtbot.waitUntil(lambda: panel.run.id == "link-L1")
+    drawing = panel.net_current.phasors
+    drawing.grab()
+    boxes = drawing._taken
+    assert len(boxes) == 3
+    for k, box in enumerate(boxes):
+        assert not any(box.intersects(other) for other in boxes[:k])
+
+
+def test_a_small_section_cuts_no_button_and_no_title(panel):
+    panel.resize(570, 420)
+    QTest.qWait(1)
+    for button in panel.acts.buttons.values():
+        assert button.width() >= button.sizeHint().width()
+    assert panel._title.width() >= panel._title.sizeHint().width()
+    words = panel.net_current.net
+    assert words.width() >= 16 * BODY
