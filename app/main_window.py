@@ -50,7 +50,7 @@ from app.panels.section import SectionPanel
 from app.recompute import Recompute
 from app.recovery import Autosave
 from app.side_panels import WIDTH, SidePanels
-from app.theme import DARK, LIGHT, STEP, Theme, apply
+from app.theme import BODY, DARK, LIGHT, STEP, Theme, apply
 from app.tool_row import ToolRow
 from app.toolbox import Toolbox
 from app.variant_band import VariantBand
@@ -74,6 +74,9 @@ DRAWING = 570
 
 #: Under this height the foot panels open in the drawing's place. [logical pixels]
 LOW = 800
+
+#: Under this height lines that tooltips hold too give way. [logical pixels]
+VERY_LOW = 22 * BODY + 314
 
 
 class MainWindow(QMainWindow):
@@ -307,6 +310,7 @@ class MainWindow(QMainWindow):
         """Foot panels take at most 40 % of the height, or the drawing's place."""
         low = self.height() < LOW
         self.splitter.setVisible(not (opened and low))
+        self.margins.set_low(self.height() < VERY_LOW)
         limit = 16777215 if low and opened else int(0.4 * self.height())
         self.margins.setMaximumHeight(limit)
         self.tell_hint()

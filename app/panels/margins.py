@@ -21,8 +21,9 @@ from app.panels import margin_words as words
 from app.panels.cautions import CautionsPanel
 from app.panels.margin_marks import RatioBar, StateSign, state_colour
 from app.panels.margin_table import MarginTable
-from app.panels.panel import Words
+from app.panels.panel import ElidedLine, Words
 from app.theme import BODY, SMALL, STEP, theme_shown
+from app.wrapping import WrappingRow
 from engine.layout import Layout
 
 
@@ -127,7 +128,12 @@ class MarginTile(QAbstractButton):
         self.case.set_whole(row.case_title, theme.muted)
         said = words.sentence(row, shown, is_sampled) + was
         self.setAccessibleName(said)
-        self.setToolTip(f"{said}.\nClick to see the place.")
+        self.set_more("")
+
+    def set_more(self, text: str) -> None:
+        """Say something more in the tooltip."""
+        more = f"\n{text}" if text else ""
+        self.setToolTip(f"{self.accessibleName()}.{more}\nClick to see the place.")
 
     def paintEvent(self, event: QPaintEvent) -> None:
         if not (self.underMouse() or self.hasFocus()):
@@ -163,6 +169,7 @@ class MarginsPanel(QWidget):
         self._margins: Margins | None = None
         self._kept: tuple[str, str] | None = None
         self._held: Margins | None = None
+        self._is_low = False
         self.setAccessibleName("Margins")
         self.tile = MarginTile()
         self.tile.clicked.connect(self._go_to_worst)
@@ -174,7 +181,7 @@ class MarginsPanel(QWidget):
         self.ask_why = _link("Where this value comes from: the shares of the circuits")
         self.ask_why.setText("Why ▸")
         self.ask_why.clicked.connect(self._on_why)
-        self.net_current = Words("", "muted")
+        self.net_current = ElidedLine()
         self.open_board = Words(words.OPEN_BOARD, "warning")
         self.caution = _link("Open the full text of the cautions")
         self.caution.setText(f"{words.CAUTION_LINE} · Cautions ▸")
@@ -203,10 +210,13 @@ class MarginsPanel(QWidget):
         box.setContentsMargins(2 * STEP, STEP, 2 * STEP, STEP)
         box.setSpacing(STEP // 2)
         box.addLayout(row)
-        box.addWidget(self.net_current)
         box.addWidget(self.open_board)
         box.addWidget(self.below, 1)
-        box.addWidget(self.caution)
+        foot = QWidget()
+        line = WrappingRow(foot, gap=6 * STEP, margin=0)
+        line.addWidget(self.net_current)
+        line.addWidget(self.caution)
+        box.addWidget(foot)
 
     @property
     def is_open(self) -> bool:
@@ -235,9 +245,20 @@ class MarginsPanel(QWidget):
         # The line keeps its place while dragging, so that nothing jumps.
         if text or not is_sampled:
             self.net_current.setText(text)
-            self.net_current.setVisible(bool(text))
+            self._show_net_current()
         self.net_current.setEnabled(not is_sampled)
         self.open_board.setVisible(words.is_at_open_board(margins.layout))
+
+    def set_low(self, low: bool) -> None:
+        """Leave the line of the net current to the tooltip where height is scarce."""
+        self._is_low = low
+        self._show_net_current()
+
+    def _show_net_current(self) -> None:
+        text = self.net_current.text() if self.tile.isVisibleTo(self) else ""
+        is_room = not self._is_low or self.is_open
+        self.net_current.setVisible(bool(text) and is_room)
+        self.tile.set_more(text)
 
     @property
     def sentence(self) -> str:
@@ -264,6 +285,7 @@ class MarginsPanel(QWidget):
         if not self.is_open:
             return False
         self.below.hide()
+        self._show_net_current()
         self.opened.emit(False)
         return True
 
@@ -304,6 +326,7 @@ class MarginsPanel(QWidget):
             return
         self.below.setCurrentWidget(what)
         self.below.show()
+        self._show_net_current()
         what.setFocus()
         self.opened.emit(True)
 
