@@ -121,8 +121,9 @@ class EntryStrip(QWidget):
 
     def _line(self, enter: Callable[[], None]) -> EntryLine:
         """A field that `enter` is called for on Enter, unless that ends the drawing."""
+
         line = EntryLine()
-        line.returnPressed.connect(lambda: self._ends() or enter())
+        line.returnPressed.connect(lambda: None if self._ends() else enter())
         line.erased_nothing.connect(self._take_back)
         line.textEdited.connect(self._clear_fault)
         return line
@@ -181,12 +182,12 @@ class EntryStrip(QWidget):
         self._show_choices()
 
     def take_focus(self, text: str = "") -> None:
-        """Go to the line of words, beginning with `text`; without one to the fields."""
-        field = self.words if text else self.fields[0]
+        """Go to the line of words with a first letter, else to the fields."""
+        field = self.words if text.isalpha() else self.fields[0]
         # Not as by a key of its own: that would select what is typed already.
         field.setFocus(Qt.FocusReason.OtherFocusReason)
         if text:
-            self.words.setText(text)
+            field.setText(text)
 
     def changeEvent(self, event: QEvent) -> None:
         super().changeEvent(event)
@@ -205,9 +206,8 @@ class EntryStrip(QWidget):
     def _ends(self) -> bool:
         """End what is being drawn, when nothing is entered; whether that was so."""
         tool = self._tool
-        if tool is None or tool.anchor() is None or tool.takes_length():
-            return False
-        if any(field.text().strip() for field in (*self.fields, self.words)):
+        typed = any(field.text().strip() for field in (*self.fields, self.words))
+        if typed or tool is None or tool.anchor() is None:
             return False
         self._clear_fault()
         tool.enter()

@@ -61,6 +61,6 @@ def _guarded(act: Callable[[], object], messages: Messages) -> Callable[[], None
         try:
             act()
         except UserError as error:
-            messages.warn(str(error))
+            messages.refuse(str(error))
 
     return run

@@ -23,6 +23,8 @@ from app.theme import STEP, theme_for
 
 #: How long an information stays; warnings and errors stay until closed. [ms]
 PATIENCE = 6000
+#: How long a refusal stays, unless the work goes on before. [ms]
+PATIENCE_OF_REFUSALS = 20_000
 
 
 class MessageBar(QWidget):
@@ -47,6 +49,7 @@ class MessageBar(QWidget):
         self._close.setAutoRaise(True)
         self._close.clicked.connect(self.hide)
         self._details = ""
+        self._is_refusal = False
         self._offer = QPushButton()
         self._offer.setAccessibleName("Do what is offered")
         self._offer.setToolTip("Does at once what the message offers")
@@ -76,6 +79,11 @@ class MessageBar(QWidget):
     def tell(self, kind: str, sentence: str) -> None:
         """Show a sentence."""
         self._show(kind, sentence, "")
+
+    def let_go(self) -> None:
+        """The work goes on: what was refused before is of no interest any more."""
+        if self._is_refusal:
+            self.hide()
 
     def offer(self, sentence: str, button: str, act: Callable[[], object]) -> None:
         """Show a warning with something that can be done about it at once."""
@@ -107,9 +115,12 @@ class MessageBar(QWidget):
         self._copy.setVisible(bool(details))
         self._offer.hide()
         self._offered = None
+        self._is_refusal = kind == "refusal"
         self._timer.stop()
         if kind == "information":
             self._timer.start(PATIENCE)
+        elif self._is_refusal:
+            self._timer.start(PATIENCE_OF_REFUSALS)
         self.show()
         self.slip.come()
 

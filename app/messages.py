@@ -23,7 +23,7 @@ class Messages(QObject):
     Signals
     -------
     told(kind, sentence)
-        `kind` is "information", "warning" or "error".
+        `kind` is "information", "refusal", "warning" or "error".
     failed(summary, details)
         Something nobody expected; `details` is the traceback.
     """
@@ -33,6 +33,10 @@ class Messages(QObject):
 
     def inform(self, sentence: str) -> None:
         self.told.emit("information", sentence)
+
+    def refuse(self, sentence: str) -> None:
+        """Say why something does not happen; it goes when the work goes on."""
+        self.told.emit("refusal", sentence)
 
     def warn(self, sentence: str) -> None:
         self.told.emit("warning", sentence)

@@ -64,7 +64,7 @@ class WindowLinks(QObject):
         recompute.progress.connect(
             lambda share, text: w.working.setText(text if share < 1 else "")
         )
-        w.rail.refused.connect(w.messages.warn)
+        w.rail.refused.connect(w.messages.refuse)
         w.jobs.refused.connect(w.messages.error)
 
     def _connect_pages(self) -> None:
@@ -84,6 +84,9 @@ class WindowLinks(QObject):
         w.document.path_changed.connect(self._show_title)
         w.document.undo_stack.cleanChanged.connect(self._show_title)
         w.document.changed.connect(self._on_changed)
+        # Not what changes in passing: a refused move is taken back right after.
+        w.document.undo_stack.indexChanged.connect(lambda _: w.message_bar.let_go())
+        w.toolbox.activated.connect(lambda _tool: w.message_bar.let_go())
 
     # -- following ----------------------------------------------------------------
 

@@ -68,6 +68,9 @@ class CalibrateTool(DrawingTool):
     def catches(self) -> bool:
         return self._wants_place()
 
+    def takes_numbers(self) -> bool:
+        return self._wants_place()
+
     def takes_length(self) -> bool:
         return self._wants_distance()
 

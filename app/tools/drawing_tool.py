@@ -117,8 +117,10 @@ class DrawingTool(Tool):
     @contextmanager
     def _shown(self) -> Iterator[None]:
         """Turn a `UserError` into a message; what was asked for does not happen."""
-        with self._messages.shown():
+        try:
             yield
+        except UserError as error:
+            self._messages.refuse(str(error))
 
     def _commit(self, text: str, layout: Layout, ids: Sequence[str]) -> None:
         """End with one step of the history, and select what was made.
@@ -181,6 +183,9 @@ class Points(DrawingTool):
 
     def anchor(self) -> Point | None:
         return self._points[-1][:2] if self._points else None
+
+    def takes_numbers(self) -> bool:
+        return bool(self._points)
 
     def press(self, pointer: Pointer) -> None:
         if not self._refuses(pointer):

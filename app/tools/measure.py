@@ -32,6 +32,9 @@ class MeasureTool(DrawingTool):
     def anchor(self) -> Point | None:
         return None if self._fixed else self._start
 
+    def takes_numbers(self) -> bool:
+        return self.anchor() is not None
+
     def press(self, pointer: Pointer) -> None:
         if self._start is None or self._fixed or pointer.plane != self._plane:
             self._start, self._end, self._fixed = pointer.at, None, False
@@ -65,12 +68,12 @@ class MeasureTool(DrawingTool):
 
     def entry(self, entry: Entry) -> None:
         if entry.kind == "size" or entry.x is None or entry.y is None:
-            self._messages.error("Enter a place or a way with x and y.")
+            self._messages.refuse("Enter a place or a way with x and y.")
             return
         at = (entry.x, entry.y)
         if entry.is_relative:
             if self._start is None:
-                self._messages.error("There is no place yet to measure from.")
+                self._messages.refuse("There is no place yet to measure from.")
                 return
             at = (neat(self._start[0] + at[0]), neat(self._start[1] + at[1]))
         self.press(Pointer(at=at, raw=at, plane=self._plane))

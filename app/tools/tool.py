@@ -227,6 +227,13 @@ class Tool(QObject):
     def entry(self, entry: Entry) -> None:
         """Take what was typed into the entry strip."""
 
+    def takes_numbers(self) -> bool:
+        """Whether a number typed on the drawing belongs to what is under way.
+
+        It goes into the entry strip then, and does not choose another tool.
+        """
+        return False
+
     def takes_length(self) -> bool:
         """Whether the entry strip should ask for a bare length.
 

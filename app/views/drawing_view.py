@@ -26,7 +26,7 @@ from app.tools.tool import Overlay, Pointer, Tool
 from app.view_state import Look, ViewState
 from app.views.camera import Camera
 from app.views.cut_mark import draw_cut
-from app.views.drawing_keys import ARROWS, COMMANDS
+from app.views.drawing_keys import ARROWS, is_entry
 from app.views.drawing_scene import DrawingScene
 from app.views.inks import Inks
 from app.views.legend import Legend
@@ -54,7 +54,8 @@ class DrawingView(ZoomableView):
         Place in the view's plane under the pointer, after the catch. [m]
     pointer_left()
     entry_wanted(text)
-        Tab or a letter while a tool awaits a place: it belongs into the entry strip.
+        Tab, a letter, or a number while something is under way: it belongs into the
+        entry strip.
     """
 
     pointer_moved = Signal(float, float)
@@ -327,6 +328,10 @@ class DrawingView(ZoomableView):
     # -- keys -------------------------------------------------------------------
 
     def event(self, event: QEvent) -> bool:
+        # What is half drawn is not lost to the key of another tool.
+        if event.type() == QEvent.Type.ShortcutOverride and is_entry(event, self._tool):
+            event.accept()
+            return True
         # While a tool awaits a place, Tab leads to where it can be typed.
         if (
             isinstance(event, QKeyEvent)
@@ -358,7 +363,7 @@ class DrawingView(ZoomableView):
             tool.backspace()
         elif key == Qt.Key.Key_Delete:
             tool.delete()
-        elif event.text().isalpha() and not event.modifiers() & COMMANDS:
+        elif is_entry(event, tool):
             self.entry_wanted.emit(event.text())
         elif key != Qt.Key.Key_Escape or not tool.back():
             event.ignore()

@@ -8,6 +8,7 @@ from pathlib import Path
 
 import msgspec
 import pytest
+from hands import Hands
 from PySide6.QtCore import QMimeData, QPointF, Qt, QUrl
 from PySide6.QtGui import QDropEvent, QImage
 from PySide6.QtTest import QTest
@@ -483,6 +484,25 @@ def test_nothing_moves_when_something_is_told(window, qtbot):
     assert not slip.isVisible()
 
 
+def test_a_refusal_goes_when_the_work_goes_on(window):
+    layout = layout_file.read(SMALL)
+    window.document.open(layout, None)
+    run = msgspec.structs.replace(layout.runs[0], name="Another")
+    window.messages.refuse("Enter both x and y of the place.")
+    assert window.message_bar.isVisible()
+    window.document.preview(replaced(layout, run))
+    window.document.revert()
+    assert window.message_bar.isVisible()
+    window.toolbox.activate(window.toolbox.tools[1])
+    assert not window.message_bar.isVisible()
+    window.messages.refuse("Enter both x and y of the place.")
+    window.document.edit("Name a run", replaced(layout, run))
+    assert not window.message_bar.isVisible()
+    window.messages.warn("The file was changed by another program.")
+    window.document.undo_stack.undo()
+    assert window.message_bar.isVisible()
+
+
 @pytest.mark.parametrize("width", [1024, 1280, 1600])
 def test_a_change_of_tool_moves_nothing(window, width):
     window.resize(width, 700)
@@ -502,3 +522,25 @@ def test_the_drawing_keeps_its_width_beside_a_narrow_rail(window):
     QTest.qWait(1)
     assert window.drawings.plan.width() >= 560
     assert window.rail.largest.text() == "Largest"
+
+
+def test_a_number_goes_on_with_what_is_half_drawn(window, qtbot):
+    """It chose another tool before, and the half-drawn run was gone."""
+    hands = Hands(qtbot, window)
+    window.document.open(layout_file.read(SMALL), None)
+    hands.plan.setFocus()
+    hands.type("5")
+    assert window.toolbox.active.name == "Run"
+    hands.point(1.0, 1.0)
+    hands.type("3.5")
+    hands.key(Qt.Key.Key_Tab)
+    hands.type("1")
+    hands.key(Qt.Key.Key_Return)
+    assert window.toolbox.active.name == "Run"
+    _, second = window.toolbox.active.points
+    assert second[:2] == (3.5, 1.0)
+    hands.plan.setFocus()
+    for _ in range(2):
+        hands.key(Qt.Key.Key_Escape)
+    hands.type("2")
+    assert window.toolbox.active.name == "Room"
