@@ -17,7 +17,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.theme import STEP, theme_for
+from app.theme import STEP, scaled, theme_for
 from engine.errors import UserError
 
 
@@ -107,7 +107,7 @@ class AskBar(QWidget):
             field.setCurrentText(question.default)
         else:
             field = QLineEdit(question.default)
-            field.setMaximumWidth(120)
+            field.setMaximumWidth(scaled(120))
             field.selectAll()
             field.returnPressed.connect(self._apply)
         field.setToolTip(question.tip)

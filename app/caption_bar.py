@@ -188,9 +188,10 @@ class CaptionBar(QWidget):
             lacking -= given
         self._height.setFixedWidth(self._height.width_of_text())
         # Whatever is shown anew lays everything out again: only what changes.
-        for part, group in self._groups.items():
-            group.setVisible(part in wide)
-            self._dots[part].setVisible(part is not next(iter(wide), None))
+        first = next(iter(wide), None)
+        for each, group in self._groups.items():
+            group.setVisible(each in wide)
+            self._dots[each].setVisible(each is not first)
         self._choices.updateGeometry()
 
     def _room(self) -> int:

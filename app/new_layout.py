@@ -26,14 +26,14 @@ from app.page import Page
 from app.panels.field import Choice, Quantity, ValueField
 from app.panels.panel import Words, decimal_sign, scrolled
 from app.starter_choices import BEGINNINGS, Asked, Beginning, Offered
-from app.theme import STEP
+from app.theme import STEP, scaled
 from engine.errors import UserError
 from engine.layout import Layout
 from engine.typed_lengths import length_text
 from engine.units import LENGTH_UNITS
 
 #: Width of the choices beside the picture. [logical pixels]
-_CHOICES = 340
+_CHOICES = scaled(340)
 
 _AMPERES = {"A": 1.0, "kA": 1000.0}
 _LENGTHS = {**LENGTH_UNITS, "cm": 0.01}
@@ -53,7 +53,8 @@ class NewLayoutPage(Page):
         super().__init__("New layout")
         self._given = choices
         self._choices = choices or preferences.Preferences()
-        self._values = {each.name: each.defaults() for each in BEGINNINGS}
+        self._values: dict[str, dict[str, Any]] = {}
+        self._begin_anew()
         self._layout: Layout | None = None
         self.fields: dict[str, ValueField | Choice] = {}
         self.preview = LayoutPreview()
@@ -73,14 +74,19 @@ class NewLayoutPage(Page):
         row.addWidget(left)
         row.addWidget(self.preview, 1)
         self.column.addLayout(row, 1)
-        self.setFocusProxy(self.buttons[0])
         self.buttons[1].setChecked(True)
 
     def showEvent(self, event: QShowEvent) -> None:
         if self._given is None:
-            self._choices = preferences.load()
+            before, self._choices = self._choices, preferences.load()
+            if self._choices.length_unit != before.length_unit:
+                self._begin_anew()
         self._show_asks()
         super().showEvent(event)
+
+    def _begin_anew(self) -> None:
+        unit = self._choices.length_unit
+        self._values = {each.name: each.defaults(unit) for each in BEGINNINGS}
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
@@ -109,7 +115,7 @@ class NewLayoutPage(Page):
             button = QRadioButton(each.name)
             button.setToolTip(each.about)
             button.setAccessibleDescription(each.about)
-            button.toggled.connect(lambda on: self._show_asks() if on else None)
+            button.toggled.connect(partial(self._on_toggled, button))
             group.addButton(button)
             self.buttons.append(button)
             about = Words(each.about)
@@ -124,6 +130,12 @@ class NewLayoutPage(Page):
         box.addWidget(note)
         box.addStretch(1)
         return whole
+
+    def _on_toggled(self, button: QRadioButton, on: bool) -> None:
+        if on:
+            # Arrow keys go on from the one that is chosen.
+            self.setFocusProxy(button)
+            self._show_asks()
 
     def _show_asks(self) -> None:
         while (held := self._asks.takeAt(0)) is not None:

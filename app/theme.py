@@ -14,6 +14,7 @@ from PySide6.QtWidgets import QApplication
 #: Font sizes and the step of all spacing. [logical pixels]
 SMALL, BODY, TITLE = 11, 13, 16
 STEP = 4
+_BODY = BODY
 
 
 def set_text_size(percent: int) -> None:
@@ -29,6 +30,15 @@ def set_text_size(percent: int) -> None:
     else:
         font.setPixelSize(round(font.pixelSize() * percent / 100))
     QApplication.setFont(font)
+
+
+def scaled(pixels: float) -> int:
+    """A width that holds text, for texts of the size shown. [logical pixels]
+
+    >>> scaled(100)
+    100
+    """
+    return round(pixels * BODY / _BODY)
 
 
 @dataclass(frozen=True)
@@ -142,7 +152,7 @@ def qt_palette(theme: Theme) -> QPalette:
 #: Controls whose outline has to be seen against window and panel.
 _OUTLINED = (
     "QAbstractSpinBox", "QCheckBox", "QComboBox", "QGroupBox", "QLineEdit",
-    "QPlainTextEdit", "QPushButton", "QRadioButton", "QTextEdit",
+    "QPlainTextEdit", "QPushButton", "QRadioButton", "QSlider", "QTextEdit",
 )  # fmt: skip
 
 

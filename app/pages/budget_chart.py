@@ -16,12 +16,12 @@ from PySide6.QtGui import (
 from PySide6.QtWidgets import QSizePolicy, QToolTip, QWidget
 
 from app.panels.panel import plain_tip
-from app.theme import BODY, SMALL, STEP, theme_for
+from app.theme import BODY, SMALL, STEP, scaled, theme_for
 from app.uncertainty_values import BudgetBar, bars, share_text, value_text
 from engine.budget import Budget
 from engine.layout import Layout
 
-_ROW, _HEAD = 9 * STEP, 6 * STEP
+_ROW, _HEAD = scaled(9 * STEP), scaled(6 * STEP)
 _HEADING = "standard uncertainty (k = 1) · share of the variance"
 
 
@@ -93,8 +93,8 @@ class BudgetChart(QWidget):
             painter.end()
             return
         most = max(bar.standard for bar in self._bars)
-        label = min(68.0 * STEP, 0.45 * self.width())
-        value = 38.0 * STEP
+        label = min(scaled(68 * STEP), 0.42 * self.width())
+        value = float(scaled(38 * STEP))
         room = max(10.0, self.width() - label - value - 4 * STEP)
         large, small = QFont(self.font()), QFont(self.font())
         large.setPixelSize(BODY)
@@ -113,13 +113,13 @@ class BudgetChart(QWidget):
                 )
                 painter.drawText(line, Qt.AlignmentFlag.AlignLeft, shown)
             length = room * bar.standard / most
-            box = QRectF(label, top + 2 * STEP, max(length, 1.0), 4 * STEP)
+            box = QRectF(label, top + 2 * STEP, max(length, 1.0), _ROW - 5 * STEP)
             ink = QColor(theme.accent if bar.item or bar.told else theme.line)
             painter.fillRect(box, ink)
             painter.setFont(small)
             painter.setPen(QColor(theme.text))
             text = f"{value_text(bar.standard, self._layout)} · {share_text(bar.share)}"
-            at = QRectF(box.right() + 1.5 * STEP, top, value, 8 * STEP)
+            at = QRectF(box.right() + 1.5 * STEP, top, value, _ROW - STEP)
             painter.drawText(at, Qt.AlignmentFlag.AlignVCenter, text)
         painter.setPen(QPen(QColor(theme.line), 1.0))
         painter.drawLine(int(label), _HEAD, int(label), self.height() - STEP)

@@ -14,7 +14,7 @@ from PySide6.QtCore import (
 from PySide6.QtGui import QGuiApplication, QKeyEvent, QKeySequence
 from PySide6.QtWidgets import QAbstractItemView, QFrame, QTableView
 
-from app.theme import STEP
+from app.theme import STEP, scaled
 
 _Index = QModelIndex | QPersistentModelIndex
 
@@ -74,7 +74,7 @@ class PlainTable(QTableView):
         self.setShowGrid(False)
         self.setWordWrap(False)
         self.verticalHeader().hide()
-        self.verticalHeader().setDefaultSectionSize(6 * STEP)
+        self.verticalHeader().setDefaultSectionSize(scaled(6 * STEP))
         self.horizontalHeader().setHighlightSections(False)
 
     def show_rows(

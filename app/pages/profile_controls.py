@@ -6,12 +6,13 @@ from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QCheckBox, QComboBox, QLineEdit, QPushButton, QWidget
 
 from app.document import Document
+from app.elided_choice import ElidedChoice
 from app.map_request import case_of, height_figures
 from app.pages.check_menu import CheckMenu
 from app.panels.panel import decimal_sign
 from app.profile_values import Profiled, level_heights, profile_of
 from app.profile_words import first_measured_from
-from app.theme import STEP
+from app.theme import STEP, scaled
 from app.view_state import ViewState
 from app.wrapping import WrappingRow
 from engine.errors import UserError
@@ -57,7 +58,7 @@ class ProfileControls(QWidget):
         self.typed.setPlaceholderText("as drawn")
         self.typed.setAccessibleName("Heights, typed")
         self.typed.setToolTip("Heights above the datum, blanks between")
-        self.typed.setMaximumWidth(26 * STEP)
+        self.typed.setMaximumWidth(scaled(26 * STEP))
         self.typed.editingFinished.connect(self._on_typed)
         self.kinds = choice("AC: all frequencies above 0 Hz; DC: 0 Hz", 16)
         self.kinds.activated.connect(lambda _k: self.restyled.emit())
@@ -187,10 +188,10 @@ class ProfileControls(QWidget):
 
 def choice(tip: str, steps: int) -> QComboBox:
     """A choice no wider than so many steps; its list is as wide as its texts."""
-    box = QComboBox()
+    box = ElidedChoice()
     box.setToolTip(tip)
     box.setAccessibleName(tip)
-    box.setMaximumWidth(steps * STEP)
+    box.setMaximumWidth(scaled(steps * STEP))
     box.setMinimumContentsLength(6)
     box.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
     return box

@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QComboBox, QSpinBox, QToolButton, QWidget
 from app.pages.profile_controls import choice
 from app.pages.report_sheets import WHOLE, WIDTH, ReportSheets
 from app.panels.panel import plain_tip
-from app.theme import STEP
+from app.theme import STEP, scaled
 from app.wrapping import WrappingRow
 from engine.exchange.pdf_pages import Section
 
@@ -99,6 +99,6 @@ def _turn(sign: str, tip: str, turn_by: Callable[[int], None], by: int) -> QTool
     made.setToolTip(tip)
     made.setAccessibleName(tip.partition(" (")[0])
     made.setAutoRaise(True)
-    made.setFixedWidth(7 * STEP)
+    made.setFixedWidth(scaled(7 * STEP))
     made.clicked.connect(lambda _on=False: turn_by(by))
     return made

@@ -23,7 +23,7 @@ from PySide6.QtWidgets import (
     QTreeWidgetItem,
 )
 
-from app.theme import STEP, theme_for
+from app.theme import STEP, scaled, theme_for
 from app.why_values import (
     Why,
     circuits_text,
@@ -46,7 +46,7 @@ _HEADS = (
 )
 _BAR, _ALONE, _PER, _WAS = 1, 5, 6, 7
 #: [logical pixels]
-_NARROW = 720
+_NARROW, _NARROWEST = 720, 600
 _PRINTED = 960
 _PART = Qt.ItemDataRole.UserRole
 _THIN = Qt.ItemDataRole.UserRole + 1
@@ -137,7 +137,7 @@ class ShareTree(QTreeWidget):
         header = self.header()
         header.setStretchLastSection(False)
         for column, width in enumerate((180, 200, 88, 60, 88, 88, 104, 88)):
-            header.resizeSection(column, width)
+            header.resizeSection(column, scaled(width))
         header.setSectionResizeMode(_BAR, QHeaderView.ResizeMode.Stretch)
         header.setMinimumSectionSize(12 * STEP)
         # Beside the share of now.
@@ -251,8 +251,12 @@ class ShareTree(QTreeWidget):
             )
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        # Bars need some width: where there is little, this column can be done without.
-        self.setColumnHidden(_ALONE, self.width() < _NARROW)
+        # Bars need some width: where there is little, columns can be done without.
+        self.setColumnHidden(_ALONE, self.width() < scaled(_NARROW))
+        is_narrow = self.width() < scaled(_NARROWEST)
+        self.setColumnHidden(_PER, is_narrow)
+        self.headerItem().setText(_BAR, "◂   ▸" if is_narrow else _HEADS[_BAR][0])
+        self.header().resizeSection(0, scaled(130 if is_narrow else 170))
         super().resizeEvent(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:

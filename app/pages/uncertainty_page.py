@@ -18,7 +18,7 @@ from app.pages.profile_controls import choice
 from app.pages.tolerance_form import tolerance_groups
 from app.panels.form import Form
 from app.panels.panel import Words, button, scrolled
-from app.theme import STEP
+from app.theme import STEP, scaled
 from app.uncertainty_values import (
     Budgeted,
     BudgetMaker,
@@ -37,7 +37,7 @@ from app.wrapping import WrappingRow
 from engine.budget import Budget
 
 #: Under this width the tolerances stand instead of the budget. [logical pixels]
-NARROW = 180 * STEP
+NARROW = scaled(180 * STEP)
 
 NO_PLACES = (
     "Draw a zone where people are, or place a receptor, to see what matters there"
@@ -100,6 +100,7 @@ class UncertaintyPage(AskingPage):
         )
         self.kinds = choice("AC: all frequencies above 0 Hz; DC: 0 Hz", 16)
         self.kinds.activated.connect(lambda _k: self._paint())
+        self.kinds.hide()
         self.tolerances = button(
             "Tolerances", "Show or hide what the budgets are made of", self._arrange
         )
@@ -141,10 +142,10 @@ class UncertaintyPage(AskingPage):
         split.setChildrenCollapsible(False)
         split.addWidget(self._shown)
         self._entered = scrolled(self.form)
-        self._entered.setMinimumWidth(80 * STEP)
+        self._entered.setMinimumWidth(scaled(80 * STEP))
         split.addWidget(self._entered)
         split.setStretchFactor(0, 1)
-        split.setSizes([160 * STEP, 82 * STEP])
+        split.setSizes([160 * STEP, scaled(82 * STEP)])
         self.column.addWidget(split, 1)
 
     # -- events -------------------------------------------------------------------

@@ -33,7 +33,7 @@ from app.panels.kinds import (
     mixed_text,
 )
 from app.panels.panel import Words, column, plain_tip
-from app.theme import STEP
+from app.theme import STEP, scaled
 from engine.entered_values import part_at, with_part
 from engine.errors import UserError
 from engine.layout import Layout
@@ -179,7 +179,7 @@ class LinesEditor(_Reasoned):
         super().__init__(enter)
         self.text = _Lines()
         self.text.setTabChangesFocus(True)
-        self.text.setFixedHeight(16 * STEP)
+        self.text.setFixedHeight(scaled(16 * STEP))
         self.text.setAccessibleName(name)
         self.text.setToolTip(tip)
         self.text.left.connect(self._on_left)

@@ -18,7 +18,7 @@ from app.panels.origin import OriginMark
 from app.panels.panel import Words, decimal_sign
 from app.panels.parts import Group, Part
 from app.panels.slot_forms import SlotItem
-from app.theme import STEP
+from app.theme import STEP, scaled
 from engine.errors import UserError
 from engine.items import Item
 from engine.layout import Layout
@@ -26,7 +26,7 @@ from engine.runs import Run
 from engine.sections import slots
 
 #: Width of the labels before the fields. [logical pixels]
-_LABEL = 26 * STEP
+_LABEL = scaled(26 * STEP)
 
 
 class Form(QWidget):

@@ -16,7 +16,7 @@ from app.panels.level_values import PointRow, RangeRow, Row
 from app.panels.origin import OriginMark
 from app.panels.panel import Words, column, decimal_sign
 from app.panels.table import Column, RowsTable
-from app.theme import STEP
+from app.theme import STEP, scaled
 from engine.criteria import LevelRanges, LevelTable, ReferenceLevel
 from engine.errors import UserError
 from engine.layout import Layout
@@ -52,7 +52,7 @@ class LevelTableEditor(QWidget):
         )  # fmt: skip
         # An ignored width would count as none beside the other choice.
         self.unit.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Fixed)
-        self.unit.setFixedWidth(20 * STEP)
+        self.unit.setFixedWidth(scaled(20 * STEP))
         self.mark = OriginMark(document)
         self.ranges = RowsTable(
             self._range_columns(), name="Ranges", new_row=lambda _rows: RangeRow()

@@ -13,7 +13,7 @@ from PySide6.QtCore import (
     Qt,
     Signal,
 )
-from PySide6.QtGui import QColor, QPainter
+from PySide6.QtGui import QColor, QPainter, QResizeEvent
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QHeaderView,
@@ -34,7 +34,7 @@ from app.panels.margin_words import (
     value_text,
     was_text,
 )
-from app.theme import STEP, theme_for, theme_shown
+from app.theme import STEP, scaled, theme_for, theme_shown
 from engine.layout import Layout
 from engine.units import flux_density_text
 
@@ -57,6 +57,9 @@ _HEADINGS = (
 _NUMBERS = (3, 4, 5)
 #: Shown only where something was measured.
 MEASURED = 8
+
+#: Columns of names, and how they share the width that figures leave.
+_NAMES = {1: 1.0, 2: 1.1, 6: 1.0, 7: 1.1, MEASURED: 1.0}
 
 
 class MarginModel(QAbstractTableModel):
@@ -159,6 +162,14 @@ class _Sign(QStyledItemDelegate):
         return QSize(28, 24)
 
 
+class _Indented(QStyledItemDelegate):
+    """Words with a little room before them, off the figures at their left."""
+
+    def initStyleOption(self, option: QStyleOptionViewItem, index: _Index) -> None:
+        super().initStyleOption(option, index)
+        option.rect = option.rect.adjusted(2 * STEP, 0, 0, 0)  # type: ignore[attr-defined]
+
+
 class MarginTable(QTableView):
     """The table; a row that is chosen shows its place.
 
@@ -172,9 +183,12 @@ class MarginTable(QTableView):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._model = MarginModel()
+        self._is_held = False
         self.setModel(self._model)
         self._sign = _Sign(self)
         self.setItemDelegateForColumn(0, self._sign)
+        self._indented = _Indented(self)
+        self.setItemDelegateForColumn(6, self._indented)
         self.setAccessibleName("Margins of all zones and receptors")
         self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
@@ -183,13 +197,11 @@ class MarginTable(QTableView):
         self.setShowGrid(False)
         self.setWordWrap(False)
         self.verticalHeader().hide()
-        self.verticalHeader().setDefaultSectionSize(6 * STEP)
+        self.verticalHeader().setDefaultSectionSize(scaled(6 * STEP))
         header = self.horizontalHeader()
         header.setStretchLastSection(False)
         header.setSectionResizeMode(QHeaderView.ResizeMode.Interactive)
-        for column, width in enumerate((28, 170, 200, 84, 64, 84, 190, 190, 190)):
-            header.resizeSection(column, width)
-        header.setSectionResizeMode(6, QHeaderView.ResizeMode.Stretch)
+        header.setMinimumSectionSize(28)
         self.clicked.connect(self._on_chosen)
         self.activated.connect(self._on_chosen)
 
@@ -198,8 +210,25 @@ class MarginTable(QTableView):
         self._model.set_margins(margins, held)
         has_measured = any(row.measured_ratio is not None for row in margins.rows)
         self.setColumnHidden(MEASURED, not has_measured)
-        width = 84 if held is None else 190
-        self.horizontalHeader().resizeSection(3, width)
+        self._is_held = held is not None
+        self._share_width()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        self._share_width()
+        super().resizeEvent(event)
+
+    def _share_width(self) -> None:
+        """Figures as wide as they are; the names share the rest, states read whole."""
+        header = self.horizontalHeader()
+        header.resizeSection(0, 28)
+        for column, width in ((3, 190 if self._is_held else 84), (4, 64), (5, 84)):
+            header.resizeSection(column, scaled(width))
+        names = [c for c in _NAMES if not self.isColumnHidden(c)]
+        room = self.viewport().width() - sum(map(header.sectionSize, (0, 3, 4, 5)))
+        shares = sum(_NAMES[c] for c in names)
+        for column in names:
+            wide = round(room * _NAMES[column] / shares) - 1
+            header.resizeSection(column, max(wide, scaled(110)))
 
     @property
     def current(self) -> MarginRow | None:

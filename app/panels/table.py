@@ -31,7 +31,7 @@ from PySide6.QtWidgets import (
 from app.panels.panel import Words, decimal_sign
 from app.panels.rows_model import Column, Index, RowsModel
 from app.spreadsheet import Cells, cells, copied, placed
-from app.theme import STEP, theme_shown
+from app.theme import STEP, scaled, theme_shown
 from engine.errors import UserError
 
 #: What may be held down while text is typed.
@@ -71,6 +71,10 @@ class _Cell(QStyledItemDelegate):
             model.setData(index, editor.currentText())
             return
         super().setModelData(editor, model, index)
+
+
+#: Height of a row. [logical pixels]
+_ROW = scaled(7 * STEP)
 
 
 class RowsTable(QWidget):
@@ -114,14 +118,14 @@ class RowsTable(QWidget):
             | QAbstractItemView.EditTrigger.DoubleClicked
         )
         self.view.verticalHeader().hide()
-        self.view.verticalHeader().setDefaultSectionSize(7 * STEP)
+        self.view.verticalHeader().setDefaultSectionSize(_ROW)
         header = self.view.horizontalHeader()
         header.setSectionResizeMode(QHeaderView.ResizeMode.Interactive)
         header.setHighlightSections(False)
         header.setStretchLastSection(True)
         header.setDefaultAlignment(Qt.AlignmentFlag.AlignLeft)
         for i, column in enumerate(columns):
-            header.resizeSection(i, column.width * STEP)
+            header.resizeSection(i, scaled(column.width * STEP))
         self.view.setShowGrid(False)
         self.view.setWordWrap(False)
         self.view.setAlternatingRowColors(True)
@@ -169,7 +173,7 @@ class RowsTable(QWidget):
     def fit_height(self, fewest: int, most: int) -> None:
         """Be as high as the rows need, between two counts of rows."""
         shown = min(max(len(self.rows), fewest), most)
-        height = self.view.horizontalHeader().sizeHint().height() + 7 * STEP * shown
+        height = self.view.horizontalHeader().sizeHint().height() + _ROW * shown
         bar = self.view.horizontalScrollBar().sizeHint().height()
         self.view.setFixedHeight(height + bar + 2)
 

@@ -17,7 +17,7 @@ from PySide6.QtWidgets import (
 from app.elevation_plane import ALONG, ELEVATIONS, DrawnLine
 from app.panels.field import Choice, ValueField
 from app.panels.panel import decimal_sign
-from app.theme import STEP
+from app.theme import STEP, scaled
 from engine.errors import UserError
 from engine.typed_lengths import length_text, typed_length
 
@@ -65,7 +65,7 @@ class ElevationStrip(QWidget):
             name="Place of the vertical plane",
             tip="Where the map's vertical plane stands; or drag its line on the plan",
         )
-        self.depth_field.line.setMaximumWidth(26 * STEP)
+        self.depth_field.line.setMaximumWidth(scaled(26 * STEP))
         # Why a text was refused needs the width of the strip, not of its field.
         box.addWidget(self.depth_field.reason)
         self.less = _step("−", "One step of the grid less")

@@ -21,7 +21,7 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QSizePolicy, QWidget
 
-from app.theme import BODY, SMALL, STEP, Theme, theme_for
+from app.theme import BODY, SMALL, STEP, Theme, scaled, theme_for
 from app.variant_maps import PaneMap
 from engine.colour_ramp import OPACITY
 
@@ -31,7 +31,7 @@ Sight = tuple[float, float, float]
 _HEAD = 7 * STEP
 
 #: Of the legend. [logical pixels]
-_LEGEND = 33 * STEP
+_LEGEND = scaled(33 * STEP)
 
 
 class MapPane(QWidget):

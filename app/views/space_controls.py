@@ -16,7 +16,7 @@ from PySide6.QtWidgets import (
 )
 
 from app.panels.panel import button
-from app.theme import STEP
+from app.theme import STEP, scaled
 from app.views.space_camera import SIGHTS
 from app.views.space_move import AXES
 from app.views.space_planes import UPRIGHT
@@ -133,7 +133,7 @@ class SpaceControls(QWidget):
         field = QLineEdit()
         field.setToolTip(tip)
         field.setAccessibleName(label or "Place of the upright map")
-        field.setFixedWidth(width * STEP)
+        field.setFixedWidth(scaled(width * STEP))
 
         def on_return() -> None:
             field.setModified(False)
