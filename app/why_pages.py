@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, TypeVar
 
 from PySide6.QtCore import QEvent, QObject, QPointF, Qt
 from PySide6.QtGui import QMouseEvent
-from PySide6.QtWidgets import QVBoxLayout
+from PySide6.QtWidgets import QVBoxLayout, QWidget
 
 from app.figures import FIGURE_KINDS, ask_figure
 from app.level_distance import PlaceFactor, Reached
@@ -60,7 +60,13 @@ class WhyPages(QObject):
         assert column is not None
         box = column.layout()
         assert isinstance(box, QVBoxLayout)
-        box.insertWidget(box.indexOf(window.ask_bar) + 1, self.distance)
+        # The bar belongs to the drawing: pages in its place are without it.
+        self._over_drawing = QWidget()
+        holder = QVBoxLayout(self._over_drawing)
+        holder.setContentsMargins(0, 0, 0, 0)
+        holder.addWidget(self.distance)
+        box.insertWidget(box.indexOf(window.ask_bar) + 1, self._over_drawing)
+        window.pages.currentChanged.connect(self._on_page)
         box.addWidget(self.foot)
         self._pointed: Point3 | None = None
         self._pressed: QPointF | None = None
@@ -78,6 +84,10 @@ class WhyPages(QObject):
         window.view_state.changed.connect(self._note_measured)
         window.document.selection_changed.connect(self._on_selection)
         window.drawings.plan.viewport().installEventFilter(self)
+
+    def _on_page(self, _index: int) -> None:
+        page = self._window.pages.currentWidget()
+        self._over_drawing.setVisible(page is self._window.drawings)
 
     # -- built when first shown ---------------------------------------------------
     # The imports within: plots take long to load.
