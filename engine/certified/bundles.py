@@ -18,11 +18,11 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
 
 from engine.certified.residues import FARTHEST, LONGEST, SHORTEST, START, STOP
 from engine.certified.segments import derivative_bounds, power_integrals
+from engine.compiled import compiled
 from engine.conductor import Conductor
 from engine.field.kernel import MU0_OVER_4PI
 
@@ -102,7 +102,7 @@ def _bundle(legs: Floats, currents: Complexes) -> tuple[Floats, Floats]:
     return row, np.stack([*flows, size @ change], axis=1)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def add_bundles(
     table: Floats,
     flows: Floats,
@@ -147,7 +147,7 @@ def add_bundles(
                 sizes[c, k] += flow[_TWIST] * bounds[k, 2]
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _bounds(bundle: Floats, centre: Floats, reach: float, out: Floats) -> bool:
     """Third and second derivatives: per A, per A m away, per A m of change.
 

@@ -8,7 +8,6 @@ from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
 
 from engine.certified.boxes import Boxes
@@ -35,6 +34,7 @@ from engine.certified.residues import (
     line_residue,
 )
 from engine.certified.segments import ROWS, add_segment, derivative_bounds
+from engine.compiled import compiled
 from engine.conductor import Conductor
 from engine.field.legs import leg_distance, legs_of
 
@@ -134,7 +134,7 @@ class Source:
         )
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _expand(
     centres: Floats,
     frames: Floats,
@@ -186,13 +186,13 @@ def _expand(
             third = second = error = 0.0
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _apart(point: Floats, other: Floats) -> float:
     x, y, z = point[0] - other[0], point[1] - other[1], point[2] - other[2]
     return float(np.sqrt(x * x + y * y + z * z))
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _to_axis(leg: Floats, point: Floats) -> float:
     x, y, z = point[0] - leg[0], point[1] - leg[1], point[2] - leg[2]
     lx, ly, lz = leg[3] - leg[0], leg[4] - leg[1], leg[5] - leg[2]
@@ -202,7 +202,7 @@ def _to_axis(leg: Floats, point: Floats) -> float:
     return float(np.sqrt(x * x + y * y + z * z))
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _gaps(
     centre: Floats, reach: float, legs: Floats, boxes: Floats, gaps: Floats
 ) -> bool:
@@ -226,7 +226,7 @@ def _gaps(
     return True
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _choose(
     legs: Floats,
     owner: Integers,
@@ -254,7 +254,7 @@ def _choose(
         share /= 4.0
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _rule_of(leg: Floats, gaps: Floats, allowed: float, rule: Integers) -> float:
     """The first rule whose residue is allowed, or the best; its residue. [T/A]"""
     if leg[IS_ROUND] > 0.0:
@@ -281,7 +281,7 @@ def _rule_of(leg: Floats, gaps: Floats, allowed: float, rule: Integers) -> float
     return float(total)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _counts(leg: Floats, rule: Integers) -> tuple[int, int]:
     """How many filaments a rule has along the two sides of a section."""
     if leg[IS_ROUND] > 0.0:
@@ -289,7 +289,7 @@ def _counts(leg: Floats, rule: Integers) -> tuple[int, int]:
     return LINE_COUNTS[rule[0]], LINE_COUNTS[rule[1]]
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _filament(
     leg: Floats, rule: Integers, f: int, g: int, p0: Floats, p1: Floats
 ) -> float:
@@ -308,7 +308,7 @@ def _filament(
     return float(weight)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _add_leg(
     leg: Floats, rule: Integers, centre: Floats, frame: Floats, out: Floats
 ) -> int:
@@ -322,7 +322,7 @@ def _add_leg(
     return int(along * across)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _leg_bounds(
     leg: Floats, rule: Integers, centre: Floats, reach: float
 ) -> tuple[float, float]:

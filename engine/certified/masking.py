@@ -7,11 +7,11 @@ from dataclasses import dataclass
 
 import numpy as np
 import shapely
-from numba import njit
 from numpy.typing import NDArray
 
 from engine.case_fields import CaseCurrents
 from engine.certified.boxes import Boxes
+from engine.compiled import compiled
 from engine.conductor import Conductor
 from engine.field.legs import leg_distance, legs_of
 from engine.masks import Keepout
@@ -135,7 +135,7 @@ def slopes_of(legs: Floats) -> Floats:
     return slopes
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _to_legs(
     legs: Floats,
     slopes: Floats,

@@ -32,9 +32,9 @@ from collections.abc import Sequence
 from math import comb, gamma, pi, sqrt
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
 
+from engine.compiled import compiled
 from engine.conductor import Conductor
 from engine.field.filaments import section_points
 from engine.field.kernel import MU0_OVER_4PI
@@ -159,14 +159,14 @@ def _fill_round(table: Floats, conductor: Conductor, lengths: Floats) -> None:
     table[:, SHEAR_START : SHEAR_START + 2] = np.linalg.norm(along, axis=2).T
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _over_length(m: int, gap: float, leg: Floats) -> float:
     """Bound of ∫ dl / r^m along a filament at least `gap` away."""
     line = _LINE[m] * gap
     return float(min(line, leg[LONGEST]) / gap**m)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _over_part(m: int, gap: float, leg: Floats) -> float:
     """Bound of ∫ dt / r^m, t from 0 to 1."""
     if leg[SHORTEST] <= 0.0:
@@ -174,7 +174,7 @@ def _over_part(m: int, gap: float, leg: Floats) -> float:
     return float(min(1.0, _LINE[m] * gap / leg[SHORTEST]) / gap**m)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def line_residue(leg: Floats, side: int, rule: int, gap: float) -> float:
     """Bound for a rule along a bar's width (0) or thickness (1). [T/A]"""
     n = _POINTS[rule]
@@ -186,7 +186,7 @@ def line_residue(leg: Floats, side: int, rule: int, gap: float) -> float:
     return float(MU0_OVER_4PI * size ** (2 * n) * _REMAINDERS[rule] * even)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def disc_residue(leg: Floats, rule: int, gap: float) -> float:
     """Bound for a rule in a round conductor by its degree. [T/A]"""
     n = _DEGREE[rule]
@@ -199,7 +199,7 @@ def disc_residue(leg: Floats, rule: int, gap: float) -> float:
     return float(MU0_OVER_4PI * leg[HALF_A] ** n * share * terms)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def axis_residue(leg: Floats, gap: float, start: float, stop: float) -> float:
     """Bound for the axis of a round conductor. [T/A]
 

@@ -24,9 +24,9 @@ References
 from __future__ import annotations
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
 
+from engine.compiled import compiled, contracted
 from engine.field.kernel import MU0_OVER_4PI
 
 Floats = NDArray[np.float64]
@@ -39,12 +39,12 @@ ROWS = 7
 Jet = tuple[float, float, float, float, float, float, float]
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _along(x: float, y: float, z: float, axis: Floats) -> float:
     return float(x * axis[0] + y * axis[1] + z * axis[2])
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _distance(x: float, y: float, z: float, frame: Floats) -> Jet:
     """Length of a vector whose end is the point."""
     r = np.sqrt(x * x + y * y + z * z)
@@ -55,7 +55,7 @@ def _distance(x: float, y: float, z: float, frame: Floats) -> Jet:
     return r, r1, r2, r3, (1.0 - r1 * r1) * i, -r1 * r2 * i, (1.0 - r2 * r2) * i
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _product(p: Jet, q: Jet) -> Jet:
     return (
         p[0] * q[0],
@@ -68,7 +68,7 @@ def _product(p: Jet, q: Jet) -> Jet:
     )
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _quotient(n: Jet, d: Jet, scale: float) -> Jet:
     i = 1.0 / d[0]
     f = n[0] * i
@@ -82,7 +82,7 @@ def _quotient(n: Jet, d: Jet, scale: float) -> Jet:
     )  # fmt: skip
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _sum(p: Jet, q: Jet, sign: float) -> Jet:
     return (
         p[0] + sign * q[0],
@@ -95,7 +95,7 @@ def _sum(p: Jet, q: Jet, sign: float) -> Jet:
     )
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def add_segment(
     p0: Floats, p1: Floats, centre: Floats, frame: Floats, weight: float, out: Floats
 ) -> None:
@@ -150,7 +150,7 @@ def add_segment(
         out[k, 2] += bz_[k]
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def derivative_bounds(
     p0: Floats, p1: Floats, centre: Floats, reach: float
 ) -> tuple[float, float]:
@@ -170,7 +170,7 @@ def derivative_bounds(
     return 24.0 * MU0_OVER_4PI * fifth, 6.0 * MU0_OVER_4PI * fourth
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def power_integrals(
     p0: Floats, p1: Floats, centre: Floats, reach: float
 ) -> tuple[float, float, float]:

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import numpy as np
 import shapely
-from numba import njit
 from numpy.typing import NDArray
 from shapely.geometry import Polygon
 
 from engine.certified.boxes import Boxes, halved
+from engine.compiled import compiled
 from engine.field.legs import leg_distance
 
 Floats = NDArray[np.float64]
@@ -144,7 +144,7 @@ def _frame_on(normal: Floats, frame: Floats) -> Floats:
     return np.array([first, np.cross(normal, first), normal])
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _to_leg(leg: Floats, points: Floats) -> Floats:
     out = np.empty(points.shape[0])
     for i in range(points.shape[0]):

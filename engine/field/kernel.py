@@ -22,8 +22,9 @@ References
 from __future__ import annotations
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
+
+from engine.compiled import compiled, contracted
 
 Floats = NDArray[np.float64]
 Integers = NDArray[np.int64]
@@ -40,7 +41,7 @@ ON_WIRE_SQUARED = 1e-18
 _ROWS = 8  # of the scratch: x, y, z, |a|, three sums, flag
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _add_flux_density(s: Floats, vertices: Floats, weight: float) -> None:
     """Add one polyline's field for `weight` amperes to the sums in the scratch."""
     x0, y0, z0 = vertices[0, 0], vertices[0, 1], vertices[0, 2]
@@ -85,7 +86,7 @@ def _add_flux_density(s: Floats, vertices: Floats, weight: float) -> None:
         x0, y0, z0 = x1, y1, z1
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _add_vector_potential(s: Floats, vertices: Floats, weight: float) -> None:
     """Add one polyline's vector potential for `weight` amperes to the sums."""
     for k in range(1, vertices.shape[0]):
@@ -116,7 +117,7 @@ def _add_vector_potential(s: Floats, vertices: Floats, weight: float) -> None:
             s[6 * TILE + i] += factor * lz
 
 
-@njit(nogil=True, cache=True)
+@compiled
 def _scratch(points: Floats) -> Floats:
     s = np.zeros(_ROWS * TILE)
     for i in range(TILE):
@@ -127,13 +128,13 @@ def _scratch(points: Floats) -> Floats:
     return s
 
 
-@njit(nogil=True, cache=True)
+@compiled
 def _clear_sums(s: Floats) -> None:
     for i in range(4 * TILE, 7 * TILE):
         s[i] = 0.0
 
 
-@njit(nogil=True, cache=True)
+@compiled
 def tile_responses(
     points: Floats,
     vertices: Floats,
@@ -176,7 +177,7 @@ def tile_responses(
         on_wire[i] |= s[7 * TILE + i] > 0.0
 
 
-@njit(nogil=True, cache=True)
+@compiled
 def tile_sum(
     points: Floats,
     vertices: Floats,

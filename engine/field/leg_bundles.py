@@ -34,9 +34,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
 
+from engine.compiled import compiled
 from engine.conductor import Conductor
 from engine.field.filaments import far_orders, section_points
 from engine.field.kernel import Floats, Integers
@@ -193,7 +193,7 @@ def _leg_filaments(conductor: Conductor, leg: int, first: int, second: int) -> F
     return np.column_stack([lines.reshape(-1, 6), shares])
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def distance_to_line(place: Floats, line: Floats) -> float:
     """From a place to a straight line from its start to its stop, (6,). [m]"""
     x, y, z = place[0] - line[0], place[1] - line[1], place[2] - line[2]
@@ -204,12 +204,12 @@ def distance_to_line(place: Floats, line: Floats) -> float:
     return float(np.sqrt(x * x + y * y + z * z))
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _length(v: Floats) -> float:
     return float(np.sqrt(v[0] * v[0] + v[1] * v[1] + v[2] * v[2]))
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _measure(
     first: Integers,
     segments: Floats,
@@ -254,7 +254,7 @@ def _measure(
             flows[b, c, ALONE] /= length
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def too_near(points: Floats, which: Integers, table: Floats) -> NDArray[np.bool_]:
     """Which bundles' surfaces may be nearer than their filaments are good for."""
     middle = np.empty(3)
@@ -278,7 +278,7 @@ def too_near(points: Floats, which: Integers, table: Floats) -> NDArray[np.bool_
     return out
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def gathered(
     which: Integers, first: Integers, segments: Floats, owners: Integers
 ) -> tuple[Floats, Integers]:

@@ -12,9 +12,9 @@ from dataclasses import dataclass
 from functools import lru_cache
 
 import numpy as np
-from numba import njit
 from numpy.typing import NDArray
 
+from engine.compiled import compiled
 from engine.conductor import Conductor
 from engine.field.kernel import Floats, Integers
 from engine.runs import Bar
@@ -131,7 +131,7 @@ def _table(conductor: Conductor) -> Floats:
     return table
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def leg_distance(leg: Floats, x: float, y: float, z: float) -> float:
     dx, dy, dz = x - leg[0], y - leg[1], z - leg[2]
     along = dx * leg[3] + dy * leg[4] + dz * leg[5]
@@ -155,7 +155,7 @@ def leg_distance(leg: Floats, x: float, y: float, z: float) -> float:
     return float(np.sqrt(a * a + b * b + along * along))
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _spheres(points: Floats) -> Floats:
     """Centre and radius around each `_BLOCK` points in order."""
     n = points.shape[0]
@@ -173,7 +173,7 @@ def _spheres(points: Floats) -> Floats:
     return out
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _around(points: Floats) -> tuple[float, float, float, float]:
     """Centre and radius of a sphere around all the points."""
     middle = np.empty(3)
@@ -186,7 +186,7 @@ def _around(points: Floats) -> tuple[float, float, float, float]:
     return middle[0], middle[1], middle[2], np.sqrt(squares) / 2
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _skew(leg: Floats) -> float:
     """By how much more than its place moves a leg's distance may change. [m]
 
@@ -198,7 +198,7 @@ def _skew(leg: Floats) -> float:
     return 6.0 * float(leg[_HALF_WIDTH] + leg[_HALF_THICKNESS])
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def nearest_surface(table: Floats, points: Floats, out: Floats) -> None:
     """Write the distance of each point to the nearest leg's surface, 0 inside.
 
@@ -230,7 +230,7 @@ def nearest_surface(table: Floats, points: Floats, out: Floats) -> None:
                         lowest, out[first:last])  # fmt: skip
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _nearest_of(
     table: Floats,
     kept: Integers,
@@ -257,7 +257,7 @@ def _nearest_of(
             out[i] = min(out[i], d)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def any_nearer(table: Floats, limits: Floats, points: Floats) -> NDArray[np.bool_]:
     """Whether some leg's surface is nearer to the point than that leg's limit."""
     out = np.zeros(points.shape[0], np.bool_)
@@ -270,7 +270,7 @@ def any_nearer(table: Floats, limits: Floats, points: Floats) -> NDArray[np.bool
     return out
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def _end_distance(leg: Floats, x: float, y: float, z: float) -> float:
     dx, dy, dz = x - leg[0], y - leg[1], z - leg[2]
     first = dx * dx + dy * dy + dz * dz
@@ -280,7 +280,7 @@ def _end_distance(leg: Floats, x: float, y: float, z: float) -> float:
     return float(np.sqrt(min(first, dx * dx + dy * dy + dz * dz)))
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def tile_distances(
     table: Floats, exact_within: Floats, points: Floats, tile: int, floor: float
 ) -> Floats:

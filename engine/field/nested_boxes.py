@@ -29,8 +29,8 @@ from functools import lru_cache
 from math import ceil, gamma, log, pi, sqrt
 
 import numpy as np
-from numba import njit
 
+from engine.compiled import compiled
 from engine.field.kernel import MU0_OVER_4PI, Floats, Integers
 from engine.field.leg_bundles import (
     ALONE,
@@ -157,7 +157,7 @@ def _to_series(n: int) -> Floats:
     return np.asarray(matrix, np.float64)
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def interpolation_errors(
     middle: Floats,
     half: Floats,

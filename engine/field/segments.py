@@ -8,8 +8,8 @@ with the currents of all components together.
 from __future__ import annotations
 
 import numpy as np
-from numba import njit
 
+from engine.compiled import compiled, contracted
 from engine.field.kernel import MU0_OVER_4PI, ON_WIRE_SQUARED, Floats, Integers
 
 #: Points that are taken together: their scratch stays in the first-level cache.
@@ -19,7 +19,7 @@ BLOCK = 64
 _TOGETHER = 4
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _add_segments(
     points: Floats,
     segments: Floats,
@@ -44,7 +44,7 @@ def _add_segments(
             _combine(scratch, i0, i1, i2, i3, sums[f])
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _combine(
     rows: Floats, i0: float, i1: float, i2: float, i3: float, out: Floats
 ) -> None:
@@ -53,7 +53,7 @@ def _combine(
         out[i] += (i0 * one[i] + i1 * two[i]) + (i2 * three[i] + i3 * four[i])
 
 
-@njit(nogil=True, cache=True, error_model="numpy", fastmath={"contract"})
+@contracted
 def _response(points: Floats, segment: Floats, out: Floats) -> None:
     """Write the field per ampere of the conductor."""
     x0, y0, z0 = segment[0], segment[1], segment[2]
@@ -85,7 +85,7 @@ def _response(points: Floats, segment: Floats, out: Floats) -> None:
         out[2 * BLOCK + i] = factor * cz
 
 
-@njit(nogil=True, cache=True, error_model="numpy")
+@compiled
 def sum_segments(
     points: Floats, rows: Floats, owners: Integers, parts: Floats, out: Floats
 ) -> None:
