@@ -15,7 +15,12 @@ from msgspec.structs import replace
 from app.files import empty_layout
 from app.preferences import Preferences
 from engine.layout import Layout
+from engine.motions import neat
 from engine.starters import riser_past_room, run_past_room, transformer_link_board
+from engine.units import LENGTH_UNITS
+
+#: What defaults of lengths are rounded to in units that are not metric. [unit]
+_ROUND = {"ft": 0.5, "in": 6.0}
 
 
 @dataclass(frozen=True)
@@ -41,6 +46,13 @@ class Asked:
     low: float
     high: float
 
+    def begun_with(self, length_unit: str) -> float:
+        """The default; a length as a round number of the unit it is shown in."""
+        if not self.is_length or length_unit not in _ROUND:
+            return self.default
+        step = _ROUND[length_unit] * LENGTH_UNITS[length_unit]
+        return neat(round(self.default / step) * step)
+
 
 @dataclass(frozen=True)
 class Offered:
@@ -51,6 +63,10 @@ class Offered:
     tip: str
     options: tuple[str, ...]
     default: str
+
+    def begun_with(self, _length_unit: str) -> str:
+        """The default."""
+        return self.default
 
 
 @dataclass(frozen=True)
@@ -90,9 +106,9 @@ class Beginning:
         )
         return replace(made, settings=settings)
 
-    def defaults(self) -> dict[str, Any]:
-        """The values to begin with."""
-        return {ask.key: ask.default for ask in self.asks}
+    def defaults(self, length_unit: str) -> dict[str, Any]:
+        """The values to begin with, lengths round in this unit."""
+        return {ask.key: ask.begun_with(length_unit) for ask in self.asks}
 
 
 def _current(default: float) -> Asked:

@@ -19,6 +19,7 @@ from engine.items import Item, Point2, Point3
 from engine.layout import Layout
 from engine.motions import neat
 from engine.places import Enclosure, Profile, Receptor, Room, Storey, Zone
+from engine.units import LENGTH_UNITS
 from engine.vertices import bounds
 
 #: Floor to finished ceiling of a new room. [m]
@@ -258,9 +259,11 @@ def _with_storey(layout: Layout, floor: float) -> tuple[Layout, str]:
     for storey in layout.storeys:
         if abs(storey.floor_level - floor) < _SAME_FLOOR:
             return layout, storey.id
+    unit = layout.settings.length_unit
+    places = 2 if unit in ("m", "ft") else 0
     storey = Storey(
         id=unused_id(layout, f"storey {floor:+.2f}"),
-        name=f"Storey {floor:+.2f} m",
+        name=f"Storey {floor / LENGTH_UNITS[unit]:+.{places}f} {unit}",
         floor_level=floor,
     )
     return added(layout, storey), storey.id

@@ -135,6 +135,8 @@ def riser_past_room(
     layout, office = with_room_above(layout, "plant-room", 0.25)
     layout, top = with_room_above(layout, office, 0.25)
     layout = _named(_named(layout, office, "Office"), top, "Office above")
+    for number, storey in enumerate(layout.storeys[1:], 1):
+        layout = _named(layout, storey.id, f"Storey {number}")
     x = neat(6.0 + distance)
     route: tuple[Point3, ...] = (
         (2.0, 2.5, 2.5),

@@ -121,3 +121,32 @@ def test_the_preview_draws_in_the_themes_colours(page, qtbot):
 def test_escape_goes_back(page, qtbot):
     with qtbot.waitSignal(page.closed):
         qtbot.keyClick(page.buttons[1], Qt.Key.Key_Escape)
+
+
+def test_lengths_begin_round_in_feet(qtbot):
+    page = NewLayoutPage(AMERICAN)
+    qtbot.addWidget(page)
+    page.show()
+    assert page.fields["link"].line.text() == "16.50 ft"
+    page.buttons[2].setChecked(True)
+    assert page.fields["distance"].line.text() == "1.50 ft"
+    with qtbot.waitSignal(page.chosen) as chosen:
+        page.start.click()
+    (made,) = chosen.args
+    assert made.runs[0].route[0][2] == pytest.approx(-1.5 * 0.3048)
+    page.buttons[3].setChecked(True)
+    with qtbot.waitSignal(page.chosen) as chosen:
+        page.start.click()
+    names = [storey.name for storey in chosen.args[0].storeys]
+    assert names == ["Ground floor", "Storey 1", "Storey 2"]
+
+
+def test_arrow_keys_go_on_from_what_is_chosen(page, qtbot):
+    page.activateWindow()
+    page.setFocus()
+    qtbot.keyClick(page.focusWidget(), Qt.Key.Key_Down)
+    assert page.beginning.name == "Run past a room"
+    page.start.setFocus()
+    page.setFocus()
+    qtbot.keyClick(page.focusWidget(), Qt.Key.Key_Down)
+    assert page.beginning.name == "Riser past a room"
