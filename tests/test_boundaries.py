@@ -69,3 +69,11 @@ def test_the_field_knows_no_layout():
     for name, path in modules("engine").items():
         if name.startswith("engine.field"):
             assert "engine.layout" not in imports(path), name
+
+
+def test_compiled_functions_share_one_decorator():
+    """numba's own would keep machine code whose callee in another file has changed."""
+    users = [
+        name for name, path in modules("engine").items() if "numba" in imports(path)
+    ]
+    assert users == ["engine.compiled"]
