@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QEvent, QObject, QPoint
+from PySide6.QtCore import QEvent, QObject, QPoint, Qt
 from PySide6.QtWidgets import QFrame, QWidget
 
 from app.theme import STEP
@@ -47,6 +47,7 @@ class Slip(QFrame):
         window = self._bar.window()
         if self.parentWidget() is not window:
             self.setParent(window)
+            self._take_turn()
         full = self._bar.width()
         widest = max(round(_WIDEST * full), 1)
         width, height = min(self.sizeHint().width(), widest), self.sizeHint().height()
@@ -61,3 +62,16 @@ class Slip(QFrame):
         self.setGeometry(at.x(), at.y(), width, height)
         self.show()
         self.raise_()
+
+    def _take_turn(self) -> None:
+        """Come in the order of Tab where the bar would, and not last of all."""
+        tab = Qt.FocusPolicy.TabFocus
+        before = self._bar.previousInFocusChain()
+        while before is not self._bar and (
+            not before.focusPolicy() & tab or self.isAncestorOf(before)
+        ):
+            before = before.previousInFocusChain()
+        for child in self.findChildren(QWidget):
+            if child.focusPolicy() & tab:
+                QWidget.setTabOrder(before, child)
+                before = child

@@ -544,3 +544,13 @@ def test_a_number_goes_on_with_what_is_half_drawn(window, qtbot):
         hands.key(Qt.Key.Key_Escape)
     hands.type("2")
     assert window.toolbox.active.name == "Room"
+
+
+def test_tab_comes_to_a_message_before_what_lies_beneath(window):
+    window.messages.warn("Something is to be told.")
+    order = [window.strip.catch]
+    while order[-1] is not window.strip.catch or len(order) == 1:
+        order.append(order[-1].nextInFocusChain())
+    assert window.message_bar._close in order
+    assert order.index(window.message_bar._close) < order.index(window.rail.entry)
+    assert order.index(window.message_bar._close) < order.index(window.drawings.plan)
