@@ -69,8 +69,8 @@ if TYPE_CHECKING:
 
 APage = TypeVar("APage", bound=Page)
 
-#: The drawing is never narrower. [logical pixels]
-DRAWING = 570
+#: The drawing is never narrower; beside large texts the panel needs more. [px]
+DRAWING = 570 if BODY <= 16 else 480
 
 #: Under this height the foot panels open in the drawing's place. [logical pixels]
 LOW = 800

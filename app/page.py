@@ -24,10 +24,13 @@ from PySide6.QtWidgets import (
 )
 
 from app.panels.panel import Words
-from app.theme import BODY, STEP, TITLE
+from app.theme import BODY, STEP, TITLE, scaled
 
 #: Widest line that is still read easily. [logical pixels]
 READABLE = 720
+
+#: From this width on controls stand beside the title. [logical pixels]
+_SIDE_BY_SIDE = scaled(600)
 
 #: Height of a line of text. [%]
 _LINE = 125.0
@@ -54,6 +57,7 @@ class Page(QWidget):
         self.back.setAutoDefault(False)
         self.back.clicked.connect(self.closed)
         self._title = Words(title, "title")
+        self._controls: QWidget | None = None
         self._head = head = QHBoxLayout()
         head.addWidget(self._title, 1)
         head.addWidget(self.back)
@@ -67,6 +71,7 @@ class Page(QWidget):
         self._title.setWordWrap(False)
         self._title.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Fixed)
         self._head.setSpacing(3 * STEP)
+        self._controls = controls
         self._head.insertWidget(1, controls, 1)
         self._head.insertWidget(2, state)
         top = Qt.AlignmentFlag.AlignTop
@@ -74,6 +79,25 @@ class Page(QWidget):
             self._head.setAlignment(widget, top)
         self.column.setContentsMargins(3 * STEP, 2 * STEP, 3 * STEP, STEP)
         self.column.setSpacing(STEP)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        controls = self._controls
+        if controls is not None:
+            is_below = self.column.indexOf(controls) >= 0
+            if (self.width() < _SIDE_BY_SIDE) != is_below:
+                self._move(controls, below=not is_below)
+        super().resizeEvent(event)
+
+    def _move(self, controls: QWidget, *, below: bool) -> None:
+        """On a narrow page the controls have a line of their own."""
+        if below:
+            self._head.removeWidget(controls)
+            self._head.insertStretch(1, 1)
+            self.column.insertWidget(1, controls)
+        else:
+            self.column.removeWidget(controls)
+            self._head.takeAt(1)
+            self._head.insertWidget(1, controls, 1)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:

@@ -66,11 +66,12 @@ class Slip(QFrame):
     def _take_turn(self) -> None:
         """Come in the order of Tab where the bar would, and not last of all."""
         tab = Qt.FocusPolicy.TabFocus
-        before = self._bar.previousInFocusChain()
-        while before is not self._bar and (
-            not before.focusPolicy() & tab or self.isAncestorOf(before)
-        ):
-            before = before.previousInFocusChain()
+        before: QWidget = self._bar
+        while not before.focusPolicy() & tab or self.isAncestorOf(before):
+            further = before.previousInFocusChain()
+            if further is None or further is self._bar:
+                return
+            before = further
         for child in self.findChildren(QWidget):
             if child.focusPolicy() & tab:
                 QWidget.setTabOrder(before, child)

@@ -136,6 +136,15 @@ class ReservedRow(QWidget):
         return QSize(1, self._room.height())
 
 
+def wrapped(*widgets: QWidget) -> QWidget:
+    """Widgets in a row that goes on below where a panel is narrow."""
+    whole = QWidget()
+    row = WrappingRow(whole, gap=STEP, margin=0)
+    for widget in widgets:
+        row.addWidget(widget)
+    return whole
+
+
 def group_in_row() -> tuple[QWidget, QHBoxLayout]:
     """Widgets that stay together in a row."""
     group = QWidget()

@@ -29,6 +29,7 @@ from app.panels.spectrum import SpectrumEditor
 from app.panels.table import Column, RowsTable
 from app.theme import STEP
 from app.view_state import ViewState
+from app.wrapping import wrapped
 from engine.circuits import Circuit, LoadCase, SpectrumLine
 from engine.currents import circuit_phasors
 from engine.edits import added, checked, removed, replaced
@@ -73,7 +74,7 @@ class CircuitsPanel(Panel):
         self.title = Words(style="title")
         content = QWidget()
         box = column(content, 3 * STEP)
-        box.addLayout(self._buttons())
+        box.addWidget(self._buttons())
         box.addWidget(self.empty)
         box.addWidget(self.table)
         box.addWidget(self.caption)
@@ -149,17 +150,13 @@ class CircuitsPanel(Panel):
             self.table.colour()
         super().changeEvent(event)
 
-    def _buttons(self) -> QHBoxLayout:
-        row = QHBoxLayout()
-        row.setSpacing(STEP)
-        for title, tip, slot in (
+    def _buttons(self) -> QWidget:
+        buttons = (
             ("Add", "Add a circuit without a current", self.add),
             ("Duplicate", "Add the chosen circuit once more", self.duplicate),
             ("Remove", "Remove the chosen circuit", self.remove),
-        ):
-            row.addWidget(button(title, tip, slot))
-        row.addStretch(1)
-        return row
+        )
+        return wrapped(*(button(*each) for each in buttons))
 
     def _spectrum_page(self) -> QWidget:
         page = QWidget()

@@ -26,7 +26,7 @@ from engine.runs import Run
 from engine.sections import slots
 
 #: Width of the labels before the fields. [logical pixels]
-_LABEL = scaled(26 * STEP)
+_LABEL = min(scaled(26 * STEP), 30 * STEP)
 
 
 class Form(QWidget):

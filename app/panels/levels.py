@@ -12,7 +12,6 @@ from msgspec.structs import replace
 from PySide6.QtCore import QEvent
 from PySide6.QtWidgets import (
     QFormLayout,
-    QHBoxLayout,
     QVBoxLayout,
     QWidget,
 )
@@ -29,6 +28,7 @@ from app.panels.origin import OriginMark, assumed_fields
 from app.panels.panel import Panel, Words, button, column, scrolled
 from app.panels.table import Column, RowsTable
 from app.theme import STEP
+from app.wrapping import wrapped
 from engine.criteria import ReferenceLevel
 from engine.edits import added, checked, removed, replaced, unused_id
 from engine.errors import UserError
@@ -89,7 +89,7 @@ class LevelsPanel(Panel):
         one.addWidget(self.uses)
         content = QWidget()
         box = column(content, 3 * STEP)
-        box.addLayout(self._buttons())
+        box.addWidget(self._buttons())
         box.addWidget(self.empty)
         box.addWidget(self.table)
         box.addWidget(self.title)
@@ -162,10 +162,8 @@ class LevelsPanel(Panel):
             self.table.colour()
         super().changeEvent(event)
 
-    def _buttons(self) -> QHBoxLayout:
-        row = QHBoxLayout()
-        row.setSpacing(STEP)
-        for title, tip, slot in (
+    def _buttons(self) -> QWidget:
+        buttons = (
             ("Add", "Add a reference level that says nothing yet", self.add),
             ("Duplicate", "Add the chosen reference level once more", self.duplicate),
             (
@@ -173,11 +171,8 @@ class LevelsPanel(Panel):
                 "Remove the chosen reference level, also from its places",
                 self.remove,
             ),
-        ):
-            row.addWidget(button(title, tip, slot))
-        row.addWidget(self.library)
-        row.addStretch(1)
-        return row
+        )
+        return wrapped(*(button(*each) for each in buttons), self.library)
 
     def _fields(self) -> QFormLayout:
         form = QFormLayout()

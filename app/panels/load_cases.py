@@ -30,6 +30,7 @@ from app.panels.spectrum import SpectrumEditor
 from app.panels.table import RowsTable
 from app.theme import STEP
 from app.view_state import ViewState
+from app.wrapping import wrapped
 from engine.circuits import LoadCase, SpectrumLine
 from engine.edits import added, checked, removed, replaced, unused_id
 from engine.errors import UserError
@@ -81,7 +82,7 @@ class LoadCasesPanel(Panel):
         self.tabs = self._pages()
         content = QWidget()
         box = column(content, 3 * STEP)
-        box.addLayout(self._buttons())
+        box.addWidget(self._buttons())
         box.addWidget(self.empty)
         box.addWidget(self.cases)
         box.addWidget(self.title)
@@ -157,18 +158,14 @@ class LoadCasesPanel(Panel):
             self.circuits.colour()
         super().changeEvent(event)
 
-    def _buttons(self) -> QHBoxLayout:
-        row = QHBoxLayout()
-        row.setSpacing(STEP)
-        for title, tip, slot in (
+    def _buttons(self) -> QWidget:
+        buttons = (
             ("Add", "Add a load case", self.add),
             ("Duplicate", "Add the chosen load case once more", self.duplicate),
             ("Remove", "Remove the chosen load case", self.remove),
             ("Show", "Show the field of the chosen load case", self.show_in_drawing),
-        ):
-            row.addWidget(button(title, tip, slot))
-        row.addStretch(1)
-        return row
+        )
+        return wrapped(*(button(*each) for each in buttons))
 
     def _fields(self) -> QFormLayout:
         form = QFormLayout()
