@@ -13,7 +13,7 @@ from engine.levels import ratios, what_is_missing
 from engine.places import Receptor, Zone
 
 NO_CURRENT = "No current is entered in this load case."
-NO_CATEGORY = "Its category is not chosen; choose for whom it is."
+NO_CATEGORY = "The place has no category; choose in its form for whom or what it is."
 PARTICULAR_RISK = (
     "It is for persons at particular risk: individual assessment is required."
 )

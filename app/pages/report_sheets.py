@@ -23,7 +23,7 @@ from engine.exchange.pdf_pages import PdfPages, Section
 _GAP = 3 * STEP
 _FOOT = 6 * STEP
 
-_EMPTY = "The pages of the report show here"
+_EMPTY = "The pages of the report will show here"
 
 #: Zoom by name, or as a share of the paper's size.
 WIDTH, WHOLE = "Whole width", "Whole page"

@@ -92,9 +92,10 @@ class CircuitForm(QWidget):
             "Net current", "net current", cells.with_net_current, NET_TIP,
             "net_current",
         )  # fmt: skip
-        self.net.line.setPlaceholderText("none entered")
-        self.voltage.line.setPlaceholderText("none entered")
-        self.current.line.setPlaceholderText("none entered")
+        for field in (self.net, self.voltage, self.current):
+            field.line.setPlaceholderText("none entered")
+        for field in (self.negative, self.zero):
+            field.line.setPlaceholderText("none")
         self.relation = self._choice(
             "Phase relation", "phase relation", cells.RELATIONS, _with_relation,
             RELATION_TIP, "phase_relation",
@@ -232,6 +233,6 @@ def _with_unbalance(circuit: Circuit, kind: str, text: str, decimal: str) -> Cir
 
 def _ratio_text(ratio: float, angle: float, decimal: str) -> str:
     if ratio == 0 and angle == 0:
-        return "none"
+        return ""
     turned = f" ∠ {number_text(angle, decimal)}°" if angle else ""
     return f"{number_text(100 * ratio, decimal)} %{turned}"

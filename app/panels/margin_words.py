@@ -18,7 +18,7 @@ from engine.units import flux_density_text, in_unit, significant, text_beside
 
 NO_ZONES = "Draw a zone where people are"
 NO_LEVELS = "Enter a reference level and its source to see margins"
-NOT_NAMED = "Name a reference level in a zone to see its margin"
+NOT_NAMED = "Choose the compared places of a reference level to see their margins"
 WAITING = "Margins follow once the field is computed"
 
 CAUTION_LINE = (

@@ -21,6 +21,11 @@ from engine.errors import UserError
 from engine.shown_currents import power_factor_text
 from engine.typed_currents import typed_power_factor
 
+_NET_STANDS_BESIDE = (
+    "The clamped net current does not flow in it either: what flows is the net current "
+    "entered for the circuit."
+)
+
 _AMPERES = {"A": 1.0, "kA": 1e3, "mA": 1e-3}
 
 
@@ -136,6 +141,7 @@ class MeasuredForm(QWidget):
         self.note.setText(
             f"Both stand as they are, and nothing is reconciled. The field is computed "
             f"with {used}, over all frequencies."
+            + ("" if found.net is None else f" {_NET_STANDS_BESIDE}")
         )
 
     def _amperes(self, title: str, part: str) -> ValueField:

@@ -58,9 +58,11 @@ def section_groups(run: Run, names: frozenset[str]) -> tuple[Group, ...]:
     chosen = slot_items(run, names)
     if not chosen:
         return (whole,)
-    named = chosen[0].slot.name if len(chosen) == 1 else f"{len(chosen)} chosen"
+    name = f"{len(chosen)} conductors chosen"
+    if len(chosen) == 1:
+        name = f"Conductor {chosen[0].slot.name}"
     note = "" if isinstance(run.section, FreeSection) else _FREES
-    return whole, Group(f"Conductor {named}", chosen, conductor_parts(chosen), note)
+    return whole, Group(name, chosen, conductor_parts(chosen), note)
 
 
 _FREES = "Changing one conductor makes this a free section."

@@ -243,6 +243,8 @@ class SpectrumEditor(QWidget):
         rows = self.table.rows
         self._on_entered((*rows, next_line(self._circuit, rows)), "Add a frequency")
         self.table.set_current(len(self.table.rows) - 1, 0)
+        # What is typed now is meant for the new row.
+        self.table.view.setFocus()
 
     def _on_remove(self) -> None:
         chosen = {i.row() for i in self.table.view.selectionModel().selectedIndexes()}

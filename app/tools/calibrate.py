@@ -294,7 +294,7 @@ class CalibrateTool(DrawingTool):
             return "Click the second point, far from the first; Esc goes one step back."
         return (
             "Type the distance of the two points into the entry strip, such as "
-            "8.40 or 27ft6in; Esc goes one step back."
+            "8.40m or 27ft6in; Esc goes one step back."
         )
 
 

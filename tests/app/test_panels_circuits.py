@@ -227,6 +227,25 @@ def test_choosing_a_row_selects_the_circuit_and_opening_does_not(panel, document
     assert panel.title.text() == "Office"
 
 
+def test_a_new_frequency_has_the_keyboard(panel, document, qtbot):
+    panel.show()
+    panel.activateWindow()
+    panel.spectrum.add_button.setFocus()
+    panel.spectrum.add_button.click()
+    assert panel.focusWidget() is panel.spectrum.table.view
+
+
+def test_an_unbalance_is_typed_into_an_empty_field(panel, document, qtbot):
+    even = replace(LAYOUT.circuits[0], demand=BalancedCurrent(rms=800.0))
+    document.edit("Even out", replaced(LAYOUT, even))
+    field = panel.form.negative.line
+    assert (field.text(), field.placeholderText()) == ("", "none")
+    qtbot.keyClicks(field, "5 %")
+    qtbot.keyClick(field, Qt.Key.Key_Return)
+    demand = document.layout.circuits[0].demand
+    assert demand.unbalance.negative_ratio == pytest.approx(0.05)
+
+
 def test_spectrum_is_edited_and_unknown_offsets_are_told(panel, document):
     panel.spectrum._on_add()
     assert document.layout.circuits[0].spectrum == (

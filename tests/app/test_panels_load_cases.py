@@ -129,6 +129,7 @@ def test_measured_and_computed_neutral_stand_side_by_side(panel, document, qtbot
     assert panel.measured.measured_value.text() == "45.0 A"
     assert panel.measured.net_value.text() == "0.400 A"
     assert "nothing is reconciled" in panel.measured.note.text()
+    assert "clamped net current does not flow" in panel.measured.note.text()
     assert document.undo_stack.count() == 7
     assert math.isclose(document.layout.circuits[0].demand.rms, 100.0)
 
