@@ -35,6 +35,9 @@ SPREAD, SPREAD_PITCHES = 0.1, 2.0
 
 _ROUNDING = 1 + 1e-9
 
+#: Labels of lines, and of a direct current's return. A neutral may lie there unused.
+_OF_SUPPLIES = {label for lines in LINES.values() for label in lines} | {RETURNS["dc"]}
+
 
 def run_remarks(layout: Layout) -> Iterator[Remark]:
     """What is to say on runs in any load case."""
@@ -188,7 +191,7 @@ def _overloads(
 def _labels(
     run: Run, made: Sequence[Slot], circuits: dict[str, Circuit]
 ) -> Iterator[Remark]:
-    """W15: a line that stands twice while another is missing, or carries too much."""
+    """W15: a line that stands twice, carries too much, or is none of the supply."""
     counts: dict[str, dict[str, int]] = defaultdict(lambda: defaultdict(int))
     totals: dict[tuple[str, str], float] = defaultdict(float)
     for slot in made:
@@ -200,6 +203,16 @@ def _labels(
         if circuit is None:
             continue
         lines = LINES[circuit.supply]
+        own = [*lines, *filter(None, [RETURNS.get(circuit.supply)])]
+        foreign = [label for label in labels if label in _OF_SUPPLIES - {*own}]
+        if lines and foreign:
+            supply = "DC" if circuit.supply == "dc" else circuit.supply
+            yield _label_remark(
+                run,
+                circuit,
+                f"it is {supply}, with {listed(own)}; nothing of it flows in "
+                f"{listed(foreign)}: check its supply and the order of the conductors.",
+            )
         missing = [line for line in lines if line not in labels]
         twice = [line for line in lines if labels.get(line, 0) > 1]
         present = [line for line in lines if line in labels]

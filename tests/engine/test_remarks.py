@@ -237,6 +237,22 @@ def test_duplicated_label_in_a_section_is_a_warning() -> None:
     assert "L1 stands more than once and L2 is missing" in found.sentence
 
 
+def test_conductors_that_a_supply_does_not_have_are_a_warning() -> None:
+    section = Flat(circuits=(CircuitShare(circuit="C"),), order=POLES)
+    plain = alone(run_of(section))
+
+    def supplied(supply: str) -> Layout:
+        (circuit,) = plain.circuits
+        return replace(plain, circuits=(replace(circuit, supply=supply),))
+
+    direct = first(supplied("dc"), "W15").sentence
+    assert "it is DC, with L+ and L-; nothing of it flows in L1, L2 and L3" in direct
+    single = first(supplied("single-phase"), "W15").sentence
+    assert "with L1 and N; nothing of it flows in L2 and L3" in single
+    assert "W15" not in codes(supplied("three-phase three-wire"))
+    assert "W15" not in codes(supplied("free"))
+
+
 def test_label_carried_in_full_twice_is_a_warning() -> None:
     slots = tuple(
         Slot(name=n, u=u, v=0.0, loads=(SlotLoad(circuit="C", label="L1"),))
