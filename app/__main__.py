@@ -21,9 +21,11 @@ def main() -> int:
     # Before anything takes its sizes from there.
     theme.set_text_size(preferences.load().text_size)
     from app.collection import Collection
+    from app.focus_mark import FocusMark
     from app.start import load_ahead, started
 
     Collection(application)
+    FocusMark(application)
 
     paths = [Path(name) for name in application.arguments()[1:2]]
     window = started(paths[0] if paths else None)

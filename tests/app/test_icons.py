@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from pathlib import Path
 
 import pytest
@@ -24,3 +25,12 @@ def test_a_drawing_shows_in_the_colour_asked_for(qapp, path):
     }
     assert "#ff0000" in colours
     assert "#000000" not in colours
+
+
+@pytest.mark.parametrize("path", DRAWINGS, ids=lambda path: path.stem)
+def test_drawings_are_of_one_family(path):
+    drawing = path.read_text("utf-8")
+    assert 'viewBox="0 0 24 24"' in drawing
+    assert set(re.findall(r'stroke-width="([^"]+)"', drawing)) == {"1.5"}
+    assert set(re.findall(r'stroke="([^"]+)"', drawing)) == {"#000000"}
+    assert set(re.findall(r'fill="([^"]+)"', drawing)) <= {"none", "#000000"}

@@ -7,11 +7,13 @@ from pathlib import Path
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QAction
+from PySide6.QtGui import QAccessible, QAction
+from PySide6.QtTest import QTest
 from PySide6.QtWidgets import (
     QAbstractButton,
     QAbstractItemView,
     QAbstractScrollArea,
+    QApplication,
     QComboBox,
     QLabel,
     QLineEdit,
@@ -27,6 +29,7 @@ from PySide6.QtWidgets import (
 
 from app import library, preferences, recompute, recovery
 from app.document import Document
+from app.focus_mark import FocusMark
 from app.main_window import MainWindow
 from app.messages import Messages
 from engine import layout_file
@@ -173,6 +176,21 @@ def test_every_control_has_a_name_and_is_explained(window):
     assert not lacking, "\n".join(sorted(set(lacking)))
 
 
+def test_what_takes_the_keyboard_has_a_name_for_those_who_hear_it(window):
+    """As a reader of the screen is told it: by name, or by what stands in it."""
+    lacking = set()
+    for widget in all_widgets(window):
+        if not takes_focus(widget):
+            continue
+        heard = QAccessible.queryAccessibleInterface(widget)
+        assert heard is not None, named(widget)
+        assert heard.isValid(), named(widget)
+        said = heard.text(QAccessible.Text.Name) or heard.text(QAccessible.Text.Value)
+        if not said.strip():
+            lacking.add(named(widget))
+    assert not lacking, "\n".join(sorted(lacking))
+
+
 def texts(window):
     """All texts that the window may show, with where."""
     for widget in all_widgets(window):
@@ -228,3 +246,20 @@ def test_no_level_stands_alone(window):
         if ALONE.search(text) and where not in own and "eference level" not in text
     }
     assert not found, "\n".join(sorted(found))
+
+
+def test_the_keyboard_is_seen_where_it_is(window, qtbot):
+    mark = FocusMark(QApplication.instance())
+    window.show_drawing()
+    with qtbot.waitActive(window):
+        window.activateWindow()
+    for widget in (window.drawings.plan, window.caption._layers):
+        QTest.keyClick(QApplication.focusWidget(), Qt.Key.Key_Tab)
+        widget.setFocus(Qt.FocusReason.TabFocusReason)
+        ring = mark.ring
+        assert ring is not None
+        assert ring.parentWidget() is widget
+        assert ring.geometry() == widget.rect()
+    window.strip.words.setFocus(Qt.FocusReason.TabFocusReason)
+    assert mark.ring is None
+    mark.deleteLater()
