@@ -49,6 +49,10 @@ OF_DRAWING = frozenset(
 _WIDEST, _LEAST = 24 * BODY, 9 * BODY
 
 
+#: A longer state is shortened, and whole in its tooltip. [logical pixels]
+_LONGEST_STATE = 60 * STEP
+
+
 def caption(document: Document, view_state: ViewState) -> str:
     """The caption in one line, as exports print it."""
     layout, look = document.layout, view_state.look
@@ -152,7 +156,11 @@ class CaptionBar(QWidget):
 
     def tell(self, text: str) -> None:
         """Say at the right end what the map's state is; empty for nothing."""
-        self._state.setText(text)
+        metrics, end = self._state.fontMetrics(), Qt.TextElideMode.ElideRight
+        shown = metrics.elidedText(text, end, _LONGEST_STATE)
+        self._state.setText(shown)
+        self._state.setToolTip("" if shown == text else text)
+        self._state.setAccessibleName(text)
         self._fit()
         self.state_told.emit(text)
 

@@ -6,6 +6,7 @@ from pathlib import Path
 
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QApplication
 
 from app import preferences, recovery
 from app.document import Document
@@ -103,6 +104,22 @@ def test_the_drawing_keeps_its_room(window, size):
     if size[0] >= 1280:
         assert window.drawings.plan.width() >= 560
     assert window.drawings.plan.height() >= 280
+
+
+def test_a_long_state_leaves_the_caption_in_one_row(window):
+    open_sample(window, "small-switch-room")
+    window.resize(1300, 800)
+    QApplication.processEvents()
+    height = window.caption.height()
+    sentence = "Circuit “Circuit 1”: enter the current of each conductor. " * 3
+    window.caption.tell(sentence)
+    QApplication.processEvents()
+    assert window.caption.height() == height
+    assert window.caption._state.text().endswith("…")
+    assert window.caption._state.toolTip() == sentence
+    window.caption.tell("coarse")
+    assert window.caption._state.text() == "coarse"
+    assert window.caption._state.toolTip() == ""
 
 
 def test_fit_range_takes_what_the_map_shows(window):
