@@ -1,4 +1,4 @@
-"""Printing the report and exporting the map: one action each, off the main thread."""
+"""Exporting the map that is shown, off the main thread."""
 
 from __future__ import annotations
 
@@ -46,32 +46,11 @@ class Exports(QObject):
             lambda _layout, _heights: None
         )
 
-    def choose_report(self) -> None:
-        """Ask where to, and write the report."""
-        path = self._ask("Write report", self._suggested(".pdf"), "Report (*.pdf)")
-        if path is not None:
-            self.report(path.with_suffix(".pdf"))
-
     def choose_map(self) -> None:
         """Ask where to, and write the map that is shown."""
         path = self._ask("Export map", self._suggested(".png"), MAP_KINDS)
         if path is not None:
             self.map(path if path.suffix else path.with_suffix(".png"))
-
-    def report(self, path: Path) -> None:
-        """Write the report of the base; its variants are the options of the report."""
-        layout = self._document.whole
-
-        def work(cancelled: Cancelled, progress: Progress) -> None:
-            # Here, as below: what draws on paper takes long to load.
-            from engine.report.writing import write_report
-
-            write_report(layout, path, cancelled=cancelled, progress=progress)
-
-        told = f"{path} was written."
-        if self._document.variant is not None:
-            told = f"{path} was written, of the base with its variants as options."
-        self._start("Writing the report", work, told)
 
     def map(self, path: Path) -> None:
         """Write the map as the view shows it: its load case, its heights or plane."""
@@ -86,6 +65,7 @@ class Exports(QObject):
         offsets = self.offsets(layout, heights)
 
         def work(cancelled: Cancelled, progress: Progress) -> None:
+            # Here, as below: what draws on paper takes long to load.
             from engine.commands.horizontal_map import write_map
 
             write_map(

@@ -30,6 +30,7 @@ from engine.written_file import write_file
 if TYPE_CHECKING:
     from app.main_window import MainWindow
     from app.pages.report_page import ReportPage
+    from engine.report.choices import Choices
 
 _TABLES = "Workbook (*.xlsx);;CSV files in a folder (*)"
 
@@ -90,12 +91,56 @@ class ReportPages(QObject):
 
     # -- files --------------------------------------------------------------------
 
+    def choose_report(self) -> None:
+        """Ask where to, and write the report by the options of its page."""
+        choices = self._choices()
+        name, _ = QFileDialog.getSaveFileName(
+            self._window,
+            f"Write {choices.kind}",
+            self._proposed(".pdf", choices.variant),
+            "PDF (*.pdf)",
+        )
+        if name:
+            self.write_report(Path(name), choices)
+
+    def _choices(self) -> Choices:
+        """As the page has them; before it was open: of what is shown."""
+        if "page" in vars(self):
+            return self.page.choices.choices
+        from engine.report.choices import Choices
+
+        variant = self._window.document.variant
+        return Choices(variant=None if variant is None else variant.id)
+
+    def write_report(self, path: Path, choices: Choices) -> None:
+        """Compute and write a report in the background."""
+        whole = self._window.document.whole
+        path = path if path.suffix else path.with_suffix(".pdf")
+        names = {v.id: v.title for v in whole.variants}
+        of = names.get(choices.variant or "", "the base")
+        told = f"{path} was written, the {choices.kind} of {of}."
+
+        def work(cancelled: Cancelled, progress: Progress) -> None:
+            # Here: what draws on paper takes long to load.
+            from engine.report.writing import write_report
+
+            write_report(whole, path, choices, cancelled=cancelled, progress=progress)
+
+        self._window.jobs.start(
+            f"Writing the {choices.kind}",
+            work,
+            lambda _: self._window.messages.inform(told),
+        )
+
     def choose_pdf(self) -> None:
         """Ask where to, and write the pages that are shown."""
         with self._window.messages.shown():
             self.page.current()
             name, _ = QFileDialog.getSaveFileName(
-                self._window, "Write PDF", self._proposed(".pdf"), "PDF (*.pdf)"
+                self._window,
+                "Write PDF",
+                self._proposed(".pdf", self._variant),
+                "PDF (*.pdf)",
             )
             if name:
                 self.write_pdf(Path(name))
@@ -118,7 +163,10 @@ class ReportPages(QObject):
         with self._window.messages.shown():
             self.page.current()
             name, kind = QFileDialog.getSaveFileName(
-                self._window, "Write tables", self._proposed(".xlsx"), _TABLES
+                self._window,
+                "Write tables",
+                self._proposed(".xlsx", self._variant),
+                _TABLES,
             )
             if name:
                 path = Path(name)
@@ -142,9 +190,14 @@ class ReportPages(QObject):
         write_tables(matter.assessment, matter.remarks, matter.unit, path)
         self._window.messages.inform(f"{path} was written.")
 
-    def _proposed(self, ending: str) -> str:
+    @property
+    def _variant(self) -> str | None:
+        """The one of the pages that are shown."""
+        variant: str | None = self.page.choices.variant.value
+        return variant
+
+    def _proposed(self, ending: str, variant: str | None) -> str:
         document = self._window.document
-        variant = self.page.choices.variant.value
         stem = file_stem(document.path, document.layout)
         if variant is not None:
             stem += f"-{variant}"

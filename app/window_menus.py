@@ -237,8 +237,9 @@ class WindowMenus(QObject):
             [
                 *w.view_pages.report.commands(),
                 LINE,
-                Command("Write report …", w.exports.choose_report, Standard.Print,
-                        "A PDF that a reviewer can retrace"),
+                Command("Write report …", w.view_pages.report.choose_report,
+                        Standard.Print,
+                        "A PDF that a reviewer can retrace, as the page Report has it"),
                 Command("Export map …", w.exports.choose_map, "",
                         "The map that is shown, as PNG, SVG or CSV"),
             ],

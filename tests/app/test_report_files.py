@@ -125,6 +125,24 @@ def test_the_written_file_is_what_the_engine_writes(qtbot, window, reports, tmp_
     assert window.told[-1] == ("information", f"{tmp_path / 'note.pdf'} was written.")
 
 
+def test_the_print_key_writes_what_the_page_asks_for(
+    qtbot, window, reports, tmp_path, monkeypatch
+):
+    reports.page.choices.refresh()
+    reports.page.choices.paper.set_value("A3")
+    monkeypatch.setattr(
+        report_pages.QFileDialog,
+        "getSaveFileName",
+        lambda *_: (str(tmp_path / "printed"), ""),
+    )
+    with qtbot.waitSignal(window.jobs.ended, timeout=60_000):
+        reports.choose_report()
+    written = (tmp_path / "printed.pdf").read_bytes()
+    choices = Choices(kind="note", paper="A3")
+    assert written == report_bytes(window.document.whole, choices)
+    assert window.told[-1][1].endswith("printed.pdf was written, the note of the base.")
+
+
 def test_old_pages_are_not_written(qtbot, window, reports, tmp_path):
     page = opened(qtbot, reports)
     page.choices.keep.click()
@@ -242,7 +260,7 @@ def test_changes_since_a_revision_tell_edits_and_results(
     qtbot.waitUntil(lambda: page.changes.found is not None)
     assert page.right.currentWidget() is page.changes
     rows = page.changes.table.contents.rows
-    assert any(row[:3] == ("changed", "Feeder", "demand") for row in rows)
+    assert any(row[:3] == ("changed", "Feeder", "current or power") for row in rows)
     (moved,) = [row for row in rows if row[0] == "result"]
     assert moved[1] == "Desk <b>1</b>"
     # Twice the current is twice the field.
@@ -296,6 +314,10 @@ def test_what_an_older_version_issued_is_computed_again(qtbot):
             document.open(replace(old, revisions=(same,)), None)
         assert told.args[1] is False
         assert "every result is the same" in told.args[0]
+        with qtbot.waitSignal(reopened.found, timeout=60_000) as told:
+            document.open(replaced(old, LOUDER), None)
+        assert told.args[1] is False
+        assert "edited after revision A was issued" in told.args[0]
         # By this version, there is nothing to tell.
         document.open(old, None)
         assert reopened.sentence == ""
