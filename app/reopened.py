@@ -1,4 +1,4 @@
-"""An issued layout opened with another program version: what its results are now."""
+"""An issued layout opened: whether it was edited, else what its results are now."""
 
 from __future__ import annotations
 
@@ -7,20 +7,19 @@ from PySide6.QtCore import QObject, Signal
 import engine
 from app.answers import Answers
 from app.document import EVERYTHING, Document
-from app.report_revisions import names_of, recomputed_sentence
-from engine.assessment import assess
 from engine.errors import Cancelled
 from engine.layout import Layout
-from engine.revisions import as_issued, recomputed
+from engine.revisions import as_issued
 
 
 class Reopened(QObject):
-    """Computes again, in a thread, what another version issued.
+    """Says, by a thread, what became of an issued layout that is opened.
 
     Signals
     -------
     found(sentence, moved)
-        How far the results are from those issued, and whether any moved.
+        That it was edited since; else how far the results are from those that another
+        version issued, and whether any moved.
     """
 
     found = Signal(str, bool)
@@ -40,16 +39,15 @@ class Reopened(QObject):
             self._answers.close()
 
     def look(self) -> None:
-        """Compute the open layout again, where another version issued it."""
+        """Look at the open layout, where it was issued."""
         self.sentence = ""
         whole = self._document.whole
         if self._answers is not None:
             self._answers.forget()
-        last = whole.revisions[-1] if whole.revisions else None
-        if last is None or last.program_version == engine.__version__:
+        if not whole.revisions:
             return
         if self._answers is None:
-            self._answers = Answers("the issued layout", _computed, self)
+            self._answers = Answers("the issued layout", _found, self)
             self._answers.ready.connect(self._on_ready)
         self._answers.ask(whole)
 
@@ -67,13 +65,14 @@ class Reopened(QObject):
         self.found.emit(self.sentence, moved)
 
 
-def _computed(whole: Layout, cancelled: Cancelled) -> tuple[str, bool] | None:
-    """In the thread; None where the layout was edited since it was issued."""
-    if not as_issued(whole, whole.revisions[-1]):
+def _found(whole: Layout, cancelled: Cancelled) -> tuple[str, bool] | None:
+    """In the thread; None where this version issued the very layout."""
+    # Here: it loads what draws on paper.
+    from engine.commands.revisions import opening
+
+    last = whole.revisions[-1]
+    is_ours = last.program_version == engine.__version__
+    if is_ours and as_issued(whole, last):
         return None
-    assessment = assess(whole, certify=True, cancelled=cancelled)
-    again = recomputed(whole, assessment)
-    if again is None:
-        return None
-    unit = whole.settings.flux_density_unit
-    return recomputed_sentence(again, names_of(whole), unit), again.largest is not None
+    found = opening(whole, cancelled=cancelled)
+    return None if found is None else (found.sentence, found.moved)

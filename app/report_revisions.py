@@ -108,7 +108,7 @@ class FoundChanges:
             (
                 e.kind,
                 e.title,
-                e.field.replace("_", " "),
+                e.words,
                 "",
                 _one_line(e.before),
                 _one_line(e.after),
@@ -313,11 +313,6 @@ def recomputed_sentence(again: Recomputed, names: Mapping[str, str], unit: str) 
     from engine.commands.revisions import recomputed_text
 
     return recomputed_text(again, dict(names), unit)
-
-
-def names_of(layout: Layout) -> dict[str, str]:
-    """Names of items and load cases by their ids."""
-    return _names(layout, None)
 
 
 def _names(layout: Layout, before: Layout | None) -> dict[str, str]:

@@ -18,6 +18,7 @@ from msgspec.structs import fields, replace
 from engine.circuits import Circuit, LoadCase, OwnCurrents, Power
 from engine.criteria import ReferenceLevel
 from engine.equipment import Board, ConductorLoop, Transformer
+from engine.field_words import field_words
 from engine.items import Item, ValueOrigin
 from engine.layout import Layout, Settings
 from engine.places import Enclosure, Receptor, Room, Storey, Zone
@@ -74,11 +75,18 @@ _SILENT: frozenset[tuple[type[Item], str]] = frozenset(
     }
 )
 
-_UNITS = {
-    "floor_level": "m", "ceiling_level": "m", "z_from": "m", "z_to": "m",
-    "front_clearance": "m", "clearance": "m", "base_frequency": "Hz", "voltage": "V",
-    "direction": "°", "front": "°", "rated_current": "A", "at": "m", "star": "m",
-    "heights": "m",
+_LENGTHS = (
+    "floor_level", "ceiling_level", "soffit_level", "slab_above", "z_from", "z_to",
+    "front_clearance", "clearance", "at", "star", "heights", "diameter", "width",
+    "thickness", "pitch", "set_pitch", "neutral_pitch", "gap", "insulation",
+    "core_diameter", "core_circle_diameter", "outside_diameter", "setback", "foot_z",
+    "position", "across", "fed_at", "z", "u", "v", "grid_step", "distance",
+)  # fmt: skip
+
+_UNITS = dict.fromkeys(_LENGTHS, "m") | {
+    "base_frequency": "Hz", "frequency": "Hz", "voltage": "V", "rated_current": "A",
+    "rms": "A", "flux_density": "T", "map_low": "T", "map_high": "T", "direction": "°",
+    "front": "°", "angle": "°", "turn": "°", "north": "°",
 }  # fmt: skip
 
 #: What an empty field of a name stands for.
@@ -181,12 +189,19 @@ def value_text(value: object, field: str = "") -> str:
     >>> value_text(2.5, "clearance"), value_text(()), value_text((1.0, 2.0, 3.5))
     ('2.5 m', 'none entered', '1, 2, 3.5')
     """
+    text = _with_unit(value, field)
+    return text if len(text) <= _LONGEST_TEXT else text[: _LONGEST_TEXT - 1] + "…"
+
+
+def _with_unit(value: object, field: str) -> str:
+    """A value and its unit, where it is a number or numbers of one."""
     text = _plain(value, field)
     unit = _UNITS.get(field, "")
-    is_number = isinstance(value, float | int) and not isinstance(value, bool)
-    if unit and (is_number or (value and isinstance(value, tuple))):
-        text = f"{text}{unit}" if unit == "°" else f"{text} {unit}"
-    return text if len(text) <= _LONGEST_TEXT else text[: _LONGEST_TEXT - 1] + "…"
+    parts = value if isinstance(value, tuple) else (value,)
+    is_number = [isinstance(p, float | int) and not isinstance(p, bool) for p in parts]
+    if not unit or not parts or not all(is_number):
+        return text
+    return f"{text}{unit}" if unit == "°" else f"{text} {unit}"
 
 
 def _is_stated(item: Item, name: str) -> bool:
@@ -210,7 +225,11 @@ def _of_field(item: Item, name: str) -> list[Assumption]:
     if not any(origin.kind != "assumed" for origin in whole):
         reasons = [o.note for o in whole if o.note]
         text = value_text(value, name)
-        known = [o.field for o in parts if o.kind != "assumed"]
+        known = [
+            field_words(o.field.removeprefix(f"{name}."))
+            for o in parts
+            if o.kind != "assumed"
+        ]
         if known:
             text = f"{text} (apart from {', '.join(known)})"
         return [Assumption(item.id, name, text, " ".join(reasons))]
@@ -259,7 +278,7 @@ def _tuple_text(value: tuple[object, ...]) -> str:
 
 def _struct_text(value: Struct) -> str:
     shown = [
-        f"{field.name.replace('_', ' ')} {_plain(part)}"
+        f"{field_words(field.name, type(value))} {_with_unit(part, field.name)}"
         for field in fields(value)
         if (part := getattr(value, field.name)) not in (None, (), "")
     ]

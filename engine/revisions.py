@@ -7,6 +7,7 @@ in the revision too, so that a later program can be held against what was issued
 from __future__ import annotations
 
 import hashlib
+import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
@@ -17,9 +18,11 @@ from msgspec.structs import replace
 import engine
 from engine.edits import added, unused_id
 from engine.errors import UserError
+from engine.field_words import field_words
 from engine.items import IssuedResult, IssuedRevision, Item
 from engine.layout import Layout
 from engine.layout_file import encode
+from engine.origin_words import told_origin
 from engine.origins import value_text
 from engine.results import Assessment
 
@@ -34,7 +37,11 @@ _Key = tuple[str, str, str, str]
 
 @dataclass(frozen=True)
 class Edit:
-    """A difference between two layouts: an item came, went, or one value changed."""
+    """A difference between two layouts: an item came, went, or one value changed.
+
+    `field` is the value's dotted name, "origins." before it where its origin changed;
+    `words` say it to people.
+    """
 
     kind: str
     item: str
@@ -42,6 +49,7 @@ class Edit:
     field: str = ""
     before: str = ""
     after: str = ""
+    words: str = ""
 
 
 @dataclass(frozen=True)
@@ -277,7 +285,12 @@ def _edits(before: Layout, after: Layout) -> Iterator[Edit]:
         if id not in old:
             yield Edit("added", id, item.title)
         elif item != old[id]:
-            yield from _field_edits(old[id], item)
+            yield from _field_edits(old[id], item, (before, after))
+
+
+def _kind_words(item: Item) -> str:
+    """Which kind of item it is: "conductor loop"."""
+    return re.sub("(?<!^)(?=[A-Z])", " ", type(item).__name__).lower()
 
 
 def _items(layout: Layout) -> dict[str, Item]:
@@ -285,15 +298,39 @@ def _items(layout: Layout) -> dict[str, Item]:
     return {id: x for id, x in layout.by_id().items() if id not in revisions}
 
 
-def _field_edits(was: Item, now: Item) -> Iterator[Edit]:
+def _origin_edits(
+    was: Item, now: Item, layouts: tuple[Layout, Layout]
+) -> Iterator[Edit]:
+    """Which values came to have another origin, one edit each."""
+    old, new = ({o.field: o for o in item.origins} for item in (was, now))
+    for field in dict.fromkeys([*old, *new]):
+        if old.get(field) == new.get(field):
+            continue
+        told = [
+            "assumed" if origin is None else told_origin(layout, origin)
+            for origin, layout in zip(
+                (old.get(field), new.get(field)), layouts, strict=True
+            )
+        ]
+        name = f"origins.{field}"
+        words = field_words(name, type(now))
+        yield Edit("changed", now.id, now.title, name, told[0], told[1], words)
+
+
+def _field_edits(
+    was: Item, now: Item, layouts: tuple[Layout, Layout]
+) -> Iterator[Edit]:
     if type(was) is not type(now):
-        kinds = (type(was).__name__, type(now).__name__)
-        yield Edit("changed", now.id, now.title, "kind", *kinds)
+        kinds = (_kind_words(was), _kind_words(now))
+        yield Edit("changed", now.id, now.title, "kind", *kinds, "kind")
         return
     for field in structs.fields(now):
         a, b = getattr(was, field.name), getattr(now, field.name)
-        if a != b:
+        if field.name == "origins":
+            yield from _origin_edits(was, now, layouts)
+        elif a != b:
             texts = value_text(a, field.name), value_text(b, field.name)
             if texts[0] == texts[1]:
                 texts = ("as it was", "changed in parts that are too long to print")
-            yield Edit("changed", now.id, now.title, field.name, *texts)
+            words = field_words(field.name, type(now))
+            yield Edit("changed", now.id, now.title, field.name, *texts, words)

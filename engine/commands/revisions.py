@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from dataclasses import asdict, replace
+from dataclasses import asdict, dataclass, replace
 from pathlib import Path
 from typing import Any
 
@@ -177,8 +177,7 @@ def as_text(
     for edit in changes.edits:
         text = f"  {edit.kind} {edit.title}"
         if edit.field:
-            field = edit.field.replace("_", " ")
-            text += f", {field}: {edit.before} → {edit.after}"
+            text += f", {edit.words}: {edit.before} → {edit.after}"
         lines.append(text)
     if not changes.edits:
         lines.append("  none")
@@ -215,39 +214,60 @@ def _result(result: IssuedResult | None, unit: str) -> str:
     return ", ".join(parts) or "no value"
 
 
-def opening_sentences(
-    layout: Layout, assessment: Assessment, unit: str | None = None
-) -> tuple[str, ...]:
+@dataclass(frozen=True)
+class Opening:
+    """What became of an issued layout, in a sentence, and whether results moved."""
+
+    sentence: str
+    moved: bool = False
+
+
+def opening(
+    layout: Layout,
+    assessment: Assessment | None = None,
+    unit: str | None = None,
+    *,
+    cancelled: Cancelled | None = None,
+) -> Opening | None:
     """What is to be said when a layout that may have been issued is opened.
 
     Parameters
     ----------
-    assessment : Assessment
-        Of this layout, by this program.
+    assessment : Assessment, optional
+        Of this layout, by this program; None: it is made here where it is needed.
     unit : str, optional
         Display unit of flux density; None: the layout's.
 
     Returns
     -------
-    tuple of str
-        Empty where nothing was issued.
+    Opening or None
+        None where nothing was issued.
+
+    Raises
+    ------
+    ComputationCancelled
+        When `cancelled` says so.
     """
     if not layout.revisions:
-        return ()
+        return None
     last = layout.revisions[-1]
-    again = recomputed(layout, assessment)
-    if again is not None:
-        shown = unit or layout.settings.flux_density_unit
-        return (recomputed_text(again, names_of(layout), shown),)
     if not as_issued(layout, last):
-        return (
+        return Opening(
             f"The layout was edited after revision {last.revision} was issued; its "
-            "results are not held against what was issued then.",
+            "results are not held against what was issued then."
         )
-    return (
-        f"Revision {last.revision} was issued without results, so nothing can be held "
-        "against it.",
-    )
+    if not last.results:
+        return Opening(
+            f"Revision {last.revision} was issued without results, so nothing can be "
+            "held against it."
+        )
+    if assessment is None:
+        assessment = assess(layout, certify=True, cancelled=cancelled)
+    again = recomputed(layout, assessment)
+    assert again is not None
+    shown = unit or layout.settings.flux_density_unit
+    sentence = recomputed_text(again, names_of(layout), shown)
+    return Opening(sentence, moved=again.largest is not None)
 
 
 def recomputed_text(again: Recomputed, names: dict[str, str], unit: str) -> str:
@@ -259,6 +279,8 @@ def recomputed_text(again: Recomputed, names: dict[str, str], unit: str) -> str:
     if again.largest is None:
         return head + "every result is the same."
     text = moved_text(again.largest, names, unit)
+    if len(again.moved) == 1:
+        return f"{head}one result differs: {text}."
     return f"{head}{len(again.moved)} results differ, most of all {text}."
 
 

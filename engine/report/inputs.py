@@ -6,12 +6,13 @@ from reportlab.platypus import Flowable
 
 from engine.assessment import zone_floor
 from engine.criteria import LevelRanges, LevelTable, ReferenceLevel
+from engine.field_words import field_words
 from engine.items import Item
 from engine.layout import Layout
+from engine.origin_words import origin_text, told_origin
 from engine.origins import assumptions
-from engine.places import Enclosure, Room, Zone
+from engine.places import BackingDrawing, Enclosure, Room, Zone
 from engine.report.drawings import receptor_marks
-from engine.report.origin_words import origin_text, told_origin
 from engine.report.text import fact_table, paragraph, table
 from engine.report.wording import NO_LEVELS
 from engine.report.words import length, place, uncertainty_text
@@ -44,7 +45,7 @@ def documents(layout: Layout, width: float) -> list[Flowable]:
     drawings = [
         (
             d.title,
-            f"{d.file_name or 'not stated'}, page {d.page}",
+            f"{d.file_name or 'not stated'}, page {d.page}\n{_kept(d)}",
             d.sha256 or "not stated",
             d.view,
             f"{_pixels(d.first)} to {_pixels(d.second)} px = "
@@ -58,6 +59,13 @@ def documents(layout: Layout, width: float) -> list[Flowable]:
     )  # fmt: skip
     made.append(table(heads_of_drawings, drawings, (20, 18, 24, 10, 28), width))
     return made
+
+
+def _kept(drawing: BackingDrawing) -> str:
+    """Whether the layout's file holds a backing drawing, or where it has to be."""
+    if drawing.linked_file:
+        return f"linked, not in the layout's file: {drawing.linked_file}"
+    return "in the layout's file" if drawing.picture else "no picture"
 
 
 def _pixels(point: tuple[float, float]) -> str:
@@ -162,7 +170,7 @@ def _room_levels(room: Room, unit: str) -> str:
 
 
 def _from(layout: Layout, item: Item, field: str) -> str:
-    return f"{field.replace('_', ' ')}: {origin_text(layout, item, field)}"
+    return f"{field_words(field, type(item))}: {origin_text(layout, item, field)}"
 
 
 def _front(enclosure: Enclosure) -> str:
@@ -271,6 +279,7 @@ def assumption_list(layout: Layout, width: float) -> list[Flowable]:
     """Values without an origin, counted and listed."""
     found = assumptions(layout)
     names = {item.id: item.title for item in layout.items()}
+    kinds = {item.id: type(item) for item in layout.items()}
     if not found:
         return [paragraph("Every entered value has an origin.")]
     count = len(found)
@@ -283,7 +292,7 @@ def assumption_list(layout: Layout, width: float) -> list[Flowable]:
         (
             f"A{k}",
             names.get(a.item, a.item),
-            a.field.replace("_", " ").replace(".", " "),
+            field_words(a.field, kinds.get(a.item)),
             a.value,
             a.reason or "none given",
         )
@@ -300,7 +309,7 @@ def origins(layout: Layout, width: float) -> list[Flowable]:
         for origin in item.origins:
             if origin.kind != "assumed":
                 items = groups.setdefault(told_origin(layout, origin), {})
-                name = origin.field.replace("_", " ").replace(".", " ")
+                name = field_words(origin.field, type(item))
                 items.setdefault(item.title, []).append(name)
     if not groups:
         return [paragraph("No value has an origin.")]

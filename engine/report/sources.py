@@ -14,7 +14,7 @@ from engine.equipment import Board, ConductorLoop, Equipment, Transformer
 from engine.errors import UserError
 from engine.items import Item, Point3
 from engine.layout import Layout
-from engine.report.origin_words import origin_text
+from engine.origin_words import origin_text
 from engine.report.section_figures import SECTION_UNITS, section_numbers
 from engine.report.text import NOTE, bullets, paragraph, table
 from engine.report.words import demand_text, length, place, section_text, shape_text

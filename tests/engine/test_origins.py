@@ -56,7 +56,7 @@ def test_part_said_to_be_assumed_stands_out_of_a_covered_field() -> None:
     )
     found = of("R", Layout(runs=(run(*origins),)))
     assert list(found) == ["section.pitch"]
-    assert found["section.pitch"].value == "0.12"
+    assert found["section.pitch"].value == "0.12 m"
 
 
 def test_covered_part_does_not_cover_its_field() -> None:
@@ -66,7 +66,7 @@ def test_covered_part_does_not_cover_its_field() -> None:
     )
     found = of("R", Layout(runs=(run(*origins),)))
     assert list(found) == ["section"]
-    assert "apart from section.pitch" in found["section"].value
+    assert "apart from pitch" in found["section"].value
 
 
 def test_voltage_counts_only_where_a_power_needs_it() -> None:

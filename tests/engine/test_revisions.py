@@ -17,10 +17,11 @@ from engine.commands.revisions import (
     freeze,
     issue_revision,
     names_of,
-    opening_sentences,
+    opening,
     recomputed_text,
 )
 from engine.errors import ComputationCancelled, UserError
+from engine.items import SourceDocument, ValueOrigin
 from engine.layout import Layout
 from engine.layout_file import read, write
 from engine.places import Receptor
@@ -118,6 +119,17 @@ def test_a_tenth_more_current_moves_every_result_by_a_tenth():
     assert moved.relative == pytest.approx(0.1, rel=1e-6)
 
 
+def test_an_origin_that_changed_is_told_in_words_of_the_trade():
+    plan = SourceDocument(id="plan", name="Plan", revision="B")
+    before = replace(layout(), documents=(plan,))
+    origin = ValueOrigin(field="at", kind="document", document="plan", page="2")
+    (desk,) = before.receptors
+    after = replace(before, receptors=(replace(desk, origins=(origin,)),))
+    (edit,) = changes_since(after, before).edits
+    assert (edit.field, edit.words) == ("origins.at", "origin of place")
+    assert (edit.before, edit.after) == ("assumed", "Plan rev. B, 2")
+
+
 def test_items_that_came_and_went_are_edits_and_results():
     before = layout()
     chair = Receptor(id="chair", name="Chair", at=(2, 2, 1))
@@ -171,22 +183,22 @@ def test_an_edited_layout_is_not_held_against_its_revision():
 
 def test_opening_says_what_became_of_an_issued_layout():
     found = made()
-    assert opening_sentences(layout(), assess(layout())) == ()
-    (same,) = opening_sentences(found, assess(found))
-    assert "every result is the same" in same
+    assert opening(layout()) is None
+    same = opening(found, assess(found))
+    assert "every result is the same" in same.sentence
     entry = found.revisions[0]
     (result,) = entry.results
     moved = replace(result, value=result.value / 1.02)
     older = replace(found, revisions=(replace(entry, results=(moved,)),))
-    (text,) = opening_sentences(older, assess(older), "mG")
-    assert "1 results differ" in text
+    text = opening(older, assess(older), "mG").sentence
+    assert "one result differs" in text
     assert "mG" in text
     assert "+2 %" in text
     edited = replace(found, receptors=())
-    (text,) = opening_sentences(edited, assess(edited))
+    text = opening(edited).sentence
     assert "edited after revision A" in text
     bare = replace(found, revisions=(replace(entry, results=()),))
-    (text,) = opening_sentences(bare, assess(bare))
+    text = opening(bare).sentence
     assert "without results" in text
 
 
@@ -231,7 +243,7 @@ def test_changes_are_told_in_words_and_as_values():
     old, new = made(), replace(made(440.0), revisions=())
     changes, again = changes_between(old, new)
     text = as_text(changes, again, names_of(old, new), "µT")
-    assert "changed Feeder, demand: " in text
+    assert "changed Feeder, current or power: " in text
     assert "Desk, Entered currents: " in text
     assert "(+10 %)" in text
     assert "Revision A was issued" in text

@@ -1,4 +1,7 @@
-"""Where a value comes from, in words."""
+"""Where a value comes from, in words.
+
+Import place: after `origins`.
+"""
 
 from __future__ import annotations
 
