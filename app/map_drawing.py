@@ -78,6 +78,7 @@ def map_picture(values: MapValues, masks: Masks | None = None) -> MapPicture:
         marks=_marks(values, unit),
         extent=None if request.fineness == "coarse" else _extent(logs),
         is_coarse=request.fineness == "coarse",
+        is_direct=values.is_direct,
     )
 
 

@@ -80,6 +80,8 @@ class MapPicture:
         A preview with few points.
     is_stale : bool
         No longer of the layout that is shown.
+    is_direct : bool
+        Of the field at 0 Hz, where only direct current flows.
     """
 
     image: QImage
@@ -95,3 +97,4 @@ class MapPicture:
     extent: tuple[float, float] | None = None
     is_coarse: bool = False
     is_stale: bool = False
+    is_direct: bool = False

@@ -47,13 +47,14 @@ class Legend(QWidget):
         self._picture = picture
         self.setVisible(picture is not None)
         if picture is not None:
+            kind = "DC" if picture.is_direct else "RMS"
             self.setAccessibleName(
-                f"Legend: RMS flux density from {significant(picture.low)} to "
+                f"Legend: {kind} flux density from {significant(picture.low)} to "
                 f"{significant(picture.high)} {picture.unit}"
             )
             told = [
-                f"Resultant RMS flux density in {picture.unit}; the range of colours "
-                "is set in the Field menu",
+                f"Resultant {kind} flux density in {picture.unit}; the range of "
+                "colours is set in the Field menu",
                 # Names in full: beside the bar they may be shortened.
                 *(f"{significant(v)} {picture.unit}: {n}" for v, n in picture.marks),
             ]
@@ -194,7 +195,7 @@ class Legend(QWidget):
         picture = self._picture
         if picture is None:
             return []
-        words = [f"B, RMS [{picture.unit}]"]
+        words = [f"B, {'DC' if picture.is_direct else 'RMS'} [{picture.unit}]"]
         if picture.is_stale:
             words.append("out of date")
         elif picture.is_coarse:

@@ -243,12 +243,13 @@ class SpaceView(Page):
     def _place_legend(self) -> None:
         settings = self._document.layout.settings
         unit = settings.flux_density_unit
+        maps = () if self.desk is None else self.desk.shown
         picture = MapPicture(
             QImage(), (0.0, 0.0, 1.0, 1.0), unit=unit,
             low=in_unit(settings.map_low, unit), high=in_unit(settings.map_high, unit),
-            scale=settings.map_scale,
+            scale=settings.map_scale, is_direct=any(m.is_direct for m in maps),
         )  # fmt: skip
-        has_map = self.desk is not None and bool(self.desk.shown)
+        has_map = bool(maps)
         self.legend.set_picture(picture if has_map else None)
         self.legend.move(
             self.canvas.width() - self.legend.width() - 2 * STEP,

@@ -345,6 +345,15 @@ def test_the_first_row_of_a_map_lies_at_its_lower_edge(shown):
     assert high.blue() > high.red()
 
 
+def test_the_legend_names_a_direct_field(shown):
+    _, view, _ = shown
+    view.set_map(picture())
+    assert view._legend.accessibleName().startswith("Legend: RMS flux density")
+    view.set_map(picture(is_direct=True))
+    assert view._legend.accessibleName().startswith("Legend: DC flux density")
+    assert view._legend._head() == ["B, DC [µT]"]
+
+
 def test_a_stale_map_has_no_colour_and_says_so(shown):
     _, view, _ = shown
     view.set_map(picture(is_stale=True, masked=(), iso_lines=()))
