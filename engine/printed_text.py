@@ -85,7 +85,7 @@ def wrapped(
     blank = text_width(" ", size, bold=bold)
     for paragraph in printable(text).split("\n"):
         line, used = "", 0.0
-        for word in paragraph.split():
+        for word in _with_units(paragraph.split()):
             long = text_width(word, size, bold=bold)
             if line and used + blank + long <= width:
                 line, used = f"{line} {word}", used + blank + long
@@ -100,6 +100,29 @@ def wrapped(
             line, used = word, long
         lines.append(line)
     return tuple(lines)
+
+
+#: What stays on the line of the number before it.
+_UNITS = frozenset(
+    ("%", "µT", "nT", "mT", "mG", "A/m", "T", "Hz", "kHz", "m", "m²", "mm", "ft", "A")
+)
+
+
+def _with_units(words: list[str]) -> list[str]:
+    """Words, each unit together with its number.
+
+    Examples
+    --------
+    >>> _with_units("share 15 % of 2.5 µT, at A".split())
+    ['share', '15 %', 'of', '2.5 µT,', 'at', 'A']
+    """
+    found: list[str] = []
+    for word in words:
+        if found and word.rstrip(",;.)") in _UNITS and found[-1][-1:].isdigit():
+            found[-1] = f"{found[-1]} {word}"
+        else:
+            found.append(word)
+    return found
 
 
 def _count_that_fits(text: str, size: float, width: float, bold: bool) -> int:

@@ -58,15 +58,18 @@ def draw_axes(
             turn=90.0,
         )
     )
-    _draw_scale_bar(picture, sheet, scale, length_unit)
+    end = _draw_scale_bar(picture, sheet, scale, length_unit)
     if north is not None:
-        _draw_north(picture, sheet, north)
+        _draw_north(picture, sheet, north, end)
 
 
 def _draw_scale_bar(
     picture: Picture, sheet: Sheet, scale: int, length_unit: str
-) -> None:
-    """Two fields, the first one filled, together at most half the map."""
+) -> float:
+    """Two fields, the first one filled, together at most half the map.
+
+    Returns where the words beside them end. [mm]
+    """
     metres = LENGTH_UNITS[length_unit]
     room = 0.25 * sheet.width / sheet.factor / metres
     step = round_values(room / 10.0, room)[-1]
@@ -86,12 +89,15 @@ def _draw_scale_bar(
         )
     )
     text = f"{_tick_text(2 * step, step)} {length_unit}, scale 1:{scale}"
-    picture.add(Words((x + 2 * length + 2.0, y), text, TICK_SIZE))
+    words = Words((x + 2 * length + 2.0, y), text, TICK_SIZE)
+    picture.add(words)
+    return words.at[0] + words.width
 
 
-def _draw_north(picture: Picture, sheet: Sheet, north: float) -> None:
+def _draw_north(picture: Picture, sheet: Sheet, north: float, after: float) -> None:
+    """An arrow below the right corner, beyond the words of the scale bar. [mm]"""
     turn = math.radians(north)
-    x, y = sheet.left + sheet.width - 3.0, sheet.bottom - 10.5
+    x, y = max(sheet.left + sheet.width - 3.0, after + 9.0), sheet.bottom - 10.5
     tip = (x + 2.6 * math.cos(turn), y + 2.6 * math.sin(turn))
     picture.add(Stroke(((2 * x - tip[0], 2 * y - tip[1]), tip), 0.3))
     for side in (150.0, -150.0):

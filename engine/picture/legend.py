@@ -11,6 +11,7 @@ from engine.iso_lines import round_values
 from engine.picture.marks import (
     BLACK,
     GREY,
+    WHITE,
     Picture,
     Points,
     Raster,
@@ -37,6 +38,19 @@ CAUTION = (
 #: Width that the legend takes beside a map, and width and height under it. [mm]
 BESIDE = 40.0
 UNDER = (120.0, 64.0)
+
+
+#: Of a reference level's line, and of the white in its middle: without colours, too,
+#: it is not the edge of a room. [mm]
+REFERENCE_WIDTH, REFERENCE_CORE = 0.85, 0.3
+
+
+def reference_strokes(line: Points) -> tuple[Stroke, Stroke]:
+    """A line of a reference level on paper. [mm]"""
+    return (
+        Stroke(line, REFERENCE_WIDTH, BLACK),
+        Stroke(line, REFERENCE_CORE, WHITE),
+    )
 
 
 def height_beside(subject: MapSubject) -> float:
@@ -142,7 +156,8 @@ def _entries(
     flat: Points = ((0.0, 0.0), (6.0, 0.0))
     entries = [([(flat, bar(0.18))], "line of equal value, labelled")]
     if subject.reference_note:
-        samples = [(flat, bar(0.55))] if subject.references else []
+        strokes = reference_strokes(flat) if subject.references else ()
+        samples = [(stroke.points, stroke) for stroke in strokes]
         entries.append((samples, subject.reference_note))
     if subject.offsets is not None:
         text = "reference level met, every frequency counted by its rule"

@@ -4,16 +4,16 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
+import numpy as np
+from shapely.geometry import Point as Spot
 from shapely.geometry import box
 
 from engine.drawing import Place, Plan, Point
 from engine.iso_lines import IsoLine
 from engine.picture.marks import BLACK, Picture, Words
 from engine.picture.sheet import Sheet
+from engine.picture.source_labels import LABEL_SIZE
 from engine.printed_text import fitted, one_line, text_width
-from engine.units import LENGTH_UNITS
-
-LABEL_SIZE = 2.2
 
 #: Labels of one reference level on a map.
 MOST_LABELS = 3
@@ -81,7 +81,14 @@ def letter_line(
 def letter_places(picture: Picture, sheet: Sheet, plan: Plan) -> None:
     """Name receptors, rooms and zones."""
     for at, titles in _by_place(plan).items():
-        _letter(picture, sheet, ", ".join(titles), _around(sheet.paper(*at), 3.4))
+        x, y = sheet.paper(*at)
+        if not sheet.frame.contains(Spot(x, y)):
+            continue
+        text = ", ".join(titles)
+        half = 0.5 * text_width(fitted(text, LABEL_SIZE, 70.0), LABEL_SIZE)
+        beside = [(x + half + 2.6, y), (x - half - 2.6, y)]
+        places = _around((x, y), 3.4, half)
+        _letter(picture, sheet, text, [*places[:1], *beside, *places[1:]])
     for place in plan.rooms:
         _letter(picture, sheet, place.title, _corners(sheet, place, 2.6), bold=True)
     for place in plan.zones:
@@ -96,37 +103,14 @@ def _by_place(plan: Plan) -> dict[Point, list[str]]:
     return found
 
 
-def letter_sources(
-    picture: Picture, sheet: Sheet, plan: Plan, length_unit: str = "m"
-) -> None:
-    """Name runs with their heights, enclosures and equipment."""
-    for run in plan.runs:
-        span = _span(run.levels, length_unit)
-        at = _around(sheet.paper(*run.label_place), 4.0)[:10]
-        title = fitted(run.title, LABEL_SIZE, 45.0)
-        _letter(picture, sheet, f"{title}, z {span} {length_unit}", at)
-    for place in (*plan.enclosures, *plan.equipment):
-        middle = sheet.paper(*place.label_place)
-        _letter(picture, sheet, place.title, [middle, *_around(middle, 3.4)])
-
-
-def _span(levels: tuple[float, float], unit: str) -> str:
-    """Two levels in a unit of length, or one where they are the same."""
-    digits = {"m": 2, "mm": 0, "ft": 2, "in": 1}[unit]
-    low, high = (
-        f"{level / LENGTH_UNITS[unit] + 0.0:.{digits}f}".replace("-", "−")
-        for level in levels
-    )
-    return low if levels[1] - levels[0] < 0.005 else f"{low}–{high}"
-
-
-def _around(at: Point, step: float) -> list[Point]:
+def _around(at: Point, step: float, aside: float = 9.0) -> list[Point]:
     """Places near a point, the nearest first, none on the point itself. [mm]"""
     x, y = at
+    aside = min(9.0, aside + 1.6)
     return [
         (x + dx, y + dy * step)
         for dy in (1, -1, 2, -2, 3, -3)
-        for dx in (0.0, 9.0, -9.0, 18.0, -18.0)
+        for dx in (0.0, aside, -aside, 2.0 * aside, -2.0 * aside)
     ]
 
 
@@ -151,10 +135,14 @@ def _letter(
     places: list[Point],
     bold: bool = False,
 ) -> None:
-    """Write a label at the first place where it covers no other one."""
+    """Write a label where it covers no other one, of the first places on few lines."""
     shown = fitted(text, LABEL_SIZE, 70.0, bold=bold)
-    for at in places:
-        words = Words(at, shown, LABEL_SIZE, BLACK, bold, "middle", 0.0, True)
+    half, tall = 0.5 * text_width(shown, LABEL_SIZE, bold=bold), 0.5 * LABEL_SIZE
+    boxes = [box(x - half, y - tall, x + half, y + tall) for x, y in places]
+    lines = sheet.lines_under(np.array(boxes))
+    order = sorted(range(len(places)), key=lambda k: (lines[k] + 0.4 * k, k))
+    for k in order:
+        words = Words(places[k], shown, LABEL_SIZE, BLACK, bold, "middle", 0.0, True)
         if sheet.has_room(words):
             picture.add(words)
             return

@@ -25,13 +25,13 @@ from engine.picture.legend import (
     draw_legend_beside,
     draw_legend_under,
     height_beside,
+    reference_strokes,
 )
 from engine.picture.lettering import (
     keep_clear,
     letter_line,
     letter_places,
     letter_references,
-    letter_sources,
 )
 from engine.picture.marks import (
     BLACK,
@@ -46,6 +46,7 @@ from engine.picture.marks import (
 from engine.picture.offset_lines import draw_offsets, letter_offsets
 from engine.picture.plan_marks import draw_plan
 from engine.picture.sheet import Sheet, drawing_scale
+from engine.picture.source_labels import letter_sources
 from engine.picture.subject import MapSubject, value_text
 from engine.printed_text import one_line
 from engine.units import FLUX_DENSITY_UNITS
@@ -55,6 +56,9 @@ BOTTOM = 16.0
 TOP = 3.0
 RIGHT = 4.0
 LEAST_WIDTH = 120.0
+
+#: Of the field, however little room is left.
+LEAST_HEIGHT = 15.0
 
 
 _Legend = Literal["beside", "beside all", "under"]
@@ -95,7 +99,10 @@ def map_picture(
     for line, _, bold in lines:
         on_sheet = tuple(sheet.paper(float(x), float(y)) for x, y in line.points)
         for piece in sheet.clipped(on_sheet):
-            picture.add(Stroke(piece, 0.55 if bold else 0.18, BLACK))
+            if bold:
+                picture.add(*reference_strokes(piece))
+            else:
+                picture.add(Stroke(piece, 0.18, BLACK))
     keep_clear(sheet, plan)
     if subject.largest is not None:
         _mark_largest(picture, sheet, subject.largest)
@@ -120,17 +127,30 @@ def map_picture(
         draw_legend_under(picture, subject, LEFT, sheet.bottom - BOTTOM)
     else:
         left = sheet.left + sheet.width + RIGHT
+        if arranged.caption_width < arranged.width:
+            # It goes down past the caption.
+            left = max(left, arranged.caption_width)
         draw_legend_beside(picture, subject, left, arranged.height - TOP)
     draw_caption(picture, subject, arranged.caption_width)
     return picture
 
 
 def _best(subject: MapSubject, width: float, height: float) -> _Arrangement:
-    """The legend beside the map, beside map and caption, or under the map."""
+    """The legend beside the map, beside map and caption, or under the map.
+
+    A caption as wide as the paper is tried too: it takes less of the height. Of equal
+    scales the narrow picture is taken.
+    """
     kinds: tuple[_Legend, ...] = ("beside", "beside all", "under")
-    tried = [_arranged(subject, width, height, kind) for kind in kinds]
+    tried = [
+        _arranged(subject, width, height, kind, least)
+        for least in (LEAST_WIDTH, width)
+        for kind in kinds
+    ]
     fitting = [each for each in tried if each.height <= height + 0.01]
-    return min(fitting or tried[-1:], key=lambda each: each.scale)
+    if not fitting:
+        return min(tried, key=lambda each: each.height)
+    return min(fitting, key=lambda each: each.scale)
 
 
 def _mark_largest(picture: Picture, sheet: Sheet, at: tuple[float, float]) -> None:
@@ -151,18 +171,24 @@ def _mark_largest(picture: Picture, sheet: Sheet, at: tuple[float, float]) -> No
 
 
 def _arranged(
-    subject: MapSubject, width: float, height: float, legend: _Legend
+    subject: MapSubject, width: float, height: float, legend: _Legend, least: float
 ) -> _Arrangement:
-    """The largest drawing scale that leaves room for legend and caption."""
+    """The largest drawing scale that leaves room for legend and caption.
+
+    `least` is how wide the picture is at least, so that its caption has room.
+    """
     world = subject.world()
     aside = RIGHT if legend == "under" else RIGHT + BESIDE
     less = BESIDE if legend == "beside all" else 0.0
     under = UNDER[1] if legend == "under" else 0.0
-    below = BOTTOM + under + caption_height(subject, LEAST_WIDTH - less)
-    scale = drawing_scale(world, width - LEFT - aside, height - below - TOP)
+    if legend == "under":
+        least = max(least, LEFT + UNDER[0])
+    least = min(least, width)
+    below = BOTTOM + under + caption_height(subject, least - less)
+    room_up = max(LEAST_HEIGHT, height - below - TOP)
+    scale = drawing_scale(world, width - LEFT - aside, room_up)
     wide = 1000.0 * (world[2] - world[0]) / scale
     tall = 1000.0 * (world[3] - world[1]) / scale
-    least = LEFT + UNDER[0] if legend == "under" else LEAST_WIDTH
     across = min(max(LEFT + wide + aside, least), width)
     below = BOTTOM + under + caption_height(subject, across - less)
     # Beside, the legend may go down to the caption, or past it.

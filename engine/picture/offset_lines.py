@@ -8,9 +8,10 @@ import numpy as np
 from shapely.geometry import LineString
 
 from engine.iso_lines import IsoLine
-from engine.picture.lettering import LABEL_SIZE, letter_line
+from engine.picture.lettering import letter_line
 from engine.picture.marks import BLACK, WHITE, Picture, Points, Stroke, Words
 from engine.picture.sheet import Sheet
+from engine.picture.source_labels import LABEL_SIZE
 from engine.picture.subject import OffsetLines
 from engine.printed_text import fitted, one_line
 

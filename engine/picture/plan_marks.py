@@ -26,6 +26,7 @@ def _outline(
     ring = tuple(sheet.paper(x, y) for x, y in (*outline, outline[0]))
     for piece in sheet.clipped(ring):
         picture.add(Stroke(piece, width, colour, dash))
+        sheet.note_line(piece)
 
 
 def draw_plan(picture: Picture, sheet: Sheet, plan: Plan) -> None:
@@ -60,6 +61,7 @@ def _draw_run(picture: Picture, sheet: Sheet, run: RunShape) -> None:
         line = tuple(sheet.paper(x, y) for x, y in run.route)
         for piece in sheet.clipped(line):
             picture.add(Stroke(piece, 0.25, BLACK))
+            sheet.note_line(piece)
     for rise in run.rises:
         x, y = sheet.paper(*rise.at)
         ring = tuple(
@@ -68,6 +70,7 @@ def _draw_run(picture: Picture, sheet: Sheet, run: RunShape) -> None:
         )
         for piece in sheet.clipped(ring):
             picture.add(Stroke(piece, 0.25, BLACK))
+            sheet.note_line(piece)
 
 
 def _width(strand: Strand) -> float:

@@ -18,10 +18,11 @@ from engine.picture.dimensions import (
     draw_levels,
     levels_width,
 )
-from engine.picture.lettering import keep_clear, letter_places, letter_sources
+from engine.picture.lettering import keep_clear, letter_places
 from engine.picture.marks import BLACK, Box, Picture, Stroke, Words
 from engine.picture.plan_marks import draw_plan
 from engine.picture.sheet import Sheet, drawing_scale
+from engine.picture.source_labels import letter_sources
 from engine.printed_text import wrapped
 
 LEFT = 14.0

@@ -3,17 +3,24 @@
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 
+import numpy as np
+import numpy.typing as npt
+import shapely
 from shapely.geometry import LineString, box
 from shapely.geometry.base import BaseGeometry
 
 from engine.picture.marks import Box, Points, Words
 
+Shapes = npt.NDArray[np.object_]
+
 #: Scales that a drawing may have, 1 : n.
 SCALES = tuple(
-    step * 10**power
+    round(step * 10**power)
     for power in range(0, 7)
-    for step in (10, 15, 20, 25, 30, 40, 50, 60, 75)
+    for step in (10, 12.5, 15, 20, 25, 30, 40, 50, 60, 75)
+    if float(step * 10**power).is_integer()
 )
 
 
@@ -31,6 +38,8 @@ class Sheet:
             self.left, self.bottom, self.left + self.width, self.bottom + self.height
         )
         self._lettered: list[BaseGeometry] = []
+        self._lines: list[BaseGeometry] = []
+        self._tree: shapely.STRtree | None = None
 
     def paper(self, x: float, y: float) -> tuple[float, float]:
         """Where a point of the world lies on paper. [m to mm]"""
@@ -57,6 +66,25 @@ class Sheet:
     def is_occupied(self, area: BaseGeometry) -> bool:
         """Whether a label in an area on paper would cover another one. [mm]"""
         return any(area.intersects(other) for other in self._lettered)
+
+    def note_line(self, line: Points) -> None:
+        """Keep labels off a line on paper where they can stand elsewhere. [mm]"""
+        self._lines += [LineString(leg) for leg in pairwise(line)]
+        self._tree = None
+
+    def lines_under(self, areas: Shapes) -> npt.NDArray[np.intp]:
+        """How many of the noted lines each of some areas on paper covers. [mm]"""
+        if self._tree is None:
+            self._tree = shapely.STRtree(self._lines)
+        found = self._tree.query(areas, predicate="intersects")[0]
+        return np.bincount(found, minlength=len(areas))
+
+    def covers_labels(self, areas: Shapes) -> npt.NDArray[np.bool_]:
+        """Which of some areas on paper would cover a label. [mm]"""
+        tree = shapely.STRtree(self._lettered)
+        taken = np.zeros(len(areas), np.bool_)
+        taken[tree.query(areas, predicate="intersects")[0]] = True
+        return taken
 
     def has_room(self, words: Words) -> bool:
         """Whether a label lies in the frame and on no other; if so it is taken."""

@@ -7,9 +7,9 @@ from dataclasses import dataclass, replace
 
 from reportlab.platypus import Flowable
 
-from engine.drawing import plan
+from engine.drawing import Plan, plan
 from engine.open_boards import open_board_sentences
-from engine.picture import Picture, Raster, map_picture
+from engine.picture import MapSubject, Picture, Raster, map_picture
 from engine.report import (
     appendix,
     closing,
@@ -47,8 +47,22 @@ from engine.report.zone_tables import contribution_tables, zone_section
 #: Another orientation must make a map this much larger to be worth a turned page.
 _WORTH = 1.2
 
+#: A map on half a page may be this much smaller than on a page of its own.
+_LOST = 1.3
+
+#: Of a page that is filled less than this, a half does for a map, if its field is still
+#: this wide. [mm]
+_MUCH_LEFT, _LEAST_FIELD = 0.75, 55.0
+
+#: Under a figure. [mm]
+_BELOW = 3.5
+
 #: Between sections side by side. [mm]
 _GAP = 4.0
+
+
+#: A picture, and how its page lies.
+_OnPage = tuple[Picture, Orientation]
 
 
 @dataclass(frozen=True, eq=False)
@@ -74,25 +88,55 @@ def drawn(matter: Matter, sheet: Paper) -> Drawn:
 def _map_pictures(
     matter: Matter, sheet: Paper
 ) -> Sequence[tuple[str, Picture, Orientation]]:
-    made: list[tuple[str, Picture, Orientation]] = []
-    whole = plan(matter.layout, matter.conductors)
+    found: list[tuple[str, _OnPage, _OnPage | None]] = []
+    drawing = plan(matter.layout, matter.conductors)
     for each in matter.maps:
-        shown = plan_of_map(whole, each)
+        shown = plan_of_map(drawing, each)
         for subject in each.subjects:
-            pictures = [
-                map_picture(
-                    replace(subject, title=""),
-                    shown,
-                    width=p.text_width,
-                    height=p.text_height - HEADING_ROOM,
-                )
-                for p in (sheet, sheet.turned)
-            ]
-            scales = [_drawn_size(picture) for picture in pictures]
-            turned = scales[1] > _WORTH * scales[0]
-            chosen = sheet.turned if turned else sheet
-            made.append((subject.title, pictures[turned], chosen.orientation))
+            untitled = replace(subject, title="")
+            whole, half = _map_on_a_page(untitled, shown, sheet)
+            found.append((subject.title, whole, half))
+    return [(title, *on_page) for title, on_page in _paired(found)]
+
+
+def _paired(
+    found: Sequence[tuple[str, _OnPage, _OnPage | None]],
+) -> Sequence[tuple[str, _OnPage]]:
+    """Halves where two come one after the other, else maps on pages of their own."""
+    made: list[tuple[str, _OnPage]] = []
+    waiting = [*found]
+    while waiting:
+        title, whole, half = waiting.pop(0)
+        next_half = waiting[0][2] if waiting else None
+        if half is None or next_half is None:
+            made.append((title, whole))
+            continue
+        made += [(title, half), (waiting.pop(0)[0], next_half)]
     return made
+
+
+def _map_on_a_page(
+    subject: MapSubject, shown: Plan, sheet: Paper
+) -> tuple[_OnPage, _OnPage | None]:
+    """A map on a page of its own, and on half of one where little is lost by that."""
+    whole, turned = (
+        map_picture(
+            subject, shown, width=p.text_width, height=p.text_height - HEADING_ROOM
+        )
+        for p in (sheet, sheet.turned)
+    )
+    half_height = 0.5 * sheet.text_height - HEADING_ROOM - _BELOW
+    half = map_picture(subject, shown, width=sheet.text_width, height=half_height)
+    sizes = [_drawn_size(picture) for picture in (whole, turned, half)]
+    chosen = (whole, sheet.orientation)
+    if sizes[1] > _WORTH * sizes[0]:
+        chosen = (turned, sheet.turned.orientation)
+    leaves_much = whole.height < _MUCH_LEFT * sheet.text_height
+    is_near = _LOST * sizes[2] >= max(sizes[:2])
+    is_enough = leaves_much and sizes[2] >= min(_LEAST_FIELD, sizes[0])
+    if half.height <= half_height and (is_near or is_enough):
+        return chosen, (half, sheet.orientation)
+    return chosen, None
 
 
 def _drawn_size(picture: Picture) -> float:

@@ -14,7 +14,7 @@ from engine.report.contents import drawn, story
 from engine.report.files import attached_files
 from engine.report.matter import Matter
 from engine.report.names import Wording, wording
-from engine.report.note import MOST_PAGES, ROOMS, Room, note_story
+from engine.report.note import MOST_PAGES, ON_ONE_PAGE, ROOMS, Room, note_story
 from engine.report.page import (
     UNWATCHED,
     Frontispiece,
@@ -93,8 +93,10 @@ def _note(
         if laid.count <= MOST_PAGES:
             break
     if room == ROOMS[0] and laid.count > 1:
-        shorter = laid_out(ROOMS[1])
-        laid = shorter if shorter.count == 1 else laid
+        for room in ON_ONE_PAGE:
+            shorter = laid_out(room)
+            if shorter.count == 1:
+                return shorter.content
     return laid.content
 
 

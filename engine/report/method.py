@@ -8,10 +8,20 @@ from reportlab.platypus import Flowable
 
 from engine.report.matter import Matter
 from engine.report.names import Wording
-from engine.report.text import NOTE, bullets, paragraph, subheading, table
+from engine.report.text import (
+    NOTE,
+    bullets,
+    paragraph,
+    subheading,
+    table,
+    whole_height,
+)
 from engine.report.wording import METHOD, METHOD_ASSUMPTIONS
 from engine.units import significant
 from engine.validation import NEAR_FIELD, Outcome, near_field_rows
+
+#: What is kept on one page, if there is as much room on it. [mm]
+_TALLEST = 130.0
 
 
 def method(matter: Matter, words: Wording, width: float) -> list[Flowable]:
@@ -74,7 +84,7 @@ def validation(outcomes: Sequence[Outcome], width: float) -> list[Flowable]:
     heads = (
         "No.", "Case", "Published", "Computed", "Deviation", "Tolerance", "Source",
     )  # fmt: skip
-    checked = table(heads, rows, (9, 27, 13, 13, 11, 12, 25), width)
+    checked = table(heads, rows, (12, 26, 12, 12, 9, 12, 27), width)
     return [paragraph(text), checked, *_near_field(width)]
 
 
@@ -83,11 +93,11 @@ def _near_field(width: float) -> list[Flowable]:
     # A row for each distance: there are more of them than formations.
     heads, *rows = zip(*near_field_rows(), strict=True)
     columns = (14.0, *(86.0 / (len(heads) - 1) for _ in heads[1:]))
-    return [
-        *subheading("Error near conductors, by distance from the surface"),
-        paragraph(NEAR_FIELD),
-        table(heads, rows, columns, width),
-    ]
+    made = table(heads, rows, columns, width)
+    # The formations are compared down the columns: one page, as on any paper.
+    room = min(whole_height(made) + 25.0, _TALLEST)
+    title = "Error near conductors, by distance from the surface"
+    return [*subheading(title, room=room), paragraph(NEAR_FIELD), made]
 
 
 _RAISED = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")

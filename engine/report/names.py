@@ -32,6 +32,10 @@ class Wording:
         """A level as it was typed: up to six figures, no zeros behind the point."""
         return f"{float(f'{in_unit(tesla, self.unit):.6g}'):.10g}"
 
+    def derived(self, tesla: float) -> str:
+        """A level at a frequency, by its formula: four figures."""
+        return f"{float(f'{in_unit(tesla, self.unit):.4g}'):.10g}"
+
     def beside(self, tesla: float | None, limit: float | None) -> str:
         """A value with the figures that show its side of a limit."""
         if tesla is None or limit is None:

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from reportlab.platypus import Flowable
 
 from engine.decisions import worst_comparisons
 from engine.drawing import plan
+from engine.field_words import field_words
 from engine.open_boards import open_board_sentences
 from engine.origins import assumptions
 from engine.picture import Picture, map_picture
@@ -22,6 +23,7 @@ from engine.report.matter import HeightMap, Matter
 from engine.report.names import Wording
 from engine.report.summary import at_risk, state_text
 from engine.report.text import (
+    NOTE,
     SMALL_BULLET,
     STRONG,
     TITLE,
@@ -70,6 +72,9 @@ ROOMS = (
     Room(3, 3, 2, 0.45, 200),
 )
 
+#: Tried for a note that is only a little longer than a page.
+ON_ONE_PAGE = tuple(replace(ROOMS[1], picture=part) for part in (0.52, 0.48, 0.44))
+
 
 def note_story(
     matter: Matter, words: Wording, sheet: Paper, room: Room
@@ -97,9 +102,8 @@ def note_story(
     if title.conclusions:
         made += part_heading("Conclusions of the author")
         made += [paragraph(brief(title.conclusions, room.text))]
-    made.append(
-        paragraph(matter.identity.sentence() + ". The full report has the rest.")
-    )
+    last = matter.identity.sentence() + ". The full report has the rest."
+    made += [gap(1.5), paragraph(last, NOTE)]
     return made
 
 
@@ -205,8 +209,9 @@ def _assumed(matter: Matter, words: Wording, room: Room) -> list[str]:
     found = sorted(assumptions(matter.layout), key=lambda a: not a.reason)
     if not found:
         return ["Every entered value has an origin."]
+    kinds = {item.id: type(item) for item in matter.layout.items()}
     texts = [
-        f"{words.name(a.item)}, {a.field.replace('_', ' ')}: {a.value}"
+        f"{words.name(a.item)}, {field_words(a.field, kinds.get(a.item))}: {a.value}"
         + (f" ({a.reason})" if a.reason else "")
         for a in found[: room.assumed]
     ]

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Sized
+
 from reportlab.platypus import Flowable
 
 from engine.report.matter import Matter
@@ -20,14 +22,14 @@ def scope(matter: Matter, width: float) -> list[Flowable]:
     heights = sorted({h for zone in layout.zones for h in zone.heights})
     above = ", ".join(length(h, unit) for h in heights[:40])
     facts = [
-        ("Areas", f"{len(layout.zones)} zones, {len(layout.receptors)} receptors"),
+        ("Areas", f"{_of(layout.zones, 'zone')}, {_of(layout.receptors, 'receptor')}"),
         ("Heights above the zones' floors", f"{above} {unit}" if above else "none"),
         ("Frequencies of the currents", at + more or "no current flows"),
-        ("Load cases", f"{len(layout.cases)}, {_counted(matter)} of them counted"),
+        ("Load cases", f"{len(layout.cases)}, of which {_counted(matter)} counted"),
         (
             "Sources",
-            f"{len(layout.circuits)} circuits, {len(layout.runs)} runs, "
-            f"{len(layout.equipment)} pieces of equipment",
+            f"{_of(layout.circuits, 'circuit')}, {_of(layout.runs, 'run')}, "
+            f"{_of(layout.equipment, 'piece')} of equipment",
         ),
     ]
     made: list[Flowable] = [
@@ -41,6 +43,11 @@ def scope(matter: Matter, width: float) -> list[Flowable]:
     if title.note:
         made += [*subheading("Notes of the author"), *paragraphs(title.note)]
     return made
+
+
+def _of(items: Sized, noun: str) -> str:
+    """ "1 zone", "3 zones"."""
+    return f"{len(items)} {noun}{'' if len(items) == 1 else 's'}"
 
 
 def _counted(matter: Matter) -> int:

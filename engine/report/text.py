@@ -291,9 +291,13 @@ def _rules(ends: Sequence[int]) -> list[tuple[object, ...]]:
 
 def least_height(made: Table) -> float:
     """What of a table must stand together: all of a small one, or head and row. [mm]"""
-    heights = made._rowHeights
-    whole = sum(heights) / mm
-    return float(whole if whole <= WHOLE else sum(heights[:2]) / mm)
+    whole = whole_height(made)
+    return whole if whole <= WHOLE else float(sum(made._rowHeights[:2]) / mm)
+
+
+def whole_height(made: Table) -> float:
+    """Of a table on one page. [mm]"""
+    return float(sum(made._rowHeights) / mm)
 
 
 def _with_room(

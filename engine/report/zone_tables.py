@@ -166,7 +166,7 @@ def _frequency_rows(
         "\n".join(frequency_text(part.frequency) for part in parts),
         "\n".join(words.small(part.value, largest) for part in parts),
         "\n".join(
-            "–" if part.level is None else words.limit(part.level) for part in parts
+            "–" if part.level is None else words.derived(part.level) for part in parts
         ),
         "\n".join(
             "–" if part.ratio is None else significant(part.ratio) for part in parts

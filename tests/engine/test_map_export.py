@@ -28,7 +28,7 @@ from engine.picture import (
     Words,
     map_picture,
 )
-from engine.picture.legend import BAR_HEIGHT
+from engine.picture.legend import BAR_HEIGHT, REFERENCE_WIDTH
 from engine.places import Receptor, Room, Zone
 
 HOSTILE = 'Desk <img src="x"> R&D <LV> \x07\u202e שלום ' + "w" * 300
@@ -106,7 +106,9 @@ def test_labels_follow_the_unit():
 def test_the_reference_line_is_bold_and_lies_at_its_value():
     drawn = picture()
     bold = [
-        part for part in drawn.parts if isinstance(part, Stroke) and part.width == 0.55
+        part
+        for part in drawn.parts
+        if isinstance(part, Stroke) and part.width == REFERENCE_WIDTH
     ]
     ring = max(bold, key=lambda part: len(part.points))
     points = np.array(ring.points)

@@ -21,6 +21,7 @@ from engine.conductors import conductors
 from engine.errors import ComputationCancelled, UserError
 from engine.items import IssuedRevision, Item
 from engine.layout import Layout
+from engine.places import BackingDrawing
 from engine.report import scripts
 from engine.report.choices import Choices
 from engine.report.document import report_pdf
@@ -274,6 +275,19 @@ def test_logo_and_texts_of_the_house_are_printed(kind):
 @pytest.mark.parametrize("logo", ["no base64!", base64.b64encode(b"GIF89a").decode()])
 def test_a_damaged_logo_is_named_and_the_report_is_whole(logo):
     assert "The logo is damaged" in text_of(report_pdf(with_title(logo=logo)))
+
+
+def test_documents_say_whether_a_backing_drawing_is_in_the_layout():
+    found = matter()
+    drawings = (
+        BackingDrawing(id="held", name="Held", picture=picture()),
+        BackingDrawing(id="linked", name="Linked", linked_file="plans/level 1.pdf"),
+    )
+    made = replace(found.layout, backing_drawings=drawings)
+    results = dataclasses.replace(found.assessment, layout=made)
+    text = text_of(report_pdf(dataclasses.replace(found, assessment=results)))
+    assert "page 1 in the layout's file" in text
+    assert "linked, not in the layout's file: plans/level 1.pdf" in text
 
 
 def test_issued_revisions_are_listed():

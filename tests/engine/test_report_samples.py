@@ -169,6 +169,27 @@ def test_a_note_has_two_pages_at_most(name):
     assert "not medical advice" in " ".join(pages(name, "note"))
 
 
+@pytest.mark.parametrize("orientation", ["portrait", "landscape"])
+@pytest.mark.parametrize("paper", ["A3", "Letter", "A4"])
+@pytest.mark.parametrize("name", NAMES)
+def test_a_note_fits_every_paper(name, paper, orientation):
+    """Captions of a low picture must not grow past the page."""
+    choices = Choices(kind="note", paper=paper, orientation=orientation)
+    data = report_pdf(matter(name), choices)
+    assert len(PdfReader(io.BytesIO(data)).pages) <= 3
+    assert_within_margins(data)
+
+
+def test_maps_that_fill_half_a_page_stand_two_on_one():
+    (page,) = (
+        text
+        for text in pages("battery-laboratory")
+        if "resultant at 0 Hz, z 0.50 m" in text and "scale 1:" in text
+    )
+    assert "RMS resultant, z 0.50 m" in page
+    assert page.count("scale 1:") == 2
+
+
 def test_a_note_that_nearly_fits_on_one_page_has_one():
     assert len(pages("small-switch-room", "note")) == 1
 
