@@ -51,9 +51,12 @@ class FirstStrip(QWidget):
     Signals
     -------
     chosen(preferences)
+    changed(preferences)
+        Another one is chosen, not yet kept.
     """
 
     chosen = Signal(object)
+    changed = Signal(object)
 
     def __init__(self, choices: Preferences, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -67,7 +70,9 @@ class FirstStrip(QWidget):
         for field, name, options, tip in _QUESTIONS:
             row.addWidget(self._question(field, name, options, tip))
         self.keep = QPushButton("Keep these choices")
-        self.keep.setToolTip("Every one can be changed later, in Item and in View")
+        self.keep.setToolTip(
+            "They can be changed on the page New; of a layout, in Item"
+        )
         self.keep.clicked.connect(lambda: self.chosen.emit(self.choices))
         row.addWidget(self.keep)
         self._paint()
@@ -111,6 +116,7 @@ class FirstStrip(QWidget):
 
     def _choose(self, field: str, value: Any) -> None:
         self._choices = replace(self._choices, **{field: value})
+        self.changed.emit(self._choices)
 
     def _paint(self) -> None:
         theme = theme_for(self.palette())

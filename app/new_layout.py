@@ -6,6 +6,7 @@ from collections.abc import Callable
 from functools import partial
 from typing import Any
 
+from msgspec.structs import replace
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent, QShowEvent
 from PySide6.QtWidgets import (
@@ -21,6 +22,7 @@ from PySide6.QtWidgets import (
 )
 
 from app import preferences
+from app.first_strip import FirstStrip
 from app.layout_preview import LayoutPreview
 from app.page import Page
 from app.panels.field import Choice, Quantity, ValueField
@@ -66,6 +68,8 @@ class NewLayoutPage(Page):
         self._asks.setHorizontalSpacing(2 * STEP)
         self._asks.setVerticalSpacing(STEP)
         self._asks.setColumnStretch(1, 1)
+        self._uses = QVBoxLayout()
+        self.uses: FirstStrip | None = None
         left = scrolled(self._beginnings())
         left.setMaximumWidth(_CHOICES)
         left.setMinimumWidth(_CHOICES // 2)
@@ -75,6 +79,7 @@ class NewLayoutPage(Page):
         row.addWidget(left, 3)
         row.addWidget(self.preview, 2)
         self.column.addLayout(row, 1)
+        self.column.addLayout(self._uses)
         self.buttons[1].setChecked(True)
 
     def showEvent(self, event: QShowEvent) -> None:
@@ -82,8 +87,36 @@ class NewLayoutPage(Page):
             before, self._choices = self._choices, preferences.load()
             if self._choices.length_unit != before.length_unit:
                 self._begin_anew()
+            self._offer_uses()
         self._show_asks()
         super().showEvent(event)
+
+    def _offer_uses(self) -> None:
+        """Units and paper of new layouts, unless the first start still asks."""
+        if self.uses is not None:
+            self._uses.removeWidget(self.uses)
+            self.uses.deleteLater()
+            self.uses = None
+        if self._choices.chosen:
+            self.uses = FirstStrip(self._choices)
+            self.uses.keep.hide()
+            self.uses.changed.connect(self._use)
+            self._uses.addWidget(self.uses)
+
+    def _use(self, choices: preferences.Preferences) -> None:
+        is_other_unit = choices.length_unit != self._choices.length_unit
+        # What else was kept meanwhile stays.
+        self._choices = replace(
+            preferences.load(),
+            frequency=choices.frequency,
+            flux_density_unit=choices.flux_density_unit,
+            length_unit=choices.length_unit,
+            paper=choices.paper,
+        )
+        preferences.save(self._choices)
+        if is_other_unit:
+            self._begin_anew()
+        self._show_asks()
 
     def _begin_anew(self) -> None:
         unit = self._choices.length_unit

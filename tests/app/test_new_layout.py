@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import pytest
+from msgspec.structs import replace
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QColor
 
+from app import preferences
 from app.files import empty_layout
 from app.new_layout import NewLayoutPage
 from app.preferences import Preferences
@@ -150,3 +152,25 @@ def test_arrow_keys_go_on_from_what_is_chosen(page, qtbot):
     page.setFocus()
     qtbot.keyClick(page.focusWidget(), Qt.Key.Key_Down)
     assert page.beginning.name == "Riser past a room"
+
+
+def test_what_new_layouts_use_can_be_chosen_again(qtbot, monkeypatch, tmp_path):
+    monkeypatch.setattr(preferences, "folder", lambda: tmp_path)
+    page = NewLayoutPage()
+    qtbot.addWidget(page)
+    page.show()
+    assert page.uses is None, "the first start asks for it"
+    page.hide()
+    preferences.save(replace(AMERICAN, chosen=True, recent=("room.json",)))
+    page.show()
+    assert page.fields["link"].line.text() == "16.50 ft"
+    page.uses.buttons["length_unit", "m"].click()
+    page.uses.buttons["frequency", 50].click()
+    assert page.fields["link"].line.text() == "5.00 m"
+    kept = preferences.load()
+    assert (kept.length_unit, kept.frequency, kept.recent) == ("m", 50, ("room.json",))
+    with qtbot.waitSignal(page.chosen) as chosen:
+        page.start.click()
+    settings = chosen.args[0].settings
+    assert (settings.length_unit, settings.frequency) == ("m", 50.0)
+    assert settings.flux_density_unit == "mG"
