@@ -57,7 +57,7 @@ class Page(QWidget):
         self.back.setAutoDefault(False)
         self.back.clicked.connect(self.closed)
         self._title = Words(title, "title")
-        self._controls: QWidget | None = None
+        self._beside_title: QWidget | None = None
         self._head = head = QHBoxLayout()
         head.addWidget(self._title, 1)
         head.addWidget(self.back)
@@ -71,7 +71,7 @@ class Page(QWidget):
         self._title.setWordWrap(False)
         self._title.setSizePolicy(QSizePolicy.Policy.Fixed, QSizePolicy.Policy.Fixed)
         self._head.setSpacing(3 * STEP)
-        self._controls = controls
+        self._beside_title = controls
         self._head.insertWidget(1, controls, 1)
         self._head.insertWidget(2, state)
         top = Qt.AlignmentFlag.AlignTop
@@ -81,7 +81,7 @@ class Page(QWidget):
         self.column.setSpacing(STEP)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        controls = self._controls
+        controls = self._beside_title
         if controls is not None:
             is_below = self.column.indexOf(controls) >= 0
             if (self.width() < _SIDE_BY_SIDE) != is_below:

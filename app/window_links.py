@@ -85,15 +85,23 @@ class WindowLinks(QObject):
         w.document.undo_stack.cleanChanged.connect(self._show_title)
         w.document.changed.connect(self._on_changed)
         # Not what changes in passing: a refused move is taken back right after.
-        w.document.undo_stack.indexChanged.connect(lambda _: w.message_bar.let_go())
-        w.toolbox.activated.connect(lambda _tool: w.message_bar.let_go())
+        w.document.undo_stack.indexChanged.connect(self._let_go)
+        w.toolbox.activated.connect(self._let_go)
 
     # -- following ----------------------------------------------------------------
+
+    def _let_messages_go(self, _: object) -> None:
+        # A method, not a lambda: the document outlives the window and would keep it.
+        self._window.message_bar.let_go()
 
     def _go_to_place(self, at: object) -> None:
         if isinstance(at, tuple):
             self._window.show_drawing()
             self._window.drawings.look_at(at)
+
+    def _let_go(self, *_: object) -> None:
+        # No lambda: the document's signal would keep the window with it.
+        self._window.message_bar.let_go()
 
     def _count_remarks(self, count: int) -> None:
         text = f"Remarks {count}" if count else "Remarks"

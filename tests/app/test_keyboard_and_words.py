@@ -8,7 +8,6 @@ from pathlib import Path
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QAccessible, QAction
-from PySide6.QtTest import QTest
 from PySide6.QtWidgets import (
     QAbstractButton,
     QAbstractItemView,
@@ -254,7 +253,9 @@ def test_the_keyboard_is_seen_where_it_is(window, qtbot):
     with qtbot.waitActive(window):
         window.activateWindow()
     for widget in (window.drawings.plan, window.caption._layers):
-        QTest.keyClick(QApplication.focusWidget(), Qt.Key.Key_Tab)
+        widget.clearFocus()
+        # As Qt itself does at the first key that goes from one to the next.
+        window.setAttribute(Qt.WidgetAttribute.WA_KeyboardFocusChange)
         widget.setFocus(Qt.FocusReason.TabFocusReason)
         ring = mark.ring
         assert ring is not None
