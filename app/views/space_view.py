@@ -122,8 +122,8 @@ class SpaceView(Page):
         controls.axis_chosen.connect(self.choose_axis)
         controls.way_typed.connect(self._on_way)
         self._document.changed.connect(self._on_changed)
-        self._document.selection_changed.connect(lambda _ids: self._later())
-        self._view_state.changed.connect(lambda _look: self._later())
+        self._document.selection_changed.connect(self._later)
+        self._view_state.changed.connect(self._later)
 
     def _on_changed(self, _layout: object, ids: object) -> None:
         if ids == EVERYTHING:
@@ -132,7 +132,7 @@ class SpaceView(Page):
                 self.desk.reset()
         self._later()
 
-    def _later(self) -> None:
+    def _later(self, _: object = None) -> None:
         if self.isVisible():
             self._soon.start()
 
