@@ -18,7 +18,7 @@ from engine.masks import keepouts, open_for_work
 from engine.origins import assumptions
 from engine.places import Receptor, Zone
 from engine.sampling import area_of
-from engine.units import significant
+from engine.units import LENGTH_UNITS, significant
 
 #: Heights above the floor at which people are usually assessed. [m]
 LOWEST, HIGHEST = 0.2, 2.0
@@ -161,11 +161,16 @@ def _receptor_heights(layout: Layout) -> Iterator[Remark]:
             continue
         height = receptor.at[2] - floor
         if not LOWEST - 1e-9 <= height <= HIGHEST + 1e-9:
+            unit = layout.settings.length_unit
+            shown, low, high = (
+                significant(value / LENGTH_UNITS[unit])
+                for value in (height, LOWEST, HIGHEST)
+            )
             yield Remark(
                 "W23",
                 "warning",
-                f"Receptor “{receptor.title}” is {significant(height)} m above its "
-                f"floor, outside {LOWEST:g} to {HIGHEST:g} m: confirm its height.",
+                f"Receptor “{receptor.title}” is {shown} {unit} above its floor, "
+                f"outside {low} to {high} {unit}: confirm its height.",
                 (receptor.id,),
                 receptor.at,
             )

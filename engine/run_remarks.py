@@ -28,7 +28,7 @@ from engine.sharing_remarks import (
     listed,
     middle,
 )
-from engine.units import significant
+from engine.units import LENGTH_UNITS, significant
 
 #: Ends further apart than both deserve more than an assumed link. [m], [pitches]
 SPREAD, SPREAD_PITCHES = 0.1, 2.0
@@ -89,7 +89,7 @@ def free_end_remarks(
     nodes, conductors : sequences
         Of the layout.
     """
-    by_id = layout.by_id()
+    by_id, unit = layout.by_id(), layout.settings.length_unit
     ends = defaultdict(list)
     for conductor in conductors:
         if conductor.role == "closing link":
@@ -103,6 +103,7 @@ def free_end_remarks(
         wide = spread > SPREAD or (
             pitch > 0 and spread > SPREAD_PITCHES * pitch * _ROUNDING
         )
+        apart = f"{significant(spread / LENGTH_UNITS[unit])} {unit} apart"
         advice = (
             "; that changes the field nearby: say where they are joined."
             if wide
@@ -112,8 +113,7 @@ def free_end_remarks(
             code="W02",
             severity="warning" if wide else "note",
             sentence=f"{_end_named(by_id.get(item), item, node.place)}: conductors end "
-            f"unjoined; a closing link across ends {significant(spread)} m apart is "
-            f"assumed{advice}",
+            f"unjoined; a closing link across ends {apart} is assumed{advice}",
             items=(item,),
             place=node.place,
         )

@@ -173,6 +173,19 @@ def test_free_ends_far_apart_are_a_warning(clean: Layout) -> None:
     # Four bars at 60 mm: the outer ones are 0.18 m apart.
     assert "0.180 m apart" in found.sentence
     assert found.place == pytest.approx((1.6, 0.5, 2.4))
+    in_feet = replace(layout, settings=replace(layout.settings, length_unit="ft"))
+    # 0.18 m / 0.3048 m
+    assert "0.591 ft apart" in only(in_feet, "W02").sentence
+
+
+def test_the_height_of_a_receptor_is_told_in_the_unit_of_the_layout(
+    clean: Layout,
+) -> None:
+    receptors = changed(clean.receptors, "chair", at=(1.6, 3.7, 3.048))
+    settings = replace(clean.settings, length_unit="ft")
+    layout = replace(clean, receptors=receptors, settings=settings)
+    found = only(layout, "W23").sentence
+    assert "is 10.0 ft above its floor, outside 0.656 to 6.56 ft" in found
 
 
 def test_free_ends_close_together_are_a_note() -> None:
