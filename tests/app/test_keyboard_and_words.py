@@ -8,6 +8,7 @@ from pathlib import Path
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QAccessible, QAction
+from PySide6.QtTest import QTest
 from PySide6.QtWidgets import (
     QAbstractButton,
     QAbstractItemView,
@@ -22,6 +23,7 @@ from PySide6.QtWidgets import (
     QTableView,
     QTabWidget,
     QTextEdit,
+    QToolButton,
     QTreeView,
     QWidget,
 )
@@ -252,15 +254,17 @@ def test_the_keyboard_is_seen_where_it_is(window, qtbot):
     window.show_drawing()
     with qtbot.waitActive(window):
         window.activateWindow()
-    for widget in (window.drawings.plan, window.caption._layers):
-        widget.clearFocus()
-        # As Qt itself does at the first key that goes from one to the next.
-        window.setAttribute(Qt.WidgetAttribute.WA_KeyboardFocusChange)
-        widget.setFocus(Qt.FocusReason.TabFocusReason)
-        ring = mark.ring
-        assert ring is not None
-        assert ring.parentWidget() is widget
-        assert ring.geometry() == widget.rect()
-    window.strip.words.setFocus(Qt.FocusReason.TabFocusReason)
-    assert mark.ring is None
+    window.strip.words.setFocus()
+    ringed = set()
+    for _ in range(25):
+        QTest.keyClick(QApplication.focusWidget(), Qt.Key.Key_Tab)
+        widget = QApplication.focusWidget()
+        if isinstance(widget, QLineEdit | QComboBox):
+            # Their own outline shows it.
+            assert mark.ring is None
+        elif isinstance(widget, QToolButton | QTabBar | QAbstractScrollArea):
+            assert mark.ring.parentWidget() is widget
+            assert mark.ring.geometry() == widget.rect()
+            ringed.add(type(widget))
+    assert {QToolButton, QTabBar} <= ringed
     mark.deleteLater()
