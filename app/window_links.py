@@ -70,7 +70,7 @@ class WindowLinks(QObject):
     def _connect_pages(self) -> None:
         """Panels and pages that lead to one another."""
         w = self._window
-        w.margins.go_to.connect(w.go_to)
+        w.margins.go_to.connect(w.found_place.show_row)
         w.margins.opened.connect(w.make_room)
         w.item.section_requested.connect(w.open_section)
         w.item.calibrate_requested.connect(w.calibrate)
@@ -89,10 +89,6 @@ class WindowLinks(QObject):
         w.toolbox.activated.connect(self._let_go)
 
     # -- following ----------------------------------------------------------------
-
-    def _let_messages_go(self, _: object) -> None:
-        # A method, not a lambda: the document outlives the window and would keep it.
-        self._window.message_bar.let_go()
 
     def _go_to_place(self, at: object) -> None:
         if isinstance(at, tuple):

@@ -110,6 +110,8 @@ def test_a_long_state_leaves_the_caption_in_one_row(window):
     open_sample(window, "small-switch-room")
     window.resize(1300, 800)
     QApplication.processEvents()
+    # The map of the new size tells its own state.
+    assert window.recompute.wait_until_idle(60)
     height = window.caption.height()
     sentence = "Circuit “Circuit 1”: enter the current of each conductor. " * 3
     window.caption.tell(sentence)
