@@ -35,6 +35,7 @@ from app.drawings import Drawings
 from app.entry_strip import EntryStrip
 from app.exports import Exports
 from app.files import Files
+from app.found_place import FoundPlace
 from app.guide import AboutPage, CautionsPage, GuidePage
 from app.hint_line import HintLine
 from app.jobs import Jobs
@@ -104,6 +105,7 @@ class MainWindow(QMainWindow):
         self.autosave = Autosave(document)
         self.theme = theme
         self._build()
+        self.found_place = FoundPlace(self)
         self.view_pages = ViewPages(self)
         self.menus = WindowMenus(self)
         self.links = WindowLinks(self)
@@ -299,13 +301,6 @@ class MainWindow(QMainWindow):
         """The caption of the drawing in one line, as exports print it."""
         return caption(self.document, self.view_state)
 
-    def go_to(self, at: object, height: object, case: str) -> None:
-        """Show a place: the drawing there, the map at that height, in that case."""
-        self.show_drawing()
-        self.view_state.set(height=height, case=case or self.view_state.look.case)
-        if isinstance(at, tuple):
-            self.drawings.look_at(at)
-
     def make_room(self, opened: bool) -> None:
         """Foot panels take at most 40 % of the height, or the drawing's place."""
         low = self.height() < LOW
@@ -360,7 +355,7 @@ class MainWindow(QMainWindow):
             super().keyPressEvent(event)
         elif self.pages.currentWidget() is not self.drawings:
             self.show_drawing()
-        elif not self.margins.close_opened():
+        elif not (self.found_place.let_go() or self.margins.close_opened()):
             self.toolbox.back()
 
     def changeEvent(self, event: QEvent) -> None:

@@ -151,15 +151,15 @@ class MarginsPanel(QWidget):
 
     Signals
     -------
-    go_to(at, height, case)
-        Show this place: (x, y, z), the height of the map, the id of the load case. [m]
+    go_to(MarginRow)
+        Show the place of this row, in its height and load case.
     why(MarginRow)
         Say where the value of this row comes from.
     opened(bool)
         The full table or the cautions need more room, or no longer.
     """
 
-    go_to = Signal(object, object, str)
+    go_to = Signal(object)
     opened = Signal(bool)
     why = Signal(object)
 
@@ -343,7 +343,7 @@ class MarginsPanel(QWidget):
 
     def _go_to_row(self, row: MarginRow) -> None:
         if row.at is not None:
-            self.go_to.emit(row.at, row.height, row.case)
+            self.go_to.emit(row)
 
 
 def _link(tip: str) -> QPushButton:

@@ -119,7 +119,7 @@ def test_click_on_the_tile_goes_to_the_place(
     assert worst is not None
     with qtbot.waitSignal(panel.go_to) as heard:
         qtbot.mouseClick(panel.tile, LEFT)
-    assert heard.args == [worst.at, worst.height, worst.case]
+    assert heard.args == [worst]
 
 
 def test_keyboard_reaches_the_place_too(
@@ -149,7 +149,7 @@ def test_row_of_the_table_goes_to_its_place(
     qtbot.mouseClick(panel.counts, LEFT)
     with qtbot.waitSignal(panel.go_to) as heard:
         panel.table.clicked.emit(panel.table.model().index(2, 1))
-    assert heard.args[0] == panel.table.rows[2].at
+    assert heard.args == [panel.table.rows[2]]
 
 
 def test_caution_line_stands_and_opens_every_caution(
