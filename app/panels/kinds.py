@@ -77,7 +77,12 @@ class Distance:
 
 def small(terms: Terms) -> str:
     """The unit of section dimensions that goes with the layout's unit."""
-    return {"m": "mm", "ft": "in"}.get(terms.unit, terms.unit)
+    return section_unit(terms.unit)
+
+
+def section_unit(length_unit: str) -> str:
+    """The unit of dimensions in sections beside lengths in `length_unit`."""
+    return {"m": "mm", "ft": "in"}.get(length_unit, length_unit)
 
 
 @dataclass(frozen=True)
@@ -333,6 +338,8 @@ def mixed_text(values: Sequence[Any], kind: Kind, terms: Terms) -> str:
     --------
     >>> mixed_text([2.4, 3.0, 2.7], Distance(), Terms(Layout()))
     '3 values, 2.40–3.00 m'
+    >>> mixed_text([-0.15, 0.05], Dimension(), Terms(Layout()))
+    '2 values, −150 to 50 mm'
     >>> mixed_text(["a", "b", "a"], Words(), Terms(Layout()))
     '2 values'
     """
@@ -343,6 +350,9 @@ def mixed_text(values: Sequence[Any], kind: Kind, terms: Terms) -> str:
         return count
     low, high = (kind.text(f(numbers), terms) for f in (min, max))
     figures, _, unit = high.rpartition(" ")
-    if figures and low.endswith(f" {unit}"):
-        return f"{count}, {low.removesuffix(f' {unit}')}–{high}"
-    return f"{count}, {low}–{high}"
+    if figures:
+        low = low.removesuffix(f" {unit}")
+    # A dash between them would read as another minus.
+    between = " to " if min(numbers) < 0 else "–"
+    low, high = (text.replace("-", "−") for text in (low, high))
+    return f"{count}, {low}{between}{high}"

@@ -17,6 +17,7 @@ from PySide6.QtWidgets import (
 
 from app.document import Document
 from app.panels.form import Form
+from app.panels.kinds import section_unit
 from app.panels.net_current import NetCurrent
 from app.panels.panel import ElidedLine, Panel, Words, column, scrolled
 from app.panels.section_acts import Change, SectionActs
@@ -103,6 +104,7 @@ class SectionPanel(Panel):
 
     def refresh(self) -> None:
         run = self.run
+        self._measure_in(self._document.layout.settings.length_unit)
         for widget in (self._work, self._other_end, self._direction):
             widget.setVisible(run is not None)
         self._title.setText(f"Section of {run.title}" if run else "Section")
@@ -125,6 +127,14 @@ class SectionPanel(Panel):
             self._show_form()
         self._show_currents()
 
+    def _measure_in(self, length_unit: str) -> None:
+        self.canvas.set_unit(section_unit(length_unit))
+        step = self.canvas.grid_text
+        self._catch.setText(f"Catch on {step}")
+        self._catch.setToolTip(
+            f"Dragged conductors are caught every {step}; Alt lets go"
+        )
+
     def follow_selection(self, ids: frozenset[str]) -> None:
         layout = self._document.layout
         runs = [run.id for run in layout.runs if run.id in ids]
@@ -145,9 +155,8 @@ class SectionPanel(Panel):
         close = QPushButton("Back to the drawing")
         close.setToolTip("Closes the section (Esc)")
         close.clicked.connect(self.closed)
-        catch = QCheckBox("Catch on 5 mm")
+        catch = self._catch = QCheckBox()
         catch.setChecked(True)
-        catch.setToolTip("Dragged conductors are caught every 5 mm; Alt lets go")
         catch.toggled.connect(lambda on: setattr(self.canvas, "catches", on))
         head = QWidget()
         line = WrappingRow(head, gap=4 * STEP, margin=0)

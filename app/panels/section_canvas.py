@@ -28,8 +28,8 @@ from app.theme import STEP, theme_for
 from engine.formations import extent
 from engine.runs import Slot
 
-#: Places that a dragged conductor is caught on. [m]
-GRID = 0.005
+#: Places that a dragged conductor is caught on, by the unit of dimensions. [m]
+GRIDS = {"mm": 0.005, "in": 0.00635}
 
 #: Blank around the conductors. [logical pixels]
 _MARGIN = 14 * STEP
@@ -70,12 +70,9 @@ class SectionCanvas(QWidget):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMouseTracking(True)
         self.setAccessibleName("Section across the run")
-        self.setToolTip(
-            "Click a conductor, Shift adds, Ctrl with arrow keys goes on to the next; "
-            "drag or use the arrow keys to move it in steps of 5 mm; the wheel zooms, "
-            "Home fits"
-        )
         self.catches = True
+        self._unit = ""
+        self.set_unit("mm")
         self._slots: tuple[Slot, ...] = ()
         self._names: frozenset[str] = frozenset()
         self._sign = 1.0
@@ -91,6 +88,28 @@ class SectionCanvas(QWidget):
     @property
     def is_dragging(self) -> bool:
         return self._is_dragging
+
+    @property
+    def grid(self) -> float:
+        """Step of the places that a dragged conductor is caught on. [m]"""
+        return GRIDS[self._unit]
+
+    @property
+    def grid_text(self) -> str:
+        """The step as it is read: "5 mm"."""
+        return "5 mm" if self._unit == "mm" else "1/4 in"
+
+    def set_unit(self, unit: str) -> None:
+        """Measure in "mm" or "in" from now on."""
+        if unit == self._unit:
+            return
+        self._unit = unit
+        self.setToolTip(
+            "Click a conductor, Shift adds, Ctrl with arrow keys goes on to the next; "
+            f"drag or use the arrow keys to move it in steps of {self.grid_text}; the "
+            "wheel zooms, Home fits"
+        )
+        self.update()
 
     @property
     def names(self) -> frozenset[str]:
@@ -163,7 +182,8 @@ class SectionCanvas(QWidget):
     def paintEvent(self, _event: QPaintEvent) -> None:
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        drawing = SectionPainter(painter, theme_for(self.palette()), self._scale)
+        theme = theme_for(self.palette())
+        drawing = SectionPainter(painter, theme, self._scale, self._unit)
         painter.drawPixmap(0, 0, self._paper())
         drawing.route(self.to_pixels(0.0, 0.0))
         flip = QTransform.fromScale(self._sign, -1.0)
@@ -176,7 +196,7 @@ class SectionCanvas(QWidget):
                 if slot.name == self._grabbed:
                     drawing.place(slot, self.to_pixels(slot.u, slot.v))
         if self.hasFocus():
-            painter.setPen(QColor(theme_for(self.palette()).accent))
+            painter.setPen(QColor(theme.accent))
             painter.setBrush(Qt.BrushStyle.NoBrush)
             painter.drawRect(QRectF(self.rect()).adjusted(0.5, 0.5, -0.5, -0.5))
 
@@ -184,13 +204,13 @@ class SectionCanvas(QWidget):
         """The grid: it takes ten times as long as all conductors and seldom changes."""
         theme, ratio = theme_for(self.palette()), self.devicePixelRatioF()
         middle = self.to_pixels(0.0, 0.0)
-        key = (theme.name, ratio, self.size(), self._scale, middle)
+        key = (theme.name, ratio, self.size(), self._scale, middle, self.grid)
         if self._grid is None or self._grid[0] != key:
             pixmap = QPixmap(self.size() * ratio)
             pixmap.setDevicePixelRatio(ratio)
             painter = QPainter(pixmap)
-            drawing = SectionPainter(painter, theme, self._scale)
-            drawing.paper(QRectF(self.rect()), middle, GRID)
+            drawing = SectionPainter(painter, theme, self._scale, self._unit)
+            drawing.paper(QRectF(self.rect()), middle, self.grid)
             painter.end()
             self._grid = (key, pixmap)
         return self._grid[1]
@@ -237,7 +257,8 @@ class SectionCanvas(QWidget):
         u, v = self._from[self._grabbed]
         free = bool(event.modifiers() & Qt.KeyboardModifier.AltModifier)
         if self.catches and not free:
-            du, dv = caught(u + du) - u, caught(v + dv) - v
+            grid = self.grid
+            du, dv = caught(u + du, grid) - u, caught(v + dv, grid) - v
         self.dragged.emit(
             {name: (neat(a + du), neat(b + dv)) for name, (a, b) in self._from.items()}
         )
@@ -273,7 +294,7 @@ class SectionCanvas(QWidget):
         if step is not None and (control or not self._names):
             self._choose_beside(1 if event.key() in _FORWARD else -1, event)
         elif step is not None:
-            self.nudged.emit(GRID * step[0], GRID * step[1])
+            self.nudged.emit(self.grid * step[0], self.grid * step[1])
         elif event.key() == Qt.Key.Key_Escape and self._is_dragging:
             self._end_drag()
             self.cancelled.emit()
@@ -304,9 +325,9 @@ class SectionCanvas(QWidget):
         self.update()
 
 
-def caught(value: float) -> float:
-    """The nearest place of the grid. [m]"""
-    return neat(round(value / GRID) * GRID)
+def caught(value: float, grid: float) -> float:
+    """The nearest place of a grid. [m]"""
+    return neat(round(value / grid) * grid)
 
 
 def neat(value: float) -> float:

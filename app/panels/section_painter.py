@@ -14,29 +14,39 @@ from PySide6.QtGui import (
     QTransform,
 )
 
+from app.panels.panel import decimal_sign
 from app.theme import BODY, SMALL, STEP, Theme, contrast
 from app.views.inks import TWO_COLOURED, YELLOW, conductor_colour
 from engine.errors import UserError
 from engine.formations import label_of
 from engine.runs import Bar, FreeSection, Multicore, Round, Slot
 from engine.sections import single_conductors
-from engine.typed_lengths import length_text
 from engine.typed_numbers import number_text
+from engine.units import LENGTH_UNITS
 
 #: Fine grid lines nearer than this are left out. [logical pixels]
 _FINEST = 5.0
 
-#: Lengths that a scale bar may have. [m]
-_BARS = (0.001, 0.002, 0.005, 0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1.0, 2.0, 5.0, 10.0)
+#: Lengths that a scale bar may have, by unit. [mm], [in]
+_BARS = {
+    "mm": (1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000, 10_000),
+    "in": (0.125, 0.25, 0.5, 1, 2, 5, 10, 20, 50, 100, 200),
+}
 
 
 class SectionPainter:
-    """Draws one picture of a section with a painter, at `scale` pixels per metre."""
+    """Draws one picture of a section with a painter, at `scale` pixels per metre.
 
-    def __init__(self, painter: QPainter, theme: Theme, scale: float) -> None:
+    Lengths are written in `unit`, "mm" or "in".
+    """
+
+    def __init__(
+        self, painter: QPainter, theme: Theme, scale: float, unit: str = "mm"
+    ) -> None:
         self._painter = painter
         self._theme = theme
         self._scale = scale
+        self._unit = unit
         self._font = QFont(painter.font())
         #: Boxes of letters that stand beside their conductors. [px]
         self._letters: list[QRectF] = []
@@ -85,20 +95,22 @@ class SectionPainter:
     def scale_bar(self, area: QRectF) -> None:
         """A length to compare with, in the lower left corner."""
         wanted = min(area.width() / 4, 160.0)
-        metres = max((b for b in _BARS if b * self._scale <= wanted), default=_BARS[0])
+        pixels = self._scale * LENGTH_UNITS[self._unit]
+        bars = _BARS[self._unit]
+        length = max((bar for bar in bars if bar * pixels <= wanted), default=bars[0])
         start = QPointF(area.left() + 4 * STEP, area.bottom() - 4 * STEP)
-        end = start + QPointF(metres * self._scale, 0)
+        end = start + QPointF(length * pixels, 0)
         self._painter.setPen(QPen(QColor(self._theme.line), 1.5))
         self._painter.drawLine(start, end)
         for point in (start, end):
             self._painter.drawLine(point - QPointF(0, STEP), point + QPointF(0, STEP))
-        text = length_text(metres, "mm" if metres < 1 else "m")
+        text = bar_text(length, self._unit)
         self._text(start + QPointF(0, -2 * STEP), text, SMALL)
 
     def place(self, slot: Slot, at: QPointF) -> None:
         """The coordinates of a conductor that is being dragged."""
-        u, v = (number_text(round(x * 1e3, 2)) for x in (slot.u, slot.v))
-        self._text(at + QPointF(5 * STEP, -5 * STEP), f"u {u}  v {v} mm", BODY)
+        text = place_text(slot, self._unit)
+        self._text(at + QPointF(5 * STEP, -5 * STEP), text, BODY)
 
     def _outline(self, slot: Slot) -> QPainterPath:
         """The shape about its middle in pixels, v upwards."""
@@ -221,3 +233,20 @@ class SectionPainter:
         self._painter.fillRect(box, patch)
         self._painter.setPen(QColor(self._theme.text))
         self._painter.drawText(at, text)
+
+
+def bar_text(length: float, unit: str) -> str:
+    """What stands at a scale bar of that length in "mm" or "in"; long ones in m."""
+    if unit == "mm" and length >= 1000:
+        return f"{number_text(length / 1000, decimal_sign())} m"
+    return f"{number_text(length, decimal_sign())} {unit}"
+
+
+def place_text(slot: Slot, unit: str) -> str:
+    """Where a conductor is, as it is dragged: "u −150  v 50 mm"."""
+    size, places = LENGTH_UNITS[unit], 2 if unit == "mm" else 3
+    u, v = (
+        number_text(round(x / size, places) + 0.0, decimal_sign()).replace("-", "−")
+        for x in (slot.u, slot.v)
+    )
+    return f"u {u}  v {v} {unit}"

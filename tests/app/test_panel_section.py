@@ -12,6 +12,7 @@ from PySide6.QtTest import QTest
 from app.document import Document
 from app.panels.phasor_drawing import ring_value
 from app.panels.section import SectionPanel
+from app.panels.section_painter import bar_text, place_text
 from app.theme import BODY
 from app.view_state import ViewState
 from engine.circuits import CircuitFactor, LoadCase
@@ -105,6 +106,23 @@ def test_a_dragged_conductor_is_caught_and_frees_the_section(document, panel, tu
     assert document.undo_stack.undoText().startswith("Move L2.1 in the section of F1")
     document.undo_stack.undo()
     assert isinstance(section(document), ParallelSets)
+
+
+def test_in_a_layout_in_feet_sections_are_measured_in_inches(document, panel, qtbot):
+    assert panel._catch.text() == "Catch on 5 mm"
+    settings = replace(document.layout.settings, length_unit="ft")
+    document.edit("Change the unit", replace(document.layout, settings=settings))
+    assert panel._catch.text() == "Catch on 1/4 in"
+    assert "1/4 in" in panel.canvas.toolTip()
+    slot = slots(panel.run.section)[0]
+    panel.canvas.choose(frozenset({slot.name}))
+    with qtbot.waitSignal(panel.canvas.nudged) as nudged:
+        QTest.keyClick(panel.canvas, Qt.Key.Key_Up)
+    assert nudged.args == pytest.approx([0.0, 0.0254 / 4])
+    moved = replace(slot, u=-0.0381, v=0.00635)
+    assert place_text(moved, "in") == "u −1.5  v 0.25 in"
+    assert place_text(moved, "mm") == "u −38.1  v 6.35 mm"
+    assert (bar_text(0.25, "in"), bar_text(2000, "mm")) == ("0.25 in", "2 m")
 
 
 def test_escape_gives_a_drag_up(document, panel):
