@@ -28,7 +28,12 @@ from engine.new_sources import STOREY_HEIGHT
 from engine.places import Storey
 
 _UNITS = (
-    Part("frequency", "Frequency", Amount(HERTZ, "Hz"), "Of new circuits, in hertz"),
+    Part(
+        "frequency",
+        "Frequency of new circuits",
+        Amount(HERTZ, "Hz"),
+        "Those that are there keep theirs, in hertz",
+    ),
     Part(
         "flux_density_unit",
         "Flux density in",
