@@ -92,10 +92,13 @@ def wrapped(
                 continue
             if line:
                 lines.append(line)
-            while long > width and len(word) > 1:
-                keep = max(1, _count_that_fits(word, size, width, bold))
-                lines.append(word[:keep])
-                word = word[keep:]
+            if long > width:
+                while len(word) > 1:
+                    keep = max(1, _count_that_fits(word, size, width, bold))
+                    if keep == len(word):
+                        break
+                    lines.append(word[:keep])
+                    word = word[keep:]
                 long = text_width(word, size, bold=bold)
             line, used = word, long
         lines.append(line)

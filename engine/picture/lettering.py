@@ -140,7 +140,7 @@ def _letter(
     half, tall = 0.5 * text_width(shown, LABEL_SIZE, bold=bold), 0.5 * LABEL_SIZE
     boxes = [box(x - half, y - tall, x + half, y + tall) for x, y in places]
     lines = sheet.lines_under(np.array(boxes))
-    order = sorted(range(len(places)), key=lambda k: (lines[k] + 0.4 * k, k))
+    order = sorted(range(len(places)), key=lambda k: (0.5 * lines[k] + 0.4 * k, k))
     for k in order:
         words = Words(places[k], shown, LABEL_SIZE, BLACK, bold, "middle", 0.0, True)
         if sheet.has_room(words):

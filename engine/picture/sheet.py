@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from itertools import pairwise
 
 import numpy as np
 import numpy.typing as npt
@@ -14,6 +13,13 @@ from shapely.geometry.base import BaseGeometry
 from engine.picture.marks import Box, Points, Words
 
 Shapes = npt.NDArray[np.object_]
+Floats = npt.NDArray[np.float64]
+
+#: Side of the cells in which lines are counted. [mm]
+_CELL = 0.5
+
+#: Places of a leader that are looked at.
+_SAMPLES = 60
 
 #: Scales that a drawing may have, 1 : n.
 SCALES = tuple(
@@ -38,8 +44,8 @@ class Sheet:
             self.left, self.bottom, self.left + self.width, self.bottom + self.height
         )
         self._lettered: list[BaseGeometry] = []
-        self._lines: list[BaseGeometry] = []
-        self._tree: shapely.STRtree | None = None
+        self._lines: list[Floats] = []
+        self._sums: Floats | None = None
 
     def paper(self, x: float, y: float) -> tuple[float, float]:
         """Where a point of the world lies on paper. [m to mm]"""
@@ -69,15 +75,52 @@ class Sheet:
 
     def note_line(self, line: Points) -> None:
         """Keep labels off a line on paper where they can stand elsewhere. [mm]"""
-        self._lines += [LineString(leg) for leg in pairwise(line)]
-        self._tree = None
+        self._lines.append(np.asarray(line))
+        self._sums = None
 
-    def lines_under(self, areas: Shapes) -> npt.NDArray[np.intp]:
-        """How many of the noted lines each of some areas on paper covers. [mm]"""
-        if self._tree is None:
-            self._tree = shapely.STRtree(self._lines)
-        found = self._tree.query(areas, predicate="intersects")[0]
-        return np.bincount(found, minlength=len(areas))
+    def lines_under(self, areas: Shapes) -> Floats:
+        """What length of the noted lines the bounds of each area cover. [mm]"""
+        sums = self._line_sums()
+        most = np.array(sums.shape) - 1
+        low, high = (self._cells(shapely.bounds(areas)[:, k : k + 2]) for k in (0, 2))
+        low, high = np.clip(low, 0, most), np.clip(high + 1, 0, most)
+        found = sums[high[:, 0], high[:, 1]] - sums[low[:, 0], high[:, 1]]
+        found += sums[low[:, 0], low[:, 1]] - sums[high[:, 0], low[:, 1]]
+        return _CELL * found
+
+    def lines_across(self, leaders: Shapes) -> Floats:
+        """What length of the noted lines lies under straight leaders. [mm]"""
+        sums = self._line_sums()
+        ends = shapely.get_coordinates(leaders).reshape(-1, 1, 2, 2)
+        along = np.linspace(0.0, 1.0, _SAMPLES)[:, None]
+        places = ends[:, :, 0] * (1.0 - along) + ends[:, :, 1] * along
+        x, y = np.moveaxis(
+            np.clip(self._cells(places), 0, np.array(sums.shape) - 2), -1, 0
+        )
+        each = sums[x + 1, y + 1] - sums[x, y + 1] - sums[x + 1, y] + sums[x, y]
+        share: Floats = np.minimum(each, 1.0).mean(axis=1)
+        return np.asarray(shapely.length(leaders)) * share
+
+    def _cells(self, places: Floats) -> npt.NDArray[np.intp]:
+        """In which cells of the frame places on paper lie."""
+        return np.floor((places - (self.left, self.bottom)) / _CELL).astype(np.intp)
+
+    def _line_sums(self) -> Floats:
+        """In how many cells, left of and below each corner, the noted lines lie."""
+        if self._sums is None:
+            shape = np.ceil((self.width / _CELL, self.height / _CELL)).astype(int) + 1
+            counts = np.zeros(shape)
+            for line in self._lines:
+                length = np.hypot(*np.diff(line, axis=0).T)
+                total = np.concatenate([[0.0], np.cumsum(length)])
+                at = np.arange(0.0, total[-1], _CELL) + 0.5 * _CELL
+                x, y = (np.interp(at, total, line[:, k]) for k in (0, 1))
+                cells = self._cells(np.stack([x, y], axis=1))
+                cells = np.clip(cells, 0, shape - 1)
+                np.add.at(counts, (cells[:, 0], cells[:, 1]), 1.0)
+            padded = np.pad(counts, ((1, 0), (1, 0)))
+            self._sums = padded.cumsum(axis=0).cumsum(axis=1)
+        return self._sums
 
     def covers_labels(self, areas: Shapes) -> npt.NDArray[np.bool_]:
         """Which of some areas on paper would cover a label. [mm]"""

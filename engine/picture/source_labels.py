@@ -31,14 +31,15 @@ _TURNS = np.radians(
     [90, 270, 0, 180, 60, 120, 240, 300, 30, 150, 210, 330, 75, 105, 255, 285]
 )
 
-#: What a line under a label, and one under its leader, weigh against distance.
-_COVERED, _CROSSED = 2.5, 0.8
+#: What a millimetre of line under a label, and under its leader, weighs against one
+#: of distance.
+_COVERED, _CROSSED = 0.6, 1.2
 
 #: What it weighs that another label's own point is hidden.
 _HIDDEN = 12.0
 
-#: Lines that a label within what it names may cover.
-_FEW = 2
+#: Length of lines that a label within what it names may cover. [mm]
+_FEW = 4.0
 
 #: Legs of a run beside which its label may stand, and its shortest one. [mm]
 _MOST_LEGS, _LEAST_LEG = 6, 4.0
@@ -198,7 +199,7 @@ def _least(
     barred = led & sheet.covers_labels(leaders)
     cost = distances + _COVERED * sheet.lines_under(boxes)
     cost += _HIDDEN * _points_near(boxes, later)
-    under = _CROSSED * sheet.lines_under(leaders)
+    under = _CROSSED * sheet.lines_across(leaders)
     cost += np.where(led, under + _HIDDEN * _points_near(leaders, later), 0.0)
     cost[barred] = np.inf
     best = int(np.argmin(cost))

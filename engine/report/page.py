@@ -18,7 +18,7 @@ from engine.items import TitleData
 from engine.printed_text import BOLD, REGULAR, one_line
 from engine.report.attachments import Attachment, attach
 from engine.report.choices import MARGIN, TITLE_BLOCK, Paper
-from engine.report.structure import StructuredCanvas
+from engine.report.structure import DraftCanvas, StructuredCanvas
 from engine.report.title_block import draw_title_block
 
 FONT = "Lodestead Sans"
@@ -151,7 +151,9 @@ def _laid_out(
     document.attached = attachments
     story = make_story(before.pages)
     document.expected = max(1, len(story))
-    document.build(story, canvasmaker=StructuredCanvas)
+    # Nobody reads the first laying out: it only tells the pages.
+    maker = StructuredCanvas if count else DraftCanvas
+    document.build(story, canvasmaker=maker)
     return Laid(file.getvalue(), document.begun, document.page)
 
 

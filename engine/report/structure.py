@@ -194,6 +194,13 @@ class StructuredCanvas(ScriptCanvas):
         return {"Pg": first, "K": PDFArray(kids)}
 
 
+class DraftCanvas(StructuredCanvas):
+    """Draws as the other one does, and writes nothing."""
+
+    def save(self) -> None:
+        """Leave the file empty."""
+
+
 class TableMarks:
     """Marks the cells of one table while it draws itself, on however many pages.
 
