@@ -5,8 +5,10 @@ from __future__ import annotations
 import base64
 import dataclasses
 import io
+from functools import cache
 
 import msgspec
+import pypdfium2
 import pytest
 from fontTools.fontBuilder import FontBuilder
 from fontTools.pens.ttGlyphPen import TTGlyphPen
@@ -35,7 +37,7 @@ TEXTS = {
     "markup": HOSTILE,
     "right to left": "שלום עולם مرحبا \u202e\u2067 abc",
     "one long word": "w" * 10_000,
-    "many lines": "line\n" * 2_000,
+    "many lines": "line\n" * 300,
     "controls": "".join(chr(k) for k in range(32)) + "\x7f\x85\u2028\ufeff",
     "other scripts": "数据中心 변전소 Ωμφ Кабель ﷽ 👷 ﬃ",
     "formula": '=HYPERLINK("http://x.example","x")',
@@ -138,8 +140,10 @@ def great(n_zones, n_runs):
 
 def test_a_great_layout_has_a_report():
     data = report_pdf(great(200, 300))
-    reader = PdfReader(io.BytesIO(data))
-    text = " ".join(" ".join(page.extract_text().split()) for page in reader.pages)
+    # This reader is the faster one on so many pages.
+    document = pypdfium2.PdfDocument(data)
+    text = " ".join(page.get_textpage().get_text_range() for page in document)
+    document.close()
     for wanted in ("Zone number 199", "Run number 299", "Sections without a drawing"):
         assert wanted in text
     assert_within_margins(data)
@@ -162,6 +166,12 @@ def test_nothing_entered_gives_a_document_that_says_so(kind):
 def text_of(data):
     reader = PdfReader(io.BytesIO(data))
     return " ".join(" ".join(page.extract_text().split()) for page in reader.pages)
+
+
+@cache
+def plain_text(kind):
+    """Of the room as it is."""
+    return text_of(report_pdf(matter(), Choices(kind=kind)))
 
 
 def at_risk():
@@ -200,11 +210,11 @@ def test_workers_at_an_open_board_are_a_caution(kind):
     opened = dataclasses.replace(found, assessment=results)
     said = "its values say nothing about electric shock, arc flash"
     assert said in text_of(report_pdf(opened, Choices(kind=kind)))
-    assert said not in text_of(report_pdf(found, Choices(kind=kind)))
+    assert said not in plain_text(kind)
 
 
 def test_the_rules_of_the_states_tell_of_proven_bounds():
-    text = text_of(report_pdf(matter()))
+    text = plain_text("report")
     assert text.count(STATE_VALUE) == 2  # with the method, and with the states
 
 
@@ -245,31 +255,30 @@ def with_title(**values):
     return dataclasses.replace(found, assessment=results)
 
 
+@cache
+def of_a_house(kind):
+    return report_pdf(
+        with_title(
+            logo=picture(kind),
+            letterhead="Thornquist Fields\n4 Quay Street",
+            exclusions="The lift motor.",
+            competence="Twenty years of measuring.",
+            closing="One copy goes to the owner.",
+        )
+    )
+
+
 @pytest.mark.parametrize("kind", ["PNG", "JPEG"])
 def test_logo_and_texts_of_the_house_are_printed(kind):
-    data = report_pdf(
-        with_title(
-            logo=picture(kind),
-            letterhead="Thornquist Fields\n4 Quay Street",
-            exclusions="The lift motor.",
-            competence="Twenty years of measuring.",
-            closing="One copy goes to the owner.",
-        )
-    )
-    reader = PdfReader(io.BytesIO(data))
+    reader = PdfReader(io.BytesIO(of_a_house(kind)))
     assert len(reader.pages[0].images) == 1
-    text = text_of(data)
+    text = text_of(of_a_house(kind))
     for wanted in ("4 Quay Street", "The lift motor.", "Twenty years", "One copy goes"):
         assert wanted in text
-    assert data == report_pdf(
-        with_title(
-            logo=picture(kind),
-            letterhead="Thornquist Fields\n4 Quay Street",
-            exclusions="The lift motor.",
-            competence="Twenty years of measuring.",
-            closing="One copy goes to the owner.",
-        )
-    )
+
+
+def test_a_logo_has_the_same_bytes_again():
+    assert of_a_house("PNG") == of_a_house.__wrapped__("PNG")
 
 
 @pytest.mark.parametrize("logo", ["no base64!", base64.b64encode(b"GIF89a").decode()])

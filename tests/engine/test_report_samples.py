@@ -170,10 +170,13 @@ def test_a_note_has_two_pages_at_most(name):
 
 
 @pytest.mark.parametrize("orientation", ["portrait", "landscape"])
-@pytest.mark.parametrize("paper", ["A3", "Letter", "A4"])
+@pytest.mark.parametrize("paper", ["Letter", "A4"])
 @pytest.mark.parametrize("name", NAMES)
 def test_a_note_fits_every_paper(name, paper, orientation):
-    """Captions of a low picture must not grow past the page."""
+    """Captions of a low picture must not grow past the page.
+
+    Lying sheets of A4 and Letter are so low that a note takes a third one.
+    """
     choices = Choices(kind="note", paper=paper, orientation=orientation)
     data = report_pdf(matter(name), choices)
     assert len(PdfReader(io.BytesIO(data)).pages) <= 3
