@@ -36,9 +36,11 @@ from app.variant_acts import with_shown
 from app.view_state import LAYERS, ViewState
 from app.wrapping import WrappingRow, group_in_row
 from engine.assessment import zone_floor
+from engine.currents import case_phasors
+from engine.errors import UserError
 from engine.layout import Layout
 
-QUANTITY = "RMS flux density"
+QUANTITY, DIRECT = "RMS flux density", "Flux density, DC"
 
 #: What the drawing follows of the caption; pages in its place less, or nothing.
 OF_DRAWING = frozenset(
@@ -57,8 +59,23 @@ def caption(document: Document, view_state: ViewState) -> str:
     """The caption in one line, as exports print it."""
     layout, look = document.layout, view_state.look
     where = plane_text(layout, look, look.view) or heights_of(layout, look)[1]
-    text = f"{QUANTITY} · {where} · {case_text(layout, look.case)}"
+    text = f"{quantity(layout, look.case)} · {where} · {case_text(layout, look.case)}"
     return with_shown(document, text)
+
+
+def quantity(layout: Layout, case: str) -> str:
+    """What the map of a load case shows: RMS above 0 Hz, or the direct field."""
+    return DIRECT if is_direct(layout, case) else QUANTITY
+
+
+def is_direct(layout: Layout, case: str) -> bool:
+    """Whether nothing but direct current flows in a load case."""
+    chosen = next((c for c in layout.cases if c.id == case), layout.cases[0])
+    try:
+        flowing = case_phasors(layout, chosen).components
+    except UserError:
+        return False
+    return bool(flowing) and all(c.frequency == 0.0 for c in flowing)
 
 
 def case_title(layout: Layout, case: str) -> str:
@@ -260,6 +277,7 @@ class CaptionBar(QWidget):
         storeys = [(storey.title, storey.id) for storey in layout.storeys]
         _refill(self._storey, storeys, look.storey)
         self._show(self._storey, len(storeys) > 1 and self._wants("storey"))
+        self._quantity.setText(quantity(layout, look.case))
         self._show(self._quantity, self._wants("quantity"))
         self._fit()
 

@@ -31,6 +31,9 @@ _PIXELS = {"coarse": 240, "fine": 800}
 #: Stands for no field at all, so that logarithms exist. [T]
 _NOTHING = 1e-15
 
+#: Round values this near to a level have no line of their own beside its line.
+_BESIDE = 0.02
+
 #: Iso-lines shorter than this part of the map's longer side have no label.
 _LABELLED = 0.06
 
@@ -92,7 +95,7 @@ def _extent(logs: Floats) -> tuple[float, float] | None:
 
 def caption(values: MapValues) -> str:
     """Quantity, heights and case in one line."""
-    quantity = "DC flux density" if values.is_direct else "RMS flux density"
+    quantity = "Flux density, DC" if values.is_direct else "RMS flux density"
     if values.is_bound:
         quantity += ", upper bound"
     case = values.loaded.case.title
@@ -108,8 +111,7 @@ def _image_size(values: MapValues) -> tuple[int, int]:
 
 
 def _logs(values: Floats) -> Floats:
-    logs: Floats = np.log10(np.maximum(values, _NOTHING))
-    return logs
+    return np.asarray(np.log10(np.maximum(values, _NOTHING)), np.float64)
 
 
 def coloured(logs: Floats, low: float, high: float, scale: Scale) -> QImage:
@@ -314,24 +316,17 @@ def _lines(values: MapValues, masks: Masks, unit: str) -> tuple[DrawnIsoLine, ..
     """Thin lines at round values and bold ones at reference levels."""
     xs = np.linspace(values.xs[0], values.xs[-1], 2 * len(values.xs) - 1)
     ys = np.linspace(values.ys[0], values.ys[-1], 2 * len(values.ys) - 1)
-    settings = values.request.layout.settings
     longest = max(xs[-1] - xs[0], ys[-1] - ys[0])
 
     def drawn(lines: Sequence[IsoLine], bold: bool, name: str) -> list[DrawnIsoLine]:
         made = []
         for line in lines:
-            text = name or f"{in_unit(line.value, unit):.6g} {unit}"
-            if line.length < _LABELLED * longest:
-                text = ""
+            is_long = line.length >= _LABELLED * longest
+            text = (name or f"{in_unit(line.value, unit):.6g} {unit}") * is_long
             made.append(DrawnIsoLine(text, bold, line.points, line.label_place()))
         return made
 
-    wanted = [
-        to_tesla(v, unit)
-        for v in round_values(
-            in_unit(settings.map_low, unit), in_unit(settings.map_high, unit)
-        )
-    ]
+    wanted = _round_lines(values, unit)
     found: list[DrawnIsoLine] = []
     if np.any(values.values > 0):
         logs = masks.largest(_logs(values.values), xs, ys, with_conductors=False)
@@ -342,6 +337,20 @@ def _lines(values: MapValues, masks: Masks, unit: str) -> tuple[DrawnIsoLine, ..
             name = _level_text(values, level.id, unit)
             found += drawn(_contours(xs, ys, logs, (1.0,)), True, name)
     return tuple(found)
+
+
+def _round_lines(values: MapValues, unit: str) -> tuple[float, ...]:
+    """Round values of thin lines; none where the line of a level says the same. [T]"""
+    settings = values.request.layout.settings
+    ends = (in_unit(b, unit) for b in (settings.map_low, settings.map_high))
+    # Where frequencies add up, the line of a level is none of equal flux density.
+    adds_up = len(values.loaded.currents.frequencies) > 1
+    levels = [] if adds_up else [value for value, _ in _marks(values, unit)]
+    return tuple(
+        to_tesla(v, unit)
+        for v in round_values(*ends)
+        if not any(abs(v - level) <= _BESIDE * level for level in levels)
+    )
 
 
 def _contours(
@@ -383,9 +392,9 @@ def _marks(values: MapValues, unit: str) -> tuple[tuple[float, str], ...]:
         return ()
     lowest = min(flowing)
     named = "" if len(flowing) == 1 else f", {lowest:g} Hz"
-    marks = []
-    for level, _ in values.level_ratios:
-        value = level_at(level, lowest)
-        if value is not None:
-            marks.append((in_unit(value, unit), f"{level.title}{named}"))
-    return tuple(marks)
+    levels = [(level, level_at(level, lowest)) for level, _ in values.level_ratios]
+    return tuple(
+        (in_unit(value, unit), f"{level.title}{named}")
+        for level, value in levels
+        if value is not None
+    )

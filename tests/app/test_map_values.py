@@ -9,6 +9,7 @@ import numpy as np
 import numpy.typing as npt
 import pytest
 
+from app.caption_bar import QUANTITY, quantity
 from app.field_store import FieldStore, Sample, sample_of
 from app.map_drawing import coloured, interpolated, map_picture
 from app.map_request import (
@@ -232,6 +233,31 @@ def test_lines_at_reference_levels_are_bold_and_named(layout: Layout) -> None:
     assert "10 µT" in thin
 
 
+def test_no_thin_line_beside_the_line_of_a_level() -> None:
+    layout = read(SAMPLE.with_name("small-switch-room.json"))
+
+    def lines(micro: float) -> dict[bool, set[str]]:
+        (level,) = layout.levels[:1]
+        first = msgspec.structs.replace(
+            level.values.ranges[0], coefficient=micro * 1e-6
+        )
+        values = msgspec.structs.replace(level.values, ranges=(first,))
+        own = msgspec.structs.replace(level, values=values)
+        heights, _ = heights_of(layout, Look())
+        asked = request(replaced(layout, own), heights)
+        drawn = map_picture(map_values(asked, FieldStore())).iso_lines
+        return {
+            bold: {line.text for line in drawn if line.bold is bold and line.text}
+            for bold in (True, False)
+        }
+
+    assert "20 µT" in lines(20.5)[False]
+    near = lines(19.7)
+    assert near[True]
+    assert "20 µT" not in near[False]
+    assert "10 µT" in near[False]
+
+
 def test_without_a_height_the_map_is_over_the_zone_s_heights(layout: Layout) -> None:
     heights, name = heights_of(layout, Look())
     assert heights == pytest.approx((4.6, 5.1, 5.6))
@@ -248,3 +274,15 @@ def test_heights_are_told_in_the_layout_s_unit(layout: Layout) -> None:
     metric = replaced(layout, settings)
     assert height_text(metric, 0.5) == "z 500 mm (Ground floor +500)"
     assert floor_below(layout, -1.0) == ("", None)
+
+
+def test_a_direct_field_is_named_as_such(layout: Layout) -> None:
+    battery = read(SAMPLE.with_name("battery-laboratory.json"))
+    direct = [c for c in battery.circuits if c.supply == "dc"]
+    alone = msgspec.structs.replace(battery, circuits=tuple(direct[:1]))
+    found = {quantity(alone, case.id) for case in alone.cases}
+    # In a case without any current there is nothing direct.
+    assert found == {"Flux density, DC", QUANTITY}
+    # An alternating part is what the map shows.
+    assert quantity(layout, "") == "RMS flux density"
+    assert quantity(msgspec.structs.replace(layout, circuits=()), "") == QUANTITY
