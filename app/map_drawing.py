@@ -321,9 +321,9 @@ def _lines(values: MapValues, masks: Masks, unit: str) -> tuple[DrawnIsoLine, ..
     def drawn(lines: Sequence[IsoLine], bold: bool, name: str) -> list[DrawnIsoLine]:
         made = []
         for line in lines:
-            is_long = line.length >= _LABELLED * longest
-            text = (name or f"{in_unit(line.value, unit):.6g} {unit}") * is_long
-            made.append(DrawnIsoLine(text, bold, line.points, line.label_place()))
+            text = name or f"{in_unit(line.value, unit):.6g} {unit}"
+            shown = text if line.length >= _LABELLED * longest else ""
+            made.append(DrawnIsoLine(shown, bold, line.points, line.label_place()))
         return made
 
     wanted = _round_lines(values, unit)
