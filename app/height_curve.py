@@ -17,6 +17,7 @@ from engine.masks import masked
 from engine.zone_assessment import zone_floor
 
 Floats = npt.NDArray[np.float64]
+Bools = npt.NDArray[np.bool_]
 
 #: Heights of one curve.
 _HEIGHTS = 41
@@ -35,12 +36,30 @@ class HeightCurve:
     values : (h,) float
         RMS resultant above 0 Hz, or at 0 Hz where only direct current flows; nan where
         all of the zone is masked. [T]
+    joined : (h - 1,) bool
+        Whether the curve goes on from a height to the next: not where the place of the
+        largest value at one of them is masked at the other.
     """
 
     zone: str
     case: str
     heights: Floats
     values: Floats
+    joined: Bools
+
+    def gap_text(self, z: float) -> str:
+        """Why there is no curve at a height; empty where there is, or beyond it. [m]"""
+        k = int(np.searchsorted(self.heights, z)) - 1
+        if not 0 <= k < len(self.joined):
+            return ""
+        if not np.all(np.isfinite(self.values[k : k + 2])):
+            return "no curve: all of the zone is masked here"
+        if not self.joined[k]:
+            return (
+                "curve broken: here conductors with their clearance, or a closed "
+                "enclosure, begin to mask the place of the largest value"
+            )
+        return ""
 
 
 def drawn_levels(layout: Layout) -> tuple[float, float]:
@@ -117,4 +136,15 @@ def height_curve(
     table = np.where(hidden, -np.inf, values).reshape(len(levels), len(plan))
     largest = table.max(axis=1, initial=-np.inf)
     shown = np.where(np.isfinite(largest), largest, np.nan)
-    return HeightCurve(zone, ready.case.id, levels, shown)
+    return HeightCurve(zone, ready.case.id, levels, shown, _joined(table))
+
+
+def _joined(table: Floats) -> Bools:
+    """(h - 1,) from values (h, n), −inf where masked: see `HeightCurve`."""
+    count, width = table.shape
+    if not width:
+        return np.zeros(max(0, count - 1), np.bool_)
+    places, rows = table.argmax(axis=1), np.arange(count - 1)
+    seen = np.isfinite(table)
+    joined: Bools = seen[rows + 1, places[:-1]] & seen[rows, places[1:]]
+    return joined

@@ -160,7 +160,9 @@ class RailScale(QWidget):
         z, unit = self.height_at(pixel), self._document.layout.settings.length_unit
         bands = (*held.slabs, *held.runs)
         names = [band.name for band in bands if band.low <= z <= band.high]
-        return " · ".join([f"z {height_figures(z, unit)} {unit}", *names])
+        gap = "" if self._curve is None else self._curve.gap_text(z)
+        told = [f"z {height_figures(z, unit)} {unit}", *names, *filter(None, [gap])]
+        return " · ".join(told)
 
     def _choose(self, z: float, zone: str = "") -> None:
         if zone:
@@ -216,16 +218,18 @@ class RailScale(QWidget):
         ink = QColor(theme.muted if self._curve_is_old else theme.text)
         painter.setPen(QPen(ink, 1.5))
         painter.setBrush(Qt.BrushStyle.NoBrush)
-        line: list[QPointF] = []
-        for z, place in zip(curve.heights, places, strict=True):
-            if math.isfinite(place):
-                x = 2.0 + place * (self.width() - 6.0)
-                line.append(QPointF(x, self.pixel_of(float(z))))
-            elif line:
-                painter.drawPolyline(QPolygonF(line))
-                line = []
-        if line:
-            painter.drawPolyline(QPolygonF(line))
+        ends = np.flatnonzero(~curve.joined) + 1
+        for heights, own in zip(
+            np.split(curve.heights, ends), np.split(places, ends), strict=True
+        ):
+            piece = [
+                QPointF(2.0 + place * (self.width() - 6.0), self.pixel_of(float(z)))
+                for z, place in zip(heights, own, strict=True)
+                if math.isfinite(place)
+            ]
+            # A piece of one height is a dot.
+            painter.drawPolyline(QPolygonF(piece))
+            painter.drawPoints(QPolygonF(piece[:1]))
 
     def _along(self, values: np.ndarray) -> np.ndarray:
         """Values as 0 to 1 along the map's range; nan stays."""
