@@ -15,8 +15,9 @@ from PySide6.QtGui import QGuiApplication, QShowEvent
 from PySide6.QtWidgets import QWidget
 
 from app.answers import Answers, Work
+from app.chosen_file import ask_where_to_write
 from app.document import Document
-from app.figures import FIGURE_KINDS, ask_figure
+from app.figures import FIGURE_KINDS
 from app.messages import Messages
 from app.page import Page
 from app.panels.panel import Words
@@ -142,7 +143,7 @@ class AskingPage(Page):
         if self.shown is None:
             self._messages.warn("There is nothing to export yet.")
             return
-        path = ask_figure(self, "Export", self._file_name, FIGURE_KINDS)
+        path = ask_where_to_write(self, "Export", self._file_name, FIGURE_KINDS)
         if path is not None:
             with self._messages.shown():
                 self.write(path)

@@ -6,8 +6,9 @@ from collections.abc import Callable
 from pathlib import Path
 
 from PySide6.QtCore import QObject
-from PySide6.QtWidgets import QFileDialog, QWidget
+from PySide6.QtWidgets import QWidget
 
+from app.chosen_file import ask_where_to_write
 from app.document import Document
 from app.elevation_plane import plane_text, upright_of
 from app.jobs import Jobs, Work
@@ -48,9 +49,11 @@ class Exports(QObject):
 
     def choose_map(self) -> None:
         """Ask where to, and write the map that is shown."""
-        path = self._ask("Export map", self._suggested(".png"), MAP_KINDS)
+        path = ask_where_to_write(
+            self._window, "Export map", self._suggested(".png"), MAP_KINDS
+        )
         if path is not None:
-            self.map(path if path.suffix else path.with_suffix(".png"))
+            self.map(path)
 
     def map(self, path: Path) -> None:
         """Write the map as the view shows it: its load case, its heights or plane."""
@@ -100,15 +103,6 @@ class Exports(QObject):
         if path is not None:
             return str(path.with_suffix(ending))
         return _stem(self._document.layout) + ending
-
-    def _ask(self, title: str, start: str, kinds: str) -> Path | None:
-        name, kind = QFileDialog.getSaveFileName(self._window, title, start, kinds)
-        if not name:
-            return None
-        path = Path(name)
-        if not path.suffix and "*." in kind:
-            path = path.with_suffix("." + kind.split("*.")[1].rstrip(")"))
-        return path
 
 
 def _stem(layout: Layout) -> str:

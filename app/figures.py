@@ -7,7 +7,7 @@ from pathlib import Path
 from PySide6.QtCore import QBuffer, QIODevice, QPoint, QRect, QSize, Qt
 from PySide6.QtGui import QColor, QFontMetrics, QGuiApplication, QImage, QPainter
 from PySide6.QtSvg import QSvgGenerator
-from PySide6.QtWidgets import QFileDialog, QWidget
+from PySide6.QtWidgets import QWidget
 
 from app.copying import captioned
 from app.theme import BODY, LIGHT, STEP, Theme
@@ -79,17 +79,6 @@ def widget_svg(widget: QWidget, caption: str) -> bytes:
     painter.drawText(box, flags, caption)
     painter.end()
     return bytes(buffer.data().data())
-
-
-def ask_figure(parent: QWidget, title: str, start: str, kinds: str) -> Path | None:
-    """Ask for a file; its ending is that of the kind chosen where none is typed."""
-    name, kind = QFileDialog.getSaveFileName(parent, title, start, kinds)
-    if not name:
-        return None
-    path = Path(name)
-    if not path.suffix and "*." in kind:
-        path = path.with_suffix("." + kind.split("*.")[1].rstrip(")"))
-    return path
 
 
 def write_figure(path: Path, widget: QWidget, caption: str, table: str) -> None:

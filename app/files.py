@@ -13,6 +13,7 @@ from PySide6.QtCore import QFileSystemWatcher, QObject, Signal
 from PySide6.QtWidgets import QFileDialog, QMessageBox, QWidget
 
 from app import preferences
+from app.chosen_file import ask_where_to_write
 from app.document import Document
 from app.messages import Messages
 from engine import layout_file
@@ -125,13 +126,10 @@ class Files(QObject):
     def save_as(self) -> bool:
         """Ask where to save, and save there."""
         start = str(self._document.path or "room.json")
-        name, _ = QFileDialog.getSaveFileName(
+        path = ask_where_to_write(
             self._window, "Save layout as", start, "Layouts (*.json)"
         )
-        if not name:
-            return False
-        path = Path(name)
-        return self._write(path if path.suffix else path.with_suffix(".json"))
+        return path is not None and self._write(path)
 
     def may_leave(self) -> bool:
         """Whether the present work is saved or may be dropped, asking the user."""

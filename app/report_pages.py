@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QObject
 from PySide6.QtWidgets import QFileDialog
 
+from app.chosen_file import ask_where_to_write
 from app.document import EVERYTHING
 from app.menus import Command
 from app.reopened import Reopened
@@ -94,14 +95,14 @@ class ReportPages(QObject):
     def choose_report(self) -> None:
         """Ask where to, and write the report by the options of its page."""
         choices = self._choices()
-        name, _ = QFileDialog.getSaveFileName(
+        path = ask_where_to_write(
             self._window,
             f"Write {choices.kind}",
             self._proposed(".pdf", choices.variant),
             "PDF (*.pdf)",
         )
-        if name:
-            self.write_report(Path(name), choices)
+        if path is not None:
+            self.write_report(path, choices)
 
     def _choices(self) -> Choices:
         """As the page has them; before it was open: of what is shown."""
@@ -115,7 +116,6 @@ class ReportPages(QObject):
     def write_report(self, path: Path, choices: Choices) -> None:
         """Compute and write a report in the background."""
         whole = self._window.document.whole
-        path = path if path.suffix else path.with_suffix(".pdf")
         names = {v.id: v.title for v in whole.variants}
         of = names.get(choices.variant or "", "the base")
         told = f"{path} was written, the {choices.kind} of {of}."
@@ -136,14 +136,14 @@ class ReportPages(QObject):
         """Ask where to, and write the pages that are shown."""
         with self._window.messages.shown():
             self.page.current()
-            name, _ = QFileDialog.getSaveFileName(
+            path = ask_where_to_write(
                 self._window,
                 "Write PDF",
                 self._proposed(".pdf", self._variant),
                 "PDF (*.pdf)",
             )
-            if name:
-                self.write_pdf(Path(name))
+            if path is not None:
+                self.write_pdf(path)
 
     def write_pdf(self, path: Path) -> None:
         """Write the very bytes that are shown.
@@ -154,7 +154,6 @@ class ReportPages(QObject):
             When they are out of date, or cannot be written.
         """
         made = self.page.current()
-        path = path if path.suffix else path.with_suffix(".pdf")
         write_file(path, made.content)
         self._window.messages.inform(f"{path} was written.")
 

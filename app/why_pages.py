@@ -11,7 +11,8 @@ from PySide6.QtCore import QEvent, QObject, QPointF, Qt
 from PySide6.QtGui import QMouseEvent
 from PySide6.QtWidgets import QVBoxLayout, QWidget
 
-from app.figures import FIGURE_KINDS, ask_figure
+from app.chosen_file import ask_where_to_write
+from app.figures import FIGURE_KINDS
 from app.level_distance import PlaceFactor, Reached
 from app.level_marks import overlay_of, stale_overlay
 from app.map_request import case_of, heights_of
@@ -169,7 +170,9 @@ class WhyPages(QObject):
         if self.distance.answer is None:
             window.messages.warn("There are no lines to export yet.")
             return
-        path = ask_figure(window, "Export the distance", "distance.png", FIGURE_KINDS)
+        path = ask_where_to_write(
+            window, "Export the distance", "distance.png", FIGURE_KINDS
+        )
         if path is not None:
             with window.messages.shown():
                 self.write_distance(path)

@@ -7,6 +7,7 @@ from pathlib import Path
 
 from PySide6.QtWidgets import QFileDialog, QMenu, QPushButton
 
+from app.chosen_file import ask_where_to_write
 from app.library import Content, Library, read, write
 from app.messages import Messages
 from engine.criteria import ReferenceLevel
@@ -107,11 +108,9 @@ class LevelLibraryButton(QPushButton):
             self.import_file(Path(name))
 
     def _on_export(self) -> None:
-        name, _ = QFileDialog.getSaveFileName(
-            self, "Export the library", "library.json", _FILTER
-        )
-        if name:
-            self.export_file(Path(name))
+        path = ask_where_to_write(self, "Export the library", "library.json", _FILTER)
+        if path is not None:
+            self.export_file(path)
 
 
 def _keep(level: ReferenceLevel) -> str:

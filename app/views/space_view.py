@@ -15,8 +15,9 @@ from PySide6.QtGui import QImage, QKeyEvent, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QVBoxLayout, QWidget
 
 from app.caption_bar import QUANTITY, case_title
+from app.chosen_file import ask_where_to_write
 from app.document import EVERYTHING, Document
-from app.figures import ask_figure, png, with_caption
+from app.figures import png, with_caption
 from app.map_picture import MapPicture
 from app.messages import Messages
 from app.page import Page
@@ -357,7 +358,9 @@ class SpaceView(Page):
 
     def export(self) -> None:
         """Ask where to, and write the picture."""
-        path = ask_figure(self, "Export the picture", "space.png", "Picture (*.png)")
+        path = ask_where_to_write(
+            self, "Export the picture", "space.png", "Picture (*.png)"
+        )
         if path is not None:
             with self._messages.shown():
                 self.write(path)

@@ -13,7 +13,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication, QStackedWidget, QWidget
 
 import engine
-from app import report_pages
+from app import chosen_file, report_pages
 from app.document import Document
 from app.jobs import Jobs
 from app.logo import LARGEST, choose_logo
@@ -118,7 +118,7 @@ def issue(qtbot, reports, monkeypatch, folder, revision="B", date="2026-02-01"):
 
 def test_the_written_file_is_what_the_engine_writes(qtbot, window, reports, tmp_path):
     opened(qtbot, reports)
-    reports.write_pdf(tmp_path / "note")
+    reports.write_pdf(tmp_path / "note.pdf")
     written = (tmp_path / "note.pdf").read_bytes()
     assert written == reports.page.made.content
     assert written == report_bytes(window.document.whole, Choices(kind="note"))
@@ -131,7 +131,7 @@ def test_the_print_key_writes_what_the_page_asks_for(
     reports.page.choices.refresh()
     reports.page.choices.paper.set_value("A3")
     monkeypatch.setattr(
-        report_pages.QFileDialog,
+        chosen_file.QFileDialog,
         "getSaveFileName",
         lambda *_: (str(tmp_path / "printed"), ""),
     )
