@@ -92,7 +92,7 @@ def _note(
         laid = laid_out(room)
         if laid.count <= MOST_PAGES:
             break
-    if room == ROOMS[0] and laid.count > 1:
+    if room == ROOMS[0] and laid.count > 1 and sheet.orientation == "portrait":
         for room in ON_ONE_PAGE:
             shorter = laid_out(room)
             if shorter.count == 1:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 
-from reportlab.platypus import Flowable
+from reportlab.platypus import Flowable, PageBreak
 
 from engine.decisions import worst_comparisons
 from engine.drawing import plan
@@ -53,8 +53,8 @@ MOST_PAGES = 2
 class Room:
     """How much of everything a note holds: its length follows from it.
 
-    `picture` is the part of a page that the picture may take; `text` the most
-    characters of a text of the author.
+    `picture` is the part of a page that the picture may take where it has no sheet of
+    its own; `text` the most characters of a text of the author.
     """
 
     rows: int
@@ -64,12 +64,16 @@ class Room:
     text: int
 
 
+#: Part of the text's height that a picture takes on a sheet of its own.
+_OWN_SHEET = 0.96
+
 #: Tried one after the other until the note is short enough.
 ROOMS = (
     Room(12, 8, 5, 0.6, 1500),
     Room(8, 6, 4, 0.52, 700),
     Room(5, 4, 3, 0.5, 400),
     Room(3, 3, 2, 0.45, 200),
+    Room(3, 1, 1, 0.4, 120),
 )
 
 #: Tried for a note that is only a little longer than a page.
@@ -92,7 +96,8 @@ def note_story(
     made += [paragraph(HEADLINE, TITLE), fact_table(facts, width)]
     made += _answer(matter, words, width, room)
     picture = _picture(matter, sheet, room)
-    if picture is not None:
+    # Beside text a sheet that lies is too low for a picture: it has one of its own.
+    if picture is not None and sheet.orientation == "portrait":
         made += [gap(1.0), Figure(*picture), gap(1.0)]
     made += part_heading("Assumptions")
     made += bullets(_assumed(matter, words, room), SMALL_BULLET)
@@ -104,6 +109,8 @@ def note_story(
         made += [paragraph(brief(title.conclusions, room.text))]
     last = matter.identity.sentence() + ". The full report has the rest."
     made += [gap(1.5), paragraph(last, NOTE)]
+    if picture is not None and sheet.orientation == "landscape":
+        made += [PageBreak(), Figure(*picture)]
     return made
 
 
@@ -190,7 +197,8 @@ def _leading_map(matter: Matter) -> HeightMap | None:
 
 def _picture(matter: Matter, sheet: Paper, room: Room) -> tuple[Picture, str] | None:
     """The picture of the note, and what it shows."""
-    width, height = sheet.text_width, room.picture * sheet.text_height
+    part = room.picture if sheet.orientation == "portrait" else _OWN_SHEET
+    width, height = sheet.text_width, part * sheet.text_height
     leading = _leading_map(matter)
     if leading is not None:
         whole = plan(matter.layout, matter.conductors)
