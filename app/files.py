@@ -33,6 +33,7 @@ def empty_layout(choices: preferences.Preferences) -> Layout:
         flux_density_unit=choices.flux_density_unit,
         length_unit=choices.length_unit,
         paper=choices.paper,
+        grid_step=choices.grid_step,
     )
     ground = Storey(id="ground", name="Ground floor", floor_level=0.0)
     return Layout(settings=settings, storeys=(ground,))

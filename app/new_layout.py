@@ -64,6 +64,7 @@ class NewLayoutPage(Page):
         self.start.setToolTip("Opens it as a new layout (Enter)")
         self.start.clicked.connect(self._on_start)
         self.buttons: list[QRadioButton] = []
+        self._abouts: list[Words] = []
         self._asks = QGridLayout()
         self._asks.setHorizontalSpacing(2 * STEP)
         self._asks.setVerticalSpacing(STEP)
@@ -147,12 +148,11 @@ class NewLayoutPage(Page):
         group = QButtonGroup(whole)
         for each in BEGINNINGS:
             button = QRadioButton(each.name)
-            button.setToolTip(each.about)
-            button.setAccessibleDescription(each.about)
             button.toggled.connect(partial(self._on_toggled, button))
             group.addButton(button)
             self.buttons.append(button)
-            about = Words(each.about)
+            about = Words()
+            self._abouts.append(about)
             about.setContentsMargins(6 * STEP, 0, 0, 2 * STEP)
             box.addWidget(button)
             box.addWidget(about)
@@ -178,6 +178,13 @@ class NewLayoutPage(Page):
                 widget.hide()
                 widget.deleteLater()
         self.fields = {}
+        for each, button, words in zip(
+            BEGINNINGS, self.buttons, self._abouts, strict=True
+        ):
+            about = each.about_in(self._choices.length_unit)
+            button.setToolTip(about)
+            button.setAccessibleDescription(about)
+            words.setText(about)
         for at, ask in enumerate(self.beginning.asks):
             field = self._field(ask)
             field.setMinimumSize(40 * STEP, field.sizeHint().height())

@@ -39,6 +39,11 @@ class Preferences(Struct, frozen=True, kw_only=True):
     #: False until the first strip was answered.
     chosen: bool = False
 
+    @property
+    def grid_step(self) -> float:
+        """Step of exported grids of new layouts: a round length. [m]"""
+        return 0.3048 if self.length_unit in ("ft", "in") else 0.25
+
     def with_recent(self, path: Path) -> Preferences:
         """With `path` as the most recent file."""
         name = str(path.resolve())

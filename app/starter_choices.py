@@ -22,6 +22,9 @@ from engine.units import LENGTH_UNITS
 #: What defaults of lengths are rounded to in units that are not metric. [unit]
 _ROUND = {"ft": 0.5, "in": 6.0}
 
+#: The office beside a run. [m]
+_OFFICE = (6.0, 5.0)
+
 
 @dataclass(frozen=True)
 class Asked:
@@ -76,7 +79,7 @@ class Beginning:
     Attributes
     ----------
     name, about : str
-        What a person calls it, and what it holds.
+        What a person calls it, and what it holds; "{office}": the office's size.
     asks : tuple of Asked or Offered
     make : callable or None
         Keyword arguments, `frequency` among them, to a layout; None: empty.
@@ -103,8 +106,15 @@ class Beginning:
             flux_density_unit=choices.flux_density_unit,
             length_unit=choices.length_unit,
             paper=choices.paper,
+            grid_step=choices.grid_step,
         )
         return replace(made, settings=settings)
+
+    def about_in(self, length_unit: str) -> str:
+        """What it holds, with lengths in this unit; feet for inches, m for mm."""
+        unit = {"mm": "m", "in": "ft"}.get(length_unit, length_unit)
+        sides = " × ".join(f"{x / LENGTH_UNITS[unit]:.3g}" for x in _OFFICE)
+        return self.about.format(office=f"{sides} {unit}")
 
     def defaults(self, length_unit: str) -> dict[str, Any]:
         """The values to begin with, lengths round in this unit."""
@@ -140,7 +150,7 @@ BEGINNINGS: tuple[Beginning, ...] = (
     ),
     Beginning(
         "Run past a room",
-        "Cables or bars over, under or beside an office of 6 × 5 m.",
+        "Cables or bars over, under or beside an office of {office}.",
         (
             Offered(
                 "where", "Where", "Over the ceiling, under the floor, or behind a wall",

@@ -15,18 +15,28 @@ from engine.units import LENGTH_UNITS
 #: Grid lines are at least this far apart. [px]
 _FINE = 12.0
 
+#: Steps of grids in feet and inches under ten feet. [in]
+_IN_INCHES = (1 / 16, 1 / 8, 1 / 4, 1 / 2, 1, 3, 6, 12, 24, 60)
+
 _LONGEST_BAR = 140.0
 _EDGE = 14.0
 
 
 def grid_step(scale: float, unit: str, apart: float = _FINE) -> float:
-    """Smallest 1-2-5 step of the length unit that shows at least `apart` px wide. [m]
+    """Smallest round step of the length unit that shows at least `apart` px wide. [m]
+
+    1-2-5 steps, under ten feet parts of a foot: 3 in and not 0.2 ft.
 
     Examples
     --------
     >>> grid_step(100.0, "m"), grid_step(60.0, "m")
     (0.2, 0.2)
     """
+    if unit in ("ft", "in"):
+        inch, unit = LENGTH_UNITS["in"], "ft"
+        for count in _IN_INCHES:
+            if count * inch * scale >= apart * (1 - 1e-9):
+                return count * inch
     metres = 1.0 if unit == "mm" else LENGTH_UNITS[unit]
     least = apart / scale / metres
     power = math.floor(math.log10(least))
@@ -72,14 +82,12 @@ def draw_scale_bar(
     north: float | None,
 ) -> QRectF:
     """The scale bar in the lower left corner; returns the box it fills. [px]"""
-    metres = 1.0 if unit == "mm" else LENGTH_UNITS[unit]
     length = grid_step(camera.scale, unit, 0.5 * _LONGEST_BAR)
     wide = length * camera.scale
-    name = "m" if unit == "mm" else unit
     right, up = across_text(sight)
     # A line's name is told above the view.
     view = "Line" if sight.is_along_line else sight.name.capitalize()
-    text = f"{length / metres:g} {name}"
+    text = bar_text(length, unit)
     words = f"{view}:  {right} →  {up} ↑"
     metrics = inks.small_metrics
     line = metrics.height()
@@ -103,6 +111,14 @@ def draw_scale_bar(
         _draw_north(painter, QPointF(box.right() + 22, box.center().y()), inks, north)
         box = box.adjusted(0, 0, 40, 0)
     return box
+
+
+def bar_text(length: float, unit: str) -> str:
+    """The length of the bar: "2 m", in feet from one foot on and else in inches."""
+    name = "m" if unit == "mm" else unit
+    if unit in ("ft", "in"):
+        name = "ft" if length >= LENGTH_UNITS["ft"] else "in"
+    return f"{float(f'{length / LENGTH_UNITS[name]:.6g}'):g} {name}"
 
 
 def _advance(inks: Inks, text: str) -> float:

@@ -24,7 +24,7 @@ from app.views.inks import Inks, conductor_colour
 from app.views.labels import Importance, Label, placed, text_box
 from app.views.overlay_painter import draw_overlay
 from app.views.projection import LOOKING_X, LOOKING_Y, PLAN, SIGHTS, to_layout, to_view
-from app.views.scale_bar import grid_step
+from app.views.scale_bar import bar_text, grid_step
 from engine.circuits import BalancedCurrent, Circuit
 from engine.edits import added, removed, replaced
 from engine.layout import Layout
@@ -444,6 +444,19 @@ def test_grid_steps_are_round_and_wide_enough():
         step = grid_step(scale, "m")
         assert 12.0 <= step * scale * (1 + 1e-9) <= 12.0 * 2.6
     assert grid_step(60.0, "ft") == pytest.approx(0.3048)
+
+
+@pytest.mark.parametrize("unit", ["ft", "in"])
+def test_grid_steps_in_feet_are_whole_parts_of_a_foot(unit):
+    inch = 0.0254
+    assert grid_step(160.0, unit) == pytest.approx(3 * inch)
+    assert grid_step(13.0 / (0.25 * inch), unit) == pytest.approx(0.25 * inch)
+    # Beyond five feet: 1-2-5 steps of a foot.
+    assert grid_step(13.0 / (120 * inch), unit) == pytest.approx(120 * inch)
+    assert grid_step(13.0 / (240 * inch), unit) == pytest.approx(240 * inch)
+    assert bar_text(3 * inch, unit) == "3 in"
+    assert bar_text(24 * inch, unit) == "2 ft"
+    assert bar_text(2.0, "m") == bar_text(2.0, "mm") == "2 m"
 
 
 def test_an_entry_keeps_what_it_does_not_say():

@@ -11,6 +11,7 @@ from app import preferences
 from app.files import empty_layout
 from app.new_layout import NewLayoutPage
 from app.preferences import Preferences
+from app.starter_choices import BEGINNINGS
 from app.theme import LIGHT, apply, theme_for
 from engine.faults import faults
 from engine.starters import run_past_room, transformer_link_board
@@ -174,3 +175,20 @@ def test_what_new_layouts_use_can_be_chosen_again(qtbot, monkeypatch, tmp_path):
     settings = chosen.args[0].settings
     assert (settings.length_unit, settings.frequency) == ("m", 50.0)
     assert settings.flux_density_unit == "mG"
+
+
+def test_in_feet_texts_and_the_exported_grid_are_too(qtbot):
+    made = NewLayoutPage(AMERICAN)
+    qtbot.addWidget(made)
+    made.show()
+    assert "an office of 19.7 × 16.4 ft." in made._abouts[2].text()
+    assert "ft" in made.buttons[2].toolTip()
+    for begun in BEGINNINGS:
+        values = begun.defaults("ft")
+        assert begun.layout(AMERICAN, values).settings.grid_step == 0.3048
+        metric = begun.layout(Preferences(), begun.defaults("m"))
+        assert metric.settings.grid_step == 0.25
+
+
+def test_in_metres_the_office_is_said_in_metres(page):
+    assert page._abouts[2].text().endswith("an office of 6 × 5 m.")
