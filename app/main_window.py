@@ -39,6 +39,7 @@ from app.found_place import FoundPlace
 from app.guide import AboutPage, CautionsPage, GuidePage
 from app.hint_line import HintLine
 from app.jobs import Jobs
+from app.label_offer import LabelOffer
 from app.message_bar import JobBar, MessageBar
 from app.messages import Messages
 from app.new_layout import NewLayoutPage
@@ -105,7 +106,7 @@ class MainWindow(QMainWindow):
         self.autosave = Autosave(document)
         self.theme = theme
         self._build()
-        self.found_place = FoundPlace(self)
+        self.found_place, self.label_offer = FoundPlace(self), LabelOffer(self)
         self.view_pages = ViewPages(self)
         self.menus = WindowMenus(self)
         self.links = WindowLinks(self)
