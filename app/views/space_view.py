@@ -14,7 +14,7 @@ from PySide6.QtCore import QEvent, Qt, QTimer
 from PySide6.QtGui import QImage, QKeyEvent, QPainter, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QVBoxLayout, QWidget
 
-from app.caption_bar import QUANTITY, case_title
+from app.caption_bar import case_title, quantity
 from app.chosen_file import ask_where_to_write
 from app.document import EVERYTHING, Document
 from app.figures import png, with_caption
@@ -352,8 +352,9 @@ class SpaceView(Page):
     def caption(self) -> str:
         """What the picture shows, in one line."""
         where = self.desk.words() if self.desk is not None else ""
-        case = case_title(self._document.layout, self._view_state.look.case)
-        parts = [f"{QUANTITY} · {where}" if where else "Layout in space"]
+        layout, chosen = self._document.layout, self._view_state.look.case
+        case, shown = case_title(layout, chosen), quantity(layout, chosen)
+        parts = [f"{shown} · {where}" if where else "Layout in space"]
         return with_shown(self._document, " · ".join([*parts, f"case {case}"]))
 
     def export(self) -> None:
