@@ -36,6 +36,7 @@ from engine.certified.residues import (
 from engine.certified.segments import ROWS, add_segment, derivative_bounds
 from engine.compiled import compiled
 from engine.conductor import Conductor
+from engine.field.leg_bundles import distance_to_line
 from engine.field.legs import leg_distance, legs_of
 
 Floats = NDArray[np.float64]
@@ -193,16 +194,6 @@ def _apart(point: Floats, other: Floats) -> float:
 
 
 @compiled
-def _to_axis(leg: Floats, point: Floats) -> float:
-    x, y, z = point[0] - leg[0], point[1] - leg[1], point[2] - leg[2]
-    lx, ly, lz = leg[3] - leg[0], leg[4] - leg[1], leg[5] - leg[2]
-    part = (x * lx + y * ly + z * lz) / (lx * lx + ly * ly + lz * lz)
-    part = min(max(part, 0.0), 1.0)
-    x, y, z = x - part * lx, y - part * ly, z - part * lz
-    return float(np.sqrt(x * x + y * y + z * z))
-
-
-@compiled
 def _gaps(
     centre: Floats, reach: float, legs: Floats, boxes: Floats, gaps: Floats
 ) -> bool:
@@ -213,7 +204,7 @@ def _gaps(
     for j in range(legs.shape[0]):
         leg = legs[j]
         within = leg[FARTHEST] + reach
-        gap = _to_axis(leg, centre) - within
+        gap = distance_to_line(centre, leg) - within
         if leg[IS_ROUND] == 0.0 and leg[IS_BOX] > 0.0 and gap < 4.0 * leg[FARTHEST]:
             # The distance to a mitred bar grows by its slope at most per metre.
             to_bar = leg_distance(boxes[j], centre[0], centre[1], centre[2])
