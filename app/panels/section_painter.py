@@ -27,6 +27,9 @@ from engine.units import LENGTH_UNITS
 #: Fine grid lines nearer than this are left out. [logical pixels]
 _FINEST = 5.0
 
+#: From one stronger line of the grid to the next, by unit. [m]
+STRONG = {"mm": 0.05, "in": 0.0254}
+
 #: Lengths that a scale bar may have, by unit. [mm], [in]
 _BARS = {
     "mm": (1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000, 10_000),
@@ -52,10 +55,11 @@ class SectionPainter:
         self._letters: list[QRectF] = []
 
     def paper(self, area: QRectF, middle: QPointF, grid: float) -> None:
-        """The paper with grid lines through the route, every tenth one stronger."""
+        """The paper with grid lines through the route; stronger at 50 mm, or inches."""
         painter = self._painter
         painter.fillRect(area, QColor(self._theme.paper))
-        for step, alpha in ((grid, 0.35), (10 * grid, 0.9)):
+        strong = STRONG[self._unit]
+        for step, alpha in ((grid, 0.35), (strong, 0.9)):
             pixels = step * self._scale
             if pixels < _FINEST:
                 continue

@@ -12,7 +12,7 @@ from PySide6.QtTest import QTest
 from app.document import Document
 from app.panels.phasor_drawing import ring_value
 from app.panels.section import SectionPanel
-from app.panels.section_painter import bar_text, place_text
+from app.panels.section_painter import STRONG, bar_text, place_text
 from app.theme import BODY
 from app.view_state import ViewState
 from engine.circuits import CircuitFactor, LoadCase
@@ -114,6 +114,7 @@ def test_in_a_layout_in_feet_sections_are_measured_in_inches(document, panel, qt
     document.edit("Change the unit", replace(document.layout, settings=settings))
     assert panel._catch.text() == "Catch on 1/4 in"
     assert "1/4 in" in panel.canvas.toolTip()
+    assert STRONG["in"] / panel.canvas.grid == pytest.approx(4)
     slot = slots(panel.run.section)[0]
     panel.canvas.choose(frozenset({slot.name}))
     with qtbot.waitSignal(panel.canvas.nudged) as nudged:
