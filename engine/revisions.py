@@ -22,6 +22,7 @@ from engine.field_words import field_words
 from engine.items import IssuedResult, IssuedRevision, Item
 from engine.layout import Layout
 from engine.layout_file import encode
+from engine.moved_places import told_places
 from engine.origin_words import told_origin
 from engine.origins import value_text
 from engine.results import Assessment
@@ -31,6 +32,9 @@ SAME = 1e-6
 
 #: Figures of results that count for their digest.
 _FIGURES = 9
+
+#: Before and after of values whose short texts are the same.
+_TOO_LONG = ("as it was", "changed in parts that are too long to print")
 
 _Key = tuple[str, str, str, str]
 
@@ -331,6 +335,6 @@ def _field_edits(
         elif a != b:
             texts = value_text(a, field.name), value_text(b, field.name)
             if texts[0] == texts[1]:
-                texts = ("as it was", "changed in parts that are too long to print")
+                texts = told_places(a, b) or _TOO_LONG
             words = field_words(field.name, type(now))
             yield Edit("changed", now.id, now.title, field.name, *texts, words)
