@@ -31,9 +31,6 @@ _PIXELS = {"coarse": 240, "fine": 800}
 #: Stands for no field at all, so that logarithms exist. [T]
 _NOTHING = 1e-15
 
-#: Round values this near to a level have no line of their own beside its line.
-_BESIDE = 0.02
-
 #: Iso-lines shorter than this part of the map's longer side have no label.
 _LABELLED = 0.06
 
@@ -342,15 +339,11 @@ def _lines(values: MapValues, masks: Masks, unit: str) -> tuple[DrawnIsoLine, ..
 def _round_lines(values: MapValues, unit: str) -> tuple[float, ...]:
     """Round values of thin lines; none where the line of a level says the same. [T]"""
     settings = values.request.layout.settings
-    ends = (in_unit(b, unit) for b in (settings.map_low, settings.map_high))
+    low, high = (in_unit(b, unit) for b in (settings.map_low, settings.map_high))
     # Where frequencies add up, the line of a level is none of equal flux density.
     adds_up = len(values.loaded.currents.frequencies) > 1
     levels = [] if adds_up else [value for value, _ in _marks(values, unit)]
-    return tuple(
-        to_tesla(v, unit)
-        for v in round_values(*ends)
-        if not any(abs(v - level) <= _BESIDE * level for level in levels)
-    )
+    return tuple(to_tesla(v, unit) for v in round_values(low, high, levels))
 
 
 def _contours(

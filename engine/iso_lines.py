@@ -13,6 +13,9 @@ from contourpy import LineType, contour_generator
 Floats = npt.NDArray[np.float64]
 Bools = npt.NDArray[np.bool_]
 
+#: Round values this near to a named one, relative to it, have no line beside its line.
+_BESIDE = 0.02
+
 
 @dataclass(frozen=True, eq=False)
 class IsoLine:
@@ -77,13 +80,19 @@ def _at(points: Floats, walked: Floats, where: float) -> tuple[float, float]:
     )
 
 
-def round_values(low: float, high: float) -> tuple[float, ...]:
+def round_values(
+    low: float, high: float, named: Sequence[float] = ()
+) -> tuple[float, ...]:
     """The values 1, 2, 5 times powers of ten from `low` to `high`, both included.
+
+    Those within 2 % of a value that has a line with a name already are left out.
 
     Examples
     --------
     >>> round_values(0.2, 10)
     (0.2, 0.5, 1.0, 2.0, 5.0, 10.0)
+    >>> round_values(0.2, 10, (1.98, 5.3))
+    (0.2, 0.5, 1.0, 5.0, 10.0)
     """
     if not 0 < low <= high:
         return ()
@@ -95,7 +104,12 @@ def round_values(low: float, high: float) -> tuple[float, ...]:
         for step in (1, 2, 5)
     ]
     slack = 1.0 + 1e-9
-    return tuple(v for v in values if low / slack <= v <= high * slack)
+    return tuple(
+        v
+        for v in values
+        if low / slack <= v <= high * slack
+        and not any(abs(v - other) <= _BESIDE * other for other in named)
+    )
 
 
 def iso_lines(

@@ -247,7 +247,8 @@ def _iso_lines(subject: MapSubject) -> list[tuple[IsoLine, str, bool]]:
         value = value_text(reference.value, subject.unit)
         for line in iso_lines(*grid, (reference.value,)):
             found.append((line, f"{one_line(reference.name)[:60]} {value}", True))
-    thin = round_values(subject.low / factor, subject.high / factor)
+    named = [reference.value / factor for reference in subject.references]
+    thin = round_values(subject.low / factor, subject.high / factor, named)
     for line in iso_lines(*grid, [value * factor for value in thin]):
         found.append((line, value_text(line.value, subject.unit), False))
     return found

@@ -29,6 +29,7 @@ from engine.picture import (
     map_picture,
 )
 from engine.picture.legend import BAR_HEIGHT, REFERENCE_WIDTH
+from engine.picture.map_picture import _iso_lines
 from engine.places import Receptor, Room, Zone
 
 HOSTILE = 'Desk <img src="x"> R&D <LV> \x07\u202e שלום ' + "w" * 300
@@ -246,3 +247,13 @@ def test_offset_lines_as_numbers_name_their_unit():
     rows = list(csv.reader(io.StringIO(offsets_csv(offsets, "Case A", "ft"))))
     assert rows[:3] == [["Case A"], ["Target reaches."], ["line", "x [ft]", "y [ft]"]]
     assert rows[3:] == [["1", "1", "0"], ["1", "2", "1"]]
+
+
+def test_no_round_line_stands_beside_the_line_of_a_level():
+    def thin(level):
+        lines = _iso_lines(subject(references=(ReferenceLine("Example A", level),)))
+        return {text for _, text, is_bold in lines if not is_bold}
+
+    assert "5 µT" in thin(5.2e-6)
+    assert "5 µT" not in thin(4.95e-6)
+    assert "2 µT" in thin(4.95e-6)
