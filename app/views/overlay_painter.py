@@ -14,6 +14,9 @@ from app.views.labels import text_box
 
 _CATCH = 6.0
 
+#: Lines of text that a dimension's text is tried at, past the middle of its line.
+_ROWS = 6
+
 #: Side of a handle. [px]
 HANDLE = 10.0
 
@@ -125,6 +128,13 @@ def _draw_dimension(
         start + along * share + beside * away * side
         for side in (0.0, 1.0, -1.0, 2.5, -2.5)
         for share in (0.5, 0.35, 0.65, 0.2, 0.8)
+    ]
+    # Past its ends, where a short line stands in a crowd.
+    places += [
+        start + along / 2 + along / length * step + beside * away * side
+        for row in range(1, _ROWS + 1)
+        for step in (-row * (box.height() + 4.0), row * (box.height() + 4.0))
+        for side in (1.0, -1.0)
     ]
     _draw_note(painter, dimension.text, places, camera, inks, taken, bold=True)
 

@@ -17,8 +17,9 @@ from app.document import Document
 from app.map_picture import DrawnIsoLine, MapPicture, MaskedArea
 from app.theme import DARK, LIGHT, contrast
 from app.tools.select import SelectTool
-from app.tools.tool import NOTHING, Entry, Overlay, Tool
+from app.tools.tool import NOTHING, Dimension, Entry, Overlay, Tool
 from app.view_state import ViewState
+from app.views.camera import Camera
 from app.views.drawing_view import DrawingView
 from app.views.inks import Inks, conductor_colour
 from app.views.labels import Importance, Label, placed, text_box
@@ -483,3 +484,19 @@ def test_texts_of_a_tool_keep_off_the_labels(qtbot, shown):
     assert len(taken) == 4
     for k, box in enumerate(taken):
         assert not any(box.intersects(other) for other in taken[:k])
+
+
+def test_the_text_of_a_short_dimension_keeps_off_labels_on_either_side(qtbot, shown):
+    inks, camera = shown[1]._inks, Camera(50.0, 0.0, 600.0, 800.0, 600.0)
+    image = QImage(800, 600, QImage.Format.Format_RGB32)
+    painter = QPainter(image)
+    start, end = (8.0, 6.0), (8.0, 5.2)
+    at = camera.pixel(start)
+    # A label across the line, and the one under it.
+    labels = [QRectF(at.x() - 300, at.y() - 10 + 22 * row, 600, 20) for row in range(3)]
+    taken = [*labels]
+    dimension = Dimension(start, end, "0.800 m from the −y wall of Riser shaft")
+    draw_overlay(painter, Overlay(dimensions=(dimension,)), camera, inks, taken)
+    painter.end()
+    assert not any(taken[-1].intersects(label) for label in labels)
+    assert abs(taken[-1].center().x() - at.x()) < 300
