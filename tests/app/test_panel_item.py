@@ -10,6 +10,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtTest import QTest
 
 from app.document import Document
+from app.panels import layout_forms
 from app.panels.item import ItemPanel
 from app.panels.kinds import Distances, Terms
 from app.panels.origin import OriginForm
@@ -300,3 +301,12 @@ def test_an_origin_of_what_is_gone_is_refused(document, qtbot):
     form.apply()
     assert "gone" in form.reason.text()
     assert document.undo_stack.count() == 1
+
+
+def test_the_frequency_of_a_layout_is_that_of_new_circuits(document):
+    (part,) = (p for p in layout_forms._UNITS if p.path == "frequency")
+    assert part.label == "Frequency of new circuits"
+    settings = document.layout.settings
+    made = part.entered(document.layout, (settings,), 60.0)
+    assert made.settings.frequency == 60.0
+    assert made.circuits == document.layout.circuits
