@@ -12,7 +12,14 @@ from collections.abc import Iterator, Sequence
 
 import numpy as np
 
-from engine.circuits import LINES, RETURNS, Circuit
+from engine.circuits import (
+    LINES,
+    RETURNS,
+    Circuit,
+    DirectCurrents,
+    LineLoads,
+    MeasuredCurrents,
+)
 from engine.conductors import Conductor, Node
 from engine.currents import CasePhasors, load_current
 from engine.equipment import Board, ConductorLoop, Transformer
@@ -207,11 +214,17 @@ def _labels(
         foreign = [label for label in labels if label in _OF_SUPPLIES - {*own}]
         if lines and foreign:
             supply = "DC" if circuit.supply == "dc" else circuit.supply
+            flowing = [label for label in foreign if label in _stated(circuit)]
+            flow = (
+                f"yet currents are stated for {listed(flowing)} and flow there"
+                if flowing
+                else f"nothing of it flows in {listed(foreign)}"
+            )
             yield _label_remark(
                 run,
                 circuit,
-                f"it is {supply}, with {listed(own)}; nothing of it flows in "
-                f"{listed(foreign)}: check its supply and the order of the conductors.",
+                f"it is {supply}, with {listed(own)}; {flow}: check its supply, its "
+                "currents and the order of the conductors.",
             )
         missing = [line for line in lines if line not in labels]
         twice = [line for line in lines if labels.get(line, 0) > 1]
@@ -232,6 +245,19 @@ def _labels(
                     f"{significant(totals[circuit_id, label] * 100)} % of its current "
                     "together: check labels and shares.",
                 )
+
+
+def _stated(circuit: Circuit) -> set[str]:
+    """Labels that the circuit's demand states a current of their own for."""
+    match circuit.demand:
+        case DirectCurrents(currents=stated):
+            return {each.label for each in stated if each.rms}
+        case LineLoads(loads=loads):
+            return {each.label for each in loads if each.rms}
+        case MeasuredCurrents(lines=lines):
+            return {each.label for each in lines if each.rms}
+        case _:
+            return set()
 
 
 def _label_remark(run: Run, circuit: Circuit, what: str) -> Remark:

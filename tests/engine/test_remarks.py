@@ -20,12 +20,15 @@ from engine.circuits import (
     ConductorCurrent,
     DirectCurrents,
     EnteredNetCurrent,
+    LineLoad,
+    LineLoads,
     LoadCase,
     MeasuredCurrents,
     MeasuredLine,
     SpectrumLine,
 )
 from engine.criteria import LevelPoint, LevelTable
+from engine.currents import case_phasors
 from engine.equipment import ConductorLoop, Terminal, Transformer
 from engine.faults import Remark
 from engine.items import ConfirmedRemark, Item, ValueOrigin
@@ -264,6 +267,18 @@ def test_conductors_that_a_supply_does_not_have_are_a_warning() -> None:
     assert "with L1 and N; nothing of it flows in L2 and L3" in single
     assert "W15" not in codes(supplied("three-phase three-wire"))
     assert "W15" not in codes(supplied("free"))
+
+
+def test_currents_stated_for_conductors_that_a_supply_does_not_have_are_said() -> None:
+    section = Flat(circuits=(CircuitShare(circuit="C"),), order=POLES)
+    plain = alone(run_of(section))
+    (circuit,) = plain.circuits
+    loads = tuple(LineLoad(label=label, rms=9.0, lag=0.0) for label in ("L1", "L2"))
+    circuit = replace(circuit, supply="single-phase", demand=LineLoads(loads=loads))
+    layout = replace(plain, circuits=(circuit,))
+    assert case_phasors(layout, layout.cases[0]).of("C", "L2").any()
+    said = first(layout, "W15").sentence
+    assert "with L1 and N; yet currents are stated for L2 and flow there" in said
 
 
 def test_label_carried_in_full_twice_is_a_warning() -> None:
