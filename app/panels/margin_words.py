@@ -115,7 +115,8 @@ def sentence(row: MarginRow, layout: Layout, sampled: bool) -> str:
     """The whole comparison in words, for tooltips, screen readers and copying."""
     head = f"{row.place_title} against {level_text(row, layout)}"
     if row.value is None or row.ratio is None:
-        return f"{head}: {state_text(row) or 'no value'}"
+        # A reason is a sentence already; whoever takes this one ends it.
+        return f"{head}: {state_text(row) or 'no value'}".removesuffix(".")
     text = f"{head}: {value_text(row, layout, sampled)}"
     text += f", ratio {ratio_text(row, sampled)}"
     if sampled:

@@ -173,6 +173,7 @@ def test_not_evaluable_asks_for_more_than_below(layout: Layout) -> None:
     margins = Margins(layout, (row("below", 0.9), unknown), False)
     assert margins.worst is unknown
     assert words.state_text(unknown) == "not evaluable: No source."
+    assert words.sentence(unknown, Layout(), False).endswith("evaluable: No source")
 
 
 def test_figures_show_the_side_of_the_level(layout: Layout) -> None:
