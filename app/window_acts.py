@@ -21,6 +21,9 @@ if TYPE_CHECKING:
 
 PICTURES = "Drawings and pictures (*.pdf *.png *.jpg *.jpeg)"
 
+#: Endings of what can be dropped onto the window.
+_LAYOUTS, _DRAWINGS = (".json", ".csv"), (".pdf", ".png", ".jpg", ".jpeg")
+
 
 class WindowActs:
     """Acts on the window's parts; what cannot be done is a `UserError`."""
@@ -30,13 +33,23 @@ class WindowActs:
 
     def open_dropped(self, names: list[str]) -> None:
         """Open a dropped layout or schedule; place a dropped drawing."""
-        for name in names[:1]:
-            path = Path(name)
-            if path.suffix.lower() in (".json", ".csv"):
-                self._window.files.open(path)
-            else:
-                with self._window.messages.shown():
+        with self._window.messages.shown():
+            if len(names) > 1:
+                raise UserError(
+                    "Nothing was opened: several files were dropped. Drop one at a "
+                    "time."
+                )
+            for path in map(Path, names):
+                if path.suffix.lower() in _LAYOUTS:
+                    self._window.files.open(path)
+                elif path.suffix.lower() in _DRAWINGS:
                     self._place(path)
+                else:
+                    raise UserError(
+                        f"{path.name} was not opened: it is neither a layout (.json), "
+                        "nor a conductor schedule (.csv), nor a drawing or picture "
+                        "(.pdf, .png, .jpg)."
+                    )
 
     def open_recent(self, name: str) -> None:
         """Open a recent file, or forget it when it is gone."""

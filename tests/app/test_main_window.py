@@ -150,3 +150,19 @@ def test_the_hint_speaks_of_the_table_that_takes_the_drawings_place(window):
     assert window.hint.text() == "Esc goes back to the drawing."
     window.margins.close_opened()
     assert "select" in window.hint.text()
+
+
+@pytest.mark.parametrize(
+    ("names", "said"),
+    [
+        (["notes.txt"], "notes.txt was not opened: it is neither a layout (.json)"),
+        (["a.json", "b.json"], "Nothing was opened: several files were dropped."),
+    ],
+)
+def test_what_is_dropped_and_cannot_be_opened_is_said(window, qtbot, names, said):
+    told = []
+    window.messages.told.connect(lambda _kind, text: told.append(text))
+    before = window.document.layout
+    window.menus.acts.open_dropped(names)
+    assert window.document.layout is before
+    assert told[-1].startswith(said)
