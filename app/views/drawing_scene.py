@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from operator import is_
+from itertools import groupby
+from operator import attrgetter, is_
 
 from PySide6.QtCore import QObject, QRectF, Signal
 from PySide6.QtWidgets import QGraphicsScene
@@ -345,8 +346,9 @@ def _same(one: Sequence[Strand], other: Sequence[Strand]) -> bool:
 def _by_item(
     strands: Iterable[Strand], wanted: set[str]
 ) -> dict[str, Sequence[Strand]]:
+    # Those of one item mostly follow each other; there are thousands at each step.
     found: dict[str, list[Strand]] = {}
-    for strand in strands:
-        if strand.item in wanted:
-            found.setdefault(strand.item, []).append(strand)
+    for item, own in groupby(strands, attrgetter("item")):
+        if item in wanted:
+            found.setdefault(item, []).extend(own)
     return dict(found)

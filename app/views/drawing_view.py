@@ -31,7 +31,7 @@ from app.views.drawing_scene import DrawingScene
 from app.views.inks import Inks
 from app.views.legend import Legend
 from app.views.overlay_painter import draw_catch, draw_overlay
-from app.views.picking import picked
+from app.views.picking import cursor_of, picked
 from app.views.picture_painter import PicturePainter
 from app.views.projection import PLAN, Sight
 from app.views.scale_bar import grid_step
@@ -244,13 +244,19 @@ class DrawingView(ZoomableView):
 
     # -- the pointer ------------------------------------------------------------
 
-    def pointer_at(self, pixel: QPointF, modifiers: Qt.KeyboardModifier) -> Pointer:
-        """What the tool is told of a pixel place."""
+    def pointer_at(
+        self,
+        pixel: QPointF,
+        modifiers: Qt.KeyboardModifier,
+        under: tuple[str, ...] | None = None,
+    ) -> Pointer:
+        """What the tool is told of a pixel place; `under` if it is known already."""
         camera = self.camera()
         raw = camera.metres(pixel)
         found = self._caught(raw, camera)
         reach = PICK_REACH / camera.scale
-        under = picked(self._scene, self._picture.labels, raw, pixel, reach)
+        if under is None:
+            under = picked(self._scene, self._picture.labels, raw, pixel, reach)
         return Pointer(
             at=found.at,
             raw=raw,
@@ -289,11 +295,14 @@ class DrawingView(ZoomableView):
         super().mouseMoveEvent(event)
         if self.is_panning:
             return
-        self._pointer = self.pointer_at(event.position(), event.modifiers())
+        # What was taken stays taken: to look again at each step takes time.
+        is_held = event.buttons() != Qt.MouseButton.NoButton
+        under = self._pointer.under if self._pointer and is_held else None
+        self._pointer = self.pointer_at(event.position(), event.modifiers(), under)
         self.pointer_moved.emit(*self._pointer.at)
         if self._tool is not None:
             self._tool.move(self._pointer)
-            self._set_cursor(self._pointer)
+            self.viewport().setCursor(cursor_of(self._tool, self._pointer))
         self.viewport().update()
 
     def mouseReleaseEvent(self, event: QMouseEvent) -> None:
@@ -308,15 +317,6 @@ class DrawingView(ZoomableView):
             pointer = self.pointer_at(event.position(), event.modifiers())
             self._tool.double_click(pointer)
         event.accept()
-
-    def _set_cursor(self, pointer: Pointer) -> None:
-        assert self._tool is not None
-        shape = Qt.CursorShape.ArrowCursor
-        if self._tool.catches():
-            shape = Qt.CursorShape.CrossCursor
-        elif pointer.pick is not None:
-            shape = Qt.CursorShape.PointingHandCursor
-        self.viewport().setCursor(shape)
 
     def viewportEvent(self, event: QEvent) -> bool:
         if event.type() == QEvent.Type.Leave:

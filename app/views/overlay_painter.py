@@ -159,8 +159,14 @@ def _draw_note(
     bold: bool = False,
 ) -> None:
     """A text at the first of its places that is free, else at the best, on paper."""
-    boxes = [_inside(text_box(text, inks, at, bold=bold), camera) for at in places]
-    box = min(boxes, key=lambda each: _covered(each, taken))
+    box, least = QRectF(), math.inf
+    for at in places:
+        tried = _inside(text_box(text, inks, at, bold=bold), camera)
+        covered = _covered(tried, taken)
+        if covered < least:
+            box, least = tried, covered
+        if covered == 0.0:
+            break
     taken.append(box)
     # Where it has to lie over another text, that one does not shine through.
     painter.setPen(QPen(QColor(inks.theme.accent), 1.0))
@@ -173,7 +179,7 @@ def _draw_note(
 
 def _covered(box: QRectF, taken: list[QRectF]) -> float:
     """How much of what is taken a box would cover. [px²]"""
-    parts = [box.intersected(other) for other in taken]
+    parts = [box.intersected(other) for other in taken if box.intersects(other)]
     return sum(part.width() * part.height() for part in parts)
 
 

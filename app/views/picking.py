@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import QPointF
+from PySide6.QtCore import QPointF, Qt
 
+from app.tools.tool import Pointer, Tool
 from app.views.drawing_scene import DrawingScene
 from app.views.labels import PlacedLabel
 from app.views.shape_item import ShapeItem
@@ -37,6 +38,15 @@ def picked(
     ]
     found = (*gripped, *labelled, *picked_shapes(scene, at, reach))
     return tuple(dict.fromkeys(found))
+
+
+def cursor_of(tool: Tool, pointer: Pointer) -> Qt.CursorShape:
+    """How the pointer looks: a tool catches places, or something can be taken."""
+    if tool.catches():
+        return Qt.CursorShape.CrossCursor
+    if pointer.pick is not None:
+        return Qt.CursorShape.PointingHandCursor
+    return Qt.CursorShape.ArrowCursor
 
 
 def picked_shapes(scene: DrawingScene, at: Point, reach: float) -> tuple[str, ...]:
