@@ -310,7 +310,7 @@ def test_a_level_without_0_hz_says_that_direct_current_is_not_covered():
     [
         ({}, {"source": ""}, "no source"),
         ({}, {"category": ""}, "no category"),
-        ({"category": ""}, {}, "not chosen"),
+        ({"category": ""}, {}, "The place has no category"),
         ({"category": "equipment"}, {}, "“workers”, the place for “equipment”"),
         (
             {"category": "persons at particular risk"},
