@@ -84,7 +84,7 @@ def validation(outcomes: Sequence[Outcome], width: float) -> list[Flowable]:
     heads = (
         "No.", "Case", "Published", "Computed", "Deviation", "Tolerance", "Source",
     )  # fmt: skip
-    checked = table(heads, rows, (12, 26, 12, 12, 9, 12, 27), width)
+    checked = table(heads, rows, (11, 25, 13, 13, 11, 12, 25), width)
     return [paragraph(text), checked, *_near_field(width)]
 
 
