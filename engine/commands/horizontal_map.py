@@ -26,6 +26,17 @@ KINDS = (".png", ".svg", ".csv")
 _AROUND = 0.5
 
 
+def map_kind(out: Path) -> str:
+    """The ending that says what a map is written as; a `UserError` for another."""
+    kind = out.suffix.lower()
+    if kind not in KINDS:
+        raise UserError(
+            f"{out.name} was not written: a map is written as .png, .svg or .csv, "
+            "by the ending of the file's name."
+        )
+    return kind
+
+
 def write_map(
     layout: Layout,
     case: LoadCase,
@@ -50,12 +61,7 @@ def write_map(
         When the ending is of no known kind, when the layout cannot be evaluated, or
         when the file cannot be written.
     """
-    kind = out.suffix.lower()
-    if kind not in KINDS:
-        raise UserError(
-            f"{out.name} was not written: a map is written as .png, .svg or .csv, "
-            "by the ending of the file's name."
-        )
+    kind = map_kind(out)
     if not heights or not np.all(np.isfinite(heights)):
         raise UserError("The height must be a finite number of metres above the datum.")
     step = layout.settings.grid_step if kind == ".csv" else None

@@ -8,10 +8,10 @@ from pathlib import Path
 import numpy as np
 
 from engine.circuits import LoadCase
-from engine.commands.horizontal_map import KINDS
+from engine.commands.horizontal_map import map_kind
 from engine.conductors import conductors
 from engine.elevation import Rect, Upright, elevation, extent_from_side
-from engine.errors import Cancelled, Progress, UserError
+from engine.errors import Cancelled, Progress
 from engine.exchange.map_export import write_plane_csv, write_png
 from engine.exchange.svg import svg
 from engine.layout import Layout
@@ -54,12 +54,7 @@ def write_upright_map(
         When the ending is of no known kind, when the layout cannot be evaluated, or
         when the file cannot be written.
     """
-    kind = out.suffix.lower()
-    if kind not in KINDS:
-        raise UserError(
-            f"{out.name} was not written: a map is written as .png, .svg or .csv, "
-            "by the ending of the file's name."
-        )
+    kind = map_kind(out)
     rect = extent_from_side(layout, upright.sight)
     plane = upright.rectangle(rect)
     step = layout.settings.grid_step if kind == ".csv" else None
